@@ -1,0 +1,205 @@
+package funcs
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
+)
+
+// The findings that functions of one sample raise by themselves.
+var (
+	fewValuesKind  = FindingKind{"few-values", "fewer than 5 values, or fewer than the computation needs"}
+	skewedKind     = FindingKind{"skewed-for-n", "n is at most 25 times the squared skewness (from n = 20)"}
+	neighboursKind = FindingKind{"neighbours-alike", "the lag-1 autocorrelation passes 2.58/√n in size (from n = 20)"}
+	farValueKind   = FindingKind{"far-value", "the value farthest from the mean is an outlier at significance 0.01"}
+	heavyTailKind  = FindingKind{"heavy-tail", "the tails look too heavy for a finite variance (from n = 100)"}
+	noSpreadKind   = FindingKind{"no-spread", "all values are equal, or the sd given is 0"}
+	spreadsKind    = FindingKind{"spreads-unlike", "with pooled variances, the larger sd is more than twice the smaller"}
+)
+
+var oneSampleFindings = []FindingKind{fewValuesKind, skewedKind, neighboursKind, farValueKind, heavyTailKind}
+
+// With these, a caution is raised; see the kinds for their meaning.
+const (
+	fewValues       = 5
+	fromValues      = 20   // skewness and autocorrelation say little below
+	cochranFactor   = 25   // Cochran 1977, Sampling Techniques, section 2.15: n > 25·G1²
+	neighbourFactor = 2.58 // the 0.995 normal quantile: 1% of independent samples pass
+	farSignificance = 0.01
+	tailValues      = 100
+	tailConfidence  = 0.95
+)
+
+// checkSample raises the cautions of a sample, where it was given and checks
+// are on, and the few-values caution of a summary.
+func (c *Call) checkSample(in In[[]float64]) error {
+	v, ok := in.Given(c)
+	if !ok {
+		if n, ok := nGiven.Given(c); ok && checks.Of(c) {
+			c.checkFew("n", "The sample", n)
+		}
+		return nil
+	}
+	return c.checkValues(in.Name, v, summarise(withoutGaps(v)))
+}
+
+// checkValues raises the cautions of an ordered list of values whose summary
+// is s; input is the argument they came from.
+func (c *Call) checkValues(input string, ordered []float64, s summary) error {
+	if !checks.Of(c) {
+		return nil
+	}
+	what := "The " + input
+	c.checkFew(input, what, s.n)
+	if s.sd == 0 {
+		return nil
+	}
+	values := withoutGaps(ordered)
+	c.checkSkewness(input, what, values, s)
+	c.checkNeighbours(input, what, ordered, s)
+	c.checkFar(input, what, ordered, s)
+	c.checkTail(input, what, values)
+	return c.cancelled()
+}
+
+func (c *Call) checkFew(input, what string, n int) {
+	if n < fewValues {
+		c.caution("few-values", input, "%s has only %s: the interval rests wholly on the values being normal. Measure at least %d.",
+			what, plural(n, "value"), fewValues)
+	}
+}
+
+func (c *Call) checkSkewness(input, what string, values []float64, s summary) {
+	if s.n < fromValues {
+		return
+	}
+	g1 := skewness(num.Moments(values))
+	need := cochranFactor * float64(g1*g1)
+	if float64(s.n) <= need {
+		c.caution("skewed-for-n", input, "%s is skewed (skewness %s): with n = %d the interval may miss more often than it says; "+
+			"more than %.0f values are the rule for this skewness. Try coverage-check, or enough-n-for-mean.",
+			what, brief(g1), s.n, math.Floor(need))
+	}
+}
+
+func (c *Call) checkNeighbours(input, what string, ordered []float64, s summary) {
+	if s.n < fromValues || c.origin(input).Unordered {
+		return
+	}
+	if r := num.Lag1(ordered); math.Abs(r) > neighbourFactor/math.Sqrt(float64(s.n)) {
+		c.caution("neighbours-alike", input, "Neighbouring values of %s are not independent (lag-1 autocorrelation %s), so the interval is too %s. "+
+			"Average over longer stretches, or see independence-check.", lowerFirst(what), brief(r), narrowOrWide(r))
+	}
+}
+
+func narrowOrWide(r float64) string {
+	if r > 0 {
+		return "narrow"
+	}
+	return "wide"
+}
+
+// checkFar looks for one outlier (generalised ESD of one; Grubbs 1969).
+func (c *Call) checkFar(input, what string, ordered []float64, s summary) {
+	if s.n < 3 {
+		return
+	}
+	far, at := 0.0, -1
+	for i, x := range ordered {
+		if d := math.Abs(x - s.mean); d > far {
+			far, at = d, i
+		}
+	}
+	if at < 0 || far/s.sd <= esdCritical(s.n, farSignificance) {
+		return
+	}
+	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.address(input, at), Message: fmt.Sprintf(
+		"Value %d of %s, %s, lies %s standard deviations from the mean. Check that it is right; keep it if it is, and see outlier-check.",
+		at+1, lowerFirst(what), shortest(ordered[at]), brief(far/s.sd))})
+}
+
+// esdCritical is the critical value of max|x - mean|/sd among n normal values
+// (Grubbs 1969; Rosner 1983).
+func esdCritical(n int, significance float64) float64 {
+	m := float64(n)
+	t := dist.Student{DF: m - 2}.UpperQuantile(significance / (2 * m))
+	return (m - 1) / math.Sqrt(m) * math.Sqrt(1/((m-2)/float64(t*t)+1))
+}
+
+func (c *Call) checkTail(input, what string, values []float64) {
+	if len(values) < tailValues {
+		return
+	}
+	tail, ok := hillTail(values, tailConfidence)
+	if ok && tail.upper < 2 {
+		c.caution("heavy-tail", input, "%s has tails so heavy (tail index %s, at most %s) that its variance may not exist: no n is enough for a t interval. "+
+			"Use median-interval, and see tail-check.", what, brief(tail.index), brief(tail.upper))
+	}
+}
+
+// tailIndex is Hill's estimate with its limits.
+type tailIndex struct {
+	k                   int
+	index, lower, upper float64
+}
+
+// hillTail estimates the tail index of |x - median| from its k largest values,
+// k = max(10, floor(√n)) (Hill 1975); not where the values are too alike.
+func hillTail(values []float64, confidence float64) (tailIndex, bool) {
+	n := len(values)
+	k := max(10, int(math.Sqrt(float64(n))))
+	centre := num.Median(num.Sorted(values))
+	d := make([]float64, n)
+	for i, x := range values {
+		d[i] = math.Abs(x - centre)
+	}
+	slices.Sort(d)
+	base := d[n-1-k]
+	if base == 0 {
+		return tailIndex{}, false
+	}
+	var sum float64
+	for _, x := range d[n-k:] {
+		sum += math.Log(x / base)
+	}
+	if sum <= 0 {
+		return tailIndex{}, false
+	}
+	law, outside := dist.ChiSquare{DF: float64(2 * k)}, (1-confidence)/2
+	h := tailIndex{k: k, index: float64(k) / sum}
+	h.lower = h.index * law.Quantile(outside) / float64(2*k)
+	h.upper = h.index * law.UpperQuantile(outside) / float64(2*k)
+	return h, true
+}
+
+// checkSpreads raises spreads-unlike for pooled variances.
+func (c *Call) checkSpreads(input string, sds ...float64) {
+	smallest, largest := slices.Min(sds), slices.Max(sds)
+	if checks.Of(c) && largest > 2*smallest {
+		c.caution("spreads-unlike", input, "The groups' standard deviations differ (%s to %s), so one pooled variance misleads. "+
+			"Use separate variances, or see equal-spread-test.", brief(smallest), brief(largest))
+	}
+}
+
+// skewness is G1 (Joanes & Gill 1998); 0 where it does not exist.
+func skewness(m num.Summary) float64 {
+	n := float64(m.N)
+	if m.N < 3 || m.SumSquares == 0 {
+		return 0
+	}
+	g1 := m.Sum3 / n / math.Pow(m.SumSquares/n, 1.5)
+	return g1 * math.Sqrt(n*(n-1)) / (n - 2)
+}
+
+// excessKurtosis is G2 (Joanes & Gill 1998); 0 where it does not exist.
+func excessKurtosis(m num.Summary) float64 {
+	n := float64(m.N)
+	if m.N < 4 || m.SumSquares == 0 {
+		return 0
+	}
+	g2 := n*(m.Sum4/m.SumSquares)/m.SumSquares - 3
+	return (n - 1) / ((n - 2) * (n - 3)) * ((n+1)*g2 + 6)
+}
