@@ -1,0 +1,86 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"halfwidth/cmd/internal/texttab"
+	"halfwidth/funcs"
+)
+
+func functionsCommand() *cobra.Command {
+	c := &cobra.Command{
+		Use:     "functions [NAME]",
+		Short:   "List the functions, or show one function's reference page",
+		Example: "  halfwidth functions\n  halfwidth functions mean-interval",
+		Args:    cobra.MaximumNArgs(1),
+	}
+	format := formatFlag(c)
+	c.RunE = func(c *cobra.Command, args []string) error {
+		f, err := formatOf(*format)
+		if err != nil {
+			return err
+		}
+		if len(args) == 0 {
+			return listFunctions(c.OutOrStdout(), f)
+		}
+		function, err := funcs.Lookup(args[0])
+		if err != nil {
+			return usageError{fmt.Errorf("%w (halfwidth functions lists all)", err)}
+		}
+		if f != texttab.Text {
+			return inputTable(function).Write(c.OutOrStdout(), f)
+		}
+		return funcs.WriteReference(c.OutOrStdout(), function)
+	}
+	return c
+}
+
+func listFunctions(w io.Writer, f texttab.Format) error {
+	table := &texttab.Table{Columns: []texttab.Column{{Name: "family"}, {Name: "function"}, {Name: "summary"}}}
+	for _, family := range funcs.Families() {
+		for _, function := range family.Functions {
+			table.Rows = append(table.Rows, texttab.Row{Cells: []any{family.Name, function.Name, function.Summary}})
+		}
+	}
+	return table.Write(w, f)
+}
+
+// inputTable lists a function's inputs and results, for programs to read.
+func inputTable(f *funcs.Function) *texttab.Table {
+	table := &texttab.Table{Columns: []texttab.Column{{Name: "part"}, {Name: "name"}, {Name: "kind"}, {Name: "expects"}, {Name: "default"}, {Name: "summary"}}}
+	add := func(cells ...any) { table.Rows = append(table.Rows, texttab.Row{Cells: cells}) }
+	for _, in := range f.Inputs {
+		var standard any
+		if in.Default != nil {
+			standard = funcs.FormatArgument(in.Default)
+		}
+		add("input", in.Name, in.Kind.String(), in.Expects(), standard, in.Summary)
+	}
+	for _, r := range f.Results {
+		add("result", r.Name, r.Kind.String(), nil, nil, r.Summary)
+	}
+	for _, r := range f.Table {
+		add("column", r.Name, r.Kind.String(), nil, nil, r.Summary)
+	}
+	for _, r := range funcs.CommonResults {
+		add("result", r.Name, r.Kind.String(), nil, nil, r.Summary)
+	}
+	return table
+}
+
+// exampleCommand is the command line that works out a function's example.
+func exampleCommand(f *funcs.Function) string {
+	words := []string{"halfwidth", "answer", f.Name}
+	for _, a := range f.Example.Arguments {
+		word := a.Name + "=" + funcs.FormatArgument(a.Value)
+		if strings.ContainsAny(word, " ;<>\"*?&|()") {
+			word = "'" + word + "'"
+		}
+		words = append(words, word)
+	}
+	return strings.Join(words, " ")
+}

@@ -1,0 +1,117 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"runtime/debug"
+	"slices"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"halfwidth/cmd/internal/texttab"
+	"halfwidth/funcs"
+)
+
+// The exit codes.
+const (
+	exitOK      = 0 // every row is ok or caution
+	exitRefused = 1 // some row is refused
+	exitFailed  = 2 // the command could not be carried out
+)
+
+// errRefused ends a command whose output already says which rows are refused.
+var errRefused = errors.New("some rows are refused")
+
+// usageError is a command line that cannot be carried out as written.
+type usageError struct{ error }
+
+// verbs lists the commands in the order of the help.
+var verbs = []func() *cobra.Command{fillCommand, previewCommand, functionsCommand, answerCommand}
+
+// Run carries out one command line and gives its exit code. Results go to
+// stdout, everything else to stderr.
+func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
+	root := &cobra.Command{
+		Use:   "halfwidth",
+		Short: "Statistics of the numbers in a workbook, written beside them as plain values",
+		Long: "halfwidth works out a calculation sheet: how sure an average is, whether a difference is real, how many must be measured.\n" +
+			"The answers are written into the sheet's result columns as plain values, with a note on whether they may be trusted.",
+		Version:       version(),
+		Args:          noVerb,
+		SilenceErrors: true,
+		SilenceUsage:  true,
+		RunE:          func(c *cobra.Command, _ []string) error { return c.Help() },
+	}
+	root.CompletionOptions.HiddenDefaultCmd = true
+	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {
+		return usageError{fmt.Errorf("%w; see halfwidth %s --help", err, strings.TrimPrefix(c.CommandPath(), "halfwidth "))}
+	})
+	for _, verb := range verbs {
+		root.AddCommand(verb())
+	}
+	root.SetArgs(args)
+	root.SetOut(stdout)
+	root.SetErr(stderr)
+	err := root.ExecuteContext(ctx)
+	switch {
+	case err == nil:
+		return exitOK
+	case errors.Is(err, errRefused):
+		return exitRefused
+	}
+	fmt.Fprintf(stderr, "halfwidth: %s\n", strings.ReplaceAll(err.Error(), "\n", "\nhalfwidth: "))
+	return exitFailed
+}
+
+// noVerb reports a first word that is no verb, with the closest ones.
+func noVerb(c *cobra.Command, args []string) error {
+	if len(args) == 0 {
+		return nil
+	}
+	var names []string
+	for _, sub := range c.Commands() {
+		names = append(names, sub.Name())
+	}
+	if slices.Contains(funcs.Names(), args[0]) {
+		return usageError{fmt.Errorf("%s is a function; write: halfwidth answer %s NAME=VALUE…", args[0], args[0])}
+	}
+	if near := funcs.Closest(args[0], names); len(near) > 0 {
+		return usageError{fmt.Errorf("there is no command %q; did you mean %s?", args[0], near[0])}
+	}
+	return usageError{fmt.Errorf("there is no command %q; the commands are %s", args[0], strings.Join(names, ", "))}
+}
+
+// formatFlag adds --format to a command.
+func formatFlag(c *cobra.Command) *string {
+	return c.Flags().String("format", string(texttab.Text), "how to print: text, json or csv")
+}
+
+// formatOf reads the value of --format.
+func formatOf(text string) (texttab.Format, error) {
+	if f := texttab.Format(text); slices.Contains(texttab.Formats, f) {
+		return f, nil
+	}
+	return "", usageError{fmt.Errorf("--format is %q; write text, json or csv", text)}
+}
+
+// version is the module's version, with the revision it was built from where
+// the build recorded one.
+func version() string {
+	info, ok := debug.ReadBuildInfo()
+	if !ok {
+		return "unknown"
+	}
+	v := info.Main.Version
+	if v == "" || v == "(devel)" {
+		v = "development"
+	}
+	for _, s := range info.Settings {
+		if s.Key == "vcs.revision" && len(s.Value) >= 12 {
+			v += " (" + s.Value[:12] + ")"
+		}
+	}
+	return v + " " + info.GoVersion
+}

@@ -1,0 +1,138 @@
+package funcs
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strings"
+)
+
+// WriteReference writes a function's reference page as Markdown that reads well
+// as plain text too. It is made from the descriptor alone.
+func WriteReference(w io.Writer, f *Function) error {
+	var b strings.Builder
+	fmt.Fprintf(&b, "## %s\n\n%s.\n", f.Name, upperFirst(f.Summary))
+	if len(f.OneOf) > 0 {
+		b.WriteString("\n")
+		for _, one := range f.OneOf {
+			fmt.Fprintf(&b, "Give %s.\n", one)
+		}
+	}
+	b.WriteString("\nInputs:\n\n")
+	for _, in := range f.Inputs {
+		fmt.Fprintf(&b, "- `%s` (%s%s): %s\n", in.Name, in.Kind, f.takes(in), in.Summary)
+	}
+	if len(f.Results) > 0 {
+		b.WriteString("\nResults:\n\n")
+		writeResults(&b, f.Results)
+	}
+	if len(f.Table) > 0 {
+		b.WriteString("\nTable, a row each with its own status and note:\n\n")
+		writeResults(&b, f.Table)
+	}
+	if len(f.Findings) > 0 {
+		b.WriteString("\nFindings it can raise:\n\n")
+		for _, k := range f.Findings {
+			fmt.Fprintf(&b, "- `%s`: %s\n", k.Code, k.Meaning)
+		}
+	}
+	if len(f.Assumptions) > 0 {
+		fmt.Fprintf(&b, "\nAssumes: %s.\n", strings.Join(f.Assumptions, "; "))
+	}
+	fmt.Fprintf(&b, "\nMethod: %s.\n", strings.Join(f.Citations, "; "))
+	fmt.Fprintf(&b, "\nExample (%s; values from %s):\n\n", f.Example.Label, f.Example.Source)
+	for _, a := range f.Example.Arguments {
+		fmt.Fprintf(&b, "    %s = %s\n", a.Name, FormatArgument(a.Value))
+	}
+	for _, a := range f.Example.Want {
+		fmt.Fprintf(&b, "    > %s: %s\n", a.Name, FormatArgument(a.Value))
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+// takes words domain, unit and default of an input.
+func (f *Function) takes(in Input) string {
+	var parts []string
+	switch in.Kind {
+	case Choice, YesNo, Text:
+		if in.Kind == Choice {
+			parts = append(parts, in.Expects())
+		}
+	default:
+		if d := in.Expects(); d != anyNumber.String() {
+			parts = append(parts, d)
+		}
+	}
+	switch in.Unit {
+	case SameUnit:
+		parts = append(parts, "unit of the sample")
+	case SquaredUnit:
+		parts = append(parts, "unit of the sample, squared")
+	}
+	switch {
+	case in.Default != nil:
+		parts = append(parts, "default "+FormatArgument(in.Default))
+	case in.Optional:
+		parts = append(parts, "may be left out")
+	}
+	if parts == nil {
+		return ""
+	}
+	return "; " + strings.Join(parts, "; ")
+}
+
+func writeResults(b *strings.Builder, list []Result) {
+	for _, r := range list {
+		unit := ""
+		switch r.Unit {
+		case SameUnit:
+			unit = "; unit of the sample"
+		case SquaredUnit:
+			unit = "; unit of the sample, squared"
+		}
+		fmt.Fprintf(b, "- `%s` (%s%s): %s\n", r.Name, r.Kind, unit, r.Summary)
+	}
+}
+
+// FormatArgument writes a value as it is written in a sheet's cell or on a
+// command line.
+func FormatArgument(value any) string {
+	switch v := value.(type) {
+	case float64:
+		if math.IsInf(v, 1) {
+			return Infinite
+		}
+		return shortest(v)
+	case bool:
+		return show(v)
+	case []float64:
+		return formatNumbers(nil, v)
+	case List:
+		return formatNumbers(v.Names, v.Values)
+	case []Group:
+		parts := make([]string, len(v))
+		for i, g := range v {
+			parts[i] = fmt.Sprintf("%s = %s", g.Name, formatNumbers(nil, g.Values))
+		}
+		return strings.Join(parts, " | ")
+	case From:
+		return FormatArgument(v.Value)
+	}
+	return fmt.Sprint(value)
+}
+
+func formatNumbers(names []string, values []float64) string {
+	parts := make([]string, len(values))
+	for i, x := range values {
+		if !math.IsNaN(x) {
+			parts[i] = shortest(x)
+		}
+		if names != nil {
+			parts[i] = names[i] + " = " + parts[i]
+		}
+	}
+	return strings.Join(parts, "; ")
+}
+
+func upperFirst(s string) string { return strings.ToUpper(s[:1]) + s[1:] }
