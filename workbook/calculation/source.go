@@ -36,33 +36,58 @@ const (
 	DefinedName
 )
 
+// String words the kind with its article.
+func (k PlaceKind) String() string { return [...]string{"a sheet", "a table", "a defined name"}[k] }
+
 // Place is a sheet, a table or a defined range of a Source. Rows and columns
 // count from 1; for a sheet they are 0.
 type Place struct {
-	Kind                                  PlaceKind
-	Name                                  string // as it stands in the book
-	Sheet                                 string
-	FirstRow, LastRow, FirstCol, LastCol int
-	HeaderRows, TotalsRows                int // of a table
+	Kind                                 PlaceKind
+	Name                                 string // as it stands in the book
+	Sheet                                string // the sheet it lies on; for a sheet its own name
+	FirstRow, LastRow, FirstCol, LastCol int    // the whole range, header and totals rows included
+	HeaderRows, TotalsRows               int    // of a table
 }
 
 // Source gives samples their rows: a workbook file, a CSV file beside it, or
-// the open sheets of a server.
+// the open sheets of a server. Its methods are called from one goroutine.
 type Source interface {
 	// Places lists sheets, tables and defined names, sheets first, in the order
-	// of the book.
+	// of the book. A CSV file is one sheet.
 	Places() []Place
 	// Read reads one sheet in one pass. It calls choose once, with the first
 	// HeadRows rows (or all, where there are fewer) with all their columns; choose
-	// answers which columns (from 1) to keep from there on. The Frame holds those.
-	Read(ctx context.Context, sheet string, choose func(head *Frame) (columns []int)) (*Frame, error)
+	// answers which columns to keep from there on. The frame that choose was
+	// shown is the one that Read gives back: the Source calls its Keep with the
+	// answer and adds the other rows to it. Where nothing is to be kept
+	// (Columns.None) the Source may stop there.
+	//
+	// Every row enters with its flags (Frame.SetRow), whether or not one of its
+	// kept cells has a value. Cells inside a merged range, and blank cells inside
+	// an array formula, enter by Column.Cover and Column.Flag.
+	Read(ctx context.Context, sheet string, choose func(head *Frame) Columns) (*Frame, error)
 	// Beside opens a file named in an expression, beside the book or below its
-	// folder.
-	Beside(file string) (Source, error)
+	// folder. The error says what is wrong with the name or the file, as the end
+	// of a sentence that starts with the name.
+	Beside(file string, options FileOptions) (Source, error)
 	// RecalculatesLate reports that the book recalculates by hand or on load, so
 	// that saved formula values may be old.
 	RecalculatesLate() bool
 }
 
+// FileOptions say how a text file is to be read.
+type FileOptions struct {
+	DecimalComma bool // numbers are written 12,5
+}
+
 // HeadRows is how many rows are searched for a header.
 const HeadRows = 100
+
+// Columns says which columns of a sheet to keep.
+type Columns struct {
+	All  bool
+	List []int // from 1, rising
+}
+
+// None reports that no column is kept.
+func (c Columns) None() bool { return !c.All && len(c.List) == 0 }
