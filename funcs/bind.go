@@ -229,7 +229,7 @@ func (b *binder) number(in Input, group string, index int, raw any) (float64, bo
 	switch {
 	case in.Kind == Level && x > 1 && x <= 100:
 		advice = fmt.Sprintf("write %s%% or %s", shortest(x), strconv.FormatFloat(x/100, 'g', 15, 64))
-	case in.Kind == Level:
+	case in.Kind == Level && !(x > 0 && x < 1):
 		advice = "write a share such as 95% or 0.95"
 	case in.Infinite && math.IsInf(x, 1):
 		return x, true

@@ -121,9 +121,12 @@ func (c *Call) origin(name string) *Origin {
 }
 
 // address is the cell of value i of a sample, as a list of at most one.
-func (c *Call) address(input string, i int) []string {
+func (c *Call) address(input string, i int) []string { return c.addressIn(input, 0, i) }
+
+// addressIn is the cell of value i of one of the groups of an input.
+func (c *Call) addressIn(input string, group, i int) []string {
 	if o := c.origin(input); o.Address != nil {
-		if a := o.Address(0, i); a != "" {
+		if a := o.Address(group, i); a != "" {
 			return []string{a}
 		}
 	}

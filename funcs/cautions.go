@@ -60,7 +60,7 @@ func (c *Call) checkValues(input string, ordered []float64, s summary) error {
 	values := withoutGaps(ordered)
 	c.checkSkewness(input, what, values, s)
 	c.checkNeighbours(input, what, ordered, s)
-	c.checkFar(input, what, ordered, s)
+	c.checkFar(input, what, 0, ordered, s)
 	c.checkTail(input, what, values)
 	return c.cancelled()
 }
@@ -102,8 +102,9 @@ func narrowOrWide(r float64) string {
 	return "wide"
 }
 
-// checkFar looks for one outlier (generalised ESD of one; Grubbs 1969).
-func (c *Call) checkFar(input, what string, ordered []float64, s summary) {
+// checkFar looks for one outlier (generalised ESD of one; Grubbs 1969) in a
+// sample, which is group 0, or in one of the groups of an input.
+func (c *Call) checkFar(input, what string, group int, ordered []float64, s summary) {
 	if s.n < 3 {
 		return
 	}
@@ -116,7 +117,7 @@ func (c *Call) checkFar(input, what string, ordered []float64, s summary) {
 	if at < 0 || far/s.sd <= esdCritical(s.n, farSignificance) {
 		return
 	}
-	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.address(input, at), Message: fmt.Sprintf(
+	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.addressIn(input, group, at), Message: fmt.Sprintf(
 		"Value %d of %s, %s, lies %s standard deviations from the mean. Check that it is right; keep it if it is, and see outlier-check.",
 		at+1, lowerFirst(what), shortest(ordered[at]), brief(far/s.sd))})
 }

@@ -115,8 +115,11 @@ func (c *Call) say(s statement) {
 	fmt.Fprintf(&b, "The %s is %s", s.what, c.withUnit(toPlace(s.estimate, place), s.unit))
 	switch direction := direction.Of(c); {
 	case s.limits.hasLower && s.limits.hasUpper:
-		fmt.Fprintf(&b, ", %s interval %s to %s (half-width %s, %s direction", level, toPlace(s.limits.lower, place),
-			toPlace(s.limits.upper, place), toPlace(s.limits.halfWidth(s.estimate), place), direction)
+		fmt.Fprintf(&b, ", %s interval %s to %s (half-width %s", level, toPlace(s.limits.lower, place),
+			toPlace(s.limits.upper, place), toPlace(s.limits.halfWidth(s.estimate), place))
+		if direction != "" { // a function without the input has no direction to name
+			fmt.Fprintf(&b, ", %s direction", direction)
+		}
 	case s.limits.hasLower:
 		fmt.Fprintf(&b, ", at least %s with %s confidence (half-width %s, direction %s", toPlace(s.limits.lower, place), level,
 			toPlace(s.limits.halfWidth(s.estimate), place), direction)

@@ -1,0 +1,227 @@
+package funcs
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+)
+
+// groupSummary is one of several named groups, reduced to its summary. The
+// values, in order and with gaps, are there where they were given.
+type groupSummary struct {
+	name   string
+	values []float64
+	summary
+}
+
+// readGroups reads samples, or the lists given in their place: sds with ns, and
+// means where the function takes them. The sd of a group of one value is 0
+// here; a function that needs it leaves the group out (see ownSpread).
+func (c *Call) readGroups() ([]groupSummary, error) {
+	var groups []groupSummary
+	if given, ok := samples.Given(c); ok {
+		for _, g := range given {
+			groups = append(groups, groupSummary{g.Name, g.Values, summarise(withoutGaps(g.Values))})
+		}
+	} else {
+		lists := []In[List]{sds, ns}
+		if c.has("means") {
+			lists = []In[List]{means, sds, ns}
+		}
+		names, columns, err := c.matched(nil, lists...)
+		if err != nil {
+			return nil, err
+		}
+		last := len(columns) - 1
+		for i, name := range names {
+			g := groupSummary{name: name, summary: summary{n: int(columns[last][i]), sd: columns[last-1][i]}}
+			if last == 2 {
+				g.mean = columns[0][i]
+			}
+			if g.n < 2 {
+				g.sd = 0
+			}
+			groups = append(groups, g)
+		}
+	}
+	c.count(total(groups))
+	return groups, nil
+}
+
+// matched gives the values of lists that go together, one group a place, and
+// the groups' names. Lists with names are matched by name, those without by
+// order. The order is that of the names handed in, else of the first list that
+// has names; else the groups are called "group 1" and so on.
+func (c *Call) matched(names []string, lists ...In[List]) ([]string, [][]float64, error) {
+	leader := "samples"
+	if names == nil {
+		leader = lists[0].Name
+		if i := slices.IndexFunc(lists, func(in In[List]) bool { return in.Of(c).Names != nil }); i >= 0 {
+			leader, names = lists[i].Name, lists[i].Of(c).Names
+		} else {
+			for i := range lists[0].Of(c).Values {
+				names = append(names, fmt.Sprintf("group %d", i+1))
+			}
+		}
+	}
+	columns := make([][]float64, len(lists))
+	for i, in := range lists {
+		list := in.Of(c)
+		if list.Names == nil {
+			if len(list.Values) != len(names) {
+				return nil, nil, c.wrong(in.Name, plural(len(list.Values), "number"),
+					fmt.Sprintf("must have one for each of the %s of %s", plural(len(names), "group"), leader),
+					"give one a group, in the same order or by name")
+			}
+			columns[i] = list.Values
+			continue
+		}
+		for _, name := range list.Names {
+			if !slices.Contains(names, name) {
+				return nil, nil, c.wrong(in.Name, "", fmt.Sprintf("has a value for %q, which is no group of %s", name, leader), nearestOf(name, names))
+			}
+		}
+		for _, name := range names {
+			at := slices.Index(list.Names, name)
+			if at < 0 {
+				return nil, nil, c.wrong(in.Name, "", fmt.Sprintf("has no value for %q, a group of %s", name, leader), "give one for each group")
+			}
+			columns[i] = append(columns[i], list.Values[at])
+		}
+	}
+	return names, columns, nil
+}
+
+// nearestOf is the advice for a name that stands nowhere.
+func nearestOf(name string, names []string) string {
+	if near := Closest(name, names); len(near) > 0 {
+		return "did you mean " + orList(quoted(near)) + "?"
+	}
+	return "the groups are " + someNames(names)
+}
+
+// total counts the values of all groups.
+func total(groups []groupSummary) int {
+	n := 0
+	for _, g := range groups {
+		n += g.n
+	}
+	return n
+}
+
+// dfWithin is the number of values less the number of groups.
+func dfWithin(groups []groupSummary) float64 { return float64(total(groups)) - float64(len(groups)) }
+
+// namesOf lists the names of groups.
+func namesOf(groups []groupSummary) []string {
+	names := make([]string, len(groups))
+	for i, g := range groups {
+		names[i] = g.name
+	}
+	return names
+}
+
+// someNames joins names, at most five of them.
+func someNames(names []string) string {
+	if len(names) > 5 {
+		return strings.Join(names[:4], ", ") + fmt.Sprintf(" and %d more", len(names)-4)
+	}
+	return andList(names)
+}
+
+// theGroups words groups: "The group North", "The groups North and Quay".
+func theGroups(groups []groupSummary) string {
+	if len(groups) == 1 {
+		return "The group " + groups[0].name
+	}
+	return "The groups " + someNames(namesOf(groups))
+}
+
+// groupsInput is the input to which findings about the groups belong.
+func (c *Call) groupsInput() string { return c.firstGiven("samples", "ns") }
+
+// atLeastTwo refuses a comparison of fewer than two groups.
+func (c *Call) atLeastTwo(groups []groupSummary) error {
+	if len(groups) < 2 {
+		return refuse("few-groups", c.groupsInput(), "There is only one group, but at least 2 are needed; widen the condition, or name another group.")
+	}
+	return nil
+}
+
+// ownSpread gives the groups that have an sd of their own. Those of one value
+// are named in a caution and left out.
+func (c *Call) ownSpread(groups []groupSummary) []groupSummary {
+	var with, without []groupSummary
+	for _, g := range groups {
+		if g.n < 2 {
+			without = append(without, g)
+		} else {
+			with = append(with, g)
+		}
+	}
+	if without != nil {
+		verb := "has"
+		if len(without) > 1 {
+			verb = "have"
+		}
+		c.caution("few-values", c.groupsInput(), "%s %s only 1 value, which has no standard deviation of its own: left out. Measure at least 2.",
+			theGroups(without), verb)
+		c.count(total(with))
+	}
+	return with
+}
+
+// noGroupSpread refuses a test for which some groups' values are all equal.
+func (c *Call) noGroupSpread(groups []groupSummary) error {
+	return refuse("no-spread", c.firstGiven("samples", "sds"), "%s: all values equal (sd 0), so neither an interval nor a test exists; "+
+		"check whether the values were rounded or copied down.", theGroups(groups))
+}
+
+// checkGroups raises the cautions of a sample for each group.
+func (c *Call) checkGroups(groups []groupSummary) error {
+	if !checks.Of(c) {
+		return nil
+	}
+	input := c.groupsInput()
+	var few []groupSummary
+	for _, g := range groups {
+		if g.n > 1 && g.n < fewValues {
+			few = append(few, g)
+		}
+	}
+	if few != nil {
+		verb := "has"
+		if len(few) > 1 {
+			verb = "have"
+		}
+		c.caution("few-values", input, "%s %s fewer than %d values: the answer rests on the values being normal. Measure at least %d in each.",
+			theGroups(few), verb, fewValues, fewValues)
+	}
+	for i, g := range groups {
+		if g.values == nil || g.sd == 0 {
+			continue
+		}
+		what, values := "The group "+g.name, withoutGaps(g.values)
+		c.checkSkewness(input, what, values, g.summary)
+		c.checkNeighbours(input, what, g.values, g.summary)
+		c.checkFar(input, what, i, g.values, g.summary)
+		c.checkTail(input, what, values)
+		if err := c.cancelled(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// checkGroupSpreads raises spreads-unlike for the groups that have an sd.
+func (c *Call) checkGroupSpreads(groups []groupSummary) {
+	var given []float64
+	for _, g := range groups {
+		if g.n > 1 {
+			given = append(given, g.sd)
+		}
+	}
+	if len(given) > 1 {
+		c.checkSpreads(c.firstGiven("samples", "sds"), given...)
+	}
+}
