@@ -16,6 +16,8 @@ type Family struct {
 
 // families lists the catalogue in order; a new family is one line here.
 var families = []Family{
+	{"samples", "what a sample looks like", samplesFamily},
+	{"normal", "arithmetic of normal and related distributions", normalFamily},
 	{"averages", "how sure is this average", averages},
 }
 
