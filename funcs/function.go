@@ -95,6 +95,7 @@ type Function struct {
 	Summary     string
 	Inputs      []Input // in catalogue order
 	OneOf       []OneOf
+	Paired      bool     // sample and second-sample are two values of the same rows
 	Results     []Result // the function's own; the common ones belong to all
 	Table       []Result // columns of the table, where the function gives one
 	Findings    []FindingKind
