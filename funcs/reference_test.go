@@ -231,3 +231,43 @@ func within(t *testing.T, what string, got, want, tolerance float64) {
 		t.Errorf("%s: got %.17g, want %.17g within %g", what, got, want, tolerance)
 	}
 }
+
+// resultOf gives a number among the results of an outcome.
+func resultOf(t *testing.T, out *Outcome, name string) float64 {
+	t.Helper()
+	v, ok := out.Get(name)
+	if !ok {
+		t.Fatalf("%s: %s is absent (%s: %s)", out.Function.Name, name, out.Status, Note(out.Findings))
+	}
+	switch x := v.(type) {
+	case float64:
+		return x
+	case int:
+		return float64(x)
+	}
+	t.Fatalf("%s: %s is %v, which is no number", out.Function.Name, name, v)
+	return 0
+}
+
+// absent fails where an outcome has one of the results.
+func absent(t *testing.T, out *Outcome, names ...string) {
+	t.Helper()
+	for _, name := range names {
+		if v, ok := out.Get(name); ok {
+			t.Errorf("%s: %s is %v, want it absent", out.Function.Name, name, v)
+		}
+	}
+}
+
+// refusedFor fails where an outcome was not refused with that code.
+func refusedFor(t *testing.T, out *Outcome, code string) {
+	t.Helper()
+	if out.Status != StatusRefused || out.Findings[0].Code != code {
+		t.Errorf("%s: status %s, findings %v, want refused: %s", out.Function.Name, out.Status, out.Findings, code)
+	}
+}
+
+// raises reports whether an outcome has a finding of that code.
+func raises(out *Outcome, code string) bool {
+	return slices.ContainsFunc(out.Findings, func(f Finding) bool { return f.Code == code })
+}

@@ -19,6 +19,8 @@ var families = []Family{
 	{"samples", "what a sample looks like", samplesFamily},
 	{"normal", "arithmetic of normal and related distributions", normalFamily},
 	{"averages", "how sure is this average", averages},
+	{"spread", "how much do values vary", spread},
+	{"differences", "is it real", differences},
 }
 
 var byName = func() map[string]*Function {

@@ -1,0 +1,94 @@
+package funcs
+
+import (
+	"fmt"
+
+	"halfwidth/funcs/internal/dist"
+)
+
+var differences = []*Function{differenceInterval}
+
+// twoMeansWays are the ways of giving two groups of which the means are compared.
+var twoMeansWays = OneOf{
+	{Needs: []string{"sample", "second-sample"}},
+	{Needs: []string{"first-mean", "first-sd", "first-n", "second-mean", "second-sd", "second-n"}},
+}
+
+var twoMeansAssumptions = []string{
+	"two independent samples of independent values",
+	"normal values, or n large enough for their skewness",
+	"with variances pooled: the same variance in both",
+}
+
+var twoMeansFindings = append(severalChecks[:len(severalChecks):len(severalChecks)], spreadsKind)
+
+// methodText names the interval, its degrees of freedom and the divisor.
+func (m twoMeans) methodText(variances string) string {
+	if variances == pooled {
+		return fmt.Sprintf("t interval with one pooled variance and %s of freedom, sds with divisor n - 1", degrees(m.df))
+	}
+	return fmt.Sprintf("t interval with separate variances and %s of freedom (Welch, Satterthwaite), sds with divisor n - 1", degrees(m.df))
+}
+
+// checkMeans raises the cautions of two samples whose means are compared.
+func (c *Call) checkMeans(first, second summary) error {
+	if variances.Of(c) == pooled {
+		c.checkSpreads(c.firstGiven("sample", "first-sd"), first.sd, second.sd)
+	}
+	return c.checkTwo(first, second)
+}
+
+var differenceInterval = &Function{
+	Name:    "difference-interval",
+	Version: 1,
+	Summary: "difference of two means (first - second) with its confidence interval, and a test",
+	Inputs: inputs(sample, secondSample, firstMean, firstSD, firstN, secondMean, secondSD, secondN, variances,
+		reference.withDefault(0), confidence, direction, checks),
+	OneOf: []OneOf{twoMeansWays},
+	Results: append(intervalResults("difference", "mean of the first sample less that of the second"),
+		resultSE, resultDF, resultT, resultP,
+		Result{"pooled-sd", Number, SameUnit, "root of the variance within both samples"},
+		Result{"standardized-difference", Number, NoUnit, "difference less reference, over pooled-sd, without bias (Hedges)"}),
+	Findings:    twoMeansFindings,
+	Assumptions: twoMeansAssumptions,
+	Citations:   []string{"Welch 1947", "Satterthwaite 1946", "ISO 2854 (pooled)", "Hedges 1981"},
+	Example: Example{
+		Label: "minutes of assembly, old process against new",
+		Arguments: []Argument{
+			{"sample", []float64{32, 37, 35, 28, 41, 44, 35, 31, 34, 38, 42}},
+			{"second-sample", []float64{36, 31, 30, 31, 34, 36, 29, 32, 31}},
+		},
+		Want:      []Argument{{"t", 2.2694}},
+		Tolerance: 2e-5,
+		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.3.1",
+	},
+	compute: func(c *Call) error {
+		first, second, err := c.twoSummaries()
+		if err != nil {
+			return err
+		}
+		kind := variances.Of(c)
+		m := compareMeans(first, second, kind)
+		if m.se == 0 {
+			return c.noSpreadInTwo()
+		}
+		law := dist.Student{DF: m.df}
+		dir, ref := direction.Of(c), reference.Of(c)
+		l := symmetric(confidence.Of(c), dir, m.difference, m.se, law)
+		t := (m.difference - ref) / m.se
+		p := pValue(dir, t, law)
+		c.set("difference", m.difference)
+		c.setLimits(l)
+		c.set("half-width", l.halfWidth(m.difference))
+		c.set("standard-error", m.se)
+		c.set("df", m.df)
+		c.set("t", t)
+		c.set("p-value", p)
+		c.set("pooled-sd", m.pooledSD)
+		c.set("standardized-difference", (m.difference-ref)/m.pooledSD*hedgesFactor(float64(first.n-1)+float64(second.n-1)))
+		c.method = m.methodText(kind)
+		c.say(statement{"difference of means (first - second)", m.difference, l, SameUnit, nTexts(first, second)})
+		c.sayTest(ref, SameUnit, "t", t, p)
+		return c.checkMeans(first, second)
+	},
+}
