@@ -9,7 +9,7 @@ import (
 )
 
 var normalFamily = []*Function{
-	normalProbability, normalQuantile, standardScore, normalTransform,
+	normalProbability, normalQuantile, standardScore, normalTransform, normalSum,
 	tProbability, tQuantile, chiSquareProbability, chiSquareQuantile, fProbability, fQuantile,
 }
 
