@@ -9,7 +9,7 @@ import (
 )
 
 var normalFamily = []*Function{
-	normalProbability, normalQuantile, standardScore, normalTransform, normalSum,
+	normalProbability, normalQuantile, standardScore, normalTransform, normalSum, lognormalProduct,
 	tProbability, tQuantile, chiSquareProbability, chiSquareQuantile, fProbability, fQuantile,
 }
 
@@ -175,16 +175,26 @@ var standardScore = &Function{
 		c.set("probability-below", lower)
 		c.set("probability-above", upper)
 		c.method = "(value - mean)/sd; tails of the normal distribution"
-		side, size := "above", z.Float()
-		if size < 0 {
-			side, size = "below", -size
-		}
-		c.sentence = fmt.Sprintf("%s lies %s standard deviations %s the mean of %s (standard deviation %s); "+
-			"a smaller value has probability %s, a larger one %s (%s).",
-			c.withUnit(shortest(value), SameUnit), brief(size), side, c.withUnit(shortest(law.mean), SameUnit),
+		c.sentence = fmt.Sprintf("%s lies %s the mean of %s (standard deviation %s); a smaller value has probability %s, a larger one %s (%s).",
+			c.withUnit(shortest(value), SameUnit), scoreText(z.Float()), c.withUnit(shortest(law.mean), SameUnit),
 			c.withUnit(shortest(law.sd), SameUnit), chanceText(lower, upper), chanceText(upper, lower), c.method)
 		return nil
 	},
+}
+
+// scoreText words a standard score: "2 standard deviations below", "at".
+func scoreText(z float64) string {
+	side := "above"
+	switch {
+	case z == 0:
+		return "at"
+	case z < 0:
+		z, side = -z, "below"
+	}
+	if z == 1 {
+		return "1 standard deviation " + side
+	}
+	return brief(z) + " standard deviations " + side
 }
 
 var (

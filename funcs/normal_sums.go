@@ -5,7 +5,6 @@ import (
 	"math"
 	"strconv"
 
-	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
 )
 
@@ -106,7 +105,7 @@ var normalSum = &Function{
 }
 
 // sayThreshold gives the probability of passing the threshold, where there is one.
-func (c *Call) sayThreshold(law dist.Distribution) {
+func (c *Call) sayThreshold(law twoTails) {
 	if x, ok := threshold.Given(c); ok {
 		p := law.SF(x)
 		c.set("probability-above", p)
