@@ -21,6 +21,7 @@ var families = []Family{
 	{"averages", "how sure is this average", averages},
 	{"spread", "how much do values vary", spread},
 	{"differences", "is it real", differences},
+	{"sizes", "how many must be measured", sizesFamily},
 }
 
 var byName = func() map[string]*Function {
