@@ -1,12 +1,40 @@
 package ooxml
 
 import (
+	"fmt"
 	"io"
+	"io/fs"
+	"os"
+	"strings"
+	"sync"
 )
 
 // Book is an open workbook. Its methods may be called from several goroutines
 // at once, except Close and SaveInPlace.
 type Book struct {
+	file string      // the name it was opened by
+	disk *os.File    // nil for a book that is not a file
+	info fs.FileInfo // of disk, when it was opened
+	src  io.ReaderAt
+	*container
+
+	workbook   int // the entry of the workbook part
+	sheets     []Sheet
+	entries    []int // of the sheets
+	names      []DefinedName
+	tables     []Table
+	date1904   bool
+	mode       Calculation
+	locked     bool
+	signed     bool
+	chain      bool
+	formats    []Format
+	hasStyles  bool
+	stringPart int // the entry of the shared strings, or -1
+
+	stringsOnce sync.Once
+	strings     *stringTable
+	stringsErr  error
 }
 
 // SheetState says whether a sheet's tab can be seen.
@@ -62,45 +90,180 @@ type Calculation struct {
 
 // Open opens the workbook file. The caller closes it.
 func Open(path string, limits Limits) (*Book, error) {
-	return nil, damaged("not read yet")
+	f, err := os.Open(path)
+	if err != nil {
+		return nil, &Error{File: path, Kind: ErrNotWorkbook, Reason: "the file cannot be opened: " + plainCause(err), Advice: "check its name and that you may read it", Err: err}
+	}
+	info, err := f.Stat()
+	if err == nil && !info.Mode().IsRegular() {
+		err = &Error{File: path, Kind: ErrNotWorkbook, Reason: "this is not a file", Advice: "name a workbook (.xlsx or .xlsm)"}
+	}
+	var b *Book
+	if err == nil {
+		b, err = OpenReaderAt(path, f, info.Size(), limits)
+	}
+	if err != nil {
+		f.Close()
+		return nil, err
+	}
+	b.disk, b.info = f, info
+	return b, nil
 }
 
 // OpenReaderAt opens a workbook held elsewhere than in a file; name stands for
 // it in errors. Such a book cannot be saved in place.
 func OpenReaderAt(name string, r io.ReaderAt, size int64, limits Limits) (*Book, error) {
-	return nil, damaged("not read yet")
+	c, err := openContainer(r, size, limits.WithDefaults())
+	if err != nil {
+		return nil, place(err, name, "", "")
+	}
+	b := &Book{file: name, src: r, container: c, stringPart: -1}
+	if err := b.readParts(); err != nil {
+		return nil, place(err, name, "", "")
+	}
+	return b, nil
+}
+
+// readParts follows the relationships from the package to the workbook part and
+// from there to the others.
+func (b *Book) readParts() error {
+	roots, err := b.relations("")
+	if err != nil {
+		return err
+	}
+	b.workbook = -1
+	for _, r := range roots {
+		switch {
+		case r.kind == "origin" && r.target != "" || strings.HasPrefix(r.target, "_xmlsignatures/"):
+			b.signed = true
+		case r.isOffice && r.kind == "officeDocument" && b.workbook < 0:
+			b.workbook = b.find(r.target)
+			if b.workbook < 0 {
+				return missing("the workbook", r.target)
+			}
+		}
+	}
+	if b.workbook < 0 {
+		return b.noWorkbook()
+	}
+	part := b.name(b.workbook)
+	if strings.HasSuffix(strings.ToLower(part), ".bin") {
+		return &Error{Kind: ErrNotWorkbook, Part: part, Reason: "the workbook is in the binary form of the format", Advice: "open it in a spreadsheet program and save it as .xlsx or .xlsm"}
+	}
+	list, err := b.relations(part)
+	if err != nil {
+		return err
+	}
+	byID := make(map[string]relation, len(list))
+	for _, r := range list {
+		byID[r.id] = r
+	}
+	if err := b.readWorkbook(byID); err != nil {
+		return err
+	}
+	for _, r := range list {
+		if !r.isOffice || r.target == "" {
+			continue
+		}
+		switch entry := b.find(r.target); r.kind {
+		case "sharedStrings":
+			if entry < 0 {
+				return missing("the shared strings", r.target)
+			}
+			b.stringPart = entry
+		case "styles":
+			if entry < 0 {
+				return missing("the styles", r.target)
+			}
+			if err := b.readStyles(entry); err != nil {
+				return err
+			}
+		case "calcChain":
+			b.chain = entry >= 0
+		}
+	}
+	return b.readTables()
+}
+
+// noWorkbook says what a zip file is that leads to no workbook part.
+func (b *Book) noWorkbook() error {
+	e := &Error{Kind: ErrNotWorkbook, Reason: "the zip file holds no workbook", Advice: "name a workbook (.xlsx or .xlsm)"}
+	switch {
+	case b.find("mimetype") >= 0 && b.find("content.xml") >= 0:
+		e.Reason, e.Advice = "the file is an OpenDocument file", "save it as .xlsx"
+	case b.find("xl/workbook.xml") >= 0:
+		e = missing("the workbook", "")
+		e.Part = relationsPart("")
+	}
+	return e
 }
 
 // Close lets go of the file.
-func (b *Book) Close() error { return nil }
+func (b *Book) Close() error {
+	if b.disk == nil {
+		return nil
+	}
+	err := b.disk.Close()
+	b.disk = nil
+	return err
+}
 
 // Name is the name or path that the book was opened by.
-func (b *Book) Name() string { return "" }
+func (b *Book) Name() string { return b.file }
 
 // Sheets lists the tabs in their order. The caller must not change the list.
-func (b *Book) Sheets() []Sheet { return nil }
+func (b *Book) Sheets() []Sheet { return b.sheets }
 
 // SheetIndex finds a sheet by its name, without regard to case; -1 if there is none.
-func (b *Book) SheetIndex(name string) int { return -1 }
+func (b *Book) SheetIndex(name string) int {
+	for i := range b.sheets {
+		if strings.EqualFold(b.sheets[i].Name, name) {
+			return i
+		}
+	}
+	return -1
+}
 
 // Date1904 tells whether dates count from 1904-01-01 instead of 1899-12-31.
-func (b *Book) Date1904() bool { return false }
+func (b *Book) Date1904() bool { return b.date1904 }
 
 // Calculation says when the book's formulas are worked out.
-func (b *Book) Calculation() Calculation { return Calculation{} }
+func (b *Book) Calculation() Calculation { return b.mode }
 
 // DefinedNames lists the names of the book and of its sheets, in file order.
-func (b *Book) DefinedNames() []DefinedName { return nil }
+// The caller must not change the list.
+func (b *Book) DefinedNames() []DefinedName { return b.names }
 
-// Tables lists the tables of all sheets, in the order of the sheets.
-func (b *Book) Tables() []Table { return nil }
+// Tables lists the tables of all sheets, in the order of the sheets. The caller
+// must not change the list.
+func (b *Book) Tables() []Table { return b.tables }
 
 // Signed tells whether the book carries a digital signature, which any change breaks.
-func (b *Book) Signed() bool { return false }
+func (b *Book) Signed() bool { return b.signed }
 
 // StructureLocked tells whether the book is protected against added and removed sheets.
-func (b *Book) StructureLocked() bool { return false }
+func (b *Book) StructureLocked() bool { return b.locked }
 
 // HasCalculationChain tells whether the book lists cells with formulas. A book
 // without the list may still have formulas; SheetFacts.Formulas counts them.
-func (b *Book) HasCalculationChain() bool { return false }
+func (b *Book) HasCalculationChain() bool { return b.chain }
+
+// sheetEntry gives the entry of a worksheet, or why there is none.
+func (b *Book) sheetEntry(sheet int) (int, error) {
+	if sheet < 0 || sheet >= len(b.sheets) {
+		return 0, &Error{File: b.file, Kind: ErrEdit, Reason: fmt.Sprintf("there is no sheet number %d", sheet+1), Advice: fmt.Sprintf("the book has %d", len(b.sheets))}
+	}
+	if s := b.sheets[sheet]; s.Kind != Worksheet {
+		return 0, &Error{File: b.file, Part: s.Part, Sheet: s.Name, Kind: ErrEdit, Reason: "the sheet is a chart, dialog or macro sheet, without a table of cells", Advice: "name a worksheet"}
+	}
+	return b.entries[sheet], nil
+}
+
+// plainCause is an error's text without the operation and path that this
+// package names itself.
+func plainCause(err error) string {
+	if p, ok := err.(*fs.PathError); ok {
+		return p.Err.Error()
+	}
+	return err.Error()
+}

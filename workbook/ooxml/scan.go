@@ -1,5 +1,7 @@
 package ooxml
 
+import "errors"
+
 // CellType is the type of the value that a cell holds.
 type CellType uint8
 
@@ -98,5 +100,155 @@ type SheetFacts struct {
 // The whole part is read and checked, unless visit returns an error, which Scan
 // returns as it is. The values of a scan that ends in an error must not be used.
 func (b *Book) Scan(sheet int, options ScanOptions, visit func(*Row) error) (SheetFacts, error) {
-	return SheetFacts{}, damaged("not read yet")
+	entry, err := b.sheetEntry(sheet)
+	if err != nil {
+		return SheetFacts{}, err
+	}
+	return b.scanEntry(sheet, entry, options, visit, nil)
+}
+
+func (b *Book) scanEntry(sheet, entry int, options ScanOptions, visit func(*Row) error, plan *planner) (SheetFacts, error) {
+	name, part := b.sheets[sheet].Name, b.name(entry)
+	r, err := b.open(entry)
+	if err == nil {
+		r, _, err = xmlReader(r)
+	}
+	if err != nil {
+		return SheetFacts{}, place(err, b.file, part, name)
+	}
+	s := newScanner(newLexer(r, blockSize, b.limits), options, visit)
+	s.styles, s.date1904, s.table, s.plan = b.styleLimit(), b.date1904, b.sharedStrings, plan
+	if err := s.run(); err != nil {
+		var stopped visitError
+		if errors.As(err, &stopped) {
+			return s.facts, stopped.error
+		}
+		return s.facts, place(err, b.file, part, name)
+	}
+	return s.facts, nil
+}
+
+// visitError carries an error of the caller's own past the code that adds
+// places to errors.
+type visitError struct{ error }
+
+// scanner reads one worksheet.
+type scanner struct {
+	*lexer
+	options  ScanOptions
+	visit    func(*Row) error
+	facts    SheetFacts
+	plan     *planner // learns where cells stand, for a splice; nil for a plain scan
+	date1904 bool
+	styles   int
+	careful  bool // the fast paths are off
+
+	// The shared strings, fetched when the first cell points to one.
+	table   func() (*stringTable, error)
+	strings *stringTable
+	classes []uint16 // by index; see class
+
+	row      Row
+	known    bool   // the number of the row is known
+	fast     bool   // its cells may be read by the fast path
+	rowTag   tagAt  // where the row's start tag stands
+	prefix   []byte // of rows and cells, with its colon
+	lastRow  int    // of the row before
+	lastCol  int    // of the cell before
+	rowsSeen []uint64
+	colsSeen []uint32 // the stamp of the row that last held the column
+	stamp    uint32
+	texts    []byte // the texts of the row's cells
+	scratch  []byte // the value of the current cell, decoded
+	current  Cell   // the cell that the general path read last
+}
+
+func newScanner(x *lexer, options ScanOptions, visit func(*Row) error) *scanner {
+	if options.Columns == nil {
+		options.Columns = AllColumns()
+	}
+	return &scanner{lexer: x, options: options, visit: visit, styles: 1 << 30,
+		rowsSeen: make([]uint64, maxRows/64+1), colsSeen: make([]uint32, maxColumns+1)}
+}
+
+// run reads the part to its end.
+func (s *scanner) run() error {
+	for s.kind = tokenText; s.kind == tokenText; {
+		if err := s.next(); err != nil {
+			return err
+		}
+	}
+	if !s.is("worksheet") {
+		return s.wrong("the part holds a <%.40s>, not a worksheet", s.local)
+	}
+	seen := false
+	err := s.children(func() error {
+		if s.space != spaceMain {
+			return nil
+		}
+		switch string(s.local) {
+		case "sheetData":
+			if seen {
+				return s.wrong("the sheet's cells are given in two places")
+			}
+			seen = true
+			return s.sheetData()
+		case "dimension":
+			s.plan.dimension(s.lexer)
+		case "cols":
+			return s.columnStyles()
+		case "mergeCells":
+			return s.children(func() error { return s.mergedRange() })
+		case "autoFilter":
+			if r, ok := ParseRange(string(trimSpace(s.attr("ref")))); ok {
+				s.facts.AutoFilter = &r
+			}
+		case "sheetProtection":
+			s.facts.Protected = s.facts.Protected || s.flag("sheet")
+		}
+		return nil
+	})
+	if err != nil {
+		return err
+	}
+	for s.kind != tokenEOF {
+		if err := s.next(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+func (s *scanner) mergedRange() error {
+	if !s.is("mergeCell") {
+		return nil
+	}
+	ref, err := s.attrText("ref")
+	if err != nil {
+		return err
+	}
+	r, ok := ParseRange(ref)
+	if !ok {
+		return s.wrong("a merged range is %.40q", ref)
+	}
+	s.facts.Merged = append(s.facts.Merged, r)
+	return nil
+}
+
+// columnStyle is the style that new cells take in some columns.
+type columnStyle struct{ first, last, style int }
+
+func (s *scanner) columnStyles() error {
+	return s.children(func() error {
+		if s.plan == nil || !s.is("col") {
+			return nil
+		}
+		var c columnStyle
+		var err [3]error
+		c.first, err[0] = s.number("min", 0)
+		c.last, err[1] = s.number("max", 0)
+		c.style, err[2] = s.number("style", 0)
+		s.plan.columns = append(s.plan.columns, c)
+		return errors.Join(err[:]...)
+	})
 }

@@ -1,0 +1,205 @@
+package ooxml
+
+import (
+	"archive/zip"
+	"bufio"
+	"errors"
+	"fmt"
+	"hash"
+	"hash/crc32"
+	"io"
+	"net/url"
+	"path"
+	"strings"
+	"sync"
+
+	"github.com/klauspost/compress/flate"
+)
+
+// container is the zip file that holds the parts.
+type container struct {
+	zip    *zip.Reader
+	size   int64
+	limits Limits
+	index  map[string]int // entry by partKey
+
+	mu    sync.Mutex
+	read  map[int]bool // entries that count in total
+	total int64        // inflated bytes of the entries read so far
+}
+
+// partKey makes names comparable: parts are the same whose names differ in
+// ASCII case only (ECMA-376 part 2, 6.2.2.3). Backslashes and names with . or ..
+// come from careless writers; no name is ever used as a path.
+func partKey(name string) string {
+	name = path.Clean("/" + strings.ReplaceAll(name, `\`, "/"))
+	return strings.Map(func(c rune) rune {
+		if 'A' <= c && c <= 'Z' {
+			return c + 'a' - 'A'
+		}
+		return c
+	}, name[1:])
+}
+
+// openContainer reads the directory of the zip file.
+func openContainer(r io.ReaderAt, size int64, limits Limits) (*container, error) {
+	zr, err := zip.NewReader(r, size)
+	if err != nil && !errors.Is(err, zip.ErrInsecurePath) {
+		return nil, notZip(r, size, err)
+	}
+	c := &container{zip: zr, size: size, limits: limits, index: make(map[string]int), read: make(map[int]bool)}
+	if len(zr.File) > limits.Entries {
+		return nil, beyond(fmt.Sprintf("the file holds %d parts, the limit is %d", len(zr.File), limits.Entries), "Entries")
+	}
+	for i, f := range zr.File {
+		if strings.HasSuffix(f.Name, "/") {
+			continue
+		}
+		key := partKey(f.Name)
+		if first, ok := c.index[key]; ok {
+			e := damaged(fmt.Sprintf("two parts have this name, %s and %s", zr.File[first].Name, f.Name))
+			e.Part = f.Name
+			return nil, e
+		}
+		c.index[key] = i
+	}
+	return c, nil
+}
+
+// find gives the entry of a part, or -1. A name taken from a relationship may
+// be percent-encoded where the entry's name is not.
+func (c *container) find(name string) int {
+	if i, ok := c.index[partKey(name)]; ok {
+		return i
+	}
+	if plain, err := url.PathUnescape(name); err == nil {
+		if i, ok := c.index[partKey(plain)]; ok {
+			return i
+		}
+	}
+	return -1
+}
+
+func (c *container) name(entry int) string { return c.zip.File[entry].Name }
+
+// open starts to read an entry. The reader's last Read reports a wrong length or
+// checksum instead of the end.
+func (c *container) open(entry int) (io.Reader, error) {
+	f := c.zip.File[entry]
+	fail := func(e *Error) (io.Reader, error) {
+		e.Part = f.Name
+		return nil, e
+	}
+	if f.Flags&1 != 0 {
+		return fail(&Error{Kind: ErrEncrypted, Reason: "the part is encrypted", Advice: adviceEncrypted})
+	}
+	size := int64(f.UncompressedSize64)
+	switch {
+	case f.CompressedSize64 > uint64(c.size):
+		return fail(damaged("the part is longer than the file"))
+	case size < 0 || size > c.limits.PartBytes:
+		return fail(beyond(fmt.Sprintf("the part inflates to %d bytes, the limit is %d", f.UncompressedSize64, c.limits.PartBytes), "PartBytes"))
+	case size > c.limits.RatioFrom && size/c.limits.Ratio > int64(f.CompressedSize64):
+		return fail(beyond(fmt.Sprintf("the part inflates from %d to %d bytes, more than %d to 1", f.CompressedSize64, size, c.limits.Ratio), "Ratio"))
+	}
+	if err := c.count(entry, size); err != nil {
+		return fail(err)
+	}
+	raw, err := f.OpenRaw()
+	if err != nil {
+		e := damaged("the part does not start where the file's directory says")
+		e.Err = err
+		return fail(e)
+	}
+	p := &partReader{size: size, sum: f.CRC32, hash: crc32.NewIEEE()}
+	switch f.Method {
+	case zip.Store:
+		p.src = raw
+	case zip.Deflate:
+		p.src = flate.NewReader(bufio.NewReaderSize(raw, 64<<10))
+	default:
+		return fail(damaged(fmt.Sprintf("the part is compressed by method %d; only stored and deflated parts can be read", f.Method)))
+	}
+	return p, nil
+}
+
+func (c *container) count(entry int, size int64) *Error {
+	c.mu.Lock()
+	defer c.mu.Unlock()
+	if c.read[entry] {
+		return nil
+	}
+	if c.total+size > c.limits.TotalBytes {
+		return beyond(fmt.Sprintf("the parts read inflate to more than %d bytes", c.limits.TotalBytes), "TotalBytes")
+	}
+	c.read[entry] = true
+	c.total += size
+	return nil
+}
+
+// load reads a whole entry.
+func (c *container) load(entry int) ([]byte, error) {
+	r, err := c.open(entry)
+	if err != nil {
+		return nil, err
+	}
+	f := c.zip.File[entry]
+	if int64(f.UncompressedSize64) > c.limits.HeldBytes {
+		e := beyond(fmt.Sprintf("the part inflates to %d bytes, the limit for parts kept in memory is %d", f.UncompressedSize64, c.limits.HeldBytes), "HeldBytes")
+		e.Part = f.Name
+		return nil, e
+	}
+	data := make([]byte, f.UncompressedSize64)
+	_, err = io.ReadFull(r, data)
+	if err == nil {
+		// One more read fetches the verdict on length and checksum.
+		if _, err = io.ReadFull(r, make([]byte, 1)); err == io.EOF {
+			return data, nil
+		}
+	}
+	return nil, place(err, "", f.Name, "")
+}
+
+// partReader inflates one part and holds it against its length and checksum.
+type partReader struct {
+	src  io.Reader
+	hash hash.Hash32
+	sum  uint32
+	size int64
+	n    int64
+	err  error
+}
+
+func (p *partReader) Read(b []byte) (int, error) {
+	if p.err != nil {
+		return 0, p.err
+	}
+	n, err := p.src.Read(b)
+	p.hash.Write(b[:n])
+	p.n += int64(n)
+	switch {
+	case p.n > p.size:
+		n, err = 0, damaged(fmt.Sprintf("the part is longer than the %d bytes that the file's directory gives", p.size))
+	case err == nil:
+	case err == io.EOF || errors.Is(err, io.ErrUnexpectedEOF):
+		if p.n != p.size || err != io.EOF {
+			n, err = 0, damaged(fmt.Sprintf("the part is cut short: %d of %d bytes", p.n, p.size))
+		} else if p.hash.Sum32() != p.sum {
+			n, err = 0, damaged("the part's checksum is wrong: some of its bytes changed after it was saved")
+		}
+	default:
+		cause := err
+		var corrupt flate.CorruptInputError
+		var internal flate.InternalError
+		if errors.As(err, &corrupt) || errors.As(err, &internal) {
+			e := damaged(fmt.Sprintf("the part cannot be inflated after %d of %d bytes", p.n, p.size))
+			e.Err = cause
+			err = e
+		} else {
+			err = &Error{Kind: ErrDamaged, Reason: "the part cannot be read: " + cause.Error(), Advice: "check the disk or the connection, then try again", Err: cause}
+		}
+		n = 0
+	}
+	p.err = err
+	return n, err
+}
