@@ -1,0 +1,19 @@
+// Package rpc answers JSON-RPC 2.0 requests framed as in the base protocol of
+// the Language Server Protocol 3.17, over any pair of byte streams.
+//
+// Contract:
+//   - Nothing but frames is written to the output. Remarks for people go to the
+//     third stream, one line each, and are dropped rather than waited for.
+//   - Every request is answered exactly once, with the text of its id as it
+//     came. A message that cannot be read is answered with id null, and the
+//     connection goes on at the next Content-Length line.
+//   - Messages are taken in the order of arrival. Notifications and quick calls
+//     run to their end before the next message is looked at; long calls run on
+//     a few workers, from what their handler captured while it was still in turn.
+//   - A result never holds NaN or an infinite number, an error never has code 0.
+//
+// A message passes, in this order: frames.go (bytes to bodies), envelope.go (a
+// body to its members), transport.go (one message for the library, or an answer
+// to a faulty one), session.go (life cycle, order, cancelling), a handler of the
+// table in methods.go, and writer.go (the reply to bytes).
+package rpc

@@ -1,0 +1,189 @@
+package rpc
+
+import (
+	"encoding/json"
+	"errors"
+	"fmt"
+	"math"
+	"reflect"
+	"strings"
+)
+
+// decodeStrict fills in a struct from params by name. Members are matched by
+// their exact names; one that is unknown, given twice, null or of another kind
+// is refused, and so is the lack of one that is not marked omitempty. Fields are
+// string, bool, int (a whole number), float64, []float64 (gaps NaN), Value,
+// structs, and slices of and pointers to these. A progress token may always come along.
+func decodeStrict(raw []byte, target any) error {
+	v := Value{Kind: Object}
+	if len(raw) > 0 {
+		var err error
+		if v, err = ParseValue(raw, ""); err != nil {
+			return err
+		}
+	}
+	return fill(reflect.ValueOf(target).Elem(), v, "params")
+}
+
+var (
+	valueType   = reflect.TypeFor[Value]()
+	numbersType = reflect.TypeFor[[]float64]()
+)
+
+// fill stores v, which came under the name given.
+func fill(target reflect.Value, v Value, name string) error {
+	if target.Type() == valueType {
+		target.Set(reflect.ValueOf(v))
+		return nil
+	}
+	if v.Kind == Null {
+		return badParams(v.Pointer, name, "is null", "leave it out, or give "+wanted(target.Type()))
+	}
+	switch {
+	case target.Kind() == reflect.Pointer:
+		target.Set(reflect.New(target.Type().Elem()))
+		return fill(target.Elem(), v, name)
+	case target.Type() == numbersType && v.Kind == Numbers:
+		target.Set(reflect.ValueOf(v.Numbers))
+		return nil
+	case target.Type() == numbersType:
+		return fillNothing(target, v, name)
+	case target.Kind() == reflect.Struct && v.Kind == Object:
+		return fillStruct(target, v, name)
+	case target.Kind() == reflect.Slice && (v.Kind == List || v.Kind == Numbers):
+		elements := v.Elements()
+		target.Set(reflect.MakeSlice(target.Type(), len(elements), len(elements)))
+		for i, element := range elements {
+			if err := fill(target.Index(i), element, fmt.Sprintf("%s, element %d,", name, i+1)); err != nil {
+				return err
+			}
+		}
+		return nil
+	case target.Kind() == reflect.String && v.Kind == Text:
+		target.SetString(v.Text)
+		return nil
+	case target.Kind() == reflect.Bool && v.Kind == YesNo:
+		target.SetBool(v.YesNo)
+		return nil
+	case target.Kind() == reflect.Float64 && v.Kind == Number:
+		target.SetFloat(v.Number)
+		return nil
+	case target.Kind() == reflect.Int && v.Kind == Number:
+		const most = 1 << 53 // beyond it not every whole number is a double
+		if v.Number != math.Trunc(v.Number) || math.Abs(v.Number) > most {
+			return badParams(v.Pointer, name, "is "+string(appendNumber(nil, v.Number)), "give a whole number")
+		}
+		target.SetInt(int64(v.Number))
+		return nil
+	}
+	return fillNothing(target, v, name)
+}
+
+// fillNothing says what came and what belongs there. Of a list of numbers it
+// names the first element that is none.
+func fillNothing(target reflect.Value, v Value, name string) error {
+	if target.Type() == numbersType && v.Kind == List {
+		for i, element := range v.List {
+			if element.Kind != Number && element.Kind != Null {
+				return badParams(element.Pointer, fmt.Sprintf("%s, element %d,", name, i+1), "is "+element.Kind.String(), "give a number, or null for a gap")
+			}
+		}
+	}
+	return badParams(v.Pointer, name, "is "+v.Kind.String(), "give "+wanted(target.Type()))
+}
+
+func wanted(t reflect.Type) string {
+	switch {
+	case t == numbersType:
+		return Numbers.String()
+	case t.Kind() == reflect.Pointer:
+		return wanted(t.Elem())
+	case t.Kind() == reflect.String:
+		return Text.String()
+	case t.Kind() == reflect.Bool:
+		return YesNo.String()
+	case t.Kind() == reflect.Int:
+		return "a whole number"
+	case t.Kind() == reflect.Float64:
+		return Number.String()
+	case t.Kind() == reflect.Slice:
+		return List.String()
+	}
+	return Object.String()
+}
+
+// fieldOf reads a field's json tag; embedded structs are not used in params.
+func fieldOf(f reflect.StructField) (name string, required bool) {
+	name, options, _ := strings.Cut(f.Tag.Get("json"), ",")
+	return name, options != "omitempty"
+}
+
+func fillStruct(target reflect.Value, v Value, name string) error {
+	t := target.Type()
+	names := make([]string, t.NumField())
+	places := make(map[string]int, t.NumField())
+	for i := range t.NumField() {
+		names[i], _ = fieldOf(t.Field(i))
+		places[names[i]] = i
+	}
+	given := make(map[string]bool, len(v.Members))
+	for _, m := range v.Members {
+		given[m.Name] = true
+		i, known := places[m.Name]
+		switch {
+		case known:
+			if err := fill(target.Field(i), m.Value, m.Name); err != nil {
+				return err
+			}
+		case m.Name == "workDoneToken" && v.Pointer == "":
+		default:
+			return unknownMember(m, names)
+		}
+	}
+	for i := range t.NumField() {
+		if member, required := fieldOf(t.Field(i)); required && !given[member] {
+			return badParams(pointerTo(v.Pointer, member), member, "is missing", "give "+wanted(t.Field(i).Type))
+		}
+	}
+	return nil
+}
+
+func unknownMember(m Member, names []string) error {
+	advice := "no members are taken here"
+	if len(names) > 0 {
+		advice = "the members are " + strings.Join(names, ", ")
+	}
+	fault := badParams(m.Value.Pointer, m.Name, "is unknown", advice)
+	if best := near(m.Name, names); best != "" {
+		fault = badParams(m.Value.Pointer, m.Name, "is unknown", fmt.Sprintf("did you mean %s?", best))
+		fault.Message = strings.TrimSuffix(fault.Message, ".")
+		fault.Data.Suggestion = best
+	}
+	return fault
+}
+
+// lastOf gives the last name in a JSON Pointer.
+func lastOf(pointer string) string {
+	last := pointer[strings.LastIndexByte(pointer, '/')+1:]
+	return strings.NewReplacer("~1", "/", "~0", "~").Replace(last)
+}
+
+// decodeLenient is encoding/json's reading with our errors.
+func decodeLenient(raw []byte, target any) error {
+	if len(raw) == 0 {
+		return nil
+	}
+	err := json.Unmarshal(raw, target)
+	var kind *json.UnmarshalTypeError
+	switch {
+	case err == nil:
+		return nil
+	case errors.As(err, &kind):
+		pointer := ""
+		if kind.Field != "" {
+			pointer = "/" + strings.ReplaceAll(kind.Field, ".", "/")
+		}
+		return badParams(pointer, lastOf(pointer), "is "+kind.Value, "give "+wanted(kind.Type))
+	}
+	return badParams("", "params", "cannot be read: "+err.Error(), "")
+}

@@ -1,0 +1,76 @@
+package rpc
+
+import (
+	"container/list"
+	"context"
+	"sync"
+)
+
+// pool runs long calls in their order, a few at a time. Workers exist only
+// while there is work.
+type pool struct {
+	limits Limits
+
+	mu      sync.Mutex
+	waiting list.List // of *Call
+	bytes   int       // params of those waiting
+	workers int
+}
+
+// add queues a call, or reports that the queue is full.
+func (p *pool) add(call *Call) bool {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	idle := p.workers < p.limits.Workers
+	if !idle && (p.waiting.Len() >= p.limits.Queue || p.waiting.Len() > 0 && p.bytes+call.size > p.limits.QueueBytes) {
+		return false
+	}
+	call.place = p.waiting.PushBack(call)
+	p.bytes += call.size
+	if idle {
+		p.workers++
+		go p.work()
+	}
+	return true
+}
+
+// drop takes a call out of the queue, if it still is in it, unrun.
+func (p *pool) drop(call *Call) {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	p.remove(call)
+}
+
+func (p *pool) remove(call *Call) {
+	if call.place != nil {
+		p.waiting.Remove(call.place)
+		p.bytes -= call.size
+		call.place = nil
+	}
+}
+
+func (p *pool) take() *Call {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	front := p.waiting.Front()
+	if front == nil {
+		p.workers--
+		return nil
+	}
+	call := front.Value.(*Call)
+	p.remove(call)
+	return call
+}
+
+func (p *pool) work() {
+	for call := p.take(); call != nil; call = p.take() {
+		result, err := call.guard(func() (any, error) { return call.run(call.ctx) })
+		if rest, ok := result.(later); ok && err == nil {
+			result, err = call.guard(func() (any, error) { return rest(call.ctx) })
+		}
+		if err == nil && context.Cause(call.ctx) != nil {
+			err = errCancelled // what was worked out after a cancel counts for nothing
+		}
+		call.answer(result, err, false)
+	}
+}

@@ -1,0 +1,345 @@
+package rpc
+
+import (
+	"bytes"
+	"context"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"runtime/debug"
+	"strings"
+	"sync"
+	"time"
+
+	"github.com/sourcegraph/jsonrpc2"
+)
+
+// Session is one client's connection from the first message to the exit code.
+// What is not guarded by mu belongs to the goroutine that reads messages.
+type Session struct {
+	options Options
+	limits  Limits
+	methods map[string]*Method
+	names   []string // of the methods, in the table's order
+	stream  *stream
+	writer  *frameWriter
+	remarks *remarks
+	conn    *jsonrpc2.Conn
+	ctx     context.Context // ends when the session does
+	stop    context.CancelFunc
+
+	// Changed in turn by lifecycle.go, read anywhere.
+	mu       sync.Mutex
+	phase    phase
+	client   Client
+	encoding string
+	trace    string
+	ended    chan struct{}
+	code     int
+
+	// Calls that have been left to workers, and what else is under way.
+	calls    map[*Call]struct{}
+	byKey    map[string]*Call
+	underWay int
+	settled  *sync.Cond // underWay has become 0, or waiting for that is over
+	pool     pool
+}
+
+type phase uint8
+
+const (
+	fresh    phase = iota // nothing but initialize is taken
+	open                  // initialize has been answered
+	shutDown              // nothing but exit is taken
+	over                  // nothing is taken
+)
+
+func newSession(ctx context.Context, out *frameWriter, remarks *remarks, opts Options) *Session {
+	s := &Session{
+		options: opts, limits: opts.Limits, writer: out, remarks: remarks,
+		methods: map[string]*Method{}, encoding: "utf-16", trace: "off", ended: make(chan struct{}),
+		calls: map[*Call]struct{}{}, byKey: map[string]*Call{},
+	}
+	s.settled = sync.NewCond(&s.mu)
+	s.ctx, s.stop = context.WithCancel(ctx)
+	s.pool.limits = s.limits
+	for i := range opts.Methods {
+		m := &opts.Methods[i]
+		s.methods[m.Name] = m
+		s.names = append(s.names, m.Name)
+	}
+	return s
+}
+
+// Handle is called by the library with what the stream gave it: the mark of a
+// message that the stream holds.
+func (s *Session) Handle(_ context.Context, _ *jsonrpc2.Conn, req *jsonrpc2.Request) {
+	e, ok := s.stream.take(req.Meta)
+	if !ok {
+		s.remarks.say("a message was lost between stream and session")
+		return
+	}
+	call := &Call{Method: e.method, Params: json.RawMessage(e.params), Session: s, id: e.id, key: idKey(e.id), came: time.Now()}
+	method := s.methods[e.method]
+	if call.id == nil {
+		s.notified(call, method)
+		return
+	}
+	if refusal := s.refusal(call, method); refusal != nil {
+		call.answer(nil, refusal, true)
+		return
+	}
+	s.start(call, method)
+}
+
+// notified runs a notification to its end. None is ever answered.
+func (s *Session) notified(call *Call, method *Method) {
+	now := s.now()
+	switch {
+	case now == over:
+	case method == nil && strings.HasPrefix(call.Method, "$/"):
+	case method == nil:
+		s.remarks.say("the notification %.100q is unknown and was passed over%s", call.Method, orNear(call.Method, s.names))
+	case !method.Notification:
+		s.remarks.say("%s came without an id, so its answer would reach nobody; it was passed over", call.Method)
+	case method.When != Always && now != open:
+		s.remarks.say("%s came before initialize or after shutdown and was passed over", call.Method)
+	default:
+		_, err := call.guard(func() (any, error) { return s.byName(call, method) })
+		call.answer(nil, err, true)
+	}
+}
+
+// refusal says why a request is not run, or nil.
+func (s *Session) refusal(call *Call, method *Method) *Error {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if _, taken := s.byKey[call.key]; taken {
+		// Under its own id the refusal would pass for the other's answer.
+		id := call.id
+		call.id, call.key = []byte("null"), ""
+		return invalidRequest(fmt.Sprintf("The id %.100s belongs to a request that has not been answered yet; give each request an id of its own.", id))
+	}
+	starting := method != nil && method.When == Starting
+	switch {
+	case s.phase == fresh && !starting && (method == nil || method.When != Always):
+		return &Error{Code: CodeNotInitialized, Message: fmt.Sprintf("Send initialize before %.100s.", call.Method)}
+	case s.phase == shutDown || s.phase == over:
+		return invalidRequest("The server has been shut down; only the notification exit is taken now.")
+	case method == nil:
+		return &Error{Code: CodeMethodNotFound, Message: fmt.Sprintf("There is no method %.100q%s", call.Method, orNear(call.Method, s.names)),
+			Data: &ErrorData{Suggestion: near(call.Method, s.names)}}
+	case method.Notification:
+		return invalidRequest(fmt.Sprintf("%s is a notification; send it without an id.", call.Method))
+	case starting && s.phase != fresh:
+		return invalidRequest("initialize has been answered already; it is sent once.")
+	}
+	return nil
+}
+
+// byName runs the handler, unless the params came by position where it takes
+// them by name. Methods without params pass over whatever came.
+func (s *Session) byName(call *Call, method *Method) (any, error) {
+	if method.Params != nil && len(call.Params) > 0 && call.Params[0] == '[' {
+		return nil, badParams("", "params", "came as a list", fmt.Sprintf("%s takes them by name, as an object", call.Method))
+	}
+	ctx := call.ctx
+	if ctx == nil {
+		ctx = s.ctx
+	}
+	return method.Handler(ctx, call)
+}
+
+// start runs a request in turn, or as far as its handler wants and the rest by a worker.
+func (s *Session) start(call *Call, method *Method) {
+	run := later(func(ctx context.Context) (any, error) { return s.byName(call, method) })
+	if !method.Long {
+		result, err := call.guard(func() (any, error) { return run(s.ctx) })
+		rest, ok := result.(later)
+		if !ok || err != nil {
+			call.answer(result, err, true)
+			return
+		}
+		run = rest
+	}
+	call.run, call.size = run, len(call.Params)
+	call.ctx, call.cancel = context.WithCancel(s.ctx)
+	s.mu.Lock()
+	s.calls[call] = struct{}{}
+	if call.key != "" {
+		s.byKey[call.key] = call
+	}
+	s.underWay++
+	s.mu.Unlock()
+	if !s.pool.add(call) {
+		call.answer(nil, &Error{Code: CodeServerCancelled, Message: fmt.Sprintf("%d long calls are waiting already; send this one again when some have been answered.", s.limits.Queue)}, true)
+	}
+}
+
+// forget frees the id of a call that is being answered.
+func (s *Session) forget(call *Call) {
+	if call.run == nil {
+		return
+	}
+	s.mu.Lock()
+	delete(s.calls, call)
+	if call.key != "" {
+		delete(s.byKey, call.key)
+	}
+	s.less()
+	s.mu.Unlock()
+	call.cancel()
+}
+
+// less is called with mu held.
+func (s *Session) less() {
+	s.underWay--
+	if s.underWay == 0 {
+		s.settled.Broadcast()
+	}
+}
+
+// cancel answers a call that its client has given up, waiting or running.
+func (s *Session) cancelCall(key string) {
+	s.mu.Lock()
+	call := s.byKey[key]
+	s.mu.Unlock()
+	if call == nil || key == "" {
+		return // answered already, or never sent: LSP wants no error
+	}
+	s.pool.drop(call)
+	call.cancel()
+	call.answer(nil, errCancelled, true)
+}
+
+// inputEnded lets what is under way come to its end, up to the limit, and ends
+// the session.
+func (s *Session) inputEnded() {
+	s.mu.Lock()
+	late := false
+	timer := time.AfterFunc(s.limits.Drain, func() {
+		s.mu.Lock()
+		late = true
+		s.settled.Broadcast()
+		s.mu.Unlock()
+	})
+	for s.underWay > 0 && !late && s.phase != over {
+		s.settled.Wait()
+	}
+	s.mu.Unlock()
+	timer.Stop()
+	s.end("")
+}
+
+// end ends the session: with 0 after shutdown, else with 1. A reason is told
+// to the error stream. Calls under way are answered.
+func (s *Session) end(reason string) {
+	s.mu.Lock()
+	if s.phase == over {
+		s.mu.Unlock()
+		return
+	}
+	s.code = 1
+	if s.phase == shutDown {
+		s.code = 0
+	}
+	s.phase = over
+	var left []*Call
+	for call := range s.calls {
+		left = append(left, call)
+	}
+	s.settled.Broadcast()
+	s.mu.Unlock()
+	if reason != "" {
+		s.remarks.say("%s", reason)
+	}
+	for _, call := range left {
+		s.pool.drop(call)
+		call.answer(nil, &Error{Code: CodeServerCancelled, Message: "The server is ending; the call was given up."}, false)
+	}
+	s.stop()
+	close(s.ended)
+}
+
+func (s *Session) now() phase {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.phase
+}
+
+// Go runs work that belongs to no call, such as publishing results after a
+// change. Its context ends with the session; at end of input it is waited for
+// like a call. A panic in it is told to the error stream.
+func (s *Session) Go(name string, work func(ctx context.Context)) {
+	s.mu.Lock()
+	s.underWay++
+	s.mu.Unlock()
+	go func() {
+		defer func() {
+			if fault := recover(); fault != nil {
+				s.remarks.trace(fmt.Sprintf("fault in %s: %v", name, fault), debug.Stack())
+			}
+			s.mu.Lock()
+			s.less()
+			s.mu.Unlock()
+		}()
+		work(s.ctx)
+	}()
+}
+
+// Client tells what the client said of itself at initialize.
+func (s *Session) Client() Client {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.client
+}
+
+// PositionEncoding is how the client counts columns: "utf-16", or "utf-8"
+// where it offered that.
+func (s *Session) PositionEncoding() string {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.encoding
+}
+
+func (s *Session) traced() bool {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.trace != "off" && s.phase == open
+}
+
+// Notify sends a notification. It does not wait for the client.
+func (s *Session) Notify(method string, params any) {
+	if err := s.conn.Notify(s.ctx, method, params); err != nil && !errors.Is(err, jsonrpc2.ErrClosed) && s.ctx.Err() == nil {
+		s.remarks.say("the notification %s was not sent: %v", method, err)
+	}
+}
+
+// Ask calls a method of the client's and waits for the reply or for ctx. Only
+// workers and Go may ask: the reply is read by the goroutine that runs
+// handlers in turn.
+func (s *Session) Ask(ctx context.Context, method string, params, result any) error {
+	return s.conn.Call(ctx, method, params, result)
+}
+
+// Levels of LogMessage (MessageType of LSP).
+const (
+	LogError = 1 + iota
+	LogWarning
+	LogInfo
+	LogLog
+)
+
+// LogMessage sends a line to the client's log.
+func (s *Session) LogMessage(level int, text string) {
+	s.Notify("window/logMessage", map[string]any{"type": level, "message": text})
+}
+
+// answerFault answers a message that could not be taken. The id is null where
+// it could not be read.
+func (s *Session) answerFault(id []byte, fault *Error) {
+	buf := buffers.Get().(*bytes.Buffer)
+	defer buffers.Put(buf)
+	encodeFailure(buf, id, fault)
+	_ = s.writer.gather(buf.Bytes())
+}
