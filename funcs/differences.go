@@ -6,7 +6,7 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-var differences = []*Function{differenceInterval}
+var differences = []*Function{differenceInterval, ratioInterval, equivalenceTest, analysisOfVariance}
 
 // twoMeansWays are the ways of giving two groups of which the means are compared.
 var twoMeansWays = OneOf{
@@ -23,11 +23,11 @@ var twoMeansAssumptions = []string{
 var twoMeansFindings = append(severalChecks[:len(severalChecks):len(severalChecks)], spreadsKind)
 
 // methodText names the interval, its degrees of freedom and the divisor.
-func (m twoMeans) methodText(variances string) string {
+func (m twoMeans) methodText(interval, variances string) string {
 	if variances == pooled {
-		return fmt.Sprintf("t interval with one pooled variance and %s of freedom, sds with divisor n - 1", degrees(m.df))
+		return fmt.Sprintf("%s with one pooled variance and %s of freedom, sds with divisor n - 1", interval, degrees(m.df))
 	}
-	return fmt.Sprintf("t interval with separate variances and %s of freedom (Welch, Satterthwaite), sds with divisor n - 1", degrees(m.df))
+	return fmt.Sprintf("%s with separate variances and %s of freedom by Satterthwaite, sds with divisor n - 1", interval, degrees(m.df))
 }
 
 // checkMeans raises the cautions of two samples whose means are compared.
@@ -86,8 +86,8 @@ var differenceInterval = &Function{
 		c.set("p-value", p)
 		c.set("pooled-sd", m.pooledSD)
 		c.set("standardized-difference", (m.difference-ref)/m.pooledSD*hedgesFactor(float64(first.n-1)+float64(second.n-1)))
-		c.method = m.methodText(kind)
-		c.say(statement{"difference of means (first - second)", m.difference, l, SameUnit, nTexts(first, second)})
+		c.method = m.methodText("t interval", kind)
+		c.say(statement{what: "difference of means (first - second)", estimate: m.difference, limits: l, unit: SameUnit, counts: nTexts(first, second)})
 		c.sayTest(ref, SameUnit, "t", t, p)
 		return c.checkMeans(first, second)
 	},

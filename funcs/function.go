@@ -71,11 +71,13 @@ type Result struct {
 }
 
 // Example is a worked example. Want holds the results that its source gives,
-// each to the relative tolerance Tolerance.
+// WantRows the values of the table's rows, in order (a row without any is not
+// compared); each to the relative tolerance Tolerance.
 type Example struct {
 	Label     string
 	Arguments []Argument
 	Want      []Argument
+	WantRows  [][]Argument
 	Tolerance float64
 	Source    string
 }

@@ -3,6 +3,7 @@ package funcs
 import (
 	"context"
 	"errors"
+	"fmt"
 	"math"
 	"slices"
 	"testing"
@@ -41,21 +42,21 @@ func TestEveryExampleGivesWhatItsSourceSays(t *testing.T) {
 			t.Errorf("%s: refused: %s", f.Name, Note(out.Findings))
 			continue
 		}
-		if len(f.Example.Want) == 0 || f.Example.Source == "" {
+		if len(f.Example.Want)+len(f.Example.WantRows) == 0 || f.Example.Source == "" {
 			t.Errorf("%s: the example names no wanted value or no source", f.Name)
 		}
 		for _, want := range f.Example.Want {
 			got, ok := out.Get(want.Name)
-			if !ok {
-				t.Errorf("%s: %s is absent, want %v", f.Name, want.Name, want.Value)
-				continue
+			f.Example.compare(t, f.Name, got, ok, want)
+		}
+		for i, row := range f.Example.WantRows {
+			if i >= len(out.Rows) {
+				t.Errorf("%s: its table has %d rows, want %d", f.Name, len(out.Rows), len(f.Example.WantRows))
+				break
 			}
-			if w, isNumber := want.Value.(float64); isNumber {
-				if g := got.(float64); !(math.Abs(g-w) <= f.Example.Tolerance*math.Abs(w)) {
-					t.Errorf("%s: %s = %v, want %v within %g (%s)", f.Name, want.Name, g, w, f.Example.Tolerance, f.Example.Source)
-				}
-			} else if got != want.Value {
-				t.Errorf("%s: %s = %v, want %v (%s)", f.Name, want.Name, got, want.Value, f.Example.Source)
+			for _, want := range row {
+				got, ok := out.Rows[i].Values[want.Name]
+				f.Example.compare(t, fmt.Sprintf("%s, row %d", f.Name, i+1), got, ok, want)
 			}
 		}
 		for _, name := range []string{"status", "method", "citation", "sentence", "version", "fingerprint"} {
@@ -64,6 +65,20 @@ func TestEveryExampleGivesWhatItsSourceSays(t *testing.T) {
 			}
 		}
 		checkDeclared(t, f, out)
+	}
+}
+
+// compare fails where a result is not what the example's source says.
+func (e Example) compare(t *testing.T, where string, got any, ok bool, want Argument) {
+	t.Helper()
+	w, isNumber := want.Value.(float64)
+	switch {
+	case !ok:
+		t.Errorf("%s: %s is absent, want %v", where, want.Name, want.Value)
+	case !isNumber && got != want.Value:
+		t.Errorf("%s: %s = %v, want %v (%s)", where, want.Name, got, want.Value, e.Source)
+	case isNumber && !(math.Abs(got.(float64)-w) <= e.Tolerance*math.Abs(w)):
+		t.Errorf("%s: %s = %v, want %v within %g (%s)", where, want.Name, got, w, e.Tolerance, e.Source)
 	}
 }
 

@@ -108,9 +108,12 @@ type statement struct {
 }
 
 // say composes the sentence: estimate, limits, level, direction, n and method.
-func (c *Call) say(s statement) {
+func (c *Call) say(s statement) { c.sayAt(confidence.Of(c), s) }
+
+// sayAt is say for an interval whose confidence is no input.
+func (c *Call) sayAt(confidence float64, s statement) {
 	place := lastPlace(s.limits.halfWidth(s.estimate), s.estimate)
-	level := percent(confidence.Of(c))
+	level := percent(confidence)
 	var b strings.Builder
 	fmt.Fprintf(&b, "The %s is %s", s.what, c.withUnit(toPlace(s.estimate, place), s.unit))
 	switch direction := direction.Of(c); {

@@ -8,7 +8,7 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
-var spread = []*Function{pooledVariance, varianceInterval, varianceRatioInterval}
+var spread = []*Function{pooledVariance, varianceInterval, varianceRatioInterval, equalSpreadTest}
 
 var (
 	noFewGroups   = FindingKind{"few-groups", "fewer than 2 groups"}
@@ -50,13 +50,12 @@ func (c *Call) setVariance(name, rootName string, variance, sd float64, l limits
 	}
 }
 
-// sayVariance composes the sentence of an interval for a variance, and adds the
-// standard deviation with the same limits' roots.
-func (c *Call) sayVariance(what string, variance, sd float64, l limits, counts string) {
-	c.say(statement{what + "variance", variance, l, SquaredUnit, counts})
+// sayRoot adds the standard deviation to the sentence, with the roots of the
+// variance's limits.
+func (c *Call) sayRoot(what string, sd float64, l limits) {
 	root := limits{math.Sqrt(l.lower), math.Sqrt(l.upper), l.hasLower, l.hasUpper}
 	place := lastPlace(root.halfWidth(sd), sd)
-	text := " The " + what + "standard deviation is " + c.withUnit(toPlace(sd, place), SameUnit)
+	text := " The " + what + " is " + c.withUnit(toPlace(sd, place), SameUnit)
 	switch {
 	case l.hasLower && l.hasUpper:
 		text += ", interval " + toPlace(root.lower, place) + " to " + toPlace(root.upper, place)
@@ -141,7 +140,9 @@ var pooledVariance = &Function{
 		c.set("groups", len(groups))
 		c.set("n", total(groups))
 		c.method = fmt.Sprintf("equal-tailed chi-square interval with %s of freedom, sum of squares within groups over their n - 1", degrees(df))
-		c.sayVariance("pooled ", variance, sd, l, fmt.Sprintf("n = %d in %s", total(groups), plural(len(groups), "group")))
+		c.say(statement{what: "pooled variance", estimate: variance, limits: l, unit: SquaredUnit,
+			counts: fmt.Sprintf("n = %d in %s", total(groups), plural(len(groups), "group"))})
+		c.sayRoot("pooled standard deviation", sd, l)
 		c.checkGroupSpreads(groups)
 		return c.checkGroups(groups)
 	},
@@ -186,7 +187,7 @@ var varianceInterval = &Function{
 		if dir != either {
 			c.method = fmt.Sprintf("chi-square limit with %s of freedom, variance with divisor n - 1", degrees(df))
 		}
-		c.sayVariance("", variance, s.sd, l, nText(s.n))
+		c.say(statement{what: "variance", estimate: variance, limits: l, unit: SquaredUnit, counts: nText(s.n)})
 		if ref, ok := reference.Given(c); ok {
 			chi := df * (variance / ref)
 			p := pValue(dir, chi, dist.ChiSquare{DF: df})
@@ -194,6 +195,7 @@ var varianceInterval = &Function{
 			c.set("p-value", p)
 			c.sayTest(ref, SquaredUnit, "chi-square", chi, p)
 		}
+		c.sayRoot("standard deviation", s.sd, l)
 		return c.checkSample(sample)
 	},
 }
@@ -250,7 +252,7 @@ var varianceRatioInterval = &Function{
 		c.set("second-df", law.DF2)
 		c.set("p-value", p)
 		c.method = fmt.Sprintf("F interval with %s and %s of freedom, variances with divisor n - 1", brief(law.DF1), degrees(law.DF2))
-		c.say(statement{"ratio of variances (first over second)", ratio, l, NoUnit, nTexts(first, second)})
+		c.say(statement{what: "ratio of variances (first over second)", estimate: ratio, limits: l, counts: nTexts(first, second)})
 		c.sayTest(ref, NoUnit, "f", f, p)
 		return c.checkTwo(first, second)
 	},
