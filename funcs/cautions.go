@@ -164,7 +164,7 @@ func hillTail(values []float64, confidence float64) (tailIndex, bool) {
 	}
 	var sum float64
 	for _, x := range d[n-k:] {
-		sum += math.Log(x / base)
+		sum += num.Log(x / base)
 	}
 	if sum <= 0 {
 		return tailIndex{}, false
@@ -191,7 +191,8 @@ func skewness(m num.Summary) float64 {
 	if m.N < 3 || m.SumSquares == 0 {
 		return 0
 	}
-	g1 := m.Sum3 / n / math.Pow(m.SumSquares/n, 1.5)
+	variance := m.SumSquares / n
+	g1 := m.Sum3 / n / variance / math.Sqrt(variance)
 	return g1 * math.Sqrt(n*(n-1)) / (n - 2)
 }
 
@@ -202,5 +203,5 @@ func excessKurtosis(m num.Summary) float64 {
 		return 0
 	}
 	g2 := n*(m.Sum4/m.SumSquares)/m.SumSquares - 3
-	return (n - 1) / ((n - 2) * (n - 3)) * ((n+1)*g2 + 6)
+	return (n - 1) / ((n - 2) * (n - 3)) * (float64((n+1)*g2) + 6)
 }
