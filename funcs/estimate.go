@@ -143,10 +143,8 @@ func (c *Call) pairs() (summary, []float64, error) {
 		return s, nil, err
 	}
 	second := secondSample.Of(c)
-	if len(first) != len(second) {
-		return summary{}, nil, c.wrong("second-sample", plural(len(second), "value"),
-			fmt.Sprintf("must pair with sample (%s) value by value", plural(len(first), "value")),
-			"give two columns of the same rows, or use difference-interval for separate groups")
+	if err := c.sameLength(first, second); err != nil {
+		return summary{}, nil, err
 	}
 	differences := make([]float64, len(first))
 	for i := range first {
@@ -157,11 +155,25 @@ func (c *Call) pairs() (summary, []float64, error) {
 	}
 	s := summarise(withoutGaps(differences))
 	c.count(s.n)
-	if s.n < 2 {
-		return s, nil, refuse("few-values", "sample", "Only %s complete, but at least 2 are needed; fill in the missing partners.",
-			plural(s.n, "pair"))
+	return s, differences, c.enoughPairs(s.n)
+}
+
+// sameLength refuses two samples that cannot pair value by value.
+func (c *Call) sameLength(first, second []float64) error {
+	if len(first) == len(second) {
+		return nil
 	}
-	return s, differences, nil
+	return c.wrong("second-sample", plural(len(second), "value"),
+		fmt.Sprintf("must pair with sample (%s) value by value", plural(len(first), "value")),
+		"give two columns of the same rows, or use difference-interval for separate groups")
+}
+
+// enoughPairs refuses fewer than two complete pairs.
+func (c *Call) enoughPairs(n int) error {
+	if n < 2 {
+		return refuse("few-values", "sample", "Only %s complete, but at least 2 are needed; fill in the missing partners.", plural(n, "pair"))
+	}
+	return nil
 }
 
 // correlation of the complete pairs of two lists; not where one has no spread.

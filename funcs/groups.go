@@ -18,34 +18,43 @@ type groupSummary struct {
 // means where the function takes them. The sd of a group of one value is 0
 // here; a function that needs it leaves the group out (see ownSpread).
 func (c *Call) readGroups() ([]groupSummary, error) {
+	groups, _, err := c.readGroupsWith()
+	return groups, err
+}
+
+// readGroupsWith is readGroups together with further lists that have a number
+// for each group, such as the sizes of strata.
+func (c *Call) readGroupsWith(further ...In[List]) ([]groupSummary, [][]float64, error) {
 	var groups []groupSummary
 	if given, ok := samples.Given(c); ok {
 		for _, g := range given {
 			groups = append(groups, groupSummary{g.Name, g.Values, summarise(withoutGaps(g.Values))})
 		}
-	} else {
-		lists := []In[List]{sds, ns}
-		if c.has("means") {
-			lists = []In[List]{means, sds, ns}
+		c.count(total(groups))
+		_, columns, err := c.matched(namesOf(groups), further...)
+		return groups, columns, err
+	}
+	lists := append([]In[List]{sds, ns}, further...)
+	if c.has("means") {
+		lists = append([]In[List]{means}, lists...)
+	}
+	names, columns, err := c.matched(nil, lists...)
+	if err != nil {
+		return nil, nil, err
+	}
+	at := len(lists) - len(further) - 2 // of the sds, before the ns
+	for i, name := range names {
+		g := groupSummary{name: name, summary: summary{n: int(columns[at+1][i]), sd: columns[at][i]}}
+		if at > 0 {
+			g.mean = columns[0][i]
 		}
-		names, columns, err := c.matched(nil, lists...)
-		if err != nil {
-			return nil, err
+		if g.n < 2 {
+			g.sd = 0
 		}
-		last := len(columns) - 1
-		for i, name := range names {
-			g := groupSummary{name: name, summary: summary{n: int(columns[last][i]), sd: columns[last-1][i]}}
-			if last == 2 {
-				g.mean = columns[0][i]
-			}
-			if g.n < 2 {
-				g.sd = 0
-			}
-			groups = append(groups, g)
-		}
+		groups = append(groups, g)
 	}
 	c.count(total(groups))
-	return groups, nil
+	return groups, columns[at+2:], nil
 }
 
 // matched gives the values of lists that go together, one group a place, and

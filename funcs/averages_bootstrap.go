@@ -1,0 +1,174 @@
+package funcs
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
+)
+
+var bootstrapOf = choice("of", "the quantity", "mean", "median", "sd", "trimmed-mean")
+
+var tooFewResamplesKind = FindingKind{"too-few-resamples", "a limit lies beyond the resamples, or its correction does not exist"}
+
+var bootstrapInterval = &Function{
+	Name:    "bootstrap-interval",
+	Version: 1,
+	Summary: "interval for a mean, median, sd or trimmed mean from resamples, corrected for bias and acceleration",
+	Inputs:  inputs(sample, bootstrapOf, trimmedEachEnd, resamplesInput, seedInput, confidence, direction, checks),
+	Results: []Result{
+		{"estimate", Number, SameUnit, "the quantity of the sample"},
+		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
+		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		{"bias", Number, SameUnit, "mean of the resampled quantities less the estimate"},
+	},
+	Findings:    []FindingKind{fewValuesKind, noSpreadKind, neighboursKind, heavyTailKind, tooFewResamplesKind},
+	Assumptions: []string{"independent values of one population", "a sample large enough to show what the population is like"},
+	Citations:   []string{"Efron 1987 (BCa)"},
+	Example: Example{
+		Label:     "ten values",
+		Arguments: []Argument{{"sample", []float64{2, 4, 6, 7, 8, 9, 10, 11, 13, 20}}, {"resamples", 2000}},
+		Want:      []Argument{{"estimate", 9.0}},
+		Tolerance: 1e-15,
+		Source:    "the mean of the ten values; the limits depend on the draws",
+	},
+	compute: func(c *Call) error {
+		values := withoutGaps(sample.Of(c))
+		s := summarise(values)
+		c.count(s.n)
+		switch {
+		case s.n < 3:
+			return tooFew("sample", s.n, 3)
+		case s.sd == 0:
+			return c.noSpread("sample")
+		}
+		quantity, what, err := c.bootstrapQuantity(s.n)
+		if err != nil {
+			return err
+		}
+		estimate := quantity(slices.Clone(values))
+		replicates := make([]float64, resamplesInput.Of(c))
+		err = resample(c.ctx, seedInput.Of(c), len(replicates), func() func(int, *num.Stream) {
+			drawn := make([]float64, s.n)
+			return func(i int, stream *num.Stream) {
+				stream.Resample(drawn, values)
+				replicates[i] = quantity(drawn)
+			}
+		})
+		if err != nil {
+			return err
+		}
+		bias := num.Mean(replicates) - estimate
+		b, err := newBCa(estimate, replicates, acceleration(values, quantity))
+		if err != nil {
+			return err
+		}
+		var limitErr error
+		l := limitsOf(confidence.Of(c), direction.Of(c),
+			func(q float64) float64 { return b.limit(dist.Normal{}.Quantile(q), &limitErr) },
+			func(q float64) float64 { return b.limit(dist.Normal{}.UpperQuantile(q), &limitErr) })
+		if limitErr != nil {
+			return limitErr
+		}
+		c.set("estimate", estimate)
+		c.setLimits(l)
+		c.set("bias", bias)
+		c.method = fmt.Sprintf("BCa bootstrap, %d resamples, seed %d", len(replicates), seedInput.Of(c))
+		c.say(statement{what, estimate, l, SameUnit, nText(s.n)})
+		if checks.Of(c) {
+			c.checkFew("sample", "The sample", s.n)
+			c.checkNeighbours("sample", "The sample", sample.Of(c), s)
+			c.checkTail("sample", "The sample", values)
+		}
+		return nil
+	},
+}
+
+// bootstrapQuantity gives the function that computes the quantity asked for
+// from values that it may put in another order, and the quantity in words.
+func (c *Call) bootstrapQuantity(n int) (func([]float64) float64, string, error) {
+	switch bootstrapOf.Of(c) {
+	case "median":
+		return func(v []float64) float64 { slices.Sort(v); return num.Median(v) }, "median", nil
+	case "sd":
+		return func(v []float64) float64 { return summarise(v).sd }, "standard deviation", nil
+	case "trimmed-mean":
+		share := trimmedEachEnd.Of(c)
+		// The jackknife leaves one value out, so one more must remain.
+		if n-1-2*wholeDown(float64(share*float64(n-1))) < 1 {
+			return nil, "", refuse("few-values", "sample", "No value is left after trimming; measure more or trim less.")
+		}
+		return func(v []float64) float64 {
+			slices.Sort(v)
+			g := wholeDown(float64(share * float64(len(v))))
+			return num.Mean(v[g : len(v)-g])
+		}, "trimmed mean", nil
+	}
+	return num.Mean, "mean", nil
+}
+
+// acceleration is Σd³/(6(Σd²)^1.5) over the jackknife, d the mean of the
+// leave-one-out quantities less each; 0 where they all agree (Efron 1987,
+// equation 7.3; Efron & Tibshirani 1993, equation 14.15).
+func acceleration(values []float64, quantity func([]float64) float64) float64 {
+	left := make([]float64, len(values))
+	scratch := make([]float64, len(values)-1)
+	for i := range values {
+		copy(scratch, values[:i])
+		copy(scratch[i:], values[i+1:])
+		left[i] = quantity(scratch)
+	}
+	m := num.Moments(left)
+	if m.SumSquares == 0 {
+		return 0
+	}
+	return -m.Sum3 / m.SumSquares / math.Sqrt(m.SumSquares) / 6
+}
+
+// bca finds limits among sorted replicates.
+type bca struct {
+	sorted    []float64
+	z0, accel float64
+}
+
+func newBCa(estimate float64, replicates []float64, accel float64) (bca, error) {
+	slices.Sort(replicates)
+	from, _ := slices.BinarySearch(replicates, estimate)
+	to := from
+	for to < len(replicates) && replicates[to] == estimate {
+		to++
+	}
+	below, above := float64(from)+float64(to-from)/2, float64(len(replicates)-to)+float64(to-from)/2
+	if below == 0 || above == 0 {
+		return bca{}, refuse("too-few-resamples", "resamples", "All resampled quantities lie on one side of the estimate, so its bias cannot be corrected; "+
+			"draw more resamples, or use the interval made for this quantity.")
+	}
+	total := float64(len(replicates))
+	z0 := dist.Normal{}.Quantile(below / total)
+	if below > above {
+		z0 = dist.Normal{}.UpperQuantile(above / total)
+	}
+	return bca{replicates, z0, accel}, nil
+}
+
+// limit interpolates at α(B+1), α the corrected probability that belongs to
+// the normal quantile z; the first failure is kept in err.
+func (b bca) limit(z float64, err *error) float64 {
+	w := b.z0 + z
+	d := 1 - float64(b.accel*w)
+	size := float64(len(b.sorted))
+	at := dist.Normal{}.CDF(b.z0+w/d) * (size + 1)
+	if d <= 0 || !(at >= 1 && at <= size) {
+		if *err == nil {
+			*err = refuse("too-few-resamples", "resamples", "A limit lies beyond the %d resamples; draw more, or ask for less confidence.", len(b.sorted))
+		}
+		return 0
+	}
+	k := int(at)
+	if k == len(b.sorted) {
+		return b.sorted[k-1]
+	}
+	return b.sorted[k-1] + float64((at-float64(k))*(b.sorted[k]-b.sorted[k-1]))
+}

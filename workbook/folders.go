@@ -1,0 +1,52 @@
+package workbook
+
+import (
+	"errors"
+	"fmt"
+	"os"
+	"path/filepath"
+	"strings"
+
+	"halfwidth/workbook/calculation"
+	"halfwidth/workbook/ooxml"
+)
+
+// folders are where the files that expressions name may lie: the folder of the
+// workbook and those below it, and folders that the person running the command
+// named.
+type folders struct {
+	dirs   []string
+	limits ooxml.Limits
+	opened map[string]calculation.Source
+}
+
+// newFolders gives the folders for a workbook.
+func newFolders(book string, named []string, limits ooxml.Limits) folders {
+	return folders{dirs: append([]string{filepath.Dir(book)}, named...), limits: limits, opened: map[string]calculation.Source{}}
+}
+
+// find resolves a file name. Symbolic links are followed before the check, so
+// that none leads out of the folders.
+func (f folders) find(file string) (string, error) {
+	local := filepath.FromSlash(strings.ReplaceAll(file, `\`, "/"))
+	if !filepath.IsLocal(local) {
+		return "", errors.New("leads out of the workbook's folder; put the file beside the workbook, or name its folder with --data")
+	}
+	for _, dir := range f.dirs {
+		root, err := filepath.EvalSymlinks(dir)
+		if err != nil {
+			continue
+		}
+		path, err := filepath.EvalSymlinks(filepath.Join(root, local))
+		if err != nil {
+			continue
+		}
+		if inside, err := filepath.Rel(root, path); err != nil || !filepath.IsLocal(inside) {
+			return "", errors.New("is a link that leads out of the workbook's folder; put the file itself beside the workbook, or name its folder with --data")
+		}
+		if info, err := os.Stat(path); err == nil && info.Mode().IsRegular() {
+			return path, nil
+		}
+	}
+	return "", fmt.Errorf("is not there; looked in %s", strings.Join(f.dirs, ", "))
+}
