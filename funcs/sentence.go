@@ -139,11 +139,16 @@ func (c *Call) sayAt(confidence float64, s statement) {
 
 // sayTest adds the comparison with the reference to the sentence.
 func (c *Call) sayTest(reference float64, u Unit, statistic string, value, p float64) {
-	sided := "two-sided "
-	if d := direction.Of(c); d != either {
-		sided = "one-sided (" + d + ") "
+	c.sentence += fmt.Sprintf(" Against the reference %s: %s = %s, %s%s.", c.withUnit(shortest(reference), u), statistic, brief(value),
+		sided(direction.Of(c)), pText(p))
+}
+
+// sided words which tails a p-value counts.
+func sided(direction string) string {
+	if direction == either {
+		return "two-sided "
 	}
-	c.sentence += fmt.Sprintf(" Against the reference %s: %s = %s, %s%s.", c.withUnit(shortest(reference), u), statistic, brief(value), sided, pText(p))
+	return "one-sided (" + direction + ") "
 }
 
 // plural words a count: "1 value", "3 values".
