@@ -6,7 +6,7 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-var differences = []*Function{differenceInterval, ratioInterval, equivalenceTest, analysisOfVariance}
+var differences = []*Function{differenceInterval, ratioInterval, equivalenceTest, analysisOfVariance, adjustedPValues}
 
 // twoMeansWays are the ways of giving two groups of which the means are compared.
 var twoMeansWays = OneOf{
