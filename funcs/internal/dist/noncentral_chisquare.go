@@ -1,0 +1,85 @@
+package dist
+
+import (
+	"math"
+)
+
+// NoncentralChiSquare is the law of the sum of DF squared normal variables of
+// sd 1 whose squared means sum to Noncentrality. DF > 0 need not be whole.
+// Relative error of both tails 1e-13 for noncentralities to 1e4, 1e-12 beyond.
+type NoncentralChiSquare struct{ DF, Noncentrality float64 }
+
+func (d NoncentralChiSquare) valid() bool {
+	return d.DF > 0 && !math.IsInf(d.DF, 1) && d.Noncentrality >= 0
+}
+
+func (d NoncentralChiSquare) tail(x float64, upper bool) float64 {
+	atZero, atInfinity := 0.0, 1.0
+	if upper {
+		atZero, atInfinity = 1, 0
+	}
+	switch {
+	case !d.valid() || math.IsNaN(x):
+		return math.NaN()
+	case x <= 0:
+		return atZero
+	case math.IsInf(x, 1):
+		return atInfinity
+	case math.IsInf(d.Noncentrality, 1):
+		return atZero
+	}
+	a, y := max(d.DF/2, 1e-300), x/2
+	if d.Noncentrality/2 == 0 {
+		low, high := GammaTails(a, y)
+		if upper {
+			return high
+		}
+		return low
+	}
+	m := poissonMixture{
+		mean: d.Noncentrality / 2,
+		// j (j + a) = mean y
+		saddle: 2 * math.Sqrt(d.Noncentrality/2) * math.Sqrt(y) /
+			(a/2/math.Sqrt(d.Noncentrality/2)/math.Sqrt(y) + math.Hypot(a/2/math.Sqrt(d.Noncentrality/2)/math.Sqrt(y), 1)) / 2,
+		tails: func(j float64) (float64, float64) { return GammaTails(a+j, y) },
+		drop:  func(j float64) float64 { return GammaPrefactor(a+j, y) / (a + j) },
+		ratio: func(j float64) float64 { return y / (a + j + 1) },
+	}
+	return m.tail(upper)
+}
+
+// CDF is P(X <= x).
+func (d NoncentralChiSquare) CDF(x float64) float64 { return d.tail(x, false) }
+
+// SF is P(X > x).
+func (d NoncentralChiSquare) SF(x float64) float64 { return d.tail(x, true) }
+
+// Between is P(a <= X <= b).
+func (d NoncentralChiSquare) Between(a, b float64) float64 { return difference(d, a, b) }
+
+// Quantile is x with P(X <= x) = p.
+func (d NoncentralChiSquare) Quantile(p float64) float64 {
+	return d.solve(p, 1-p)
+}
+
+// UpperQuantile is x with P(X > x) = q.
+func (d NoncentralChiSquare) UpperQuantile(q float64) float64 {
+	return d.solve(1-q, q)
+}
+
+// solve finds x from whichever tail is smaller.
+func (d NoncentralChiSquare) solve(p, q float64) float64 {
+	mean := d.DF + d.Noncentrality
+	spread := math.Sqrt(2*mean+2*d.Noncentrality) / mean
+	switch {
+	case !d.valid() || !(p >= 0 && q >= 0):
+		return math.NaN()
+	case math.IsInf(d.Noncentrality, 1) || q == 0:
+		return math.Inf(1)
+	case p == 0:
+		return 0
+	case p <= q:
+		return solvePositive(d.CDF, p, mean, spread)
+	}
+	return solvePositive(d.SF, q, mean, spread)
+}

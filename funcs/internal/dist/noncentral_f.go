@@ -1,0 +1,96 @@
+package dist
+
+import "math"
+
+// NoncentralF is the law of (X/DF1)/(Y/DF2), with X noncentral chi-square and Y
+// independent chi-square. DF1 and DF2 (> 0) may be infinite.
+// Relative error of both tails 1e-13 for noncentralities to 1e4, 1e-12 beyond.
+type NoncentralF struct{ DF1, DF2, Noncentrality float64 }
+
+func (d NoncentralF) valid() bool { return d.DF1 > 0 && d.DF2 > 0 && d.Noncentrality >= 0 }
+
+func (d NoncentralF) tail(x float64, upper bool) float64 {
+	atZero, atInfinity := 0.0, 1.0
+	if upper {
+		atZero, atInfinity = 1, 0
+	}
+	switch {
+	case !d.valid() || math.IsNaN(x):
+		return math.NaN()
+	case x <= 0:
+		return atZero
+	case math.IsInf(x, 1):
+		return atInfinity
+	case math.IsInf(d.Noncentrality, 1):
+		return atZero
+	case d.Noncentrality/2 == 0 || math.IsInf(d.DF1, 1):
+		if upper {
+			return F{d.DF1, d.DF2}.SF(x)
+		}
+		return F{d.DF1, d.DF2}.CDF(x)
+	case math.IsInf(d.DF2, 1):
+		return NoncentralChiSquare{d.DF1, d.Noncentrality}.tail(d.DF1*x, upper)
+	}
+	r := d.DF1 / d.DF2 * x
+	if math.IsInf(r, 1) {
+		return atInfinity
+	}
+	if r == 0 {
+		return atZero
+	}
+	a, b := max(d.DF1/2, 1e-300), max(d.DF2/2, 1e-300)
+	y, z := r/(1+r), 1/(1+r)
+	mean := d.Noncentrality / 2
+	// j (a + j) = mean y (a + b + j)
+	c := mean * y
+	root := math.Hypot(a-c, 2*math.Sqrt(c)*math.Sqrt(a+b))
+	saddle := (c - a + root) / 2
+	if a > c {
+		saddle = 2 * c * ((a + b) / (a - c + root))
+	}
+	m := poissonMixture{
+		mean:   mean,
+		saddle: saddle,
+		tails:  func(j float64) (float64, float64) { return BetaTails(y, z, a+j, b) },
+		drop:   func(j float64) float64 { return BetaPrefactor(y, z, a+j, b) / (a + j) },
+		ratio:  func(j float64) float64 { return y * ((a + b + j) / (a + j + 1)) },
+	}
+	return m.tail(upper)
+}
+
+// CDF is P(X <= x).
+func (d NoncentralF) CDF(x float64) float64 { return d.tail(x, false) }
+
+// SF is P(X > x).
+func (d NoncentralF) SF(x float64) float64 { return d.tail(x, true) }
+
+// Between is P(a <= X <= b).
+func (d NoncentralF) Between(a, b float64) float64 { return difference(d, a, b) }
+
+// Quantile is x with P(X <= x) = p.
+func (d NoncentralF) Quantile(p float64) float64 { return d.solve(p, 1-p) }
+
+// UpperQuantile is x with P(X > x) = q.
+func (d NoncentralF) UpperQuantile(q float64) float64 { return d.solve(1-q, q) }
+
+// solve finds x from whichever tail is smaller.
+func (d NoncentralF) solve(p, q float64) float64 {
+	switch {
+	case !d.valid() || !(p >= 0 && q >= 0):
+		return math.NaN()
+	case math.IsInf(d.Noncentrality, 1) || q == 0:
+		return math.Inf(1)
+	case p == 0:
+		return 0
+	}
+	centre, spread := 1.0, math.Sqrt(2/d.DF2)
+	if !math.IsInf(d.DF1, 1) {
+		mean := d.DF1 + d.Noncentrality
+		centre = mean / d.DF1
+		spread = math.Hypot(spread, math.Sqrt(2*mean+2*d.Noncentrality)/mean)
+	}
+	if p <= q {
+		return solvePositive(d.CDF, p, centre, spread)
+	}
+	return solvePositive(d.SF, q, centre, spread)
+}

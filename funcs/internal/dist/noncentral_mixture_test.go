@@ -1,0 +1,158 @@
+package dist
+
+import (
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"strconv"
+	"strings"
+	"testing"
+)
+
+// testdata/references/numerics: Poisson mixtures and quadratures at 60 digits.
+func TestNoncentralChiSquareAndFMatchHighPrecision(t *testing.T) {
+	for _, file := range []string{"noncentral_chi_square.csv", "noncentral_f.csv"} {
+		for _, r := range highPrecisionRows(t, file) {
+			var d Distribution
+			if file == "noncentral_f.csv" {
+				d = NoncentralF{r.number(t, "df1"), r.number(t, "df2"), r.number(t, "lambda")}
+			} else {
+				d = NoncentralChiSquare{r.number(t, "df"), r.number(t, "lambda")}
+			}
+			got := d.CDF(r.number(t, "x"))
+			if strings.HasSuffix(r.function(), "_sf") {
+				got = d.SF(r.number(t, "x"))
+			}
+			wantDigits(t, r, got, r.number(t, "value"), 1e-12)
+		}
+	}
+}
+
+// testdata/references/numerics/anova_power.csv: noncentral F at 60 digits.
+func TestNoncentralFGivesPowerOfSeveralMeans(t *testing.T) {
+	for _, r := range highPrecisionRows(t, "anova_power.csv") {
+		var means []float64
+		total := 0.0
+		for _, s := range strings.Fields(r["means"]) {
+			m, err := strconv.ParseFloat(s, 64)
+			if err != nil {
+				t.Fatal(err)
+			}
+			means = append(means, m)
+			total += m
+		}
+		n, k, sd := r.number(t, "n_per_group"), float64(len(means)), r.number(t, "sd")
+		lambda := 0.0
+		for _, m := range means {
+			lambda += n * math.Pow((m-total/k)/sd, 2)
+		}
+		critical := F{k - 1, k * (n - 1)}.UpperQuantile(r.number(t, "alpha"))
+		wantDigits(t, r, NoncentralF{k - 1, k * (n - 1), lambda}.SF(critical), r.number(t, "value"), 1e-12)
+	}
+}
+
+// Identities: one squared normal variable, and the square of noncentral t.
+func TestNoncentralOneDegreeOfFreedomIsASquare(t *testing.T) {
+	rng := rand.New(rand.NewPCG(2, 1))
+	for range 300 {
+		delta := math.Exp(4*rng.Float64() - 2)
+		root := max(delta+4*rng.NormFloat64(), 0.01)
+		what := fmt.Sprint("delta ", delta, ", root ", root)
+		c := NoncentralChiSquare{1, delta * delta}
+		wantDigits(t, what, c.SF(root*root), Normal{}.SF(root-delta)+Normal{}.SF(root+delta), 1e-11)
+		wantDigits(t, what, c.CDF(root*root), Normal{}.Between(-root-delta, root-delta), 1e-11)
+		df := math.Exp(5 * rng.Float64())
+		f, s := NoncentralF{1, df, delta * delta}, NoncentralT{df, delta}
+		wantDigits(t, fmt.Sprint(what, " df ", df), f.SF(root*root), s.SF(root)+s.CDF(-root), 1e-12)
+	}
+}
+
+// Identity: for 2 degrees of freedom and t = x, the tails are those of two
+// Poisson counts: P(X > x) = P(N1 <= N2), N1 of mean x/2, N2 of mean lambda/2.
+func TestNoncentralChiSquareComparesTwoPoissonCounts(t *testing.T) {
+	for _, c := range [][2]float64{{3, 5}, {20, 8}, {1, 40}, {60, 2}} {
+		x, lambda := c[0], c[1]
+		var want float64
+		below, weight1 := 0.0, math.Exp(-x/2)
+		weight2 := math.Exp(-lambda / 2)
+		for j := 0.0; j < 300; j++ {
+			below += weight1
+			want += weight2 * below
+			weight1 *= x / 2 / (j + 1)
+			weight2 *= lambda / 2 / (j + 1)
+		}
+		wantDigits(t, c, NoncentralChiSquare{2, lambda}.SF(x), want, 1e-13)
+	}
+}
+
+func TestNoncentralMixtureTailsAndQuantilesAgree(t *testing.T) {
+	rng := rand.New(rand.NewPCG(2, 3))
+	for i := range 400 {
+		lambda := math.Exp(12*rng.Float64() - 3)
+		df := math.Exp(8*rng.Float64() - 1)
+		mean := df + lambda
+		var d Distribution = NoncentralChiSquare{df, lambda}
+		x := mean * math.Exp(3*rng.NormFloat64()*math.Sqrt(2*(mean+lambda))/mean)
+		if i%2 == 1 {
+			df2 := math.Exp(8*rng.Float64() - 1)
+			d = NoncentralF{df, df2, lambda}
+			x /= df
+		}
+		what := fmt.Sprintf("x=%v %T%v", x, d, d)
+		low, high := d.CDF(x), d.SF(x)
+		wantDigits(t, what, low+high, 1, 1e-12)
+		if next := d.CDF(x * (1 + 1e-6)); !(next > low || low == 0 || low > 1-1e-12) {
+			t.Errorf("%s: lower tail falls from %v to %v", what, low, next)
+		}
+		p := math.Exp(-40 * rng.Float64() * rng.Float64())
+		wantDigits(t, what, d.CDF(d.Quantile(p)), p, 1e-11)
+		wantDigits(t, what, d.SF(d.UpperQuantile(p)), p, 1e-11)
+	}
+}
+
+// The sum over every term and the rule that skips terms give the same tails.
+func TestNoncentralMixtureHasNoSeam(t *testing.T) {
+	for _, df := range []float64{1, 30, 5000} {
+		for _, z := range []float64{-6, -2, 0, 2, 6} {
+			at := 2.0 * manyTerms
+			x := at + df + z*math.Sqrt(4*at+2*df)
+			below, above := NoncentralChiSquare{df, at}, NoncentralChiSquare{df, math.Nextafter(at, 1e9)}
+			wantDigits(t, fmt.Sprint("lower ", df, z), above.CDF(x), below.CDF(x), 2e-11)
+			wantDigits(t, fmt.Sprint("upper ", df, z), above.SF(x), below.SF(x), 2e-11)
+		}
+	}
+}
+
+func TestNoncentralMixturesStandAnyArgument(t *testing.T) {
+	odd := []float64{0, 1e-9, 1, 40, 1e5, math.Inf(1)}
+	for _, df := range odd {
+		for _, df2 := range odd {
+			for _, lambda := range odd {
+				if df == 0 || df2 == 0 {
+					if !math.IsNaN((NoncentralF{df, df2, lambda}).CDF(1)) {
+						t.Errorf("no NaN outside the domain: %v %v", df, df2)
+					}
+					continue
+				}
+				for _, x := range odd {
+					d := NoncentralF{df, df2, lambda}
+					if low, high := d.CDF(x), d.SF(x); !(low >= 0 && high >= 0 && math.Abs(low+high-1) < 1e-3) {
+						t.Errorf("%v at %v: tails %v and %v", d, x, low, high)
+					}
+				}
+			}
+		}
+	}
+}
+
+func BenchmarkNoncentralF(b *testing.B) {
+	for b.Loop() {
+		NoncentralF{3, 52, 11}.SF(2.8)
+	}
+}
+
+func BenchmarkNoncentralChiSquareLarge(b *testing.B) {
+	for b.Loop() {
+		NoncentralChiSquare{3, 1e5}.SF(1e5)
+	}
+}
