@@ -11,6 +11,7 @@ import (
 var normalFamily = []*Function{
 	normalProbability, normalQuantile, standardScore, normalTransform, normalSum, lognormalProduct,
 	tProbability, tQuantile, chiSquareProbability, chiSquareQuantile, fProbability, fQuantile,
+	noncentralTProbability, noncentralChiSquareProbability, noncentralFProbability,
 }
 
 var (
