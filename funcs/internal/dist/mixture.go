@@ -82,7 +82,7 @@ func (m poissonMixture) tail(upper bool) float64 {
 	to = math.Ceil(to+9.2*math.Sqrt(to)) + 16
 	// The recurrence adds: upwards for the upper tail, downwards for the lower.
 	if upper {
-		from = m.firstInRange(from, to)
+		from = m.firstInRange(from, to, true)
 		_, t := m.tails(from)
 		w, d := m.weight(from), m.drop(from)
 		sum := float64(w * t)
@@ -94,7 +94,7 @@ func (m poissonMixture) tail(upper bool) float64 {
 		}
 		return min(sum, 1)
 	}
-	to = m.firstInRange(to, from)
+	to = m.firstInRange(to, from, false)
 	t, _ := m.tails(to)
 	w, d := m.weight(to), m.drop(to)
 	sum := float64(w * t)
@@ -107,16 +107,22 @@ func (m poissonMixture) tail(upper bool) float64 {
 	return min(sum, 1)
 }
 
-// firstInRange is start, or where the differences of the central tails underflow
-// there the nearest number on the way to end from which they do not.
-func (m poissonMixture) firstInRange(start, end float64) float64 {
-	const smallest = 1e-300
-	if m.drop(start) >= smallest {
+// firstInRange is start, or where the central tail underflows there the nearest
+// number on the way to end from which it does not.
+func (m poissonMixture) firstInRange(start, end float64, upper bool) float64 {
+	inRange := func(j float64) bool {
+		low, high := m.tails(j)
+		if upper {
+			low = high
+		}
+		return low >= 1e-300
+	}
+	if inRange(start) {
 		return start
 	}
 	for math.Abs(end-start) > 1 {
 		mid := math.Floor((start + end) / 2)
-		if m.drop(mid) >= smallest {
+		if inRange(mid) {
 			end = mid
 		} else {
 			start = mid
