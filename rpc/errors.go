@@ -3,6 +3,7 @@ package rpc
 import (
 	"context"
 	"errors"
+	"fmt"
 	"strings"
 )
 
@@ -81,9 +82,20 @@ func oneLine(text string) string { return strings.Join(strings.Fields(text), " "
 // badParams is an error about one place in the params. Its message is the
 // sentence that argument, reason and suggestion make.
 func badParams(pointer, argument, reason, suggestion string) *Error {
+	return badElement(pointer, argument, 0, reason, suggestion)
+}
+
+// badElement is badParams about one element of a list, counted from 1; 0 is
+// the whole argument.
+func badElement(pointer, argument string, element int, reason, suggestion string) *Error {
 	message := reason
-	if argument != "" {
+	switch {
+	case argument != "" && element > 0:
+		message = fmt.Sprintf("%s, element %d, %s", argument, element, reason)
+	case argument != "":
 		message = argument + " " + reason
+	case element > 0:
+		message = fmt.Sprintf("element %d %s", element, reason)
 	}
 	if suggestion != "" {
 		message += "; " + suggestion

@@ -22,7 +22,7 @@ func decodeStrict(raw []byte, target any) error {
 			return err
 		}
 	}
-	return fill(reflect.ValueOf(target).Elem(), v, "params")
+	return fill(reflect.ValueOf(target).Elem(), v, "params", 0)
 }
 
 var (
@@ -30,31 +30,32 @@ var (
 	numbersType = reflect.TypeFor[[]float64]()
 )
 
-// fill stores v, which came under the name given.
-func fill(target reflect.Value, v Value, name string) error {
+// fill stores v, which came under the name given, as an element from 1 on or as
+// the whole (0).
+func fill(target reflect.Value, v Value, name string, element int) error {
 	if target.Type() == valueType {
 		target.Set(reflect.ValueOf(v))
 		return nil
 	}
 	if v.Kind == Null {
-		return badParams(v.Pointer, name, "is null", "leave it out, or give "+wanted(target.Type()))
+		return badElement(v.Pointer, name, element, "is null", "leave it out, or give "+wanted(target.Type()))
 	}
 	switch {
 	case target.Kind() == reflect.Pointer:
 		target.Set(reflect.New(target.Type().Elem()))
-		return fill(target.Elem(), v, name)
+		return fill(target.Elem(), v, name, element)
 	case target.Type() == numbersType && v.Kind == Numbers:
 		target.Set(reflect.ValueOf(v.Numbers))
 		return nil
 	case target.Type() == numbersType:
-		return fillNothing(target, v, name)
+		return fillNothing(target, v, name, element)
 	case target.Kind() == reflect.Struct && v.Kind == Object:
-		return fillStruct(target, v, name)
+		return fillStruct(target, v)
 	case target.Kind() == reflect.Slice && (v.Kind == List || v.Kind == Numbers):
 		elements := v.Elements()
 		target.Set(reflect.MakeSlice(target.Type(), len(elements), len(elements)))
-		for i, element := range elements {
-			if err := fill(target.Index(i), element, fmt.Sprintf("%s, element %d,", name, i+1)); err != nil {
+		for i := range elements {
+			if err := fill(target.Index(i), elements[i], name, i+1); err != nil {
 				return err
 			}
 		}
@@ -71,25 +72,25 @@ func fill(target reflect.Value, v Value, name string) error {
 	case target.Kind() == reflect.Int && v.Kind == Number:
 		const most = 1 << 53 // beyond it not every whole number is a double
 		if v.Number != math.Trunc(v.Number) || math.Abs(v.Number) > most {
-			return badParams(v.Pointer, name, "is "+string(appendNumber(nil, v.Number)), "give a whole number")
+			return badElement(v.Pointer, name, element, "is "+string(appendNumber(nil, v.Number)), "give a whole number")
 		}
 		target.SetInt(int64(v.Number))
 		return nil
 	}
-	return fillNothing(target, v, name)
+	return fillNothing(target, v, name, element)
 }
 
 // fillNothing says what came and what belongs there. Of a list of numbers it
 // names the first element that is none.
-func fillNothing(target reflect.Value, v Value, name string) error {
+func fillNothing(target reflect.Value, v Value, name string, element int) error {
 	if target.Type() == numbersType && v.Kind == List {
-		for i, element := range v.List {
-			if element.Kind != Number && element.Kind != Null {
-				return badParams(element.Pointer, fmt.Sprintf("%s, element %d,", name, i+1), "is "+element.Kind.String(), "give a number, or null for a gap")
+		for i, inner := range v.List {
+			if inner.Kind != Number && inner.Kind != Null {
+				return badElement(inner.Pointer, name, i+1, "is "+inner.Kind.String(), "give a number, or null for a gap")
 			}
 		}
 	}
-	return badParams(v.Pointer, name, "is "+v.Kind.String(), "give "+wanted(target.Type()))
+	return badElement(v.Pointer, name, element, "is "+v.Kind.String(), "give "+wanted(target.Type()))
 }
 
 func wanted(t reflect.Type) string {
@@ -118,7 +119,7 @@ func fieldOf(f reflect.StructField) (name string, required bool) {
 	return name, options != "omitempty"
 }
 
-func fillStruct(target reflect.Value, v Value, name string) error {
+func fillStruct(target reflect.Value, v Value) error {
 	t := target.Type()
 	names := make([]string, t.NumField())
 	places := make(map[string]int, t.NumField())
@@ -132,7 +133,7 @@ func fillStruct(target reflect.Value, v Value, name string) error {
 		i, known := places[m.Name]
 		switch {
 		case known:
-			if err := fill(target.Field(i), m.Value, m.Name); err != nil {
+			if err := fill(target.Field(i), m.Value, m.Name, 0); err != nil {
 				return err
 			}
 		case m.Name == "workDoneToken" && v.Pointer == "":
@@ -183,7 +184,22 @@ func decodeLenient(raw []byte, target any) error {
 		if kind.Field != "" {
 			pointer = "/" + strings.ReplaceAll(kind.Field, ".", "/")
 		}
-		return badParams(pointer, lastOf(pointer), "is "+kind.Value, "give "+wanted(kind.Type))
+		return badParams(pointer, lastOf(pointer), "is "+kindWord(kind.Value), "give "+wanted(kind.Type))
 	}
 	return badParams("", "params", "cannot be read: "+err.Error(), "")
+}
+
+// kindWord puts encoding/json's word for a kind of value into ours.
+func kindWord(word string) string {
+	switch word, _, _ = strings.Cut(word, " "); word {
+	case "string":
+		return Text.String()
+	case "number":
+		return Number.String()
+	case "bool":
+		return YesNo.String()
+	case "array":
+		return List.String()
+	}
+	return Object.String()
 }

@@ -127,8 +127,11 @@ func (s *Session) refusal(call *Call, method *Method) *Error {
 	case s.phase == shutDown || s.phase == over:
 		return invalidRequest("The server has been shut down; only the notification exit is taken now.")
 	case method == nil:
-		return &Error{Code: CodeMethodNotFound, Message: fmt.Sprintf("There is no method %.100q%s", call.Method, orNear(call.Method, s.names)),
-			Data: &ErrorData{Suggestion: near(call.Method, s.names)}}
+		e := &Error{Code: CodeMethodNotFound, Message: fmt.Sprintf("There is no method %.100q%s", call.Method, orNear(call.Method, s.names))}
+		if best := near(call.Method, s.names); best != "" {
+			e.Data = &ErrorData{Suggestion: best}
+		}
+		return e
 	case method.Notification:
 		return invalidRequest(fmt.Sprintf("%s is a notification; send it without an id.", call.Method))
 	case starting && s.phase != fresh:

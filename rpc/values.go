@@ -96,7 +96,7 @@ func (p *valueParser) string() (string, error) {
 }
 
 // double reads a number to the nearest double, as strconv does. element is its
-// place in a list, or -1.
+// place in the list at pointer, or -1.
 func (p *valueParser) double(pointer string, element int) (float64, error) {
 	start := p.pos
 	if err := p.number(); err != nil {
@@ -104,11 +104,11 @@ func (p *valueParser) double(pointer string, element int) (float64, error) {
 	}
 	x, err := strconv.ParseFloat(string(p.data[start:p.pos]), 64)
 	if err != nil {
-		text := p.data[start:p.pos]
+		argument := lastOf(pointer)
 		if element >= 0 {
 			pointer = pointerTo(pointer, strconv.Itoa(element))
 		}
-		return 0, badParams(pointer, lastOf(pointer), fmt.Sprintf("is %.40s, which no double holds", text), "the largest is about 1.8e308")
+		return 0, badElement(pointer, argument, element+1, fmt.Sprintf("is %.40s, which no double holds", p.data[start:p.pos]), "the largest is about 1.8e308")
 	}
 	return x, nil
 }
@@ -334,5 +334,9 @@ func appendNumber(b []byte, x float64) []byte {
 	if a := math.Abs(x); a != 0 && (a < 1e-6 || a >= 1e21) {
 		format = 'e'
 	}
-	return strconv.AppendFloat(b, x, format, -1, 64)
+	b = strconv.AppendFloat(b, x, format, -1, 64)
+	if n := len(b); format == 'e' && b[n-4] == 'e' && b[n-2] == '0' {
+		b = append(b[:n-2], b[n-1]) // e-09 as e-9
+	}
+	return b
 }
