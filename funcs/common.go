@@ -83,8 +83,9 @@ func (c *Call) finish() *Outcome {
 		c.set("used", used)
 		c.set("skipped", skipped)
 	}
+	_, levelled := c.results["level"] // by a function that takes both and used one
 	for _, name := range []string{"confidence", "significance"} {
-		if v, ok := c.args[name].Value.(float64); ok {
+		if v, ok := c.args[name].Value.(float64); ok && !levelled {
 			c.set("level", v)
 		}
 	}

@@ -14,7 +14,9 @@ import (
 
 var sizesFamily = []*Function{
 	meanPrecisionSize, meanPrecisionOf, differencePrecisionSize, differencePrecisionOf,
-	meanTestSize, differenceTestSize,
+	meanTestSize, meanTestPower, meanTestDetectable,
+	pairedTestSize, pairedTestPower, pairedTestDetectable,
+	differenceTestSize, differenceTestPower, differenceTestDetectable,
 }
 
 // largestPlan is the largest n that is worth planning.
@@ -78,7 +80,6 @@ var (
 // The findings of plans.
 var (
 	tooManyKind      = FindingKind{"too-many", "not even a billion values would be enough"}
-	tooFewKind       = FindingKind{"few-values", "fewer than 5 values, or fewer than the computation needs"}
 	noDifferenceKind = FindingKind{"no-difference", "the difference to be found is the reference itself"}
 	wrongSideKind    = FindingKind{"against-direction", "the difference lies on the other side than the direction claims"}
 	lowPowerKind     = FindingKind{"power-not-above-significance", "the power wanted is no more than the significance"}
@@ -188,6 +189,15 @@ func (c *Call) counting(input string, n int) (int, error) {
 			n, strconv.FormatFloat(x, 'f', 0, 64), smallestGroup)
 	}
 	return int(x), nil
+}
+
+// countingOf is counting for n of a population, which may be infinite.
+func (c *Call) countingOf(population float64) (int, error) {
+	n := plannedN.Of(c)
+	if float64(n) > population {
+		return 0, c.wrong("n", fmt.Sprint(n), fmt.Sprintf("is more than the population-size (%.0f)", population), "give at most that many")
+	}
+	return c.counting("n", n)
 }
 
 // setPlan gives n and what to plan for it.

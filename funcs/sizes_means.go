@@ -2,8 +2,10 @@ package funcs
 
 import (
 	"fmt"
+	"math"
 
 	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
 )
 
 // oneSampleTest is the plan of a t test of a mean or of paired differences.
@@ -48,25 +50,123 @@ func (p oneSampleTest) size(c *Call, of string) error {
 		return err
 	}
 	c.set("attained-power", p.power(n, difference))
-	c.sayPower(nText(n), of, difference, wanted, p.power(n, difference))
+	c.sayPower(nText(n), c.away(of, difference), p.power(n, difference))
 	return nil
 }
 
-// sayPower composes the sentence of a plan for power.
-func (c *Call) sayPower(counts, of string, difference, wanted, attained float64) {
-	c.sentence = fmt.Sprintf("Measure %s, planned for power %s: %s of %s will be found with probability %s at significance %s, direction %s (%s).%s",
-		counts, percent(wanted), of, c.withUnit(shortest(difference), SameUnit), brief(attained), percent(significance.Of(c)), direction.Of(c), c.method, c.toPlan())
+// away words a difference to be found.
+func (c *Call) away(of string, difference float64) string {
+	return of + " of " + c.withUnit(shortest(difference), SameUnit)
 }
+
+// sayPower composes the sentence of a plan for power.
+func (c *Call) sayPower(counts, what string, attained float64) {
+	c.sentence = fmt.Sprintf("Measure %s, planned for power %s: %s will be found with probability %s at significance %s (%s).%s",
+		counts, percent(power.Of(c)), what, brief(attained), c.testLevel(), c.method, c.toPlan())
+}
+
+// testLevel words the significance, and the direction where there is one.
+func (c *Call) testLevel() string {
+	text := percent(significance.Of(c))
+	if c.has("direction") {
+		text += ", direction " + direction.Of(c)
+	}
+	return text
+}
+
+// powerOf gives the power of a given n.
+func (p oneSampleTest) powerOf(c *Call, of string) error {
+	difference := trueDifference.Of(c)
+	if err := c.findable("difference", difference); err != nil {
+		return err
+	}
+	n, err := c.counting("n", plannedN.Of(c))
+	if err != nil {
+		return err
+	}
+	attained := p.power(n, difference)
+	c.set("attained-power", attained)
+	c.sayPowerOf(c.nCounting(n), c.away(of, difference), attained)
+	return nil
+}
+
+// detectable gives the smallest difference that a given n finds with the power
+// wanted.
+func (p oneSampleTest) detectable(c *Call, of string) error {
+	if err := c.powerAbove(); err != nil {
+		return err
+	}
+	n, err := c.counting("n", plannedN.Of(c))
+	if err != nil {
+		return err
+	}
+	return c.setDetectable(c.nCounting(n), of, p.sd/math.Sqrt(float64(n)), func(d float64) float64 { return p.power(n, d) })
+}
+
+// setDetectable finds the smallest difference whose power is the one wanted, in
+// steps of the standard error, and composes the sentence. The power rises with
+// the difference in the direction claimed.
+func (c *Call) setDetectable(counts, of string, se float64, powerAt func(difference float64) float64) error {
+	wanted, unit := power.Of(c), se
+	if direction.Of(c) == below {
+		unit = -se
+	}
+	short := func(x float64) float64 { return powerAt(x*unit) - wanted }
+	hi := 1.0
+	for short(hi) < 0 {
+		if hi *= 2; math.IsInf(float64(hi*unit), 0) {
+			return refuse("too-large-to-hold", "sd", "No difference that a double can hold is found with power %s; give the sd in a larger unit.", percent(wanted))
+		}
+		if err := c.cancelled(); err != nil {
+			return err
+		}
+	}
+	x, ok := num.Root(short, 0, hi)
+	if !ok {
+		return fmt.Errorf("%w: no difference between 0 and %v standard errors has power %v", ErrInternal, hi, wanted)
+	}
+	difference, attained := x*unit, powerAt(x*unit)
+	c.set("difference", difference)
+	c.set("attained-power", attained)
+	c.sentence = fmt.Sprintf("With %s the smallest difference found with power %s is %s: %s, at significance %s (%s).",
+		counts, percent(wanted), c.withUnit(brief(difference), SameUnit), of, c.testLevel(), c.method)
+	return nil
+}
+
+// sayPowerOf composes the sentence of the power of a given n.
+func (c *Call) sayPowerOf(counts, what string, attained float64) {
+	c.sentence = fmt.Sprintf("With %s the power is %s: %s will be found with that probability at significance %s (%s).",
+		counts, brief(attained), what, c.testLevel(), c.method)
+}
+
+var (
+	meanDifference = trueDifference.as("difference", "the true mean less the reference: the smallest difference that matters")
+	pairDifference = trueDifference.as("difference", "the true mean of the differences less its reference: the smallest that matters")
+	resultFound    = Result{"attained-power", Number, NoUnit, "the power with which the difference is found"}
+
+	noncentralCitations = []string{"Johnson & Welch 1940 (noncentral t)"}
+	testPowerFindings   = []FindingKind{noDifferenceKind, wrongSideKind, fewValuesKind, tooManyKind}
+	detectableFindings  = []FindingKind{lowPowerKind, fewValuesKind, tooManyKind}
+)
+
+// meanTest reads the test of a mean.
+func (c *Call) meanTest() oneSampleTest {
+	p := oneSampleTest{expectedSD.Of(c), significance.Of(c), direction.Of(c)}
+	c.method = "t test, exact power from the noncentral t with n - 1 degrees of freedom, sd " + c.briefly(p.sd)
+	return p
+}
+
+const meanAway = "a true mean at a distance from the reference"
 
 var meanTestSize = &Function{
 	Name:        "mean-test-size",
 	Version:     1,
 	Summary:     "how many values a t test of a mean against a reference needs",
-	Inputs:      inputs(expectedSD, trueDifference.as("difference", "the true mean less the reference: the smallest difference that matters"), power, significance, direction, designEffect, nonResponse),
+	Inputs:      inputs(expectedSD, meanDifference, power, significance, direction, designEffect, nonResponse),
 	Results:     []Result{resultPlanN, resultPlanned, resultPower},
 	Findings:    testSizeFindings,
-	Assumptions: []string{"independent values of one population", "normal values, or n large enough for their skewness"},
-	Citations:   []string{"Johnson & Welch 1940 (noncentral t)", "Guenther 1981 (start of the search)"},
+	Assumptions: meanPrecisionSize.Assumptions,
+	Citations:   noncentralCitations,
 	Example: Example{
 		Label:     "a mean 0.4 sd from the reference, power 90%",
 		Arguments: []Argument{{"sd", 1.0}, {"difference", 0.4}, {"power", 0.9}},
@@ -74,64 +174,118 @@ var meanTestSize = &Function{
 		Tolerance: 1e-12,
 		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_t.csv",
 	},
-	compute: func(c *Call) error {
-		p := oneSampleTest{expectedSD.Of(c), significance.Of(c), direction.Of(c)}
-		c.method = "t test, exact power from the noncentral t with n - 1 degrees of freedom, sd " + c.briefly(p.sd)
-		return p.size(c, "a true mean at a distance from the reference")
-	},
+	compute: func(c *Call) error { return c.meanTest().size(c, meanAway) },
 }
 
-// groupsTest reads what the tests of two means share.
-func (c *Call) groupsTest() groupsTest {
-	first, second := c.groupSDs()
-	g := groupsTest{first, second, significance.Of(c), direction.Of(c), variances.Of(c) == pooled}
-	kind := "Welch's t test, exact power by integration of the noncentral t"
-	if g.pooled {
-		kind = "t test with the pooled variance, exact power from the noncentral t with n + second-n - 2 degrees of freedom"
-	}
-	c.method = fmt.Sprintf("%s, sds %s and %s", kind, c.briefly(first), c.briefly(second))
-	return g
-}
-
-var differenceTestSize = &Function{
-	Name:        "difference-test-size",
+var meanTestPower = &Function{
+	Name:        "mean-test-power",
 	Version:     1,
-	Summary:     "how many values in each of two groups a t test of the difference of their means needs",
-	Inputs:      inputs(firstPlannedSD, secondPlannedSD, trueDifference.as("difference", "the true difference first - second: the smallest that matters"), power, allocation, variances, significance, direction, designEffect, nonResponse, checks),
-	Results:     []Result{resultPlanN, resultPlanSecond, resultPlanned, resultPlanned2, resultPower},
-	Findings:    append(testSizeFindings[:len(testSizeFindings):len(testSizeFindings)], spreadsKind),
-	Assumptions: []string{"independent values, and groups independent of one another", "normal values, or n large enough for their skewness"},
-	Citations:   []string{"Welch 1947; Satterthwaite 1946", "ISO 2854 (pooled)", "Johnson & Welch 1940 (noncentral t)"},
+	Summary:     "the power that n values give a t test of a mean against a reference",
+	Inputs:      inputs(expectedSD, meanDifference, plannedN, significance, direction, designEffect, nonResponse),
+	Results:     []Result{resultPower},
+	Findings:    testPowerFindings,
+	Assumptions: meanTestSize.Assumptions,
+	Citations:   noncentralCitations,
 	Example: Example{
-		Label:     "a difference of 0.6 sd, power 80%, pooled variance",
-		Arguments: []Argument{{"first-sd", 1.0}, {"difference", 0.6}, {"power", 0.8}, {"variances", pooled}},
-		Want:      []Argument{{"n", 45}, {"second-n", 45}, {"attained-power", 0.8036969228605813412733663}},
+		Label:     "25 values, 0.6 sd from the reference, significance 1%",
+		Arguments: []Argument{{"sd", 1.0}, {"difference", 0.6}, {"n", 25}, {"significance", 0.01}},
+		Want:      []Argument{{"attained-power", 0.5857173904919468268715014}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 60 digits, testdata/references/numerics/t_power.csv",
+	},
+	compute: func(c *Call) error { return c.meanTest().powerOf(c, meanAway) },
+}
+
+var meanTestDetectable = &Function{
+	Name:        "mean-test-detectable",
+	Version:     1,
+	Summary:     "the smallest difference from a reference that a t test of n values finds",
+	Inputs:      inputs(expectedSD, plannedN, power, significance, direction, designEffect, nonResponse),
+	Results:     []Result{resultDetectable, resultFound},
+	Findings:    detectableFindings,
+	Assumptions: meanTestSize.Assumptions,
+	Citations:   noncentralCitations,
+	Example: Example{
+		Label:     "15 values of sd 1, at the power that 0.8 sd has there",
+		Arguments: []Argument{{"sd", 1.0}, {"n", 15}, {"power", 0.8213105387241096}},
+		Want:      []Argument{{"difference", 0.8}},
 		Tolerance: 1e-12,
 		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_t.csv",
 	},
-	compute: func(c *Call) error {
-		g, difference, wanted, ratio := c.groupsTest(), trueDifference.Of(c), power.Of(c), allocation.Of(c)
-		if err := c.findable("difference", difference); err != nil {
-			return err
-		}
-		if err := c.powerAbove(); err != nil {
-			return err
-		}
-		a, b := g.first/difference, g.second/difference
-		start := normalPower(g.significance, wanted, g.direction)*(float64(a*a)+float64(b*b)/ratio) + 1
-		n, m, found, err := c.smallestGroups(ratio, start, func(n, m int) bool { return reaches(g.power(n, m, difference), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return c.groupsTooMany("difference", ratio, func(n, m int) string { return "power " + brief(g.power(n, m, difference)) })
-		}
-		if err := c.setGroups(n, m); err != nil {
-			return err
-		}
-		attained := g.power(n, m, difference)
-		c.set("attained-power", attained)
-		c.sayPower(bothN(n, m), "a true difference (first - second)", difference, wanted, attained)
-		return nil
+	compute: func(c *Call) error { return c.meanTest().detectable(c, "a true mean that far from the reference") },
+}
+
+var correlationGiven = number("correlation", "the correlation within pairs; with it, sd is that of the single values", Domain{Low: -1, High: 1, HighOpen: true}, NoUnit).optional()
+
+var pairSD = expectedSD.as("sd", "the standard deviation expected of the differences; of the single values where correlation is given")
+
+// pairedTest reads the test of paired differences.
+func (c *Call) pairedTest() oneSampleTest {
+	p := oneSampleTest{expectedSD.Of(c), significance.Of(c), direction.Of(c)}
+	from := ""
+	if r, ok := correlationGiven.Given(c); ok {
+		p.sd *= math.Sqrt(2 * (1 - r))
+		from = fmt.Sprintf(" (correlation %s)", brief(r))
+	}
+	c.method = fmt.Sprintf("paired t test, exact power from the noncentral t with n - 1 degrees of freedom, sd of differences %s%s", c.briefly(p.sd), from)
+	return p
+}
+
+const pairsAway = "a true mean difference within pairs"
+
+var pairedTestSize = &Function{
+	Name:        "paired-test-size",
+	Version:     1,
+	Summary:     "how many pairs a t test of the differences within pairs needs",
+	Inputs:      inputs(pairSD, correlationGiven, pairDifference, power, significance, direction, designEffect, nonResponse),
+	Results:     []Result{resultPlanN, resultPlanned, resultPower},
+	Findings:    testSizeFindings,
+	Assumptions: []string{"pairs independent of one another", "normal differences, or enough pairs for their skewness"},
+	Citations:   noncentralCitations,
+	Example: Example{
+		Label:     "differences of sd 1.2, a mean difference of 0.25, significance 1%, power 95%",
+		Arguments: []Argument{{"sd", 1.2}, {"difference", 0.25}, {"power", 0.95}, {"significance", 0.01}},
+		Want:      []Argument{{"n", 414}, {"attained-power", 0.9501257556786467231226221}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_t.csv",
 	},
+	compute: func(c *Call) error { return c.pairedTest().size(c, pairsAway) },
+}
+
+var pairedTestPower = &Function{
+	Name:        "paired-test-power",
+	Version:     1,
+	Summary:     "the power that n pairs give a t test of the differences within pairs",
+	Inputs:      inputs(pairSD, correlationGiven, pairDifference, plannedN.as("n", "how many pairs are to be measured"), significance, direction, designEffect, nonResponse),
+	Results:     []Result{resultPower},
+	Findings:    testPowerFindings,
+	Assumptions: pairedTestSize.Assumptions,
+	Citations:   noncentralCitations,
+	Example: Example{
+		Label:     "120 pairs, differences of sd 1.2, significance 0.1%",
+		Arguments: []Argument{{"sd", 1.2}, {"difference", 0.3}, {"n", 120}, {"significance", 0.001}},
+		Want:      []Argument{{"attained-power", 0.2696330255756486144857030}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 60 digits, testdata/references/numerics/t_power.csv",
+	},
+	compute: func(c *Call) error { return c.pairedTest().powerOf(c, pairsAway) },
+}
+
+var pairedTestDetectable = &Function{
+	Name:        "paired-test-detectable",
+	Version:     1,
+	Summary:     "the smallest mean difference within pairs that a t test of n pairs finds",
+	Inputs:      inputs(pairSD, correlationGiven, plannedN.as("n", "how many pairs are to be measured"), power, significance, direction, designEffect, nonResponse),
+	Results:     []Result{resultDetectable, resultFound},
+	Findings:    detectableFindings,
+	Assumptions: pairedTestSize.Assumptions,
+	Citations:   noncentralCitations,
+	Example: Example{
+		Label:     "18 pairs, sd of single values 1.8 and correlation 0.5, at the power that 1.2 has there",
+		Arguments: []Argument{{"sd", 1.8}, {"correlation", 0.5}, {"n", 18}, {"power", 0.8573050782442606}, {"significance", 0.1}},
+		Want:      []Argument{{"difference", 1.2}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_t.csv",
+	},
+	compute: func(c *Call) error { return c.pairedTest().detectable(c, "a true mean difference within pairs") },
 }

@@ -6,8 +6,8 @@ import (
 	"testing"
 )
 
-// sided is the direction of a test with one or two rejection tails.
-func sided(sides string) string {
+// tailsOf is the direction of a test with one or two rejection tails.
+func tailsOf(sides string) string {
 	if sides == "1" {
 		return above
 	}
@@ -55,7 +55,7 @@ func TestPlansForAHalfWidthAreExact(t *testing.T) {
 func TestPlansForATTestAreExact(t *testing.T) {
 	for _, r := range preciseValues(t, "sample_size_t.csv") {
 		arguments := map[string]any{
-			"difference": number64(t, r, "diff"), "significance": number64(t, r, "alpha"), "power": number64(t, r, "power"), "direction": sided(r.columns["sides"]),
+			"difference": number64(t, r, "diff"), "significance": number64(t, r, "alpha"), "power": number64(t, r, "power"), "direction": tailsOf(r.columns["sides"]),
 		}
 		name := "mean-test-size"
 		if r.columns["ratio"] != "" {

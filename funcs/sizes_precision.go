@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 )
@@ -108,7 +109,7 @@ var meanPrecisionSize = &Function{
 		designEffect, nonResponse, checks),
 	OneOf:       pilotWays,
 	Results:     []Result{resultPlanN, resultPlanned, resultHalfWidth, resultChance},
-	Findings:    append(append(precisionFindings[:2:2], oneSampleFindings...), noSpreadKind),
+	Findings:    append(slices.Concat(precisionFindings, oneSampleFindings), noSpreadKind),
 	Assumptions: []string{"independent values of one population", "normal values, or n large enough for their skewness"},
 	Citations:   []string{"Cochran 1977 (finite population)", "Kupper & Hafner 1989 (chance met)", "ASTM E122"},
 	Example: Example{
@@ -169,7 +170,7 @@ var meanPrecisionOf = &Function{
 		planPopulation, confidence, direction, designEffect, nonResponse, checks),
 	OneOf:       pilotWays,
 	Results:     []Result{resultHalfWidth, resultChance},
-	Findings:    append(append(precisionFindings[:2:2], oneSampleFindings...), noSpreadKind),
+	Findings:    append(slices.Concat(precisionFindings, oneSampleFindings), noSpreadKind),
 	Assumptions: meanPrecisionSize.Assumptions,
 	Citations:   meanPrecisionSize.Citations,
 	Example: Example{
@@ -184,12 +185,9 @@ var meanPrecisionOf = &Function{
 		if err != nil {
 			return err
 		}
-		n, err := c.counting("n", plannedN.Of(c))
+		n, err := c.countingOf(p.population)
 		if err != nil {
 			return err
-		}
-		if float64(plannedN.Of(c)) > p.population {
-			return c.wrong("n", fmt.Sprint(plannedN.Of(c)), fmt.Sprintf("is more than the population-size (%.0f)", p.population), "give at most that many")
 		}
 		c.set("attained-half-width", p.halfWidth(n))
 		if wanted, ok := halfWidth.Given(c); ok {
@@ -267,7 +265,7 @@ var differencePrecisionSize = &Function{
 	Inputs: inputs(firstPlannedSD, secondPlannedSD, halfWidth, allocation, variances, confidence, direction,
 		designEffect, nonResponse, checks),
 	Results:     []Result{resultPlanN, resultPlanSecond, resultPlanned, resultPlanned2, resultHalfWidth},
-	Findings:    append(precisionFindings[:2:2], spreadsKind),
+	Findings:    append(slices.Clip(precisionFindings), spreadsKind),
 	Assumptions: []string{"independent values, and groups independent of one another", "normal values, or n large enough for their skewness"},
 	Citations:   []string{"Welch 1947; Satterthwaite 1946", "ISO 2854 (pooled)"},
 	Example: Example{
@@ -308,7 +306,7 @@ var differencePrecisionOf = &Function{
 	Summary:     "how precisely n values in each of two groups will give the difference of their means",
 	Inputs:      inputs(firstPlannedSD, secondPlannedSD, plannedN, plannedSecondN, variances, confidence, direction, designEffect, nonResponse, checks),
 	Results:     []Result{resultHalfWidth},
-	Findings:    append(precisionFindings[:2:2], tooFewKind, spreadsKind),
+	Findings:    append(slices.Clip(precisionFindings), fewValuesKind, spreadsKind),
 	Assumptions: differencePrecisionSize.Assumptions,
 	Citations:   differencePrecisionSize.Citations,
 	Example: Example{
