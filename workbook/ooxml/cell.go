@@ -1,9 +1,5 @@
 package ooxml
 
-import (
-	"errors"
-)
-
 // cell reads a cell written in any way the format allows. The current token is
 // its start tag.
 func (s *scanner) cell() error {
@@ -18,9 +14,8 @@ func (s *scanner) cell() error {
 		}
 		s.keep = -1
 	}
-	var e *Error
-	if errors.As(err, &e) && e.Cell == "" && s.known && col <= maxColumns {
-		e.Cell = CellName(s.row.Number, col)
+	if s.known && col <= maxColumns {
+		return placeCell(err, s.row.Number, col)
 	}
 	return err
 }
@@ -30,12 +25,12 @@ var cellTypes = map[string]CellType{"": TypeNumber, "n": TypeNumber, "s": TypeSh
 	"str": TypeString, "b": TypeBool, "e": TypeError, "d": TypeDate}
 
 func (s *scanner) readCell(col *int) error {
-	ref := trimSpace(s.attr("r"))
+	ref := s.attr("r")
 	switch {
 	case len(ref) > 0:
 		row, c, ok := parseCell(ref)
 		if !ok {
-			return s.wrong("a cell has the reference %.40q", ref)
+			return s.faulty("a cell has the reference %.40q", ref)
 		}
 		if !s.known {
 			if err := s.numberRow(row); err != nil {
@@ -44,7 +39,7 @@ func (s *scanner) readCell(col *int) error {
 		}
 		*col = c
 		if row != s.row.Number {
-			return s.wrong("a cell with the reference %s stands in row %d", ref, s.row.Number)
+			return s.faulty("a cell with the reference %s stands in row %d", ref, s.row.Number)
 		}
 	case !s.known:
 		if err := s.numberRow(s.lastRow + 1); err != nil {
@@ -59,11 +54,11 @@ func (s *scanner) readCell(col *int) error {
 		return err
 	}
 	if style >= s.styles {
-		return s.wrong("%s", outOfStyles(style, s.styles))
+		return s.faulty("%s", outOfStyles(style, s.styles))
 	}
-	kind, ok := cellTypes[string(trimSpace(s.attr("t")))]
+	kind, ok := cellTypes[string(s.attr("t"))]
 	if !ok {
-		return s.wrong("the cell has the type %.40q, which does not exist", s.attr("t"))
+		return s.faulty("the cell has the type %.40q, which does not exist", s.attr("t"))
 	}
 	s.current = Cell{Col: int32(*col), Style: int32(style), Type: kind}
 	hasValue, err := s.cellContent(&s.current)
@@ -82,7 +77,7 @@ func (s *scanner) cellContent(cell *Cell) (hasValue bool, err error) {
 		switch {
 		case s.is("v"):
 			if hasValue {
-				return s.wrong("the cell has two values")
+				return s.faulty("the cell has two values")
 			}
 			hasValue = true
 			if hasInline {
@@ -92,14 +87,14 @@ func (s *scanner) cellContent(cell *Cell) (hasValue bool, err error) {
 			return err
 		case s.is("is") && cell.Type == TypeInline:
 			if hasInline {
-				return s.wrong("the cell has two texts")
+				return s.faulty("the cell has two texts")
 			}
 			hasInline = true
 			s.scratch, err = s.richText(s.scratch[:0])
 			return err
 		case s.is("f"):
 			if cell.Formula {
-				return s.wrong("the cell has two formulas")
+				return s.faulty("the cell has two formulas")
 			}
 			cell.Formula = true
 			return s.formula(int(cell.Col))
@@ -114,7 +109,7 @@ func (s *scanner) formula(col int) error {
 	s.facts.Formulas++
 	switch string(s.attr("t")) {
 	case "array", "dataTable":
-		if r, ok := ParseRange(string(trimSpace(s.attr("ref")))); ok {
+		if r, ok := ParseRange(string(s.attr("ref"))); ok {
 			s.facts.Arrays = append(s.facts.Arrays, r)
 		}
 	}
@@ -162,12 +157,12 @@ func (s *scanner) decode(cell *Cell, text []byte, wanted bool) (filled bool, err
 			cell.Number, ok = parseNumber(text)
 		}
 		if !ok {
-			return false, s.wrong("the cell's value is %.40q, not a number that a cell can hold", text)
+			return false, s.faulty("the cell's value is %.40q, not a number that a cell can hold", text)
 		}
 	case TypeShared:
 		index, ok := parseIndex(text)
 		if !ok {
-			return false, s.wrong("the cell points to shared string %.40q", text)
+			return false, s.faulty("the cell points to shared string %.40q", text)
 		}
 		cell.Index = int32(index)
 		empty, err := s.shared(index)
@@ -178,12 +173,12 @@ func (s *scanner) decode(cell *Cell, text []byte, wanted bool) (filled bool, err
 			cell.Number = 1
 		case "0", "false":
 		default:
-			return false, s.wrong("the cell's value is %.40q, neither true nor false", text)
+			return false, s.faulty("the cell's value is %.40q, neither true nor false", text)
 		}
 	case TypeDate:
 		var ok bool
 		if cell.Number, ok = parseDate(text, s.date1904); !ok {
-			return false, s.wrong("the cell's value is %.40q, not a date in the form 2024-03-05T08:15:00", text)
+			return false, s.faulty("the cell's value is %.40q, not a date in the form 2024-03-05T08:15:00", text)
 		}
 	default:
 		if len(text) == 0 {

@@ -1,6 +1,7 @@
 package ooxml
 
 import (
+	"cmp"
 	"errors"
 	"strings"
 )
@@ -90,21 +91,30 @@ func beyond(reason, option string) *Error {
 	return &Error{Kind: ErrLimit, Reason: reason, Advice: "if the file can be trusted, raise the limit " + option}
 }
 
-// place fills in what an error does not say yet about its place, so that each
-// layer adds only what it knows.
+// place fills in what an error does not say yet about where it happened, so that
+// each layer adds only what it knows. An error that names another part keeps
+// clear of this part's sheet.
 func place(err error, file, part, sheet string) error {
-	var e *Error
-	if !errors.As(err, &e) {
+	e, ok := err.(*Error)
+	if !ok {
 		return err
 	}
-	if e.File == "" {
-		e.File = file
+	placed := *e
+	placed.File = cmp.Or(e.File, file)
+	if e.Part == "" || part == "" || e.Part == part {
+		placed.Part = cmp.Or(e.Part, part)
+		placed.Sheet = cmp.Or(e.Sheet, sheet)
 	}
-	if e.Part == "" {
-		e.Part = part
+	return &placed
+}
+
+// placeCell adds the cell to an error that names no part and no cell yet.
+func placeCell(err error, row, col int) error {
+	e, ok := err.(*Error)
+	if !ok || e.Part != "" || e.Cell != "" {
+		return err
 	}
-	if e.Sheet == "" {
-		e.Sheet = sheet
-	}
-	return err
+	placed := *e
+	placed.Cell = CellName(row, col)
+	return &placed
 }

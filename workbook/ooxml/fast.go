@@ -62,15 +62,15 @@ func (s *scanner) fastRow() bool {
 func (s *scanner) rowTagAt(i int) (next, number int, hidden, ok bool) {
 	b := s.buf
 	if b[i] != '<' {
-		return
+		return 0, 0, false, false
 	}
 	i++
 	if !bytes.HasPrefix(b[i:], s.prefix) {
-		return
+		return 0, 0, false, false
 	}
 	i += len(s.prefix)
 	if b[i] != 'r' || b[i+1] != 'o' || b[i+2] != 'w' {
-		return
+		return 0, 0, false, false
 	}
 	i += 3
 	var seen uint16
@@ -82,14 +82,14 @@ func (s *scanner) rowTagAt(i int) (next, number int, hidden, ok bool) {
 		}
 		bit := rowAttributes[string(b[from:i])]
 		if bit == 0 || seen&bit != 0 || b[i] != '=' || b[i+1] != '"' {
-			return
+			return 0, 0, false, false
 		}
 		seen |= bit
 		i += 2
 		from = i
 		for b[i] != '"' {
 			if b[i] == '<' || b[i] == 0 {
-				return
+				return 0, 0, false, false
 			}
 			i++
 		}

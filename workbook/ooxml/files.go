@@ -6,14 +6,7 @@ import (
 	"os"
 	"path/filepath"
 	"strings"
-	"time"
 )
-
-var timeUnset time.Time
-
-// epochDate is the 1st of January 1980, the first day that a zip file can name:
-// new parts bear it, so that the same save gives the same bytes.
-const epochDate = 1<<5 | 1
 
 // SaveAs writes the book with its changes to another file, through a temporary
 // file in the same folder. A file of that name is replaced; the book's own file

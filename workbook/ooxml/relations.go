@@ -132,7 +132,7 @@ func (x *lexer) content() (string, error) {
 
 // number reads an attribute that holds a whole number of at least 0.
 func (x *lexer) number(name string, absent int) (int, error) {
-	raw := trimSpace(x.attr(name))
+	raw := x.attr(name)
 	if len(raw) == 0 {
 		return absent, nil
 	}

@@ -66,7 +66,7 @@ func (s *scanner) startRow() error {
 	if err != nil {
 		return err
 	}
-	if len(trimSpace(s.attr("r"))) > 0 {
+	if len(s.attr("r")) > 0 {
 		return s.numberRow(number)
 	}
 	return nil
@@ -85,11 +85,11 @@ func (s *scanner) resetRow() {
 func (s *scanner) numberRow(number int) error {
 	switch {
 	case number < 1 || number > maxRows:
-		return s.wrong("a row has the number %d; rows go from 1 to %d", number, maxRows)
+		return s.faulty("a row has the number %d; rows go from 1 to %d", number, maxRows)
 	case number > s.limits.Rows:
 		return beyond(fmt.Sprintf("the sheet has a row %d, the limit is %d", number, s.limits.Rows), "Rows")
 	case s.rowsSeen[number>>6]&(1<<(number&63)) != 0:
-		return s.wrong("row %d is given twice", number)
+		return s.faulty("row %d is given twice", number)
 	}
 	s.takeRow(number)
 	return nil
@@ -159,15 +159,21 @@ func (s *scanner) endRow() error {
 	return nil
 }
 
+// faulty is the error for values that contradict the format. The cell or row
+// that it names says where it happened.
+func (s *scanner) faulty(format string, args ...any) error {
+	return damaged(fmt.Sprintf(format, args...))
+}
+
 // claim settles the column of a cell.
 func (s *scanner) claim(col int) error {
 	switch {
 	case col < 1 || col > maxColumns:
-		return s.wrong("row %d has more than %d columns", s.row.Number, maxColumns)
+		return s.faulty("row %d has more than %d columns", s.row.Number, maxColumns)
 	case col > s.limits.Columns:
 		return beyond(fmt.Sprintf("the sheet has a column %s, the limit is %d columns", ColumnName(col), s.limits.Columns), "Columns")
 	case s.colsSeen[col] == s.stamp:
-		return s.wrong("the cell is given twice")
+		return s.faulty("the cell is given twice")
 	}
 	s.colsSeen[col] = s.stamp
 	s.lastCol = col
@@ -214,7 +220,7 @@ func (s *scanner) shared(index int) (empty bool, err error) {
 		}
 	}
 	if index >= len(s.strings.items) {
-		return false, s.wrong("%s", outOfTable(index, len(s.strings.items)))
+		return false, s.faulty("%s", outOfTable(index, len(s.strings.items)))
 	}
 	if s.strings.empty(index) {
 		return true, nil

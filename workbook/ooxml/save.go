@@ -7,6 +7,7 @@ import (
 	"io"
 	"maps"
 	"slices"
+	"time"
 
 	"github.com/klauspost/compress/flate"
 )
@@ -95,6 +96,10 @@ func (b *Book) prepare(changes Changes) (*job, error) {
 // standard library's level 6, for a twelfth more bytes.
 const compression = 6
 
+// firstDay is the first day that a zip file can name. New parts bear it, so that
+// the same save gives the same bytes.
+var firstDay = time.Date(1980, 1, 1, 0, 0, 0, 0, time.UTC)
+
 // write writes the zip file: entries that do not change in their compressed
 // form, in order, with their times, comments and extra fields.
 func (b *Book) write(w io.Writer, j *job) error {
@@ -119,7 +124,7 @@ func (b *Book) write(w io.Writer, j *job) error {
 		header.Method = zip.Deflate
 		// A zero Modified keeps the entry's time as its other fields have it,
 		// where a time set anew would add one more extra field.
-		header.Modified = timeUnset
+		header.Modified = time.Time{}
 		part, err := out.CreateHeader(&header)
 		if err != nil {
 			return err
@@ -129,7 +134,7 @@ func (b *Book) write(w io.Writer, j *job) error {
 		}
 	}
 	for _, p := range j.add {
-		header := zip.FileHeader{Name: p.name, Method: zip.Deflate, ModifiedDate: epochDate}
+		header := zip.FileHeader{Name: p.name, Method: zip.Deflate, Modified: firstDay}
 		part, err := out.CreateHeader(&header)
 		if err != nil {
 			return err

@@ -200,7 +200,7 @@ func (s *scanner) run() error {
 		case "mergeCells":
 			return s.children(func() error { return s.mergedRange() })
 		case "autoFilter":
-			if r, ok := ParseRange(string(trimSpace(s.attr("ref")))); ok {
+			if r, ok := ParseRange(string(s.attr("ref"))); ok {
 				s.facts.AutoFilter = &r
 			}
 		case "sheetProtection":
@@ -244,11 +244,16 @@ func (s *scanner) columnStyles() error {
 			return nil
 		}
 		var c columnStyle
-		var err [3]error
-		c.first, err[0] = s.number("min", 0)
-		c.last, err[1] = s.number("max", 0)
-		c.style, err[2] = s.number("style", 0)
+		for _, field := range [...]struct {
+			name string
+			to   *int
+		}{{"min", &c.first}, {"max", &c.last}, {"style", &c.style}} {
+			var err error
+			if *field.to, err = s.number(field.name, 0); err != nil {
+				return err
+			}
+		}
 		s.plan.columns = append(s.plan.columns, c)
-		return errors.Join(err[:]...)
+		return nil
 	})
 }

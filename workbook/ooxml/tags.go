@@ -242,23 +242,34 @@ func (x *lexer) resolve(prefix []byte) namespace {
 	return spaceOther
 }
 
-// attr gives the value, as it is written, of an attribute without a prefix. An
-// empty value is as good as none.
-func (x *lexer) attr(name string) []byte {
-	for _, a := range x.attrs {
-		if string(a.name) == name {
-			return a.value
+// rawAttr gives the value, as it is written, of an attribute without a prefix.
+func (x *lexer) rawAttr(name string) []byte {
+	for i := range x.attrs {
+		if string(x.attrs[i].name) == name {
+			return x.attrs[i].value
 		}
 	}
 	return nil
 }
 
-// text gives the value of an attribute without a prefix.
-func (x *lexer) attrText(name string) (string, error) { return x.value(x.attr(name)) }
+// attr gives the value of an attribute that is a number or one of a few words:
+// without white space around it, so that an empty value is as good as none.
+func (x *lexer) attr(name string) []byte {
+	raw := trimSpace(x.rawAttr(name))
+	if bytes.IndexByte(raw, '&') >= 0 {
+		if b, err := x.appendText(nil, raw, false); err == nil {
+			return trimSpace(b)
+		}
+	}
+	return raw
+}
+
+// attrText gives the value of an attribute without a prefix.
+func (x *lexer) attrText(name string) (string, error) { return x.value(x.rawAttr(name)) }
 
 // flag gives the value of a yes-or-no attribute, false where there is none.
 func (x *lexer) flag(name string) bool {
-	switch string(trimSpace(x.attr(name))) {
+	switch string(x.attr(name)) {
 	case "1", "true", "on":
 		return true
 	}
@@ -277,7 +288,7 @@ func (x *lexer) attrIn(space namespace, local string) (string, error) {
 
 // value decodes an attribute's value.
 func (x *lexer) value(raw []byte) (string, error) {
-	if bytes.IndexAny(raw, "&\r\n\t") < 0 {
+	if !bytes.ContainsAny(raw, "&\r\n\t") {
 		return string(raw), nil
 	}
 	b, err := x.appendText(nil, raw, false)

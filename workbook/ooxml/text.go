@@ -113,8 +113,15 @@ func plain(b []byte) bool {
 }
 
 func plainRunes(b []byte) bool {
-	return utf8.Valid(b) && bytes.IndexAny(b, "&\r\uFFFE\uFFFF") < 0 && !bytes.Contains(b, []byte("_x")) &&
-		bytes.IndexFunc(b, func(c rune) bool { return c < 0x20 && c != '\t' && c != '\n' }) < 0
+	for i := 0; i < len(b); {
+		c, n := utf8.DecodeRune(b[i:])
+		switch {
+		case c == utf8.RuneError && n == 1, !isXMLChar(c), c == '\r', c == '&', c == '_' && i+1 < len(b) && b[i+1] == 'x':
+			return false
+		}
+		i += n
+	}
+	return true
 }
 
 // checkText refuses decoded text that XML cannot hold or that is too long.
