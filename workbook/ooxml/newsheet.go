@@ -140,7 +140,7 @@ func (b *Book) addSheets(j *job, sheets []NewSheet, strict bool) ([]string, erro
 // freeNames gives names for new sheet parts, in the folder of sheets beside the
 // workbook part.
 func (b *Book) freeNames(workbook string, count int) []string {
-	dir := path.Dir(strings.TrimPrefix(path.Clean("/"+strings.ReplaceAll(workbook, `\`, "/")), "/"))
+	dir := path.Dir(path.Clean("/" + slashes(workbook))[1:])
 	var names []string
 	for n := 1; len(names) < count; n++ {
 		if name := path.Join(dir, fmt.Sprintf("worksheets/sheet%d.xml", n)); b.find(name) < 0 {

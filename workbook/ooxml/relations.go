@@ -14,10 +14,13 @@ type relation struct {
 	isOffice bool   // a relationship of the office document namespaces
 }
 
+// slashes gives a name with slashes where careless writers put backslashes.
+func slashes(name string) string { return strings.ReplaceAll(name, `\`, "/") }
+
 // relationsPart is the name of the part with the relationships of another, or of
 // the package where that is "" (ECMA-376 part 2, 6.5.2.3).
 func relationsPart(part string) string {
-	dir, base := path.Split(part)
+	dir, base := path.Split(slashes(part))
 	return dir + "_rels/" + base + ".rels"
 }
 
@@ -25,9 +28,9 @@ func relationsPart(part string) string {
 // be absolute or relative, with slashes of either kind.
 func resolve(part, target string) string {
 	target, _, _ = strings.Cut(target, "#")
-	target = strings.ReplaceAll(target, `\`, "/")
+	target = slashes(target)
 	if !strings.HasPrefix(target, "/") {
-		target = path.Join("/", path.Dir(part), target)
+		target = path.Join("/", path.Dir(slashes(part)), target)
 	}
 	return path.Clean(target)[1:]
 }

@@ -32,7 +32,7 @@ type container struct {
 // ASCII case only (ECMA-376 part 2, 6.2.2.3). Backslashes and names with . or ..
 // come from careless writers; no name is ever used as a path.
 func partKey(name string) string {
-	name = path.Clean("/" + strings.ReplaceAll(name, `\`, "/"))
+	name = path.Clean("/" + slashes(name))
 	return strings.Map(func(c rune) rune {
 		if 'A' <= c && c <= 'Z' {
 			return c + 'a' - 'A'
