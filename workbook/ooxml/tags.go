@@ -286,19 +286,18 @@ func (x *lexer) attrIn(space namespace, local string) (string, error) {
 	return "", nil
 }
 
-// value decodes an attribute's value.
+// value decodes an attribute's value. White space in it counts as spaces, unless
+// it is written as references (XML 1.0, 3.3.3).
 func (x *lexer) value(raw []byte) (string, error) {
 	if !bytes.ContainsAny(raw, "&\r\n\t") {
 		return string(raw), nil
 	}
-	b, err := x.appendText(nil, raw, false)
-	if err != nil {
-		return "", err
-	}
-	for i, c := range b {
-		if c == '\n' || c == '\t' {
-			b[i] = ' '
+	raw = bytes.ReplaceAll(raw, []byte("\r\n"), []byte(" "))
+	for i, c := range raw {
+		if isXMLSpace(c) {
+			raw[i] = ' '
 		}
 	}
-	return string(b), nil
+	b, err := x.appendText(nil, raw, false)
+	return string(b), err
 }
