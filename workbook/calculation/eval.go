@@ -1,0 +1,379 @@
+package calculation
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"slices"
+	"strings"
+	"sync"
+	"sync/atomic"
+
+	"halfwidth/funcs"
+)
+
+// Results is what a plan gave: the outcome of every row, and what has no column
+// to stand in.
+type Results struct {
+	Rows        []*RowResult
+	Diagnostics []Diagnostic // of layouts, and of rows whose block has no `> note`
+	Tables      []TableSheet
+}
+
+// RowResult is the outcome of one row.
+type RowResult struct {
+	Row      *Row
+	Status   funcs.Status
+	Findings []Diagnostic   // the most serious first
+	Outcome  *funcs.Outcome // nil where the call was refused before it was made, or made for each group
+	Groups   []GroupOutcome // of a sample given `for each`
+	Edits    []Edit
+
+	table *TableSheet
+}
+
+// GroupOutcome is the outcome for one group.
+type GroupOutcome struct {
+	Name    string
+	Outcome *funcs.Outcome // nil where the call was refused before it was made
+	Note    string         // why, then
+}
+
+// Note joins the messages of the findings.
+func (r *RowResult) Note() string {
+	list := make([]funcs.Finding, len(r.Findings))
+	for i, f := range r.Findings {
+		list[i] = f.Finding
+	}
+	return funcs.Note(list)
+}
+
+// Run works the rows out, by at most so many workers at once. The results do
+// not depend on their number. The error is the context's.
+func (p *Plan) Run(ctx context.Context, workers int) (*Results, error) {
+	done := make([]*RowResult, len(p.Rows))
+	look := func(c resultCell) (Cell, *fault) { return resultOf(done[c.row.order], c) }
+	for _, level := range p.levels() {
+		err := inParallel(ctx, workers, len(level), func(i int) error {
+			r := level[i]
+			result, err := p.work(ctx, r, look)
+			done[r.order] = result
+			return err
+		})
+		if err != nil {
+			return nil, err
+		}
+	}
+	out := &Results{Rows: done, Diagnostics: p.Diagnostics()}
+	for _, r := range done {
+		if r.Row.Block.column(ResultColumn, "note") == nil || r.Row.closed[r.Row.Block.column(ResultColumn, "note").Col] {
+			out.Diagnostics = append(out.Diagnostics, r.Findings...)
+		}
+		if r.table != nil {
+			out.Tables = append(out.Tables, *r.table)
+		}
+	}
+	return out, nil
+}
+
+// inParallel calls work for 0 to n-1 from several goroutines and gives the
+// error of the lowest.
+func inParallel(ctx context.Context, workers, n int, work func(int) error) error {
+	workers = max(1, min(workers, n))
+	errs := make([]error, n)
+	var next atomic.Int64
+	var group sync.WaitGroup
+	for range workers {
+		group.Go(func() {
+			for i := int(next.Add(1) - 1); i < n && ctx.Err() == nil; i = int(next.Add(1) - 1) {
+				errs[i] = work(i)
+			}
+		})
+	}
+	group.Wait()
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	return errors.Join(errs...)
+}
+
+// levels puts the rows in an order in which each comes after those whose
+// results it reads. Rows in a circle are refused already and read nothing.
+func (p *Plan) levels() [][]*Row {
+	depth := make([]int, len(p.Rows))
+	var find func(r *Row) int
+	find = func(r *Row) int {
+		if depth[r.order] == 0 {
+			depth[r.order] = 1
+			if len(r.faults) == 0 {
+				for _, n := range r.needs {
+					depth[r.order] = max(depth[r.order], find(n.row)+1)
+				}
+			}
+		}
+		return depth[r.order]
+	}
+	var levels [][]*Row
+	for _, r := range p.Rows {
+		for len(levels) < find(r) {
+			levels = append(levels, nil)
+		}
+		levels[depth[r.order]-1] = append(levels[depth[r.order]-1], r)
+	}
+	return levels
+}
+
+// resultOf gives a result of a row that is worked out.
+func resultOf(r *RowResult, c resultCell) (Cell, *fault) {
+	at := c.address()
+	if r == nil || r.Status == funcs.StatusRefused {
+		return Cell{}, bad("no-value", fmt.Sprintf("is read from %s, but row %d is refused; see its reason", at, c.row.Number))
+	}
+	v, ok := r.value(c.name)
+	if !ok {
+		return Cell{}, bad("no-value", fmt.Sprintf("is read from %s, but row %d gives no %s", at, c.row.Number, c.name))
+	}
+	switch v := v.(type) {
+	case float64:
+		return Cell{Kind: Number, Number: v}, nil
+	case int:
+		return Cell{Kind: Number, Number: float64(v)}, nil
+	case bool:
+		cell := Cell{Kind: Bool}
+		if v {
+			cell.Number = 1
+		}
+		return cell, nil
+	case string:
+		return Cell{Kind: Text, Text: v}, nil
+	}
+	return Cell{}, bad("no-value", "is no value")
+}
+
+// work works out one row.
+func (p *Plan) work(ctx context.Context, r *Row, look lookUp) (*RowResult, error) {
+	result := &RowResult{Row: r}
+	result.Findings = append(result.Findings, r.faults...)
+	if len(r.faults) == 0 {
+		result.Findings = append(result.Findings, r.cautions...)
+		args, err := p.arguments(ctx, r, look)
+		if err != nil {
+			return nil, err
+		}
+		for _, in := range r.Inputs {
+			for _, f := range args[in.Name].faults {
+				result.addFault(in, &f)
+			}
+		}
+		if len(result.Findings) == len(r.cautions) {
+			if err := p.answer(ctx, result, args); err != nil {
+				return nil, err
+			}
+		} else {
+			result.addOrigins(args)
+		}
+	}
+	slices.SortStableFunc(result.Findings, func(a, b Diagnostic) int { return int(b.Severity) - int(a.Severity) })
+	result.Status = statusOf(result.Findings)
+	result.tabulate()
+	result.Edits = result.edits()
+	return result, nil
+}
+
+func statusOf(list []Diagnostic) funcs.Status {
+	findings := make([]funcs.Finding, len(list))
+	for i, d := range list {
+		findings[i] = d.Finding
+	}
+	return funcs.StatusOf(findings)
+}
+
+// arguments evaluates the inputs of a row, by name.
+func (p *Plan) arguments(ctx context.Context, r *Row, look lookUp) (map[string]*argument, error) {
+	terms := make(map[string]*term, len(r.Inputs))
+	for _, in := range r.Inputs {
+		terms[in.Name] = in.term
+	}
+	return evaluateAll(ctx, r.Function, terms, look, &p.cache)
+}
+
+// evaluateAll evaluates the terms of one call. Samples that must pair are read
+// together, and names of lists are spelt as those of the groups.
+func evaluateAll(ctx context.Context, f *funcs.Function, terms map[string]*term, look lookUp, kept *cache) (map[string]*argument, error) {
+	args := make(map[string]*argument, len(terms))
+	first, second := terms["sample"], terms["second-sample"]
+	if f.Paired && first != nil && second != nil {
+		a, b, err := pair(ctx, first, second, look, kept)
+		if err != nil {
+			return nil, err
+		}
+		args["sample"], args["second-sample"] = a, b
+	}
+	for _, in := range f.Inputs {
+		t := terms[in.Name]
+		if t == nil || args[in.Name] != nil {
+			continue
+		}
+		a, err := t.evaluate(ctx, look, kept)
+		if err != nil {
+			return nil, err
+		}
+		args[in.Name] = a
+	}
+	spellNames(f, args)
+	return args, nil
+}
+
+// spellNames gives the names in lists and texts the spelling of the groups they
+// go with, where only case and space differ.
+func spellNames(f *funcs.Function, args map[string]*argument) {
+	spelling := map[string]string{}
+	learn := func(names []string) {
+		for _, n := range names {
+			if _, ok := spelling[fold(n)]; !ok {
+				spelling[fold(n)] = n
+			}
+		}
+	}
+	for _, in := range f.Inputs {
+		if a := args[in.Name]; a != nil && in.Kind == funcs.Samples {
+			groups, _ := a.from.Value.([]funcs.Group)
+			for _, g := range groups {
+				learn([]string{g.Name})
+			}
+		}
+	}
+	for _, in := range f.Inputs {
+		a := args[in.Name]
+		if a == nil {
+			continue
+		}
+		switch v := a.from.Value.(type) {
+		case funcs.List:
+			learn(v.Names)
+			names := slices.Clone(v.Names)
+			for i, n := range names {
+				names[i] = spelling[fold(n)]
+			}
+			a.from.Value = funcs.List{Names: names, Values: v.Values}
+		case string:
+			if s, ok := spelling[fold(v)]; ok && in.Kind == funcs.Text {
+				a.from.Value = s
+			}
+		}
+	}
+}
+
+// addFault adds why an input cannot be used.
+func (r *RowResult) addFault(in *Input, f *fault) {
+	finding := placed(in.Name, in.Cell.String(), f)
+	if finding.Cells == nil {
+		finding.Cells = []string{r.Row.Block.calc.sheet.address(in.Cell.Row, in.Cell.Col)}
+	}
+	r.Findings = append(r.Findings, Diagnostic{Finding: finding, Sheet: r.Row.Block.Sheet, Cell: in.Cell, Span: f.span})
+}
+
+// addOrigins adds what the reading of the inputs found, where the call that
+// would report it is not made.
+func (r *RowResult) addOrigins(args map[string]*argument) {
+	for _, in := range r.Row.Inputs {
+		if a := args[in.Name]; a != nil && a.from.Origin != nil {
+			for _, f := range a.from.Origin.Findings {
+				f.Input = in.Name
+				r.add(f)
+			}
+		}
+	}
+}
+
+// add adds a finding, at the cell of its input.
+func (r *RowResult) add(f funcs.Finding) {
+	d := Diagnostic{Finding: f, Sheet: r.Row.Block.Sheet, Cell: CellRef{r.Row.Number, r.Row.Block.work}}
+	for _, in := range r.Row.Inputs {
+		if in.Name == f.Input {
+			d.Cell = in.Cell
+		}
+	}
+	r.Findings = append(r.Findings, d)
+}
+
+// answer makes the call, once or for each group.
+func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*argument) error {
+	r := result.Row
+	call := make(map[string]any, len(args))
+	for name, a := range args {
+		call[name] = a.from
+	}
+	if r.each == nil {
+		out, err := r.Function.Answer(ctx, call)
+		if err != nil {
+			result.addOrigins(args)
+			return result.addError(ctx, err, args)
+		}
+		result.Outcome = out
+		for _, f := range out.Findings {
+			result.add(f)
+		}
+		return nil
+	}
+	result.addOrigins(map[string]*argument{r.each.Name: args[r.each.Name]})
+	for _, g := range args[r.each.Name].each {
+		call[r.each.Name] = g.from
+		out, err := r.Function.Answer(ctx, call)
+		group := GroupOutcome{Name: g.name, Outcome: out}
+		if err != nil {
+			if ctx.Err() != nil {
+				return ctx.Err()
+			}
+			group.Note = sentence(strings.TrimSuffix(strings.Join(errorLines(err), "; "), "."))
+		}
+		result.Groups = append(result.Groups, group)
+	}
+	result.sumUpGroups()
+	return nil
+}
+
+// errorLines gives the faults of a call, without the function's name.
+func errorLines(err error) []string {
+	var wrong funcs.ArgumentErrors
+	if !errors.As(err, &wrong) {
+		return []string{err.Error()}
+	}
+	lines := make([]string, len(wrong))
+	for i, e := range wrong {
+		lines[i] = e.Error()
+	}
+	return lines
+}
+
+// addError adds the faults of a call as refusals, at the cells of their inputs.
+func (r *RowResult) addError(ctx context.Context, err error, args map[string]*argument) error {
+	if ctx.Err() != nil {
+		return ctx.Err()
+	}
+	var wrong funcs.ArgumentErrors
+	if !errors.As(err, &wrong) {
+		r.add(funcs.Finding{Code: "internal-error", Severity: funcs.Refused, Message: sentence(strings.TrimSuffix(err.Error(), "."))})
+		return nil
+	}
+	for _, e := range wrong {
+		f := funcs.Finding{Code: "bad-value", Severity: funcs.Refused, Input: e.Argument, Message: e.Error()}
+		for _, in := range r.Row.Inputs {
+			if in.Name != e.Argument {
+				continue
+			}
+			f.Message = fmt.Sprintf("%s (%s)%s", in.Cell, e.Argument, strings.TrimPrefix(e.Error(), e.Argument))
+			f.Cells = []string{r.Row.Block.calc.sheet.address(in.Cell.Row, in.Cell.Col)}
+			if o := args[in.Name].from.Origin; o != nil && o.Address != nil && e.Index >= 0 && e.Group == "" {
+				if at := o.Address(0, e.Index); at != "" {
+					f.Cells = append(f.Cells, at)
+				}
+			}
+		}
+		if !strings.HasSuffix(f.Message, "?") {
+			f.Message += "."
+		}
+		r.add(f)
+	}
+	return nil
+}

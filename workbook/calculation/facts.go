@@ -1,0 +1,146 @@
+package calculation
+
+import (
+	"slices"
+	"sync"
+)
+
+// facts are what several expressions over one sheet need to know of its rows;
+// each is found once.
+type facts struct {
+	mu       sync.Mutex
+	columns  map[rowsOfColumn]*columnFacts
+	repeated map[string][]int
+	gaps     map[[2]int][]gap
+}
+
+// rowsOfColumn is a column from one row to another.
+type rowsOfColumn struct{ col, first, last int }
+
+// columnFacts is what a stretch of a column holds. Rows are the first of their
+// kind, 0 where there is none.
+type columnFacts struct {
+	texts     []uint32 // the texts that stand in it, each once
+	isTrue    bool
+	isFalse   bool
+	covered   int // inside a merged range
+	unsaved   int // a formula without a saved value
+	durations int
+}
+
+// gap is a stretch of rows that are blank across the sheet.
+type gap struct{ first, last int }
+
+// columnFacts looks through a column, unless that was done before.
+func (sh *sheet) columnFacts(col, first, last int) *columnFacts {
+	sh.facts.mu.Lock()
+	defer sh.facts.mu.Unlock()
+	key := rowsOfColumn{col, first, last}
+	if f, ok := sh.facts.columns[key]; ok {
+		return f
+	}
+	f := &columnFacts{}
+	c := sh.frame.column(col)
+	seen := make([]bool, len(sh.frame.texts))
+	note := func(at *int, row int) {
+		if *at == 0 {
+			*at = row
+		}
+	}
+	for row := first; row <= last; row++ {
+		kind, flags := c.kind(row)
+		switch kind {
+		case Text:
+			if id := c.text(row); !seen[id] {
+				seen[id] = true
+				f.texts = append(f.texts, id)
+			}
+		case Bool:
+			f.isTrue = f.isTrue || flags&isTrue != 0
+			f.isFalse = f.isFalse || flags&isTrue == 0
+		case Duration:
+			note(&f.durations, row)
+		}
+		if flags&isCovered != 0 {
+			note(&f.covered, row)
+		}
+		if flags&IsUnsaved != 0 {
+			note(&f.unsaved, row)
+		}
+	}
+	if sh.facts.columns == nil {
+		sh.facts.columns = map[rowsOfColumn]*columnFacts{}
+	}
+	sh.facts.columns[key] = f
+	return f
+}
+
+// gaps lists the stretches of blank rows between two rows.
+func (sh *sheet) gaps(first, last int) []gap {
+	sh.facts.mu.Lock()
+	defer sh.facts.mu.Unlock()
+	key := [2]int{first, last}
+	if g, ok := sh.facts.gaps[key]; ok {
+		return g
+	}
+	var gaps []gap
+	for row := first; row <= last; row++ {
+		if sh.frame.Row(row)&RowFilled != 0 {
+			continue
+		}
+		if n := len(gaps); n > 0 && gaps[n-1].last == row-1 {
+			gaps[n-1].last = row
+		} else {
+			gaps = append(gaps, gap{row, row})
+		}
+	}
+	if sh.facts.gaps == nil {
+		sh.facts.gaps = map[[2]int][]gap{}
+	}
+	sh.facts.gaps[key] = gaps
+	return gaps
+}
+
+// repeatedHeaders lists the rows below a header in which every column of the
+// query reads as in the header.
+func (b *bound) repeatedHeaders() []int {
+	if len(b.cols) == 0 {
+		return nil
+	}
+	sh := b.at.sheet
+	sh.facts.mu.Lock()
+	defer sh.facts.mu.Unlock()
+	key := ""
+	for _, n := range append([]int{b.header, b.last}, b.cols...) {
+		key += decimal(n) + " "
+	}
+	if rows, ok := sh.facts.repeated[key]; ok {
+		return rows
+	}
+	lead := sh.frame.column(b.cols[0])
+	head := headerForm(headerText(sh.frame.At(b.header, b.cols[0])))
+	same := make([]uint8, len(sh.frame.texts)) // 1: reads as the header, 2: does not
+	var rows []int
+	for row := b.first; row <= b.last; row++ {
+		if kind, _ := lead.kind(row); kind != Text {
+			continue
+		}
+		id := lead.text(row)
+		if same[id] == 0 {
+			same[id] = 2
+			if headerForm(sh.frame.texts[id]) == head {
+				same[id] = 1
+			}
+		}
+		if same[id] == 1 && !slices.ContainsFunc(b.cols, func(col int) bool {
+			return headerForm(headerText(sh.frame.At(row, col))) != headerForm(headerText(sh.frame.At(b.header, col)))
+		}) {
+			rows = append(rows, row)
+		}
+	}
+	if sh.facts.repeated == nil {
+		sh.facts.repeated = map[string][]int{}
+	}
+	sh.facts.repeated[key] = rows
+	return rows
+}
