@@ -105,6 +105,7 @@ func (s *Session) reply(c *Call, result any, err error, inTurn bool) {
 	} else {
 		_ = s.writer.send(buf.Bytes())
 	}
+	s.sent(c)
 }
 
 var buffers = sync.Pool{New: func() any { return new(bytes.Buffer) }}

@@ -74,7 +74,10 @@ func wireError(err error) *Error {
 	return &Error{Code: CodeRequestFailed, Message: text}
 }
 
-var errCancelled = &Error{Code: CodeCancelled, Message: "The client cancelled this call."}
+var (
+	errCancelled = &Error{Code: CodeCancelled, Message: "The client cancelled this call."}
+	errEnding    = &Error{Code: CodeServerCancelled, Message: "The server is ending; the call was given up."}
+)
 
 // oneLine joins the lines and runs of blanks of a text.
 func oneLine(text string) string { return strings.Join(strings.Fields(text), " ") }

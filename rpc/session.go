@@ -37,12 +37,14 @@ type Session struct {
 	ended    chan struct{}
 	code     int
 
-	// Calls that have been left to workers, and what else is under way.
-	calls    map[*Call]struct{}
-	byKey    map[string]*Call
-	underWay int
-	settled  *sync.Cond // underWay has become 0, or waiting for that is over
-	pool     pool
+	// Calls that have been left to workers, and what else is under way. A call
+	// leaves calls and byKey before its reply is queued, unsent after.
+	calls   map[*Call]struct{}
+	byKey   map[string]*Call
+	unsent  int        // calls without a queued reply
+	others  int        // work that Go has begun
+	settled *sync.Cond // unsent or others has fallen, or waiting for them is over
+	pool    pool
 }
 
 type phase uint8
@@ -74,7 +76,7 @@ func newSession(ctx context.Context, out *frameWriter, remarks *remarks, opts Op
 // Handle is called by the library with what the stream gave it: the mark of a
 // message that the stream holds.
 func (s *Session) Handle(_ context.Context, _ *jsonrpc2.Conn, req *jsonrpc2.Request) {
-	e, ok := s.stream.take(req.Meta)
+	e, ok := s.stream.take(req.Method)
 	if !ok {
 		s.remarks.say("a message was lost between stream and session")
 		return
@@ -99,7 +101,7 @@ func (s *Session) notified(call *Call, method *Method) {
 	case now == over:
 	case method == nil && strings.HasPrefix(call.Method, "$/"):
 	case method == nil:
-		s.remarks.say("the notification %.100q is unknown and was passed over%s", call.Method, orNear(call.Method, s.names))
+		s.remarks.say("the notification %.100q is unknown and was passed over%s", call.Method, ask(near(call.Method, s.names)))
 	case !method.Notification:
 		s.remarks.say("%s came without an id, so its answer would reach nobody; it was passed over", call.Method)
 	case method.When != Always && now != open:
@@ -127,8 +129,9 @@ func (s *Session) refusal(call *Call, method *Method) *Error {
 	case s.phase == shutDown || s.phase == over:
 		return invalidRequest("The server has been shut down; only the notification exit is taken now.")
 	case method == nil:
-		e := &Error{Code: CodeMethodNotFound, Message: fmt.Sprintf("There is no method %.100q%s", call.Method, orNear(call.Method, s.names))}
-		if best := near(call.Method, s.names); best != "" {
+		best := near(call.Method, s.names)
+		e := &Error{Code: CodeMethodNotFound, Message: fmt.Sprintf("There is no method %.100q%s", call.Method, ask(best))}
+		if best != "" {
 			e.Data = &ErrorData{Suggestion: best}
 		}
 		return e
@@ -165,21 +168,26 @@ func (s *Session) start(call *Call, method *Method) {
 		}
 		run = rest
 	}
+	s.mu.Lock()
+	if s.phase == over { // ended by another goroutine meanwhile, which will not see this call
+		s.mu.Unlock()
+		call.answer(nil, errEnding, true)
+		return
+	}
 	call.run, call.size = run, len(call.Params)
 	call.ctx, call.cancel = context.WithCancel(s.ctx)
-	s.mu.Lock()
 	s.calls[call] = struct{}{}
 	if call.key != "" {
 		s.byKey[call.key] = call
 	}
-	s.underWay++
+	s.unsent++
 	s.mu.Unlock()
 	if !s.pool.add(call) {
 		call.answer(nil, &Error{Code: CodeServerCancelled, Message: fmt.Sprintf("%d long calls are waiting already; send this one again when some have been answered.", s.limits.Queue)}, true)
 	}
 }
 
-// forget frees the id of a call that is being answered.
+// forget frees the id of a call whose reply is about to be queued.
 func (s *Session) forget(call *Call) {
 	if call.run == nil {
 		return
@@ -189,20 +197,22 @@ func (s *Session) forget(call *Call) {
 	if call.key != "" {
 		delete(s.byKey, call.key)
 	}
-	s.less()
 	s.mu.Unlock()
 	call.cancel()
 }
 
-// less is called with mu held.
-func (s *Session) less() {
-	s.underWay--
-	if s.underWay == 0 {
-		s.settled.Broadcast()
+// sent is told of a call whose reply has been queued.
+func (s *Session) sent(call *Call) {
+	if call.run == nil {
+		return
 	}
+	s.mu.Lock()
+	s.unsent--
+	s.settled.Broadcast()
+	s.mu.Unlock()
 }
 
-// cancel answers a call that its client has given up, waiting or running.
+// cancelCall answers a call that its client has given up, waiting or running.
 func (s *Session) cancelCall(key string) {
 	s.mu.Lock()
 	call := s.byKey[key]
@@ -226,7 +236,7 @@ func (s *Session) inputEnded() {
 		s.settled.Broadcast()
 		s.mu.Unlock()
 	})
-	for s.underWay > 0 && !late && s.phase != over {
+	for s.unsent+s.others > 0 && !late && s.phase != over {
 		s.settled.Wait()
 	}
 	s.mu.Unlock()
@@ -258,8 +268,13 @@ func (s *Session) end(reason string) {
 	}
 	for _, call := range left {
 		s.pool.drop(call)
-		call.answer(nil, &Error{Code: CodeServerCancelled, Message: "The server is ending; the call was given up."}, false)
+		call.answer(nil, errEnding, false)
 	}
+	s.mu.Lock()
+	for s.unsent > 0 { // a worker is queueing the reply of a call that has just come to its end
+		s.settled.Wait()
+	}
+	s.mu.Unlock()
 	s.stop()
 	close(s.ended)
 }
@@ -275,7 +290,7 @@ func (s *Session) now() phase {
 // like a call. A panic in it is told to the error stream.
 func (s *Session) Go(name string, work func(ctx context.Context)) {
 	s.mu.Lock()
-	s.underWay++
+	s.others++
 	s.mu.Unlock()
 	go func() {
 		defer func() {
@@ -283,7 +298,8 @@ func (s *Session) Go(name string, work func(ctx context.Context)) {
 				s.remarks.trace(fmt.Sprintf("fault in %s: %v", name, fault), debug.Stack())
 			}
 			s.mu.Lock()
-			s.less()
+			s.others--
+			s.settled.Broadcast()
 			s.mu.Unlock()
 		}()
 		work(s.ctx)

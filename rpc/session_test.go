@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"io"
 	"math"
 	"os"
 	"os/exec"
@@ -398,29 +399,37 @@ func TestEndOfInputWaitsForBackgroundWork(t *testing.T) {
 }
 
 func TestPipedRequestsAreAllAnswered(t *testing.T) {
-	c := begin(t, Options{})
-	var b strings.Builder
-	b.WriteString(frame(`{"jsonrpc":"2.0","id":"start","method":"initialize","params":{}}`))
-	for i := range 200 {
-		method := "test/echo"
-		if i%2 == 1 {
-			method = "test/long"
+	for _, last := range []string{"", frame(`{"jsonrpc":"2.0","method":"exit"}`)} {
+		for range 50 {
+			c := begin(t, Options{})
+			var b strings.Builder
+			b.WriteString(frame(`{"jsonrpc":"2.0","id":"start","method":"initialize","params":{}}`))
+			for i := range 40 {
+				method := "test/echo"
+				if i%2 == 1 {
+					method = "test/long"
+				}
+				b.WriteString(frame(fmt.Sprintf(`{"jsonrpc":"2.0","id":%d,"method":"%s","params":{}}`, i, method)))
+			}
+			c.raw(b.String() + last)
+			c.in.Close()
+			c.wantPart(`"id":"start"`)
+			answered := map[int]bool{}
+			for range 40 {
+				var id int
+				m := c.next()
+				if _, err := fmt.Sscanf(m, `{"jsonrpc":"2.0","id":%d,`, &id); err != nil || answered[id] {
+					t.Fatalf("answered again, or nothing known: %s", m)
+				}
+				answered[id] = true
+				given := strings.HasSuffix(m, `"result":{}}`)
+				if stopped := strings.Contains(m, `"error":{"code":-32802,`); !given && (last == "" || !stopped) {
+					t.Fatalf("got %s", m)
+				}
+			}
+			c.ends(1)
 		}
-		b.WriteString(frame(fmt.Sprintf(`{"jsonrpc":"2.0","id":%d,"method":"%s","params":{}}`, i, method)))
 	}
-	c.raw(b.String())
-	c.in.Close()
-	c.wantPart(`"id":"start"`)
-	answered := map[string]bool{}
-	for range 200 {
-		answered[c.next()] = true
-	}
-	for i := range 200 {
-		if want := fmt.Sprintf(`{"jsonrpc":"2.0","id":%d,"result":{}}`, i); !answered[want] {
-			t.Errorf("missing: %s", want)
-		}
-	}
-	c.ends(1)
 }
 
 func TestTheServerEndsWithItsClientsProcess(t *testing.T) {
@@ -556,4 +565,13 @@ func TestWireErrors(t *testing.T) {
 			t.Errorf("%v became %d %q, want %d %q", test.err, got.Code, got.Message, test.code, test.text)
 		}
 	}
+}
+
+func BenchmarkQuickCalls(b *testing.B) {
+	methods := append(Methods(), testMethods()...)
+	one := frame(`{"jsonrpc":"2.0","id":12,"method":"test/echo","params":{"name":"mean-interval","arguments":{"mean":12.5,"sd":3.25,"n":40}}}`)
+	in := frame(`{"jsonrpc":"2.0","id":1,"method":"initialize","params":{}}`) + strings.Repeat(one, b.N)
+	b.ReportAllocs()
+	b.ResetTimer()
+	Serve(context.Background(), strings.NewReader(in), io.Discard, io.Discard, Options{Methods: methods})
 }

@@ -10,25 +10,26 @@ import (
 // 1964), case and hyphens not counted. Of equals the first counts.
 func near(name string, names []string) string {
 	best, least := "", len([]rune(name))/3+1
+	letters := folded(name)
 	for _, candidate := range names {
-		if d := distance(folded(name), folded(candidate)); d < least {
+		if d := distance(letters, folded(candidate)); d < least {
 			best, least = candidate, d
 		}
 	}
 	return best
 }
 
-// orNear is the end of a sentence: a full stop, or the near name as a question.
-func orNear(name string, names []string) string {
-	if n := near(name, names); n != "" {
-		return fmt.Sprintf("; did you mean %q?", n)
+// ask is the end of a sentence: a full stop, or a near name as a question.
+func ask(near string) string {
+	if near == "" {
+		return "."
 	}
-	return "."
+	return fmt.Sprintf("; did you mean %q?", near)
 }
 
-func folded(name string) []rune {
-	return []rune(strings.ToLower(strings.NewReplacer("-", "", "_", "", " ", "").Replace(name)))
-}
+var joined = strings.NewReplacer("-", "", "_", "", " ", "")
+
+func folded(name string) []rune { return []rune(strings.ToLower(joined.Replace(name))) }
 
 // distance counts the letters to put in, leave out, change or swap with their neighbour.
 func distance(a, b []rune) int {

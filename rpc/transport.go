@@ -12,7 +12,7 @@ import (
 
 // stream is the library's ObjectStream over our frames. It shows the library
 // only what the library handles rightly:
-//   - of a request or notification a mark; the session takes the message itself
+//   - of a request or notification a mark, in the place of its method; the session takes the message itself
 //     from the stream, with id and params as they came. (The library would close
 //     the connection on a fractional id or a batch, take id null for a
 //     notification, echo -1 as 18446744073709551615 and re-encode the params.)
@@ -103,12 +103,12 @@ func (s *stream) message(body []byte) []byte {
 	}
 	s.seq++
 	s.current, s.waiting = e, true
-	return append(strconv.AppendUint([]byte(`{"method":"-","meta":`), s.seq, 10), '}')
+	return append(strconv.AppendUint([]byte(`{"method":"`), s.seq, 10), `"}`...)
 }
 
 // take gives the message of a mark, once.
-func (s *stream) take(mark *json.RawMessage) (envelope, bool) {
-	if mark == nil || !s.waiting || string(*mark) != strconv.FormatUint(s.seq, 10) {
+func (s *stream) take(mark string) (envelope, bool) {
+	if !s.waiting || mark != strconv.FormatUint(s.seq, 10) {
 		return envelope{}, false
 	}
 	e := s.current

@@ -157,11 +157,11 @@ func (w *frameWriter) waitRoom(limit int) {
 func (w *frameWriter) close(patience time.Duration) {
 	w.mu.Lock()
 	w.closed = true
+	seen := w.written
 	w.changed.Broadcast()
 	w.mu.Unlock()
 	timer := time.NewTicker(max(patience, time.Millisecond))
 	defer timer.Stop()
-	seen := int64(-1)
 	for {
 		select {
 		case <-w.stopped:
