@@ -1,6 +1,7 @@
 package ooxml
 
 import (
+	"bytes"
 	"cmp"
 	"fmt"
 	"slices"
@@ -201,7 +202,7 @@ func rewriteCell(s *scanner, v Value) ([]byte, error) {
 	if kind != "" {
 		out = fmt.Appendf(out, ` t="%s"`, kind)
 	}
-	head := len(out)
+	out = append(out, bytes.TrimRight(raw[at:x.pos], "/>")...)
 	prefix := name[:len(name)-len(x.local)]
 	value, end := v.appendContent(nil, prefix), "</"+name+">"
 	single, from := x.single, x.pos
@@ -235,7 +236,7 @@ func rewriteCell(s *scanner, v Value) ([]byte, error) {
 		content = append(value, content...)
 	}
 	if len(content) == 0 {
-		return append(out[:head], "/>"...), nil
+		return append(out, "/>"...), nil
 	}
 	return append(append(append(out, '>'), content...), end...), nil
 }
