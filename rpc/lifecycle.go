@@ -15,28 +15,6 @@ const ProtocolVersion = 1
 // ServerName is the name given at initialize.
 const ServerName = "halfwidth-server"
 
-// Client is what a client said of itself at initialize.
-type Client struct {
-	Name         string
-	Version      string
-	Locale       string
-	ProcessID    int             // 0: not named
-	Capabilities json.RawMessage // ClientCapabilities of LSP
-	Options      json.RawMessage // initializationOptions
-}
-
-// Capability gives one of the client's capabilities by its path, or nil.
-func (c *Client) Capability(path ...string) json.RawMessage {
-	value := c.Capabilities
-	for _, name := range path {
-		value = memberOf(value, name)
-	}
-	return value
-}
-
-// Can reports whether a capability was announced as true.
-func (c *Client) Can(path ...string) bool { return string(c.Capability(path...)) == "true" }
-
 func lifecycleMethods() []Method {
 	return []Method{
 		Lenient(Method{Name: "initialize", Standard: true, When: Starting,

@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"context"
 	"encoding/json"
-	"errors"
 	"fmt"
 	"runtime/debug"
 	"strings"
@@ -306,52 +305,10 @@ func (s *Session) Go(name string, work func(ctx context.Context)) {
 	}()
 }
 
-// Client tells what the client said of itself at initialize.
-func (s *Session) Client() Client {
-	s.mu.Lock()
-	defer s.mu.Unlock()
-	return s.client
-}
-
-// PositionEncoding is how the client counts columns: "utf-16", or "utf-8"
-// where it offered that.
-func (s *Session) PositionEncoding() string {
-	s.mu.Lock()
-	defer s.mu.Unlock()
-	return s.encoding
-}
-
 func (s *Session) traced() bool {
 	s.mu.Lock()
 	defer s.mu.Unlock()
 	return s.trace != "off" && s.phase == open
-}
-
-// Notify sends a notification. It does not wait for the client.
-func (s *Session) Notify(method string, params any) {
-	if err := s.conn.Notify(s.ctx, method, params); err != nil && !errors.Is(err, jsonrpc2.ErrClosed) && s.ctx.Err() == nil {
-		s.remarks.say("the notification %s was not sent: %v", method, err)
-	}
-}
-
-// Ask calls a method of the client's and waits for the reply or for ctx. Only
-// workers and Go may ask: the reply is read by the goroutine that runs
-// handlers in turn.
-func (s *Session) Ask(ctx context.Context, method string, params, result any) error {
-	return s.conn.Call(ctx, method, params, result)
-}
-
-// Levels of LogMessage (MessageType of LSP).
-const (
-	LogError = 1 + iota
-	LogWarning
-	LogInfo
-	LogLog
-)
-
-// LogMessage sends a line to the client's log.
-func (s *Session) LogMessage(level int, text string) {
-	s.Notify("window/logMessage", map[string]any{"type": level, "message": text})
 }
 
 // answerFault answers a message that could not be taken. The id is null where

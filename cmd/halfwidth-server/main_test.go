@@ -203,3 +203,32 @@ func TestThreadsForReaderAndWriter(t *testing.T) {
 		t.Errorf("%d threads for %d cores", got, before)
 	}
 }
+
+// TestRequestsBeforeAnyReplyIsRead writes more than the pipes between two
+// processes hold, in both directions, before it reads.
+func TestRequestsBeforeAnyReplyIsRead(t *testing.T) {
+	c := server(t)
+	in, _ := c.StdinPipe()
+	out, _ := c.StdoutPipe()
+	if err := c.Start(); err != nil {
+		t.Fatal(err)
+	}
+	timer := time.AfterFunc(20*time.Second, func() { c.Process.Kill() })
+	defer timer.Stop()
+	var messages strings.Builder
+	messages.WriteString(frame(initialize))
+	for range 10_000 {
+		messages.WriteString(frame(`{"jsonrpc":"2.0","id":7,"method":"no/such"}`))
+	}
+	messages.WriteString(frame(shutdown) + frame(exit))
+	if _, err := io.WriteString(in, messages.String()); err != nil {
+		t.Fatal(err)
+	}
+	got, err := io.ReadAll(out)
+	if n := strings.Count(string(got), `"id":7,`); err != nil || n != 10_000 || !strings.HasSuffix(string(got), done) {
+		t.Errorf("%d answers, %v", n, err)
+	}
+	if code := wait(t, c); code != 0 {
+		t.Errorf("exit code %d", code)
+	}
+}
