@@ -107,6 +107,7 @@ var ratioOfSumsInterval = &Function{
 		secondSample.as("second-sample", "the denominator of each row, from the same rows"),
 		populationSize.as("population-size", "how many rows there are in all, where the sample is a sizeable part of them"),
 		confidence, direction, checks),
+	Paired: true,
 	Results: []Result{
 		{"ratio", Number, NoUnit, "sum of the numerators over sum of the denominators"},
 		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
