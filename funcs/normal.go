@@ -12,6 +12,7 @@ var normalFamily = []*Function{
 	normalProbability, normalQuantile, standardScore, normalTransform, normalSum, lognormalProduct,
 	tProbability, tQuantile, chiSquareProbability, chiSquareQuantile, fProbability, fQuantile,
 	noncentralTProbability, noncentralChiSquareProbability, noncentralFProbability,
+	studentizedRangeProbability, studentizedRangeQuantile,
 }
 
 var (
