@@ -224,11 +224,11 @@ func (a *argument) checkAny(s *series, q *Query) {
 		return
 	}
 	r := a.reading
-	why := fmt.Sprintf("%s holds no number", r.text)
+	why := r.text + " holds no number"
 	if q != nil && len(q.Where) > 0 && r.rows == 0 {
-		why = fmt.Sprintf("no row meets the condition of %s", r.text)
+		why = fmt.Sprintf("No row meets the condition of %s", r.text)
 	}
-	a.refuse(&fault{Finding: funcs.Finding{Code: "no-numbers", Severity: funcs.Refused, Message: sentence(why) + " Check the column and the conditions."}, span: spanOf(q)})
+	a.refuse(&fault{Finding: funcs.Finding{Code: "no-numbers", Severity: funcs.Refused, Message: ended(why) + " Check the column and the conditions."}, span: spanOf(q)})
 }
 
 func spanOf(q *Query) Span {
@@ -290,7 +290,7 @@ func (a *argument) fromGroups(r *reading, q *Query) {
 	}
 	if len(groups) == 0 && len(a.faults) == 0 {
 		a.refuse(&fault{Finding: funcs.Finding{Code: "no-numbers", Severity: funcs.Refused,
-			Message: sentence(r.text+" holds no number") + " Check the columns and the conditions."}, span: spanOf(q)})
+			Message: ended(r.text+" holds no number") + " Check the columns and the conditions."}, span: spanOf(q)})
 	}
 }
 
@@ -305,7 +305,7 @@ func (a *argument) fromEach(r *reading, q *Query) {
 	}
 	if len(a.each) == 0 && len(a.faults) == 0 {
 		a.refuse(&fault{Finding: funcs.Finding{Code: "no-numbers", Severity: funcs.Refused,
-			Message: sentence(r.text+" has no group") + " Check the columns and the conditions."}, span: q.Span})
+			Message: ended(r.text+" has no group") + " Check the columns and the conditions."}, span: q.Span})
 	}
 }
 

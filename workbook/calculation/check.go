@@ -73,7 +73,7 @@ func (c *calcSheet) readFunction(r *Row) {
 	case cell.Kind == Text && fold(cell.Text) != "":
 		f, err := funcs.Lookup(nameForm(cell.Text))
 		if err != nil {
-			r.refuse(at, Span{}, "unknown-name", fmt.Sprintf("%s names no function: %s.", at, strings.TrimSuffix(err.Error(), ".")))
+			r.refuse(at, Span{}, "unknown-name", ended(fmt.Sprintf("%s names no function: %s", at, err)))
 		}
 		r.Function = f
 	case !isFilled(cell):
@@ -271,10 +271,7 @@ func placed(input, cell string, f *fault) funcs.Finding {
 	}
 	switch {
 	case f.tail:
-		finding.Message = who + " " + f.Message
-		if !strings.HasSuffix(f.Message, "?") && !strings.HasSuffix(f.Message, ".") {
-			finding.Message += "."
-		}
+		finding.Message = ended(who + " " + f.Message)
 	case cell != "" && f.Severity == funcs.Refused:
 		finding.Message = who + ": " + f.Message
 	}

@@ -29,7 +29,8 @@ type RowResult struct {
 	Groups   []GroupOutcome // of a sample given `for each`
 	Edits    []Edit
 
-	table *TableSheet
+	table   *TableSheet
+	skipped int // of a sample given `for each`
 }
 
 // GroupOutcome is the outcome for one group.
@@ -221,7 +222,25 @@ func evaluateAll(ctx context.Context, f *funcs.Function, terms map[string]*term,
 		args[in.Name] = a
 	}
 	spellNames(f, args)
+	sayOnce(f, args)
 	return args, nil
+}
+
+// sayOnce keeps of findings that several inputs share, such as two samples of
+// one table, only the first.
+func sayOnce(f *funcs.Function, args map[string]*argument) {
+	said := map[string]bool{}
+	for _, in := range f.Inputs {
+		a := args[in.Name]
+		if a == nil || a.from.Origin == nil {
+			continue
+		}
+		a.from.Origin.Findings = slices.DeleteFunc(a.from.Origin.Findings, func(f funcs.Finding) bool {
+			again := said[f.Message]
+			said[f.Message] = true
+			return again
+		})
+	}
 }
 
 // spellNames gives the names in lists and texts the spelling of the groups they
@@ -317,6 +336,7 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 		return nil
 	}
 	result.addOrigins(map[string]*argument{r.each.Name: args[r.each.Name]})
+	result.skipped = args[r.each.Name].from.Origin.Skipped
 	for _, g := range args[r.each.Name].each {
 		call[r.each.Name] = g.from
 		out, err := r.Function.Answer(ctx, call)
@@ -325,7 +345,7 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 			if ctx.Err() != nil {
 				return ctx.Err()
 			}
-			group.Note = sentence(strings.TrimSuffix(strings.Join(errorLines(err), "; "), "."))
+			group.Note = sentence(strings.Join(errorLines(err), "; "))
 		}
 		result.Groups = append(result.Groups, group)
 	}
@@ -353,7 +373,7 @@ func (r *RowResult) addError(ctx context.Context, err error, args map[string]*ar
 	}
 	var wrong funcs.ArgumentErrors
 	if !errors.As(err, &wrong) {
-		r.add(funcs.Finding{Code: "internal-error", Severity: funcs.Refused, Message: sentence(strings.TrimSuffix(err.Error(), "."))})
+		r.add(funcs.Finding{Code: "internal-error", Severity: funcs.Refused, Message: sentence(err.Error())})
 		return nil
 	}
 	for _, e := range wrong {
@@ -370,9 +390,7 @@ func (r *RowResult) addError(ctx context.Context, err error, args map[string]*ar
 				}
 			}
 		}
-		if !strings.HasSuffix(f.Message, "?") {
-			f.Message += "."
-		}
+		f.Message = ended(f.Message)
 		r.add(f)
 	}
 	return nil

@@ -12,6 +12,7 @@ type facts struct {
 	columns  map[rowsOfColumn]*columnFacts
 	repeated map[string][]int
 	gaps     map[[2]int][]gap
+	indexes  map[rowsOfColumn]*index
 }
 
 // rowsOfColumn is a column from one row to another.
@@ -143,4 +144,73 @@ func (b *bound) repeatedHeaders() []int {
 	}
 	sh.facts.repeated[key] = rows
 	return rows
+}
+
+// index lists the rows of each text of a column, and those of all cells that
+// are neither text nor blank.
+type index struct {
+	rows   [][]int32 // by text
+	others []int32
+}
+
+// indexFrom is the number of rows from which an index pays.
+const indexFrom = 20_000
+
+// index makes the index of a column, unless that was done before.
+func (sh *sheet) index(col, first, last int) *index {
+	sh.facts.mu.Lock()
+	defer sh.facts.mu.Unlock()
+	key := rowsOfColumn{col, first, last}
+	if x, ok := sh.facts.indexes[key]; ok {
+		return x
+	}
+	x := &index{rows: make([][]int32, len(sh.frame.texts))}
+	c := sh.frame.column(col)
+	for row := first; row <= last; row++ {
+		switch kind, _ := c.kind(row); kind {
+		case Blank:
+		case Text:
+			id := c.text(row)
+			x.rows[id] = append(x.rows[id], int32(row))
+		default:
+			x.others = append(x.others, int32(row))
+		}
+	}
+	if sh.facts.indexes == nil {
+		sh.facts.indexes = map[rowsOfColumn]*index{}
+	}
+	sh.facts.indexes[key] = x
+	return x
+}
+
+// candidates lists the rows that a condition for equal texts may meet or leave
+// undecided, in order. It is false where looking through all rows is as quick.
+func (g *gathering) candidates() ([]int32, bool) {
+	if g.last-g.first < indexFrom {
+		return nil, false
+	}
+	sh := g.at.sheet
+	for _, t := range g.tests {
+		if op := t.condition.Op; op != Equal && op != IsOneOf || len(t.words) == 0 || t.column == nil {
+			continue
+		}
+		x := sh.index(t.column.col, g.first, g.last)
+		var rows []int32
+		lists := 0
+		for _, id := range sh.columnFacts(t.column.col, g.first, g.last).texts {
+			if t.onText(sh.frame.texts[id]) == meets {
+				rows = append(rows, x.rows[id]...)
+				lists++
+			}
+		}
+		rows = append(rows, x.others...)
+		if len(rows) > (g.last-g.first)/4 {
+			continue
+		}
+		if lists > 1 || len(x.others) > 0 {
+			slices.Sort(rows)
+		}
+		return rows, true
+	}
+	return nil, false
 }

@@ -155,27 +155,36 @@ func (g *gathering) prepare() *fault {
 	return nil
 }
 
-// run goes through the rows.
+// run goes through the rows, or through those that may meet the conditions.
 func (g *gathering) run(ctx context.Context) error {
 	frame := g.at.sheet.frame
 	repeated := g.repeatedHeaders()
-	for row := g.first; row <= g.last; row++ {
-		if row&0x3fff == 0 && ctx.Err() != nil {
-			return ctx.Err()
-		}
+	visit := func(row int) {
 		if frame.Row(row)&RowFilled == 0 {
-			continue
+			return
 		}
-		if len(repeated) > 0 && repeated[0] <= row {
-			at := repeated[0]
+		for len(repeated) > 0 && repeated[0] < row {
 			repeated = repeated[1:]
-			if at == row {
-				continue
-			}
 		}
-		if g.meets(row) {
+		if (len(repeated) == 0 || repeated[0] != row) && g.meets(row) {
 			g.row(row)
 		}
+	}
+	const often = 0x3fff
+	if rows, ok := g.candidates(); ok {
+		for i, row := range rows {
+			if i&often == 0 && ctx.Err() != nil {
+				return ctx.Err()
+			}
+			visit(int(row))
+		}
+		return nil
+	}
+	for row := g.first; row <= g.last; row++ {
+		if row&often == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
+		visit(row)
 	}
 	return nil
 }
@@ -353,10 +362,16 @@ func (g *gathering) finish() {
 // text writes the addresses and conditions as resolved.
 func (b *bound) text() string {
 	q := b.query
-	short := func(c ColumnRef) string { return nameText(c.Name) + " (" + b.area(b.col(c)).String() + ")" }
+	unit := func(c ColumnRef) string {
+		if c.Unit == "" {
+			return ""
+		}
+		return " in " + c.Unit
+	}
+	short := func(c ColumnRef) string { return nameText(c.Name) + " (" + b.area(b.col(c)).String() + unit(c) + ")" }
 	parts := make([]string, len(q.Columns))
 	for i, c := range q.Columns {
-		parts[i] = b.area(b.col(c)).String()
+		parts[i] = b.area(b.col(c)).String() + unit(c)
 	}
 	var w strings.Builder
 	switch q.What {

@@ -278,6 +278,7 @@ func (b *bound) notFound(f *Frame, first, last int) {
 		b.refuse(b.query.Place.Span, fmt.Sprintf("%s holds no rows.", where))
 		return
 	}
+	given := b.query.Place.HeaderRow > 0
 	last = min(last, f.LastRow())
 	best, most, cols := 0, 0, make([]int, len(b.names))
 	for row := first; row <= last; row++ {
@@ -300,7 +301,9 @@ func (b *bound) notFound(f *Frame, first, last int) {
 	switch {
 	case best > 0:
 		b.refuse(name.Span, fmt.Sprintf("The header of %s in row %d has no column %s. %s", where, best, quote(name.Name), suggest(name.Name, texts)))
-	case first == last:
+	case given && len(texts) == 0:
+		b.refuse(name.Span, fmt.Sprintf("Row %d of %s holds no names of columns.", first, where))
+	case given || first == last:
 		b.refuse(name.Span, fmt.Sprintf("Row %d of %s has no column %s. %s", first, where, quote(name.Name), suggest(name.Name, texts)))
 	default:
 		b.refuse(name.Span, fmt.Sprintf("No row from %d to %d of %s holds a column %s. %s", first, max(last, first), where, quote(name.Name),

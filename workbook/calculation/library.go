@@ -125,7 +125,7 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 	if ref.File != "" && name == "" {
 		sheets := sh.names(Sheet)
 		if len(sheets) != 1 {
-			return located{}, unknownPlace(ref.Span, fmt.Sprintf("%s has %s", ref.File, plural(len(sheets), "sheet")),
+			return located{}, unknownPlace(ref.Span, fmt.Sprintf("The file %s has %s", ref.File, plural(len(sheets), "sheet")),
 				"Name one after a slash: "+(&PlaceRef{File: ref.File, Name: firstOr(sheets, "Trips")}).String()+".")
 		}
 		name = sheets[0]
@@ -151,7 +151,7 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 	case ref.File == "" && fileEnd(name) == len(name):
 		return lib.locate(&PlaceRef{File: name, HeaderRow: ref.HeaderRow, Span: ref.Span})
 	}
-	return located{}, unknownPlace(ref.Span, fmt.Sprintf("there is no sheet, table or defined name %s%s", quote(name), inFile(ref.File)), suggest(name, sh.names()))
+	return located{}, unknownPlace(ref.Span, fmt.Sprintf("There is no sheet, table or defined name %s%s", quote(name), inFile(ref.File)), suggest(name, sh.names()))
 }
 
 func firstOr(list []string, otherwise string) string {
@@ -184,13 +184,21 @@ func suggest(name string, names []string) string {
 }
 
 func unknownPlace(span Span, what, advice string) *fault {
-	return &fault{Finding: funcs.Finding{Code: "unknown-name", Severity: funcs.Refused, Message: sentence(what) + " " + advice}, span: span}
+	return &fault{Finding: funcs.Finding{Code: "unknown-name", Severity: funcs.Refused, Message: ended(what) + " " + advice}, span: span}
 }
 
 // sentence makes a clause a sentence.
 func sentence(s string) string {
 	r := firstRune(s)
-	return strings.ToUpper(string(r)) + s[len(string(r)):] + "."
+	return ended(strings.ToUpper(string(r)) + s[len(string(r)):])
+}
+
+// ended gives a clause its full stop, unless it ends in a mark already.
+func ended(s string) string {
+	if strings.HasSuffix(s, "?") || strings.HasSuffix(s, ".") {
+		return s
+	}
+	return s + "."
 }
 
 // shelfOf gives the source that a place is in: the book itself, or a file.
@@ -200,7 +208,7 @@ func (lib *library) shelfOf(ref *PlaceRef) (*shelf, *fault) {
 			return lib.shelfOf(&PlaceRef{File: ref.Name, Span: ref.Span})
 		}
 		if lib.own == nil {
-			return nil, unknownPlace(ref.Span, "no workbook is open, so there is no place "+quote(ref.Name), "Name a file, such as trips.csv or other-book.xlsx/Trips.")
+			return nil, unknownPlace(ref.Span, "No workbook is open, so there is no place "+quote(ref.Name), "Name a file, such as trips.csv or other-book.xlsx/Trips.")
 		}
 		return lib.own, nil
 	}
@@ -217,7 +225,7 @@ func (lib *library) shelfOf(ref *PlaceRef) (*shelf, *fault) {
 		lib.files[fileKey{ref.File, lib.options}] = sh
 	}
 	if sh.err != nil {
-		return nil, &fault{Finding: funcs.Finding{Code: "unreadable-file", Severity: funcs.Refused, Message: ref.File + " " + strings.TrimSuffix(sh.err.Error(), ".") + "."}, span: ref.Span}
+		return nil, &fault{Finding: funcs.Finding{Code: "unreadable-file", Severity: funcs.Refused, Message: ended("The file " + ref.File + " " + sh.err.Error())}, span: ref.Span}
 	}
 	return sh, nil
 }
@@ -276,5 +284,5 @@ func (sh *sheet) choose(head *Frame) Columns {
 // unreadable gives the fault of a sheet that could not be read.
 func (sh *sheet) unreadable(span Span) *fault {
 	return &fault{Finding: funcs.Finding{Code: "unreadable-sheet", Severity: funcs.Refused,
-		Message: fmt.Sprintf("%s cannot be read: %s.", sh.label, strings.TrimSuffix(sh.err.Error(), "."))}, span: span}
+		Message: ended(sh.label + " cannot be read: " + sh.err.Error())}, span: span}
 }

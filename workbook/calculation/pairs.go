@@ -45,9 +45,9 @@ func pair(ctx context.Context, first, second *term, look lookUp, kept *cache) (a
 			p.byRow()
 		default:
 			two.faults = append(two.faults, fault{Finding: funcs.Finding{Code: "different-rows", Severity: funcs.Refused,
-				Message: sentence(fmt.Sprintf("%s and %s: %s", one.text, two.text, differentRows))}})
+				Message: ended(fmt.Sprintf("%s and %s: %s", one.text, two.text, differentRows))}})
 		}
-		p.finish(first)
+		p.finish()
 	}
 	mergeFaults(one, two)
 	a, b = first.newArgument(), second.newArgument()
@@ -100,7 +100,7 @@ func cannotPair(first, second *term) *fault {
 	case each(first) || each(second):
 		return refuse("Pairs cannot be taken for each group. Leave out for each, and give every group a row with a condition.")
 	case isRead(first) != isRead(second):
-		return refuse(sentence("one sample is read from a sheet and the other written out: "+differentRows) + "")
+		return refuse(ended("One sample is read from a sheet and the other written out: " + differentRows))
 	case key(first) != key(second):
 		return refuse("One sample has matched by and the other has none. Give both the column of the key.")
 	}
@@ -282,7 +282,7 @@ func keyAt(b *bound, row int) string {
 
 // finish gives both readings the pairs in the place of their values, and says
 // what was dropped.
-func (p *pairing) finish(first *term) {
+func (p *pairing) finish() {
 	if p.one.refused() != nil || p.two.refused() != nil {
 		return
 	}
@@ -299,12 +299,8 @@ func (p *pairing) finish(first *term) {
 		}
 	}
 	if p.dropped.n > 0 {
-		by := "row " + decimal(p.dropped.row)
-		if first.query != nil && first.query.query.Matched != nil {
-			by = "that of row " + decimal(p.dropped.row)
-		}
 		p.one.faults = append(p.one.faults, fault{Finding: funcs.Finding{Code: "cells-skipped", Severity: funcs.Caution,
-			Message: fmt.Sprintf("%s dropped because one of the two numbers is missing; the first is %s. Fill in the partners, or state that they are missing.",
-				wereWas(p.dropped.n, "pair"), by)}})
+			Message: fmt.Sprintf("%s dropped because one of the two numbers is missing; the first is that of row %d. Fill in the partners.",
+				wereWas(p.dropped.n, "pair"), p.dropped.row)}})
 	}
 }

@@ -143,7 +143,7 @@ func (c *calcSheet) readHeader(b *Block) {
 		b.named = true
 		f, err := funcs.Lookup(name)
 		if err != nil {
-			c.refuseBlock(b, b.work, "unknown-name", sentence(err.Error()))
+			c.refuseBlock(b, b.work, "unknown-name", ended(fmt.Sprintf("%s names no function: %s", CellRef{b.Header, b.work}, err)))
 		} else {
 			b.Function, known = f, words(f)
 		}

@@ -43,11 +43,11 @@ func (r *RowResult) value(name string) (any, bool) {
 	return nil, false
 }
 
-// groupValue gives what the groups of a row have in common: sums of used and
-// skipped, and the common results that are the same for all.
+// groupValue gives what the groups of a row have in common: how many values were
+// used and skipped, and the common results that are the same for all.
 func (r *RowResult) groupValue(name string) (any, bool) {
 	switch name {
-	case "used", "skipped":
+	case "used":
 		sum := 0
 		for _, g := range r.Groups {
 			if g.Outcome != nil {
@@ -57,6 +57,8 @@ func (r *RowResult) groupValue(name string) (any, bool) {
 			}
 		}
 		return sum, true
+	case "skipped":
+		return r.skipped, true
 	case "level", "direction", "citation", "version":
 		for _, g := range r.Groups {
 			if g.Outcome != nil && g.Outcome.Status != funcs.StatusRefused {
@@ -151,7 +153,7 @@ func (r *RowResult) tabulateGroups(t *TableSheet) {
 		t.Header = append(t.Header, res.Name)
 	}
 	for _, g := range r.Groups {
-		line := []any{g.Name}
+		line := []any{groupCell(g.Name)}
 		for _, res := range results {
 			var v any
 			switch {
@@ -169,6 +171,14 @@ func (r *RowResult) tabulateGroups(t *TableSheet) {
 		}
 		t.Rows = append(t.Rows, line)
 	}
+}
+
+// groupCell gives a group's name as the number that it is, if it is one.
+func groupCell(name string) any {
+	if x, ok := parseNumber(name); ok && shortest(x) == name {
+		return x
+	}
+	return name
 }
 
 func textOrNil(text string) any {

@@ -180,7 +180,7 @@ func (t *tally) findings(span Span) []fault {
 			wereWas(n, "cell"), strings.Join(parts, ", "), at(*first), first.text)
 	}
 	if s := t.looks; s.n > 0 {
-		say("text-looks-like-number", funcs.Caution, []string{at(s)}, "%s like a number but kept as text; the first is %s, %s. Turn them into numbers in the sheet.",
+		say("text-looks-like-number", funcs.Caution, []string{at(s)}, "%s like a number but stands there as text; the first is %s, %s. Turn them into numbers in the sheet.",
 			looks(s.n), at(s), quote(trim(s.text)))
 	}
 	if s := t.undecided; s.n > 0 {
