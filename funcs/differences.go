@@ -2,11 +2,12 @@ package funcs
 
 import (
 	"fmt"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 )
 
-var differences = []*Function{differenceInterval, ratioInterval, equivalenceTest, analysisOfVariance, adjustedPValues}
+var differences = []*Function{differenceInterval, ratioInterval, equivalenceTest, analysisOfVariance, pairwiseDifferences, adjustedPValues}
 
 // twoMeansWays are the ways of giving two groups of which the means are compared.
 var twoMeansWays = OneOf{
@@ -20,7 +21,7 @@ var twoMeansAssumptions = []string{
 	"with variances pooled: the same variance in both",
 }
 
-var twoMeansFindings = append(severalChecks[:len(severalChecks):len(severalChecks)], spreadsKind)
+var twoMeansFindings = slices.Concat(severalChecks, []FindingKind{spreadsKind})
 
 // methodText names the interval, its degrees of freedom and the divisor.
 func (m twoMeans) methodText(interval, variances string) string {

@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -30,7 +31,7 @@ var equalSpreadTest = &Function{
 		{"df-within", Number, NoUnit, "number of values less number of groups; absent for bartlett"},
 		{"p-value", Number, NoUnit, "chance of a statistic this large if all groups varied equally"},
 	},
-	Findings: append(severalChecks[:len(severalChecks):len(severalChecks)], noFewGroups),
+	Findings: slices.Concat(severalChecks, []FindingKind{fewGroupsKind}),
 	Assumptions: []string{"independent groups of independent values",
 		"for bartlett: normal values; heavier tails make it find differences that are not there"},
 	Citations: []string{"Brown & Forsythe 1974, Robust tests for the equality of variances", "Levene 1960", "Bartlett 1937"},

@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 )
@@ -45,7 +46,7 @@ var equivalenceTest = &Function{
 		{"equivalent", YesNo, NoUnit, "yes where p-value is at most significance: both limits lie within the margins"},
 	},
 	Findings:    twoMeansFindings,
-	Assumptions: append(twoMeansAssumptions[:len(twoMeansAssumptions):len(twoMeansAssumptions)], "margins chosen before the data were seen"),
+	Assumptions: slices.Concat(twoMeansAssumptions, []string{"margins chosen before the data were seen"}),
 	Citations:   []string{"Schuirmann 1987"},
 	Example: Example{
 		Label: "minutes of assembly, old process against new, margin 8 minutes",

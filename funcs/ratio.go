@@ -2,6 +2,7 @@ package funcs
 
 import (
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 )
@@ -19,8 +20,9 @@ var ratioInterval = &Function{
 		{"upper", Number, NoUnit, "upper limit; absent for direction above"},
 		resultDF, resultT, resultP,
 	},
-	Findings: append(twoMeansFindings[:len(twoMeansFindings):len(twoMeansFindings)],
-		FindingKind{"denominator-not-separated-from-zero", "the second mean is too near 0, for its standard error, to divide by"}),
+	Findings: slices.Concat(twoMeansFindings, []FindingKind{
+		{"denominator-not-separated-from-zero", "the second mean is too near 0, for its standard error, to divide by"},
+	}),
 	Assumptions: twoMeansAssumptions,
 	Citations:   []string{"Fieller 1954"},
 	Example: Example{

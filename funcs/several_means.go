@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -11,7 +12,7 @@ import (
 // meansWays are the ways of giving several groups of which the means are compared.
 var meansWays = OneOf{{Needs: []string{"samples"}}, {Needs: []string{"means", "sds", "ns"}}}
 
-var severalMeansFindings = append(twoMeansFindings[:len(twoMeansFindings):len(twoMeansFindings)], noFewGroups)
+var severalMeansFindings = slices.Concat(twoMeansFindings, []FindingKind{fewGroupsKind})
 
 // pooledFirst is variances with pooled as the default, as is usual for several means.
 var pooledFirst = variances.withDefault(pooled)
@@ -130,8 +131,7 @@ var analysisOfVariance = &Function{
 func (c *Call) pooledMeans(groups []groupSummary) error {
 	df1, df2 := float64(len(groups)-1), dfWithin(groups)
 	if df2 == 0 {
-		return refuse("few-values", c.groupsInput(), "%s: only 1 value in each, so there is no spread within groups to compare with; measure at least 2 in one.",
-			theGroups(groups))
+		return c.onlySingles(groups)
 	}
 	between, within := sumsOfSquares(groups)
 	if within == 0 {
@@ -153,6 +153,11 @@ func (c *Call) pooledMeans(groups []groupSummary) error {
 	c.setMeansTest(groups, f, df1, df2)
 	c.checkGroupSpreads(groups)
 	return nil
+}
+
+// onlySingles refuses what needs spread within groups where no group has any.
+func (c *Call) onlySingles(groups []groupSummary) error {
+	return refuse("few-values", c.groupsInput(), "%s: only 1 value in each, so nothing tells how much values vary; measure at least 2 in one.", theGroups(groups))
 }
 
 // separateMeans is Welch's test; groups of one value are left out.

@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -11,8 +12,8 @@ import (
 var spread = []*Function{pooledVariance, varianceInterval, varianceRatioInterval, equalSpreadTest}
 
 var (
-	noFewGroups   = FindingKind{"few-groups", "fewer than 2 groups"}
-	severalChecks = append(oneSampleFindings[:len(oneSampleFindings):len(oneSampleFindings)], noSpreadKind)
+	fewGroupsKind = FindingKind{"few-groups", "fewer than 2 groups"}
+	severalChecks = slices.Concat(oneSampleFindings, []FindingKind{noSpreadKind})
 )
 
 // varianceResults are the results of an interval for a variance and its root.
@@ -103,6 +104,18 @@ func summariesOf(groups []groupSummary) []summary {
 	return out
 }
 
+// pooledOf is the pooled variance of groups, its root and its degrees of
+// freedom; refused where there are none, or no spread.
+func (c *Call) pooledOf(groups []groupSummary) (variance, sd, df float64, err error) {
+	if df = dfWithin(groups); df == 0 {
+		return 0, 0, 0, c.onlySingles(groups)
+	}
+	if variance, sd = pooledSpread(summariesOf(groups)...); sd == 0 {
+		return 0, 0, 0, c.noGroupSpread(groups)
+	}
+	return variance, sd, df, nil
+}
+
 var pooledVariance = &Function{
 	Name:    "pooled-variance",
 	Version: 1,
@@ -111,7 +124,7 @@ var pooledVariance = &Function{
 	OneOf:   []OneOf{{{Needs: []string{"samples"}}, {Needs: []string{"sds", "ns"}}}},
 	Results: append(varianceResults("pooled-variance", "pooled-sd"), resultDF,
 		Result{"groups", Whole, NoUnit, "how many groups"}, resultN),
-	Findings:    append(severalChecks, spreadsKind),
+	Findings:    slices.Concat(severalChecks, []FindingKind{spreadsKind}),
 	Assumptions: []string{"independent normal values in each group", "the same variance in all groups"},
 	Citations:   []string{"ISO 3534-1", "ISO 2854"},
 	Example: Example{
@@ -126,13 +139,9 @@ var pooledVariance = &Function{
 		if err != nil {
 			return err
 		}
-		df := dfWithin(groups)
-		if df == 0 {
-			return refuse("few-values", c.groupsInput(), "%s: only 1 value in each, so no variance exists; measure at least 2 in one.", theGroups(groups))
-		}
-		variance, sd := pooledSpread(summariesOf(groups)...)
-		if sd == 0 {
-			return c.noGroupSpread(groups)
+		variance, sd, df, err := c.pooledOf(groups)
+		if err != nil {
+			return err
 		}
 		l := varianceLimits(confidence.Of(c), either, variance, df)
 		c.setVariance("pooled-variance", "pooled-sd", variance, sd, l)
