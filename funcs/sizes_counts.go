@@ -74,6 +74,13 @@ var proportionPrecisionSize = &Function{
 	Findings:    append([]FindingKind{exactFiniteKind}, precisionFindings...),
 	Assumptions: shareAssumptions,
 	Citations:   []string{"Wilson 1927", "Clopper & Pearson 1934", "Cochran 1977 (finite population)"},
+	Example: Example{
+		Label:     "a share near 10% to within 3 points",
+		Arguments: []Argument{{"proportion", 0.1}, {"half-width", 0.03}},
+		Want:      []Argument{{"n", 388}, {"attained-half-width", 0.02996167789189669168960748}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		p, err := c.sharePrecision()
 		if err != nil {
@@ -108,6 +115,13 @@ var proportionPrecisionOf = &Function{
 	Findings:    append([]FindingKind{exactFiniteKind, fewValuesKind}, precisionFindings...),
 	Assumptions: shareAssumptions,
 	Citations:   proportionPrecisionSize.Citations,
+	Example: Example{
+		Label:     "381 trials of a share near one half",
+		Arguments: []Argument{{"proportion", 0.5}, {"n", 381}},
+		Want:      []Argument{{"attained-half-width", 0.04995479363498200299099005}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		p, err := c.sharePrecision()
 		if err != nil {
@@ -166,6 +180,13 @@ var ratePrecisionSize = &Function{
 	Findings:    append([]FindingKind{anyExposureKind}, precisionFindings...),
 	Assumptions: []string{"counts that follow a Poisson law: independent events at one rate"},
 	Citations:   []string{"Garwood 1936"},
+	Example: Example{
+		Label:     "2 damaged parcels a day, to within 0.5 a day",
+		Arguments: []Argument{{"rate", 2.0}, {"half-width", 0.5}},
+		Want:      []Argument{{"exposure", 32.85290940443479422583933}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		p, err := c.ratePrecision()
 		if err != nil {
@@ -206,6 +227,13 @@ var ratePrecisionOf = &Function{
 	Findings:    []FindingKind{lowLevelKind},
 	Assumptions: ratePrecisionSize.Assumptions,
 	Citations:   ratePrecisionSize.Citations,
+	Example: Example{
+		Label:     "2 damaged parcels a day, over 10 days",
+		Arguments: []Argument{{"rate", 2.0}, {"exposure", 10.0}},
+		Want:      []Argument{{"attained-half-width", 0.9335929158635325645693500}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		p, err := c.ratePrecision()
 		if err != nil {

@@ -114,6 +114,13 @@ var enoughNForMean = &Function{
 	Findings:    append([]FindingKind{tooManyKind, noSpreadKind}, oneSampleFindings...),
 	Assumptions: []string{"independent values of one population with a finite fourth moment"},
 	Citations:   []string{"Hall 1992", "Cochran 1977"},
+	Example: Example{
+		Label:     "values as skewed as waiting times (exponential)",
+		Arguments: []Argument{{"skewness", 2.0}, {"excess-kurtosis", 6.0}},
+		Want:      []Argument{{"n", 90}, {"predicted-coverage", 0.9400743263978696543290558}, {"cochran-n", 101}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		g1, g2, err := c.shape()
 		if err != nil {

@@ -15,7 +15,7 @@ type oneSampleTest struct {
 }
 
 func (p oneSampleTest) power(n int, difference float64) float64 {
-	return oneSamplePower(n, p.sd, difference, p.significance, p.direction)
+	return tPower(float64(n-1), difference/p.sd*math.Sqrt(float64(n)), p.significance, p.direction)
 }
 
 // normalPower is (z of the significance + z of the power)², the n that a normal

@@ -34,11 +34,6 @@ func tPower(df, noncentrality, significance float64, dir string) float64 {
 	return beyond(dist.NoncentralT{DF: df, Noncentrality: noncentrality}, critical(df, significance, dir), dir)
 }
 
-// oneSamplePower is the power of the t test of a mean, or of paired differences.
-func oneSamplePower(n int, sd, difference, significance float64, dir string) float64 {
-	return tPower(float64(n-1), difference/sd*math.Sqrt(float64(n)), significance, dir)
-}
-
 // groupsTest is a t test of the difference of two means.
 type groupsTest struct {
 	first, second float64 // the sds

@@ -273,7 +273,7 @@ var differencePrecisionSize = &Function{
 		Arguments: []Argument{{"first-sd", 3.0}, {"second-sd", 2.0}, {"half-width", 1.25}},
 		Want:      []Argument{{"n", 34}, {"second-n", 34}, {"attained-half-width", 1.237987471286422225335484}},
 		Tolerance: 1e-12,
-		Source:    "arithmetic at 40 digits, testdata/references/numerics/plans.csv",
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
 	},
 	compute: func(c *Call) error {
 		p, err := c.differencePrecision()
@@ -314,7 +314,7 @@ var differencePrecisionOf = &Function{
 		Arguments: []Argument{{"first-sd", 3.0}, {"second-sd", 2.0}, {"n", 33}},
 		Want:      []Argument{{"attained-half-width", 1.257448997429322884938332}},
 		Tolerance: 1e-12,
-		Source:    "arithmetic at 40 digits, testdata/references/numerics/plans.csv",
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
 	},
 	compute: func(c *Call) error {
 		p, err := c.differencePrecision()

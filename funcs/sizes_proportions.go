@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"slices"
+
+	"halfwidth/funcs/internal/dist"
 )
 
 var (
@@ -18,11 +20,18 @@ var (
 	bigAlphaKind    = FindingKind{"significance-too-high", "a one-sided significance of 50% or more"}
 )
 
-// sharesSize finds n for a test of proportions and gives its results; effect is
-// the difference in standard deviations.
-func (c *Call) sharesSize(t sharesTest, effect float64) (n int, err error) {
+// normalShares is the n of a normal law for a difference of proportions whose
+// estimate has the standard deviation null/√n without a difference and
+// other/√n with it; the search starts there.
+func normalShares(difference, null, other, significance, power float64, dir string) float64 {
+	z := dist.Normal{}.UpperQuantile(oneTail(significance, dir))*null + dist.Normal{}.Quantile(power)*other
+	return z / difference * z / difference
+}
+
+// sharesSize finds n for a test of proportions and gives its results.
+func (c *Call) sharesSize(t sharesTest, difference, null, other float64) (n int, err error) {
 	wanted := power.Of(c)
-	plan, err := c.planShares(t, wanted, normalPower(significance.Of(c), wanted, direction.Of(c))/float64(effect*effect))
+	plan, err := c.planShares(t, wanted, normalShares(difference, null, other, significance.Of(c), wanted, direction.Of(c)))
 	switch {
 	case err != nil:
 		return 0, err
@@ -37,6 +46,9 @@ func (c *Call) sharesSize(t sharesTest, effect float64) (n int, err error) {
 	c.set("attained-power", t.power(plan.n, 0))
 	return plan.n, nil
 }
+
+// shareSD is the standard deviation of one trial.
+func shareSD(p float64) float64 { return math.Sqrt(p * (1 - p)) }
 
 // sharesSignificance refuses a region of rejection that holds more than half of
 // the possible results.
@@ -72,6 +84,13 @@ var proportionTestSize = &Function{
 	Findings:    append(slices.Clip(shareTestFindings), lowPowerKind, tooManyKind, planIsBoundKind),
 	Assumptions: shareAssumptions,
 	Citations:   []string{"Clopper & Pearson 1934 (test)"},
+	Example: Example{
+		Label:     "a share of 20% told from 10%, one-sided, power 90%",
+		Arguments: []Argument{{"proportion", 0.2}, {"reference", 0.1}, {"direction", above}},
+		Want:      []Argument{{"n", 121}, {"first-n", 109}, {"attained-power", 0.9055608470449149236345159}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		t, err := c.shareTest()
 		if err != nil {
@@ -80,7 +99,7 @@ var proportionTestSize = &Function{
 		if err := c.powerAbove(); err != nil {
 			return err
 		}
-		n, err := c.sharesSize(t, (t.share-t.reference)/math.Sqrt(t.reference*(1-t.reference)))
+		n, err := c.sharesSize(t, t.share-t.reference, shareSD(t.reference), shareSD(t.share))
 		if err != nil {
 			return err
 		}
@@ -101,6 +120,13 @@ var proportionTestPower = &Function{
 	Findings:    append(slices.Clip(shareTestFindings), fewValuesKind, tooManyKind),
 	Assumptions: shareAssumptions,
 	Citations:   proportionTestSize.Citations,
+	Example: Example{
+		Label:     "102 trials to tell a share of 20% from 10%, one-sided",
+		Arguments: []Argument{{"proportion", 0.2}, {"reference", 0.1}, {"n", 102}, {"direction", above}},
+		Want:      []Argument{{"attained-power", 0.8901379902525623226767299}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		t, err := c.shareTest()
 		if err != nil {
@@ -142,6 +168,13 @@ var proportionDifferenceSize = &Function{
 	Findings:    append(slices.Clip(shareTestFindings), lowPowerKind, tooManyKind, planIsBoundKind),
 	Assumptions: pairAssumptions,
 	Citations:   []string{"Newcombe 1998 (interval beside the test)", "Pearson 1900 (score test)"},
+	Example: Example{
+		Label:     "shares of 20% and 60%, half as many in the second group, one-sided, power 80%",
+		Arguments: []Argument{{"first-proportion", 0.2}, {"second-proportion", 0.6}, {"power", 0.8}, {"direction", below}, {"allocation-ratio", 0.5}},
+		Want:      []Argument{{"n", 25}, {"second-n", 13}, {"first-n", 25}, {"attained-power", 0.8152638076041376191163120}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 25 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		t, err := c.sharesPairTest()
 		if err != nil {
@@ -153,11 +186,9 @@ var proportionDifferenceSize = &Function{
 		if t.largest() < smallestGroup || t.size(t.largest()) < smallestGroup {
 			return c.groupsTooMany("first-proportion", t.ratio, nil)
 		}
-		spread := math.Sqrt(float64(t.first*(1-t.first)) + float64(t.second*(1-t.second))/t.ratio)
-		if spread == 0 { // 0 against 1: a handful is enough
-			spread = 1
-		}
-		n, err := c.sharesSize(t, (t.first-t.second)/spread)
+		pooled := (t.first + t.second*t.ratio) / (1 + t.ratio)
+		other := math.Hypot(shareSD(t.first), shareSD(t.second)/math.Sqrt(t.ratio))
+		n, err := c.sharesSize(t, t.first-t.second, shareSD(pooled)*math.Sqrt(1+1/t.ratio), other)
 		if err != nil {
 			return err
 		}
@@ -178,6 +209,13 @@ var proportionDifferencePower = &Function{
 	Findings:    append(slices.Clip(shareTestFindings), fewValuesKind, tooManyKind),
 	Assumptions: pairAssumptions,
 	Citations:   proportionDifferenceSize.Citations,
+	Example: Example{
+		Label:     "shares of 40% and 60%, 50 and 40 trials",
+		Arguments: []Argument{{"first-proportion", 0.4}, {"second-proportion", 0.6}, {"n", 50}, {"second-n", 40}},
+		Want:      []Argument{{"attained-power", 0.4799363487754083262597452}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 25 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		t, err := c.sharesPairTest()
 		if err != nil {

@@ -41,10 +41,10 @@ func (p severalMeans) spread() float64 {
 
 // power is the chance that F passes its critical value with n in each group: F is
 // noncentral with Σn(μᵢ-μ̄)²/sd².
-func (p severalMeans) power(n int) float64 {
+func (p severalMeans) power(n float64) float64 {
 	k := float64(len(p.means))
-	df1, df2 := k-1, k*float64(n-1)
-	return dist.NoncentralF{DF1: df1, DF2: df2, Noncentrality: float64(n) * p.spread()}.SF(dist.F{DF1: df1, DF2: df2}.UpperQuantile(p.significance))
+	df1, df2 := k-1, float64(k*(n-1))
+	return dist.NoncentralF{DF1: df1, DF2: df2, Noncentrality: n * p.spread()}.SF(dist.F{DF1: df1, DF2: df2}.UpperQuantile(p.significance))
 }
 
 func (p severalMeans) says(c *Call) string {
@@ -69,6 +69,13 @@ var severalMeansSize = &Function{
 	Findings:    append([]FindingKind{lowPowerKind, tooManyKind}, severalFinding...),
 	Assumptions: []string{"independent values, and groups independent of one another", "normal values with one variance in all groups"},
 	Citations:   []string{"Johnson, Kotz & Balakrishnan 1995 (noncentral F)"},
+	Example: Example{
+		Label:     "three depots, means 0.4 sd apart, power 80%",
+		Arguments: []Argument{{"means", []float64{0, 0.4, 0.8}}, {"sd", 1.0}, {"power", 0.8}},
+		Want:      []Argument{{"n", 32}, {"attained-power", 0.8118639630199168368347887}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		p, err := c.severalMeans()
 		if err != nil {
@@ -79,7 +86,7 @@ var severalMeansSize = &Function{
 		}
 		wanted := power.Of(c)
 		start := (normalPower(p.significance, wanted, above)+math.Sqrt(float64(2*len(p.means))))/p.spread() + 2
-		n, found, err := c.smallestPlan(smallestGroup, largestPlan, clampPlan(start, smallestGroup, largestPlan), func(n int) bool { return reaches(p.power(n), wanted) })
+		n, found, err := c.smallestPlan(smallestGroup, largestPlan, clampPlan(start, smallestGroup, largestPlan), func(n int) bool { return reaches(p.power(float64(n)), wanted) })
 		switch {
 		case err != nil:
 			return err
@@ -89,8 +96,8 @@ var severalMeansSize = &Function{
 		if err := c.setPlan(n); err != nil {
 			return err
 		}
-		c.set("attained-power", p.power(n))
-		c.sayPower(nText(n)+" in each group", p.says(c), p.power(n))
+		c.set("attained-power", p.power(float64(n)))
+		c.sayPower(nText(n)+" in each group", p.says(c), p.power(float64(n)))
 		return nil
 	},
 }
@@ -120,8 +127,8 @@ var severalMeansPower = &Function{
 		if err != nil {
 			return err
 		}
-		c.set("attained-power", p.power(n))
-		c.sayPowerOf(c.nCounting(n)+" in each group", p.says(c), p.power(n))
+		c.set("attained-power", p.power(float64(n)))
+		c.sayPowerOf(c.nCounting(n)+" in each group", p.says(c), p.power(float64(n)))
 		return nil
 	},
 }

@@ -75,40 +75,6 @@ func (c *Call) planShares(t sharesTest, wanted, guess float64) (sharesPlan, erro
 	return sharesPlan{n: n, first: first, found: true}, stopped
 }
 
-// passing finds an n in [lo, hi] at which ok holds but not at n - 1 (or n = lo).
-// It walks from start in steps that double, then halves. found is false where ok
-// fails at hi.
-func passing(lo, hi, start, step int, ok func(n int) bool) (n int, found bool) {
-	n, step = min(max(start, lo), hi), max(step, 1)
-	failing := n
-	if ok(n) {
-		for failing = n - step; failing >= lo && ok(failing); failing -= step {
-			n = failing
-			step *= 2
-		}
-		failing = max(failing, lo-1)
-	} else {
-		for {
-			if failing == hi {
-				return 0, false
-			}
-			if n = min(failing+step, hi); ok(n) {
-				break
-			}
-			failing = n
-			step *= 2
-		}
-	}
-	for n-failing > 1 {
-		if mid := failing + (n-failing)/2; ok(mid) {
-			n = mid
-		} else {
-			failing = mid
-		}
-	}
-	return n, true
-}
-
 // shareTest is the test of one proportion by its exact binomial p-value.
 type shareTest struct {
 	share, reference, significance float64

@@ -201,6 +201,13 @@ var stratifiedSize = &Function{
 	Findings:    []FindingKind{smallBudgetKind, noSpreadKind, tooManyKind, lowLevelKind},
 	Assumptions: []string{"a simple random sample within each stratum", "normal stratum means"},
 	Citations:   []string{"Neyman 1934", "Cochran 1977 ch. 5", "Satterthwaite 1946"},
+	Example: Example{
+		Label:     "two depots, the second four times as dear to measure, budget 60",
+		Arguments: []Argument{{"sizes", List{Names: []string{"North", "Quay"}, Values: []float64{100, 50}}}, {"sds", []float64{2, 4}}, {"costs", []float64{1, 4}}, {"budget", 60.0}},
+		Want:      []Argument{{"total-n", 30}, {"cost", 60.0}},
+		Tolerance: 1e-12,
+		Source:    "Cochran 1977 ch. 5 worked by hand: 100·2/√1 to 50·4/√4 is 2 to 1, so 20 and 10 cost 60",
+	},
 	compute: func(c *Call) error {
 		s, err := c.strata()
 		if err != nil {

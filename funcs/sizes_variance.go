@@ -138,6 +138,13 @@ var variancePowerOf = &Function{
 	Findings:    []FindingKind{fewValuesKind, tooManyKind, lowLevelKind, noRatioKind, wrongSideKind},
 	Assumptions: varianceSize.Assumptions,
 	Citations:   varianceSize.Citations,
+	Example: Example{
+		Label:     "15 values, a variance 0.4 of the reference, one-sided at 10%",
+		Arguments: []Argument{{"n", 15}, {"variance-ratio", 0.4}, {"significance", 0.1}, {"direction", below}},
+		Want:      []Argument{{"attained", 0.8523780593622461285244240}},
+		Tolerance: 1e-12,
+		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
+	},
 	compute: func(c *Call) error {
 		ratio, test, err := c.variancePlan()
 		if err != nil {
