@@ -2,6 +2,7 @@ package dist
 
 import (
 	"encoding/csv"
+	"encoding/json"
 	"math"
 	"os"
 	"path/filepath"
@@ -80,6 +81,14 @@ func readRows(t *testing.T, folder, file string) []row {
 	return rows
 }
 
+// parameters decodes the JSON cell that says which entry of a table a row is.
+func parameters(t *testing.T, r row, into any) {
+	t.Helper()
+	if err := json.Unmarshal([]byte(r["params"]), into); err != nil {
+		t.Fatalf("%v: %v", r, err)
+	}
+}
+
 // wantDigits fails the test unless got is within the relative tolerance of want.
 func wantDigits(t *testing.T, what any, got, want, tolerance float64) {
 	t.Helper()
@@ -95,8 +104,31 @@ func relativeError(got, want float64) float64 {
 	return math.Abs(got/want - 1)
 }
 
-// printedTolerance is half a unit of the last printed place.
-func printedTolerance(printed string) float64 {
-	_, decimals, _ := strings.Cut(printed, ".")
-	return 0.5000001 * math.Pow(10, -float64(len(decimals)))
+// wantPrinted fails the test unless got agrees with an entry of a printed table:
+// within half a unit of its last place, or one unit where the row says that the
+// source cut the last place or raised it.
+func wantPrinted(t *testing.T, r row, got float64) {
+	t.Helper()
+	_, decimals, _ := strings.Cut(r["value"], ".")
+	unit := math.Pow(10, -float64(len(decimals)))
+	d := (got - r.number(t, "value")) / unit
+	low, high := -0.5, 0.5
+	switch r["reproduced"] {
+	case "truncated":
+		low, high = 0, 1
+	case "rounded up":
+		low, high = -1, 0
+	}
+	if !(d >= low-1e-6 && d <= high+1e-6) {
+		t.Errorf("%s %s: got %v, printed %s", r["table_id"], r["params"], got, r["value"])
+	}
+}
+
+// tableNumber is a number in the parameters of a table entry, "inf" included.
+type tableNumber float64
+
+func (n *tableNumber) UnmarshalJSON(b []byte) error {
+	x, err := strconv.ParseFloat(strings.Trim(string(b), `"`), 64)
+	*n = tableNumber(x)
+	return err
 }

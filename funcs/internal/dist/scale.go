@@ -19,7 +19,8 @@ const manyDF = 1e20
 // scaleDensityPeak is log of the density of log s at s = 1:
 // 2 (df/2)^(df/2) e^(-df/2) / Gamma(df/2).
 func scaleDensityPeak(df float64) float64 {
-	return math.Ln2 + num.Log(GammaPrefactor(df/2, df/2))
+	half := max(df/2, 1e-300)
+	return math.Ln2 + num.Log(GammaPrefactor(half, half))
 }
 
 // scaleExponent is u - (exp(2u) - 1)/2, so that the density of u = log s is
