@@ -163,3 +163,11 @@ func (c *Call) ranges() string {
 	}
 	return strings.Join(texts, "; ")
 }
+
+// RefusedOutcome is the outcome of a call that was refused before it was made,
+// because its data could not be used.
+func RefusedOutcome(f *Function, findings []Finding) *Outcome {
+	SortFindings(findings)
+	return &Outcome{Function: f, Status: StatusRefused, Findings: findings,
+		results: map[string]any{"status": string(StatusRefused), "note": Note(findings)}}
+}

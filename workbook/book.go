@@ -18,6 +18,8 @@ type Book struct {
 	*ooxml.Book
 	places  []calculation.Place
 	folders folders
+
+	noFormulas map[int]bool // sheets that were read whole and hold no formula
 }
 
 var _ calculation.Source = (*Book)(nil)
@@ -29,7 +31,7 @@ func openBook(path string, limits ooxml.Limits, in folders) (*Book, error) {
 	if err != nil {
 		return nil, err
 	}
-	b := &Book{Book: file, folders: in}
+	b := &Book{Book: file, folders: in, noFormulas: map[int]bool{}}
 	b.findPlaces()
 	return b, nil
 }
@@ -146,6 +148,9 @@ func (b *Book) scan(ctx context.Context, sheet int, choose func(*calculation.Fra
 	}
 	if !r.chosen {
 		r.keep()
+	}
+	if err == nil && facts.Formulas == 0 {
+		b.noFormulas[sheet] = true
 	}
 	r.cover(facts)
 	return r.frame, nil

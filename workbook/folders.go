@@ -50,3 +50,26 @@ func (f folders) find(file string) (string, error) {
 	}
 	return "", fmt.Errorf("is not there; looked in %s", strings.Join(f.dirs, ", "))
 }
+
+// open opens a file named in an expression, once.
+func (f folders) open(file string, options calculation.FileOptions) (calculation.Source, error) {
+	path, err := f.find(file)
+	if err != nil {
+		return nil, err
+	}
+	key := fmt.Sprint(path, options)
+	if s, ok := f.opened[key]; ok {
+		return s, nil
+	}
+	var s calculation.Source
+	switch ext := strings.ToLower(filepath.Ext(path)); ext {
+	case ".xlsx", ".xlsm":
+		s, err = openBook(path, f.limits, newFolders(path, f.dirs[1:], f.limits))
+	default:
+		return nil, fmt.Errorf("ends in %q; name a .csv, .tsv, .xlsx or .xlsm file", ext)
+	}
+	if err == nil {
+		f.opened[key] = s
+	}
+	return s, err
+}

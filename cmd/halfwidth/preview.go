@@ -1,0 +1,87 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"os"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"halfwidth/cmd/internal/texttab"
+	"halfwidth/funcs"
+	"halfwidth/workbook"
+)
+
+func previewCommand() *cobra.Command {
+	c := &cobra.Command{
+		Use:     "preview BOOK.xlsx…",
+		Short:   "Show what would be worked out and from which cells; compute nothing, write nothing",
+		Example: "  halfwidth preview testdata/workbooks/larkmoor.xlsx",
+		Args:    someBooks,
+	}
+	f := addBookFlags(c)
+	c.RunE = func(c *cobra.Command, books []string) error {
+		return eachBook(c, f, books, func(path string) (*workbook.Report, error) { return workbook.Preview(c.Context(), path, f.o) }, printPreview, previewTable)
+	}
+	return c
+}
+
+func isFolder(path string) bool {
+	info, err := os.Stat(path)
+	return err == nil && info.IsDir()
+}
+
+func printPreview(w io.Writer, r *workbook.Report) error {
+	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell"}, {Name: "work out"}, {Name: "label"}, {Name: "input"}, {Name: "written"},
+		{Name: "values", Right: true}, {Name: "skipped", Right: true}}}
+	for _, row := range r.Plan.Rows {
+		notes := notesOf(row.Findings())
+		first := true
+		for _, in := range row.Inputs {
+			if in.Default {
+				continue
+			}
+			cells := []any{in.Cell.String(), functionName(row), row.Label, in.Name, in.Written, nil, nil}
+			if in.Range != "" {
+				cells[4], cells[5], cells[6] = in.Written+" → "+in.Range, in.Used, in.Skipped
+				if len(in.Groups) > 0 {
+					cells[4] = cells[4].(string) + " (" + strings.Join(in.Groups, ", ") + ")"
+				}
+			}
+			if !first {
+				cells[1], cells[2] = nil, nil
+			}
+			t.Rows = append(t.Rows, texttab.Row{Cells: cells, Notes: notes})
+			first, notes = false, nil
+		}
+		if first {
+			t.Rows = append(t.Rows, texttab.Row{Cells: []any{fmt.Sprintf("row %d", row.Number), functionName(row), row.Label, nil, nil, nil, nil}, Notes: notes})
+		}
+	}
+	if err := t.Write(w, texttab.Text); err != nil {
+		return err
+	}
+	fmt.Fprintln(w)
+	printDiagnostics(w, r.Plan.Diagnostics())
+	counts := r.Counts()
+	_, err := fmt.Fprintf(w, "%s: %d rows can be worked out, %d of them with a caution so far; %d refused. Nothing was computed or written.\n",
+		r.Book, counts[funcs.StatusOK]+counts[funcs.StatusCaution], counts[funcs.StatusCaution], counts[funcs.StatusRefused])
+	return err
+}
+
+// previewTable adds the inputs of a book to a long table.
+func previewTable(t *texttab.Table, r *workbook.Report) {
+	for _, row := range r.Plan.Rows {
+		notes := notesOf(row.Findings())
+		for _, in := range row.Inputs {
+			written := any(in.Written)
+			if in.Range != "" {
+				written = in.Range
+			}
+			t.Rows = append(t.Rows, texttab.Row{Cells: []any{r.Book, row.Sheet(), row.Number, functionName(row), row.Label,
+				string(workbook.StatusOf(row.Findings())), in.Cell.String(), in.Name, written}, Notes: notes})
+			notes = nil
+		}
+	}
+}

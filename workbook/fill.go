@@ -1,0 +1,189 @@
+package workbook
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"os"
+	"path/filepath"
+	"runtime"
+	"strings"
+
+	"halfwidth/funcs"
+	"halfwidth/workbook/calculation"
+	"halfwidth/workbook/ooxml"
+)
+
+// Options say how a workbook is to be worked out.
+type Options struct {
+	Sheets  []string     // calculation sheets besides those that are ones by name or by their A1
+	Data    []string     // folders, besides the book's own, in which files named in expressions may lie
+	Workers int          // rows worked out at once; 0 for as many as there are cores
+	Limits  ooxml.Limits // of what a workbook may cost
+
+	Output  string // file or folder to write to; empty for BOOK-filled beside the book
+	InPlace bool   // write over the book itself
+	Replace bool   // write over an output that was changed since
+}
+
+// Report is what working out one workbook gave.
+type Report struct {
+	Book    string
+	Plan    *calculation.Plan
+	Results *calculation.Results // nil for a preview
+	Saved   ooxml.Saved          // Path is empty where nothing was written
+}
+
+// Counts counts rows by their status.
+func (r *Report) Counts() map[funcs.Status]int {
+	counts := map[funcs.Status]int{}
+	if r.Results == nil {
+		for _, row := range r.Plan.Rows {
+			counts[StatusOf(row.Findings())]++
+		}
+		return counts
+	}
+	for _, row := range r.Results.Rows {
+		counts[row.Status]++
+	}
+	return counts
+}
+
+// StatusOf is the status that the findings of a row make.
+func StatusOf(list []calculation.Diagnostic) funcs.Status {
+	findings := make([]funcs.Finding, len(list))
+	for i, d := range list {
+		findings[i] = d.Finding
+	}
+	return funcs.StatusOf(findings)
+}
+
+// Preview reads and resolves everything in a workbook; it computes nothing and
+// writes nothing.
+func Preview(ctx context.Context, path string, o Options) (*Report, error) {
+	b, plan, err := open(ctx, path, o)
+	if err != nil {
+		return nil, err
+	}
+	defer b.Close()
+	if err := plan.Count(ctx, o.workers()); err != nil {
+		return nil, err
+	}
+	return &Report{Book: path, Plan: plan}, nil
+}
+
+// Fill works out the calculation sheets of a workbook and writes the results
+// into their result columns.
+func Fill(ctx context.Context, path string, o Options) (*Report, error) {
+	target, err := o.target(path)
+	if err != nil {
+		return nil, err
+	}
+	b, plan, err := open(ctx, path, o)
+	if err != nil {
+		return nil, err
+	}
+	defer b.Close()
+	results, err := plan.Run(ctx, o.workers())
+	if err != nil {
+		return nil, err
+	}
+	changes, err := b.changes(results)
+	if err != nil {
+		return nil, err
+	}
+	report := &Report{Book: path, Plan: plan, Results: results}
+	if o.InPlace {
+		if lock, found := ooxml.LockFile(path); found {
+			return nil, fmt.Errorf("%s is open in another program (%s is there); close it there first, or fill into another file", path, filepath.Base(lock))
+		}
+		report.Saved, err = b.SaveInPlace(changes)
+		return report, err
+	}
+	if !o.Replace {
+		if err := b.mayReplace(target, changes); err != nil {
+			return nil, err
+		}
+	}
+	report.Saved, err = b.SaveAs(target, changes)
+	return report, err
+}
+
+func (o Options) workers() int {
+	if o.Workers > 0 {
+		return o.Workers
+	}
+	return runtime.GOMAXPROCS(0)
+}
+
+// open opens a workbook and plans its calculation sheets.
+func open(ctx context.Context, path string, o Options) (*Book, *calculation.Plan, error) {
+	b, err := openBook(path, o.Limits, newFolders(path, o.Data, o.Limits))
+	if err != nil {
+		return nil, nil, err
+	}
+	plan, err := calculation.NewPlan(ctx, b, calculation.Options{Sheets: o.Sheets, MayReplace: b.isOurTable})
+	if err == nil {
+		err = somethingToDo(path, b, plan)
+	}
+	if err != nil {
+		b.Close()
+		return nil, nil, err
+	}
+	return b, plan, nil
+}
+
+// ErrNothingToDo is a workbook in which there is nothing to work out.
+var ErrNothingToDo = errors.New("nothing to work out")
+
+// nothingError says what is missing from a workbook.
+type nothingError struct{ text string }
+
+func (e nothingError) Error() string { return e.text }
+func (e nothingError) Unwrap() error { return ErrNothingToDo }
+
+func somethingToDo(path string, b *Book, plan *calculation.Plan) error {
+	name := filepath.Base(path)
+	var sheets []string
+	for _, p := range b.Places() {
+		if p.Kind == calculation.Sheet {
+			sheets = append(sheets, p.Name)
+		}
+	}
+	switch {
+	case len(plan.Sheets) == 0:
+		return nothingError{fmt.Sprintf("%s: no calculation sheet. Sheets are %s. Name one \"Calculations\", or put \"calculation sheet\" in its A1.",
+			name, strings.Join(sheets, ", "))}
+	case len(plan.Rows) == 0 && len(plan.Diagnostics()) == 0:
+		return nothingError{fmt.Sprintf("%s: nothing to work out on %s. A block starts at a header row with a cell that reads \"work out\", "+
+			"an input such as \"sample\" and a result such as \"> mean\" beside it; the rows below are worked out.", name, strings.Join(plan.Sheets, ", "))}
+	}
+	return nil
+}
+
+// target is the file that a fill writes.
+func (o Options) target(path string) (string, error) {
+	ext := filepath.Ext(path)
+	beside := strings.TrimSuffix(path, ext) + "-filled" + ext
+	switch {
+	case o.InPlace && o.Output != "":
+		return "", errors.New("--in-place writes over the workbook itself; leave out --output")
+	case o.InPlace:
+		return path, nil
+	case o.Output == "":
+		return beside, nil
+	}
+	target := o.Output
+	if info, err := os.Stat(target); err == nil && info.IsDir() {
+		target = filepath.Join(target, filepath.Base(beside))
+	}
+	if !strings.EqualFold(filepath.Ext(target), ext) {
+		return "", fmt.Errorf("--output is %s, but must end in %s as the workbook does, or be a folder that is there", target, ext)
+	}
+	from, err1 := os.Stat(path)
+	to, err2 := os.Stat(target)
+	if err1 == nil && err2 == nil && os.SameFile(from, to) {
+		return "", fmt.Errorf("--output is %s, the workbook itself; write to another file, or use --in-place", target)
+	}
+	return target, nil
+}
