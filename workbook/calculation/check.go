@@ -331,6 +331,5 @@ func (c *calcSheet) fileOptions(b *Block) FileOptions {
 	if s == nil {
 		return FileOptions{}
 	}
-	mark := strings.Trim(labelText(c.at(s.cell.Row, s.cell.Col)), `"'`)
-	return FileOptions{DecimalComma: mark == "," || nameForm(mark) == "comma"}
+	return FileOptions{DecimalComma: isComma(labelText(c.at(s.cell.Row, s.cell.Col)))}
 }

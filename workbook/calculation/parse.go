@@ -46,10 +46,10 @@ func workOut(cell Cell) (name string, ok bool) {
 	if cell.Kind != Text {
 		return "", false
 	}
-	text := headerForm(cell.Text)
-	if text == "work out" {
+	if form, _ := title(cell.Text); form == "work-out" {
 		return "", true
 	}
+	text := headerForm(cell.Text)
 	rest, ok := strings.CutPrefix(text, "work out")
 	rest = trim(rest)
 	if !ok || !strings.HasPrefix(rest, ":") {

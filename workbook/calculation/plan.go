@@ -20,6 +20,9 @@ type Options struct {
 	// MayReplace reports whether a sheet that exists may be written anew as a
 	// table sheet: one that an earlier fill made. Nil allows none.
 	MayReplace func(sheet string) bool
+	// NoTables says why no table sheet can be written, as in a text file; empty
+	// where they can.
+	NoTables string
 }
 
 // Plan is the calculation sheets of a book, read and resolved: blocks, rows,
@@ -108,8 +111,8 @@ func (p *Plan) findSheets(ctx context.Context) error {
 				is = marksSheet(head.At(1, 1))
 				return Columns{}
 			})
-			if err != nil && ctx.Err() != nil {
-				return ctx.Err()
+			if err != nil {
+				return fmt.Errorf("%s cannot be read: %w", own.sheet(place.Name).label, err)
 			}
 		}
 		if !is {
@@ -141,6 +144,9 @@ func (p *Plan) claimTable(r *Row) {
 	switch first := p.tables[key]; {
 	case r.Function != nil && r.Function.Table == nil && r.each == nil:
 		r.caution(at, funcs.Caution, "no-table", fmt.Sprintf("%s gives no table here, so no sheet %s is written. Empty %s, or give the sample for each group.", r.Function.Name, quote(r.table), at))
+		r.table = ""
+	case p.options.NoTables != "":
+		r.refuse(at, Span{}, "no-table-sheet", fmt.Sprintf("%s: %s. Empty the cell.", at, p.options.NoTables))
 		r.table = ""
 	case first != nil:
 		r.refuse(at, Span{}, "given-twice", fmt.Sprintf("%s: the sheet %s is written by row %d already. Write another name.", at, quote(r.table), first.Number))
@@ -339,6 +345,17 @@ func (t *tarjan) visit(r *Row) {
 		slices.SortFunc(group, func(a, b *Row) int { return a.order - b.order })
 		t.found = append(t.found, group)
 	}
+}
+
+// Unreadable gives the error of the first sheet of the book itself that could
+// not be read, nil where all were: a damaged book is no smaller sample.
+func (p *Plan) Unreadable() error {
+	for _, place := range p.lib.own.places {
+		if sh := p.lib.own.sheets[place.Sheet]; sh != nil && sh.err != nil {
+			return fmt.Errorf("%s cannot be read: %w", sh.label, sh.err)
+		}
+	}
+	return nil
 }
 
 // Diagnostics gives what was found about the layout of the calculation sheets,

@@ -1,6 +1,7 @@
 package calculation
 
 import (
+	"slices"
 	"strconv"
 	"strings"
 	"unicode/utf8"
@@ -50,6 +51,49 @@ func utf16Len(r rune) int {
 // from 1, as messages count.
 func ByteToCharacter(text string, offset int) int {
 	return utf8.RuneCountInString(text[:min(offset, len(text))]) + 1
+}
+
+// Lines converts between offsets of a text and lines with columns in UTF-16
+// units, both from 0, as editors count. A line ends with \n, \r\n or \r.
+type Lines struct {
+	text   string
+	starts []int
+}
+
+// NewLines finds the lines of a text.
+func NewLines(text string) *Lines {
+	l := &Lines{text: text, starts: []int{0}}
+	for i := 0; i < len(text); i++ {
+		if text[i] == '\n' || text[i] == '\r' && (i+1 == len(text) || text[i+1] != '\n') {
+			l.starts = append(l.starts, i+1)
+		}
+	}
+	return l
+}
+
+// ByteToLine gives the line and the column of a byte offset.
+func (l *Lines) ByteToLine(offset int) (line, column int) {
+	offset = max(0, min(offset, len(l.text)))
+	line, found := slices.BinarySearch(l.starts, offset)
+	if !found {
+		line--
+	}
+	return line, ByteToUTF16(l.text[l.starts[line]:], offset-l.starts[line])
+}
+
+// LineToByte gives the byte offset of a column of a line; past the end of the
+// line that end, past the last line the end of the text.
+func (l *Lines) LineToByte(line, column int) int {
+	if line >= len(l.starts) {
+		return len(l.text)
+	}
+	line = max(0, line)
+	end := len(l.text)
+	if line+1 < len(l.starts) {
+		end = l.starts[line+1]
+	}
+	content := strings.TrimRight(l.text[l.starts[line]:end], "\r\n")
+	return l.starts[line] + UTF16ToByte(content, max(0, column))
 }
 
 // The greatest sheet of the format (ECMA-376 part 1, 18.3.1.73 and 18.3.1.4).
