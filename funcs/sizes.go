@@ -23,6 +23,7 @@ var sizesFamily = []*Function{
 	severalMeansSize, severalMeansPower,
 	varianceSize, variancePowerOf,
 	stratifiedSize,
+	discoverySize, discoveryConfidence,
 	distributionFreeToleranceSize,
 	enoughNForMean,
 }

@@ -199,11 +199,11 @@ var ratePrecisionSize = &Function{
 		if p.relative(largestPlan) > wanted/rate {
 			return refuse("too-many", "half-width", "Not even the exposure for %d counts would do (it attains %s); ask for less.", largestPlan, brief(rate*p.relative(largestPlan)))
 		}
-		logCount, ok := num.Root(func(y float64) float64 { return p.relative(math.Exp(y)) - wanted/rate }, -650, math.Log(largestPlan))
+		logCount, ok := num.Root(func(y float64) float64 { return p.relative(num.Exp(y)) - wanted/rate }, -650, num.Log(largestPlan))
 		if !ok {
 			return refuse("any-exposure-does", "half-width", "Any exposure worth observing meets this half-width; give a smaller one.")
 		}
-		count := math.Exp(logCount)
+		count := num.Exp(logCount)
 		exposure := count / rate
 		planned := exposure * designEffect.Of(c) / (1 - nonResponse.Of(c))
 		attained := rate * p.relative(count)

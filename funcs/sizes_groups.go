@@ -11,15 +11,18 @@ var (
 	differenceTestCitations = []string{"Welch 1947; Satterthwaite 1946", "ISO 2854 (pooled)", "Johnson & Welch 1940 (noncentral t)"}
 )
 
-const groupsApart = "a true difference (first - second)"
+const groupsApart = "a true difference (first - second) of %s"
 
 // groupsTest reads what the tests of two means share.
 func (c *Call) groupsTest() groupsTest {
 	first, second := c.groupSDs()
 	g := groupsTest{first, second, significance.Of(c), direction.Of(c), variances.Of(c) == pooled}
 	kind := "Welch's t test, exact power by integration of the noncentral t"
-	if g.pooled {
+	switch {
+	case g.pooled && first == second:
 		kind = "t test with the pooled variance, exact power from the noncentral t with n + second-n - 2 degrees of freedom"
+	case g.pooled:
+		kind = "t test with the pooled variance, exact power by integration of the noncentral t"
 	}
 	c.method = fmt.Sprintf("%s, sds %s and %s", kind, c.briefly(first), c.briefly(second))
 	return g

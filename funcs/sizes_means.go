@@ -29,7 +29,7 @@ func normalPower(significance, power float64, dir string) float64 {
 }
 
 // size finds n for a power and gives its results.
-func (p oneSampleTest) size(c *Call, of string) error {
+func (p oneSampleTest) size(c *Call, phrase string) error {
 	difference, wanted := trueDifference.Of(c), power.Of(c)
 	if err := c.findable("difference", difference); err != nil {
 		return err
@@ -50,13 +50,13 @@ func (p oneSampleTest) size(c *Call, of string) error {
 		return err
 	}
 	c.set("attained-power", p.power(n, difference))
-	c.sayPower(nText(n), c.away(of, difference), p.power(n, difference))
+	c.sayPower(nText(n), c.away(phrase, difference), p.power(n, difference))
 	return nil
 }
 
-// away words a difference to be found.
-func (c *Call) away(of string, difference float64) string {
-	return of + " of " + c.withUnit(shortest(difference), SameUnit)
+// away words a difference to be found, where the phrase leaves its place.
+func (c *Call) away(phrase string, difference float64) string {
+	return fmt.Sprintf(phrase, c.withUnit(shortest(difference), SameUnit))
 }
 
 // sayPower composes the sentence of a plan for power.
@@ -75,7 +75,7 @@ func (c *Call) testLevel() string {
 }
 
 // powerOf gives the power of a given n.
-func (p oneSampleTest) powerOf(c *Call, of string) error {
+func (p oneSampleTest) powerOf(c *Call, phrase string) error {
 	difference := trueDifference.Of(c)
 	if err := c.findable("difference", difference); err != nil {
 		return err
@@ -86,13 +86,13 @@ func (p oneSampleTest) powerOf(c *Call, of string) error {
 	}
 	attained := p.power(n, difference)
 	c.set("attained-power", attained)
-	c.sayPowerOf(c.nCounting(n), c.away(of, difference), attained)
+	c.sayPowerOf(c.nCounting(n), c.away(phrase, difference), attained)
 	return nil
 }
 
 // detectable gives the smallest difference that a given n finds with the power
 // wanted.
-func (p oneSampleTest) detectable(c *Call, of string) error {
+func (p oneSampleTest) detectable(c *Call, phrase string) error {
 	if err := c.powerAbove(); err != nil {
 		return err
 	}
@@ -100,13 +100,13 @@ func (p oneSampleTest) detectable(c *Call, of string) error {
 	if err != nil {
 		return err
 	}
-	return c.setDetectable(c.nCounting(n), of, p.sd/math.Sqrt(float64(n)), func(d float64) float64 { return p.power(n, d) })
+	return c.setDetectable(c.nCounting(n), phrase, p.sd/math.Sqrt(float64(n)), func(d float64) float64 { return p.power(n, d) })
 }
 
 // setDetectable finds the smallest difference whose power is the one wanted, in
 // steps of the standard error, and composes the sentence. The power rises with
 // the difference in the direction claimed.
-func (c *Call) setDetectable(counts, of string, se float64, powerAt func(difference float64) float64) error {
+func (c *Call) setDetectable(counts, phrase string, se float64, powerAt func(difference float64) float64) error {
 	wanted, unit := power.Of(c), se
 	if direction.Of(c) == below {
 		unit = -se
@@ -128,8 +128,8 @@ func (c *Call) setDetectable(counts, of string, se float64, powerAt func(differe
 	difference, attained := x*unit, powerAt(x*unit)
 	c.set("difference", difference)
 	c.set("attained-power", attained)
-	c.sentence = fmt.Sprintf("With %s the smallest difference found with power %s is %s: %s, at significance %s (%s).",
-		counts, percent(wanted), c.withUnit(brief(difference), SameUnit), of, c.testLevel(), c.method)
+	c.sentence = fmt.Sprintf("With %s the smallest difference found with power %s is %s: %s, at significance %s (%s).", counts, percent(wanted),
+		c.withUnit(brief(difference), SameUnit), fmt.Sprintf(phrase, c.withUnit(brief(difference), SameUnit)), c.testLevel(), c.method)
 	return nil
 }
 
@@ -156,7 +156,7 @@ func (c *Call) meanTest() oneSampleTest {
 	return p
 }
 
-const meanAway = "a true mean at a distance from the reference"
+const meanAway = "a true mean %s from the reference"
 
 var meanTestSize = &Function{
 	Name:        "mean-test-size",
@@ -212,7 +212,7 @@ var meanTestDetectable = &Function{
 		Tolerance: 1e-12,
 		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_t.csv",
 	},
-	compute: func(c *Call) error { return c.meanTest().detectable(c, "a true mean that far from the reference") },
+	compute: func(c *Call) error { return c.meanTest().detectable(c, meanAway) },
 }
 
 var correlationGiven = number("correlation", "the correlation within pairs; with it, sd is that of the single values", Domain{Low: -1, High: 1, HighOpen: true}, NoUnit).optional()
@@ -231,7 +231,7 @@ func (c *Call) pairedTest() oneSampleTest {
 	return p
 }
 
-const pairsAway = "a true mean difference within pairs"
+const pairsAway = "a true mean difference of %s within pairs"
 
 var pairedTestSize = &Function{
 	Name:        "paired-test-size",
@@ -287,5 +287,5 @@ var pairedTestDetectable = &Function{
 		Tolerance: 1e-12,
 		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_t.csv",
 	},
-	compute: func(c *Call) error { return c.pairedTest().detectable(c, "a true mean difference within pairs") },
+	compute: func(c *Call) error { return c.pairedTest().detectable(c, pairsAway) },
 }

@@ -60,7 +60,7 @@ func (g groupsTest) power(n, m int, difference float64) float64 {
 	share2 := float64(g.second/se*g.second/se) / float64(m)
 	fixed := critical(df, g.significance, g.direction)
 	f := func(logit float64) float64 {
-		u, v := 1/(1+math.Exp(-logit)), 1/(1+math.Exp(logit))
+		u, v := 1/(1+num.Exp(-logit)), 1/(1+num.Exp(logit))
 		w := dist.BetaPrefactor(u, v, df1/2, df2/2)
 		if w == 0 {
 			return 0
@@ -75,5 +75,5 @@ func (g groupsTest) power(n, m int, difference float64) float64 {
 		return w * beyond(law, t*math.Sqrt(c), g.direction)
 	}
 	step := 1 / math.Sqrt(1+math.Min(df1, df2))
-	return math.Min(1, num.Trapezoid(f, math.Log(df1/df2), step, 1e-10))
+	return math.Min(1, num.Trapezoid(f, num.Log(df1/df2), step, 1e-10))
 }
