@@ -169,7 +169,7 @@ func (b *book) trips() {
 	shifts.SetSqref(fmt.Sprintf("C2:C%d", trips+1))
 	b.check(shifts.SetDropList([]string{"day", "night"}))
 	b.check(b.AddDataValidation(sheet, shifts))
-	b.check(b.SetDefinedName(&excelize.DefinedName{Name: "first_week", RefersTo: "Trips!$E$2:$E$120"}))
+	b.check(b.SetDefinedName(&excelize.DefinedName{Name: "first_week", RefersTo: "Trips!$A$1:$H$120"}))
 }
 
 // routes has the same routes before and after their stops were put in a new
