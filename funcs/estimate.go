@@ -171,7 +171,7 @@ func (c *Call) sameLength(first, second []float64) error {
 // enoughPairs refuses fewer than two complete pairs.
 func (c *Call) enoughPairs(n int) error {
 	if n < 2 {
-		return refuse("few-values", "sample", "Only %s complete, but at least 2 are needed; fill in the missing partners.", plural(n, "pair"))
+		return refuse("few-values", "sample", "%s, but at least 2 are needed; fill in the missing partners.", map[int]string{0: "No pair is complete", 1: "Only one pair is complete"}[n])
 	}
 	return nil
 }
