@@ -12,6 +12,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"halfwidth/cmd/internal/buildinfo"
 )
 
 // TestMain lets the test's own binary be the server, so that it is tested as a
@@ -59,7 +61,7 @@ func TestOptions(t *testing.T) {
 		code        int
 		out, errors string
 	}{
-		{[]string{"--version"}, 0, "halfwidth-server " + version + "\n", ""},
+		{[]string{"--version"}, 0, "halfwidth-server " + buildinfo.Version() + "\n", ""},
 		{[]string{"--help"}, 0, "Usage: halfwidth-server [options]\n", ""},
 		{[]string{"-h"}, 0, "Usage: halfwidth-server [options]\n", ""},
 		{[]string{"--max-depth", "0"}, 2, "", "write a whole number from 1"},
@@ -84,7 +86,7 @@ func TestLimitsReachTheServer(t *testing.T) {
 	if code := run([]string{"--max-message-bytes", "400", "--max-depth=9", "--max-queue=7", "--workers", "3"}, strings.NewReader(in), &out, &errs); code != 0 {
 		t.Errorf("exit code %d, errors %q", code, errs.String())
 	}
-	for _, part := range []string{`"messageBytes":400`, `"depth":9`, `"queue":7`, `"workers":3`, `"version":"` + version + `"`, "at most 400 are taken", done} {
+	for _, part := range []string{`"messageBytes":400`, `"depth":9`, `"queue":7`, `"workers":3`, `"version":"` + buildinfo.Version() + `"`, "at most 400 are taken", done} {
 		if !strings.Contains(out.String(), part) {
 			t.Errorf("the output lacks %s: %s", part, out.String())
 		}

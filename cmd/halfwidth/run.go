@@ -5,12 +5,12 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"runtime/debug"
 	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
 
+	"halfwidth/cmd/internal/buildinfo"
 	"halfwidth/cmd/internal/texttab"
 	"halfwidth/funcs"
 )
@@ -39,7 +39,7 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		Short: "Statistics of the numbers in a workbook, written beside them as plain values",
 		Long: "halfwidth works out a calculation sheet: how sure an average is, whether a difference is real, how many must be measured.\n" +
 			"The answers are written into the sheet's result columns as plain values, with a note on whether they may be trusted.",
-		Version:       version(),
+		Version:       buildinfo.Version(),
 		Args:          noVerb,
 		SilenceErrors: true,
 		SilenceUsage:  true,
@@ -95,23 +95,4 @@ func formatOf(text string) (texttab.Format, error) {
 		return f, nil
 	}
 	return "", usageError{fmt.Errorf("--format is %q; write text, json or csv", text)}
-}
-
-// version is the module's version, with the revision it was built from where
-// the build recorded one.
-func version() string {
-	info, ok := debug.ReadBuildInfo()
-	if !ok {
-		return "unknown"
-	}
-	v := info.Main.Version
-	if v == "" || v == "(devel)" {
-		v = "development"
-	}
-	for _, s := range info.Settings {
-		if s.Key == "vcs.revision" && len(s.Value) >= 12 {
-			v += " (" + s.Value[:12] + ")"
-		}
-	}
-	return v + " " + info.GoVersion
 }
