@@ -7,7 +7,8 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-var averages = []*Function{meanInterval, pairedInterval, geometricMeanInterval, lognormalMeanInterval, trimmedMeanInterval,
+var averages = []*Function{meanInterval, pairedInterval, geometricMeanInterval, lognormalMeanInterval, medianInterval,
+	trimmedMeanInterval,
 	bootstrapInterval, stratifiedInterval, ratioOfSumsInterval}
 
 var knownSD = number("known-sd", "the standard deviation, where it is known beforehand and not estimated", positive, SameUnit).optional()

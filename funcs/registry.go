@@ -21,6 +21,8 @@ var families = []Family{
 	{"averages", "how sure is this average", averages},
 	{"spread", "how much do values vary", spread},
 	{"differences", "is it real", differences},
+	{"counts", "shares and rates", counts},
+	{"checks", "may the answer be trusted", checksFamily},
 	{"sizes", "how many must be measured", sizesFamily},
 }
 

@@ -1,0 +1,162 @@
+package funcs
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"halfwidth/funcs/internal/num"
+)
+
+var checksFamily = []*Function{normalityCheck, outlierCheck, independenceCheck, tailCheck, coverageCheck, populationCoverage}
+
+var outlierCheck = &Function{
+	Name:    "outlier-check",
+	Version: 1,
+	Summary: "which values lie too far out to belong to one normal population (generalised ESD)",
+	Inputs: inputs(sample, count("most-outliers", "the most outliers looked for; at most a fifth of the values, and 1 below 15 values", 1).withDefault(10),
+		significance),
+	Results: []Result{{"outliers", Whole, NoUnit, "how many values are outliers"}},
+	Table: []Result{
+		{"position", Whole, NoUnit, "which value it is, counting from 1, gaps counted too"},
+		{"value", Number, SameUnit, "the value"},
+		{"statistic", Number, NoUnit, "its distance from the mean of those not yet taken out, in their standard deviations"},
+		{"critical-value", Number, NoUnit, "what the statistic must pass"},
+	},
+	Findings:    []FindingKind{fewValuesKind, noSpreadKind},
+	Assumptions: []string{"independent values, normal but for the outliers"},
+	Citations:   []string{"Rosner 1983 (generalised ESD)", "Grubbs 1969"},
+	Example: Example{
+		Label: "54 values, three of them outliers",
+		Arguments: []Argument{{"sample", []float64{-0.25, 0.68, 0.94, 1.15, 1.20, 1.26, 1.26, 1.34, 1.38, 1.43, 1.49, 1.49, 1.55, 1.56, 1.58, 1.65, 1.69, 1.70,
+			1.76, 1.77, 1.81, 1.91, 1.94, 1.96, 1.99, 2.06, 2.09, 2.10, 2.14, 2.15, 2.23, 2.24, 2.26, 2.35, 2.37, 2.40, 2.47, 2.54, 2.62, 2.64, 2.90,
+			2.92, 2.92, 2.93, 3.21, 3.26, 3.30, 3.59, 3.68, 4.30, 4.64, 5.34, 5.42, 6.01}}},
+		Want:      []Argument{{"outliers", 3}},
+		Source:    "Rosner 1983; NIST/SEMATECH e-Handbook of Statistical Methods, 1.3.5.17.3",
+		Tolerance: 1e-12,
+	},
+	compute: func(c *Call) error {
+		given := sample.Of(c)
+		s := summarise(withoutGaps(given))
+		c.count(s.n)
+		switch {
+		case s.n < 3:
+			return tooFew("sample", s.n, 3)
+		case s.sd == 0:
+			return c.noSpread("sample")
+		}
+		alpha := significance.Of(c)
+		most := 1
+		if s.n >= 15 {
+			most = max(1, min(int(c.args["most-outliers"].Value.(int)), s.n/5))
+		}
+		outliers := 0
+		rest := slices.Clone(given) // values taken out become gaps and keep the others' positions
+		for j := 1; j <= most; j++ {
+			m := summarise(withoutGaps(rest))
+			if m.sd == 0 {
+				break
+			}
+			at, far := farthest(rest, m.mean)
+			statistic, critical := far/m.sd, esdCritical(m.n, alpha)
+			if statistic > critical {
+				outliers = j
+			}
+			c.rows = append(c.rows, Row{Values: map[string]any{"position": at + 1, "value": given[at], "statistic": statistic, "critical-value": critical}})
+			rest[at] = math.NaN()
+		}
+		c.rows = c.rows[:max(outliers, 1)]
+		c.set("outliers", outliers)
+		c.method = fmt.Sprintf("generalised ESD, up to %d outliers", most)
+		switch outliers {
+		case 0:
+			c.sentence = fmt.Sprintf("No value is an outlier at significance %s (%s; %s).", percent(alpha), nText(s.n), c.method)
+		default:
+			var list []string
+			for _, row := range c.rows {
+				list = append(list, shortest(row.Values["value"].(float64)))
+			}
+			c.sentence = fmt.Sprintf("At significance %s %s: %s (%s; %s). Check that they are right before leaving them out.",
+				percent(alpha), map[bool]string{true: "one value is an outlier", false: plural(outliers, "value") + " are outliers"}[outliers == 1],
+				strings.Join(list, ", "), nText(s.n), c.method)
+		}
+		return nil
+	},
+}
+
+// farthest gives the value farthest from the centre and its distance; the
+// first of equals.
+func farthest(values []float64, centre float64) (at int, distance float64) {
+	distance = -1
+	for i, x := range values {
+		if d := math.Abs(x - centre); d > distance {
+			at, distance = i, d
+		}
+	}
+	return at, distance
+}
+
+var tailCheck = &Function{
+	Name:    "tail-check",
+	Version: 1,
+	Summary: "whether the tails are light enough for a mean and a variance to exist",
+	Inputs:  inputs(sample, confidence),
+	Results: []Result{
+		{"tail-index", Number, NoUnit, "the probability beyond x falls like x to the minus this"},
+		{"lower", Number, NoUnit, "lower limit of the tail index"},
+		{"upper", Number, NoUnit, "upper limit of the tail index"},
+		{"finite-mean", Text, NoUnit, "yes, no or unclear"},
+		{"finite-variance", Text, NoUnit, "yes, no or unclear"},
+	},
+	Findings:    []FindingKind{{"few-values", "fewer than 100 values"}, noSpreadKind},
+	Assumptions: []string{"independent values", "both tails alike, and like a power far out"},
+	Citations:   []string{"Hill 1975, A simple general approach to inference about the tail of a distribution"},
+	Example: Example{
+		Label:     "exact quantiles of a tail of index 1.5, both sides",
+		Arguments: []Argument{{"sample", paretoQuantiles(200, 1.5)}},
+		Want:      []Argument{{"finite-variance", "unclear"}},
+		Tolerance: 1e-12,
+		Source:    "the law the values were made from",
+	},
+	compute: func(c *Call) error {
+		values := withoutGaps(sample.Of(c))
+		if len(values) < tailValues {
+			return tooFew("sample", len(values), tailValues)
+		}
+		h, ok := hillTail(values, confidence.Of(c))
+		if !ok {
+			return refuse("no-spread", "sample", "Too many values are equal to the median to see a tail; measure more finely, or more.")
+		}
+		c.set("tail-index", h.index)
+		c.set("lower", h.lower)
+		c.set("upper", h.upper)
+		exists := func(moment float64) string {
+			switch {
+			case h.upper < moment:
+				return "no"
+			case h.lower > moment:
+				return "yes"
+			}
+			return "unclear"
+		}
+		c.set("finite-mean", exists(1))
+		c.set("finite-variance", exists(2))
+		c.method = fmt.Sprintf("Hill's estimate from the %d values farthest from the median", h.k)
+		c.sentence = fmt.Sprintf("The tail index is %s, %s interval %s to %s (%s; %s): finite mean %s, finite variance %s.", brief(h.index),
+			percent(confidence.Of(c)), brief(h.lower), brief(h.upper), nText(len(values)), c.method, exists(1), exists(2))
+		return nil
+	},
+}
+
+// paretoQuantiles are n values symmetric about 0 whose sizes are the quantiles
+// of a Pareto law at (i - ½)/(n/2), rounded to 3 decimals.
+func paretoQuantiles(n int, index float64) []float64 {
+	out := make([]float64, n)
+	for i := range n / 2 {
+		u := (float64(i) + 0.5) / float64(n/2)
+		x := math.Round(num.Exp(-num.Log(1-u)/index)*1000) / 1000
+		out[2*i], out[2*i+1] = x, -x
+	}
+	return out
+}

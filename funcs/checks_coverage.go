@@ -1,0 +1,173 @@
+package funcs
+
+import (
+	"fmt"
+	"math"
+
+	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
+)
+
+var (
+	coverageResamples = resamplesInput.withDefault(20000)
+	tooManyDrawsKind  = FindingKind{"too-many-draws", "resamples times n passes what is worked out in one call"}
+	noEnoughKind      = FindingKind{"heavy-tail", "the variance or the mean does not exist, so that no n is enough"}
+)
+
+// mostDraws is how many values one call draws at the most: some seconds on one
+// core.
+const mostDraws = 2e8
+
+// coverageResults are the results that both functions of coverage give.
+var coverageResults = []Result{
+	{"coverage", Number, NoUnit, "the share of intervals that hold the true mean"},
+	{"interval-below", Number, NoUnit, "the share that lies wholly below it"},
+	{"interval-above", Number, NoUnit, "the share that lies wholly above it"},
+	{"simulation-error", Number, NoUnit, "standard error of the coverage, from the number of resamples"},
+}
+
+// tally counts where the t intervals of simulated samples lie.
+type tally struct{ below, above, hits int }
+
+// coverage draws samples of n values and gives the tally of their t intervals
+// about a target of 0. newDraw gives the drawing of one worker, which fills a
+// sample with values less the target. With a normal population every count
+// would be that of the confidence.
+func (c *Call) coverage(n int, newDraw func() func(*num.Stream, []float64)) (tally, int, error) {
+	resamples := c.args["resamples"].Value.(int)
+	if float64(n)*float64(resamples) > mostDraws {
+		return tally{}, 0, refuse("too-many-draws", "resamples", "That would draw %s values, but at most %s are drawn in one call; ask for fewer resamples.",
+			brief(float64(n)*float64(resamples)), brief(mostDraws))
+	}
+	dir := direction.Of(c)
+	q := dist.Student{DF: float64(n - 1)}.UpperQuantile(tail(confidence.Of(c), dir))
+	places := make([]int8, resamples)
+	err := resample(c.ctx, seedInput.Of(c), resamples, func() func(int, *num.Stream) {
+		draw, x := newDraw(), make([]float64, n)
+		return func(i int, s *num.Stream) {
+			draw(s, x)
+			places[i] = place(x, q, dir)
+		}
+	})
+	var t tally
+	for _, p := range places {
+		switch {
+		case p < 0:
+			t.below++
+		case p > 0:
+			t.above++
+		default:
+			t.hits++
+		}
+	}
+	return t, resamples, err
+}
+
+// place tells whether the t interval of x lies below 0 (-1), above it (1) or
+// holds it (0).
+func place(x []float64, q float64, dir string) int8 {
+	n := float64(len(x))
+	var sum float64
+	for _, v := range x {
+		sum += v
+	}
+	mean := sum / n
+	var ss float64
+	for _, v := range x {
+		d := v - mean
+		ss += float64(d * d)
+	}
+	reach := q * math.Sqrt(ss/float64(n*(n-1)))
+	switch {
+	case dir != below && mean-reach > 0:
+		return 1
+	case dir != above && mean+reach < 0:
+		return -1
+	}
+	return 0
+}
+
+// setCoverage gives the shares of a tally.
+func (c *Call) setCoverage(t tally, resamples int) {
+	b := float64(resamples)
+	share := (float64(t.hits) + 1) / (b + 2)
+	c.set("coverage", float64(t.hits)/b)
+	c.set("interval-below", float64(t.below)/b)
+	c.set("interval-above", float64(t.above)/b)
+	c.set("simulation-error", math.Sqrt(share*(1-share)/b))
+}
+
+// allowedByDefault is how far coverage may fall short in n-needed.
+const allowedByDefault = 0.01
+
+var coverageCheck = &Function{
+	Name:    "coverage-check",
+	Version: 1,
+	Summary: "how often the t interval holds the true mean, at this n, for a population shaped like these data",
+	Inputs: inputs(sample, count("n", "the n to look at; the sample's own where it is left out", 2).optional(),
+		coverageResamples, seedInput, confidence, direction, checks),
+	Results: append(append([]Result{}, coverageResults...),
+		Result{"predicted-coverage", Number, NoUnit, "the same from skewness and excess kurtosis (second order)"},
+		Result{"n-needed", Whole, NoUnit, "the smallest n whose predicted coverage is at most 0.01 short; absent where there is none"}),
+	Findings: []FindingKind{fewValuesKind, noSpreadKind, tooManyDrawsKind, heavyTailKind,
+		{"coverage-short", "the coverage falls short of the confidence by more than 0.01 and three simulation errors"}},
+	Assumptions: []string{"the sample shows the shape of its population: rare values that it lacks are not seen"},
+	Citations:   []string{"Hall 1992", "Efron & Tibshirani 1993"},
+	Example: Example{
+		Label:     "two values, intervals from n = 2: half of the draws have no spread and miss",
+		Arguments: []Argument{{"sample", []float64{1, 2, 1, 2}}, {"n", 2}, {"resamples", 20000}},
+		Want:      []Argument{{"coverage", 0.5}},
+		Tolerance: 0.03,
+		Source:    "exact count: of the four pairs, the two unequal ones hold the mean (20,000 draws, error 0.0035)",
+	},
+	compute: func(c *Call) error {
+		values := withoutGaps(sample.Of(c))
+		s := summarise(values)
+		c.count(s.n)
+		switch {
+		case s.n < 2:
+			return tooFew("sample", s.n, 2)
+		case s.sd == 0:
+			return c.noSpread("sample")
+		}
+		n := s.n
+		if given, ok := c.args["n"].Value.(int); ok {
+			n = given
+		}
+		centred := make([]float64, len(values))
+		m := num.Moments(values)
+		for i, x := range values {
+			centred[i] = (x - m.Mean) - m.MeanLow
+		}
+		t, resamples, err := c.coverage(n, func() func(*num.Stream, []float64) {
+			return func(stream *num.Stream, x []float64) { stream.Resample(x, centred) }
+		})
+		if err != nil {
+			return err
+		}
+		conf, dir := confidence.Of(c), direction.Of(c)
+		c.setCoverage(t, resamples)
+		g1, g2 := skewness(m), excessKurtosis(m)
+		predicted := func(n int) float64 { return predictedCoverage(float64(n), conf, dir, g1, g2) }
+		c.set("predicted-coverage", predicted(n))
+		needed, found, err := c.smallestPlan(smallestGroup, largestPlan, smallestGroup, func(n int) bool { return reaches(predicted(n), conf-allowedByDefault) })
+		if err != nil {
+			return err
+		}
+		if found {
+			c.set("n-needed", needed)
+		}
+		share, errorOf := c.results["coverage"].(float64), c.results["simulation-error"].(float64)
+		c.method = fmt.Sprintf("%d samples of %d drawn from the data with replacement, seed %d", resamples, n, seedInput.Of(c))
+		c.sentence = fmt.Sprintf("For data shaped like these, the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; predicted %s; %s).",
+			percent(conf), dir, n, percent(share), brief(errorOf), percent(predicted(n)), c.method)
+		if short := conf - share; short > allowedByDefault && short > 3*errorOf {
+			c.caution("coverage-short", "sample", "The interval holds the true mean in only %s of cases instead of %s; measure more%s, or use median-interval or bootstrap-interval.",
+				percent(share), percent(conf), map[bool]string{true: fmt.Sprintf(" (about %d for this skewness)", needed)}[found && needed > n])
+		}
+		if checks.Of(c) {
+			c.checkTail("sample", "The sample", values)
+		}
+		return c.cancelled()
+	},
+}

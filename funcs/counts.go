@@ -1,0 +1,268 @@
+package funcs
+
+import (
+	"fmt"
+	"math"
+
+	"halfwidth/funcs/internal/dist"
+)
+
+var counts = []*Function{proportionInterval, proportionDifferenceInterval, proportionsComparison, rateInterval, rateRatioInterval}
+
+var (
+	successes      = count("successes", "how many of the n have the property", 0)
+	trials         = count("n", "how many were looked at", 1)
+	shareReference = number("reference", "the share to compare with", betweenZeroAndOne, NoUnit).optional()
+)
+
+// shareResults are the results of an interval for a share or a rate.
+func shareResults(name, summary string) []Result {
+	return []Result{
+		{name, Number, NoUnit, summary},
+		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
+		{"upper", Number, NoUnit, "upper limit; absent for direction above"},
+		resultP,
+	}
+}
+
+var proportionInterval = &Function{
+	Name:    "proportion-interval",
+	Version: 1,
+	Summary: "share of a population with its confidence interval, and a test against a reference",
+	Inputs:  inputs(successes, trials, shareKind, populationSize, shareReference, confidence, direction),
+	Results: append(shareResults("proportion", "successes over n"),
+		Result{"total", Number, NoUnit, "population-size times the proportion"},
+		Result{"total-lower", Number, NoUnit, "lower limit of the total"},
+		Result{"total-upper", Number, NoUnit, "upper limit of the total"}),
+	Findings:    []FindingKind{{"reference-between-counts", "the reference is no whole number of the population, so there is no exact p-value"}},
+	Assumptions: []string{"independent cases with one chance, or a simple random sample of the population"},
+	Citations:   []string{"Wilson 1927", "Clopper & Pearson 1934"},
+	Example: Example{
+		Label:     "4 defective of 20, exact limits at 90%",
+		Arguments: []Argument{{"successes", 4}, {"n", 20}, {"kind", exactShare}, {"confidence", 0.90}},
+		Want:      []Argument{{"proportion", 0.2}, {"lower", 0.071354}, {"upper", 0.401029}},
+		Tolerance: 1e-5,
+		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.2.4.1",
+	},
+	compute: func(c *Call) error {
+		x, n := float64(successes.Of(c)), float64(trials.Of(c))
+		if x > n {
+			return c.wrong("successes", shortest(x), fmt.Sprintf("must be at most n (%s)", shortest(n)), "give how many of the n have the property")
+		}
+		size, finite := populationSize.Given(c)
+		if finite && n > float64(size) {
+			return c.wrong("population-size", fmt.Sprint(size), fmt.Sprintf("is smaller than the sample (n = %s)", shortest(n)),
+				"give the number in the whole population")
+		}
+		c.count(int(n))
+		conf, dir := confidence.Of(c), direction.Of(c)
+		var l limits
+		if shareKind.Of(c) == wilson {
+			l = c.wilsonInterval(x, n, float64(size), finite)
+		} else if finite {
+			l = hypergeometricLimits(int(x), int(n), size, conf, dir)
+			c.method = fmt.Sprintf("exact hypergeometric interval, finite population of %d", size)
+		} else {
+			l = limitsOf(conf, dir,
+				func(q float64) float64 { lower, _ := clopperPearson(x, n, q); return lower },
+				func(q float64) float64 { _, upper := clopperPearson(x, n, q); return upper })
+			c.method = "exact binomial interval (Clopper-Pearson)"
+		}
+		c.set("proportion", x/n)
+		c.setLimits(l)
+		if finite {
+			c.setTotals(float64(size), x/n, l)
+		}
+		c.say(statement{"share", x / n, l, NoUnit, fmt.Sprintf("%s of n = %s", shortest(x), shortest(n))})
+		if ref, ok := shareReference.Given(c); ok {
+			c.testShare(x, n, ref, size, finite)
+		}
+		return nil
+	},
+}
+
+// wilsonInterval gives the score limits. A finite population enters by
+// n(N-1)/(N-n) in the place of n, which makes the variance of the share that of
+// sampling without replacement.
+func (c *Call) wilsonInterval(x, n, size float64, finite bool) limits {
+	share := x / n
+	c.method = "score interval (Wilson), without continuity correction"
+	if finite {
+		c.method += fmt.Sprintf(", finite population of %s", shortest(size))
+		if n == size {
+			return limitsOf(confidence.Of(c), direction.Of(c), func(float64) float64 { return share }, func(float64) float64 { return share })
+		}
+		n *= (size - 1) / (size - n)
+	}
+	return limitsOf(confidence.Of(c), direction.Of(c),
+		func(q float64) float64 {
+			lower, _ := wilsonLimits(share, n, dist.Normal{}.UpperQuantile(q))
+			return lower
+		},
+		func(q float64) float64 {
+			_, upper := wilsonLimits(share, n, dist.Normal{}.UpperQuantile(q))
+			return upper
+		})
+}
+
+// wilsonLimits are the roots of (p - share)² = z²p(1-p)/n: the greater one by
+// the formula, the lesser from their product, so that nothing cancels
+// (Wilson 1927).
+func wilsonLimits(share, n, z float64) (lower, upper float64) {
+	r := float64(z*z) / n
+	upper = (share + r/2 + math.Sqrt(float64(r*share)*(1-share)+float64(r*r)/4)) / (1 + r)
+	if share == 1 {
+		upper = 1
+	}
+	return float64(share*share) / float64((1+r)*upper), upper
+}
+
+// testShare gives the p-value against a reference share: by the score z, or
+// by the exact tail that belongs to the exact interval.
+func (c *Call) testShare(x, n, ref float64, size int, finite bool) {
+	dir := direction.Of(c)
+	if shareKind.Of(c) == wilson {
+		effective := n
+		if finite {
+			if n == float64(size) {
+				return
+			}
+			effective *= float64(size-1) / (float64(size) - n)
+		}
+		z := (x/n - ref) / math.Sqrt(ref*(1-ref)/effective)
+		p := pValue(dir, z, dist.Normal{})
+		c.set("p-value", p)
+		c.sayTest(ref, NoUnit, "score z", z, p)
+		return
+	}
+	p := binomialPValue(x, n, ref, dir)
+	if finite {
+		marked := math.Round(ref * float64(size))
+		if math.Abs(marked-ref*float64(size)) > 1e-9*float64(size) {
+			c.inform("reference-between-counts", "reference", "A share of %s is no whole number of %d, so there is no exact p-value; give a share that is, or leave population-size out.",
+				shortest(ref), size)
+			return
+		}
+		p = hypergeometricPValue(int(x), int(n), int(marked), size, dir)
+	}
+	c.set("p-value", p)
+	c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(ref), sided(dir), pText(p))
+}
+
+// hypergeometricPValue is the tail in the direction claimed, or the smaller
+// one doubled.
+func hypergeometricPValue(x, n, marked, size int, dir string) float64 {
+	law := dist.Hypergeometric{Population: size, Marked: marked, Draws: n}
+	atMost, atLeast := law.CDF(x), law.SF(x-1)
+	switch dir {
+	case above:
+		return atLeast
+	case below:
+		return atMost
+	}
+	return math.Min(1, 2*math.Min(atMost, atLeast))
+}
+
+// hypergeometricLimits are the fewest and the most marked of the population
+// that are not rejected with the probability outside each limit, over its size.
+func hypergeometricLimits(x, n, size int, conf float64, dir string) limits {
+	law := func(marked int) dist.Hypergeometric {
+		return dist.Hypergeometric{Population: size, Marked: marked, Draws: n}
+	}
+	return limitsOf(conf, dir,
+		func(q float64) float64 { // the fewest marked with P(X >= x) > q
+			lo, hi := x-1, size-(n-x) // rejected or impossible; possible
+			for hi-lo > 1 {
+				if mid := lo + (hi-lo)/2; law(mid).SF(x-1) > q {
+					hi = mid
+				} else {
+					lo = mid
+				}
+			}
+			return float64(hi) / float64(size)
+		},
+		func(q float64) float64 { // the most marked with P(X <= x) > q
+			lo, hi := x, size-(n-x)+1
+			for hi-lo > 1 {
+				if mid := lo + (hi-lo)/2; law(mid).CDF(x) > q {
+					lo = mid
+				} else {
+					hi = mid
+				}
+			}
+			return float64(lo) / float64(size)
+		})
+}
+
+var proportionDifferenceInterval = &Function{
+	Name:    "proportion-difference-interval",
+	Version: 1,
+	Summary: "difference of two shares (first - second) with its confidence interval, and a test of equality",
+	Inputs: inputs(successes.as("first-successes", "how many of the first group have the property"), trials.as("first-n", "how many in the first group"),
+		successes.as("second-successes", "how many of the second group have the property"), trials.as("second-n", "how many in the second group"),
+		confidence, direction),
+	Results:     shareResults("difference", "first share less second share"),
+	Findings:    []FindingKind{{"interval-and-test-disagree", "the interval holds 0 but the test rejects equality, or the other way round"}},
+	Assumptions: []string{"independent cases, one chance within each group"},
+	Citations:   []string{"Newcombe 1998, Interval estimation for the difference between independent proportions (method 10)"},
+	Example: Example{
+		Label:     "56 of 70 and 48 of 80",
+		Arguments: []Argument{{"first-successes", 56}, {"first-n", 70}, {"second-successes", 48}, {"second-n", 80}},
+		Want:      []Argument{{"difference", 0.2}, {"lower", 0.0524}, {"upper", 0.3339}},
+		Tolerance: 1e-3,
+		Source:    "Newcombe 1998, Interval estimation for the difference between independent proportions, table II, contrast a, method 10",
+	},
+	compute: func(c *Call) error {
+		in := func(name string) float64 { return float64(c.args[name].Value.(int)) }
+		x1, n1, x2, n2 := in("first-successes"), in("first-n"), in("second-successes"), in("second-n")
+		for _, g := range [][2]string{{"first-successes", "first-n"}, {"second-successes", "second-n"}} {
+			if in(g[0]) > in(g[1]) {
+				return c.wrong(g[0], shortest(in(g[0])), fmt.Sprintf("must be at most %s (%s)", g[1], shortest(in(g[1]))), "give how many of them have the property")
+			}
+		}
+		c.count(int(n1 + n2))
+		conf, dir := confidence.Of(c), direction.Of(c)
+		d, l := newcombe(x1, n1, x2, n2, conf, dir)
+		z := pooledScoreZ(x1, n1, x2, n2)
+		p := scoreP(x1+x2, n1+n2, z, dir)
+		c.set("difference", d)
+		c.setLimits(l)
+		c.set("p-value", p)
+		c.method = "score limits of each share joined (Newcombe, method 10); p from the pooled score z, both without continuity correction"
+		c.say(statement{"difference of shares (first - second)", d, l, NoUnit, fmt.Sprintf("n = %s and %s", shortest(n1), shortest(n2))})
+		c.sayTest(0, NoUnit, "score z", z, p)
+		holdsZero := !(l.hasLower && l.lower > 0) && !(l.hasUpper && l.upper < 0)
+		if rejects := p < 1-conf; rejects == holdsZero && p != 1-conf {
+			c.caution("interval-and-test-disagree", "", "The interval and the test come from different methods and disagree here about equality; "+
+				"treat the difference as undecided, or measure more.")
+		}
+		return nil
+	},
+}
+
+// scoreP is the p-value of a pooled score z; 1 where the pooled share is 0 or 1.
+func scoreP(x, n, z float64, dir string) float64 {
+	if x == 0 || x == n {
+		return 1
+	}
+	return pValue(dir, z, dist.Normal{})
+}
+
+// newcombe is the difference of two shares with the limits of method 10.
+func newcombe(x1, n1, x2, n2, conf float64, dir string) (float64, limits) {
+	p1, p2 := x1/n1, x2/n2
+	d := p1 - p2
+	return d, limitsOf(conf, dir,
+		func(q float64) float64 {
+			z := dist.Normal{}.UpperQuantile(q)
+			below, _ := wilsonDistances(p1, n1, z)
+			_, above := wilsonDistances(p2, n2, z)
+			return d - math.Sqrt(float64(below*below)+float64(above*above))
+		},
+		func(q float64) float64 {
+			z := dist.Normal{}.UpperQuantile(q)
+			_, above := wilsonDistances(p1, n1, z)
+			below, _ := wilsonDistances(p2, n2, z)
+			return d + math.Sqrt(float64(above*above)+float64(below*below))
+		})
+}

@@ -1,0 +1,141 @@
+package funcs
+
+import (
+	"fmt"
+	"math"
+
+	"halfwidth/funcs/internal/dist"
+)
+
+var (
+	events   = count("count", "how many events were counted", 0)
+	exposure = number("exposure", "how much time, distance or pieces they were counted over", positive, NoUnit).withDefault(1)
+)
+
+var rateInterval = &Function{
+	Name:        "rate-interval",
+	Version:     1,
+	Summary:     "rate of events per unit of exposure with its exact confidence interval, and a test against a reference",
+	Inputs:      inputs(events, exposure, number("reference", "the rate to compare with", positive, NoUnit).optional(), confidence, direction),
+	Results:     shareResults("rate", "count over exposure"),
+	Findings:    []FindingKind{},
+	Assumptions: []string{"events independent of one another, at one rate (Poisson)"},
+	Citations:   []string{"Garwood 1936"},
+	Example: Example{
+		Label:     "no event at 95%",
+		Arguments: []Argument{{"count", 10}},
+		Want:      []Argument{{"lower", 4.795389}, {"upper", 18.390356}},
+		Tolerance: 1e-6,
+		Source:    "Garwood 1936, Fiducial limits for the Poisson distribution, table (count 10: 4.795 to 18.39); further digits by chi-square quantiles",
+	},
+	compute: func(c *Call) error {
+		x, t := float64(events.Of(c)), exposure.Of(c)
+		dir := direction.Of(c)
+		l := limitsOf(confidence.Of(c), dir,
+			func(q float64) float64 { lower, _ := garwood(x, q); return lower / t },
+			func(q float64) float64 { _, upper := garwood(x, q); return upper / t })
+		c.set("rate", x/t)
+		c.setLimits(l)
+		c.method = "exact Poisson interval (Garwood)"
+		c.say(statement{"rate", x / t, l, NoUnit, fmt.Sprintf("%s in %s", plural(int(x), "event"), brief(t))})
+		if ref, ok := c.args["reference"].Value.(float64); ok {
+			mean := float64(ref * t)
+			atMost, atLeast := poissonTails(x, mean)
+			p := atMost
+			switch dir {
+			case above:
+				p = atLeast
+			case either:
+				p = math.Min(1, 2*math.Min(atMost, atLeast))
+			}
+			c.set("p-value", p)
+			c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(ref), sided(dir), pText(p))
+		}
+		return nil
+	},
+}
+
+// poissonTails are P(X <= x) and P(X >= x) for a Poisson law.
+func poissonTails(x, mean float64) (atMost, atLeast float64) {
+	_, atMost = dist.GammaTails(x+1, mean)
+	atLeast = 1
+	if x > 0 {
+		atLeast, _ = dist.GammaTails(x, mean)
+	}
+	return atMost, atLeast
+}
+
+var rateRatioInterval = &Function{
+	Name:    "rate-ratio-interval",
+	Version: 1,
+	Summary: "ratio of two rates (first / second) with its exact conditional interval, and a test",
+	Inputs: inputs(events.as("first-count", "events of the first group"), exposure.as("first-exposure", "exposure of the first group"),
+		events.as("second-count", "events of the second group"), exposure.as("second-exposure", "exposure of the second group"),
+		number("reference", "the ratio to compare with", positive, NoUnit).withDefault(1), confidence, direction),
+	Results: []Result{
+		{"ratio", Number, NoUnit, "first rate over second rate; absent where the second count is 0"},
+		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
+		{"upper", Number, NoUnit, "upper limit; absent for direction above, and where the second count is 0"},
+		resultP,
+	},
+	Findings: []FindingKind{{"no-events", "neither group has an event"},
+		{"unbounded-above", "the second count is 0, so the ratio has no upper limit"}},
+	Assumptions: []string{"events independent of one another, at one rate within each group (Poisson)"},
+	Citations:   []string{"Przyborowski & Wilenski 1940 (test)", "Clopper & Pearson 1934"},
+	Example: Example{
+		Label:     "15 events in 1000 hours, 5 in 1000",
+		Arguments: []Argument{{"first-count", 15}, {"first-exposure", 1000.0}, {"second-count", 5}, {"second-exposure", 1000.0}},
+		Want:      []Argument{{"ratio", 3.0}, {"p-value", 0.04138946533203125}},
+		Tolerance: 1e-13,
+		Source:    "exact count: twice P(X >= 15), X binomial with n = 20 and chance ½, is 2·21700/2^20",
+	},
+	compute: func(c *Call) error {
+		x1, x2 := float64(c.args["first-count"].Value.(int)), float64(c.args["second-count"].Value.(int))
+		t1, t2 := c.args["first-exposure"].Value.(float64), c.args["second-exposure"].Value.(float64)
+		if x1+x2 == 0 {
+			return refuse("no-events", "first-count", "Neither group has an event, so the rates cannot be compared; observe longer.")
+		}
+		// Given m = x1 + x2, x1 is binomial with chance θ; the ratio of rates is
+		// θ/(1-θ)·t2/t1. The beta quantile gives θ and 1-θ apart.
+		odds := func(lower, upper, a, b float64) float64 {
+			theta, rest := dist.BetaQuantile(lower, upper, a, b)
+			return theta / rest * (t2 / t1)
+		}
+		dir := direction.Of(c)
+		l := limitsOf(confidence.Of(c), dir,
+			func(q float64) float64 {
+				if x1 == 0 {
+					return 0
+				}
+				return odds(q, 1-q, x1, x2+1)
+			},
+			func(q float64) float64 {
+				if x2 == 0 {
+					return math.Inf(1)
+				}
+				return odds(1-q, q, x1+1, x2)
+			})
+		ref := c.args["reference"].Value.(float64)
+		chance := float64(ref*t1) / (float64(ref*t1) + t2)
+		p := binomialPValue(x1, x1+x2, chance, dir)
+		c.set("p-value", p)
+		c.method = "exact conditional interval of a ratio of Poisson rates"
+		counts := fmt.Sprintf("%s and %s", plural(int(x1), "event"), plural(int(x2), "event"))
+		if x2 > 0 {
+			c.set("ratio", x1/t1/(x2/t2))
+			c.setLimits(l)
+			c.say(statement{"ratio of rates (first / second)", x1 / t1 / (x2 / t2), l, NoUnit, counts})
+		} else {
+			c.caution("unbounded-above", "second-count", "The second group has no event, so the ratio has no estimate and no upper limit; observe it longer.")
+			if l.hasLower {
+				c.set("lower", l.lower)
+				c.sentence = fmt.Sprintf("The ratio of rates (first / second) is at least %s with %s confidence (%s direction, %s; %s).",
+					brief(l.lower), percent(1-tail(confidence.Of(c), dir)), dir, counts, c.method)
+			} else {
+				c.sentence = fmt.Sprintf("The ratio of rates (first / second) has no upper limit (%s direction, %s; %s).", dir, counts, c.method)
+			}
+		}
+		c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(ref), sided(dir), pText(p))
+		return nil
+	},
+}
