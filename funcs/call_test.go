@@ -191,7 +191,9 @@ func TestClosestNamesForgiveCaseHyphensAndSlips(t *testing.T) {
 			t.Errorf("Closest(%q) = %v, want %q first", written, got, want)
 		}
 	}
-	if got := Closest("zzzzzz", names); len(got) != 0 {
-		t.Errorf("Closest(zzzzzz) = %v, want none", got)
+	for _, strange := range []string{"zzzzzz", strings.Repeat("minutes", 1<<20)} {
+		if got := Closest(strange, names); len(got) != 0 {
+			t.Errorf("Closest(%.20s) = %v, want none", strange, got)
+		}
 	}
 }

@@ -104,8 +104,11 @@ func Closest(written string, names []string) []string {
 	var near []candidate
 	for _, name := range names {
 		n := plain(name)
-		d := editDistance(w, n)
 		short, long := min(len(w), len(n)), max(len(w), len(n))
+		d := long - short // at least; a very long text is compared with no name
+		if d <= max(1, long/3) {
+			d = editDistance(w, n)
+		}
 		switch {
 		case d <= max(1, long/3):
 		case short >= 3 && strings.Contains(string(n), string(w)):

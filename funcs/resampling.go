@@ -9,9 +9,12 @@ import (
 )
 
 var (
-	resamplesInput = count("resamples", "how many samples to draw at random", 100).withDefault(10000)
+	resamplesInput = count("resamples", "how many samples to draw at random", 100).within(Domain{Low: 100, High: mostResamples, Whole: true}).withDefault(10000)
 	seedInput      = count("seed", "where the random draws start; the same seed gives the same digits everywhere", 0).withDefault(1)
 )
+
+// mostResamples keeps what the draws give within 80 megabytes.
+const mostResamples = 10_000_000
 
 // resample calls work for each resample from 0 to n-1, shared among the cores.
 // Each resample has its own stream, and work may write only to what belongs to
