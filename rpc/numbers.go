@@ -11,31 +11,34 @@ import (
 const packedName = "float64le"
 
 // packed reads the rest of {"float64le": "BASE64"}: doubles as 8 bytes each,
-// lowest first, in standard base64 with padding (RFC 4648, section 4). NaN is a gap.
+// lowest first, in standard base64 with padding (RFC 4648, section 4). NaN is a
+// gap. Before a second member it stops, and gives an object with a fault.
 func (p *valueParser) packed(pointer string) (Value, error) {
-	v := Value{Kind: Numbers, Pointer: pointer}
+	v := Value{Kind: Numbers, Packed: true, Pointer: pointer}
 	raw, escaped, err := p.text()
 	if err != nil {
 		return v, err
 	}
 	p.space()
-	if p.peek() != '}' {
-		if p.peek() == ',' {
-			return v, badParams(pointerTo(pointer, packedName), packedName, "has members beside it", "let it stand alone in its object")
-		}
+	switch p.peek() {
+	case '}':
+		p.pos++
+	case ',':
+		fault := badParams(pointerTo(pointer, packedName), packedName, "has members beside it", "let it stand alone in its object")
+		return Value{Kind: Object, Pointer: pointer, Fault: fault}, nil
+	default:
 		return v, p.unexpected("a comma or } in an object")
 	}
-	p.pos++
 	if escaped {
 		raw = []byte(plain(raw, true))
 	}
-	v.Numbers, err = unpack(raw, pointer)
-	return v, err
+	v.Numbers, v.Fault = unpack(raw, pointer)
+	return v, nil
 }
 
-func unpack(text []byte, pointer string) ([]float64, error) {
+func unpack(text []byte, pointer string) ([]float64, *Error) {
 	at := pointerTo(pointer, packedName)
-	bad := func(reason string) ([]float64, error) {
+	bad := func(reason string) ([]float64, *Error) {
 		return nil, badParams(at, packedName, reason, "give the doubles as 8 bytes each, lowest byte first, in base64 with padding")
 	}
 	var piece [24 << 10]byte // of a size that doubles and groups of base64 both divide

@@ -12,20 +12,25 @@ import (
 // decodeStrict fills in a struct from params by name. Members are matched by
 // their exact names; one that is unknown, given twice, null or of another kind
 // is refused, and so is the lack of one that is not marked omitempty. Fields are
-// string, bool, int (a whole number), float64, []float64 (gaps NaN), Value,
+// string, bool, int (a whole number), float64, []float64 (gaps NaN), Value, Faulty,
 // structs, and slices of and pointers to these. A progress token may always come along.
 func decodeStrict(raw []byte, target any) error {
 	v := Value{Kind: Object}
 	if len(raw) > 0 {
 		var err error
-		if v, err = ParseValue(raw, ""); err != nil {
+		if v, err = parseFaulty(raw, ""); err != nil {
 			return err
 		}
 	}
 	return fill(reflect.ValueOf(target).Elem(), v, "params", 0)
 }
 
+// Faulty is a value whose parts may have faults, so that who looks into it can
+// tell of all of them at once.
+type Faulty struct{ Value }
+
 var (
+	faultyType  = reflect.TypeFor[Faulty]()
 	valueType   = reflect.TypeFor[Value]()
 	numbersType = reflect.TypeFor[[]float64]()
 )
@@ -33,6 +38,13 @@ var (
 // fill stores v, which came under the name given, as an element from 1 on or as
 // the whole (0).
 func fill(target reflect.Value, v Value, name string, element int) error {
+	if target.Type() == faultyType {
+		target.Set(reflect.ValueOf(Faulty{v}))
+		return nil
+	}
+	if parts := target.Kind() == reflect.Struct || target.Kind() == reflect.Slice; v.Fault != nil && (!parts || target.Type() == valueType || target.Type() == numbersType) {
+		return v.Fault
+	}
 	if target.Type() == valueType {
 		target.Set(reflect.ValueOf(v))
 		return nil
@@ -129,17 +141,22 @@ func fillStruct(target reflect.Value, v Value) error {
 	}
 	given := make(map[string]bool, len(v.Members))
 	for _, m := range v.Members {
-		given[m.Name] = true
 		i, known := places[m.Name]
 		switch {
+		case given[m.Name]:
+			return m.Value.Fault
 		case known:
 			if err := fill(target.Field(i), m.Value, m.Name, 0); err != nil {
 				return err
 			}
 		case m.Name == "workDoneToken" && v.Pointer == "":
+			if m.Value.Fault != nil {
+				return m.Value.Fault
+			}
 		default:
 			return unknownMember(m, names)
 		}
+		given[m.Name] = true
 	}
 	for i := range t.NumField() {
 		if member, required := fieldOf(t.Field(i)); required && !given[member] {

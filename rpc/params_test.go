@@ -97,15 +97,3 @@ func TestLenientParamsPassOverTheUnknown(t *testing.T) {
 		t.Error(err)
 	}
 }
-
-func TestNearNames(t *testing.T) {
-	names := []string{"mean-interval", "median-interval", "sample", "second-sample", "level"}
-	for _, test := range []struct{ name, want string }{
-		{"mean-intervall", "mean-interval"}, {"Mean Interval", "mean-interval"}, {"MEAN_INTERVAL", "mean-interval"}, {"smaple", "sample"},
-		{"leve", "level"}, {"medain-interval", "median-interval"}, {"confidence", ""}, {"", ""}, {"x", ""}, {"smplaeeee", ""},
-	} {
-		if got := near(test.name, names); got != test.want {
-			t.Errorf("near %q is %q, want %q", test.name, got, test.want)
-		}
-	}
-}

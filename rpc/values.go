@@ -24,7 +24,8 @@ func (k Kind) String() string {
 }
 
 // Value is a JSON value read strictly: no number outside the doubles, no member
-// twice. A list of numbers is one slice, in which a gap (null) is NaN.
+// twice. A list of numbers is one slice, in which a gap (null) is NaN. A value
+// with a Fault, its own or that of a part, must not be used.
 type Value struct {
 	Kind    Kind
 	YesNo   bool
@@ -33,7 +34,9 @@ type Value struct {
 	Numbers []float64
 	List    []Value
 	Members []Member // of an object, in their order
+	Packed  bool     // Numbers came as {"float64le": …}
 	Pointer string   // where it stood in the params (RFC 6901)
+	Fault   *Error   // -32602, the first of the value and its parts; nil where there is none
 }
 
 // Member is one named value of an object.
@@ -44,6 +47,16 @@ type Member struct {
 
 // ParseValue reads a JSON text. Its errors are -32602 and name the place.
 func ParseValue(text []byte, pointer string) (Value, error) {
+	v, err := parseFaulty(text, pointer)
+	if err == nil && v.Fault != nil {
+		err = v.Fault
+	}
+	return v, err
+}
+
+// parseFaulty reads a JSON text to its end, and leaves faults in the values
+// that have them. Its error means that the text is no JSON.
+func parseFaulty(text []byte, pointer string) (Value, error) {
 	p := valueParser{scanner{data: text}}
 	v, err := p.value(pointer)
 	if err == nil {
@@ -75,7 +88,7 @@ func (p *valueParser) value(pointer string) (Value, error) {
 		v.Text, err = p.string()
 	case c == '-' || isDigit(c):
 		v.Kind = Number
-		v.Number, err = p.double(pointer, -1)
+		v.Number, v.Fault, err = p.double(pointer, -1)
 	case c == 't':
 		v.Kind, v.YesNo, err = YesNo, true, p.word("true")
 	case c == 'f':
@@ -95,10 +108,10 @@ func (p *valueParser) string() (string, error) {
 
 // double reads a number to the nearest double, as strconv does. element is its
 // place in the list at pointer, or -1.
-func (p *valueParser) double(pointer string, element int) (float64, error) {
+func (p *valueParser) double(pointer string, element int) (float64, *Error, error) {
 	start := p.pos
 	if err := p.number(); err != nil {
-		return 0, err
+		return 0, nil, err
 	}
 	x, err := strconv.ParseFloat(string(p.data[start:p.pos]), 64)
 	if err != nil {
@@ -106,9 +119,9 @@ func (p *valueParser) double(pointer string, element int) (float64, error) {
 		if element >= 0 {
 			pointer = pointerTo(pointer, strconv.Itoa(element))
 		}
-		return 0, badElement(pointer, argument, element+1, fmt.Sprintf("is %.40s, which no double holds", p.data[start:p.pos]), "the largest is about 1.8e308")
+		return 0, badElement(pointer, argument, element+1, fmt.Sprintf("is %.40s, which no double holds", p.data[start:p.pos]), "the largest is about 1.8e308"), nil
 	}
-	return x, nil
+	return x, nil, nil
 }
 
 // list reads a list, as Numbers as long as numbers and nulls come.
@@ -125,7 +138,7 @@ func (p *valueParser) list(pointer string) (Value, error) {
 		c := p.peek()
 		number := c == '-' || isDigit(c)
 		if v.Kind == Numbers && !number && c != 'n' {
-			v.List, v.Numbers, v.Kind = asList(v.Numbers, pointer), nil, List
+			v.List, v.Numbers, v.Kind = v.Elements(), nil, List
 		}
 		switch {
 		case v.Kind == List:
@@ -134,11 +147,13 @@ func (p *valueParser) list(pointer string) (Value, error) {
 				return v, err
 			}
 			v.List = append(v.List, element)
+			v.take(element.Fault)
 		case number:
-			x, err := p.double(pointer, i)
+			x, fault, err := p.double(pointer, i)
 			if err != nil {
 				return v, err
 			}
+			v.take(fault)
 			if i == 0 {
 				v.Numbers = make([]float64, 0, p.countAhead())
 			}
@@ -176,24 +191,30 @@ func (p *valueParser) countAhead() int {
 	return min(n, (len(p.data)-p.pos)/2+1)
 }
 
-func asList(numbers []float64, pointer string) []Value {
-	list := make([]Value, 0, len(numbers)+1)
-	for i, x := range numbers {
-		element := Value{Kind: Number, Number: x, Pointer: pointerTo(pointer, strconv.Itoa(i))}
-		if math.IsNaN(x) {
-			element.Kind, element.Number = Null, 0
-		}
-		list = append(list, element)
+// take keeps the fault of a part, if it is the first.
+func (v *Value) take(fault *Error) {
+	if v.Fault == nil {
+		v.Fault = fault
 	}
-	return list
 }
 
 // Elements gives the values of any list.
 func (v Value) Elements() []Value {
-	if v.Kind == Numbers {
-		return asList(v.Numbers, v.Pointer)
+	if v.Kind != Numbers {
+		return v.List
 	}
-	return v.List
+	list := make([]Value, len(v.Numbers), len(v.Numbers)+1)
+	for i, x := range v.Numbers {
+		element := Value{Kind: Number, Number: x, Pointer: pointerTo(v.Pointer, strconv.Itoa(i))}
+		if math.IsNaN(x) {
+			element.Kind, element.Number = Null, 0
+		}
+		if v.Fault != nil && v.Fault.Data.Pointer == element.Pointer {
+			element.Fault = v.Fault
+		}
+		list[i] = element
+	}
+	return list
 }
 
 func (p *valueParser) object(pointer string) (Value, error) {
@@ -213,37 +234,46 @@ func (p *valueParser) object(pointer string) (Value, error) {
 		name := plain(raw, escaped)
 		p.space()
 		if name == packedName && len(v.Members) == 0 && p.peek() == '"' {
-			return p.packed(pointer)
+			packed, err := p.packed(pointer)
+			if err != nil || packed.Kind == Numbers {
+				return packed, err
+			}
+			v.take(packed.Fault)
+			p.pos++
+			continue
 		}
 		value, err := p.value(pointerTo(pointer, name))
 		if err != nil {
 			return v, err
 		}
 		v.Members = append(v.Members, Member{name, value})
+		v.take(value.Fault)
 		p.space()
 		switch p.peek() {
 		case ',':
 			p.pos++
 		case '}':
 			p.pos++
-			return v, v.onceEach()
+			v.onceEach()
+			return v, nil
 		default:
 			return v, p.unexpected("a comma or } in an object")
 		}
 	}
 }
 
-// onceEach refuses a member that stands twice.
-func (v Value) onceEach() error {
+// onceEach finds fault with a member that stands twice.
+func (v *Value) onceEach() {
 	if len(v.Members) < 2 {
-		return nil
+		return
 	}
 	seen := make(map[string]bool, len(v.Members))
-	for _, m := range v.Members {
+	for i := range v.Members {
+		m := &v.Members[i]
 		if seen[m.Name] {
-			return badParams(m.Value.Pointer, m.Name, "is given twice", "give each member once")
+			m.Value.Fault = badParams(m.Value.Pointer, m.Name, "is given twice", "give each member once")
+			v.take(m.Value.Fault)
 		}
 		seen[m.Name] = true
 	}
-	return nil
 }
