@@ -19,10 +19,10 @@ type NoncentralT struct{ DF, Noncentrality float64 }
 func (d NoncentralT) valid() bool { return d.DF > 0 && !math.IsNaN(d.Noncentrality) }
 
 // SF is P(T > t).
-func (d NoncentralT) SF(t float64) float64 { return num.Exp(d.logSF(t)) }
+func (d NoncentralT) SF(t float64) float64 { return min(1, num.Exp(d.logSF(t))) }
 
 // CDF is P(T <= t).
-func (d NoncentralT) CDF(t float64) float64 { return num.Exp(d.mirror().logSF(-t)) }
+func (d NoncentralT) CDF(t float64) float64 { return d.mirror().SF(-t) }
 
 // mirror is the law of -T.
 func (d NoncentralT) mirror() NoncentralT { return NoncentralT{d.DF, -d.Noncentrality} }
