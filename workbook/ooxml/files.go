@@ -26,7 +26,7 @@ func (b *Book) SaveAs(path string, changes Changes) (Saved, error) {
 	}
 	mode := fs.FileMode(0o644)
 	if b.info != nil {
-		mode = b.info.Mode().Perm()
+		mode = b.info.Mode().Perm() | 0o200 // a copy of a read-only book can be written
 	}
 	if err := b.replace(path, mode, j, false); err != nil {
 		return Saved{}, err

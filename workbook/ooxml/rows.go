@@ -88,14 +88,21 @@ func (s *scanner) numberRow(number int) error {
 		return s.faulty("a row has the number %d; rows go from 1 to %d", number, maxRows)
 	case number > s.limits.Rows:
 		return beyond(fmt.Sprintf("the sheet has a row %d, the limit is %d", number, s.limits.Rows), "Rows")
-	case s.rowsSeen[number>>6]&(1<<(number&63)) != 0:
+	case s.rowSeen(number):
 		return s.faulty("row %d is given twice", number)
 	}
 	s.takeRow(number)
 	return nil
 }
 
+func (s *scanner) rowSeen(number int) bool {
+	return number>>6 < len(s.rowsSeen) && s.rowsSeen[number>>6]&(1<<(number&63)) != 0
+}
+
 func (s *scanner) takeRow(number int) {
+	if number>>6 >= len(s.rowsSeen) {
+		s.rowsSeen = append(s.rowsSeen, make([]uint64, min(maxRows, 2*number)>>6+1-len(s.rowsSeen))...)
+	}
 	s.rowsSeen[number>>6] |= 1 << (number & 63)
 	s.row.Number = number
 	s.known = true
@@ -172,8 +179,11 @@ func (s *scanner) claim(col int) error {
 		return s.faulty("row %d has more than %d columns", s.row.Number, maxColumns)
 	case col > s.limits.Columns:
 		return beyond(fmt.Sprintf("the sheet has a column %s, the limit is %d columns", ColumnName(col), s.limits.Columns), "Columns")
-	case s.colsSeen[col] == s.stamp:
+	case col < len(s.colsSeen) && s.colsSeen[col] == s.stamp:
 		return s.faulty("the cell is given twice")
+	}
+	if col >= len(s.colsSeen) {
+		s.colsSeen = append(s.colsSeen, make([]uint32, min(maxColumns, 2*col)+1-len(s.colsSeen))...)
 	}
 	s.colsSeen[col] = s.stamp
 	s.lastCol = col

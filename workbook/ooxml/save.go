@@ -4,6 +4,7 @@ import (
 	"archive/zip"
 	"bytes"
 	"errors"
+	"hash/crc32"
 	"io"
 	"maps"
 	"slices"
@@ -112,12 +113,14 @@ func (b *Book) write(w io.Writer, j *job) error {
 	if err := out.SetComment(b.zip.Comment); err != nil {
 		return err
 	}
+	var seal sealer
 	for i, f := range b.zip.File {
 		rewrite := j.rewrite[i]
 		if rewrite == nil {
 			if err := out.Copy(f); err != nil {
 				return b.copyError(f.Name, err)
 			}
+			seal.add(f.Name, f.CRC32, f.UncompressedSize64)
 			continue
 		}
 		header := f.FileHeader
@@ -129,9 +132,12 @@ func (b *Book) write(w io.Writer, j *job) error {
 		if err != nil {
 			return err
 		}
-		if err := rewrite(part); err != nil {
+		sum := &counted{Writer: part}
+		if err := rewrite(sum); err != nil {
 			return err
 		}
+		seal.add(f.Name, sum.crc, sum.length)
+		seal.headers = append(seal.headers, &header)
 	}
 	for _, p := range j.add {
 		header := zip.FileHeader{Name: p.name, Method: zip.Deflate, Modified: firstDay}
@@ -142,7 +148,10 @@ func (b *Book) write(w io.Writer, j *job) error {
 		if _, err := part.Write(p.data); err != nil {
 			return err
 		}
+		seal.add(p.name, crc32.ChecksumIEEE(p.data), uint64(len(p.data)))
+		seal.headers = append(seal.headers, &header)
 	}
+	seal.set()
 	return out.Close()
 }
 

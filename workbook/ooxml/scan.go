@@ -95,7 +95,8 @@ type SheetFacts struct {
 
 // Scan passes once over a worksheet and calls visit for each row that it
 // holds, in the order of the file: rows and cells that the file gives out of
-// order come out of order. A row or a cell given twice is refused.
+// order come out of order. A row or a cell given twice is refused. visit may be
+// nil where only the facts are wanted.
 //
 // The whole part is read and checked, unless visit returns an error, which Scan
 // returns as it is. The values of a scan that ends in an error must not be used.
@@ -116,7 +117,8 @@ func (b *Book) scanEntry(sheet, entry int, options ScanOptions, visit func(*Row)
 	if err != nil {
 		return SheetFacts{}, place(err, b.file, part, name)
 	}
-	s := newScanner(newLexer(r, blockSize, b.limits), options, visit)
+	size := min(blockSize, b.zip.File[entry].UncompressedSize64+1)
+	s := newScanner(newLexer(r, int(size), b.limits), options, visit)
 	s.styles, s.date1904, s.table, s.plan = b.styleLimit(), b.date1904, b.sharedStrings, plan
 	if err := s.run(); err != nil {
 		var stopped visitError
@@ -149,14 +151,14 @@ type scanner struct {
 	classes []uint16 // by index; see class
 
 	row      Row
-	known    bool   // the number of the row is known
-	fast     bool   // its cells may be read by the fast path
-	rowTag   tagAt  // where the row's start tag stands
-	prefix   []byte // of rows and cells, with its colon
-	lastRow  int    // of the row before
-	lastCol  int    // of the cell before
-	rowsSeen []uint64
-	colsSeen []uint32 // the stamp of the row that last held the column
+	known    bool     // the number of the row is known
+	fast     bool     // its cells may be read by the fast path
+	rowTag   tagAt    // where the row's start tag stands
+	prefix   []byte   // of rows and cells, with its colon
+	lastRow  int      // of the row before
+	lastCol  int      // of the cell before
+	rowsSeen []uint64 // one bit a row; grows as rows come
+	colsSeen []uint32 // the stamp of the row that last held the column; grows likewise
 	stamp    uint32
 	texts    []byte // the texts of the row's cells
 	scratch  []byte // the value of the current cell, decoded
@@ -168,7 +170,7 @@ func newScanner(x *lexer, options ScanOptions, visit func(*Row) error) *scanner 
 		options.Columns = AllColumns()
 	}
 	return &scanner{lexer: x, options: options, visit: visit, styles: 1 << 30,
-		rowsSeen: make([]uint64, maxRows/64+1), colsSeen: make([]uint32, maxColumns+1)}
+		rowsSeen: make([]uint64, 64), colsSeen: make([]uint32, 64)}
 }
 
 // run reads the part to its end.

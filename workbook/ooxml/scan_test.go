@@ -91,6 +91,14 @@ func TestScanAcceptsEverySpelling(t *testing.T) {
 	}
 }
 
+func manyAttributes(n int, name string) string {
+	var s strings.Builder
+	for i := range n {
+		fmt.Fprintf(&s, " "+name+"=''", i)
+	}
+	return s.String()
+}
+
 // A mark ¦ in the data is taken out and stands for the byte that %d in the error
 // is to name; without a mark that is the end of the data.
 func TestScanRefusesDamage(t *testing.T) {
@@ -140,6 +148,9 @@ func TestScanRefusesDamage(t *testing.T) {
 		{"an attribute without quotes", rows(`¦<row r=1/>`), "the attribute r has no value in quotes (byte %d)"},
 		{"attributes without a space", rows(`¦<row r="1"hidden="1"/>`), "the attributes of <row> are not well formed (byte %d)"},
 		{"a tag in a tag", rows(`¦<row r="1" <c/>`), "a tag holds another < (byte %d)"},
+		{"too many attributes", rows(`¦<row` + manyAttributes(1025, "a%d") + `/>`), "a tag has more than 1024 attributes (byte %d)"},
+		{"too many namespaces", rows(`¦<row` + manyAttributes(256, "xmlns:a%d") + `/>`), "more than 256 namespaces are declared at once (byte %d)"},
+		{"an attribute given twice among many", rows(`¦<row` + manyAttributes(30, "a%d") + ` a7=""/>`), "the attribute a7 is given twice (byte %d)"},
 		{"cells in two places", worksheet(`<sheetData/>¦<sheetData/>`), "the sheet's cells are given in two places (byte %d)"},
 		{"another root", xmlHead + `¦<chartsheet xmlns="` + mainTransitional + `"/>`, "the part holds a <chartsheet>, not a worksheet (byte %d)"},
 		{"a root of no namespace", `¦<worksheet><sheetData/></worksheet>`, "the part holds a <worksheet>, not a worksheet (byte %d)"},

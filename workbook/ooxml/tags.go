@@ -24,11 +24,17 @@ const (
 	relStrict         = "http://purl.oclc.org/ooxml/officeDocument/relationships"
 	packageRelations  = "http://schemas.openxmlformats.org/package/2006/relationships"
 	packageTypes      = "http://schemas.openxmlformats.org/package/2006/content-types"
-	maxTagAttributes  = 1024
-	fewTagAttributes  = 24
-	xmlNamespace      = "xml"
 	namespaceOfPrefix = "xmlns"
 )
+
+// Beyond these a tag costs more time than an honest file has reason for.
+const (
+	maxTagAttributes = 1024
+	maxNamespaces    = 256
+)
+
+// fewTagAttributes is up to where comparing each with each is quicker than a map.
+const fewTagAttributes = 24
 
 func namespaceOf(uri string) namespace {
 	switch uri {
@@ -196,6 +202,9 @@ func (x *lexer) bind(a attr) error {
 	}
 	if len(prefix) > 0 {
 		prefix = prefix[1:]
+	}
+	if len(x.spaces) == maxNamespaces {
+		return x.wrong("more than %d namespaces are declared at once", maxNamespaces)
 	}
 	x.spaces = append(x.spaces, binding{string(prefix), namespaceOf(uri), len(x.opens)})
 	return nil
