@@ -1,6 +1,12 @@
 package workbook
 
 import (
+	"bytes"
+	"crypto/sha256"
+	"errors"
+	"fmt"
+	"io"
+	"os"
 	"regexp"
 	"strings"
 	"unicode/utf8"
@@ -206,9 +212,30 @@ func partOfName(b byte) bool {
 	return b >= utf8.RuneSelf || b == '_' || b == '.' || b == '!' || b >= '0' && b <= '9' || b >= 'A' && b <= 'Z' || b >= 'a' && b <= 'z'
 }
 
-// mayReplace refuses to write over an output that somebody changed since it was
-// filled. An output is as it was where it still bears the seal of its filling,
-// or holds what would be written now.
+// mayReplace refuses to write over an output that was changed since it was
+// filled. It is as it was where its seal holds, or where it holds what would be
+// written now.
 func (b *Book) mayReplace(target string, changes ooxml.Changes) error {
+	there, err := os.Open(target)
+	if errors.Is(err, os.ErrNotExist) {
+		return nil
+	}
+	if err != nil {
+		return err
+	}
+	defer there.Close()
+	if sealed, err := ooxml.Sealed(target); sealed || err != nil {
+		return err
+	}
+	old, now := sha256.New(), sha256.New()
+	if _, err := io.Copy(old, there); err != nil {
+		return err
+	}
+	if _, err := b.Write(now, changes); err != nil {
+		return err
+	}
+	if !bytes.Equal(old.Sum(nil), now.Sum(nil)) {
+		return fmt.Errorf("%s is there and was changed since it was filled, or was not made by a fill; use --replace to write over it, or --output to write elsewhere", target)
+	}
 	return nil
 }
