@@ -8,7 +8,7 @@ import (
 )
 
 var averages = []*Function{meanInterval, pairedInterval, geometricMeanInterval, lognormalMeanInterval, medianInterval,
-	trimmedMeanInterval,
+	toleranceInterval, trimmedMeanInterval,
 	bootstrapInterval, stratifiedInterval, ratioOfSumsInterval}
 
 var knownSD = number("known-sd", "the standard deviation, where it is known beforehand and not estimated", positive, SameUnit).optional()
