@@ -33,8 +33,8 @@ func (c *calcSheet) readRows(b *Block) {
 		c.readTable(r)
 		for _, bc := range b.resultColumns() {
 			c.results[CellRef{number, bc.Col}] = resultCell{r, bc.Name}
-			c.checkResultCell(r, bc)
 		}
+		c.checkResultCells(r)
 		b.Rows = append(b.Rows, r)
 	}
 }
@@ -106,36 +106,60 @@ func (r *Row) caution(at CellRef, severity funcs.Severity, code, message string)
 		Finding: funcs.Finding{Code: code, Severity: severity, Message: message}})
 }
 
-// checkResultCell refuses a row of which a result cell must not be overwritten.
-func (c *calcSheet) checkResultCell(r *Row, bc BlockColumn) {
-	at := CellRef{r.Number, bc.Col}
+// checkResultCells refuses a row of which a result cell must not be
+// overwritten.
+func (c *calcSheet) checkResultCells(r *Row) {
+	var reasons []string
+	cells := map[string][]CellRef{}
+	for _, bc := range r.Block.resultColumns() {
+		at := CellRef{r.Number, bc.Col}
+		why := c.whyClosed(at)
+		if why == "" {
+			continue
+		}
+		if r.closed == nil {
+			r.closed = map[int]bool{}
+		}
+		r.closed[bc.Col] = true
+		if cells[why] == nil {
+			reasons = append(reasons, why)
+		}
+		cells[why] = append(cells[why], at)
+	}
+	for _, why := range reasons {
+		var names, addresses []string
+		for _, at := range cells[why] {
+			names, addresses = append(names, at.String()), append(addresses, c.sheet.address(at.Row, at.Col))
+		}
+		who := names[0]
+		if len(names) > 1 {
+			who += " (like " + few(names[1:]) + ")"
+		}
+		r.refuse(cells[why][0], Span{}, "result-cell-taken", who+" "+why, addresses...)
+	}
+}
+
+// whyClosed says why a result cell must not be overwritten; "" where it may.
+func (c *calcSheet) whyClosed(at CellRef) string {
 	cell := c.at(at.Row, at.Col)
-	why := ""
 	switch {
 	case cell.Formula || cell.Unsaved:
-		why = "holds a formula, which is never overwritten. Empty the cell, or move the formula to a column of its own."
+		return "holds a formula, which is never overwritten. Empty the cell, or move the formula to a column of its own."
 	case cell.Covered:
-		why = "lies inside merged cells, so nothing can stand in it. Unmerge them."
+		return "lies inside merged cells, so nothing can stand in it. Unmerge them."
 	}
 	for _, t := range c.tables {
-		if why != "" || at.Col < t.FirstCol || at.Col > t.LastCol {
+		if at.Col < t.FirstCol || at.Col > t.LastCol {
 			continue
 		}
 		if at.Row >= t.FirstRow && at.Row < t.FirstRow+t.HeaderRows {
-			why = fmt.Sprintf("lies in the header row of the table %s, which is never overwritten. Move the row.", t.Name)
+			return fmt.Sprintf("lies in the header row of the table %s, which is never overwritten. Move the row.", t.Name)
 		}
 		if at.Row <= t.LastRow && at.Row > t.LastRow-t.TotalsRows {
-			why = fmt.Sprintf("lies in the totals row of the table %s, which is never overwritten. Move the row.", t.Name)
+			return fmt.Sprintf("lies in the totals row of the table %s, which is never overwritten. Move the row.", t.Name)
 		}
 	}
-	if why == "" {
-		return
-	}
-	if r.closed == nil {
-		r.closed = map[int]bool{}
-	}
-	r.closed[bc.Col] = true
-	r.refuse(at, Span{}, "result-cell-taken", at.String()+" "+why)
+	return ""
 }
 
 // maxSheetName is the length of a sheet's name, as spreadsheet programs agree.
@@ -293,14 +317,14 @@ func (p *Plan) checkSamples(r *Row) {
 			continue
 		}
 		if q.query.Matched != nil && !r.Function.Paired {
-			r.refuse(in.Cell, q.query.Matched.Span, "bad-value", fmt.Sprintf("%s (%s): %s does not pair its samples. Leave out matched by %s, or use paired-interval.",
+			r.refuse(in.Cell, in.term.span(q.query.Matched.Span), "bad-value", fmt.Sprintf("%s (%s): %s does not pair its samples. Leave out matched by %s, or use paired-interval.",
 				in.Cell, in.Name, r.Function.Name, nameText(q.query.Matched.Name)))
 		}
 		if in.term.input.Kind != funcs.Sample || q.query.ForEach == nil {
 			continue
 		}
 		if samples > 1 {
-			r.refuse(in.Cell, q.query.ForEach.Span, "bad-value", fmt.Sprintf("%s (%s): %s takes two samples, so it cannot be given for each %s. Give every group a row with a condition.",
+			r.refuse(in.Cell, in.term.span(q.query.ForEach.Span), "bad-value", fmt.Sprintf("%s (%s): %s takes two samples, so it cannot be given for each %s. Give every group a row with a condition.",
 				in.Cell, in.Name, r.Function.Name, nameText(q.query.ForEach.Name)))
 			continue
 		}

@@ -29,7 +29,7 @@ func (p *Plan) countRow(ctx context.Context, r *Row) error {
 		}
 		for _, f := range a.faults {
 			finding := placed(in.Name, in.Cell.String(), &f)
-			r.faults = append(r.faults, Diagnostic{Finding: finding, Sheet: r.Block.Sheet, Cell: in.Cell, Span: f.span})
+			r.faults = append(r.faults, Diagnostic{Finding: finding, Sheet: r.Block.Sheet, Cell: in.Cell, Span: in.term.span(f.span)})
 		}
 		if o := a.from.Origin; o != nil {
 			in.Range, in.Skipped = o.Range, o.Skipped

@@ -289,7 +289,7 @@ func (r *RowResult) addFault(in *Input, f *fault) {
 	if finding.Cells == nil {
 		finding.Cells = []string{r.Row.Block.calc.sheet.address(in.Cell.Row, in.Cell.Col)}
 	}
-	r.Findings = append(r.Findings, Diagnostic{Finding: finding, Sheet: r.Row.Block.Sheet, Cell: in.Cell, Span: f.span})
+	r.Findings = append(r.Findings, Diagnostic{Finding: finding, Sheet: r.Row.Block.Sheet, Cell: in.Cell, Span: in.term.span(f.span)})
 }
 
 // addOrigins adds what the reading of the inputs found, where the call that

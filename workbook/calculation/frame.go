@@ -1,7 +1,9 @@
 package calculation
 
 import (
+	"cmp"
 	"math/bits"
+	"slices"
 	"strings"
 	"unicode"
 	"unicode/utf8"
@@ -294,6 +296,42 @@ func (c *Column) number(row int) float64 {
 // text gives the text's number of a row whose kind is Text or Error.
 func (c *Column) text(row int) uint32 {
 	return c.chunks[(row-1)>>chunkBits].texts[(row-1)&(chunkRows-1)]
+}
+
+// findTexts gives the cells whose text is wanted, by rows, then columns. It
+// goes through what is held, not through the whole rectangle of the sheet.
+func (f *Frame) findTexts(wanted func(text string) bool) []CellRef {
+	is := make([]bool, len(f.texts))
+	for id, text := range f.texts {
+		is[id] = wanted(text)
+	}
+	var out []CellRef
+	for _, c := range f.columns {
+		if c == nil {
+			continue
+		}
+		for at := range c.chunks {
+			k := &c.chunks[at]
+			for i, b := range k.kinds {
+				if CellKind(b&kindMask) == Text && is[k.texts[i]] {
+					out = append(out, CellRef{at<<chunkBits + i + 1, c.col})
+				}
+			}
+		}
+	}
+	slices.SortFunc(out, func(a, b CellRef) int { return cmp.Or(a.Row-b.Row, a.Col-b.Col) })
+	return out
+}
+
+// lastHeld is a row that none of the columns holds anything below.
+func (f *Frame) lastHeld(firstCol, lastCol int) int {
+	last := 0
+	for col := firstCol; col <= lastCol; col++ {
+		if c := f.column(col); c != nil {
+			last = max(last, len(c.chunks)<<chunkBits)
+		}
+	}
+	return min(last, f.lastRow)
 }
 
 // At gives the cell of a row.

@@ -180,22 +180,16 @@ func (b *bound) match(f *Frame, row int, cols []int) int {
 	first, last := b.columnRange(f)
 	twice := -1
 	var twins [2]int
-	for col := first; col <= last; col++ {
-		text := headerText(f.At(row, col))
-		if text == "" {
-			continue
-		}
-		form := headerForm(text)
-		for i, n := range b.names {
-			if headerForm(n.Name) != form {
-				continue
-			}
-			if cols[i] != 0 && twice < 0 {
-				twice, twins = i, [2]int{cols[i], col}
-			}
-			if cols[i] == 0 {
+	forms := b.at.sheet.headerForms(f, row)
+	for i, n := range b.names {
+		for _, col := range forms[headerForm(n.Name)] {
+			switch {
+			case col < first || col > last:
+			case cols[i] == 0:
 				cols[i] = col
 				count++
+			case twice < 0:
+				twice, twins = i, [2]int{cols[i], col}
 			}
 		}
 	}
@@ -206,6 +200,26 @@ func (b *bound) match(f *Frame, row int, cols []int) int {
 			quote(b.names[twice].Name), one, two), one, two)
 	}
 	return count
+}
+
+// headerForms gives the columns of each text of a row, by the form in which
+// names are compared. What was found before columns were dropped is kept.
+func (sh *sheet) headerForms(f *Frame, row int) map[string][]int {
+	if forms, ok := sh.headers[row]; ok {
+		return forms
+	}
+	forms := map[string][]int{}
+	for col := 1; col <= f.LastCol(); col++ {
+		if text := headerText(f.At(row, col)); text != "" {
+			form := headerForm(text)
+			forms[form] = append(forms[form], col)
+		}
+	}
+	if sh.headers == nil {
+		sh.headers = map[int]map[string][]int{}
+	}
+	sh.headers[row] = forms
+	return forms
 }
 
 // headerText gives what a header cell reads.
@@ -289,15 +303,7 @@ func (b *bound) notFound(f *Frame, first, last int) {
 	}
 	missing := slices.Index(cols, 0)
 	name := b.names[missing]
-	var texts []string
-	from, to := b.columnRange(f)
-	for row := first; row <= last; row++ {
-		for col := from; col <= to; col++ {
-			if t := headerText(f.At(row, col)); t != "" && f.At(row, col).Kind == Text && (best == 0 || row == best) && !slices.Contains(texts, trim(t)) {
-				texts = append(texts, trim(t))
-			}
-		}
-	}
+	texts := b.headerTexts(f, first, last, best)
 	switch {
 	case best > 0:
 		b.refuse(name.Span, fmt.Sprintf("The header of %s in row %d has no column %s. %s", where, best, quote(name.Name), suggest(name.Name, texts)))
@@ -309,4 +315,24 @@ func (b *bound) notFound(f *Frame, first, last int) {
 		b.refuse(name.Span, fmt.Sprintf("No row from %d to %d of %s holds a column %s. %s", first, max(last, first), where, quote(name.Name),
 			suggest(name.Name, texts)))
 	}
+}
+
+// headerTexts lists the texts of one row, or of all rows where best is 0.
+func (b *bound) headerTexts(f *Frame, first, last, best int) []string {
+	var texts []string
+	seen := map[string]bool{}
+	from, to := b.columnRange(f)
+	if best > 0 {
+		first, last = best, best
+	}
+	for row := first; row <= last; row++ {
+		for col := from; col <= min(to, f.LastCol()); col++ {
+			cell := f.At(row, col)
+			if text := trim(cell.Text); cell.Kind == Text && text != "" && !seen[text] {
+				seen[text] = true
+				texts = append(texts, text)
+			}
+		}
+	}
+	return texts
 }

@@ -50,7 +50,9 @@ type sheet struct {
 	frame *Frame
 	err   error
 	calc  *calcSheet // the calculation sheet that stands on it, or nil
-	facts facts
+	// headers is the columns of each text, of the rows looked at for headers.
+	headers map[int]map[string][]int
+	facts   facts
 }
 
 // located is a place that was found.

@@ -169,7 +169,6 @@ func valueAt(r *reading, i int) (x float64, row int32, skipped bool) {
 		return math.NaN(), 0, false
 	}
 	s := r.series[0]
-	row = int32(i)
 	if !r.isRange {
 		row = s.rows[i]
 	} else {

@@ -18,13 +18,9 @@ func newCalcSheet(sh *sheet) *calcSheet {
 			c.tables = append(c.tables, p)
 		}
 	}
-	frame := sh.frame
-	for row := 1; row <= frame.LastRow(); row++ {
-		for col := 1; col <= frame.LastCol(); col++ {
-			if _, ok := workOut(frame.At(row, col)); ok {
-				c.addBlock(row, col)
-			}
-		}
+	isWork := func(text string) bool { _, ok := workOut(Cell{Kind: Text, Text: text}); return ok }
+	for _, at := range sh.frame.findTexts(isWork) {
+		c.addBlock(at.Row, at.Col)
 	}
 	for _, b := range c.blocks {
 		b.LastRow = c.lastRow(b)
@@ -268,18 +264,11 @@ func (c *calcSheet) isEmpty(b *Block, col int) bool {
 // findSettings reads the `default NAME` cells outside blocks.
 func (c *calcSheet) findSettings() {
 	known := options()
-	frame := c.sheet.frame
-	for row := 1; row <= frame.LastRow(); row++ {
-		for col := 1; col <= frame.LastCol(); col++ {
-			cell := frame.At(row, col)
-			if cell.Kind != Text || c.blockAt(row, col) != nil {
-				continue
-			}
-			name, ok := strings.CutPrefix(nameForm(cell.Text), "default-")
-			if !ok {
-				continue
-			}
-			c.addSetting(CellRef{row, col}, name, known)
+	const prefix = "default-"
+	isDefault := func(text string) bool { return strings.HasPrefix(nameForm(text), prefix) }
+	for _, at := range c.sheet.frame.findTexts(isDefault) {
+		if c.blockAt(at.Row, at.Col) == nil {
+			c.addSetting(at, strings.TrimPrefix(nameForm(c.at(at.Row, at.Col).Text), prefix), known)
 		}
 	}
 }
@@ -314,8 +303,8 @@ func (c *calcSheet) setting(name string, b *Block) *setting {
 // hold a function's name or an expression under its columns.
 func (c *calcSheet) findLeftRows(b *Block) {
 	var rows []int
-	frame := c.sheet.frame
-	for row := b.LastRow + 1; row <= frame.LastRow() && c.headerBelow(b, row) == nil; row++ {
+	last := c.sheet.frame.lastHeld(b.FirstCol, b.LastCol)
+	for row := b.LastRow + 1; row <= last && c.headerBelow(b, row) == nil; row++ {
 		if c.looksLeft(b, row) {
 			rows = append(rows, row)
 		}

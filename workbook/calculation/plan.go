@@ -173,7 +173,7 @@ func (p *Plan) checkRead(r *Row) {
 		}
 		finding := placed(in.Name, in.Cell.String(), f)
 		address := r.Block.calc.sheet.address(in.Cell.Row, in.Cell.Col)
-		r.refuse(in.Cell, f.span, f.Code, finding.Message, append([]string{address}, f.Cells...)...)
+		r.refuse(in.Cell, in.term.span(f.span), f.Code, finding.Message, append([]string{address}, f.Cells...)...)
 	}
 	p.checkTableUse(r)
 }
@@ -185,7 +185,7 @@ func (p *Plan) checkTableUse(r *Row) {
 	}
 	switch {
 	case r.each != nil:
-		r.refuse(r.each.Cell, r.each.term.query.query.ForEach.Span, "no-table-sheet", fmt.Sprintf(
+		r.refuse(r.each.Cell, r.each.term.span(r.each.term.query.query.ForEach.Span), "no-table-sheet", fmt.Sprintf(
 			"%s (%s): for each gives a row for every group, and they need a sheet. Name one in a column headed `table sheet`, or write a condition such as where %s = …",
 			r.each.Cell, r.each.Name, nameText(r.each.term.query.query.ForEach.Name)))
 	case r.Function.Table != nil && len(r.Function.Results) == 0:

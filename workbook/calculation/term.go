@@ -20,8 +20,17 @@ type term struct {
 	one     bool // area is a single cell whose value is wanted as it is
 	unit    string
 	written string  // the expression's text
+	far     bool    // the expression stands in another cell than the input's
 	notes   []fault // what should be known, such as a saved formula value
 	at      CellRef // where the value is written, for messages; zero outside a sheet
+}
+
+// span gives a stretch of the expression within the input's own cell.
+func (t *term) span(s Span) Span {
+	if t.far {
+		return Span{}
+	}
+	return s
 }
 
 // listTerm is one number of a list.
@@ -318,7 +327,7 @@ func (r *reader) follow(t *term, calc *calcSheet, ref CellRef, written string) *
 		f.Cells, f.span = append(f.Cells, at), Span{}
 		return f
 	}
-	got.unit, got.at = t.unit, t.at
+	got.unit, got.at, got.far = t.unit, t.at, true
 	got.notes = append(t.notes, got.notes...)
 	*t = *got
 	return nil

@@ -2,6 +2,7 @@ package calculation
 
 import (
 	"slices"
+	"sync"
 
 	"halfwidth/funcs"
 )
@@ -15,10 +16,15 @@ type vocabulary struct {
 // words gives the names that a block of f knows; of all functions where f is
 // nil.
 func words(f *funcs.Function) vocabulary {
-	list := []*funcs.Function{f}
 	if f == nil {
-		list = funcs.All()
+		return allWords()
 	}
+	return wordsOf([]*funcs.Function{f})
+}
+
+var allWords = sync.OnceValue(func() vocabulary { return wordsOf(funcs.All()) })
+
+func wordsOf(list []*funcs.Function) vocabulary {
 	var v vocabulary
 	add := func(names *[]string, name string) {
 		if !slices.Contains(*names, name) {
@@ -84,7 +90,7 @@ func within(a, b string, edits int) bool {
 // options lists the inputs that `default NAME` may set: levels, choices,
 // yes-no, and numbers with a default wherever they are taken. The others are
 // data.
-func options() []string {
+var options = sync.OnceValue(func() []string {
 	var names []string
 	for _, f := range funcs.All() {
 		for _, in := range f.Inputs {
@@ -94,7 +100,7 @@ func options() []string {
 		}
 	}
 	return append(names, decimalMark)
-}
+})
 
 // decimalMark is the option that is no input: how text files write numbers.
 const decimalMark = "decimal-mark"

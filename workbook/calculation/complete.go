@@ -1,0 +1,49 @@
+package calculation
+
+import "context"
+
+// BlockAt gives the block that a cell of a calculation sheet lies in, with the
+// cell's column and row; the row is nil in the header and where it is no
+// calculation. It is false outside blocks.
+func (p *Plan) BlockAt(sheet string, at CellRef) (b *Block, column *BlockColumn, row *Row, ok bool) {
+	for _, c := range p.calcs {
+		if c.sheet.name != sheet {
+			continue
+		}
+		if b = c.blockAt(at.Row, at.Col); b == nil {
+			return nil, nil, nil, false
+		}
+		for _, r := range b.Rows {
+			if r.Number == at.Row {
+				row = r
+			}
+		}
+		return b, &b.Columns[at.Col-b.FirstCol], row, true
+	}
+	return nil, nil, nil, false
+}
+
+// HeaderNames gives the names of the columns of a sheet, for completion: the
+// texts of the first of its rows that has the most of them.
+func HeaderNames(ctx context.Context, source Source, sheet string) ([]string, error) {
+	var names []string
+	_, err := source.Read(ctx, sheet, func(head *Frame) Columns {
+		for row := 1; row <= min(HeadRows, head.LastRow()); row++ {
+			var texts []string
+			for col := 1; col <= head.LastCol(); col++ {
+				if cell := head.At(row, col); cell.Kind == Text && trim(cell.Text) != "" {
+					texts = append(texts, trim(cell.Text))
+				}
+			}
+			if len(texts) > len(names) {
+				names = texts
+			}
+		}
+		return Columns{}
+	})
+	return names, err
+}
+
+// NameText writes a name as it stands in an expression, in quotes where it
+// needs them.
+func NameText(name string) string { return nameText(name) }
