@@ -42,38 +42,43 @@ type groupsTest struct {
 	pooled        bool
 }
 
-// power is exact also where the sds differ. Let χ₁ and χ₂ be the sums of squares,
-// each over its true variance. U = χ₁/(χ₁+χ₂) is Beta(ν₁/2, ν₂/2) and independent
-// of χ₁+χ₂; given U the statistic is a noncentral t times a constant. So the power
-// is the mean over U of P(T' > t·√c(U)), with t and c as the kind of test has them.
+// power is exact also where the sds differ: for separate variances by the Welch
+// integral, for one variance pooled over unlike ones by pooledUnlike.
 func (g groupsTest) power(n, m int, difference float64) float64 {
 	se, _ := differenceError(g.first, g.second, n, m, false)
-	df1, df2 := float64(n-1), float64(m-1)
-	df := df1 + df2
-	noncentrality := difference / se
-	if g.pooled && g.first == g.second {
-		return tPower(df, noncentrality, g.significance, g.direction)
+	switch {
+	case g.pooled && g.first == g.second:
+		return tPower(float64(n-1)+float64(m-1), difference/se, g.significance, g.direction)
+	case g.pooled:
+		return g.pooledUnlike(n, m, difference/se)
 	}
-	law := dist.NoncentralT{DF: df, Noncentrality: noncentrality}
-	// The variances of the two means, as shares of the variance of the difference.
-	share1 := float64(g.first/se*g.first/se) / float64(n)
-	share2 := float64(g.second/se*g.second/se) / float64(m)
-	fixed := critical(df, g.significance, g.direction)
-	f := func(logit float64) float64 {
-		u, v := 1/(1+num.Exp(-logit)), 1/(1+num.Exp(logit))
-		w := dist.BetaPrefactor(u, v, df1/2, df2/2)
-		if w == 0 {
+	if g.direction == below {
+		difference = -difference
+	}
+	return dist.WelchDesign{N1: n, N2: m, SD1: g.first / se, SD2: g.second / se}.Power(difference/se, g.significance, g.direction == either)
+}
+
+// pooledUnlike is the power of the pooled test where the true variances differ.
+// Let χ₁ and χ₂ be the sums of squares, each over its true variance. U = χ₁/(χ₁+χ₂)
+// is Beta(ν₁/2, ν₂/2) and independent of χ₁+χ₂; given U the statistic is a
+// noncentral t over √c(U), c(U) = (1/n+1/m)(Uσ₁²+(1-U)σ₂²)/(σ₁²/n+σ₂²/m). The power
+// is the mean over U, by the trapezoidal rule in its log odds.
+func (g groupsTest) pooledUnlike(n, m int, noncentrality float64) float64 {
+	n1, n2 := float64(n), float64(m)
+	df1, df2 := n1-1, n2-1
+	unit := math.Max(g.first, g.second)
+	v1, v2 := float64(g.first/unit*g.first/unit), float64(g.second/unit*g.second/unit)
+	factor := (1/n1 + 1/n2) / (v1/n1 + v2/n2)
+	law := dist.NoncentralT{DF: df1 + df2, Noncentrality: noncentrality}
+	crit := critical(df1+df2, g.significance, g.direction)
+	mean := func(logOdds float64) float64 {
+		u, v := 1/(1+num.Exp(-logOdds)), 1/(1+num.Exp(logOdds))
+		weight := dist.BetaPrefactor(u, v, df1/2, df2/2)
+		if weight == 0 {
 			return 0
 		}
-		a, b := df*u*share1/df1, df*v*share2/df2
-		c, t := a+b, fixed
-		if g.pooled {
-			c = (1/float64(n) + 1/float64(m)) * (u*share1*float64(n) + v*share2*float64(m))
-		} else {
-			t = critical((a+b)*(a+b)/(a*a/df1+b*b/df2), g.significance, g.direction)
-		}
-		return w * beyond(law, t*math.Sqrt(c), g.direction)
+		return weight * beyond(law, crit*math.Sqrt(factor*(float64(u*v1)+float64(v*v2))), g.direction)
 	}
 	step := 1 / math.Sqrt(1+math.Min(df1, df2))
-	return math.Min(1, num.Trapezoid(f, num.Log(df1/df2), step, 1e-10))
+	return math.Min(1, num.Trapezoid(mean, num.Log(df1/df2), step, 1e-9))
 }
