@@ -18,6 +18,7 @@ var sizesFamily = []*Function{
 	meanTestSize, meanTestPower, meanTestDetectable,
 	pairedTestSize, pairedTestPower, pairedTestDetectable,
 	differenceTestSize, differenceTestPower, differenceTestDetectable,
+	equivalenceSize, equivalencePowerOf,
 	proportionTestSize, proportionTestPower,
 	proportionDifferenceSize, proportionDifferencePower,
 	severalMeansSize, severalMeansPower,

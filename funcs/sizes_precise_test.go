@@ -3,6 +3,7 @@ package funcs
 import (
 	"math"
 	"strconv"
+	"strings"
 	"testing"
 )
 
@@ -86,5 +87,57 @@ func TestWelchPower(t *testing.T) {
 	g := groupsTest{first: 3, second: 1, significance: 0.05, direction: either}
 	if p := g.power(5, 20, 4); math.Abs(p-0.61867) > 5e-6 {
 		t.Errorf("power %.8f, want 0.61867", p)
+	}
+}
+
+// Source: t_power.csv, arithmetic at 60 digits.
+func TestPowersOfTTestsAreExact(t *testing.T) {
+	for _, r := range preciseValues(t, "t_power.csv") {
+		arguments := map[string]any{"difference": number64(t, r, "diff"), "significance": number64(t, r, "alpha"), "direction": tailsOf(r.columns["sides"])}
+		name := "mean-test-power"
+		if r.function == "t_power_two_sample" {
+			name = "difference-test-power"
+			arguments["first-sd"], arguments["variances"] = number64(t, r, "sd"), pooled
+			arguments["n"], arguments["second-n"] = whole(t, r, "n1"), whole(t, r, "n2")
+		} else {
+			arguments["sd"], arguments["n"] = number64(t, r, "sd"), whole(t, r, "n")
+			within(t, "paired-test-power", answered(t, "paired-test-power", arguments).float(t, "attained-power"), r.value, 1e-12)
+		}
+		within(t, name, answered(t, name, arguments).float(t, "attained-power"), r.value, 1e-12)
+	}
+}
+
+// Source: anova_power.csv, arithmetic at 60 digits.
+func TestPowersOfSeveralMeansAreExact(t *testing.T) {
+	for _, r := range preciseValues(t, "anova_power.csv") {
+		var means []float64
+		for _, text := range strings.Fields(r.columns["means"]) {
+			means = append(means, float(t, text))
+		}
+		out := answered(t, "several-means-power", map[string]any{"means": means, "sd": number64(t, r, "sd"), "n": whole(t, r, "n_per_group"), "significance": number64(t, r, "alpha")})
+		within(t, r.columns["means"], out.float(t, "attained-power"), r.value, 1e-12)
+	}
+}
+
+// Source: equivalence.csv, arithmetic to 25 digits.
+func TestPowersAndPlansOfEquivalenceAreExact(t *testing.T) {
+	for _, r := range preciseValues(t, "equivalence.csv") {
+		arguments := map[string]any{"sd": number64(t, r, "sd"), "difference": number64(t, r, "diff"), "significance": number64(t, r, "alpha"),
+			"lower-margin": number64(t, r, "lower"), "upper-margin": number64(t, r, "upper")}
+		switch r.function {
+		case "equivalence_sample_size_per_group":
+			arguments["power"] = number64(t, r, "power")
+			if out := answered(t, "equivalence-size", arguments); float64(out.whole(t, "n")) != r.value || out.whole(t, "second-n") != out.whole(t, "n") {
+				t.Errorf("%v: n = %d, want %v", r.columns, out.whole(t, "n"), r.value)
+			}
+			continue
+		case "equivalence_power_two_sample":
+			arguments["n"], arguments["second-n"] = whole(t, r, "n1"), whole(t, r, "n2")
+		default:
+			arguments["n"], arguments["design"] = whole(t, r, "n"), paired
+			within(t, "paired", answered(t, "equivalence-power", arguments).float(t, "attained-power"), r.value, 1e-12)
+			arguments["design"] = oneSample
+		}
+		within(t, r.function, answered(t, "equivalence-power", arguments).float(t, "attained-power"), r.value, 1e-12)
 	}
 }
