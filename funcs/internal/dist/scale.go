@@ -24,18 +24,21 @@ func scaleDensityPeak(df float64) float64 {
 }
 
 // scaleExponent is u - (exp(2u) - 1)/2, so that the density of u = log s is
-// exp(scaleDensityPeak(df) + df*scaleExponent(u)). Near 0, where it is about
-// -u^2, the power series replaces the difference.
+// exp(scaleDensityPeak(df) + df*scaleExponent(u)).
 func scaleExponent(u float64) float64 {
-	if !(math.Abs(u) < 0.25) {
-		return u - num.Expm1(float64(2*u))/2
+	return -expm1mx(2*u) / 2
+}
+
+// expm1mx is exp(x) - 1 - x, about x^2/2 near 0.
+func expm1mx(x float64) float64 {
+	if math.Abs(x) > 0.5 {
+		return num.Expm1(x) - x
 	}
-	v := 2 * u
 	sum := 0.0
 	for k := len(inverseFactorials) - 1; k >= 0; k-- {
-		sum = float64(sum*v) + inverseFactorials[k]
+		sum = float64(sum*x) + inverseFactorials[k]
 	}
-	return -float64(float64(v*v)*sum) / 2
+	return float64(x*x) * sum
 }
 
 // 1/2!, 1/3!, ... as far as 0.5^k needs them.
