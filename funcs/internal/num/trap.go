@@ -10,7 +10,7 @@ func Trapezoid(f func(float64) float64, centre, step, tol float64) float64 {
 			y := f(x)
 			s += y
 			peak = max(peak, y)
-			if y <= peak*1e-18 {
+			if !(y > peak*1e-18) {
 				break
 			}
 		}
