@@ -37,6 +37,8 @@ type ErrorData struct {
 	Pointer    string `json:"pointer,omitempty"`    // JSON Pointer (RFC 6901) into params
 	Reason     string `json:"reason,omitempty"`     // what is wrong with it, as the end of a sentence
 	Suggestion string `json:"suggestion,omitempty"` // what to write instead
+
+	Others []ErrorData `json:"others,omitempty"` // the same of every other argument at fault
 }
 
 func (e *Error) Error() string { return e.Message }

@@ -98,7 +98,7 @@ func (s *Session) offer() map[string]any {
 		"protocolVersion": ProtocolVersion,
 		"methods":         append([]string{}, own...),
 		"limits": map[string]int{
-			"messageBytes": s.limits.MessageBytes, "headerBytes": s.limits.HeaderBytes, "depth": s.limits.Depth,
+			"messageBytes": s.limits.MessageBytes, "headerBytes": s.limits.HeaderBytes, "depth": s.limits.Depth, "sampleValues": s.limits.SampleValues,
 			"queue": s.limits.Queue, "queueBytes": s.limits.QueueBytes, "workers": s.limits.Workers,
 		},
 	}

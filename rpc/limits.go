@@ -11,6 +11,7 @@ type Limits struct {
 	MessageBytes int           // length of one message's body
 	HeaderBytes  int           // length of one message's header
 	Depth        int           // nesting of a message, its own braces counted
+	SampleValues int           // numbers in one list
 	Queue        int           // long calls waiting for a worker
 	QueueBytes   int           // params of the long calls waiting, together
 	Workers      int           // long calls running at once
@@ -25,6 +26,7 @@ func DefaultLimits() Limits {
 		MessageBytes: 64 << 20,
 		HeaderBytes:  16 << 10,
 		Depth:        128,
+		SampleValues: 10_000_000,
 		Queue:        1024,
 		QueueBytes:   256 << 20,
 		Workers:      runtime.NumCPU(),
@@ -37,7 +39,7 @@ func DefaultLimits() Limits {
 func (l Limits) withDefaults() Limits {
 	d := DefaultLimits()
 	for _, f := range []struct{ field, standard *int }{
-		{&l.MessageBytes, &d.MessageBytes}, {&l.HeaderBytes, &d.HeaderBytes}, {&l.Depth, &d.Depth}, {&l.Queue, &d.Queue},
+		{&l.MessageBytes, &d.MessageBytes}, {&l.HeaderBytes, &d.HeaderBytes}, {&l.Depth, &d.Depth}, {&l.SampleValues, &d.SampleValues}, {&l.Queue, &d.Queue},
 		{&l.QueueBytes, &d.QueueBytes}, {&l.Workers, &d.Workers}, {&l.UnsentBytes, &d.UnsentBytes},
 	} {
 		if *f.field <= 0 {

@@ -3,6 +3,7 @@ package rpc
 import (
 	"context"
 	"reflect"
+	"slices"
 )
 
 // Handler answers one call. It is run in turn, on the goroutine that reads
@@ -16,12 +17,13 @@ type Handler func(ctx context.Context, call *Call) (any, error)
 // and the description of the protocol are made from.
 type Method struct {
 	Name         string
-	Doc          string       // one sentence
-	Params       reflect.Type // struct of the params by name; nil: it has none
-	Notification bool         // sent without an id, never answered
-	When         Phase        // when it may be called
-	Long         bool         // the whole handler is run by a worker
-	Standard     bool         // named by the Language Server Protocol
+	Doc          string        // one sentence
+	Params       reflect.Type  // struct of the params by name; nil: it has none
+	Result       func() object // JSON Schema of the result; nil: null, or LSP's
+	Notification bool          // sent without an id, never answered
+	When         Phase         // when it may be called
+	Long         bool          // the whole handler is run by a worker
+	Standard     bool          // named by the Language Server Protocol
 	Handler      Handler
 
 	// Announce adds what the method offers to the capabilities of the
@@ -41,7 +43,7 @@ const (
 // Methods gives a table for one session. What the rows share is theirs alone,
 // so that two sessions in one process do not meet.
 func Methods() []Method {
-	return lifecycleMethods()
+	return slices.Concat(lifecycleMethods(), functionMethods(), discoverMethods())
 }
 
 // Later is returned by a handler that has read its params and captured what it

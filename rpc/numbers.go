@@ -12,7 +12,7 @@ const packedName = "float64le"
 
 // packed reads the rest of {"float64le": "BASE64"}: doubles as 8 bytes each,
 // lowest first, in standard base64 with padding (RFC 4648, section 4). NaN is a
-// gap. Before a second member it stops, and gives an object with a fault.
+// gap. Before a second member it stops, and gives a text with a fault.
 func (p *valueParser) packed(pointer string) (Value, error) {
 	v := Value{Kind: Numbers, Packed: true, Pointer: pointer}
 	raw, escaped, err := p.text()
@@ -24,8 +24,9 @@ func (p *valueParser) packed(pointer string) (Value, error) {
 	case '}':
 		p.pos++
 	case ',':
-		fault := badParams(pointerTo(pointer, packedName), packedName, "has members beside it", "let it stand alone in its object")
-		return Value{Kind: Object, Pointer: pointer, Fault: fault}, nil
+		at := pointerTo(pointer, packedName)
+		fault := badParams(at, packedName, "has members beside it", "let it stand alone in its object")
+		return Value{Kind: Text, Pointer: at, Fault: fault}, nil
 	default:
 		return v, p.unexpected("a comma or } in an object")
 	}

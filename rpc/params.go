@@ -182,9 +182,16 @@ func unknownMember(m Member, names []string) error {
 
 // lastOf gives the last name in a JSON Pointer.
 func lastOf(pointer string) string {
-	last := pointer[strings.LastIndexByte(pointer, '/')+1:]
-	return strings.NewReplacer("~1", "/", "~0", "~").Replace(last)
+	return unescaped(pointer[strings.LastIndexByte(pointer, '/')+1:])
 }
+
+// firstOf gives the first name in a JSON Pointer.
+func firstOf(pointer string) string {
+	first, _, _ := strings.Cut(strings.TrimPrefix(pointer, "/"), "/")
+	return unescaped(first)
+}
+
+func unescaped(name string) string { return strings.NewReplacer("~1", "/", "~0", "~").Replace(name) }
 
 // decodeLenient is encoding/json's reading with our errors.
 func decodeLenient(raw []byte, target any) error {

@@ -24,6 +24,7 @@ type Session struct {
 	writer  *frameWriter
 	remarks *remarks
 	conn    *jsonrpc2.Conn
+	books   books
 	ctx     context.Context // ends when the session does
 	stop    context.CancelFunc
 

@@ -41,7 +41,7 @@ func TestInitializeSaysWhatTheServerCanDo(t *testing.T) {
 			c.send(`{"jsonrpc":"2.0","id":0,"method":"initialize","params":{"clientInfo":{"name":"sheet","version":"7"},"locale":"en",
 				"initializationOptions":{"x":1},"unknown":true,"capabilities":%s}}`, test.capabilities)
 			c.wantPart(`"positionEncoding":"`+test.encoding+`"`, `"protocolVersion":1`, `"depth":128`, `"messageBytes":67108864`,
-				`"methods":["test/big","test/echo",`, `"hoverProvider":false`)
+				`"methods":["functions/answer","functions/answerMany","functions/describe","functions/list","rpc.discover",`, `"hoverProvider":false`)
 			if session.PositionEncoding() != test.encoding {
 				t.Errorf("the session counts in %s", session.PositionEncoding())
 			}

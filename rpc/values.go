@@ -238,6 +238,7 @@ func (p *valueParser) object(pointer string) (Value, error) {
 			if err != nil || packed.Kind == Numbers {
 				return packed, err
 			}
+			v.Members = append(v.Members, Member{name, packed})
 			v.take(packed.Fault)
 			p.pos++
 			continue
