@@ -265,7 +265,7 @@ func (p *Plan) readInput(c *calcSheet, r *Row, in funcs.Input, at CellRef, unit 
 	if t == nil {
 		return
 	}
-	t.unit, t.at = unit, at
+	t.unit = unit
 	r.Inputs = append(r.Inputs, &Input{Name: in.Name, Written: writtenText(cell), Cell: at, Default: isDefault, term: t})
 	if t.result != nil {
 		r.needs = append(r.needs, *t.result)

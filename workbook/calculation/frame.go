@@ -39,6 +39,7 @@ type Frame struct {
 	keep    []bool     // by column - 1; nil keeps all
 	texts   []string
 	ids     map[string]uint32
+	compact int // how many texts there were when none was out of use
 	lastRow int
 	lastCol int
 }

@@ -3,7 +3,9 @@ package calculation
 import (
 	"context"
 	"fmt"
+	"maps"
 	"math"
+	"math/rand/v2"
 	"runtime"
 	"testing"
 )
@@ -148,5 +150,54 @@ func BenchmarkTwoHundredSamplesOfAMillionRows(b *testing.B) {
 		if _, err := plan.Run(context.Background(), 1); err != nil {
 			b.Fatal(err)
 		}
+	}
+}
+
+func TestChangedFrameEqualsOneBuiltAnew(t *testing.T) {
+	random := rand.New(rand.NewPCG(5, 6))
+	cells := map[CellRef]Cell{}
+	frame := NewFrame()
+	cell := func() Cell {
+		return [...]Cell{{}, {Kind: Number, Number: random.Float64()}, {Kind: Text, Text: fmt.Sprint("text ", random.IntN(3000))}, {Kind: Text, Text: "Total"},
+			{Kind: Bool, Number: 1}, {Formula: true, Unsaved: true}}[random.IntN(6)]
+	}
+	for range 300 {
+		before, wasLast := maps.Clone(cells), frame.LastRow()
+		var changes []Change
+		for range 1 + random.IntN(40) {
+			at := CellRef{1 + random.IntN(9000), 1 + random.IntN(4)}
+			changes = append(changes, Change{at, cell()})
+			cells[at] = changes[len(changes)-1].Value
+		}
+		old := frame
+		frame = frame.With(changes)
+		if old.LastRow() != wasLast {
+			t.Fatal("the frame that was changed from has changed")
+		}
+		for at, want := range before {
+			if got := old.At(at.Row, at.Col); got != want {
+				t.Fatalf("%s of the frame that was changed from: %+v, want %+v", at, got, want)
+			}
+		}
+	}
+	anew := NewFrame()
+	for at, c := range cells {
+		anew.Set(at.Row, at.Col, c)
+	}
+	for row := 1; row <= 9000; row++ {
+		if frame.Row(row) != anew.Row(row) {
+			t.Fatalf("row %d: %v, want %v", row, frame.Row(row), anew.Row(row))
+		}
+		for col := 1; col <= 4; col++ {
+			if got, want := frame.At(row, col), anew.At(row, col); got != want {
+				t.Fatalf("row %d, column %d: %+v, want %+v", row, col, got, want)
+			}
+		}
+	}
+	if frame.LastRow() != anew.LastRow() {
+		t.Errorf("the last row is %d, want %d", frame.LastRow(), anew.LastRow())
+	}
+	if len(frame.texts) > 2*3000+1024+100 {
+		t.Errorf("%d texts are kept of 3001", len(frame.texts))
 	}
 }

@@ -138,6 +138,12 @@ func (g *gathering) prepare() *fault {
 		}
 		g.columns = append(g.columns, v)
 	}
+	if q.Matched != nil {
+		col := g.col(*q.Matched)
+		if f := sh.unusable(sh.columnFacts(col, g.first, g.last), col, *q.Matched, "key"); f != nil {
+			return f
+		}
+	}
 	if q.What == Count && q.ForEach == nil {
 		g.reading.series = []*series{{}}
 	}

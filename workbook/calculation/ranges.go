@@ -126,7 +126,7 @@ func (b *boundRange) gather(ctx context.Context) (*reading, error) {
 	}
 	r.area = area
 	r.text = b.sheet.label + "!" + area.String()
-	r.tally = tally{sheet: b.sheet, keepSkips: true}
+	r.tally = tally{sheet: b.sheet, keepSkips: true, ofRange: true}
 	s := &series{col: area.FirstCol}
 	r.series = []*series{s}
 	frame := b.sheet.frame

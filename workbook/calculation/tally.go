@@ -24,6 +24,7 @@ type tally struct {
 	stray     fault // why the whole is refused: set where code is not empty
 	skips     []int32
 	keepSkips bool // list the rows of skipped cells in skips
+	ofRange   bool // of a range, which takes no conditions
 }
 
 // skip counts cells of one kind and remembers the first.
@@ -176,8 +177,8 @@ func (t *tally) findings(span Span) []fault {
 				first = s
 			}
 		}
-		say("cells-skipped", funcs.Caution, []string{at(*first)}, "%s skipped (%s); the first is %s, which holds %s. Correct them, or leave their rows out by a condition.",
-			wereWas(n, "cell"), strings.Join(parts, ", "), at(*first), first.text)
+		say("cells-skipped", funcs.Caution, []string{at(*first)}, "%s skipped (%s); the first is %s, which holds %s. %s",
+			wereWas(n, "cell"), strings.Join(parts, ", "), at(*first), first.text, t.advice())
 	}
 	if s := t.looks; s.n > 0 {
 		say("text-looks-like-number", funcs.Caution, []string{at(s)}, "%s like a number but stands there as text; the first is %s, %s. Turn them into numbers in the sheet.",
@@ -202,6 +203,14 @@ func (t *tally) findings(span Span) []fault {
 		say("hidden-rows-counted", funcs.Information, nil, "%s in hidden or filtered rows and counted; write `row is visible` to leave them out.", standWord(t.hidden))
 	}
 	return out
+}
+
+// advice says what to do about skipped cells.
+func (t *tally) advice() string {
+	if t.ofRange {
+		return "Correct them, or write a range without them, such as one that begins below its header."
+	}
+	return "Correct them, or leave their rows out by a condition."
 }
 
 func wereWas(n int, noun string) string {

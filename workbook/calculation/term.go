@@ -22,7 +22,6 @@ type term struct {
 	written string  // the expression's text
 	far     bool    // the expression stands in another cell than the input's
 	notes   []fault // what should be known, such as a saved formula value
-	at      CellRef // where the value is written, for messages; zero outside a sheet
 }
 
 // span gives a stretch of the expression within the input's own cell.
@@ -43,10 +42,9 @@ type listTerm struct {
 
 // reader ties the cells of inputs to sheets.
 type reader struct {
-	lib  *library
-	calc *calcSheet // the sheet that bare addresses lie on; nil where there is none
-	// calcOf gives the calculation sheet that stands on a sheet, or nil.
-	visited []string // the addresses gone through, to find circles
+	lib     *library
+	calc    *calcSheet // the sheet that bare addresses lie on; nil where there is none
+	visited []string   // the addresses gone through, to find circles
 }
 
 // asText reads a cell's text as an input given as text, such as on a command
@@ -327,7 +325,7 @@ func (r *reader) follow(t *term, calc *calcSheet, ref CellRef, written string) *
 		f.Cells, f.span = append(f.Cells, at), Span{}
 		return f
 	}
-	got.unit, got.at, got.far = t.unit, t.at, true
+	got.unit, got.far = t.unit, true
 	got.notes = append(t.notes, got.notes...)
 	*t = *got
 	return nil
