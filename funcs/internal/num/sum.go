@@ -16,59 +16,96 @@ type Summary struct {
 	Sum4       float64 // sum of fourth powers of the deviations
 }
 
-// Sum is the sum of xs.
+// addTo adds x to a sum carried as hi + lo: the rounding error of each addition
+// is kept exactly (Knuth, TAOCP 2, 4.2.2), so that hi + lo at the end is right to
+// the last digit unless almost everything cancels.
+func addTo(hi, lo, x float64) (float64, float64) {
+	s := hi + x
+	v := s - hi
+	return s, lo + ((hi - (s - v)) + (x - v))
+}
+
+// Sum is the sum of xs, correctly rounded or nearly so.
 func Sum(xs []float64) float64 {
-	var hi, lo float64
-	for _, x := range xs {
-		s := hi + x
-		v := s - hi
-		lo += (hi - (s - v)) + (x - v)
-		hi = s
-	}
+	hi, lo := sumOf(xs)
 	return hi + lo
 }
 
-// Mean is the arithmetic mean of xs, NaN when there are none.
-func Mean(xs []float64) float64 { return Sum(xs) / float64(len(xs)) }
-
-// Moments gives the moments of xs.
-func Moments(xs []float64) Summary {
-	s := Summary{N: len(xs), Mean: Mean(xs)}
+func sumOf(xs []float64) (hi, lo float64) {
 	for _, x := range xs {
-		d := x - s.Mean
-		s.SumSquares += d * d
-		s.Sum3 += d * d * d
-		s.Sum4 += d * d * d * d
+		hi, lo = addTo(hi, lo, x)
 	}
-	return s
+	return hi, lo
 }
 
-// SumProducts is the sum of x[i]*y[i] over the shorter of the two lists.
-func SumProducts(x, y []float64) float64 {
-	var s float64
-	for i := range min(len(x), len(y)) {
-		s += x[i] * y[i]
+// Mean is the arithmetic mean of xs, NaN when there are none.
+func Mean(xs []float64) float64 { return wideMean(xs).Float() }
+
+// wideMean is the mean to about 30 digits.
+func wideMean(xs []float64) Wide {
+	hi, lo := sumOf(xs)
+	return quickTwoSum(hi, lo).Over(float64(len(xs)))
+}
+
+// Moments gives the moments of xs about their mean. Relative error some 1e-16
+// for the mean and the sum of squares, whatever the offset of the values; sums of
+// cubes and fourth powers are right to that of the sum of their sizes.
+func Moments(xs []float64) Summary {
+	if len(xs) == 0 {
+		return Summary{Mean: math.NaN()}
 	}
-	return s
+	m := wideMean(xs)
+	var s2, e2, s3, e3, s4, e4 float64
+	for _, x := range xs {
+		d := (x - m.Hi) - m.Lo
+		q := float64(d * d)
+		s2, e2 = addTo(s2, e2, q)
+		s3, e3 = addTo(s3, e3, float64(q*d))
+		s4, e4 = addTo(s4, e4, float64(q*q))
+	}
+	return Summary{len(xs), m.Hi, m.Lo, s2 + e2, s3 + e3, s4 + e4}
+}
+
+// SumProducts is the sum of x[i]*y[i] over the shorter of the two lists, each
+// product taken without error.
+func SumProducts(x, y []float64) float64 {
+	var hi, lo float64
+	for i := range min(len(x), len(y)) {
+		p := TwoProduct(x[i], y[i])
+		hi, lo = addTo(hi, lo, p.Hi)
+		lo += p.Lo
+	}
+	return hi + lo
 }
 
 // WeightedMean is the mean of xs with the given weights.
 func WeightedMean(xs, weights []float64) float64 { return SumProducts(xs, weights) / Sum(weights) }
 
-// Lag1 is the lag-1 autocorrelation of xs in their order; NaN stands for a gap.
+// Lag1 is the lag-1 autocorrelation of xs in their order: the sum of products of
+// the deviations of neighbours from the mean over the sum of squared deviations.
+// NaN stands for a gap, across which nobody is a neighbour. NaN where there is no
+// spread.
 func Lag1(xs []float64) float64 {
-	var present []float64
+	var hi, lo float64
+	n := 0
 	for _, x := range xs {
 		if !math.IsNaN(x) {
-			present = append(present, x)
+			hi, lo = addTo(hi, lo, x)
+			n++
 		}
 	}
-	m := Moments(present)
-	var s float64
-	for i := 1; i < len(xs); i++ {
-		if !math.IsNaN(xs[i]) && !math.IsNaN(xs[i-1]) {
-			s += (xs[i] - m.Mean) * (xs[i-1] - m.Mean)
+	m := quickTwoSum(hi, lo).Over(float64(n))
+	var c, ec, s, es float64
+	last := math.NaN()
+	for _, x := range xs {
+		d := (x - m.Hi) - m.Lo
+		if !math.IsNaN(d) {
+			s, es = addTo(s, es, float64(d*d))
+			if p := float64(d * last); !math.IsNaN(p) {
+				c, ec = addTo(c, ec, p)
+			}
 		}
+		last = d
 	}
-	return s / m.SumSquares
+	return (c + ec) / (s + es)
 }
