@@ -115,7 +115,7 @@ var meanPrecisionSize = &Function{
 	Example: Example{
 		Label:     "a mean to within 1, of a population of 600 with sd 12",
 		Arguments: []Argument{{"sd", 12.0}, {"half-width", 1.0}, {"population-size", 600}},
-		Want:      []Argument{{"n", 290}, {"attained-half-width", 0.9969149669714882753661829}},
+		Want:      []Argument{{"n", 290}, {"attained-half-width", 0.9969149671714882753661829}},
 		Tolerance: 1e-12,
 		Source:    "arithmetic at 60 digits, testdata/references/numerics/sample_size_half_width.csv",
 	},

@@ -134,9 +134,12 @@ func TestChanceMetIsKupperAndHafnersInequality(t *testing.T) {
 
 // Cochran 1977, section 2.15: n > 25·G1², and so one more where that is whole.
 func TestCochransSkewnessRule(t *testing.T) {
-	r := publishedTable(t, "cochran-skewness-rule")[0]
-	r.check(t, cochranN(1)-1)
-	if cochranN(2) != 101 || cochranN(0.5) != 7 {
-		t.Errorf("cochran-n %v and %v, want 101 and 7", cochranN(2), cochranN(0.5))
+	for _, r := range csvRows(t, published+"tables.csv") {
+		if r["params"] == `{"formula":"n > 25*G1^2"}` && float(t, r["value"]) != cochranN(1)-1 {
+			t.Errorf("skewness 1 asks for more than %v, want %s (%s)", cochranN(1)-1, r["value"], r["source"])
+		}
+	}
+	if cochranN(2) != 101 || cochranN(0.5) != 7 || cochranN(math.Sqrt(0.2)) != 6 {
+		t.Errorf("cochran-n %v, %v and %v, want 101, 7 and 6", cochranN(2), cochranN(0.5), cochranN(math.Sqrt(0.2)))
 	}
 }
