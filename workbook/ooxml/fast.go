@@ -24,9 +24,41 @@ const (
 	fastDone                   // the row's end tag was read
 )
 
-// Attributes of a row that say nothing about its values, and the two that do.
-var rowAttributes = map[string]uint16{"r": 1, "hidden": 2, "spans": 4, "s": 8, "customFormat": 16, "ht": 32, "customHeight": 64,
-	"outlineLevel": 128, "collapsed": 256, "thickTop": 512, "thickBot": 1024, "ph": 2048, "x14ac:dyDescent": 4096}
+// rowAttribute gives one bit for each attribute of a row that may be passed over
+// or is read here, and 0 for all others.
+func rowAttribute(name []byte) uint16 {
+	switch string(name) {
+	case "r":
+		return rowNumber
+	case "hidden":
+		return rowHidden
+	case "spans":
+		return 4
+	case "s":
+		return 8
+	case "customFormat":
+		return 16
+	case "ht":
+		return 32
+	case "customHeight":
+		return 64
+	case "outlineLevel":
+		return 128
+	case "collapsed":
+		return 256
+	case "thickTop":
+		return 512
+	case "thickBot":
+		return 1024
+	case "ph":
+		return 2048
+	case "x14ac:dyDescent":
+		return 4096
+	}
+	return 0
+}
+
+const rowNumber, rowHidden = 1, 2
 
 // fastRow reads the start tag of a row at pos.
 func (s *scanner) fastRow() bool {
@@ -80,7 +112,7 @@ func (s *scanner) rowTagAt(i int) (next, number int, hidden, ok bool) {
 		for isLetter(b[i]) || b[i] == ':' || '0' <= b[i] && b[i] <= '9' {
 			i++
 		}
-		bit := rowAttributes[string(b[from:i])]
+		bit := rowAttribute(b[from:i])
 		if bit == 0 || seen&bit != 0 || b[i] != '=' || b[i+1] != '"' {
 			return 0, 0, false, false
 		}
@@ -94,11 +126,11 @@ func (s *scanner) rowTagAt(i int) (next, number int, hidden, ok bool) {
 			i++
 		}
 		switch value := b[from:i]; bit {
-		case 1:
+		case rowNumber:
 			if number, ok = parseIndex(value); !ok || number == 0 {
 				return 0, 0, false, false
 			}
-		case 2:
+		case rowHidden:
 			hidden = len(value) == 1 && value[0] == '1'
 			if !hidden && (len(value) != 1 || value[0] != '0') {
 				return 0, 0, false, false
@@ -106,5 +138,5 @@ func (s *scanner) rowTagAt(i int) (next, number int, hidden, ok bool) {
 		}
 		i++
 	}
-	return i + 1, number, hidden, b[i] == '>' && seen&1 != 0
+	return i + 1, number, hidden, b[i] == '>' && seen&rowNumber != 0
 }

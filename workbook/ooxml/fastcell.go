@@ -40,9 +40,13 @@ func (s *scanner) tryCell() fastResult {
 	if i = s.after(i+1, 'c'); i < 0 {
 		return fastNot
 	}
-	cell, i, ok := s.cellTagAt(i)
+	cell := &s.current
+	*cell = Cell{}
+	if i = s.cellTagAt(cell, i); i < 0 {
+		return fastNot
+	}
 	col := int(cell.Col)
-	if !ok || col < 1 || col > s.limits.Columns || col >= len(s.colsSeen) || s.colsSeen[col] == s.stamp {
+	if col < 1 || col > s.limits.Columns || col >= len(s.colsSeen) || s.colsSeen[col] == s.stamp {
 		return fastNot
 	}
 	if b[i] == '/' && b[i+1] == '>' {
@@ -52,7 +56,7 @@ func (s *scanner) tryCell() fastResult {
 	if b[i] != '>' {
 		return fastNot
 	}
-	if i = s.fastContent(&cell, i+1); i < 0 {
+	if i = s.fastContent(cell, i+1); i < 0 {
 		return fastNot
 	}
 	s.take(col, i)
@@ -60,17 +64,17 @@ func (s *scanner) tryCell() fastResult {
 }
 
 // cellTagAt reads the attributes of a cell's start tag, each once at most. i is
-// after its name; next is after the last attribute.
-func (s *scanner) cellTagAt(i int) (cell Cell, next int, ok bool) {
+// after its name; it gives the index after the last attribute, or -1.
+func (s *scanner) cellTagAt(cell *Cell, i int) int {
 	b := s.buf
 	col, style := s.lastCol+1, 0
 	const hasR, hasS, hasT = 1, 2, 4
 	seen := 0
 	for b[i] == ' ' {
 		if b[i+2] != '=' || b[i+3] != '"' {
-			return cell, i, false
+			return -1
 		}
-		name, from := b[i+1], i+4
+		name, from, ok := b[i+1], i+4, false
 		i = from
 		switch {
 		case name == 'r' && seen&hasR == 0:
@@ -96,16 +100,14 @@ func (s *scanner) cellTagAt(i int) (cell Cell, next int, ok bool) {
 		case name == 't' && seen&hasT == 0:
 			seen |= hasT
 			cell.Type, i, ok = s.cellTypeAt(i)
-		default:
-			ok = false
 		}
 		if !ok || b[i] != '"' {
-			return cell, i, false
+			return -1
 		}
 		i++
 	}
 	cell.Col, cell.Style = int32(col), int32(style)
-	return cell, i, true
+	return i
 }
 
 // cellTypeAt reads the value of a cell's type attribute.
@@ -213,12 +215,14 @@ func (s *scanner) fastContent(cell *Cell, i int) int {
 	if !ok || i == from {
 		return -1
 	}
-	end := s.closes(i, 'v')
-	if end >= 0 {
-		end = s.closes(end, 'c')
-	}
-	if end < 0 {
-		return -1
+	end := i + len("</v></c>")
+	if string(b[i:end]) != "</v></c>" || len(s.prefix) > 0 {
+		if end = s.closes(i, 'v'); end < 0 {
+			return -1
+		}
+		if end = s.closes(end, 'c'); end < 0 {
+			return -1
+		}
 	}
 	switch cell.Type {
 	case TypeShared:
