@@ -32,21 +32,21 @@ func TestNormalFunctionsReachHighPrecision(t *testing.T) {
 		switch r.function {
 		case "normal_cdf":
 			out := answer(t, "normal-probability", map[string]any{"to": r.arg(t, "z")})
-			r.check(t, resultOf(t, out, "probability"), 1e-12)
+			r.check(t, resultOf(t, out, "probability"), 1e-14)
 			score := answer(t, "standard-score", map[string]any{"value": r.arg(t, "z"), "mean": 0.0, "sd": 1.0})
-			r.check(t, resultOf(t, score, "probability-below"), 1e-12)
+			r.check(t, resultOf(t, score, "probability-below"), 1e-14)
 		case "normal_sf":
 			out := answer(t, "normal-probability", map[string]any{"to": r.arg(t, "z")})
-			r.check(t, resultOf(t, out, "probability-outside"), 1e-12)
+			r.check(t, resultOf(t, out, "probability-outside"), 1e-14)
 			score := answer(t, "standard-score", map[string]any{"value": r.arg(t, "z"), "mean": 0.0, "sd": 1.0})
-			r.check(t, resultOf(t, score, "probability-above"), 1e-12)
+			r.check(t, resultOf(t, score, "probability-above"), 1e-14)
 		case "normal_quantile":
-			r.check(t, resultOf(t, answer(t, "normal-quantile", map[string]any{"probability": r.arg(t, "p")}), "value"), 1e-12)
+			r.check(t, resultOf(t, answer(t, "normal-quantile", map[string]any{"probability": r.arg(t, "p")}), "value"), 1e-14)
 			above := answer(t, "normal-quantile", map[string]any{"probability": r.arg(t, "p"), "counted-from": "above"})
-			r.check(t, -resultOf(t, above, "value"), 1e-12)
+			r.check(t, -resultOf(t, above, "value"), 1e-14)
 		case "normal_interval":
 			out := answer(t, "normal-probability", map[string]any{"from": r.arg(t, "a"), "to": r.arg(t, "b")})
-			r.check(t, resultOf(t, out, "probability"), 1e-12)
+			r.check(t, resultOf(t, out, "probability"), 1e-14)
 		default:
 			t.Errorf("normal.csv: unknown function %s", r.function)
 		}
