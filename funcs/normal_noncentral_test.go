@@ -28,11 +28,11 @@ func TestNoncentralLawsReachHighPrecision(t *testing.T) {
 				inside = "from"
 			}
 			arguments[inside] = r.arg(t, c.argument)
-			r.check(t, resultOf(t, answer(t, c.function, arguments), "probability"), 1e-12)
+			r.check(t, resultOf(t, answer(t, c.function, arguments), "probability"), 1e-13)
 			// The same tail as what lies outside its other side.
 			delete(arguments, inside)
 			arguments[map[string]string{"to": "from", "from": "to"}[inside]] = r.arg(t, c.argument)
-			r.check(t, resultOf(t, answer(t, c.function, arguments), outside), 1e-12)
+			r.check(t, resultOf(t, answer(t, c.function, arguments), outside), 1e-13)
 		}
 	}
 }
@@ -62,7 +62,7 @@ func TestNoncentralLawsAtTheirLimits(t *testing.T) {
 			root, shift := math.Sqrt(x), math.Sqrt(lambda)
 			normal := answer(t, "normal-probability", map[string]any{"mean": shift, "from": -root, "to": root})
 			for _, name := range []string{"probability", "probability-outside"} {
-				within(t, "squared normal", resultOf(t, square, name), resultOf(t, normal, name), 1e-12)
+				within(t, "squared normal", resultOf(t, square, name), resultOf(t, normal, name), 1e-13)
 			}
 		}
 	}
@@ -75,14 +75,14 @@ func TestNoncentralLawsAtTheirLimits(t *testing.T) {
 				central[name], noncentral[name] = value, value
 			}
 			within(t, function, resultOf(t, answer(t, "noncentral-"+function, noncentral), "probability"),
-				resultOf(t, answer(t, function, central), "probability"), 1e-12)
+				resultOf(t, answer(t, function, central), "probability"), 1e-13)
 		}
 		shifted := answer(t, "noncentral-t-probability", map[string]any{"df": "infinite", "noncentrality": 2.5, "from": x})
 		normal := answer(t, "normal-probability", map[string]any{"mean": 2.5, "from": x})
 		within(t, "shifted normal", resultOf(t, shifted, "probability"), resultOf(t, normal, "probability"), 1e-13)
 		ratio := answer(t, "noncentral-f-probability", map[string]any{"first-df": 4.0, "second-df": "infinite", "noncentrality": 3.0, "from": x})
 		sum := answer(t, "noncentral-chi-square-probability", map[string]any{"df": 4.0, "noncentrality": 3.0, "from": 4 * x})
-		within(t, "infinite second-df", resultOf(t, ratio, "probability"), resultOf(t, sum, "probability"), 1e-12)
+		within(t, "infinite second-df", resultOf(t, ratio, "probability"), resultOf(t, sum, "probability"), 1e-13)
 	}
 }
 

@@ -25,10 +25,10 @@ func TestStudentizedRangeReachesHighPrecision(t *testing.T) {
 		switch r.function {
 		case "studentized_range_cdf":
 			arguments["to"] = r.arg(t, "q")
-			r.check(t, resultOf(t, answer(t, "studentized-range-probability", arguments), "probability"), 1e-12)
+			r.check(t, resultOf(t, answer(t, "studentized-range-probability", arguments), "probability"), 1e-13)
 		case "studentized_range_sf":
 			arguments["from"] = r.arg(t, "q")
-			r.check(t, resultOf(t, answer(t, "studentized-range-probability", arguments), "probability"), 1e-12)
+			r.check(t, resultOf(t, answer(t, "studentized-range-probability", arguments), "probability"), 1e-13)
 		case "studentized_range_quantile":
 			arguments["probability"] = r.arg(t, "p")
 			r.check(t, resultOf(t, answer(t, "studentized-range-quantile", arguments), "value"), 1e-11)
@@ -46,7 +46,7 @@ func TestTheRangeOfTwoIsStudents(t *testing.T) {
 			student := answer(t, "t-probability", map[string]any{"df": df, "from": -x, "to": x})
 			for _, name := range []string{"probability", "probability-outside"} {
 				// x·√2 is rounded, which moves a normal tail by up to x² times as much.
-				within(t, name, resultOf(t, of2, name), resultOf(t, student, name), 1e-12+2e-16*x*x)
+				within(t, name, resultOf(t, of2, name), resultOf(t, student, name), 1e-13+2e-16*x*x)
 			}
 		}
 	}
