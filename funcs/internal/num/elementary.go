@@ -5,8 +5,8 @@ import "math"
 // The elementary functions below give the same digits on every processor: the
 // standard library's Exp and Log are assembly on some and may be fused on
 // others, so a result written on one machine could differ in its last digit on
-// the next. Each product is rounded on its own. Errors stay within about 0.6
-// units in the last place for Exp and Log and 1.2 for the others.
+// the next. Each product is rounded on its own. Largest relative errors seen:
+// Exp and Log 1.2e-16, Log1p 1.3e-16, Expm1 2.7e-16, Log1pmx 3.5e-16.
 
 const (
 	ln2Hi = 0x1.62e42fefap-1 // 37 bits, so that k*ln2Hi is exact for |k| < 2^16
@@ -160,7 +160,7 @@ func Log1pmx(x float64) float64 {
 	return (w.Hi - x) + w.Lo
 }
 
-// LogWide is the logarithm of w > 0 to about 5e-19 absolute.
+// LogWide is the logarithm of w > 0 to about 3e-18 absolute.
 func LogWide(w Wide) Wide { return logWide(w) }
 
 func logWide(w Wide) Wide {
@@ -180,8 +180,8 @@ func logWide(w Wide) Wide {
 	return quickTwoSum(sum.Hi, sum.Lo+tail)
 }
 
-// Log1pmxWide is log(v) - x, where v = 1 + x is given besides x so that neither
-// loses digits near its own zero.
+// Log1pmxWide is log(v) - x to about 3e-17 of its value, where v = 1 + x is given
+// besides x so that neither loses digits near its own zero.
 func Log1pmxWide(v, x Wide) Wide {
 	if x.Hi > -0.38 && x.Hi < 0.62 {
 		s := x.Div(x.Plus(2))

@@ -1,11 +1,12 @@
 package num
 
 import (
+	"cmp"
 	"math"
 	"slices"
 )
 
-// Sorted is a sorted copy of xs.
+// Sorted is a sorted copy of xs, which must hold no NaN.
 func Sorted(xs []float64) []float64 {
 	c := slices.Clone(xs)
 	slices.Sort(c)
@@ -14,29 +15,25 @@ func Sorted(xs []float64) []float64 {
 
 // Ranks gives the ranks of xs from 1, tied values sharing the mean of their
 // ranks, and the sizes of the groups of ties (two or more equal values), in the
-// order of their values.
+// order of their values. xs must hold no NaN.
 func Ranks(xs []float64) (ranks []float64, ties []int) {
-	order := make([]int, len(xs))
-	for i := range order {
-		order[i] = i
+	type item struct {
+		value float64
+		index int
 	}
-	slices.SortStableFunc(order, func(a, b int) int {
-		switch {
-		case xs[a] < xs[b]:
-			return -1
-		case xs[a] > xs[b]:
-			return 1
-		}
-		return 0
-	})
+	items := make([]item, len(xs))
+	for i, x := range xs {
+		items[i] = item{x, i}
+	}
+	slices.SortFunc(items, func(a, b item) int { return cmp.Compare(a.value, b.value) })
 	ranks = make([]float64, len(xs))
-	for i := 0; i < len(order); {
+	for i := 0; i < len(items); {
 		j := i + 1
-		for j < len(order) && xs[order[j]] == xs[order[i]] {
+		for j < len(items) && items[j].value == items[i].value {
 			j++
 		}
 		for k := i; k < j; k++ {
-			ranks[order[k]] = float64(i+j+1) / 2
+			ranks[items[k].index] = float64(i+j+1) / 2
 		}
 		if j-i > 1 {
 			ties = append(ties, j-i)
@@ -46,17 +43,20 @@ func Ranks(xs []float64) (ranks []float64, ties []int) {
 	return ranks, ties
 }
 
-// A QuantileType is one of Hyndman and Fan's definitions of a sample quantile.
+// A QuantileType is one of the definitions of a sample quantile in R. Hyndman
+// and Y. Fan (1996), Sample quantiles in statistical packages. Each interpolates
+// between the order statistics next to a position h.
 type QuantileType int
 
 // The types that the functions offer.
 const (
-	Type6 QuantileType = 6
-	Type7 QuantileType = 7
-	Type8 QuantileType = 8
+	Type6 QuantileType = 6 // h = (n+1) p: the mean of p over each gap is k/(n+1)
+	Type7 QuantileType = 7 // h = (n-1) p + 1: the extremes are the 0 and 1 quantiles
+	Type8 QuantileType = 8 // h = (n+1/3) p + 1/3: nearly free of median bias for any law
 )
 
-// Quantile is the p quantile of sorted data.
+// Quantile is the p quantile of sorted data, 0 <= p <= 1. The position h is kept
+// within 1 and n. NaN without data, for p outside its range or another type.
 func Quantile(sorted []float64, p float64, t QuantileType) float64 {
 	n := float64(len(sorted))
 	if n == 0 || !(p >= 0 && p <= 1) {
@@ -65,19 +65,26 @@ func Quantile(sorted []float64, p float64, t QuantileType) float64 {
 	var h float64
 	switch t {
 	case Type6:
-		h = (n + 1) * p
+		h = float64((n + 1) * p)
 	case Type7:
-		h = (n-1)*p + 1
+		h = float64((n-1)*p) + 1
+	case Type8:
+		h = float64((n+1.0/3)*p) + 1.0/3
 	default:
-		h = (n+1.0/3)*p + 1.0/3
+		return math.NaN()
 	}
-	h = min(max(h, 1), n)
-	k := int(h)
-	if k >= len(sorted) {
-		return sorted[len(sorted)-1]
+	whole, part := math.Modf(min(max(h, 1), n))
+	k := int(whole)
+	a := sorted[k-1]
+	if part == 0 {
+		return a
 	}
-	return sorted[k-1] + (h-float64(k))*(sorted[k]-sorted[k-1])
+	b := sorted[k]
+	if gap := b - a; !math.IsInf(gap, 0) {
+		return min(a+float64(part*gap), b)
+	}
+	return float64((1-part)*a) + float64(part*b)
 }
 
-// Median is the median of sorted data.
+// Median is the median of sorted data, NaN when there are none.
 func Median(sorted []float64) float64 { return Quantile(sorted, 0.5, Type7) }

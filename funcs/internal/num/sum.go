@@ -25,17 +25,40 @@ func addTo(hi, lo, x float64) (float64, float64) {
 	return s, lo + ((hi - (s - v)) + (x - v))
 }
 
-// Sum is the sum of xs, correctly rounded or nearly so.
-func Sum(xs []float64) float64 {
-	hi, lo := sumOf(xs)
+// total is a finished sum; past the range of float64 the low part is not a
+// number, and the sum infinite.
+func total(hi, lo float64) float64 {
+	if math.IsInf(hi, 0) {
+		return hi
+	}
 	return hi + lo
 }
 
-func sumOf(xs []float64) (hi, lo float64) {
+// Sum is the sum of xs, correctly rounded or nearly so. Partial sums past the
+// range of float64 do no harm where the whole is within it.
+func Sum(xs []float64) float64 {
+	hi, lo, down := sumOf(xs)
+	return total(hi, lo) / down
+}
+
+// sumOf is the sum of xs times down, which is 1 unless the plain sum leaves the
+// range of float64 on the way.
+func sumOf(xs []float64) (hi, lo, down float64) {
 	for _, x := range xs {
 		hi, lo = addTo(hi, lo, x)
 	}
-	return hi, lo
+	if !math.IsInf(hi, 0) && !math.IsNaN(hi) {
+		return hi, lo, 1
+	}
+	down = 0x1p-64 // a list of 2^64 numbers does not exist
+	hi, lo = 0, 0
+	for _, x := range xs {
+		hi, lo = addTo(hi, lo, float64(x*down))
+	}
+	if math.IsInf(hi, 0) {
+		lo = 0
+	}
+	return hi, lo, down
 }
 
 // Mean is the arithmetic mean of xs, NaN when there are none.
@@ -43,8 +66,9 @@ func Mean(xs []float64) float64 { return wideMean(xs).Float() }
 
 // wideMean is the mean to about 30 digits.
 func wideMean(xs []float64) Wide {
-	hi, lo := sumOf(xs)
-	return quickTwoSum(hi, lo).Over(float64(len(xs)))
+	hi, lo, down := sumOf(xs)
+	m := quickTwoSum(hi, lo).Over(float64(len(xs)))
+	return Wide{m.Hi / down, m.Lo / down}
 }
 
 // Moments gives the moments of xs about their mean. Relative error some 1e-16
@@ -63,7 +87,7 @@ func Moments(xs []float64) Summary {
 		s3, e3 = addTo(s3, e3, float64(q*d))
 		s4, e4 = addTo(s4, e4, float64(q*q))
 	}
-	return Summary{len(xs), m.Hi, m.Lo, s2 + e2, s3 + e3, s4 + e4}
+	return Summary{len(xs), m.Hi, m.Lo, total(s2, e2), total(s3, e3), total(s4, e4)}
 }
 
 // SumProducts is the sum of x[i]*y[i] over the shorter of the two lists, each
@@ -75,7 +99,7 @@ func SumProducts(x, y []float64) float64 {
 		hi, lo = addTo(hi, lo, p.Hi)
 		lo += p.Lo
 	}
-	return hi + lo
+	return total(hi, lo)
 }
 
 // WeightedMean is the mean of xs with the given weights.

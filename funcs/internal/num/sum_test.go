@@ -89,3 +89,26 @@ func BenchmarkMoments(b *testing.B) {
 		Moments(xs)
 	}
 }
+
+func TestSumsNearTheEndOfTheDoubles(t *testing.T) {
+	big := []float64{1.5e308, 1.7e308, 0.1e308, -1.6e308}
+	if got := Sum(big); math.Abs(got/1.7e308-1) > 1e-15 {
+		t.Errorf("sum %v, want 1.7e308", got)
+	}
+	if got := Mean([]float64{1.7e308, 1.7e308, 1.7e308}); got != 1.7e308 {
+		t.Errorf("mean %v, want 1.7e308", got)
+	}
+	if got := Sum([]float64{1.7e308, 1.7e308}); !math.IsInf(got, 1) {
+		t.Errorf("sum %v, want +Inf", got)
+	}
+	// Deviations of 1e154 have squares of 1e308 and fourth powers past the range.
+	if m := Moments([]float64{1e300, 1e300 + 1e285}); math.Abs(m.Mean/1e300-1) > 1e-14 || !math.IsInf(m.SumSquares, 1) {
+		t.Errorf("moments of huge values: %+v", m)
+	}
+	if m := Moments([]float64{-3e153, 3e153}); m.Mean != 0 || math.Abs(m.SumSquares/1.8e307-1) > 1e-15 || !math.IsInf(m.Sum4, 1) {
+		t.Errorf("moments of large values: %+v", m)
+	}
+	if got := Mean(nil); !math.IsNaN(got) {
+		t.Errorf("mean of nothing %v", got)
+	}
+}
