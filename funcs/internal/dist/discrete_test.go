@@ -123,12 +123,17 @@ func TestPoissonMatchesTheSeries(t *testing.T) {
 			terms = append(terms, next)
 			total.Add(total, next)
 		}
+		lower, sum := make([]*big.Float, len(terms)), new(big.Float).SetPrec(200)
+		for k, p := range terms {
+			sum.Add(sum, p)
+			lower[k] = new(big.Float).Copy(sum)
+		}
 		upper := new(big.Float).SetPrec(200)
 		for k := len(terms) - 1; k >= 0; k-- {
 			if k < 250 {
 				p, _ := new(big.Float).Quo(terms[k], total).Float64()
 				up, _ := new(big.Float).Quo(upper, total).Float64()
-				low, _ := new(big.Float).Quo(new(big.Float).Sub(total, upper), total).Float64()
+				low, _ := new(big.Float).Quo(lower[k], total).Float64()
 				what := fmt.Sprint("mean ", mean, ", k ", k)
 				if p > 1e-300 {
 					wantDigits(t, what, Poisson{mean}.PMF(k), p, 1e-13)

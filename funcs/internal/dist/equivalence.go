@@ -43,9 +43,9 @@ func EquivalencePower(df, toLower, toUpper, significance float64) float64 {
 	if !(top > 0) {
 		return 0
 	}
-	peak := scaleDensityPeak(df)
+	peak := scaleDensity1(df)
 	f := func(s float64) float64 {
-		return num.Exp(peak+float64(df*scaleExponent(num.Log(s)))) / s * inside(s)
+		return peak * num.Exp(df*scaleExponent(num.Log(s))) / s * inside(s)
 	}
 	// The product is log-concave: its panels grow to one peak and then fall.
 	sum, last := 0.0, 0.0

@@ -89,7 +89,7 @@ func (d NoncentralT) logSFOverScale(t float64) float64 {
 	edge := min(math.Abs(t)*sPeak*(1+9/math.Sqrt(2*nu)), math.Abs(delta)+8)
 	band := math.Sqrt(2*nu*max(1, sPeak*sPeak) + max(ts*ts, edge*edge))
 	step := min(0.18, 1/band)
-	return top + scaleDensityPeak(nu) + num.Log(num.Trapezoid(f, 0, step, 1e-8))
+	return top + num.Log(scaleDensity1(nu)*num.Trapezoid(f, 0, step, 1e-8))
 }
 
 // peakLogScale is log s where the density of log s times Phi(delta - t s) is

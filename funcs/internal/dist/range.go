@@ -122,7 +122,7 @@ func (k normalRange) lower(w float64) float64 {
 	f := func(m float64) float64 {
 		a := m - half
 		e := num.Exp(-float64(a*a)/2) * (1 + num.Exp(-float64(2*m*half)))
-		return e * intervalPower(m, half, k)
+		return e * num.Exp((n-1)*logInterval(m, half))
 	}
 	h := 0.9
 	if k.within(half, half, 1) < 0.1 {
@@ -131,41 +131,19 @@ func (k normalRange) lower(w float64) float64 {
 		bend := 1 - half*half + (n-1)*w*Normal{}.Density(half)/(1-2*Normal{}.SF(half))
 		h = min(h, 1.3/math.Sqrt(max(bend, 1.5)))
 	}
-	sum := f(0) / 2
-	peak := sum
-	add := func(first, step float64) {
-		for m := first; ; m += step {
-			t := f(m)
-			sum += t
-			peak = max(peak, t)
-			if !(t > peak*1e-18) {
-				return
-			}
-		}
-	}
-	add(h, h)
-	for range 8 {
-		old := sum
-		add(h/2, h)
-		h /= 2
-		if math.Abs(sum-2*old) <= 1e-8*sum {
-			break
-		}
-	}
-	return min(1, n*(sum*h)/math.Sqrt(2*math.Pi))
+	return min(1, n*evenIntegral(f, 0, h)/math.Sqrt(8*math.Pi))
 }
 
-// intervalPower is P(m-half < Z < m+half)^(k-1) for m >= 0.
-func intervalPower(m, half float64, k normalRange) float64 {
-	p := float64(k - 1)
+// logInterval is log P(m-half < Z < m+half) for m >= 0.
+func logInterval(m, half float64) float64 {
 	a, b := m-half, m+half
 	switch {
 	case 2*half*max(1, b) < 1:
-		return num.Exp(p * num.Log(narrowInterval(m, half)))
+		return num.Log(narrowInterval(m, half))
 	case a < 0:
-		return num.Exp(p * num.Log1p(-(Normal{}.SF(b) + Normal{}.SF(-a))))
+		return num.Log1p(-(Normal{}.SF(b) + Normal{}.SF(-a)))
 	}
-	return num.Exp(p * num.Log(Normal{}.SF(a)-Normal{}.SF(b)))
+	return num.Log(Normal{}.SF(a) - Normal{}.SF(b))
 }
 
 // narrowInterval is P(m-h < Z < m+h) by the Taylor series of the density about
@@ -191,11 +169,7 @@ func (k normalRange) upper(w float64) float64 {
 		if far == 0 {
 			return 0
 		}
-		logPhi := num.Log(below)
-		if z > 0 {
-			logPhi = num.Log1p(-Normal{}.SF(z))
-		}
-		return num.Exp(float64((n-1)*logPhi)-float64(z*z)/2) * -num.Expm1((n-1)*num.Log1p(-far/below))
+		return num.Exp(float64((n-1)*NormalLogCDF(z))-float64(z*z)/2) * -num.Expm1((n-1)*num.Log1p(-far/below))
 	}
-	return min(1, n*num.Trapezoid(f, w/2, 0.8/math.Sqrt(1+math.Log(n)), 1e-8)/math.Sqrt(2*math.Pi))
+	return min(1, n*outwards(f, w/2, w/2, w/2, 0.8/math.Sqrt(1+math.Log(n)))/math.Sqrt(2*math.Pi))
 }

@@ -16,15 +16,12 @@ import (
 // normal tails end.
 const manyDF = 1e20
 
-// scaleDensityPeak is log of the density of log s at s = 1:
+// scaleDensity1 is the density of log s at s = 1, its peak:
 // 2 (df/2)^(df/2) e^(-df/2) / Gamma(df/2).
-func scaleDensityPeak(df float64) float64 {
-	half := max(df/2, 1e-300)
-	return math.Ln2 + num.Log(GammaPrefactor(half, half))
-}
+func scaleDensity1(df float64) float64 { return 2 * gammaShape(max(df/2, 1e-300)) }
 
 // scaleExponent is u - (exp(2u) - 1)/2, so that the density of u = log s is
-// exp(scaleDensityPeak(df) + df*scaleExponent(u)).
+// scaleDensity1(df) * exp(df*scaleExponent(u)).
 func scaleExponent(u float64) float64 {
 	return -expm1mx(2*u) / 2
 }
@@ -49,10 +46,8 @@ var inverseFactorials = [...]float64{
 
 // normalHazard is phi(x)/Phi(x), the derivative of log Phi.
 func normalHazard(x float64) float64 {
-	if x < -30 {
-		// Laplace's continued fraction, deep enough for double precision beyond 30.
-		y := -x
-		return y + 1/(y+2/(y+3/(y+4/(y+5/(y+6/y)))))
+	if x < 0 {
+		return 1 / (mills(-x) * math.Sqrt(2*math.Pi))
 	}
 	return Normal{}.Density(x) / Normal{}.CDF(x)
 }

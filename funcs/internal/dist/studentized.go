@@ -102,7 +102,7 @@ func (n *scaleNodes) average(y float64) float64 {
 		}
 	}
 	h := n.step * (float64(stride) / finestSpacing)
-	return num.Exp(scaleDensityPeak(n.law.df)) * (total * h)
+	return scaleDensity1(n.law.df) * (total * h)
 }
 
 // nodes prepares the nodes for arguments near q, which is not 0; none where the

@@ -1,0 +1,173 @@
+package dist
+
+import (
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"testing"
+)
+
+// Dunnett 1955, Table 1a: equal groups, one-sided, upper 5% points.
+func TestComparisonsWithControlReproducePrintedTable(t *testing.T) {
+	for _, r := range publishedTable(t, "dunnett-one-sided-095") {
+		var of struct {
+			P           float64
+			Comparisons int
+			DF          tableNumber
+		}
+		parameters(t, r, &of)
+		groups := make([]int, of.Comparisons)
+		for i := range groups {
+			groups[i] = 5
+		}
+		wantPrinted(t, r, ComparisonsWithControl(5, groups, float64(of.DF), false).Quantile(of.P))
+	}
+}
+
+// Identity: one comparison, or one further value, is Student's t.
+func TestMaxTOfOneIsStudent(t *testing.T) {
+	rng := rand.New(rand.NewPCG(10, 1))
+	for range 60 {
+		df := math.Exp(rng.Float64()*8 - 1)
+		x := 3 * rng.NormFloat64()
+		s := Student{df}
+		past := 1 + rng.IntN(50)
+		one, two := JointPrediction(past, 1, df, false), JointPrediction(past, 1, df, true)
+		what := fmt.Sprint("t=", x, " df=", df, " past=", past)
+		wantDigits(t, what, one.CDF(x), s.CDF(x), 1e-11)
+		wantDigits(t, what, one.SF(x), s.SF(x), 1e-11)
+		wantDigits(t, what, two.SF(math.Abs(x)), 2*s.SF(math.Abs(x)), 1e-11)
+		wantDigits(t, what, two.CDF(math.Abs(x)), s.Between(-math.Abs(x), math.Abs(x)), 1e-11)
+	}
+}
+
+// Identity (Owen 1956): for two normal variables of correlation r and known
+// spread, P(both > w) = Q(w) - 2 T(w, sqrt((1-r)/(1+r))).
+func TestMaxTOfTwoIsOwensT(t *testing.T) {
+	rng := rand.New(rand.NewPCG(10, 2))
+	for range 100 {
+		control, a, b := 1+rng.IntN(20), 1+rng.IntN(60), 1+rng.IntN(60)
+		d := ComparisonsWithControl(control, []int{a, b}, math.Inf(1), false)
+		r := math.Sqrt(float64(a) / float64(a+control) * (float64(b) / float64(b+control)))
+		w := 3 * rng.NormFloat64()
+		tail := Normal{}.SF(w)
+		both := tail - 2*OwensT(w, math.Sqrt((1-r)/(1+r)))
+		what := fmt.Sprint(control, a, b, w)
+		wantDigits(t, what, d.SF(w), 2*tail-both, 1e-12)
+		// P(both <= w) mirrors P(both > -w).
+		below := Normal{}.SF(-w) - 2*OwensT(w, math.Sqrt((1-r)/(1+r)))
+		if w < 0 {
+			below = Normal{}.CDF(w) - 2*OwensT(w, math.Sqrt((1-r)/(1+r)))
+		}
+		if below > 1e-3 {
+			wantDigits(t, what, d.CDF(w), below, 1e-11)
+		}
+	}
+}
+
+func TestMaxTTailsAndQuantilesAgree(t *testing.T) {
+	rng := rand.New(rand.NewPCG(10, 3))
+	for i := range 60 {
+		df := math.Exp(rng.Float64() * 12)
+		twoSided := i%2 == 0
+		var d MaxT
+		if i%3 == 0 {
+			d = JointPrediction(1+rng.IntN(100), 1+rng.IntN(200), df, twoSided)
+		} else {
+			groups := make([]int, 1+rng.IntN(6))
+			for j := range groups {
+				groups[j] = 2 + rng.IntN(30)
+			}
+			d = ComparisonsWithControl(2+rng.IntN(30), groups, df, twoSided)
+		}
+		x := 1 + 2*rng.NormFloat64()
+		if twoSided {
+			x = math.Abs(x)
+		}
+		what := fmt.Sprint("t=", x, " ", d)
+		low, high := d.CDF(x), d.SF(x)
+		wantDigits(t, what, low+high, 1, 1e-13)
+		if next := d.SF(x + 1e-5); !(next < high || high > 1-1e-12 || high == 0) {
+			t.Errorf("%s: upper tail rises from %v to %v", what, high, next)
+		}
+		if next := d.CDF(x + 1e-5); !(next > low || low > 1-1e-12 || low == 0) {
+			t.Errorf("%s: lower tail falls from %v to %v", what, low, next)
+		}
+		p := math.Exp(-40 * rng.Float64() * rng.Float64())
+		wantDigits(t, fmt.Sprint("p=", p, d), d.CDF(d.Quantile(p)), p, 3e-12)
+		wantDigits(t, fmt.Sprint("p=", p, d), d.SF(d.UpperQuantile(p)), p, 3e-12)
+	}
+}
+
+// Bounds that hold for every correlation l_i l_j >= 0: between independence and
+// the sum of single tails (Sidak 1967; Slepian 1962), far out within a hair.
+func TestMaxTStaysBetweenItsBounds(t *testing.T) {
+	rng := rand.New(rand.NewPCG(10, 4))
+	for range 60 {
+		groups := make([]int, 1+rng.IntN(5))
+		for j := range groups {
+			groups[j] = 2 + rng.IntN(30)
+		}
+		m := float64(len(groups))
+		d := ComparisonsWithControl(20, groups, math.Inf(1), true)
+		w := 0.5 + 9*rng.Float64()
+		single := 2 * Normal{}.SF(w)
+		independent := -math.Expm1(m * math.Log1p(-single))
+		got := d.SF(w)
+		if !(got <= independent*(1+1e-13) && got >= single*(1-1e-13)) {
+			t.Errorf("%v at %v: %v is not between %v and %v", d, w, got, single, independent)
+		}
+	}
+}
+
+func TestMaxTStandsAnyArgument(t *testing.T) {
+	for _, groups := range [][]int{nil, {0}, {1}, {1, 400}, {5, 5, 5, 7}} {
+		for _, control := range []int{0, 1, 1000} {
+			for _, df := range []float64{math.NaN(), 0, 1, 40, math.Inf(1)} {
+				for _, twoSided := range []bool{false, true} {
+					d := ComparisonsWithControl(control, groups, df, twoSided)
+					valid := control > 0 && len(groups) > 0 && groups[0] > 0 && df > 0
+					for _, x := range []float64{math.Inf(-1), -1e300, -3, 0, 1e-300, 2, 1e300, math.Inf(1)} {
+						low, high := d.CDF(x), d.SF(x)
+						if valid != (low >= 0 && high >= 0 && math.Abs(low+high-1) < 1e-12) || !valid && !math.IsNaN(low) {
+							t.Errorf("%v at %v: tails %v and %v", d, x, low, high)
+						}
+					}
+					for _, p := range []float64{0, 1e-30, 0.3, 1 - 1e-16, 1} {
+						if valid == math.IsNaN(d.Quantile(p)) {
+							t.Errorf("%v: quantile of %v is %v", d, p, d.Quantile(p))
+						}
+					}
+				}
+			}
+		}
+	}
+}
+
+func benchmarkMaxT(b *testing.B, d MaxT, x float64) {
+	for b.Loop() {
+		d.SF(x)
+	}
+}
+
+func BenchmarkMaxTEqual(b *testing.B) {
+	benchmarkMaxT(b, ComparisonsWithControl(10, []int{10, 10, 10, 10}, 45, true), 2.5)
+}
+
+func BenchmarkMaxTUnequal(b *testing.B) {
+	benchmarkMaxT(b, ComparisonsWithControl(40, []int{10, 9, 8, 7, 12, 11, 20, 5}, 110, true), 2.7)
+}
+
+func BenchmarkMaxTUnequalSmallControl(b *testing.B) {
+	benchmarkMaxT(b, ComparisonsWithControl(4, []int{100, 90, 80, 7, 12, 11, 20, 5}, 300, true), 2.7)
+}
+
+func BenchmarkMaxTPrediction(b *testing.B) {
+	benchmarkMaxT(b, JointPrediction(6, 20, 5, true), 4)
+}
+
+func BenchmarkMaxTQuantile(b *testing.B) {
+	for b.Loop() {
+		JointPrediction(6, 20, 5, true).Quantile(0.95)
+	}
+}
