@@ -121,7 +121,8 @@ func argumentError(f *funcs.Function, input string, fl *fault) *funcs.ArgumentEr
 	if !fl.tail {
 		e.Reason = "cannot be read: " + e.Reason
 	}
-	if reason, advice, ok := strings.Cut(e.Reason, "; "); ok {
+	// In "numbers with ; between them" the mark is no end of a clause.
+	if reason, advice, ok := strings.Cut(e.Reason, "; "); ok && !strings.HasSuffix(reason, " ") {
 		e.Reason, e.Advice = reason, advice
 	}
 	return e

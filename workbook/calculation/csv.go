@@ -130,12 +130,7 @@ func (s *csvScanner) fill(i int) bool {
 			s.ended = true
 			return false
 		}
-		if s.at > 0 && len(s.fields) == 0 {
-			s.base += s.at
-			s.buf = s.buf[:copy(s.buf, s.buf[s.at:])]
-			s.at = 0
-		}
-		if cap(s.buf)-len(s.buf) < 32<<10 {
+		if cap(s.buf)-len(s.buf) < readAhead {
 			grown := make([]byte, len(s.buf), 2*cap(s.buf)+64<<10)
 			copy(grown, s.buf)
 			s.buf = grown
@@ -152,9 +147,26 @@ func (s *csvScanner) fill(i int) bool {
 	return s.at+i < len(s.buf)
 }
 
+// readAhead is how much is read at least before a record that may be cut off at
+// the end of the buffer, so that records seldom are.
+const readAhead = 16 << 10
+
+// rewind moves what is left to the front of the buffer and reads on. It is
+// called between records only, since their fields lie in the buffer.
+func (s *csvScanner) rewind() {
+	if s.ended || len(s.buf)-s.at >= readAhead {
+		return
+	}
+	s.base += s.at
+	s.buf = s.buf[:copy(s.buf, s.buf[s.at:])]
+	s.at = 0
+	s.fill(len(s.buf))
+}
+
 // next reads a record. It is false at the end, or where err is set.
 func (s *csvScanner) next() bool {
 	s.fields, s.scratch = s.fields[:0], s.scratch[:0]
+	s.rewind()
 	if !s.fill(0) || s.err != nil {
 		return false
 	}
@@ -263,31 +275,27 @@ func (d dialect) setField(f *Frame, row, col int, field []byte) RowFlags {
 	if len(text) == 0 {
 		return 0
 	}
+	flags := RowFilled
+	if strings.IndexByte("tTsSaA", text[0]) >= 0 && StartsLikeTotal(string(text)) {
+		flags |= RowTotal
+	}
 	c := f.Column(col)
+	if c == nil {
+		return flags
+	}
 	if kind, x, ok := d.numberIn(text); ok {
-		if c != nil {
-			c.SetNumber(row, kind, x)
-		}
-		return RowFilled
+		c.SetNumber(row, kind, x)
+		return flags
 	}
 	switch {
 	case len(text) <= 5 && (bytes.EqualFold(text, []byte("true")) || bytes.EqualFold(text, []byte("false"))):
-		if c != nil {
-			c.SetBool(row, text[0]|0x20 == 't')
-		}
+		c.SetBool(row, text[0]|0x20 == 't')
 	case text[0] == '#' && isErrorCode(string(text)):
-		if c != nil {
-			c.SetText(row, Error, f.InternBytes(text))
-		}
+		c.SetText(row, Error, f.InternBytes(text))
 	default:
-		if c != nil {
-			c.SetText(row, Text, f.InternBytes(field))
-		}
-		if StartsLikeTotal(string(text)) {
-			return RowFilled | RowTotal
-		}
+		c.SetText(row, Text, f.InternBytes(field))
 	}
-	return RowFilled
+	return flags
 }
 
 // isErrorCode reports whether a text is an error value of spreadsheets

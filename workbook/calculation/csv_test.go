@@ -135,6 +135,21 @@ func TestOnlyKeptColumnsOfATextFileStayInMemory(t *testing.T) {
 	}
 }
 
+func TestScannerHoldsLittleOfALongFile(t *testing.T) {
+	row := "North,12.5,\"a remark that is rather long\"\n"
+	s := newCSVScanner(strings.NewReader(strings.Repeat(row, 50_000)), dialect{separator: ','})
+	rows := 0
+	for s.next() {
+		if want := rows * len(row); s.fields[0].span.Start != want || s.end.End != want+len(row) {
+			t.Fatalf("row %d stands at %v to %v, want %d", rows+1, s.fields[0].span, s.end, want)
+		}
+		rows++
+	}
+	if rows != 50_000 || s.err != nil || cap(s.buf) > 256<<10 {
+		t.Errorf("%d rows, %v, a buffer of %d bytes", rows, s.err, cap(s.buf))
+	}
+}
+
 // fillText fills a text calculation sheet whose data stand in trips.csv.
 func fillText(t *testing.T, name, text, data string) (string, *Results) {
 	t.Helper()
@@ -287,4 +302,20 @@ func FuzzTextSheet(f *testing.F) {
 			t.Fatalf("filled once:\n%s\ntwice:\n%s", once, twice)
 		}
 	})
+}
+
+func BenchmarkTextFileOfAMillionRows(b *testing.B) {
+	var text bytes.Buffer
+	text.WriteString("trip-id,depot,driver,minutes,parcels,remark\n")
+	for i := range 1_000_000 {
+		fmt.Fprintf(&text, "t%d,depot %d,driver %d,%d.%02d,%d,\"a remark, %d\"\n", i, i%40, i%300, i%60, i%97, i%20, i%1000)
+	}
+	b.SetBytes(int64(text.Len()))
+	file := NewTextFile("trips.csv", func() (io.ReadCloser, error) { return io.NopCloser(bytes.NewReader(text.Bytes())), nil }, FileOptions{})
+	for b.Loop() {
+		f, err := file.Read(context.Background(), "trips.csv", func(*Frame) Columns { return Columns{List: []int{2, 4}} })
+		if err != nil || f.LastRow() != 1_000_001 {
+			b.Fatal(f.LastRow(), err)
+		}
+	}
 }
