@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode/utf8"
@@ -124,7 +125,14 @@ func (q *question) take(in funcs.Input, v Value) {
 			q.values[in.Name] = v.YesNo
 			return
 		}
-	case funcs.Choice, funcs.Text:
+	case funcs.Choice:
+		if v.Kind == Text && slices.Contains(in.Choices, v.Text) {
+			q.values[in.Name] = v.Text
+			return
+		}
+		q.refuseText(in, v, in.Choices)
+		return
+	case funcs.Text:
 		if v.Kind == Text {
 			q.values[in.Name] = v.Text
 			return
@@ -181,6 +189,9 @@ func (q *question) takeText(in funcs.Input, text string) {
 	case strings.TrimSpace(text) == "":
 		refuse("is an empty text", "leave it out, or give "+form(in))
 		return
+	case in.Infinite && near(text, []string{funcs.Infinite}) != "":
+		q.refuseText(in, Value{Kind: Text, Text: text}, []string{funcs.Infinite})
+		return
 	}
 	if q.book == nil {
 		if place := placeIn(text); place != "" {
@@ -189,6 +200,20 @@ func (q *question) takeText(in funcs.Input, text string) {
 		}
 	}
 	q.texts[in.Name] = text
+}
+
+// refuseText notes a value that is none of a few words, with the closest.
+func (q *question) refuseText(in funcs.Input, v Value, words []string) {
+	e := &funcs.ArgumentError{Argument: in.Name, Index: -1, Got: shown(v), Reason: "must be " + form(in)}
+	best := ""
+	if v.Kind == Text {
+		best = near(v.Text, words)
+	}
+	if best != "" {
+		e.Advice = fmt.Sprintf("did you mean %q?", best)
+	}
+	q.refuse(e)
+	q.wrong[len(q.wrong)-1].data.Suggestion = best
 }
 
 // placeIn gives the sheet, file or range that an expression reads, or "".
@@ -279,20 +304,20 @@ func shown(v Value) string {
 	case YesNo:
 		return strconv.FormatBool(v.YesNo)
 	case Text:
-		return fmt.Sprintf("the text %q", clipped(v.Text))
+		return "the text " + quoted(v.Text)
 	}
 	return v.Kind.String()
 }
 
-// clipped cuts a text that would swell a message.
-func clipped(text string) string {
+// quoted puts a text in quotes, cut where it would swell a message.
+func quoted(text string) string {
 	const most = 60
-	if len(text) <= most {
-		return text
+	if len(text) > most {
+		cut := most
+		for !utf8.RuneStart(text[cut]) {
+			cut--
+		}
+		text = text[:cut] + "…"
 	}
-	cut := most
-	for !utf8.RuneStart(text[cut]) {
-		cut--
-	}
-	return text[:cut] + "…"
+	return strconv.Quote(text)
 }

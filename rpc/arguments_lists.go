@@ -19,6 +19,9 @@ func (q *question) takeNumbers(in funcs.Input, v Value) {
 	for i, m := range v.Members {
 		list.Names[i], list.Values[i] = m.Name, m.Value.Number
 		switch {
+		case m.Name == "":
+			q.refuse(&funcs.ArgumentError{Argument: in.Name, Index: i, Got: `""`, Reason: "must be a name of its own", Advice: "give each number a name"})
+			return
 		case m.Value.Kind == Number:
 		case m.Value.Kind == Null && in.MayBeGaps:
 			list.Values[i] = math.NaN()
@@ -40,6 +43,10 @@ func (q *question) takeSample(in funcs.Input, v Value) {
 func (q *question) takeSamples(in funcs.Input, v Value) {
 	groups := make([]funcs.Group, len(v.Members))
 	for i, m := range v.Members {
+		if m.Name == "" {
+			q.refuse(&funcs.ArgumentError{Argument: in.Name, Index: i, Got: `""`, Reason: "must be a name of its own", Advice: "give each group a name"})
+			return
+		}
 		if m.Value.Kind != Numbers && m.Value.Kind != List {
 			q.refuse(&funcs.ArgumentError{Argument: in.Name, Group: m.Name, Index: -1, Got: shown(m.Value),
 				Reason: "must be a list of numbers", Advice: `give a list, or {"float64le": "BASE64"}`})

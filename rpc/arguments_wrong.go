@@ -68,16 +68,17 @@ func (q *question) pointer(e *funcs.ArgumentError) string {
 	if !given {
 		return at
 	}
-	if v.Kind == Object { // by name; a name that is wrong itself is told by its place
-		group, ok := v.member(e.Group)
-		switch {
-		case ok:
-		case e.Group == "" && e.Index >= 0 && e.Index < len(v.Members):
-			group = v.Members[e.Index].Value
-		default:
+	if v.Kind == Object {
+		if e.Group == "" { // the name itself is at fault
+			if e.Index >= 0 && e.Index < len(v.Members) {
+				at = v.Members[e.Index].Value.Pointer
+			}
 			return at
 		}
-		v, at = group, group.Pointer
+		if v, given = v.member(e.Group); !given {
+			return at
+		}
+		at = v.Pointer
 	}
 	if e.Index >= 0 && !v.Packed && (v.Kind == Numbers || v.Kind == List) {
 		at = pointerTo(at, strconv.Itoa(e.Index))
@@ -102,7 +103,7 @@ func wrongArguments(all []wrong) *Error {
 		data.Others = append(data.Others, w.data)
 	}
 	if n := len(all); n > 1 {
-		message = fmt.Sprintf("%d arguments are wrong, the first: %s", n, message)
+		message = fmt.Sprintf("The arguments have %d faults, the first: %s", n, message)
 	}
 	if !strings.HasSuffix(message, "?") {
 		message += "."

@@ -20,7 +20,7 @@ func (b books) source(name *string) (calculation.Source, *Error) {
 	open, ok := b[*name]
 	if !ok {
 		names := slices.Sorted(maps.Keys(b))
-		e := badParams("/book", "book", "is "+shown(Value{Kind: Text, Text: *name})+", and no book of that name is open", "open it first, or leave book out")
+		e := badParams("/book", "book", "is "+quoted(*name)+", and no book of that name is open", "open it first, or leave book out")
 		if best := near(*name, names); best != "" {
 			e.Data.Suggestion = best
 		}

@@ -50,6 +50,8 @@ func play(t *testing.T, lines []string) {
 			opts.Limits.HeaderBytes = number(t, rest)
 		case "max-depth":
 			opts.Limits.Depth = number(t, rest)
+		case "max-sample-values":
+			opts.Limits.SampleValues = number(t, rest)
 		case "workers":
 			opts.Limits.Workers = number(t, rest)
 		case "max-queue":
@@ -61,7 +63,7 @@ func play(t *testing.T, lines []string) {
 	for i, line := range lines {
 		word, rest, _ := strings.Cut(line, " ")
 		switch word {
-		case "", "#", "max-message-bytes", "max-header-bytes", "max-depth", "workers", "max-queue":
+		case "", "#", "max-message-bytes", "max-header-bytes", "max-depth", "max-sample-values", "workers", "max-queue":
 		case "open":
 			c.initialize()
 		case "send":

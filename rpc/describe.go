@@ -78,7 +78,7 @@ func describe(f *funcs.Function) description {
 		Assumptions: append([]string{}, f.Assumptions...), Citations: append([]string{}, f.Citations...),
 		Example: exampleDescription{Label: f.Example.Label, Arguments: wireArguments(f.Example.Arguments), Results: wireArguments(f.Example.Want),
 			Tolerance: f.Example.Tolerance, Source: f.Example.Source},
-		Schemas: schemas{argumentsSchema(f), outcomeSchema(f)},
+		Schemas: schemas{append(object{{"$schema", dialect}}, argumentsSchema(f)...), append(object{{"$schema", dialect}}, outcomeSchema(f)...)},
 	}
 	for _, in := range f.Inputs {
 		input := inputDescription{Name: in.Name, Kind: in.Kind.String(), Summary: in.Summary, Accepts: form(in), Unit: in.Unit.String(),

@@ -48,7 +48,7 @@ func listFunctions(_ context.Context, _ *Call, p listParams) (any, error) {
 		}
 	}
 	if len(list) == 0 {
-		e := badParams("/family", "family", "is "+shown(Value{Kind: Text, Text: *p.Family})+", which is no family", "the families are "+strings.Join(families, ", "))
+		e := badParams("/family", "family", "is "+quoted(*p.Family)+", which is no family", "the families are "+strings.Join(families, ", "))
 		if best := near(*p.Family, families); best != "" {
 			e.Data.Suggestion = best
 		}
@@ -76,10 +76,10 @@ func lookUp(name, pointer string) (*funcs.Function, error) {
 	if !errors.As(err, &unknown) {
 		return f, err
 	}
-	e := badParams(pointer, "name", "is "+shown(Value{Kind: Text, Text: name})+", which is no function", "functions/list gives the names")
+	e := badParams(pointer, "name", "is "+quoted(name)+", which is no function", "functions/list gives the names")
 	if len(unknown.Closest) > 0 {
 		e.Data.Suggestion = unknown.Closest[0]
-		e.Message = fmt.Sprintf("There is no function %q%s", clipped(name), ask(unknown.Closest[0]))
+		e.Message = fmt.Sprintf("There is no function %s%s", quoted(name), ask(unknown.Closest[0]))
 	}
 	return nil, e
 }

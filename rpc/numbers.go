@@ -25,7 +25,7 @@ func (p *valueParser) packed(pointer string) (Value, error) {
 		p.pos++
 	case ',':
 		at := pointerTo(pointer, packedName)
-		fault := badParams(at, packedName, "has members beside it", "let it stand alone in its object")
+		fault := badParams(at, packedName, "stands beside other members", "let it stand alone in its object")
 		return Value{Kind: Text, Pointer: at, Fault: fault}, nil
 	default:
 		return v, p.unexpected("a comma or } in an object")

@@ -45,7 +45,11 @@ func (m *Method) document() object {
 		for i := range m.Params.NumField() {
 			field := m.Params.Field(i)
 			name, required := fieldOf(field)
-			params = append(params, object{{"name", name}, {"description", field.Tag.Get("doc")}, {"required", required}, {"schema", typeSchema(field.Type)}})
+			schema := typeSchema(field.Type)
+			if name == progressMember {
+				schema = object{{"type", []string{"string", "integer"}}}
+			}
+			params = append(params, object{{"name", name}, {"description", field.Tag.Get("doc")}, {"required", required}, {"schema", schema}})
 		}
 	}
 	d := object{{"name", m.Name}, {"summary", m.Doc}, {"paramStructure", "by-name"}, {"params", params}}

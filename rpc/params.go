@@ -149,7 +149,7 @@ func fillStruct(target reflect.Value, v Value) error {
 			if err := fill(target.Field(i), m.Value, m.Name, 0); err != nil {
 				return err
 			}
-		case m.Name == "workDoneToken" && v.Pointer == "":
+		case m.Name == progressMember && v.Pointer == "":
 			if m.Value.Fault != nil {
 				return m.Value.Fault
 			}

@@ -19,6 +19,9 @@ type Progress struct {
 	percent int
 }
 
+// progressMember is the member of any params that names the token.
+const progressMember = "workDoneToken"
+
 const reportEvery = 100 * time.Millisecond
 
 // Progress begins to report; called again it gives the same Progress. Of a call
@@ -39,7 +42,7 @@ func (c *Call) Progress(title string) *Progress {
 
 // progressToken gives the token where it is a text or a whole number.
 func progressToken(params []byte) json.RawMessage {
-	token := memberOf(params, "workDoneToken")
+	token := memberOf(params, progressMember)
 	if len(token) == 0 || token[0] != '"' && token[0] != '-' && !isDigit(token[0]) {
 		return nil
 	}

@@ -11,6 +11,7 @@ import (
 // itself. x-unit says how a value's unit follows from the sample's: same,
 // squared or none.
 
+// dialect stands at the root of a schema that is served by itself.
 const dialect = "https://json-schema.org/draft/2020-12/schema"
 
 // argumentsSchema describes the arguments of a function. What it takes is
@@ -23,7 +24,7 @@ func argumentsSchema(f *funcs.Function) object {
 			required = append(required, in.Name)
 		}
 	}
-	s := object{{"$schema", dialect}, {"title", "arguments of " + f.Name}, {"type", "object"}, {"properties", properties},
+	s := object{{"title", "arguments of " + f.Name}, {"type", "object"}, {"properties", properties},
 		{"required", required}, {"additionalProperties", false}}
 	var ways []object
 	for _, one := range f.OneOf {
@@ -168,7 +169,7 @@ func outcomeSchema(f *funcs.Function) object {
 		properties = append(properties, entry{"table", object{{"type", "array"}, {"items", row}}})
 	}
 	properties = append(properties, entry{"findings", object{{"type", "array"}, {"items", findingSchema()}}})
-	return object{{"$schema", dialect}, {"title", title}, {"type", "object"}, {"properties", properties},
+	return object{{"title", title}, {"type", "object"}, {"properties", properties},
 		{"required", []string{"function", "status", "results", "findings"}}, {"additionalProperties", false},
 		{"if", object{{"properties", object{{"status", object{{"const", string(funcs.StatusRefused)}}}}}}},
 		{"then", object{{"properties", object{{"results", object{{"maxProperties", 0}}}, {"table", false}, {"findings", object{{"minItems", 1}}}}}}}}

@@ -151,7 +151,7 @@ func TestFaultyValuesAreRefusedByPlace(t *testing.T) {
 		{`{"float64le":"AAAAAAAA8D9="}`, "/float64le", "float64le is not base64" + form},
 		{`{"float64le":"*AAAAAAA8D8="}`, "/float64le", "float64le is not base64" + form},
 		{`{"s":{"float64le":"AAAAAAAA8H8="}}`, "/s/float64le", "float64le holds an infinite number at place 1" + form},
-		{`{"float64le":"AAAAAAAA8D8=","unit":"min"}`, "/float64le", "float64le has members beside it; let it stand alone in its object."},
+		{`{"float64le":"AAAAAAAA8D8=","unit":"min"}`, "/float64le", "float64le stands beside other members; let it stand alone in its object."},
 		{`[1,2`, "", "The params are no JSON text: at byte 4 stands the end where a comma or ] in a list is expected."},
 		{`[1,nil]`, "", "The params are no JSON text: at byte 4 stands 'i' where the word null is expected."},
 		{`1 2`, "", "The params are no JSON text: at byte 2 stands '2' where the end is expected."},

@@ -38,6 +38,7 @@ after shutdown, 1 without it, 2 where an option is wrong.
 Options:
   --max-message-bytes N   longest message taken (%d)
   --max-depth N           deepest nesting taken (%d)
+  --max-sample-values N   numbers taken in one list (%d)
   --max-queue N           long calls that may wait (%d)
   --workers N             long calls worked on at once (one a core: %d)
   --version               print the version
@@ -56,7 +57,7 @@ func run(args []string, in io.Reader, out, errw io.Writer) int {
 	help := flags.Bool("help", false, "")
 	showVersion := flags.Bool("version", false, "")
 	for name, field := range map[string]*int{
-		"max-message-bytes": &limits.MessageBytes, "max-depth": &limits.Depth, "max-queue": &limits.Queue, "workers": &limits.Workers,
+		"max-message-bytes": &limits.MessageBytes, "max-depth": &limits.Depth, "max-sample-values": &limits.SampleValues, "max-queue": &limits.Queue, "workers": &limits.Workers,
 	} {
 		flags.Var(atLeastOne{field}, name, "")
 	}
@@ -64,7 +65,7 @@ func run(args []string, in io.Reader, out, errw io.Writer) int {
 	err := flags.Parse(args)
 	switch {
 	case *help || errors.Is(err, flag.ErrHelp):
-		fmt.Fprintf(out, usage, standard.MessageBytes, standard.Depth, standard.Queue, standard.Workers)
+		fmt.Fprintf(out, usage, standard.MessageBytes, standard.Depth, standard.SampleValues, standard.Queue, standard.Workers)
 		return 0
 	case err != nil:
 		fmt.Fprintf(errw, "halfwidth-server: %v\nWrite halfwidth-server --help for the options.\n", err)

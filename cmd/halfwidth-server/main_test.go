@@ -83,10 +83,10 @@ func TestLimitsReachTheServer(t *testing.T) {
 	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(0))
 	var out, errs bytes.Buffer
 	in := frame(initialize) + frame(`{"jsonrpc":"2.0","id":3,"method":"x","params":{"text":"`+strings.Repeat("x", 500)+`"}}`) + frame(shutdown) + frame(exit)
-	if code := run([]string{"--max-message-bytes", "400", "--max-depth=9", "--max-queue=7", "--workers", "3"}, strings.NewReader(in), &out, &errs); code != 0 {
+	if code := run([]string{"--max-message-bytes", "400", "--max-depth=9", "--max-sample-values", "6", "--max-queue=7", "--workers", "3"}, strings.NewReader(in), &out, &errs); code != 0 {
 		t.Errorf("exit code %d, errors %q", code, errs.String())
 	}
-	for _, part := range []string{`"messageBytes":400`, `"depth":9`, `"queue":7`, `"workers":3`, `"version":"` + buildinfo.Version() + `"`, "at most 400 are taken", done} {
+	for _, part := range []string{`"messageBytes":400`, `"depth":9`, `"sampleValues":6`, `"queue":7`, `"workers":3`, `"version":"` + buildinfo.Version() + `"`, "at most 400 are taken", done} {
 		if !strings.Contains(out.String(), part) {
 			t.Errorf("the output lacks %s: %s", part, out.String())
 		}
