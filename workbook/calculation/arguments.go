@@ -51,9 +51,8 @@ func Arguments(ctx context.Context, source Source, f *funcs.Function, texts map[
 		}
 		terms[in.Name] = t
 	}
-	if wrong != nil {
-		return nil, wrong
-	}
+	// Texts that cannot be read leave the others to be read all the same, so
+	// that all that is wrong is told at once.
 	if err := lib.read(ctx); err != nil {
 		return nil, err
 	}
@@ -84,6 +83,7 @@ func Arguments(ctx context.Context, source Source, f *funcs.Function, texts map[
 	}
 	switch {
 	case wrong != nil:
+		slices.SortStableFunc(wrong, func(a, b *funcs.ArgumentError) int { return place(f, a.Argument) - place(f, b.Argument) })
 		return nil, wrong
 	case slices.ContainsFunc(refusal.Findings, func(f funcs.Finding) bool { return f.Severity == funcs.Refused }):
 		funcs.SortFindings(refusal.Findings)
@@ -94,6 +94,11 @@ func Arguments(ctx context.Context, source Source, f *funcs.Function, texts map[
 
 // wordingFaults are the codes of faults in what was written, not in the data.
 var wordingFaults = []string{"bad-value", "bad-expression", "unknown-name", "unreadable-file", "unreadable-sheet", "different-rows"}
+
+// place is that of an input in the catalogue.
+func place(f *funcs.Function, input string) int {
+	return slices.IndexFunc(f.Inputs, func(in funcs.Input) bool { return in.Name == input })
+}
 
 // checkKey refuses a key where nothing pairs, and groups where one sample is
 // wanted.

@@ -99,10 +99,10 @@ func TestFaultyArgumentsAreErrorsAndDataFaultsRefusals(t *testing.T) {
 	}
 	err := ask("mean-interval", map[string]string{"sample": "befor in Trips", "confidence": "12,5", "direction": "B7"})
 	var wrong funcs.ArgumentErrors
-	if !errors.As(err, &wrong) || len(wrong) != 2 {
-		t.Fatalf("got %v, want an error for confidence and one for direction", err)
+	if !errors.As(err, &wrong) || len(wrong) != 3 {
+		t.Fatalf("got %v, want an error for each of the three", err)
 	}
-	for _, want := range []string{"confidence cannot be read: character 3, at ,", "direction is B7, a cell of a calculation sheet"} {
+	for _, want := range []string{`Did you mean "before"?`, "confidence cannot be read: character 3, at ,", "direction is B7, a cell of a calculation sheet"} {
 		if !strings.Contains(err.Error(), want) {
 			t.Errorf("%v does not say %q", err, want)
 		}

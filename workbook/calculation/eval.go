@@ -330,6 +330,7 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 			return result.addError(ctx, err, args)
 		}
 		result.Outcome = out
+		p.letGo(out)
 		for _, f := range out.Findings {
 			result.add(f)
 		}
@@ -341,7 +342,9 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 		call[r.each.Name] = g.from
 		out, err := r.Function.Answer(ctx, call)
 		group := GroupOutcome{Name: g.name, Outcome: out}
-		if err != nil {
+		if err == nil {
+			p.letGo(out)
+		} else {
 			if ctx.Err() != nil {
 				return ctx.Err()
 			}
@@ -351,6 +354,23 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 	}
 	result.sumUpGroups()
 	return nil
+}
+
+// letGo drops the samples that were read from an outcome, unless they are to be
+// kept.
+func (p *Plan) letGo(out *funcs.Outcome) {
+	if p.options.KeepValues {
+		return
+	}
+	for name, from := range out.Arguments {
+		if from.Origin == nil || from.Origin.Range == "" {
+			continue
+		}
+		switch from.Value.(type) {
+		case []float64, []funcs.Group:
+			delete(out.Arguments, name)
+		}
+	}
 }
 
 // errorLines gives the faults of a call, without the function's name.

@@ -178,6 +178,11 @@ func (g *gathering) run(ctx context.Context) error {
 	}
 	const often = 0x3fff
 	if rows, ok := g.candidates(); ok {
+		for _, c := range g.columns {
+			if c.series != nil && g.query.What != Sum {
+				c.series.values, c.series.rows = make([]float64, 0, len(rows)), make([]int32, 0, len(rows))
+			}
+		}
 		for i, row := range rows {
 			if i&often == 0 && ctx.Err() != nil {
 				return ctx.Err()

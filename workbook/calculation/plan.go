@@ -20,6 +20,10 @@ type Options struct {
 	// MayReplace reports whether a sheet that exists may be written anew as a
 	// table sheet: one that an earlier fill made. Nil allows none.
 	MayReplace func(sheet string) bool
+	// KeepValues keeps the samples that were read in the Arguments of outcomes, as
+	// a page needs them. Otherwise a row's samples are let go once it is worked
+	// out, so that many rows over a large sheet take little memory.
+	KeepValues bool
 	// NoTables says why no table sheet can be written, as in a text file; empty
 	// where they can.
 	NoTables string

@@ -257,3 +257,28 @@ func TestFarCellsDoNotSlowACalculationSheet(t *testing.T) {
 		t.Fatalf("%d rows, %v", len(plan.Rows), err)
 	}
 }
+
+func TestSamplesAreKeptOnlyWhereAsked(t *testing.T) {
+	src := smallBook()
+	src.AddSheet("Calculations", calculationRows("before in Trips", "1; 2; 4"))
+	for _, keep := range []bool{false, true} {
+		plan, err := NewPlan(context.Background(), src, Options{KeepValues: keep})
+		if err != nil {
+			t.Fatal(err)
+		}
+		results, err := plan.Run(context.Background(), 1)
+		if err != nil {
+			t.Fatal(err)
+		}
+		arguments := results.Rows[0].Outcome.Arguments
+		if _, ok := arguments["sample"]; ok != keep {
+			t.Errorf("keep %v: the arguments are %v", keep, arguments)
+		}
+		if arguments["confidence"].Value != 0.95 {
+			t.Errorf("keep %v: the confidence is %v", keep, arguments["confidence"].Value)
+		}
+		if got, _ := results.Rows[1].Outcome.Arguments["sample"].Value.([]float64); len(got) != 3 {
+			t.Errorf("keep %v: numbers written out are %v", keep, got)
+		}
+	}
+}

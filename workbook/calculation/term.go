@@ -185,6 +185,9 @@ func (r *reader) text(t *term, text string) *fault {
 	e, err := ParseExpression(text)
 	if err != nil {
 		f := bad("bad-expression", "cannot be read: "+err.Error())
+		if oneNumber(in.Kind) && isPlainWord(trim(text)) {
+			return bad("bad-value", fmt.Sprintf("is %s, but must be %s; write a number with . as the decimal mark, or a cell such as B7", quote(trim(text)), expects(in)))
+		}
 		if syntax, ok := err.(*SyntaxError); ok {
 			f.span = syntax.Span
 		}
@@ -193,6 +196,9 @@ func (r *reader) text(t *term, text string) *fault {
 	t.written = text
 	return r.expression(t, e)
 }
+
+// oneNumber reports whether an input of that kind is one number.
+func oneNumber(k funcs.Kind) bool { return k == funcs.Number || k == funcs.Count || k == funcs.Level }
 
 // plainText gives a text without outer space and the quotes round the whole.
 func plainText(text string) string {
@@ -229,7 +235,7 @@ func (r *reader) expression(t *term, e Expr) *fault {
 // listOf reads numbers written out.
 func (r *reader) listOf(t *term, l *List) *fault {
 	in := t.input
-	single := in.Kind == funcs.Number || in.Kind == funcs.Count || in.Kind == funcs.Level
+	single := oneNumber(in.Kind)
 	switch {
 	case single && len(l.Items) > 1:
 		return bad("bad-value", fmt.Sprintf("takes one number, but %d are written", len(l.Items)))
