@@ -189,8 +189,12 @@ func (q *question) takeText(in funcs.Input, text string) {
 	case strings.TrimSpace(text) == "":
 		refuse("is an empty text", "leave it out, or give "+form(in))
 		return
-	case in.Infinite && near(text, []string{funcs.Infinite}) != "":
-		q.refuseText(in, Value{Kind: Text, Text: text}, []string{funcs.Infinite})
+	case (in.Kind == funcs.Number || in.Kind == funcs.Count) && isWord(text):
+		words := []string{}
+		if in.Infinite {
+			words = append(words, funcs.Infinite)
+		}
+		q.refuseText(in, Value{Kind: Text, Text: text}, words)
 		return
 	}
 	if q.book == nil {
@@ -200,6 +204,12 @@ func (q *question) takeText(in funcs.Input, text string) {
 		}
 	}
 	q.texts[in.Name] = text
+}
+
+// isWord reports whether a text is one word, and no expression.
+func isWord(text string) bool {
+	_, err := calculation.ParseExpression(text)
+	return err != nil && !strings.ContainsAny(text, " ,;")
 }
 
 // refuseText notes a value that is none of a few words, with the closest.
