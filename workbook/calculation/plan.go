@@ -195,9 +195,6 @@ func (p *Plan) checkTableUse(r *Row) {
 	case r.Function.Table != nil && len(r.Function.Results) == 0:
 		r.caution(CellRef{r.Number, r.Block.work}, funcs.Caution, "no-table-sheet", fmt.Sprintf(
 			"The answer of %s is a table, and no sheet is named for it. Name one in a column headed `table sheet`.", r.Function.Name))
-	case r.Function.Table != nil:
-		r.caution(CellRef{r.Number, r.Block.work}, funcs.Information, "no-table-sheet", fmt.Sprintf(
-			"%s also gives a table; name a sheet for it in a column headed `table sheet`.", r.Function.Name))
 	}
 }
 

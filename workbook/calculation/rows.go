@@ -4,6 +4,8 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"maps"
+	"slices"
 	"strings"
 )
 
@@ -79,9 +81,9 @@ func (r *Rows) Beside(file string, _ FileOptions) (Source, error) {
 	if s, ok := r.files[file]; ok {
 		return s, nil
 	}
-	for name, s := range r.files {
+	for _, name := range slices.Sorted(maps.Keys(r.files)) {
 		if strings.EqualFold(name, file) {
-			return s, nil
+			return r.files[name], nil
 		}
 	}
 	return nil, errors.New("is not beside the book")

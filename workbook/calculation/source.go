@@ -43,11 +43,10 @@ func (k PlaceKind) String() string { return [...]string{"a sheet", "a table", "a
 // count from 1; for a sheet they are 0.
 type Place struct {
 	Kind                                 PlaceKind
-	Name                                 string   // as it stands in the book
-	Sheet                                string   // the sheet it lies on; for a sheet its own name
-	FirstRow, LastRow, FirstCol, LastCol int      // the whole range, header and totals rows included
-	HeaderRows, TotalsRows               int      // of a table
-	Columns                              []string // of a table: the names in its header, in order, where the Source knows them
+	Name                                 string // as it stands in the book
+	Sheet                                string // the sheet it lies on; for a sheet its own name
+	FirstRow, LastRow, FirstCol, LastCol int    // the whole range, header and totals rows included
+	HeaderRows, TotalsRows               int    // of a table
 }
 
 // Source gives samples their rows: a workbook file, a CSV file beside it, or
