@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+
+	"halfwidth/funcs/internal/num"
 )
 
 // The plans of this family all do the same: they give the smallest n for which
@@ -113,46 +115,11 @@ func (c *Call) smallestPlan(lo, hi, start int, holds func(n int) bool) (n int, f
 	}
 	for n := lo; n <= min(2*lo, hi); n++ {
 		if !watched(n) {
-			n, found = passing(n+1, hi, start, 1, watched)
+			n, found = num.Smallest(n+1, hi, start, watched)
 			return n, found, err
 		}
 	}
 	return lo, lo <= hi, err
-}
-
-// passing finds an n in [lo, hi] at which ok holds but not at n - 1 (or n = lo).
-// It walks from start in steps that double, then halves, so that a good
-// guess spares the slow far ends. found is false where ok
-// fails at hi.
-func passing(lo, hi, start, step int, ok func(n int) bool) (n int, found bool) {
-	n, step = min(max(start, lo), hi), max(step, 1)
-	failing := n
-	if ok(n) {
-		for failing = n - step; failing >= lo && ok(failing); failing -= step {
-			n = failing
-			step *= 2
-		}
-		failing = max(failing, lo-1)
-	} else {
-		for {
-			if failing == hi {
-				return 0, false
-			}
-			if n = min(failing+step, hi); ok(n) {
-				break
-			}
-			failing = n
-			step *= 2
-		}
-	}
-	for n-failing > 1 {
-		if mid := failing + (n-failing)/2; ok(mid) {
-			n = mid
-		} else {
-			failing = mid
-		}
-	}
-	return n, true
 }
 
 // secondSize is the size of the second group beside n in the first; one more
@@ -169,7 +136,7 @@ func secondSize(n int, ratio float64) int {
 // first, and n inside it.
 func (c *Call) smallestGroups(ratio, start float64, holds func(n, second int) bool) (n, second int, found bool, err error) {
 	largest := func(k int) int { // the largest n beside which the second group has k
-		n, _ := passing(1, largestPlan+1, clampPlan(float64(k)/ratio, 1, largestPlan), 1,
+		n, _ := num.Smallest(1, largestPlan+1, clampPlan(float64(k)/ratio, 1, largestPlan),
 			func(n int) bool { return n > largestPlan || secondSize(n, ratio) > k })
 		return n - 1
 	}
@@ -184,7 +151,7 @@ func (c *Call) smallestGroups(ratio, start float64, holds func(n, second int) bo
 		return 0, 0, false, err
 	}
 	first := max(largest(k-1)+1, smallestGroup)
-	n, found = passing(first, largest(k), first, 1, func(n int) bool { return holds(n, k) })
+	n, found = num.Smallest(first, largest(k), first, func(n int) bool { return holds(n, k) })
 	return n, k, found, nil
 }
 

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
 )
 
 // The power of a test of proportions is a sum over counts, and it does not rise
@@ -13,21 +14,25 @@ import (
 // whole the power would rise steadily, and it would lie between the two. So no n
 // up to one at which the wider region falls short can hold, and every n from one
 // at which the narrower region suffices does hold. Only the n between are looked
-// at one by one.
+// at: one by one, or, where counts are rare, by the runs of n over which the
+// region stays the same and the power only rises or only falls.
 
 // sharesTest is a test of one or two proportions.
 type sharesTest interface {
 	// power of n, with the region of rejection wider by so many counts; narrower
 	// where that is negative, and then without its side away from the truth.
 	power(n, wider int) float64
+	// run is the last of the n', from n on, over which the power only rises or
+	// only falls; n itself where runs are short.
+	run(n int) int
 	// cost of one power, in units of one count looked at.
 	cost(n int) float64
 	// largest is the largest n that may be planned.
 	largest() int
 }
 
-// affordable is how much a plan may cost when it goes through n by n.
-const affordable = 1.5e7
+// affordable is how much a plan may cost when it goes through n.
+const affordable = 2e7
 
 // sharesPlan is the answer of planShares.
 type sharesPlan struct {
@@ -47,32 +52,78 @@ func (c *Call) planShares(t sharesTest, wanted, guess float64) (sharesPlan, erro
 		}
 		return stopped != nil || reaches(t.power(n, wider), wanted)
 	}
-	start := clampPlan(guess, smallestGroup, t.largest())
-	high, found := passing(smallestGroup, t.largest(), start, start/256, func(n int) bool { return holds(n, -1) })
+	// The bounds are looked for in steps of 1/4096 of n where going through as many
+	// n would already cost too much.
+	start, grain := clampPlan(guess, smallestGroup, t.largest()), 1
+	if step := start / 4096; float64(step)*t.cost(start) > affordable {
+		grain = step
+	}
+	bound := func(hi, wider int) (n int, found bool) {
+		k, found := num.Smallest((smallestGroup+grain-1)/grain, (hi+grain-1)/grain, start/grain, func(k int) bool { return holds(min(k*grain, hi), wider) })
+		return min(k*grain, hi), found
+	}
+	high, found := bound(t.largest(), -1)
 	if !found || stopped != nil {
 		return sharesPlan{}, stopped
 	}
-	low, _ := passing(smallestGroup, high, start, start/256, func(n int) bool { return holds(n, +1) })
-	if float64(high-low)*t.cost(high) > affordable {
+	low, _ := bound(high, +1)
+	low = max(smallestGroup, low-grain+1)
+	first, short, ok := failures(t, low, high, func(n int) bool { return holds(n, 0) })
+	if !ok || stopped != nil {
 		return sharesPlan{n: high, excess: high - low, found: true}, stopped
 	}
-	first := low
-	for first < high && !holds(first, 0) {
-		first++
-	}
-	n := high
-	for m, fails := high-1, math.MaxInt; m >= first; m-- {
-		switch {
-		case !holds(m, 0):
-			fails = m
-			if fails <= 2*first {
-				return sharesPlan{n: n, first: first, found: true}, stopped
-			}
-		case 2*m < fails:
-			n = m
+	// n is first, or follows a stretch that falls short; it will do when the next
+	// stretch lies beyond 2n.
+	n := first
+	for _, s := range short {
+		if s.to < n || s.from > 2*n {
+			continue
 		}
+		n = s.to + 1
 	}
-	return sharesPlan{n: n, first: first, found: true}, stopped
+	return sharesPlan{n: n, first: first, found: true}, nil
+}
+
+// stretch is a stretch of n that fall short.
+type stretch struct{ from, to int }
+
+// failures gives the first n from low to high that holds (high does), and the
+// stretches below high that fall short. ok is false where that costs too much.
+func failures(t sharesTest, low, high int, holds func(n int) bool) (first int, short []stretch, ok bool) {
+	runs := float64(high-low)*t.cost(high) > affordable
+	if runs && float64(high-low)/float64(t.run(low)-low+1)*t.cost(high) > affordable {
+		return 0, nil, false
+	}
+	first = high
+	var cost float64
+	for n, to := low, 0; n < high; n = to + 1 {
+		if cost += t.cost(high); cost > affordable {
+			return 0, nil, false
+		}
+		to = n
+		if runs {
+			to = min(t.run(n), high-1)
+		}
+		begins, ends := holds(n), true
+		if ends = begins; to > n {
+			ends = holds(to)
+		}
+		holding := stretch{n, to}
+		switch {
+		case !begins && !ends:
+			short = append(short, stretch{n, to})
+			continue
+		case !begins: // rises
+			from, _ := num.Smallest(n, to, n+(to-n)/2, holds)
+			short = append(short, stretch{n, from - 1})
+			holding.from = from
+		case !ends: // falls
+			from, _ := num.Smallest(n, to, n+(to-n)/2, func(n int) bool { return !holds(n) })
+			short = append(short, stretch{from, to})
+		}
+		first = min(first, holding.from)
+	}
+	return first, short, true
 }
 
 // shareTest is the test of one proportion by its exact binomial p-value.
@@ -83,30 +134,64 @@ type shareTest struct {
 
 func (s shareTest) largest() int { return largestPlan }
 
-// cost is that of half a dozen binomial tails.
+// cost is that of a few binomial tails.
 func (s shareTest) cost(int) float64 { return 500 }
 
 func (s shareTest) power(n, wider int) float64 {
 	m := float64(n)
-	each := oneTail(s.significance, s.direction)
-	spread := math.Sqrt(m * s.reference * (1 - s.reference))
-	reach := dist.Normal{}.UpperQuantile(each) * spread
-	step := int(spread / 32)
 	var total float64
 	if s.direction != below && (wider >= 0 || s.share > s.reference) {
-		x, _ := passing(0, n+1, clampPlan(m*s.reference+reach, 0, n+1), step, func(x int) bool {
-			return staysIn(binomialAtLeast(float64(x), m, s.reference), each)
-		})
-		total += binomialAtLeast(float64(x-wider), m, s.share)
+		total += binomialAtLeast(float64(s.fromAbove(n)-wider), m, s.share)
 	}
 	if s.direction != above && (wider >= 0 || s.share < s.reference) {
-		// Counted from above, as failures.
-		x, _ := passing(0, n+1, clampPlan(m*(1-s.reference)+reach, 0, n+1), step, func(x int) bool {
-			return staysIn(binomialAtMost(float64(n-x), m, s.reference), each)
-		})
-		total += binomialAtMost(float64(n-x+wider), m, s.share)
+		total += binomialAtMost(float64(s.fromBelow(n)+wider), m, s.share)
 	}
 	return math.Min(1, total)
+}
+
+// fromAbove is the smallest count that speaks for a larger share.
+func (s shareTest) fromAbove(n int) int {
+	return criticalCount(n, s.reference, oneTail(s.significance, s.direction), func(x int) float64 {
+		return binomialAtLeast(float64(x), float64(n), s.reference)
+	})
+}
+
+// fromBelow is the largest count that speaks for a smaller share, found from the
+// other side as a number of failures.
+func (s shareTest) fromBelow(n int) int {
+	return n - criticalCount(n, 1-s.reference, oneTail(s.significance, s.direction), func(x int) float64 {
+		return binomialAtMost(float64(n-x), float64(n), s.reference)
+	})
+}
+
+// criticalCount is the smallest count from 0 to n+1 whose tail is no more than
+// the significance; the search starts at its quantile by Cornish and Fisher.
+func criticalCount(n int, p, significance float64, tail func(x int) float64) int {
+	m, z := float64(n), dist.Normal{}.UpperQuantile(significance)
+	guess := m*p + z*math.Sqrt(m*p*(1-p)) + (float64(z*z)-1)*(1-2*p)/6 + 0.5
+	x, _ := num.Smallest(0, n+1, clampPlan(math.Ceil(guess), 0, n+1), func(x int) bool { return staysIn(tail(x), significance) })
+	return x
+}
+
+// run is the last n with the same region, told in counts of what is rare. With
+// such a region one tail only rises and the other only falls, and the one on the
+// side of the truth is by far the larger.
+func (s shareTest) run(n int) int {
+	const rare = 0.05
+	region := func(n int) (upper, lower int) { return s.fromAbove(n), s.fromBelow(n) }
+	switch {
+	case s.reference < rare:
+	case s.reference > 1-rare: // failures
+		region = func(n int) (upper, lower int) { return n - s.fromAbove(n), n - s.fromBelow(n) }
+	default:
+		return n
+	}
+	upper, lower := region(n)
+	next, _ := num.Smallest(n, s.largest(), n+1, func(n int) bool {
+		u, l := region(n)
+		return u != upper || l != lower || n == s.largest()
+	})
+	return next - 1
 }
 
 // oneTail is the significance of one rejection tail.
@@ -134,6 +219,14 @@ func (s sharesPairTest) size(n int) int {
 
 func (s sharesPairTest) largest() int { return int(largestPlan / math.Max(1, s.ratio)) }
 
+// run is a stretch over which no count is expected to change by more than a
+// hundredth, where both groups' counts are rare: the power, which changes with
+// the expected counts, rises or falls all the way.
+func (s sharesPairTest) run(n int) int {
+	rarity := math.Max(math.Min(s.first, 1-s.first), math.Min(s.second, 1-s.second)*math.Max(1, s.ratio))
+	return n + int(math.Min(0.01/rarity, largestPlan))
+}
+
 func (s sharesPairTest) cost(n int) float64 {
 	spread := func(n int, p float64) float64 { return 17 * math.Sqrt(float64(n)*p*(1-p)) }
 	return spread(n, s.first) + spread(s.size(n), s.second)
@@ -150,8 +243,16 @@ func (s sharesPairTest) power(n, wider int) float64 {
 	}
 	one, two := binomialMasses(n, s.first), binomialMasses(m, s.second)
 	cumulated := two.cumulated()
+	// The pooled score z passes the critical value when the squares do: with the
+	// counts x and y, z² = (xm-yn)²N/(nm(x+y)(N-x-y)), N = n+m. The product of two
+	// counts up to largestPlan is exact in 64 bits. No count passes where the pooled
+	// share is 0 or 1.
 	crit := dist.Normal{}.UpperQuantile(oneTail(s.significance, s.direction) * (1 + planSlack))
-	z := func(x, y int) float64 { return pooledScoreZ(float64(x), float64(n), float64(y), float64(m)) }
+	scale := float64(crit*crit) * float64(n) * float64(m) / float64(n+m)
+	beyond := func(x, y int, sign float64) bool {
+		d := sign * float64(int64(x)*int64(m)-int64(y)*int64(n))
+		return d > 0 && d*d >= scale*float64(x+y)*float64(n-x+m-y)
+	}
 	upper := s.direction != below && (wider >= 0 || s.first > s.second)
 	lower := s.direction != above && (wider >= 0 || s.first < s.second)
 	top := two.from + len(two.mass) - 1
@@ -163,13 +264,13 @@ func (s sharesPairTest) power(n, wider int) float64 {
 		x := one.from + i
 		var tail float64
 		if upper {
-			for last < top && z(x, last+1) >= crit {
+			for last < top && beyond(x, last+1, 1) {
 				last++
 			}
 			tail += cumulated.atMost(last + wider)
 		}
 		if lower {
-			for next <= top && z(x, next) > -crit {
+			for next <= top && !beyond(x, next, -1) {
 				next++
 			}
 			tail += cumulated.atLeast(next - wider)
@@ -193,30 +294,29 @@ const negligibleMass = 1e-20
 func binomialMasses(n int, p float64) masses {
 	q := 1 - p
 	mode := min(int(float64(n+1)*p), n)
-	var down, up []float64
+	reach := int(10*math.Sqrt(float64(n)*p*q)) + 50
+	down := make([]float64, 0, min(reach, mode))
 	for k, x := mode, 1.0; k > 0; k-- {
-		x *= float64(k) / float64(n-k+1) * (q / p)
-		if x < negligibleMass {
+		if x *= float64(k) * q / (float64(n-k+1) * p); x < negligibleMass {
 			break
 		}
 		down = append(down, x)
 	}
+	all := masses{from: mode - len(down), mass: make([]float64, len(down), len(down)+1+min(reach, n-mode))}
+	var sum float64
+	for i, x := range down {
+		all.mass[len(down)-1-i] = x
+	}
+	for _, x := range all.mass {
+		sum += x
+	}
+	all.mass = append(all.mass, 1)
+	sum++
 	for k, x := mode, 1.0; k < n; k++ {
-		x *= float64(n-k) / float64(k+1) * (p / q)
-		if x < negligibleMass {
+		if x *= float64(n-k) * p / (float64(k+1) * q); x < negligibleMass {
 			break
 		}
-		up = append(up, x)
-	}
-	all := masses{from: mode - len(down), mass: make([]float64, 0, len(down)+1+len(up))}
-	var sum float64
-	for i := len(down) - 1; i >= 0; i-- {
-		all.mass = append(all.mass, down[i])
-		sum += down[i]
-	}
-	all.mass = append(append(all.mass, 1), up...)
-	sum++
-	for _, x := range up {
+		all.mass = append(all.mass, x)
 		sum += x
 	}
 	for i := range all.mass {

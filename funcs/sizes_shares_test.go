@@ -99,3 +99,41 @@ func compare(t *testing.T, test sharesTest, wanted float64, limit int) int {
 	}
 	return 1
 }
+
+// dear makes a power so dear that the runs of n are used.
+type dear struct {
+	sharesTest
+	powers float64 // how many are affordable
+}
+
+func (d dear) cost(int) float64 { return affordable / d.powers }
+
+func TestPlansOfRareCountsAreTheSmallestByTheDefinition(t *testing.T) {
+	random := rand.New(rand.NewPCG(7, 3))
+	compared := 0
+	for range 60 {
+		reference := 0.003 + 0.01*random.Float64()
+		share := reference * math.Exp(2.5*(random.Float64()-0.3))
+		if random.IntN(2) == 0 {
+			reference, share = 1-reference, 1-share
+		}
+		dir, significance, wanted := design(random, share-reference)
+		if math.Abs(share/reference-1) > 0.5 || math.Abs((1-share)/(1-reference)-1) > 0.5 {
+			compared += compare(t, dear{shareTest{share, reference, significance, dir}, 300}, wanted, 4000)
+		}
+	}
+	for range 14 {
+		first := 0.0001 + 0.0001*random.Float64()
+		second := first * math.Exp(1.7+0.5*random.Float64())
+		if random.IntN(2) == 0 {
+			first, second = 1-first, 1-second
+		}
+		dir, significance, wanted := design(random, first-second)
+		ratio := []float64{1, 1, 2, 0.5}[random.IntN(4)]
+		test := sharesPairTest{first: first, second: second, significance: significance, direction: dir, ratio: ratio}
+		compared += compare(t, dear{test, 1000}, wanted, 12000)
+	}
+	if compared < 30 {
+		t.Errorf("only %d designs compared", compared)
+	}
+}
