@@ -7,7 +7,8 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-var differences = []*Function{differenceInterval, ratioInterval, shiftInterval, equivalenceTest, analysisOfVariance, pairwiseDifferences, adjustedPValues}
+var differences = []*Function{differenceInterval, ratioInterval, shiftInterval, equivalenceTest, analysisOfVariance, pairwiseDifferences,
+	differencesFromControl, adjustedPValues}
 
 // twoMeansWays are the ways of giving two groups of which the means are compared.
 var twoMeansWays = OneOf{

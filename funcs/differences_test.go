@@ -296,6 +296,8 @@ func TestTwoMeansRefusalsAndErrors(t *testing.T) {
 			t.Errorf("%s: one sample without spread: %v", name, out.Findings)
 		}
 	}
+	// A ratio of 0 whose numerator does not vary has no standard error.
+	refusedFor(t, answer(t, "ratio-interval", twoArguments(summary{5, 0, 0}, summary{5, 9, 1})), "no-spread")
 	for _, c := range []struct {
 		name      string
 		arguments map[string]any

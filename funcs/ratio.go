@@ -104,13 +104,13 @@ func newFieller(first, second summary, m twoMeans, variances string) fieller {
 // where t·secondSE reaches 1, where the interval is not bounded.
 func (f fieller) limits(confidence float64, direction string, law dist.Student) (limits, bool) {
 	t := law.UpperQuantile(tail(confidence, direction))
-	t1, t2 := math.Abs(t)*f.firstSE, math.Abs(t)*f.secondSE
+	t1, t2 := float64(math.Abs(t)*f.firstSE), float64(math.Abs(t)*f.secondSE)
 	if !(t2 < 1) {
 		return limits{}, false
 	}
 	// a·R² - 2·ratio·R + c = 0; the discriminant is formed without cancellation.
 	a, c := float64((1-t2)*(1+t2)), float64((f.ratio-t1)*(f.ratio+t1))
-	root := math.Sqrt(float64(t2*t2)*float64(f.ratio*f.ratio) + float64(t1*t1)*a)
+	root := math.Sqrt(float64(float64(t2*t2)*float64(f.ratio*f.ratio)) + float64(float64(t1*t1)*a))
 	lower, upper := -root/a, root/a
 	switch {
 	case f.ratio > 0:

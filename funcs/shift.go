@@ -85,7 +85,7 @@ var shiftInterval = &Function{
 }
 
 // roundDown cuts a confidence to 4 decimals, so that it never says too much.
-func roundDown(level float64) float64 { return math.Floor(level*1e4+1e-6) / 1e4 }
+func roundDown(level float64) float64 { return math.Floor(float64(level*1e4)+1e-6) / 1e4 }
 
 // rankLaw is a law of u where only chance separates the samples: P(U <= u) and
 // P(U >= u).
@@ -103,7 +103,7 @@ func lawOfRanks(ranks []float64, ties []int, n1 int) rankLaw {
 	tied := 0.0
 	for _, t := range ties {
 		t := float64(t)
-		tied += t * (t - 1) * (t + 1)
+		tied += float64(t * (t - 1) * (t + 1))
 	}
 	centre, sd := pairs/2, math.Sqrt(pairs/12*(n+1-tied/(n*(n-1))))
 	return rankLaw{
