@@ -11,6 +11,8 @@ var (
 	// ErrNotWorkbook is a file that is something other than an Office Open
 	// XML workbook.
 	ErrNotWorkbook = errors.New("not a workbook")
+	// ErrUnreadable is a file that the system does not let be opened or read.
+	ErrUnreadable = errors.New("file cannot be read")
 	// ErrEncrypted is a workbook that opens with a password only.
 	ErrEncrypted = errors.New("workbook is encrypted")
 	// ErrDamaged is a workbook whose bytes contradict themselves or the format.

@@ -92,7 +92,7 @@ type Calculation struct {
 func Open(path string, limits Limits) (*Book, error) {
 	f, err := os.Open(path)
 	if err != nil {
-		return nil, &Error{File: path, Kind: ErrNotWorkbook, Reason: "the file cannot be opened: " + plainCause(err), Advice: "check its name and that you may read it", Err: err}
+		return nil, &Error{File: path, Kind: ErrUnreadable, Reason: "the file cannot be opened: " + plainCause(err), Advice: "check its name and that you may read it", Err: err}
 	}
 	info, err := f.Stat()
 	if err == nil && !info.Mode().IsRegular() {

@@ -193,6 +193,10 @@ func TestOpenRefuses(t *testing.T) {
 		{"a sheet without a name", workbookWith(`name="Trips"`, ``).bytes(t), ErrDamaged, fmt.Sprintf("part xl/workbook.xml: sheet number 1 has no name (byte %d)", strings.Index(workbookXML, "<sheet "))},
 		{"a name for a sheet that is not there", workbookWith(`</sheets>`, `</sheets><definedNames><definedName name="n" localSheetId="1">1</definedName></definedNames>`).bytes(t), ErrDamaged, "part xl/workbook.xml: the defined name n is for sheet number 2 of 1"},
 		{"two relationships of one id", small.with("xl/_rels/workbook.xml.rels", strings.ReplaceAll(workbookRels, "rId2", "rId1")).bytes(t), ErrDamaged, fmt.Sprintf(`part xl/_rels/workbook.xml.rels: two relationships have the id "rId1" (byte %d)`, strings.LastIndex(workbookRels, "<Relationship "))},
+		{"a table of a range that is no number", table(`totalsRowCount="1"`, `totalsRowCount="x"`).bytes(t), ErrDamaged, `part xl/tables/table1.xml: sheet Trips: the attribute totalsRowCount is "x", not a whole number (byte 56)`},
+		{"a defined name that ends early", workbookWith(`</sheets></workbook>`, `</sheets><definedNames><definedName name="n">A`).bytes(t), ErrDamaged, fmt.Sprintf("part xl/workbook.xml: the XML ends early, after %d bytes", len(workbookXML)-len("</workbook>")+len(`<definedNames><definedName name="n">A`))},
+		{"a sheet's name of a wrong reference", workbookWith(`"Trips"`, `"&x;"`).bytes(t), ErrDamaged, fmt.Sprintf("part xl/workbook.xml: the reference &x; means nothing in a workbook (byte %d)", strings.Index(workbookXML, "<sheet "))},
+		{"a relationship of a wrong reference", small.with("_rels/.rels", strings.Replace(packageRels, "xl/workbook.xml", "&x;", 1)).bytes(t), ErrDamaged, fmt.Sprintf("part _rels/.rels: the reference &x; means nothing in a workbook (byte %d)", strings.Index(packageRels, "<Relationship "))},
 		{"no table part", table("x", "x").without("xl/tables/table1.xml").bytes(t), ErrDamaged, "sheet Trips: the file has no part for a table of this sheet (its relationship leads to xl/tables/table1.xml)"},
 		{"a table of no range", table("A1:B5", "A1:").bytes(t), ErrDamaged, `part xl/tables/table1.xml: sheet Trips: the table trips has the range "A1:" (byte 56)`},
 		{"a table with too few columns", table("A1:B5", "A1:C5").bytes(t), ErrDamaged, "part xl/tables/table1.xml: sheet Trips: the table trips names 2 columns, its range A1:C5 has 3"},
@@ -313,12 +317,46 @@ func TestOpenLimits(t *testing.T) {
 func TestOpenNamesMissingFiles(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "none.xlsx")
 	_, err := Open(path, Limits{})
-	if !errors.Is(err, os.ErrNotExist) || !errors.Is(err, ErrNotWorkbook) || !strings.HasPrefix(err.Error(), path+": the file cannot be opened: ") {
+	if !errors.Is(err, os.ErrNotExist) || !errors.Is(err, ErrUnreadable) || !strings.HasPrefix(err.Error(), path+": the file cannot be opened: ") {
 		t.Errorf("error %v", err)
 	}
 	_, err = Open(filepath.Dir(path), Limits{})
 	if !errors.Is(err, ErrNotWorkbook) {
 		t.Errorf("error %v for a folder", err)
+	}
+}
+
+// failing is a file that cannot be read from some place on, once it is open.
+type failing struct {
+	*bytes.Reader
+	from int64
+	on   bool
+}
+
+var errDisk = errors.New("disk failure")
+
+func (f *failing) ReadAt(b []byte, at int64) (int, error) {
+	if f.on && at+int64(len(b)) > f.from {
+		return 0, errDisk
+	}
+	return f.Reader.ReadAt(b, at)
+}
+
+func TestScanTellsAFailingDiskFromDamage(t *testing.T) {
+	data := smallBook(rows(`<row r="1"><c r="A1"><v>1</v></c></row>`)).bytes(t)
+	name := int64(bytes.Index(data, []byte("xl/worksheets/sheet1.xml")))
+	for _, from := range []int64{name - 10, name + 60} { // in the part's header, in its bytes
+		disk := &failing{Reader: bytes.NewReader(data), from: from}
+		b, err := OpenReaderAt("Trips.xlsx", disk, int64(len(data)), Limits{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		disk.on = true
+		_, err = b.Scan(0, ScanOptions{}, nil)
+		wantError(t, err, ErrUnreadable, "Trips.xlsx: part xl/worksheets/sheet1.xml: sheet Trips: the part cannot be read: disk failure; check the disk or the connection, then try again")
+		if !errors.Is(err, errDisk) {
+			t.Errorf("error %v does not give its cause", err)
+		}
 	}
 }
 

@@ -3,6 +3,7 @@ package ooxml
 import (
 	"archive/zip"
 	"bytes"
+	"cmp"
 	"errors"
 	"hash/crc32"
 	"io"
@@ -117,8 +118,8 @@ func (b *Book) write(w io.Writer, j *job) error {
 	for i, f := range b.zip.File {
 		rewrite := j.rewrite[i]
 		if rewrite == nil {
-			if err := out.Copy(f); err != nil {
-				return b.copyError(f.Name, err)
+			if err := b.copyEntry(out, f); err != nil {
+				return err
 			}
 			seal.add(f.Name, f.CRC32, f.UncompressedSize64)
 			continue
@@ -155,20 +156,49 @@ func (b *Book) write(w io.Writer, j *job) error {
 	return out.Close()
 }
 
-// copyError tells a damaged source from a target that cannot be written.
-func (b *Book) copyError(part string, err error) error {
-	if !errors.Is(err, zip.ErrFormat) && !errors.Is(err, io.ErrUnexpectedEOF) {
+// copyEntry copies an entry in its compressed form. Its errors tell a source that
+// is damaged or cannot be read from a target that cannot be written.
+func (b *Book) copyEntry(out *zip.Writer, f *zip.File) error {
+	raw, err := f.OpenRaw()
+	if err != nil {
+		return place(sourceError(err), b.file, f.Name, "")
+	}
+	header := f.FileHeader
+	w, err := out.CreateRaw(&header)
+	if err != nil {
 		return err
 	}
+	n, err := io.Copy(w, sourceReader{raw})
+	if err == nil && uint64(n) != f.CompressedSize64 {
+		err = sourceError(io.ErrUnexpectedEOF)
+	}
+	return place(err, b.file, f.Name, "")
+}
+
+type sourceReader struct{ io.Reader }
+
+func (s sourceReader) Read(b []byte) (int, error) {
+	n, err := s.Reader.Read(b)
+	if err != nil && err != io.EOF {
+		err = sourceError(err)
+	}
+	return n, err
+}
+
+// sourceError says what it means that an entry cannot be found or read.
+func sourceError(err error) *Error {
+	if !errors.Is(err, zip.ErrFormat) && !errors.Is(err, io.EOF) && !errors.Is(err, io.ErrUnexpectedEOF) {
+		return unreadable(err)
+	}
 	e := damaged("the part does not lie where the file's directory says")
-	e.File, e.Part, e.Err = b.file, part, err
+	e.Err = err
 	return e
 }
 
 // rewriteData writes a part that is in memory with patches, in the encoding
 // that it had.
 func (j *job) rewriteData(entry int, data []byte, order byteOrder, patches []patch) {
-	slices.SortStableFunc(patches, func(a, b patch) int { return int(a.at - b.at) })
+	slices.SortStableFunc(patches, func(a, b patch) int { return cmp.Compare(a.at, b.at) })
 	j.rewrite[entry] = func(w io.Writer) error {
 		if order != nil {
 			w = &utf16Writer{dst: w, order: order}

@@ -107,9 +107,7 @@ func (c *container) open(entry int) (io.Reader, error) {
 	}
 	raw, err := f.OpenRaw()
 	if err != nil {
-		e := damaged("the part does not start where the file's directory says")
-		e.Err = err
-		return fail(e)
+		return fail(sourceError(err))
 	}
 	p := &partReader{size: size, sum: f.CRC32, hash: crc32.NewIEEE()}
 	switch f.Method {
@@ -196,10 +194,14 @@ func (p *partReader) Read(b []byte) (int, error) {
 			e.Err = cause
 			err = e
 		} else {
-			err = &Error{Kind: ErrDamaged, Reason: "the part cannot be read: " + cause.Error(), Advice: "check the disk or the connection, then try again", Err: cause}
+			err = unreadable(cause)
 		}
 		n = 0
 	}
 	p.err = err
 	return n, err
+}
+
+func unreadable(cause error) *Error {
+	return &Error{Kind: ErrUnreadable, Reason: "the part cannot be read: " + plainCause(cause), Advice: "check the disk or the connection, then try again", Err: cause}
 }
