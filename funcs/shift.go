@@ -43,7 +43,12 @@ var shiftInterval = &Function{
 			return c.noSpreadInTwo()
 		}
 		conf, dir, ref := confidence.Of(c), direction.Of(c), reference.Of(c)
-		k, beyond, err := c.shiftRank(n1, n2)
+		ranks, ties := shiftedRanks(x, y, ref)
+		law := lawOfRanks(ranks, ties, n1)
+		if err := c.cancelled(); err != nil {
+			return err
+		}
+		k, beyond, err := c.shiftRank(n1, n2, law, len(ties) > 0)
 		if err != nil {
 			return err
 		}
@@ -62,17 +67,18 @@ var shiftInterval = &Function{
 		if err := c.cancelled(); err != nil {
 			return err
 		}
-		u, p := rankTest(x, y, ref, dir)
+		u := num.Sum(ranks[:n1]) - float64(n1)*float64(n1+1)/2
+		p := law.pValue(u, dir)
 		c.set("shift", shift)
 		c.setLimits(l)
 		c.set("attained-confidence", attained)
 		c.set("u", u)
 		c.set("p-value", p)
-		law := "exact law of the rank sum"
+		name := "exact law of the rank sum"
 		if pairs > dist.MaxRankPairs {
-			law = "normal law of the rank sum, with correction for ties and continuity"
+			name = "normal law of the rank sum, with correction for ties and continuity"
 		}
-		c.method = fmt.Sprintf("Hodges-Lehmann estimate with limits from the %s, attained confidence %s", law, percent(roundDown(attained)))
+		c.method = fmt.Sprintf("Hodges-Lehmann estimate with limits from the %s, attained confidence %s", name, percent(roundDown(attained)))
 		c.say(statement{what: "shift (first - second)", estimate: shift, limits: l, unit: SameUnit,
 			counts: fmt.Sprintf("n = %d and %d", n1, n2)})
 		c.sayTest(ref, SameUnit, "u", u, p)
@@ -114,13 +120,16 @@ func lawOfRanks(ranks []float64, ties []int, n1 int) rankLaw {
 
 // shiftRank is the largest k with P(U <= k-1) at most the probability allowed
 // beyond a limit, for untied values, and that probability: the k-th smallest and
-// largest differences are the limits (Lehmann 1963).
-func (c *Call) shiftRank(n1, n2 int) (k int, beyond float64, err error) {
-	ranks := make([]float64, n1+n2)
-	for i := range ranks {
-		ranks[i] = float64(i + 1)
+// largest differences are the limits (Lehmann 1963). The law handed in serves
+// where its values are not tied.
+func (c *Call) shiftRank(n1, n2 int, law rankLaw, tied bool) (k int, beyond float64, err error) {
+	if tied {
+		ranks := make([]float64, n1+n2)
+		for i := range ranks {
+			ranks[i] = float64(i + 1)
+		}
+		law = lawOfRanks(ranks, nil, n1)
 	}
-	law := lawOfRanks(ranks, nil, n1)
 	// 1 - 0.8 falls just short of 0.2: probabilities agree within 1e-12.
 	allowed := tail(confidence.Of(c), direction.Of(c)) * (1 + 1e-12)
 	if least := law.atMost(0); least > allowed {
@@ -142,21 +151,24 @@ func (c *Call) shiftRank(n1, n2 int) (k int, beyond float64, err error) {
 	return low, law.atMost(float64(low - 1)), nil
 }
 
-// rankTest is u against a reference shift, and its p-value (Mann & Whitney 1947).
-func rankTest(x, y []float64, reference float64, direction string) (u, p float64) {
+// shiftedRanks are the pooled ranks of both samples, the first less the
+// reference, and the sizes of the groups of ties.
+func shiftedRanks(x, y []float64, reference float64) (ranks []float64, ties []int) {
 	pooled := make([]float64, 0, len(x)+len(y))
 	for _, v := range x {
 		pooled = append(pooled, v-reference)
 	}
-	ranks, ties := num.Ranks(append(pooled, y...))
-	n1 := float64(len(x))
-	u = num.Sum(ranks[:len(x)]) - n1*(n1+1)/2
-	law := lawOfRanks(ranks, ties, len(x))
+	return num.Ranks(append(pooled, y...))
+}
+
+// pValue is the chance of u at least as far in the direction claimed (Mann &
+// Whitney 1947).
+func (l rankLaw) pValue(u float64, direction string) float64 {
 	switch direction {
 	case above:
-		return u, law.atLeast(u)
+		return l.atLeast(u)
 	case below:
-		return u, law.atMost(u)
+		return l.atMost(u)
 	}
-	return u, math.Min(1, 2*math.Min(law.atMost(u), law.atLeast(u)))
+	return math.Min(1, 2*math.Min(l.atMost(u), l.atLeast(u)))
 }
