@@ -7,9 +7,8 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-var averages = []*Function{meanInterval, pairedInterval, geometricMeanInterval, lognormalMeanInterval, medianInterval,
-	toleranceInterval, trimmedMeanInterval,
-	bootstrapInterval, stratifiedInterval, ratioOfSumsInterval}
+var averages = []*Function{meanInterval, pairedInterval, predictionInterval, toleranceInterval, geometricMeanInterval, lognormalMeanInterval,
+	medianInterval, trimmedMeanInterval, bootstrapInterval, stratifiedInterval, ratioOfSumsInterval}
 
 var knownSD = number("known-sd", "the standard deviation, where it is known beforehand and not estimated", positive, SameUnit).optional()
 
@@ -77,7 +76,7 @@ var meanInterval = &Function{
 		se := sd / math.Sqrt(float64(s.n))
 		whole := finite && s.n == size
 		if finite {
-			se *= math.Sqrt(1 - float64(s.n)/float64(size))
+			se *= finiteFactor(s.n, size)
 		}
 		if se == 0 && !whole {
 			return c.noSpread(c.firstGiven("sample", "sd"))
@@ -89,21 +88,24 @@ var meanInterval = &Function{
 		c.set("half-width", l.halfWidth(s.mean))
 		c.set("standard-error", se)
 		c.set("n", s.n)
-		if c.has("sample") || c.has("sd") {
+		if s.n > 1 && (c.has("sample") || c.has("sd")) {
 			c.set("sd", s.sd)
 		}
-		df := ""
-		if !isKnown {
+		if isKnown {
+			c.method = "z interval with the known sd " + brief(known)
+		} else {
 			c.set("df", float64(s.n-1))
-			df = fmt.Sprintf(" with %s of freedom, sd with divisor n - 1", degrees(float64(s.n-1)))
+			c.method = fmt.Sprintf("t interval with %s of freedom, sd with divisor n - 1", degrees(float64(s.n-1)))
 		}
 		if finite {
 			c.setTotals(float64(size), s.mean, l)
-			df += fmt.Sprintf(", finite population of %d", size)
+			c.method += fmt.Sprintf(", finite population of %d", size)
 		}
-		c.method = statistic + " interval" + df
 		c.say(statement{"mean", s.mean, l, SameUnit, nText(s.n)})
-		if ref, ok := reference.Given(c); ok && !whole {
+		if whole { // nothing is left to be unsure about
+			return nil
+		}
+		if ref, ok := reference.Given(c); ok {
 			value := (s.mean - ref) / se
 			p := pValue(dir, value, law)
 			c.set(statistic, value)
@@ -124,6 +126,10 @@ func (c *Call) meanSummary() (summary, error) {
 	c.count(s.n)
 	return s, nil
 }
+
+// finiteFactor is √(1 - n/N), which sampling without replacement puts on a
+// standard error (Cochran 1977, equation 2.20).
+func finiteFactor(n, size int) float64 { return math.Sqrt(float64(size-n) / float64(size)) }
 
 // setTotals gives a mean and its limits times the population's size.
 func (c *Call) setTotals(size, mean float64, l limits) {
@@ -205,6 +211,6 @@ var pairedInterval = &Function{
 		if r, ok := correlation(sample.Of(c), secondSample.Of(c)); ok {
 			c.set("correlation", r)
 		}
-		return c.checkValues("sample", differences, s)
+		return c.checkDerived("sample", "The list of differences", differences, s)
 	},
 }

@@ -24,7 +24,7 @@ var bootstrapInterval = &Function{
 		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
 		{"bias", Number, SameUnit, "mean of the resampled quantities less the estimate"},
 	},
-	Findings:    []FindingKind{fewValuesKind, noSpreadKind, neighboursKind, heavyTailKind, tooFewResamplesKind},
+	Findings:    []FindingKind{fewValuesKind, noSpreadKind, neighboursKind, heavyTailKind, tooFewResamplesKind, tooManyDrawsKind},
 	Assumptions: []string{"independent values of one population", "a sample large enough to show what the population is like"},
 	Citations:   []string{"Efron 1987 (BCa)"},
 	Example: Example{
@@ -44,24 +44,27 @@ var bootstrapInterval = &Function{
 		case s.sd == 0:
 			return c.noSpread("sample")
 		}
-		quantity, what, err := c.bootstrapQuantity(s.n)
+		q, err := c.bootstrapQuantity(s.n)
 		if err != nil {
 			return err
 		}
-		estimate := quantity(slices.Clone(values))
+		estimate := q.of(slices.Clone(values))
 		replicates := make([]float64, resamplesInput.Of(c))
+		if err := tooManyDraws(s.n, len(replicates)); err != nil {
+			return err
+		}
 		err = resample(c.ctx, seedInput.Of(c), len(replicates), func() func(int, *num.Stream) {
 			drawn := make([]float64, s.n)
 			return func(i int, stream *num.Stream) {
 				stream.Resample(drawn, values)
-				replicates[i] = quantity(drawn)
+				replicates[i] = q.of(drawn)
 			}
 		})
 		if err != nil {
 			return err
 		}
 		bias := num.Mean(replicates) - estimate
-		b, err := newBCa(estimate, replicates, acceleration(values, quantity))
+		b, err := newBCa(estimate, replicates, acceleration(q.leavingOneOut(num.Sorted(values))))
 		if err != nil {
 			return err
 		}
@@ -76,9 +79,9 @@ var bootstrapInterval = &Function{
 		c.setLimits(l)
 		c.set("bias", bias)
 		c.method = fmt.Sprintf("BCa bootstrap, %d resamples, seed %d", len(replicates), seedInput.Of(c))
-		c.say(statement{what, estimate, l, SameUnit, nText(s.n)})
+		c.say(statement{q.name, estimate, l, SameUnit, nText(s.n)})
 		if checks.Of(c) {
-			c.checkFew("sample", "The sample", s.n)
+			c.checkFewOfAnyShape(s.n)
 			c.checkNeighbours("sample", "The sample", sample.Of(c), s)
 			c.checkTail("sample", "The sample", values)
 		}
@@ -86,41 +89,87 @@ var bootstrapInterval = &Function{
 	},
 }
 
-// bootstrapQuantity gives the function that computes the quantity asked for
-// from values that it may put in another order, and the quantity in words.
-func (c *Call) bootstrapQuantity(n int) (func([]float64) float64, string, error) {
+// bootstrapQuantity is what is resampled.
+type bootstrapQuantity struct {
+	name string
+	// of computes it from values that it may put in another order.
+	of func([]float64) float64
+	// leavingOneOut gives it for sorted values with each of them left out in turn.
+	leavingOneOut func(sorted []float64) []float64
+}
+
+// bootstrapQuantity gives the quantity asked for.
+func (c *Call) bootstrapQuantity(n int) (bootstrapQuantity, error) {
 	switch bootstrapOf.Of(c) {
 	case "median":
-		return func(v []float64) float64 { slices.Sort(v); return num.Median(v) }, "median", nil
+		return bootstrapQuantity{"median", func(v []float64) float64 { slices.Sort(v); return num.Median(v) }, mediansLeavingOneOut}, nil
 	case "sd":
-		return func(v []float64) float64 { return summarise(v).sd }, "standard deviation", nil
+		return bootstrapQuantity{"standard deviation", func(v []float64) float64 { return summarise(v).sd }, sdsLeavingOneOut}, nil
 	case "trimmed-mean":
 		share := trimmedEachEnd.Of(c)
-		// The jackknife leaves one value out, so one more must remain.
-		if n-1-2*wholeDown(float64(share*float64(n-1))) < 1 {
-			return nil, "", refuse("few-values", "sample", "No value is left after trimming; measure more or trim less.")
+		if n-1-2*trimmedOf(n-1, share) < 1 {
+			return bootstrapQuantity{}, refuse("few-values", "sample", "No value is left after trimming; measure more or trim less.")
 		}
-		return func(v []float64) float64 {
+		of := func(v []float64) float64 {
 			slices.Sort(v)
-			g := wholeDown(float64(share * float64(len(v))))
+			g := trimmedOf(len(v), share)
 			return num.Mean(v[g : len(v)-g])
-		}, "trimmed mean", nil
+		}
+		return bootstrapQuantity{"trimmed mean", of, func(sorted []float64) []float64 { return trimmedLeavingOneOut(sorted, trimmedOf(len(sorted)-1, share)) }}, nil
 	}
-	return num.Mean, "mean", nil
+	return bootstrapQuantity{"mean", num.Mean, func(sorted []float64) []float64 { return trimmedLeavingOneOut(sorted, 0) }}, nil
+}
+
+func mediansLeavingOneOut(sorted []float64) []float64 {
+	out := make([]float64, len(sorted))
+	for i := range sorted {
+		at := func(k int) float64 { // of the values left
+			if k >= i {
+				k++
+			}
+			return sorted[k]
+		}
+		m := len(sorted) - 1
+		out[i] = num.Median([]float64{at((m - 1) / 2), at(m / 2)})
+	}
+	return out
+}
+
+// sdsLeavingOneOut takes from the sum of squares n/(n-1) times the square of the
+// deviation of the value left out.
+func sdsLeavingOneOut(sorted []float64) []float64 {
+	m, out := num.Moments(sorted), make([]float64, len(sorted))
+	n := float64(m.N)
+	for i, x := range sorted {
+		d := (x - m.Mean) - m.MeanLow
+		out[i] = math.Sqrt(math.Max(0, m.SumSquares-float64(d*d)*n/(n-1)) / (n - 2))
+	}
+	return out
+}
+
+// trimmedLeavingOneOut are the means of the values left without g at each end.
+// They come less the mean of all, which keeps the digits of small differences.
+func trimmedLeavingOneOut(sorted []float64, g int) []float64 {
+	n, out := len(sorted), make([]float64, len(sorted))
+	m := num.Moments(sorted)
+	d := make([]float64, n)
+	for i, x := range sorted {
+		d[i] = (x - m.Mean) - m.MeanLow
+	}
+	// Of the n-1 left, those kept are g to n-2-g, and so in sorted order g to n-1-g
+	// without the one left out, or without the end on its side.
+	kept := num.Sum(d[g : n-g])
+	for i := range d {
+		out[i] = (kept - d[min(max(i, g), n-1-g)]) / float64(n-1-2*g)
+	}
+	return out
 }
 
 // acceleration is Σd³/(6(Σd²)^1.5) over the jackknife, d the mean of the
 // leave-one-out quantities less each; 0 where they all agree (Efron 1987,
 // equation 7.3; Efron & Tibshirani 1993, equation 14.15).
-func acceleration(values []float64, quantity func([]float64) float64) float64 {
-	left := make([]float64, len(values))
-	scratch := make([]float64, len(values)-1)
-	for i := range values {
-		copy(scratch, values[:i])
-		copy(scratch[i:], values[i+1:])
-		left[i] = quantity(scratch)
-	}
-	m := num.Moments(left)
+func acceleration(leavingOneOut []float64) float64 {
+	m := num.Moments(leavingOneOut)
 	if m.SumSquares == 0 {
 		return 0
 	}

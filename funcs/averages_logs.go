@@ -18,7 +18,7 @@ func (c *Call) logarithms(in In[[]float64]) ([]float64, summary, error) {
 	for i, x := range values {
 		if x <= 0 {
 			return nil, summary{}, &refusal{Finding{Code: "not-positive", Severity: Refused, Input: in.Name, Cells: c.address(in.Name, i),
-				Message: fmt.Sprintf("Value %d of the %s is %s, and only positive values have a logarithm; use mean-interval or median-interval, "+
+				Message: fmt.Sprintf("Value %d of %s is %s, and only positive values have a logarithm; use mean-interval or median-interval, "+
 					"or leave such rows out by a condition.", i+1, in.Name, shortest(x))}}
 		}
 		logs[i] = num.Log(x)
@@ -78,7 +78,7 @@ var geometricMeanInterval = &Function{
 		c.set("df", law.DF)
 		c.method = fmt.Sprintf("t interval of the logarithms with %s of freedom, sd with divisor n - 1", degrees(law.DF))
 		c.say(statement{"geometric mean", estimate, l, SameUnit, nText(s.n)})
-		return c.checkValues("sample", logs, s)
+		return c.checkDerived("sample", "The list of logarithms", logs, s)
 	},
 }
 
@@ -119,6 +119,6 @@ var lognormalMeanInterval = &Function{
 		c.set("n", s.n)
 		c.method = fmt.Sprintf("modified Cox interval with the t quantile of %s of freedom, sd of the logarithms with divisor n - 1", degrees(law.DF))
 		c.say(statement{"mean of a lognormal population", estimate, l, SameUnit, nText(s.n)})
-		return c.checkValues("sample", logs, s)
+		return c.checkDerived("sample", "The list of logarithms", logs, s)
 	},
 }

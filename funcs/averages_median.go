@@ -36,8 +36,8 @@ var medianInterval = &Function{
 		conf, dir := confidence.Of(c), direction.Of(c)
 		outside := tail(conf, dir)
 		law := dist.Binomial{N: n, P: 0.5}
-		k := 0 // the largest with P(X <= k-1) <= outside
-		for k < n && law.CDF(k) <= outside {
+		k := law.Quantile(outside) // the largest with P(X <= k-1) <= outside
+		for staysIn(law.CDF(k), outside) {
 			k++
 		}
 		sides := 2.0
@@ -55,10 +55,18 @@ var medianInterval = &Function{
 		c.setLimits(l)
 		c.set("attained-confidence", attained)
 		c.set("n", n)
-		c.method = fmt.Sprintf("order statistics %d and %d, attained confidence %s", k, n+1-k, percent(attained))
+		switch dir {
+		case either:
+			c.method = fmt.Sprintf("order statistics %d and %d", k, n+1-k)
+		case above:
+			c.method = fmt.Sprintf("order statistic %d", k)
+		case below:
+			c.method = fmt.Sprintf("order statistic %d", n+1-k)
+		}
+		c.method += ", attained confidence " + percent(attained)
 		c.say(statement{"median", median, l, SameUnit, nText(n)})
 		if checks.Of(c) {
-			c.checkFew("sample", "The sample", n)
+			c.checkFewOfAnyShape(n)
 			c.checkNeighbours("sample", "The sample", sample.Of(c), summarise(values))
 		}
 		return nil

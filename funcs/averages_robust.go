@@ -21,7 +21,7 @@ type trim struct {
 // trimmed trims sorted values by floor(share·n) at each end.
 func trimmed(sorted []float64, share float64) trim {
 	n := len(sorted)
-	g := wholeDown(share * float64(n))
+	g := trimmedOf(n, share)
 	kept := sorted[g : n-g]
 	w := make([]float64, n)
 	copy(w, sorted)
@@ -31,14 +31,9 @@ func trimmed(sorted []float64, share float64) trim {
 	return trim{g, n - 2*g, num.Mean(kept), num.Moments(w).SumSquares}
 }
 
-// wholeDown is floor, where a value within 1e-9 of a whole number is that
-// number: 0.2·15 is 3, whatever its last bit.
-func wholeDown(x float64) int {
-	if r := math.Round(x); math.Abs(x-r) <= 1e-9 {
-		return int(r)
-	}
-	return int(math.Floor(x))
-}
+// trimmedOf is how many of n values a share leaves out at each end; 0.2 of 15
+// is 3, whatever the last bit of the product.
+func trimmedOf(n int, share float64) int { return int(floorWhole(float64(share * float64(n)))) }
 
 var trimmedMeanInterval = &Function{
 	Name:    "trimmed-mean-interval",
@@ -83,7 +78,7 @@ var trimmedMeanInterval = &Function{
 		c.method = fmt.Sprintf("trimmed t interval, %d values left out at each end, winsorised sum of squares, %s of freedom", t.g, degrees(law.DF))
 		c.say(statement{"trimmed mean", t.mean, l, SameUnit, nText(len(values))})
 		if checks.Of(c) {
-			c.checkFew("sample", "The sample", len(values))
+			c.checkFewOfAnyShape(len(values))
 			c.checkNeighbours("sample", "The sample", sample.Of(c), summarise(values))
 		}
 		return nil

@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -28,7 +29,7 @@ var stratifiedInterval = &Function{
 		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
 		resultTotal, resultTotalLower, resultTotalUpper, resultSE, resultDF,
 	},
-	Findings:    []FindingKind{fewValuesKind, noSpreadKind},
+	Findings:    append([]FindingKind{noSpreadKind}, oneSampleFindings...),
 	Assumptions: []string{"a simple random sample within each stratum", "normal stratum means"},
 	Citations:   []string{"Cochran 1977 ch. 5", "Satterthwaite 1946"},
 	Example: Example{
@@ -75,7 +76,7 @@ var stratifiedInterval = &Function{
 			c.set("df", law.DF)
 			c.method = fmt.Sprintf("stratified t interval with %s of freedom (Satterthwaite), finite factor in each stratum", degrees(law.DF))
 		} else if !wholePopulation(groups, columns[0]) {
-			return c.noSpread(c.groupsInput())
+			return c.noGroupSpread(groups)
 		} else {
 			l = symmetric(confidence.Of(c), direction.Of(c), mean, 0, dist.Normal{})
 			c.method = "every stratum was measured whole"
@@ -85,8 +86,20 @@ var stratifiedInterval = &Function{
 		c.setTotals(population, mean, l)
 		c.set("standard-error", se)
 		c.say(statement{"mean of the population", mean, l, SameUnit, fmt.Sprintf("%s of %s in %d strata", nText(c.used), shortest(population), len(groups))})
-		return nil
+		return c.checkGroups(sampledStrata(groups, columns[0]))
 	},
+}
+
+// sampledStrata empties the strata measured whole, about which nothing is
+// unsure, and keeps the others' places.
+func sampledStrata(groups []groupSummary, sizes []float64) []groupSummary {
+	out := slices.Clone(groups)
+	for i, g := range groups {
+		if float64(g.n) == sizes[i] {
+			out[i] = groupSummary{name: g.name}
+		}
+	}
+	return out
 }
 
 // wholePopulation reports that every group was measured whole.
@@ -144,12 +157,16 @@ var ratioOfSumsInterval = &Function{
 		residuals := make([]float64, n)
 		for i := range y {
 			residuals[i] = y[i] - float64(ratio*x[i])
+			if math.Abs(residuals[i]) <= 4e-16*math.Abs(y[i]) { // the rounding of ratio and product
+				residuals[i] = 0
+			}
 		}
 		se := math.Sqrt(num.SumProducts(residuals, residuals)/float64(n-1)) / math.Sqrt(float64(n)) / math.Abs(sum/float64(n))
 		if finite {
-			se *= math.Sqrt(1 - float64(n)/float64(size))
+			se *= finiteFactor(n, size)
 		}
-		if se == 0 && !(finite && n == size) {
+		whole := finite && n == size
+		if se == 0 && !whole {
 			return refuse("no-spread", "sample", "All rows have the same ratio, so there is neither a spread nor an interval; check whether one column was computed from the other.")
 		}
 		law := dist.Student{DF: float64(n - 1)}
@@ -160,9 +177,31 @@ var ratioOfSumsInterval = &Function{
 		c.set("n", n)
 		c.set("df", law.DF)
 		c.method = fmt.Sprintf("ratio of sums, linearised, with the t quantile of %s of freedom", degrees(law.DF))
+		if finite {
+			c.method += fmt.Sprintf(", finite population of %d", size)
+		}
 		c.say(statement{"ratio of sums (sample / second-sample)", ratio, l, NoUnit, nText(n) + " rows"})
-		return c.checkValues("sample", residuals, summarise(residuals))
+		if whole {
+			return nil
+		}
+		return c.checkDerived("sample", "The list of residuals (sample - ratio·second-sample)", inPlaces(residuals, sample.Of(c), secondSample.Of(c)), summarise(residuals))
 	},
+}
+
+// inPlaces puts values, one from each complete pair, where their pairs stand;
+// the other places are gaps.
+func inPlaces(values, first, second []float64) []float64 {
+	out := make([]float64, len(first))
+	next := 0
+	for i := range first {
+		if math.IsNaN(first[i]) || math.IsNaN(second[i]) {
+			out[i] = math.NaN()
+			continue
+		}
+		out[i] = values[next]
+		next++
+	}
+	return out
 }
 
 // completePairs reads two samples of the same rows and leaves out, and counts,

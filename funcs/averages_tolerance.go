@@ -12,12 +12,14 @@ const (
 	distributionFree = "distribution-free"
 )
 
+var toleranceKind = choice("kind", "normal: mean ± factor·sd, exact for normal values; distribution-free: the smallest and largest value",
+	normalKind, distributionFree)
+
 var toleranceInterval = &Function{
 	Name:    "tolerance-interval",
 	Version: 1,
 	Summary: "limits that hold a given share of the population, with a given confidence",
-	Inputs: inputs(sample, meanGiven, sdGiven, nGiven, content,
-		choice("kind", "normal: mean ± factor·sd, exact for normal values; distribution-free: the smallest and largest value", normalKind, distributionFree),
+	Inputs: inputs(sample, meanGiven, sdGiven, nGiven, content, toleranceKind,
 		confidence.as("confidence", "the confidence that the limits hold the content"), direction, checks),
 	OneOf: []OneOf{{{Needs: []string{"sample"}}, {Needs: []string{"mean", "sd", "n"}}}},
 	Results: []Result{
@@ -46,7 +48,7 @@ var toleranceInterval = &Function{
 		share, conf, dir := content.Of(c), confidence.Of(c), direction.Of(c)
 		c.set("n", s.n)
 		what := fmt.Sprintf("hold %s of the population with %s confidence", percent(share), percent(conf))
-		if c.args["kind"].Value == distributionFree {
+		if toleranceKind.Of(c) == distributionFree {
 			return c.orderTolerance(s.n, share, conf, dir, what)
 		}
 		if s.sd == 0 {
@@ -73,7 +75,7 @@ func (c *Call) orderTolerance(n int, share, conf float64, dir, what string) erro
 		return refuse("kind-needs-sample", "kind", "Distribution-free limits are values of the sample itself; give the sample, or use kind normal.")
 	}
 	attained := orderConfidence(n, share, dir)
-	if attained < conf {
+	if !reaches(attained, conf) {
 		return refuse("confidence-not-attainable", "confidence", "With %s the smallest and largest value hold %s of the population with only %s confidence; "+
 			"measure more (see distribution-free-tolerance-size), or ask for less.", nText(n), percent(share), percent(attained))
 	}

@@ -49,10 +49,15 @@ func (c *Call) checkSample(in In[[]float64]) error {
 // checkValues raises the cautions of an ordered list of values whose summary
 // is s; input is the argument they came from.
 func (c *Call) checkValues(input string, ordered []float64, s summary) error {
+	return c.checkDerived(input, "The "+input, ordered, s)
+}
+
+// checkDerived is checkValues for numbers worked out from the input, one from
+// each of its values, such as logarithms; what says what they are.
+func (c *Call) checkDerived(input, what string, ordered []float64, s summary) error {
 	if !checks.Of(c) {
 		return nil
 	}
-	what := "The " + input
 	c.checkFew(input, what, s.n)
 	if s.sd == 0 {
 		return nil
@@ -69,6 +74,13 @@ func (c *Call) checkFew(input, what string, n int) {
 	if n < fewValues {
 		c.caution("few-values", input, "%s has only %s: the interval rests wholly on the values being normal. Measure at least %d.",
 			what, plural(n, "value"), fewValues)
+	}
+}
+
+// checkFewOfAnyShape is checkFew for a method that asks for no shape.
+func (c *Call) checkFewOfAnyShape(n int) {
+	if n < fewValues {
+		c.caution("few-values", "sample", "The sample has only %s: so few show little of their population. Measure at least %d.", plural(n, "value"), fewValues)
 	}
 }
 

@@ -4,19 +4,19 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"strings"
 
 	"halfwidth/funcs/internal/num"
 )
 
 var checksFamily = []*Function{normalityCheck, outlierCheck, independenceCheck, tailCheck, coverageCheck, populationCoverage}
 
+var mostOutliers = count("most-outliers", "the most outliers looked for; at most a fifth of the values, and 1 below 15 values", 1).withDefault(10)
+
 var outlierCheck = &Function{
 	Name:    "outlier-check",
 	Version: 1,
 	Summary: "which values lie too far out to belong to one normal population (generalised ESD)",
-	Inputs: inputs(sample, count("most-outliers", "the most outliers looked for; at most a fifth of the values, and 1 below 15 values", 1).withDefault(10),
-		significance),
+	Inputs:  inputs(sample, mostOutliers, significance),
 	Results: []Result{{"outliers", Whole, NoUnit, "how many values are outliers"}},
 	Table: []Result{
 		{"position", Whole, NoUnit, "which value it is, counting from 1, gaps counted too"},
@@ -49,11 +49,11 @@ var outlierCheck = &Function{
 		alpha := significance.Of(c)
 		most := 1
 		if s.n >= 15 {
-			most = max(1, min(int(c.args["most-outliers"].Value.(int)), s.n/5))
+			most = max(1, min(mostOutliers.Of(c), s.n/5))
 		}
 		outliers := 0
 		rest := slices.Clone(given) // values taken out become gaps and keep the others' positions
-		for j := 1; j <= most; j++ {
+		for j := 1; j <= most && c.cancelled() == nil; j++ {
 			m := summarise(withoutGaps(rest))
 			if m.sd == 0 {
 				break
@@ -66,23 +66,34 @@ var outlierCheck = &Function{
 			c.rows = append(c.rows, Row{Values: map[string]any{"position": at + 1, "value": given[at], "statistic": statistic, "critical-value": critical}})
 			rest[at] = math.NaN()
 		}
-		c.rows = c.rows[:max(outliers, 1)]
+		if err := c.cancelled(); err != nil {
+			return err
+		}
+		c.rows = c.rows[:max(outliers, 1)] // the farthest value stands there in any case
 		c.set("outliers", outliers)
 		c.method = fmt.Sprintf("generalised ESD, up to %d outliers", most)
-		switch outliers {
-		case 0:
-			c.sentence = fmt.Sprintf("No value is an outlier at significance %s (%s; %s).", percent(alpha), nText(s.n), c.method)
-		default:
-			var list []string
-			for _, row := range c.rows {
-				list = append(list, shortest(row.Values["value"].(float64)))
-			}
-			c.sentence = fmt.Sprintf("At significance %s %s: %s (%s; %s). Check that they are right before leaving them out.",
-				percent(alpha), map[bool]string{true: "one value is an outlier", false: plural(outliers, "value") + " are outliers"}[outliers == 1],
-				strings.Join(list, ", "), nText(s.n), c.method)
-		}
+		c.sayOutliers(outliers, s.n)
 		return nil
 	},
+}
+
+// sayOutliers composes the sentence from the rows.
+func (c *Call) sayOutliers(outliers, n int) {
+	alpha := percent(significance.Of(c))
+	list := make([]string, len(c.rows))
+	for i, row := range c.rows {
+		list[i] = shortest(row.Values["value"].(float64))
+	}
+	switch outliers {
+	case 0:
+		c.sentence = fmt.Sprintf("No value is an outlier at significance %s (%s; %s).", alpha, nText(n), c.method)
+	case 1:
+		c.sentence = fmt.Sprintf("At significance %s one value is an outlier: %s (%s; %s). Check whether it is right before leaving it out.",
+			alpha, c.withUnit(list[0], SameUnit), nText(n), c.method)
+	default:
+		c.sentence = fmt.Sprintf("At significance %s %d values are outliers: %s (%s; %s). Check whether they are right before leaving them out.",
+			alpha, outliers, c.withUnit(andList(list), SameUnit), nText(n), c.method)
+	}
 }
 
 // farthest gives the value farthest from the centre and its distance; the

@@ -10,6 +10,7 @@ import (
 
 var (
 	coverageResamples = resamplesInput.withDefault(20000)
+	coverageN         = count("n", "the n to look at; the sample's own where it is left out", 2).optional()
 	tooManyDrawsKind  = FindingKind{"too-many-draws", "resamples times n passes what is worked out in one call"}
 	noEnoughKind      = FindingKind{"heavy-tail", "the variance or the mean does not exist, so that no n is enough"}
 )
@@ -17,6 +18,15 @@ var (
 // mostDraws is how many values one call draws at the most: some seconds on one
 // core.
 const mostDraws = 2e8
+
+// tooManyDraws refuses to draw more than mostDraws values.
+func tooManyDraws(n, resamples int) error {
+	if draws := float64(n) * float64(resamples); draws > mostDraws {
+		return refuse("too-many-draws", "resamples", "That would draw %s values, but at most %s are drawn in one call; ask for fewer resamples, or for a smaller n.",
+			brief(draws), brief(mostDraws))
+	}
+	return nil
+}
 
 // coverageResults are the results that both functions of coverage give.
 var coverageResults = []Result{
@@ -30,20 +40,17 @@ var coverageResults = []Result{
 type tally struct{ below, above, hits int }
 
 // coverage draws samples of n values and gives the tally of their t intervals
-// about a target of 0. newDraw gives the drawing of one worker, which fills a
-// sample with values less the target. With a normal population every count
-// would be that of the confidence.
-func (c *Call) coverage(n int, newDraw func() func(*num.Stream, []float64)) (tally, int, error) {
-	resamples := c.args["resamples"].Value.(int)
-	if float64(n)*float64(resamples) > mostDraws {
-		return tally{}, 0, refuse("too-many-draws", "resamples", "That would draw %s values, but at most %s are drawn in one call; ask for fewer resamples.",
-			brief(float64(n)*float64(resamples)), brief(mostDraws))
+// about a target of 0; draw fills a sample with values less the target.
+func (c *Call) coverage(n int, draw func(*num.Stream, []float64)) (tally, int, error) {
+	resamples := coverageResamples.Of(c)
+	if err := tooManyDraws(n, resamples); err != nil {
+		return tally{}, 0, err
 	}
 	dir := direction.Of(c)
 	q := dist.Student{DF: float64(n - 1)}.UpperQuantile(tail(confidence.Of(c), dir))
 	places := make([]int8, resamples)
 	err := resample(c.ctx, seedInput.Of(c), resamples, func() func(int, *num.Stream) {
-		draw, x := newDraw(), make([]float64, n)
+		x := make([]float64, n)
 		return func(i int, s *num.Stream) {
 			draw(s, x)
 			places[i] = place(x, q, dir)
@@ -77,7 +84,7 @@ func place(x []float64, q float64, dir string) int8 {
 		d := v - mean
 		ss += float64(d * d)
 	}
-	reach := q * math.Sqrt(ss/float64(n*(n-1)))
+	reach := float64(q * math.Sqrt(ss/float64(n*(n-1))))
 	switch {
 	case dir != below && mean-reach > 0:
 		return 1
@@ -104,8 +111,7 @@ var coverageCheck = &Function{
 	Name:    "coverage-check",
 	Version: 1,
 	Summary: "how often the t interval holds the true mean, at this n, for a population shaped like these data",
-	Inputs: inputs(sample, count("n", "the n to look at; the sample's own where it is left out", 2).optional(),
-		coverageResamples, seedInput, confidence, direction, checks),
+	Inputs:  inputs(sample, coverageN, coverageResamples, seedInput, confidence, direction, checks),
 	Results: append(append([]Result{}, coverageResults...),
 		Result{"predicted-coverage", Number, NoUnit, "the same from skewness and excess kurtosis (second order)"},
 		Result{"n-needed", Whole, NoUnit, "the smallest n whose predicted coverage is at most 0.01 short; absent where there is none"}),
@@ -131,7 +137,7 @@ var coverageCheck = &Function{
 			return c.noSpread("sample")
 		}
 		n := s.n
-		if given, ok := c.args["n"].Value.(int); ok {
+		if given, ok := coverageN.Given(c); ok {
 			n = given
 		}
 		centred := make([]float64, len(values))
@@ -139,9 +145,7 @@ var coverageCheck = &Function{
 		for i, x := range values {
 			centred[i] = (x - m.Mean) - m.MeanLow
 		}
-		t, resamples, err := c.coverage(n, func() func(*num.Stream, []float64) {
-			return func(stream *num.Stream, x []float64) { stream.Resample(x, centred) }
-		})
+		t, resamples, err := c.coverage(n, func(stream *num.Stream, x []float64) { stream.Resample(x, centred) })
 		if err != nil {
 			return err
 		}
@@ -160,10 +164,14 @@ var coverageCheck = &Function{
 		share, errorOf := c.results["coverage"].(float64), c.results["simulation-error"].(float64)
 		c.method = fmt.Sprintf("%d samples of %d drawn from the data with replacement, seed %d", resamples, n, seedInput.Of(c))
 		c.sentence = fmt.Sprintf("For data shaped like these, the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; predicted %s; %s).",
-			percent(conf), dir, n, percent(share), brief(errorOf), percent(predicted(n)), c.method)
+			percent(conf), dir, n, percent(share), brief(errorOf), percent(toDigits(predicted(n))), c.method)
 		if short := conf - share; short > allowedByDefault && short > 3*errorOf {
-			c.caution("coverage-short", "sample", "The interval holds the true mean in only %s of cases instead of %s; measure more%s, or use median-interval or bootstrap-interval.",
-				percent(share), percent(conf), map[bool]string{true: fmt.Sprintf(" (about %d for this skewness)", needed)}[found && needed > n])
+			more := "measure more"
+			if found && needed > n {
+				more += fmt.Sprintf(" (about %d for this skewness)", needed)
+			}
+			c.caution("coverage-short", "sample", "The interval holds the true mean in only %s of cases instead of %s; %s, or use median-interval or bootstrap-interval.",
+				percent(share), percent(conf), more)
 		}
 		if checks.Of(c) {
 			c.checkTail("sample", "The sample", values)

@@ -119,8 +119,9 @@ func shapiroWilk(sorted []float64) (w, p float64) {
 }
 
 func shapiroWilkP(w float64, n int) float64 {
-	if n == 3 { // exact
-		return math.Max(0, 6/math.Pi*(math.Asin(math.Sqrt(w))-math.Asin(math.Sqrt(0.75))))
+	if n == 3 { // exact: 6/π(asin √w - asin √¾) = 3 I_w(½, ½) - 2
+		_, upper := dist.BetaTails(w, 1-w, 0.5, 0.5)
+		return math.Max(0, 1-float64(3*upper))
 	}
 	size := float64(n)
 	y := num.Log(math.Max(1-w, math.SmallestNonzeroFloat64))

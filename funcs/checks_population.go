@@ -13,13 +13,14 @@ import (
 var (
 	shape = choice("shape", "the population's shape", "normal", "uniform", "exponential", "lognormal", "bernoulli", "poisson", "pareto", "cauchy", "t")
 
+	populationN    = count("n", "how many values a sample has", 2).withDefault(30)
 	shapeParameter = number("parameter", "lognormal: sd of the logarithm; bernoulli: probability; poisson: mean; pareto: index; t: degrees of freedom",
 		positive, NoUnit).optional()
 )
 
 // population is a law to draw from. Its values come less the target.
 type population struct {
-	newDraw  func() func(*num.Stream, []float64)
+	draw     func(*num.Stream, []float64)
 	sd       float64                     // +Inf where there is no finite variance
 	distance func(n int) (float64, bool) // exact sup|F - Φ| of the standardised mean, where there is a formula
 	noMean   bool
@@ -29,7 +30,7 @@ var populationCoverage = &Function{
 	Name:    "population-coverage",
 	Version: 1,
 	Summary: "how often the t interval holds the true mean for a population of a known shape, and how far the mean is from normal",
-	Inputs:  inputs(shape, shapeParameter, count("n", "how many values a sample has", 2).withDefault(30), coverageResamples, seedInput, confidence, direction),
+	Inputs:  inputs(shape, shapeParameter, populationN, coverageResamples, seedInput, confidence, direction),
 	Results: append(append([]Result{}, coverageResults...),
 		Result{"distance-from-normal", Number, NoUnit, "largest difference of the distribution function of the standardised mean from the normal one; absent without a finite variance"}),
 	Findings:    []FindingKind{tooManyDrawsKind, noEnoughKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
@@ -47,8 +48,8 @@ var populationCoverage = &Function{
 		if err != nil {
 			return err
 		}
-		n := c.args["n"].Value.(int)
-		t, resamples, err := c.coverage(n, p.newDraw)
+		n := populationN.Of(c)
+		t, resamples, err := c.coverage(n, p.draw)
 		if err != nil {
 			return err
 		}
@@ -103,18 +104,21 @@ func (c *Call) population() (population, error) {
 	normal := dist.Normal{}
 	switch name {
 	case "uniform":
-		return population{newDraw: each(func(u float64) float64 { return u - 0.5 }), sd: math.Sqrt(1.0 / 12)}, nil
+		return population{draw: each(func(u float64) float64 { return u - 0.5 }), sd: math.Sqrt(1.0 / 12)}, nil
 	case "exponential":
-		return population{newDraw: each(func(u float64) float64 { return -num.Log(u) - 1 }), sd: 1, distance: gammaDistance}, nil
+		return population{draw: each(func(u float64) float64 { return -num.Log(u) - 1 }), sd: 1, distance: gammaDistance}, nil
 	case "lognormal":
+		if a > 20 { // so that neither mean nor variance passes what a double holds
+			return population{}, c.wrong("parameter", shortest(a), "must be at most 20 as the sd of a logarithm", "give a smaller one")
+		}
 		centre := num.Exp(float64(a*a) / 2)
-		return population{newDraw: each(func(u float64) float64 { return num.Exp(float64(a*normal.Quantile(u))) - centre }),
+		return population{draw: each(func(u float64) float64 { return num.Exp(float64(a*normal.Quantile(u))) - centre }),
 			sd: centre * math.Sqrt(num.Expm1(float64(a*a)))}, nil
 	case "bernoulli":
 		if a >= 1 {
-			return population{}, c.wrong("parameter", shortest(a), "must be a probability, strictly between 0 and 1", "")
+			return population{}, c.wrong("parameter", shortest(a), "must be a probability, strictly between 0 and 1", "give a smaller one")
 		}
-		return population{newDraw: each(func(u float64) float64 {
+		return population{draw: each(func(u float64) float64 {
 			if u < a {
 				return 1 - a
 			}
@@ -127,7 +131,7 @@ func (c *Call) population() (population, error) {
 			return population{}, c.wrong("parameter", shortest(a), "must be at most 1000000", "give a smaller mean")
 		}
 		table := poissonTable(a)
-		return population{newDraw: each(func(u float64) float64 { return float64(table.first+sort.SearchFloat64s(table.atMost, u)) - a }),
+		return population{draw: each(func(u float64) float64 { return float64(table.first+sort.SearchFloat64s(table.atMost, u)) - a }),
 			sd: math.Sqrt(a), distance: func(n int) (float64, bool) {
 				mean := float64(n) * a
 				return latticeDistance(mean, math.Sqrt(mean), func(k float64) float64 { atMost, _ := poissonTails(k, mean); return atMost }), true
@@ -136,49 +140,48 @@ func (c *Call) population() (population, error) {
 		if a <= 1 {
 			return population{}, refuse("no-mean", "parameter", "A pareto population of index %s has no mean, so no interval can hold it; use an index above 1.", shortest(a))
 		}
-		p := population{newDraw: each(func(u float64) float64 { return num.Exp(-num.Log(u)/a) - a/(a-1) }), sd: inf}
+		p := population{draw: each(func(u float64) float64 { return num.Exp(-num.Log(u)/a) - a/(a-1) }), sd: inf}
 		if a > 2 {
 			p.sd = math.Sqrt(a/(a-2)) / (a - 1)
 		}
 		return p, nil
 	case "cauchy":
-		return population{newDraw: polarT(1), sd: inf, noMean: true}, nil
+		return population{draw: polarT(1), sd: inf, noMean: true}, nil
 	case "t":
-		p := population{newDraw: polarT(a), sd: inf, noMean: a <= 1}
+		if a < 0.25 { // its values would pass what a double holds
+			return population{}, c.wrong("parameter", shortest(a), "must be at least 0.25 degrees of freedom", "give more")
+		}
+		p := population{draw: polarT(a), sd: inf, noMean: a <= 1}
 		if a > 2 {
 			p.sd = math.Sqrt(a / (a - 2))
 		}
 		return p, nil
 	}
-	return population{newDraw: each(normal.Quantile), sd: 1, distance: func(int) (float64, bool) { return 0, true }}, nil
+	return population{draw: each(normal.Quantile), sd: 1, distance: func(int) (float64, bool) { return 0, true }}, nil
 }
 
 // each draws every value by inversion from a uniform number strictly between 0
 // and 1.
-func each(value func(u float64) float64) func() func(*num.Stream, []float64) {
-	return func() func(*num.Stream, []float64) {
-		return func(s *num.Stream, x []float64) {
-			for i := range x {
-				x[i] = value((float64(s.Uint64()>>11) + 0.5) * 0x1p-53)
-			}
+func each(value func(u float64) float64) func(*num.Stream, []float64) {
+	return func(s *num.Stream, x []float64) {
+		for i := range x {
+			x[i] = value((float64(s.Uint64()>>11) + 0.5) * 0x1p-53)
 		}
 	}
 }
 
 // polarT draws Student t values (Bailey 1994, Polar generation of random
 // variates with the t-distribution).
-func polarT(df float64) func() func(*num.Stream, []float64) {
+func polarT(df float64) func(*num.Stream, []float64) {
 	uniform := func(s *num.Stream) float64 { return (float64(s.Uint64()>>11)+0.5)*0x1p-52 - 1 }
-	return func() func(*num.Stream, []float64) {
-		return func(s *num.Stream, x []float64) {
-			for i := range x {
-				for {
-					u, v := uniform(s), uniform(s)
-					w := float64(u*u) + float64(v*v)
-					if w <= 1 {
-						x[i] = u * math.Sqrt(float64(df*num.Expm1(-2/df*num.Log(w)))/w)
-						break
-					}
+	return func(s *num.Stream, x []float64) {
+		for i := range x {
+			for {
+				u, v := uniform(s), uniform(s)
+				w := float64(u*u) + float64(v*v)
+				if w <= 1 {
+					x[i] = u * math.Sqrt(float64(df*num.Expm1(-2/df*num.Log(w)))/w)
+					break
 				}
 			}
 		}
@@ -204,19 +207,26 @@ func poissonTable(mean float64) cumulative {
 	}
 }
 
-// latticeDistance is sup|F - Φ| of a standardised law on the whole numbers:
-// at each of them, the distance just before and at the jump.
+// latticeDistance is sup|F - Φ| of a standardised law on the whole numbers from
+// 0: at each of them, the distance just before and at the jump. As both change
+// smoothly over an sd, many numbers are searched in steps of a 64th of it.
 func latticeDistance(mean, sd float64, atMost func(k float64) float64) float64 {
-	var largest, before float64
-	first := math.Max(0, math.Floor(mean-9*sd))
-	if first > 0 {
-		before = atMost(first - 1)
+	at := func(k float64) float64 {
+		if k < 0 {
+			return 0
+		}
+		before, normal := 0.0, dist.Normal{}.CDF((k-mean)/sd)
+		if k > 0 {
+			before = atMost(k - 1)
+		}
+		return math.Max(math.Abs(before-normal), math.Abs(atMost(k)-normal))
 	}
-	for k := first; k <= mean+9*sd+1; k++ {
-		at := atMost(k)
-		normal := dist.Normal{}.CDF((k - mean) / sd)
-		largest = math.Max(largest, math.Max(math.Abs(before-normal), math.Abs(at-normal)))
-		before = at
+	first, last := math.Max(0, math.Floor(mean-9*sd)), math.Ceil(mean+9*sd)+1
+	step := math.Max(1, math.Floor(sd/64))
+	best, largest := highest(at, first, last, step)
+	for step > 1 {
+		step = math.Ceil(step / 2)
+		best, largest = climb(at, best, largest, step)
 	}
 	return largest
 }
@@ -229,20 +239,32 @@ func gammaDistance(n int) (float64, bool) {
 	at := func(z float64) float64 {
 		return math.Abs(law.CDF(math.Max(0, mean+float64(z*sd))) - dist.Normal{}.CDF(z))
 	}
-	best, largest := 0.0, 0.0
-	for z := -4.0; z <= 4; z += 1.0 / 64 {
-		if d := at(z); d > largest {
-			best, largest = z, d
-		}
-	}
+	best, largest := highest(at, -4, 4, 1.0/64)
 	for step := 1.0 / 128; step > 1e-9; step /= 2 {
-		for _, z := range []float64{best - step, best + step} {
-			if d := at(z); d > largest {
-				best, largest = z, d
-			}
-		}
+		best, largest = climb(at, best, largest, step)
 	}
 	return largest, true
+}
+
+// highest is the largest of f from first to last in steps, and where it is.
+func highest(f func(float64) float64, first, last, step float64) (at, largest float64) {
+	for x := first; x <= last; x += step {
+		if y := f(x); y > largest {
+			at, largest = x, y
+		}
+	}
+	return at, largest
+}
+
+// climb looks one step to either side for more.
+func climb(f func(float64) float64, at, largest, step float64) (float64, float64) {
+	from := at
+	for _, x := range []float64{from - step, from + step} {
+		if y := f(x); y > largest {
+			at, largest = x, y
+		}
+	}
+	return at, largest
 }
 
 // simulatedDistance is sup|F - Φ| with F the empirical law of simulated
@@ -251,9 +273,9 @@ func (c *Call) simulatedDistance(p population, n, resamples int) (float64, error
 	z := make([]float64, resamples)
 	scale := 1 / (p.sd * math.Sqrt(float64(n)))
 	err := resample(c.ctx, seedInput.Of(c), resamples, func() func(int, *num.Stream) {
-		draw, x := p.newDraw(), make([]float64, n)
+		x := make([]float64, n)
 		return func(i int, s *num.Stream) {
-			draw(s, x)
+			p.draw(s, x)
 			z[i] = num.Sum(x) * scale
 		}
 	})

@@ -13,7 +13,22 @@ var (
 	successes      = count("successes", "how many of the n have the property", 0)
 	trials         = count("n", "how many were looked at", 1)
 	shareReference = number("reference", "the share to compare with", betweenZeroAndOne, NoUnit).optional()
+
+	firstSuccesses  = successes.as("first-successes", "how many of the first group have the property")
+	firstTrials     = trials.as("first-n", "how many in the first group")
+	secondSuccesses = successes.as("second-successes", "how many of the second group have the property")
+	secondTrials    = trials.as("second-n", "how many in the second group")
 )
+
+// successesOf reads how many of how many.
+func (c *Call) successesOf(successes, trials In[int]) (x, n float64, err error) {
+	x, n = float64(successes.Of(c)), float64(trials.Of(c))
+	if x > n {
+		return x, n, c.wrong(successes.Name, shortest(x), fmt.Sprintf("must be at most %s (%s)", trials.Name, shortest(n)),
+			"give how many of the "+shortest(n)+" have the property")
+	}
+	return x, n, nil
+}
 
 // shareResults are the results of an interval for a share or a rate.
 func shareResults(name, summary string) []Result {
@@ -45,9 +60,9 @@ var proportionInterval = &Function{
 		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.2.4.1",
 	},
 	compute: func(c *Call) error {
-		x, n := float64(successes.Of(c)), float64(trials.Of(c))
-		if x > n {
-			return c.wrong("successes", shortest(x), fmt.Sprintf("must be at most n (%s)", shortest(n)), "give how many of the n have the property")
+		x, n, err := c.successesOf(successes, trials)
+		if err != nil {
+			return err
 		}
 		size, finite := populationSize.Given(c)
 		if finite && n > float64(size) {
@@ -72,9 +87,16 @@ var proportionInterval = &Function{
 		c.setLimits(l)
 		if finite {
 			c.setTotals(float64(size), x/n, l)
+			if shareKind.Of(c) == exactShare { // limits of a number of cases
+				for _, name := range []string{"total-lower", "total-upper"} {
+					if v, ok := c.results[name].(float64); ok {
+						c.set(name, math.Round(v))
+					}
+				}
+			}
 		}
 		c.say(statement{"share", x / n, l, NoUnit, fmt.Sprintf("%s of n = %s", shortest(x), shortest(n))})
-		if ref, ok := shareReference.Given(c); ok {
+		if ref, ok := shareReference.Given(c); ok && !(finite && n == float64(size)) {
 			c.testShare(x, n, ref, size, finite)
 		}
 		return nil
@@ -111,10 +133,18 @@ func (c *Call) wilsonInterval(x, n, size float64, finite bool) limits {
 func wilsonLimits(share, n, z float64) (lower, upper float64) {
 	r := float64(z*z) / n
 	upper = (share + r/2 + math.Sqrt(float64(r*share)*(1-share)+float64(r*r)/4)) / (1 + r)
-	if share == 1 {
-		upper = 1
+	switch share {
+	case 0:
+		lower = 0
+	case 1:
+		lower, upper = 1/(1+r), 1
+	default:
+		lower = float64(share*share) / float64((1+r)*upper)
 	}
-	return float64(share*share) / float64((1+r)*upper), upper
+	if z < 0 { // a limit that less than half of the confidence keeps on its side
+		lower, upper = upper, lower
+	}
+	return lower, upper
 }
 
 // testShare gives the p-value against a reference share: by the score z, or
@@ -124,9 +154,6 @@ func (c *Call) testShare(x, n, ref float64, size int, finite bool) {
 	if shareKind.Of(c) == wilson {
 		effective := n
 		if finite {
-			if n == float64(size) {
-				return
-			}
 			effective *= float64(size-1) / (float64(size) - n)
 		}
 		z := (x/n - ref) / math.Sqrt(ref*(1-ref)/effective)
@@ -138,7 +165,7 @@ func (c *Call) testShare(x, n, ref float64, size int, finite bool) {
 	p := binomialPValue(x, n, ref, dir)
 	if finite {
 		marked := math.Round(ref * float64(size))
-		if math.Abs(marked-ref*float64(size)) > 1e-9*float64(size) {
+		if !withinWhole(float64(ref*float64(size)), marked) {
 			c.inform("reference-between-counts", "reference", "A share of %s is no whole number of %d, so there is no exact p-value; give a share that is, or leave population-size out.",
 				shortest(ref), size)
 			return
@@ -195,12 +222,10 @@ func hypergeometricLimits(x, n, size int, conf float64, dir string) limits {
 }
 
 var proportionDifferenceInterval = &Function{
-	Name:    "proportion-difference-interval",
-	Version: 1,
-	Summary: "difference of two shares (first - second) with its confidence interval, and a test of equality",
-	Inputs: inputs(successes.as("first-successes", "how many of the first group have the property"), trials.as("first-n", "how many in the first group"),
-		successes.as("second-successes", "how many of the second group have the property"), trials.as("second-n", "how many in the second group"),
-		confidence, direction),
+	Name:        "proportion-difference-interval",
+	Version:     1,
+	Summary:     "difference of two shares (first - second) with its confidence interval, and a test of equality",
+	Inputs:      inputs(firstSuccesses, firstTrials, secondSuccesses, secondTrials, confidence, direction),
 	Results:     shareResults("difference", "first share less second share"),
 	Findings:    []FindingKind{{"interval-and-test-disagree", "the interval holds 0 but the test rejects equality, or the other way round"}},
 	Assumptions: []string{"independent cases, one chance within each group"},
@@ -213,12 +238,13 @@ var proportionDifferenceInterval = &Function{
 		Source:    "Newcombe 1998, Interval estimation for the difference between independent proportions, table II, contrast a, method 10",
 	},
 	compute: func(c *Call) error {
-		in := func(name string) float64 { return float64(c.args[name].Value.(int)) }
-		x1, n1, x2, n2 := in("first-successes"), in("first-n"), in("second-successes"), in("second-n")
-		for _, g := range [][2]string{{"first-successes", "first-n"}, {"second-successes", "second-n"}} {
-			if in(g[0]) > in(g[1]) {
-				return c.wrong(g[0], shortest(in(g[0])), fmt.Sprintf("must be at most %s (%s)", g[1], shortest(in(g[1]))), "give how many of them have the property")
-			}
+		x1, n1, err := c.successesOf(firstSuccesses, firstTrials)
+		if err != nil {
+			return err
+		}
+		x2, n2, err := c.successesOf(secondSuccesses, secondTrials)
+		if err != nil {
+			return err
 		}
 		c.count(int(n1 + n2))
 		conf, dir := confidence.Of(c), direction.Of(c)
@@ -252,17 +278,23 @@ func scoreP(x, n, z float64, dir string) float64 {
 func newcombe(x1, n1, x2, n2, conf float64, dir string) (float64, limits) {
 	p1, p2 := x1/n1, x2/n2
 	d := p1 - p2
-	return d, limitsOf(conf, dir,
-		func(q float64) float64 {
-			z := dist.Normal{}.UpperQuantile(q)
-			below, _ := wilsonDistances(p1, n1, z)
-			_, above := wilsonDistances(p2, n2, z)
-			return d - math.Sqrt(float64(below*below)+float64(above*above))
-		},
-		func(q float64) float64 {
-			z := dist.Normal{}.UpperQuantile(q)
-			_, above := wilsonDistances(p1, n1, z)
-			below, _ := wilsonDistances(p2, n2, z)
-			return d + math.Sqrt(float64(above*above)+float64(below*below))
-		})
+	lower := func(z float64) float64 {
+		below, _ := wilsonDistances(p1, n1, z)
+		_, above := wilsonDistances(p2, n2, z)
+		return d - math.Sqrt(float64(below*below)+float64(above*above))
+	}
+	upper := func(z float64) float64 {
+		_, above := wilsonDistances(p1, n1, z)
+		below, _ := wilsonDistances(p2, n2, z)
+		return d + math.Sqrt(float64(above*above)+float64(below*below))
+	}
+	// A z below 0 (one limit, less than half of the confidence) puts a limit on the
+	// other side of the difference.
+	if dir != either && conf < 0.5 {
+		lower, upper = upper, lower
+	}
+	limit := func(at func(z float64) float64) func(q float64) float64 {
+		return func(q float64) float64 { return at(dist.Normal{}.UpperQuantile(q)) }
+	}
+	return d, limitsOf(conf, dir, limit(lower), limit(upper))
 }

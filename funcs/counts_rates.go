@@ -10,19 +10,27 @@ import (
 var (
 	events   = count("count", "how many events were counted", 0)
 	exposure = number("exposure", "how much time, distance or pieces they were counted over", positive, NoUnit).withDefault(1)
+
+	rateReference  = number("reference", "the rate to compare with", positive, NoUnit).optional()
+	ratioReference = number("reference", "the ratio to compare with", positive, NoUnit).withDefault(1)
+
+	firstCount     = events.as("first-count", "events of the first group")
+	firstExposure  = exposure.as("first-exposure", "exposure of the first group")
+	secondCount    = events.as("second-count", "events of the second group")
+	secondExposure = exposure.as("second-exposure", "exposure of the second group")
 )
 
 var rateInterval = &Function{
 	Name:        "rate-interval",
 	Version:     1,
 	Summary:     "rate of events per unit of exposure with its exact confidence interval, and a test against a reference",
-	Inputs:      inputs(events, exposure, number("reference", "the rate to compare with", positive, NoUnit).optional(), confidence, direction),
+	Inputs:      inputs(events, exposure, rateReference, confidence, direction),
 	Results:     shareResults("rate", "count over exposure"),
 	Findings:    []FindingKind{},
 	Assumptions: []string{"events independent of one another, at one rate (Poisson)"},
 	Citations:   []string{"Garwood 1936"},
 	Example: Example{
-		Label:     "no event at 95%",
+		Label:     "10 events at 95%",
 		Arguments: []Argument{{"count", 10}},
 		Want:      []Argument{{"lower", 4.795389}, {"upper", 18.390356}},
 		Tolerance: 1e-6,
@@ -38,7 +46,7 @@ var rateInterval = &Function{
 		c.setLimits(l)
 		c.method = "exact Poisson interval (Garwood)"
 		c.say(statement{"rate", x / t, l, NoUnit, fmt.Sprintf("%s in %s", plural(int(x), "event"), brief(t))})
-		if ref, ok := c.args["reference"].Value.(float64); ok {
+		if ref, ok := rateReference.Given(c); ok {
 			mean := float64(ref * t)
 			atMost, atLeast := poissonTails(x, mean)
 			p := atMost
@@ -69,9 +77,7 @@ var rateRatioInterval = &Function{
 	Name:    "rate-ratio-interval",
 	Version: 1,
 	Summary: "ratio of two rates (first / second) with its exact conditional interval, and a test",
-	Inputs: inputs(events.as("first-count", "events of the first group"), exposure.as("first-exposure", "exposure of the first group"),
-		events.as("second-count", "events of the second group"), exposure.as("second-exposure", "exposure of the second group"),
-		number("reference", "the ratio to compare with", positive, NoUnit).withDefault(1), confidence, direction),
+	Inputs:  inputs(firstCount, firstExposure, secondCount, secondExposure, ratioReference, confidence, direction),
 	Results: []Result{
 		{"ratio", Number, NoUnit, "first rate over second rate; absent where the second count is 0"},
 		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
@@ -90,8 +96,8 @@ var rateRatioInterval = &Function{
 		Source:    "exact count: twice P(X >= 15), X binomial with n = 20 and chance ½, is 2·21700/2^20",
 	},
 	compute: func(c *Call) error {
-		x1, x2 := float64(c.args["first-count"].Value.(int)), float64(c.args["second-count"].Value.(int))
-		t1, t2 := c.args["first-exposure"].Value.(float64), c.args["second-exposure"].Value.(float64)
+		x1, t1 := float64(firstCount.Of(c)), firstExposure.Of(c)
+		x2, t2 := float64(secondCount.Of(c)), secondExposure.Of(c)
 		if x1+x2 == 0 {
 			return refuse("no-events", "first-count", "Neither group has an event, so the rates cannot be compared; observe longer.")
 		}
@@ -115,7 +121,7 @@ var rateRatioInterval = &Function{
 				}
 				return odds(1-q, q, x1+1, x2)
 			})
-		ref := c.args["reference"].Value.(float64)
+		ref := ratioReference.Of(c)
 		chance := float64(ref*t1) / (float64(ref*t1) + t2)
 		p := binomialPValue(x1, x1+x2, chance, dir)
 		c.set("p-value", p)

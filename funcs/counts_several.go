@@ -7,13 +7,13 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
+var groupSuccesses = numbers("successes", "how many of each group have the property", wholeFrom(0), NoUnit)
+
 var proportionsComparison = &Function{
 	Name:    "proportions-comparison",
 	Version: 1,
 	Summary: "test that several shares are equal, and every pairwise difference with its interval",
-	Inputs: inputs(
-		numbers("successes", "how many of each group have the property", Domain{Low: 0, High: largestCount, Whole: true}, NoUnit),
-		ns, confidence),
+	Inputs:  inputs(groupSuccesses, ns, confidence),
 	Results: []Result{
 		{"chi-square", Number, NoUnit, "Pearson's chi-square statistic of the groups by property table"},
 		resultDF,
@@ -42,8 +42,7 @@ var proportionsComparison = &Function{
 		Source:    "Pearson's formula worked by hand: (9 + 49 + 100)/15 + (9 + 49 + 100)/85",
 	},
 	compute: func(c *Call) error {
-		successes := In[List]{c.Function.Inputs[0]}
-		names, columns, err := c.matched(nil, successes, ns)
+		names, columns, err := c.matched(nil, groupSuccesses, ns)
 		if err != nil {
 			return err
 		}
@@ -78,8 +77,8 @@ var proportionsComparison = &Function{
 			c.caution("few-expected", "successes", "The smallest expected count is %s, below 5, so the test is a rough guide; join groups, or measure more.", brief(least))
 		}
 		c.method = fmt.Sprintf("chi-square test with %s of freedom; pairwise score limits (Newcombe, method 10), p-values adjusted by Holm's method", degrees(df))
-		c.sentence = fmt.Sprintf("Over %d groups (n = %s in all) the shares give chi-square = %s with %s of freedom, %s; the pairs have %s intervals (%s).",
-			len(names), shortest(allN), brief(chi), degrees(df), pText(p), percent(confidence.Of(c)), "method 10 of Newcombe, p-values adjusted by Holm's method")
+		c.sentence = fmt.Sprintf("Over %d groups (n = %s in all) the shares give chi-square = %s with %s of freedom, %s; the %s have %s intervals (method 10 of Newcombe), each alone, and p-values adjusted by Holm's method.",
+			len(names), shortest(allN), brief(chi), degrees(df), pText(p), plural(len(names)*(len(names)-1)/2, "pair"), percent(confidence.Of(c)))
 		c.pairsOfShares(names, x, n)
 		return nil
 	},
