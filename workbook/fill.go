@@ -124,6 +124,9 @@ func open(ctx context.Context, path string, o Options) (*Book, *calculation.Plan
 	}
 	plan, err := calculation.NewPlan(ctx, b, calculation.Options{Sheets: o.Sheets, MayReplace: b.isOurTable})
 	if err == nil {
+		err = plan.Unreadable()
+	}
+	if err == nil {
 		err = somethingToDo(path, b, plan)
 	}
 	if err != nil {

@@ -43,9 +43,12 @@ func pair(ctx context.Context, first, second *term, look lookUp, kept *cache) (a
 			p.byKey(first.query, second.query)
 		case sameRows(first, second, one, two):
 			p.byRow()
+			// Conditions that no row meets together ask for different rows too.
+			if !p.together && one.tally.used > 0 && two.tally.used > 0 {
+				p.refuse()
+			}
 		default:
-			two.faults = append(two.faults, fault{Finding: funcs.Finding{Code: "different-rows", Severity: funcs.Refused,
-				Message: ended(fmt.Sprintf("%s and %s: %s", one.text, two.text, differentRows))}})
+			p.refuse()
 		}
 		p.finish()
 	}
@@ -134,10 +137,18 @@ type pairing struct {
 	one, two *reading
 	out      [2]series
 	dropped  skip
+	together bool // some row belongs to both samples
+}
+
+// refuse says that the samples come from different rows.
+func (p *pairing) refuse() {
+	p.two.faults = append(p.two.faults, fault{Finding: funcs.Finding{Code: "different-rows", Severity: funcs.Refused,
+		Message: ended(fmt.Sprintf("%s and %s: %s", p.one.text, p.two.text, differentRows))}})
 }
 
 // add adds a pair, by the places of its values; -1 where there is none.
 func (p *pairing) add(i, j int) {
+	p.together = p.together || i >= 0 && j >= 0
 	x, row, skipped := valueAt(p.one, i)
 	y, other, skippedToo := valueAt(p.two, j)
 	if math.IsNaN(x) && math.IsNaN(y) {

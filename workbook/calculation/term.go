@@ -182,6 +182,10 @@ func (r *reader) text(t *term, text string) *fault {
 		t.value = funcs.Infinite
 		return nil
 	}
+	if groups, f := writtenGroups(in, text); groups != nil || f != nil {
+		t.value = groups
+		return f
+	}
 	e, err := ParseExpression(text)
 	if err != nil {
 		f := bad("bad-expression", "cannot be read: "+err.Error())
