@@ -36,6 +36,12 @@ func openBook(path string, limits ooxml.Limits, in folders) (*Book, error) {
 	return b, nil
 }
 
+// Close closes the workbook and those beside it that expressions named.
+func (b *Book) Close() error {
+	b.folders.close()
+	return b.Book.Close()
+}
+
 // findPlaces lists sheets, tables, and those defined names that stand for one
 // range. A name of the whole book goes before one of a single sheet.
 func (b *Book) findPlaces() {

@@ -3,6 +3,7 @@ package workbook
 import (
 	"errors"
 	"fmt"
+	"io"
 	"os"
 	"path/filepath"
 	"strings"
@@ -63,6 +64,8 @@ func (f folders) open(file string, options calculation.FileOptions) (calculation
 	}
 	var s calculation.Source
 	switch ext := strings.ToLower(filepath.Ext(path)); ext {
+	case ".csv", ".tsv":
+		s = calculation.NewTextFile(filepath.Base(path), func() (io.ReadCloser, error) { return os.Open(path) }, options)
 	case ".xlsx", ".xlsm":
 		s, err = openBook(path, f.limits, newFolders(path, f.dirs[1:], f.limits))
 	default:
@@ -72,4 +75,13 @@ func (f folders) open(file string, options calculation.FileOptions) (calculation
 		f.opened[key] = s
 	}
 	return s, err
+}
+
+// close closes the workbooks that were opened.
+func (f folders) close() {
+	for _, s := range f.opened {
+		if b, ok := s.(*Book); ok {
+			b.Close()
+		}
+	}
 }
