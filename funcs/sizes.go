@@ -43,11 +43,18 @@ const planSlack = 1e-12
 
 func reaches(attained, wanted float64) bool { return attained >= wanted*(1-planSlack) }
 func staysIn(attained, wanted float64) bool { return attained <= wanted*(1+planSlack) }
+
+// clampPlan makes a guess, which may be infinite or no number at all, a place to
+// start a search.
+func clampPlan(x float64, lo, hi int) int {
+	if !(x > float64(lo)) {
+		return lo
+	}
+	return int(math.Min(float64(hi), x))
+}
+
 func withinWhole(x, whole float64) bool {
 	return math.Abs(x-whole) <= math.Max(1e-9, 4e-16*math.Abs(x))
-}
-func clampPlan(x float64, lo, hi int) int {
-	return int(math.Max(float64(lo), math.Min(float64(hi), x)))
 }
 
 // ceilWhole and floorWhole round up and down, but take a value within 1e-9 of a
@@ -95,6 +102,7 @@ var (
 	noDifferenceKind = FindingKind{"no-difference", "the difference to be found is the reference itself"}
 	wrongSideKind    = FindingKind{"against-direction", "the difference lies on the other side than the direction claims"}
 	lowPowerKind     = FindingKind{"power-not-above-significance", "the power wanted is no more than the significance"}
+	populationKind   = FindingKind{"losses-exceed-population", "after the losses even the whole population leaves fewer than n"}
 	lowLevelKind     = FindingKind{"level-too-low", "one limit at a confidence of 50% or less has no half-width"}
 )
 
@@ -181,6 +189,10 @@ func (c *Call) planned(n int) (int, error) {
 	effect, lost := designEffect.Of(c), nonResponse.Of(c)
 	x := ceilWhole(float64(float64(n)*effect) / (1 - lost))
 	if size, ok := populationSize.Given(c); ok && x > float64(size) {
+		if left := floorWhole(float64(size) * (1 - lost)); left < float64(n) && lost > 0 {
+			c.caution("losses-exceed-population", "non-response", "Even if all %d are approached, only about %.0f are left, fewer than the n = %d needed; find ways to lose fewer.",
+				size, left, n)
+		}
 		return size, nil
 	}
 	if x > largestPlan {
@@ -204,11 +216,15 @@ func (c *Call) counting(input string, n int) (int, error) {
 	return int(x), nil
 }
 
-// countingOf is counting for n of a population, which may be infinite.
+// countingOf is counting for n of a population, which may be infinite. All of a
+// population count whatever the design, but for losses.
 func (c *Call) countingOf(population float64) (int, error) {
 	n := plannedN.Of(c)
 	if float64(n) > population {
 		return 0, c.wrong("n", fmt.Sprint(n), fmt.Sprintf("is more than the population-size (%.0f)", population), "give at most that many")
+	}
+	if float64(n) == population && nonResponse.Of(c) == 0 {
+		return n, nil
 	}
 	return c.counting("n", n)
 }

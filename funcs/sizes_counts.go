@@ -71,7 +71,7 @@ var proportionPrecisionSize = &Function{
 	Inputs: inputs(expectedShare, shareHalfWidth, planPopulation, shareKind, confidence, direction,
 		designEffect, nonResponse),
 	Results:     []Result{resultPlanN, resultPlanned, resultShareHW},
-	Findings:    append([]FindingKind{exactFiniteKind}, precisionFindings...),
+	Findings:    append([]FindingKind{exactFiniteKind, populationKind}, precisionFindings...),
 	Assumptions: shareAssumptions,
 	Citations:   []string{"Wilson 1927", "Clopper & Pearson 1934", "Cochran 1977 (finite population)"},
 	Example: Example{

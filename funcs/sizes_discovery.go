@@ -53,7 +53,7 @@ var discoverySize = &Function{
 	Summary:     "how many items to look at, to notice a share of deviations",
 	Inputs:      inputs(planPopulation, tolerableRate, allowedDeviations, discoveryLevel, designEffect, nonResponse),
 	Results:     []Result{resultPlanN, resultPlanned, resultConfidence},
-	Findings:    []FindingKind{tooManyKind, neverKind},
+	Findings:    []FindingKind{tooManyKind, neverKind, populationKind},
 	Assumptions: []string{"a simple random sample of the items"},
 	Citations:   []string{"hypergeometric and binomial law (ISO 3534-1)"},
 	Example: Example{

@@ -109,7 +109,7 @@ var meanPrecisionSize = &Function{
 		designEffect, nonResponse, checks),
 	OneOf:       pilotWays,
 	Results:     []Result{resultPlanN, resultPlanned, resultHalfWidth, resultChance},
-	Findings:    append(slices.Concat(precisionFindings, oneSampleFindings), noSpreadKind),
+	Findings:    append(slices.Concat(precisionFindings, oneSampleFindings), noSpreadKind, populationKind),
 	Assumptions: []string{"independent values of one population", "normal values, or n large enough for their skewness"},
 	Citations:   []string{"Cochran 1977 (finite population)", "Kupper & Hafner 1989 (chance met)", "ASTM E122"},
 	Example: Example{

@@ -3,6 +3,7 @@ package funcs
 import (
 	"math"
 	"math/rand/v2"
+	"strings"
 	"testing"
 )
 
@@ -160,5 +161,43 @@ func TestDesignEffectLossesAndPopulation(t *testing.T) {
 	groups := answered(t, "difference-precision-size", map[string]any{"first-sd": 1.0, "half-width": 0.5, "allocation-ratio": 1.5, "non-response": 0.5})
 	if groups.whole(t, "n-planned") != 2*groups.whole(t, "n") || groups.whole(t, "second-n-planned") != 2*groups.whole(t, "second-n") {
 		t.Errorf("half lost: %d and %d planned for %d and %d", groups.whole(t, "n-planned"), groups.whole(t, "second-n-planned"), groups.whole(t, "n"), groups.whole(t, "second-n"))
+	}
+}
+
+// The level reported is the one that the plan used.
+func TestAVariancePlanReportsTheLevelItUsed(t *testing.T) {
+	arguments := map[string]any{"confidence": 0.9, "significance": 0.01}
+	if level := answered(t, "variance-size", with(arguments, "relative-half-width", 0.2)).float(t, "level"); level != 0.9 {
+		t.Errorf("level %v of a half-width, want 0.9", level)
+	}
+	if level := answered(t, "variance-size", with(arguments, "variance-ratio", 2.0)).float(t, "level"); level != 0.01 {
+		t.Errorf("level %v of a test, want 0.01", level)
+	}
+}
+
+// Sentences say what was planned for.
+func TestSentencesSayWhatWasPlannedFor(t *testing.T) {
+	for _, f := range sizesFamily {
+		out := answered(t, f.Name, f.Example.arguments())
+		v, _ := out.Get("sentence")
+		sentence := v.(string)
+		want := "planned for "
+		switch {
+		case !strings.HasSuffix(f.Name, "-size") && f.Name != "enough-n-for-mean":
+			want = "With "
+		case strings.Contains(f.Name, "precision"):
+			want = "planned for a half-width of "
+		case strings.Contains(f.Name, "test") || strings.Contains(f.Name, "equivalence") || strings.Contains(f.Name, "several") || strings.Contains(f.Name, "proportion"):
+			want = "planned for power "
+		}
+		if !strings.Contains(sentence, want) || strings.Contains(sentence, "%!") {
+			t.Errorf("%s: %s", f.Name, sentence)
+		}
+	}
+	out := answered(t, "mean-test-size", map[string]any{"sd": 2.0, "difference": 0.8, "design-effect": 1.5, "non-response": 0.1})
+	const want = "Measure n = 68, planned for power 90%: a true mean 0.8 from the reference will be found with probability 0.9016 at significance 5%, direction either " +
+		"(t test, exact power from the noncentral t with n - 1 degrees of freedom, sd 2). Plan 114, for design effect 1.5 and 10% lost."
+	if v, _ := out.Get("sentence"); v != want {
+		t.Errorf("got  %v\nwant %v", v, want)
 	}
 }

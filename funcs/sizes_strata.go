@@ -198,7 +198,7 @@ var stratifiedSize = &Function{
 		{"n", Whole, NoUnit, "how many values are needed in it"},
 		{"n-planned", Whole, NoUnit, "how many to plan for in it"},
 	},
-	Findings:    []FindingKind{smallBudgetKind, noSpreadKind, tooManyKind, lowLevelKind},
+	Findings:    []FindingKind{smallBudgetKind, noSpreadKind, tooManyKind, lowLevelKind, populationKind},
 	Assumptions: []string{"a simple random sample within each stratum", "normal stratum means"},
 	Citations:   []string{"Neyman 1934", "Cochran 1977 ch. 5", "Satterthwaite 1946"},
 	Example: Example{
@@ -232,8 +232,15 @@ var stratifiedSize = &Function{
 func (c *Call) setStrata(s strata, n []float64) error {
 	total, planned := 0.0, 0
 	for h, x := range n {
-		p := math.Min(s.sizes[h], ceilWhole(float64(x*designEffect.Of(c))/(1-nonResponse.Of(c))))
-		c.rows = append(c.rows, Row{Values: map[string]any{"stratum": s.names[h], "n": int(x), "n-planned": int(p)}})
+		lost := nonResponse.Of(c)
+		asked := math.Max(1, ceilWhole(float64(x*designEffect.Of(c))/(1-lost)))
+		p := math.Min(s.sizes[h], asked)
+		row := Row{Values: map[string]any{"stratum": s.names[h], "n": int(x), "n-planned": int(p)}}
+		if left := floorWhole(float64(p * (1 - lost))); asked > p && left < x && lost > 0 {
+			row.Findings = []Finding{{Code: "losses-exceed-population", Severity: Caution, Input: "non-response", Message: fmt.Sprintf(
+				"Even if all %.0f of %s are approached, only about %.0f are left, fewer than the %.0f needed; find ways to lose fewer.", p, s.names[h], left, x)}}
+		}
+		c.rows = append(c.rows, row)
 		total += x
 		planned += int(p)
 	}
