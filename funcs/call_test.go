@@ -1,7 +1,9 @@
 package funcs
 
 import (
+	"bytes"
 	"context"
+	"crypto/sha256"
 	"errors"
 	"math"
 	"strings"
@@ -124,6 +126,24 @@ func TestFingerprintFollowsTheDocumentedBytes(t *testing.T) {
 	out := answer(t, "normal-transform", map[string]any{"mean": -0.0, "sd": 2.0, "multiply": 3.0})
 	if got, _ := out.Get("fingerprint"); got != "cd61f768e731302a" {
 		t.Errorf("got %v", got)
+	}
+}
+
+func TestLongListsEnterTheFingerprintNumberByNumber(t *testing.T) {
+	for _, n := range []int{0, 1, 127, 128, 129, 2000} {
+		whole, single := &digest{Hash: sha256.New()}, &digest{Hash: sha256.New()}
+		v := make([]float64, n)
+		for i := range v {
+			v[i] = []float64{float64(i) / 7, math.NaN(), math.Copysign(0, -1)}[i%3]
+		}
+		whole.numbers(v)
+		single.length(n)
+		for _, x := range v {
+			single.number(x)
+		}
+		if !bytes.Equal(whole.Sum(nil), single.Sum(nil)) {
+			t.Errorf("a list of %d numbers has another fingerprint than its numbers", n)
+		}
 	}
 }
 

@@ -14,7 +14,7 @@ import (
 // text as its length and its UTF-8 bytes; a list as its length and its elements;
 // a group with its name before it; an input that was not given as one zero byte.
 func (c *Call) fingerprint() string {
-	d := digest{sha256.New()}
+	d := &digest{Hash: sha256.New()}
 	d.text(c.Function.Name)
 	d.number(float64(c.Function.Version))
 	for _, in := range c.Function.Inputs {
@@ -24,44 +24,52 @@ func (c *Call) fingerprint() string {
 	return hex.EncodeToString(d.Sum(nil))[:16]
 }
 
-type digest struct{ hash.Hash }
+type digest struct {
+	hash.Hash
+	buf [128 * 8]byte // numbers on their way into the hash
+}
 
 // gapBits is the one NaN that stands for a gap, whatever NaN a reader made.
 const gapBits = 0x7FF8_0000_0000_0001
 
-func (d digest) length(n int) { d.bits(uint64(n)) }
+func (d *digest) length(n int) { d.bits(uint64(n)) }
 
-func (d digest) bits(b uint64) {
-	var buf [8]byte
-	binary.BigEndian.PutUint64(buf[:], b)
-	d.Write(buf[:])
+func (d *digest) bits(b uint64) {
+	d.Write(binary.BigEndian.AppendUint64(d.buf[:0], b))
 }
 
-func (d digest) number(x float64) {
+func (d *digest) number(x float64) { d.bits(numberBits(x)) }
+
+func numberBits(x float64) uint64 {
 	switch {
 	case math.IsNaN(x):
-		d.bits(gapBits)
+		return gapBits
 	case x == 0:
-		d.bits(0)
-	default:
-		d.bits(math.Float64bits(x))
+		return 0
 	}
+	return math.Float64bits(x)
 }
 
-func (d digest) text(s string) {
+func (d *digest) text(s string) {
 	d.length(len(s))
 	d.Write([]byte(s))
 }
 
-func (d digest) numbers(v []float64) {
+func (d *digest) numbers(v []float64) {
 	d.length(len(v))
-	for _, x := range v {
-		d.number(x)
+	for len(v) > 0 {
+		n := min(len(v), len(d.buf)/8)
+		b := d.buf[:0]
+		for _, x := range v[:n] {
+			b = binary.BigEndian.AppendUint64(b, numberBits(x))
+		}
+		d.Write(b)
+		v = v[n:]
 	}
 }
 
 // value writes a kind byte and the value.
-func (d digest) value(v any) {
+func (d *digest) value(v any) {
 	switch v := v.(type) {
 	case nil:
 		d.Write([]byte{0})

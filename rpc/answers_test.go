@@ -1,6 +1,7 @@
 package rpc
 
 import (
+	"context"
 	"encoding/json"
 	"fmt"
 	"io"
@@ -12,14 +13,13 @@ import (
 	"halfwidth/funcs"
 )
 
-// endless draws ten million samples of three hundred values, which takes many
-// seconds.
+// endless draws as many values as one call may, which takes some seconds.
 func endless() string {
 	values := make([]string, 300)
 	for i := range values {
 		values[i] = fmt.Sprint(i * i % 97)
 	}
-	return fmt.Sprintf(`{"name":"bootstrap-interval","arguments":{"sample":[%s],"of":"median","resamples":10000000}}`, strings.Join(values, ","))
+	return fmt.Sprintf(`{"name":"bootstrap-interval","arguments":{"sample":[%s],"of":"median","resamples":600000}}`, strings.Join(values, ","))
 }
 
 const score = `{"name":"standard-score","arguments":{"value":12,"mean":10,"sd":2}}`
@@ -207,4 +207,13 @@ func BenchmarkAnswers(b *testing.B) {
 			c.leave()
 		})
 	}
+}
+
+// The same without a client that takes turns with the server.
+func BenchmarkAnswersInARow(b *testing.B) {
+	one := frame(`{"jsonrpc":"2.0","id":12,"method":"functions/answer","params":{"name":"mean-interval","arguments":{"mean":12.5,"sd":3.25,"n":40}}}`)
+	in := frame(`{"jsonrpc":"2.0","id":1,"method":"initialize","params":{}}`) + strings.Repeat(one, b.N)
+	b.ReportAllocs()
+	b.ResetTimer()
+	Serve(context.Background(), strings.NewReader(in), io.Discard, io.Discard, Options{})
 }

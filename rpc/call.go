@@ -108,6 +108,9 @@ func (s *Session) reply(c *Call, result any, err error, inTurn bool) {
 	s.sent(c)
 }
 
+// encoded is a result that a handler has written as JSON by itself.
+type encoded []byte
+
 var buffers = sync.Pool{New: func() any { return new(bytes.Buffer) }}
 
 // encodeReply writes a reply with the id's own text.
@@ -116,7 +119,9 @@ func encodeReply(buf *bytes.Buffer, id []byte, result any) error {
 	buf.WriteString(`{"jsonrpc":"2.0","id":`)
 	buf.Write(id)
 	buf.WriteString(`,"result":`)
-	if err := encodeJSON(buf, result); err != nil {
+	if text, ok := result.(encoded); ok {
+		buf.Write(text)
+	} else if err := encodeJSON(buf, result); err != nil {
 		return err
 	}
 	buf.WriteByte('}')

@@ -1,8 +1,8 @@
 package rpc
 
 import (
+	"bytes"
 	"context"
-	"encoding/json"
 	"errors"
 	"fmt"
 	"reflect"
@@ -140,9 +140,9 @@ func (c *Call) ask(name string, arguments Value, book *string, open books, point
 }
 
 // outcome works a question out and writes its outcome.
-func (c *Call) outcome(ctx context.Context, q *question) (json.RawMessage, error) {
+func (c *Call) outcome(ctx context.Context, q *question) (encoded, error) {
 	o, err := q.answer(ctx)
-	var text json.RawMessage
+	var text encoded
 	if err == nil {
 		text, err = encodeOutcome(o)
 	}
@@ -165,12 +165,6 @@ type oneOfMany struct {
 	Arguments Faulty `json:"arguments"`
 }
 
-// answered is an element of the result of functions/answerMany.
-type answered struct {
-	Outcome json.RawMessage `json:"outcome,omitempty"`
-	Error   *Error          `json:"error,omitempty"`
-}
-
 func answerMany(_ context.Context, call *Call) (any, error) {
 	open := call.Session.books
 	return Later(func(ctx context.Context) (any, error) {
@@ -182,21 +176,31 @@ func answerMany(_ context.Context, call *Call) (any, error) {
 			return nil, fault
 		}
 		progress := call.Progress(fmt.Sprintf("Working out %d calls", len(p.Calls)))
-		answers := make([]answered, len(p.Calls))
+		answers := []byte{'['}
 		for i, one := range p.Calls {
 			outcome, err := call.guard(func() (any, error) { return call.oneOfMany(ctx, one.Value, p.Book, open) })
-			switch {
-			case ctx.Err() != nil:
+			if ctx.Err() != nil {
 				return nil, ctx.Err()
-			case err != nil:
-				answers[i].Error = wireError(err)
-			default:
-				answers[i].Outcome = outcome.(json.RawMessage)
+			}
+			if i > 0 {
+				answers = append(answers, ',')
+			}
+			if text, ok := outcome.(encoded); ok && err == nil {
+				answers = append(append(append(answers, `{"outcome":`...), text...), '}')
+			} else {
+				answers = append(append(append(answers, `{"error":`...), encodeError(err)...), '}')
 			}
 			progress.Report(i+1, len(p.Calls), "")
 		}
-		return answers, nil
+		return encoded(append(answers, ']')), nil
 	})
+}
+
+// encodeError writes an error as it stands among the answers to many calls.
+func encodeError(err error) []byte {
+	var b bytes.Buffer
+	_ = encodeJSON(&b, wireError(err)) // texts and a whole number cannot fail
+	return b.Bytes()
 }
 
 func (c *Call) oneOfMany(ctx context.Context, v Value, book *string, open books) (any, error) {

@@ -33,6 +33,12 @@ func (c *testClient) reply() reply {
 	return r
 }
 
+// answered is an element of the result of functions/answerMany.
+type answered struct {
+	Outcome json.RawMessage `json:"outcome"`
+	Error   *Error          `json:"error"`
+}
+
 // wireOutcome is an outcome as a client reads it. Numbers keep their text.
 type wireOutcome struct {
 	Function string         `json:"function"`

@@ -2,7 +2,6 @@ package rpc
 
 import (
 	"bytes"
-	"encoding/json"
 	"fmt"
 	"math"
 	"strconv"
@@ -74,7 +73,7 @@ func appendResult(b []byte, name string, value any) ([]byte, error) {
 
 // encodeOutcome writes an outcome; outcomeSchema describes it. What does not
 // exist is absent.
-func encodeOutcome(o *funcs.Outcome) (json.RawMessage, error) {
+func encodeOutcome(o *funcs.Outcome) (encoded, error) {
 	b := append(make([]byte, 0, 2048), `{"function":`...)
 	b = appendText(b, o.Function.Name)
 	b = append(b, `,"status":`...)
