@@ -24,7 +24,7 @@ var (
 // estimate has the standard deviation null/√n without a difference and
 // other/√n with it; the search starts there.
 func normalShares(difference, null, other, significance, power float64, dir string) float64 {
-	z := dist.Normal{}.UpperQuantile(oneTail(significance, dir))*null + dist.Normal{}.Quantile(power)*other
+	z := float64(dist.Normal{}.UpperQuantile(oneTail(significance, dir))*null) + float64(dist.Normal{}.Quantile(power)*other)
 	return z / difference * z / difference
 }
 
@@ -186,8 +186,8 @@ var proportionDifferenceSize = &Function{
 		if t.largest() < smallestGroup || t.size(t.largest()) < smallestGroup {
 			return c.groupsTooMany("first-proportion", t.ratio, nil)
 		}
-		pooled := (t.first + t.second*t.ratio) / (1 + t.ratio)
-		other := math.Hypot(shareSD(t.first), shareSD(t.second)/math.Sqrt(t.ratio))
+		pooled := (t.first + float64(t.second*t.ratio)) / (1 + t.ratio)
+		other := math.Sqrt(float64(t.first*(1-t.first)) + float64(t.second*(1-t.second))/t.ratio)
 		n, err := c.sharesSize(t, t.first-t.second, shareSD(pooled)*math.Sqrt(1+1/t.ratio), other)
 		if err != nil {
 			return err

@@ -5,6 +5,8 @@ import (
 	"math"
 	"math/rand/v2"
 	"testing"
+
+	"halfwidth/funcs/internal/dist"
 )
 
 // planning is a call that only carries a context.
@@ -135,5 +137,32 @@ func TestPlansOfRareCountsAreTheSmallestByTheDefinition(t *testing.T) {
 	}
 	if compared < 30 {
 		t.Errorf("only %d designs compared", compared)
+	}
+}
+
+// The power is the probability of the counts whose p-value, as the intervals of
+// proportions give it, is no more than the significance: all counts tried.
+func TestPowersOfProportionsGoByThePValues(t *testing.T) {
+	random := rand.New(rand.NewPCG(7, 4))
+	for range 60 {
+		n, m := 2+random.IntN(40), 2+random.IntN(40)
+		first, second := random.Float64(), 0.01+0.98*random.Float64()
+		dir, significance, _ := design(random, first-second)
+		rejects := func(p float64) bool { return staysIn(p, significance) }
+		var one, two float64
+		for x := 0; x <= n; x++ {
+			mass := dist.Binomial{N: n, P: first}.PMF(x)
+			if rejects(binomialPValue(float64(x), float64(n), second, dir)) {
+				one += mass
+			}
+			for y := 0; y <= m; y++ {
+				z := pooledScoreZ(float64(x), float64(n), float64(y), float64(m))
+				if rejects(scoreP(float64(x+y), float64(n+m), z, dir)) {
+					two += mass * dist.Binomial{N: m, P: second}.PMF(y)
+				}
+			}
+		}
+		within(t, "one proportion", shareTest{first, second, significance, dir}.power(n, 0), one, 1e-12)
+		within(t, "two proportions", sharesPairTest{first: first, second: second, significance: significance, direction: dir, secondN: m}.power(n, 0), two, 1e-12)
 	}
 }
