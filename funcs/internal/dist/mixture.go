@@ -136,6 +136,6 @@ func (m poissonMixture) firstInRange(start, end float64, upper bool) float64 {
 func solvePositive(tail func(float64) float64, p, centre, spread float64) float64 {
 	target := num.Log(p)
 	f := func(u float64) float64 { return num.Log(tail(num.Exp(u))) - target }
-	u := crossing(f, num.Log(centre), min(max(spread, 1e-12), 1), -745, 709.7, 2e-16)
+	u := crossing(f, num.Log(centre), min(max(spread, 1e-12), 1), -745, 709.7, math.Abs(target))
 	return num.Exp(u)
 }

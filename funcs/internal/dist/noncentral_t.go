@@ -47,23 +47,38 @@ func (d NoncentralT) logSF(t float64) float64 {
 		return 0
 	case math.IsInf(delta, 0):
 		return min(delta, 0)
-	case t == 0:
-		return NormalLogCDF(delta)
+	case math.Abs(t) < 1e-170:
+		return NormalLogCDF(delta) // t s is nothing beside delta for any likely s
 	case d.DF > manyDF:
 		return NormalLogCDF(delta - t)
-	case math.Abs(delta) > farNoncentrality && delta*delta > 50*d.DF:
+	}
+	// Beyond far the tail is a power of t: s has to be so small that its density
+	// is one, to a relative 1e-20.
+	if far := 1e10 * (math.Abs(delta) + 40) * max(1, math.Sqrt(d.DF)); t > far {
+		return d.logSF(far) - float64(d.DF*num.Log(t/far))
+	}
+	// Where this is not the smaller tail, take the complement.
+	if t < delta {
+		if below := num.Exp(d.mirror().integral(-t)); below < 0.99 {
+			return num.Log1p(-below)
+		}
+	}
+	return d.integral(t)
+}
+
+// integral is log P(T > t), by whichever order of integration is smoother.
+func (d NoncentralT) integral(t float64) float64 {
+	if delta := math.Abs(d.Noncentrality); delta > farNoncentrality && delta > 7*math.Sqrt(d.DF) {
 		return d.logSFOverZ(t)
 	}
 	return d.logSFOverScale(t)
 }
 
-// logSFOverScale integrates over log s. With s = exp(u), u = peak + w and
-// w = v - exp(-v-3), the slow left tail exp(df*u) of few degrees of freedom
-// ends doubly exponentially in v, and nothing changes near the peak.
+// logSFOverScale integrates over log s, with s = exp(u), u = peak + w.
 func (d NoncentralT) logSFOverScale(t float64) float64 {
 	nu, delta := d.DF, d.Noncentrality
 	peak := d.peakLogScale(t)
-	sPeak := num.Exp(peak)
+	sPeak := math.Exp(peak)
 	logIntegrand := func(w float64) float64 {
 		u := peak + w
 		var x float64
@@ -75,8 +90,24 @@ func (d NoncentralT) logSFOverScale(t float64) float64 {
 		return float64(nu*scaleExponent(u)) + NormalLogCDF(x)
 	}
 	top := logIntegrand(0)
+	if top < -2000 {
+		return top // far below the smallest float64
+	}
 	f := func(w float64) float64 { return num.Exp(logIntegrand(w) - top) }
-	if nu < 30 {
+	apart := 0.0
+	switch {
+	case nu < 0.5 && t < 0:
+		// A step of Phi on a nearly level density: Phi(delta) apart, the rest
+		// E P(delta < Z < delta - t s) vanishes with s.
+		apart = NormalLogCDF(delta)
+		f = func(w float64) float64 {
+			u := peak + w
+			rise := Normal{}.Between(delta, delta-float64(t*(sPeak*num.Exp(w))))
+			return num.Exp(float64(nu*scaleExponent(u)) + num.Log(rise) - top)
+		}
+	case nu < 30:
+		// With w = v - exp(-v-3) the slow left tail exp(nu*u) of few degrees of
+		// freedom ends doubly exponentially in v; nothing changes near the peak.
 		g := f
 		f = func(v float64) float64 {
 			e := num.Exp(-v - 3)
@@ -84,12 +115,20 @@ func (d NoncentralT) logSFOverScale(t float64) float64 {
 		}
 	}
 	// The frequencies that the integrand holds: those of the density, and those
-	// of Phi(delta - t s), which changes over 1/(t s) where t s is about delta.
+	// of Phi(delta - t s), which changes over 1/(t s): at the peak where it is
+	// small there, else where t s is about delta.
 	ts := math.Abs(t) * sPeak
-	edge := min(math.Abs(t)*sPeak*(1+9/math.Sqrt(2*nu)), math.Abs(delta)+8)
-	band := math.Sqrt(2*nu*max(1, sPeak*sPeak) + max(ts*ts, edge*edge))
+	edge := min(ts*(1+9/math.Sqrt(2*nu)), math.Abs(delta)+8)
+	if delta-math.Copysign(ts, t) < 0 {
+		edge = max(edge, ts)
+	}
+	band := math.Hypot(math.Sqrt(2*nu)*max(1, sPeak), edge)
 	step := min(0.18, 1/band)
-	return top + num.Log(scaleDensity1(nu)*num.Trapezoid(f, 0, step, 1e-8))
+	integral := top + num.Log(scaleDensity1(nu)*num.Trapezoid(f, 0, step, 1e-8))
+	if apart != 0 {
+		integral = num.Log(num.Exp(integral) + num.Exp(apart))
+	}
+	return integral
 }
 
 // peakLogScale is log s where the density of log s times Phi(delta - t s) is
@@ -136,25 +175,33 @@ func (d NoncentralT) logSFOverZ(t float64) float64 {
 	if delta > 0 && t < 0 {
 		return 0
 	}
-	f := func(z float64) float64 {
+	tail := func(z float64) float64 {
 		r := (z + delta) / t
 		if r <= 0 {
 			return 0
 		}
-		small, large := GammaTails(nu/2, nu/2*r*r)
+		below, above := GammaTails(nu/2, nu/2*r*r)
 		if t < 0 {
-			small = large
+			return above
 		}
-		return num.Exp(-z*z/2) * small
+		return below
 	}
-	// The nearest point of the likely region: z^2 + nu ((z + delta)/t)^2 less
-	// its value for s = 1 pulls z towards t - delta.
+	if first, last := tail(-40), tail(40); first == last {
+		return num.Log(first) // certain, or too small, over all of z that counts
+	}
+	// In the tail, z is pulled to where z^2 + nu (r^2 - 2 log r) is smallest.
+	root := math.Sqrt(nu) / math.Abs(t)
 	z := 0.0
 	if t > delta {
-		// The tail needs s below or |z| above: s = 1 + w, delta + z = t s.
-		z = (t - delta) * (1 / (1 + t/math.Sqrt(2*nu)*(t/math.Sqrt(2*nu))))
+		a := math.Abs(delta)
+		y := (a + math.Hypot(a, 2*math.Sqrt(nu)*math.Hypot(1, root))) / 2 / (1 + root*root)
+		z = y - a
+		if t < 0 {
+			z = a - y
+		}
 	}
-	step := min(0.5, 0.8/math.Hypot(1, math.Sqrt(2*nu)/t))
+	step := min(0.5, 0.8/math.Hypot(1, math.Hypot(root, math.Sqrt(nu)/(z+delta))))
+	f := func(z float64) float64 { return num.Exp(-float64(z*z)/2) * tail(z) }
 	return num.Log(num.Trapezoid(f, z, step, 1e-8) / math.Sqrt(2*math.Pi))
 }
 
@@ -199,9 +246,12 @@ func (d NoncentralT) solveUpper(q float64) float64 {
 	}
 	target := num.Log(q)
 	f := func(y float64) float64 { return d.logSF(math.Sinh(y)) - target }
-	spread := math.Sqrt(1 + delta*delta/(2*nu))
-	start := delta + z*spread
-	step := min(spread/math.Hypot(1, start), 0.5)
-	y := crossing(f, math.Asinh(start), step, -710, 710, 2e-16)
+	spread := math.Hypot(1, delta/math.Sqrt(2*nu))
+	start := delta + float64(z*min(spread, 1e150))
+	step := 0.5
+	if spread < 1e150 {
+		step = min(spread/math.Hypot(1, start), 0.5)
+	}
+	y := crossing(f, math.Asinh(start), step, -710, 710, math.Abs(target))
 	return math.Sinh(y)
 }

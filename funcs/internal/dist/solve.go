@@ -5,13 +5,19 @@ import "math"
 // crossing finds where the monotone function f passes 0. It walks from x in
 // steps that double until f changes sign, within lo and hi, then narrows the
 // bracket by inverse quadratic interpolation guarded by bisection (Chandrupatla
-// 1997, Advances in Engineering Software 28, 145-149) until it is no wider than
-// tol*max(1, |x|). f may be infinite but not NaN. Where f keeps its sign to the
-// end of the interval, that end is the answer.
-func crossing(f func(float64) float64, x, step, lo, hi, tol float64) float64 {
+// 1997, Advances in Engineering Software 28, 145-149) until it is two units in
+// the last place of x wide, or f is as near to 0 as the rounding of numbers of
+// the given size lets it come. f may be infinite but not NaN. Where f keeps its
+// sign to the end of the interval, that end is the answer.
+func crossing(f func(float64) float64, x, step, lo, hi, size float64) float64 {
+	return crossingWithin(f, x, step, lo, hi, 2e-16, 4e-16*max(1, size))
+}
+
+// crossingWithin is crossing to a bracket of tol*max(1, |x|), or |f| <= near.
+func crossingWithin(f func(float64) float64, x, step, lo, hi, tol, near float64) float64 {
 	x = min(max(x, lo), hi)
 	fx := f(x)
-	if fx == 0 || math.IsNaN(fx) {
+	if math.Abs(fx) <= near || math.IsNaN(fx) {
 		return x
 	}
 	// The side is found by one trial step, so f may rise or fall.
@@ -41,11 +47,11 @@ func crossing(f func(float64) float64, x, step, lo, hi, tol float64) float64 {
 	if fb == 0 {
 		return b
 	}
-	return chandrupatla(f, a, fa, b, fb, tol)
+	return chandrupatla(f, a, fa, b, fb, tol, near)
 }
 
 // chandrupatla narrows the bracket a, b, where f has opposite signs.
-func chandrupatla(f func(float64) float64, a, fa, b, fb, tol float64) float64 {
+func chandrupatla(f func(float64) float64, a, fa, b, fb, tol, near float64) float64 {
 	t := 0.5
 	if !math.IsInf(fa, 0) && !math.IsInf(fb, 0) {
 		t = fa / (fa - fb)
@@ -56,7 +62,7 @@ func chandrupatla(f func(float64) float64, a, fa, b, fb, tol float64) float64 {
 			best, fbest = b, fb
 		}
 		width := tol * max(1, math.Abs(best))
-		if fbest == 0 || math.Abs(b-a) <= width {
+		if math.Abs(fbest) <= near || math.Abs(b-a) <= width {
 			return best
 		}
 		// Stay half a tolerance away from both ends, so that the bracket closes.

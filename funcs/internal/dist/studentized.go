@@ -173,14 +173,10 @@ func (s studentized) solve(p float64, upper bool, start float64) float64 {
 	if s.df > 100 {
 		// Near the quantile for a known spread, to which each step costs one tail.
 		f := func(y float64) float64 { return num.Log(s.tail(start*num.Exp(y), upper)) - target }
-		tolerance := 0.1 / math.Sqrt(s.df)
 		if s.df > manyDF {
-			tolerance = 0
+			return start * num.Exp(crossing(f, 0, 0.1, -700, 700, math.Abs(target)))
 		}
-		start *= num.Exp(crossing(f, 0, 0.1, -700, 700, max(tolerance, 2e-16)))
-		if s.df > manyDF {
-			return start
-		}
+		start *= num.Exp(crossingWithin(f, 0, 0.1, -700, 700, 0.1/math.Sqrt(s.df), 1e-6))
 	}
 	n := s.nodes(start, upper)
 	if n == nil {
@@ -188,5 +184,5 @@ func (s studentized) solve(p float64, upper bool, start float64) float64 {
 	}
 	f := func(y float64) float64 { return num.Log(n.average(y)) - target }
 	step := min(0.1, 1/math.Sqrt(s.df))
-	return n.base * num.Exp(crossing(f, n.first, step, -700, 700, 2e-16))
+	return n.base * num.Exp(crossing(f, n.first, step, -700, 700, math.Abs(target)))
 }

@@ -16,16 +16,24 @@ import (
 //
 // by the trapezoidal rule in sqrt(n) z, in which the integrand is even.
 type twoSidedTolerance struct {
-	n, content float64
-	r          []float64 // r at sqrt(n) z = 0, step, 2 step, ...
+	n, content, step float64
+	r                []float64 // r at sqrt(n) z = 0, step, 2 step, ...
 }
 
-const toleranceStep = 0.125
+func newTwoSidedTolerance(n int, content float64) *twoSidedTolerance {
+	// For few values r(z) bends within one sd of the mean; these steps leave
+	// 1e-15 for contents from 1e-6 to 1 - 1e-9.
+	step := 0.125
+	if n < 8 {
+		step = 0.06
+	}
+	return &twoSidedTolerance{n: float64(n), content: content, step: step}
+}
 
 // radius is r at node i.
 func (t *twoSidedTolerance) radius(i int) float64 {
 	for len(t.r) <= i {
-		z := float64(len(t.r)) * toleranceStep / math.Sqrt(t.n)
+		z := float64(len(t.r)) * t.step / math.Sqrt(t.n)
 		start := Normal{}.UpperQuantile((1 - t.content) / 2)
 		if len(t.r) > 0 {
 			start = t.r[len(t.r)-1]
@@ -40,11 +48,8 @@ func contentRadius(z, content, start float64) float64 {
 	n := Normal{}
 	outside := 1 - content
 	if content < 0.5 {
-		f := func(u float64) float64 {
-			r := num.Exp(u)
-			return num.Log(n.Between(z-r, z+r)) - num.Log(content)
-		}
-		return num.Exp(crossing(f, num.Log(start), 0.01, -745, 10, 2e-16))
+		f := func(u float64) float64 { return logInterval(z, num.Exp(u)) - num.Log(content) }
+		return num.Exp(crossing(f, num.Log(start), 0.01, -745, 10, num.Log(1/content)))
 	}
 	// The logarithm of what lies outside is concave in r, so that Newton's steps
 	// come down to the root after the first.
@@ -64,8 +69,8 @@ func contentRadius(z, content, start float64) float64 {
 func (t *twoSidedTolerance) tails(k float64) (confidence, missed float64) {
 	a := (t.n - 1) / 2
 	peakLow, peakHigh := 0.0, 0.0
-	for i := 0; i < 2000; i++ {
-		y := float64(i) * toleranceStep
+	for i := 0; i < 4000; i++ {
+		y := float64(i) * t.step
 		ratio := t.radius(i) / k
 		weight := num.Exp(-float64(y*y) / 2)
 		if i == 0 {
@@ -94,7 +99,7 @@ func ToleranceFactor(n int, content, confidence float64) float64 {
 	if !toleranceDomain(n, content) || !(confidence > 0 && confidence < 1) {
 		return math.NaN()
 	}
-	t := twoSidedTolerance{n: float64(n), content: content}
+	t := newTwoSidedTolerance(n, content)
 	target := min(confidence, 1-confidence)
 	f := func(u float64) float64 {
 		reached, missed := t.tails(num.Exp(u))
@@ -109,7 +114,7 @@ func ToleranceFactor(n int, content, confidence float64) float64 {
 	z := min(max(Normal{}.UpperQuantile(confidence), -10), 10)
 	root := max(1-2/(9*df)+z*math.Sqrt(2/(9*df)), 0.01)
 	start := t.radius(0) * math.Sqrt((1+1/t.n)/(root*root*root))
-	return num.Exp(crossing(f, num.Log(start), min(0.02, 0.1/math.Sqrt(df)), -700, 700, 2e-16))
+	return num.Exp(crossing(f, num.Log(start), min(0.02, 0.1/math.Sqrt(df)), -700, 700, num.Log(1/target)))
 }
 
 // ToleranceConfidence is the confidence with which mean +- factor*sd of n values
@@ -121,7 +126,7 @@ func ToleranceConfidence(n int, content, factor float64) float64 {
 	case factor <= 0:
 		return 0
 	}
-	t := twoSidedTolerance{n: float64(n), content: content}
+	t := newTwoSidedTolerance(n, content)
 	confidence, _ := t.tails(factor)
 	return confidence
 }
