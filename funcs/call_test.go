@@ -123,7 +123,7 @@ func TestAPanicInAComputationIsAnInternalError(t *testing.T) {
 // The digits were computed from the documented byte layout by an independent
 // program (SHA-256 of Python's hashlib over the bytes written out by hand).
 func TestFingerprintFollowsTheDocumentedBytes(t *testing.T) {
-	out := answer(t, "normal-transform", map[string]any{"mean": -0.0, "sd": 2.0, "multiply": 3.0})
+	out := answer(t, "normal-transform", map[string]any{"mean": math.Copysign(0, -1), "sd": 2.0, "multiply": 3.0})
 	if got, _ := out.Get("fingerprint"); got != "cd61f768e731302a" {
 		t.Errorf("got %v", got)
 	}

@@ -34,7 +34,11 @@ func functionsCommand() *cobra.Command {
 		if f != texttab.Text {
 			return inputTable(function).Write(c.OutOrStdout(), f)
 		}
-		return funcs.WriteReference(c.OutOrStdout(), function)
+		if err := funcs.WriteReference(c.OutOrStdout(), function); err != nil {
+			return err
+		}
+		_, err = fmt.Fprintf(c.OutOrStdout(), "\nFrom the shell:\n\n    %s\n", exampleCommand(function))
+		return err
 	}
 	return c
 }
