@@ -130,6 +130,31 @@ func (c *Call) smallestPlan(lo, hi, start int, holds func(n int) bool) (n int, f
 	return lo, lo <= hi, err
 }
 
+// planN finds n and gives it with what to plan for it, or refuses the input to
+// blame, with what even the largest n attains.
+func (c *Call) planN(input string, hi int, guess float64, holds func(n int) bool, attains func(n int) string) (int, error) {
+	n, found, err := c.smallestPlan(smallestGroup, hi, clampPlan(guess, smallestGroup, hi), holds)
+	switch {
+	case err != nil:
+		return 0, err
+	case !found:
+		return 0, tooMany(input, attains(hi))
+	}
+	return n, c.setPlan(n)
+}
+
+// planGroups is planN for two groups.
+func (c *Call) planGroups(input string, ratio, guess float64, holds func(n, second int) bool, attains func(n, second int) string) (n, second int, err error) {
+	n, second, found, err := c.smallestGroups(ratio, guess, holds)
+	switch {
+	case err != nil:
+		return 0, 0, err
+	case !found:
+		return 0, 0, c.groupsTooMany(input, ratio, attains)
+	}
+	return n, second, c.setGroups(n, second)
+}
+
 // secondSize is the size of the second group beside n in the first; one more
 // than largestPlan stands for all that is larger.
 func secondSize(n int, ratio float64) int {
@@ -312,6 +337,14 @@ func (c *Call) sized(x float64) string { return c.withUnit(toPlace(x, lastPlace(
 
 // bothN words the sizes of two groups.
 func bothN(n, second int) string { return fmt.Sprintf("n = %d and %d", n, second) }
+
+// inDirection words the direction.
+func (c *Call) inDirection() string {
+	if dir := direction.Of(c); dir != either {
+		return "direction " + dir
+	}
+	return "either direction"
+}
 
 // oneSidedLevel refuses a single limit that lies on the wrong side.
 func (c *Call) oneSidedLevel() error {

@@ -89,15 +89,9 @@ var proportionPrecisionSize = &Function{
 		wanted := shareHalfWidth.Of(c)
 		z := dist.Normal{}.UpperQuantile(p.outside) / wanted
 		hi := int(math.Min(largestPlan, p.population))
-		n, found, err := c.smallestPlan(smallestGroup, hi, clampPlan(float64(z*z)*p.share*(1-p.share), smallestGroup, hi),
-			func(n int) bool { return staysIn(p.halfWidth(n), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return tooMany("half-width", brief(p.halfWidth(largestPlan)))
-		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN("half-width", hi, float64(z*z)*p.share*(1-p.share),
+			func(n int) bool { return staysIn(p.halfWidth(n), wanted) }, func(n int) string { return brief(p.halfWidth(n)) })
+		if err != nil {
 			return err
 		}
 		c.set("attained-half-width", p.halfWidth(n))

@@ -46,22 +46,16 @@ var distributionFreeToleranceSize = &Function{
 	compute: func(c *Call) error {
 		share, wanted, dir := content.Of(c), confidence.Of(c), direction.Of(c)
 		attained := func(n int) float64 { return orderConfidence(n, share, dir) }
-		start := clampPlan(num.Log(1-wanted)/num.Log(share), smallestGroup, largestPlan)
-		n, found, err := c.smallestPlan(smallestGroup, largestPlan, start, func(n int) bool { return reaches(attained(n), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return tooMany("content", "confidence "+percent(attained(largestPlan)))
-		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN("content", largestPlan, num.Log(1-wanted)/num.Log(share),
+			func(n int) bool { return reaches(attained(n), wanted) }, func(n int) string { return "confidence " + percent(attained(n)) })
+		if err != nil {
 			return err
 		}
 		c.set("attained-confidence", attained(n))
 		limits := map[string]string{either: "smallest and largest value", above: "smallest value as lower limit", below: "largest value as upper limit"}
 		c.method = "distribution-free, " + limits[dir]
-		c.sentence = fmt.Sprintf("Measure %s, planned for a confidence of %s: with confidence %s they hold %s of the population (direction %s; %s).%s",
-			nText(n), percent(wanted), brief(attained(n)), percent(share), dir, c.method, c.toPlan())
+		c.sentence = fmt.Sprintf("Measure %s, planned for a confidence of %s: with confidence %s they hold %s of the population (%s; %s).%s",
+			nText(n), percent(wanted), brief(attained(n)), percent(share), c.inDirection(), c.method, c.toPlan())
 		return nil
 	},
 }
@@ -129,22 +123,20 @@ var enoughNForMean = &Function{
 		conf, dir := confidence.Of(c), direction.Of(c)
 		wanted := conf - allowedShortfall.Of(c)
 		predicted := func(n int) float64 { return predictedCoverage(float64(n), conf, dir, g1, g2) }
-		n, found, err := c.smallestPlan(smallestGroup, largestPlan, smallestGroup, func(n int) bool { return reaches(predicted(n), wanted) })
-		rule := cochranN(g1)
-		switch {
-		case err != nil:
-			return err
-		case !found, rule > largestPlan:
-			return tooMany(c.firstGiven("sample", "skewness"), "a predicted coverage of "+percent(predicted(largestPlan)))
+		attains := func(n int) string { return "a predicted coverage of " + percent(predicted(n)) }
+		input, rule := c.firstGiven("sample", "skewness"), cochranN(g1)
+		if rule > largestPlan {
+			return tooMany(input, attains(largestPlan))
 		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN(input, largestPlan, rule, func(n int) bool { return reaches(predicted(n), wanted) }, attains)
+		if err != nil {
 			return err
 		}
 		c.set("predicted-coverage", predicted(n))
 		c.set("cochran-n", int(rule))
 		c.method = fmt.Sprintf("predicted coverage of the t interval for skewness %s and excess kurtosis %s", brief(g1), brief(g2))
-		c.sentence = fmt.Sprintf("Measure %s, planned for a coverage of at least %s: the %s interval (direction %s) is predicted to hold the true mean in %s of cases (%s); "+
-			"Cochran's rule asks for n = %.0f.%s", nText(n), percent(wanted), percent(conf), dir, percent(toDigits(predicted(n))), c.method, rule, c.toPlan())
+		c.sentence = fmt.Sprintf("Measure %s, planned for a coverage of at least %s: the %s interval (%s) is predicted to hold the true mean in %s of cases (%s); "+
+			"Cochran's rule asks for n = %.0f.%s", nText(n), percent(wanted), percent(conf), c.inDirection(), percent(toDigits(predicted(n))), c.method, rule, c.toPlan())
 		return nil
 	},
 }

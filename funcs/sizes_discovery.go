@@ -73,15 +73,9 @@ var discoverySize = &Function{
 		if d.population > 0 {
 			hi = min(hi, d.population)
 		}
-		start := clampPlan((float64(d.allowed)-math.Log(1-wanted))/d.rate, smallestGroup, hi)
-		n, found, err := c.smallestPlan(smallestGroup, hi, start, func(n int) bool { return reaches(d.confidence(n), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return tooMany("tolerable-deviation-rate", "confidence "+percent(d.confidence(hi)))
-		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN("tolerable-deviation-rate", hi, (float64(d.allowed)-math.Log(1-wanted))/d.rate,
+			func(n int) bool { return reaches(d.confidence(n), wanted) }, func(n int) string { return "confidence " + percent(d.confidence(n)) })
+		if err != nil {
 			return err
 		}
 		c.set("attained-confidence", d.confidence(n))

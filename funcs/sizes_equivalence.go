@@ -89,6 +89,8 @@ var equivalenceSize = &Function{
 		}
 		wanted, ratio := power.Of(c), allocation.Of(c)
 		holds := func(n, m int) bool { return reaches(p.power(n, m), wanted) }
+		attains := func(n, m int) string { return "power " + brief(p.power(n, m)) }
+		input := c.firstGiven("margin", "upper-margin")
 		// The nearer margin decides; where both are as near, each may miss half.
 		beta := 1 - wanted
 		if p.difference-p.lower == p.upper-p.difference {
@@ -100,28 +102,16 @@ var equivalenceSize = &Function{
 			if ratio != 1 {
 				return c.wrong("allocation-ratio", shortest(ratio), "belongs to design two-samples", "leave it out for design "+p.design)
 			}
-			n, found, err := c.smallestPlan(smallestGroup, largestPlan, clampPlan(start, smallestGroup, largestPlan), func(n int) bool { return holds(n, 0) })
-			switch {
-			case err != nil:
-				return err
-			case !found:
-				return tooMany(c.firstGiven("margin", "upper-margin"), "power "+brief(p.power(largestPlan, 0)))
-			}
-			if err := c.setPlan(n); err != nil {
+			n, err := c.planN(input, largestPlan, start, func(n int) bool { return holds(n, 0) }, func(n int) string { return attains(n, 0) })
+			if err != nil {
 				return err
 			}
 			c.set("attained-power", p.power(n, 0))
 			c.sayPower(nText(n), p.says(c), p.power(n, 0))
 			return nil
 		}
-		n, m, found, err := c.smallestGroups(ratio, start*(1+1/ratio), holds)
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return c.groupsTooMany(c.firstGiven("margin", "upper-margin"), ratio, func(n, m int) string { return "power " + brief(p.power(n, m)) })
-		}
-		if err := c.setGroups(n, m); err != nil {
+		n, m, err := c.planGroups(input, ratio, start*(1+1/ratio), holds, attains)
+		if err != nil {
 			return err
 		}
 		c.set("attained-power", p.power(n, m))

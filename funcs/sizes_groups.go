@@ -54,14 +54,9 @@ var differenceTestSize = &Function{
 		}
 		a, b := g.first/difference, g.second/difference
 		start := normalPower(g.significance, wanted, g.direction)*(float64(a*a)+float64(b*b)/ratio) + 1
-		n, m, found, err := c.smallestGroups(ratio, start, func(n, m int) bool { return reaches(g.power(n, m, difference), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return c.groupsTooMany("difference", ratio, func(n, m int) string { return "power " + brief(g.power(n, m, difference)) })
-		}
-		if err := c.setGroups(n, m); err != nil {
+		n, m, err := c.planGroups("difference", ratio, start, func(n, m int) bool { return reaches(g.power(n, m, difference), wanted) },
+			func(n, m int) string { return "power " + brief(g.power(n, m, difference)) })
+		if err != nil {
 			return err
 		}
 		attained := g.power(n, m, difference)

@@ -38,15 +38,9 @@ func (p oneSampleTest) size(c *Call, phrase string) error {
 		return err
 	}
 	effect := difference / p.sd
-	start := clampPlan(normalPower(p.significance, wanted, p.direction)/float64(effect*effect)+2, smallestGroup, largestPlan)
-	n, found, err := c.smallestPlan(smallestGroup, largestPlan, start, func(n int) bool { return reaches(p.power(n, difference), wanted) })
-	switch {
-	case err != nil:
-		return err
-	case !found:
-		return tooMany("difference", "power "+brief(p.power(largestPlan, difference)))
-	}
-	if err := c.setPlan(n); err != nil {
+	n, err := c.planN("difference", largestPlan, normalPower(p.significance, wanted, p.direction)/float64(effect*effect)+2,
+		func(n int) bool { return reaches(p.power(n, difference), wanted) }, func(n int) string { return "power " + brief(p.power(n, difference)) })
+	if err != nil {
 		return err
 	}
 	c.set("attained-power", p.power(n, difference))
@@ -69,7 +63,7 @@ func (c *Call) sayPower(counts, what string, attained float64) {
 func (c *Call) testLevel() string {
 	text := percent(significance.Of(c))
 	if c.has("direction") {
-		text += ", direction " + direction.Of(c)
+		text += ", " + c.inDirection()
 	}
 	return text
 }

@@ -131,15 +131,8 @@ var meanPrecisionSize = &Function{
 			holds = func(n int) bool { return reaches(p.chance(n, wanted), chance) }
 			purpose = fmt.Sprintf(" that is met with a chance of %s", percent(chance))
 		}
-		hi := int(math.Min(largestPlan, p.population))
-		n, found, err := c.smallestPlan(smallestGroup, hi, clampPlan(p.guess(wanted), smallestGroup, hi), holds)
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return tooMany("half-width", c.sized(p.halfWidth(largestPlan)))
-		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN("half-width", int(math.Min(largestPlan, p.population)), p.guess(wanted), holds, func(n int) string { return c.sized(p.halfWidth(n)) })
+		if err != nil {
 			return err
 		}
 		c.set("attained-half-width", p.halfWidth(n))
@@ -152,14 +145,14 @@ var meanPrecisionSize = &Function{
 
 // sayPrecision composes the sentence of a plan for a half-width.
 func (c *Call) sayPrecision(counts, of, wanted, attained string) {
-	c.sentence = fmt.Sprintf("Measure %s, planned for a half-width of %s: the half-width of %s will be about %s at %s confidence, direction %s (%s).%s",
-		counts, wanted, of, attained, percent(confidence.Of(c)), direction.Of(c), c.method, c.toPlan())
+	c.sentence = fmt.Sprintf("Measure %s, planned for a half-width of %s: the half-width of %s will be about %s at %s confidence, %s (%s).%s",
+		counts, wanted, of, attained, percent(confidence.Of(c)), c.inDirection(), c.method, c.toPlan())
 }
 
 // sayAttained composes the sentence of the half-width that a given n attains.
 func (c *Call) sayAttained(counts, of, attained string) {
-	c.sentence = fmt.Sprintf("With %s the half-width of %s will be about %s at %s confidence, direction %s (%s).",
-		counts, of, attained, percent(confidence.Of(c)), direction.Of(c), c.method)
+	c.sentence = fmt.Sprintf("With %s the half-width of %s will be about %s at %s confidence, %s (%s).",
+		counts, of, attained, percent(confidence.Of(c)), c.inDirection(), c.method)
 }
 
 var meanPrecisionOf = &Function{
@@ -283,14 +276,9 @@ var differencePrecisionSize = &Function{
 		wanted, ratio := halfWidth.Of(c), allocation.Of(c)
 		z := dist.Normal{}.UpperQuantile(p.outside)
 		start := float64(z*z) * (float64(p.first/wanted*p.first/wanted) + float64(p.second/wanted*p.second/wanted)/ratio)
-		n, m, found, err := c.smallestGroups(ratio, start, func(n, m int) bool { return staysIn(p.halfWidth(n, m), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return c.groupsTooMany("half-width", ratio, func(n, m int) string { return c.sized(p.halfWidth(n, m)) })
-		}
-		if err := c.setGroups(n, m); err != nil {
+		n, m, err := c.planGroups("half-width", ratio, start, func(n, m int) bool { return staysIn(p.halfWidth(n, m), wanted) },
+			func(n, m int) string { return c.sized(p.halfWidth(n, m)) })
+		if err != nil {
 			return err
 		}
 		c.set("attained-half-width", p.halfWidth(n, m))

@@ -195,7 +195,7 @@ func TestSentencesSayWhatWasPlannedFor(t *testing.T) {
 		}
 	}
 	out := answered(t, "mean-test-size", map[string]any{"sd": 2.0, "difference": 0.8, "design-effect": 1.5, "non-response": 0.1})
-	const want = "Measure n = 68, planned for power 90%: a true mean 0.8 from the reference will be found with probability 0.9016 at significance 5%, direction either " +
+	const want = "Measure n = 68, planned for power 90%: a true mean 0.8 from the reference will be found with probability 0.9016 at significance 5%, either direction " +
 		"(t test, exact power from the noncentral t with n - 1 degrees of freedom, sd 2). Plan 114, for design effect 1.5 and 10% lost."
 	if v, _ := out.Get("sentence"); v != want {
 		t.Errorf("got  %v\nwant %v", v, want)

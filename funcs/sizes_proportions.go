@@ -154,7 +154,7 @@ func (c *Call) sharesPairTest() (sharesPairTest, error) {
 }
 
 func (t sharesPairTest) says() string {
-	return fmt.Sprintf("true proportions of %s and %s", shortest(t.first), shortest(t.second))
+	return fmt.Sprintf("a difference between true proportions of %s and %s", shortest(t.first), shortest(t.second))
 }
 
 var pairAssumptions = []string{"independent trials with one chance of success in each group", "groups independent of one another"}

@@ -86,14 +86,9 @@ var severalMeansSize = &Function{
 		}
 		wanted := power.Of(c)
 		start := (normalPower(p.significance, wanted, above)+math.Sqrt(float64(2*len(p.means))))/p.spread() + 2
-		n, found, err := c.smallestPlan(smallestGroup, largestPlan, clampPlan(start, smallestGroup, largestPlan), func(n int) bool { return reaches(p.power(float64(n)), wanted) })
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return tooMany("means", "power "+brief(p.power(largestPlan)))
-		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN("means", largestPlan, start, func(n int) bool { return reaches(p.power(float64(n)), wanted) },
+			func(n int) string { return "power " + brief(p.power(float64(n))) })
+		if err != nil {
 			return err
 		}
 		c.set("attained-power", p.power(float64(n)))

@@ -108,14 +108,8 @@ var varianceSize = &Function{
 			effect := math.Log(ratio)
 			start, input = 2*normalPower(significance.Of(c), power.Of(c), direction.Of(c))/float64(effect*effect), "variance-ratio"
 		}
-		n, found, err := c.smallestPlan(smallestGroup, largestPlan, clampPlan(start+2, smallestGroup, largestPlan), holds)
-		switch {
-		case err != nil:
-			return err
-		case !found:
-			return tooMany(input, brief(attained(largestPlan)))
-		}
-		if err := c.setPlan(n); err != nil {
+		n, err := c.planN(input, largestPlan, start+2, holds, func(n int) string { return brief(attained(n)) })
+		if err != nil {
 			return err
 		}
 		c.set("attained", attained(n))
