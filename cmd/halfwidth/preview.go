@@ -33,7 +33,7 @@ func isFolder(path string) bool {
 }
 
 func printPreview(w io.Writer, r *workbook.Report) error {
-	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell"}, {Name: "work out"}, {Name: "label"}, {Name: "input"}, {Name: "written"},
+	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell"}, {Name: "work out"}, {Name: "label"}, {Name: "input"}, {Name: "value, or cells read"},
 		{Name: "values", Right: true}, {Name: "skipped", Right: true}}}
 	for _, row := range r.Plan.Rows {
 		notes := notesOf(row.Findings())
@@ -44,7 +44,7 @@ func printPreview(w io.Writer, r *workbook.Report) error {
 			}
 			cells := []any{in.Cell.String(), functionName(row), row.Label, in.Name, in.Written, nil, nil}
 			if in.Range != "" {
-				cells[4], cells[5], cells[6] = in.Written+" → "+in.Range, in.Used, in.Skipped
+				cells[4], cells[5], cells[6] = in.Range, in.Used, in.Skipped
 				if len(in.Groups) > 0 {
 					cells[4] = cells[4].(string) + " (" + strings.Join(in.Groups, ", ") + ")"
 				}
