@@ -21,7 +21,7 @@ const mostResamples = 10_000_000
 // its resample or its worker, so that the digits do not depend on the cores.
 // newWorker gives the work of one goroutine, with scratch space of its own.
 func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *num.Stream)) error {
-	const chunk = 64 // resamples between two looks at the context
+	const chunk = 64 // resamples that a worker takes at once
 	var next struct {
 		sync.Mutex
 		at int
@@ -38,7 +38,7 @@ func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *
 		all.Go(func() {
 			work, stream := newWorker(), num.NewStream()
 			for from, to := take(); from < to && ctx.Err() == nil; from, to = take() {
-				for i := from; i < to; i++ {
+				for i := from; i < to && ctx.Err() == nil; i++ {
 					stream.Start(uint64(seed), uint64(i))
 					work(i, stream)
 				}
