@@ -200,7 +200,7 @@ func hypergeometricLimits(x, n, size int, conf float64, dir string) limits {
 		func(q float64) float64 { // the fewest marked with P(X >= x) > q
 			lo, hi := x-1, size-(n-x) // rejected or impossible; possible
 			for hi-lo > 1 {
-				if mid := lo + (hi-lo)/2; law(mid).SF(x-1) > q {
+				if mid := lo + (hi-lo)/2; !staysIn(law(mid).SF(x-1), q) {
 					hi = mid
 				} else {
 					lo = mid
@@ -211,7 +211,7 @@ func hypergeometricLimits(x, n, size int, conf float64, dir string) limits {
 		func(q float64) float64 { // the most marked with P(X <= x) > q
 			lo, hi := x, size-(n-x)+1
 			for hi-lo > 1 {
-				if mid := lo + (hi-lo)/2; law(mid).CDF(x) > q {
+				if mid := lo + (hi-lo)/2; !staysIn(law(mid).CDF(x), q) {
 					lo = mid
 				} else {
 					hi = mid
