@@ -42,24 +42,30 @@ func betaEnd(a, b float64) float64 {
 func (d Beta) Between(a, b float64) float64 {
 	a, b = max(a, 0), min(b, 1)
 	return between(d, a, b, func() float64 {
-		X, Y := complement(b, 1-b)
-		odds := num.Log1p((b-a)/a) + num.Log1p((b-a)/(1-b))
-		return betaNarrow(X, Y, d.A, d.B, (b-a)/b, odds)
+		xa, ya := complement(a, 1-a)
+		xb, yb := complement(b, 1-b)
+		return betaNarrow(xa, ya, xb, yb, b-a, d.A, d.B)
 	})
 }
 
-// betaNarrow is the probability between X (1-width) and X, where the log odds
-// differ by odds: by quadrature of the density.
-func betaNarrow(X, Y num.Wide, a, b, width, odds float64) float64 {
-	if min(a, b) > 10 {
-		p := betaPointAt(X, Y, a, b)
-		return float64(p.factor * betaIntegral(X.Hi/Y.Hi, a, b, p.below.Hi, Y.Hi, width))
+// betaNarrow is the probability from xa to xb = xa + width: by quadrature of the
+// density from the end with the larger density outwards, or over the log odds
+// where the ends are far apart, which takes a small parameter.
+func betaNarrow(xa, ya, xb, yb num.Wide, width, a, b float64) float64 {
+	odds := num.Log1p(width/xa.Hi) + num.Log1p(width/yb.Hi)
+	if odds > 1 {
+		x, y := xb.Hi, yb.Hi
+		return panels(0, odds, func(w float64) float64 {
+			e := float64(x * num.Exp(-w))
+			return BetaPrefactor(e/(e+y), y/(e+y), a, b)
+		})
 	}
-	x, y := X.Hi, Y.Hi
-	return panels(0, odds, func(w float64) float64 {
-		e := float64(x * num.Exp(-w))
-		return BetaPrefactor(e/(e+y), y/(e+y), a, b)
-	})
+	p := betaPointAt(xb, yb, a, b)
+	if p.below.Hi > 0 {
+		return float64(p.factor * betaIntegral(xb.Hi/yb.Hi, a, b, p.below.Hi, yb.Hi, width/xb.Hi))
+	}
+	p = betaPointAt(ya, xa, b, a)
+	return float64(p.factor * betaIntegral(ya.Hi/xa.Hi, b, a, p.below.Hi, xa.Hi, width/ya.Hi))
 }
 
 // Quantile is x with P(X <= x) = p.

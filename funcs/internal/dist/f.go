@@ -84,10 +84,10 @@ func (f F) Between(a, b float64) float64 {
 		case inf1:
 			return Gamma{s2}.Between(s2/b, s2/a)
 		}
-		X, Y := f.beta(b)
-		// X(b) - X(a) over X(b).
-		width := (b - a) / b * (s2 / (float64(s1*a) + s2))
-		return betaNarrow(X, Y, s1, s2, width, num.Log1p((b-a)/a))
+		xa, ya := f.beta(a)
+		xb, yb := f.beta(b)
+		width := xb.Hi * ya.Hi * ((b - a) / b)
+		return betaNarrow(xa, ya, xb, yb, width, s1, s2)
 	})
 }
 

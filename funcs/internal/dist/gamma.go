@@ -32,9 +32,15 @@ func (g Gamma) Density(x float64) float64 {
 // Between is P(a <= X <= b).
 func (g Gamma) Between(a, b float64) float64 {
 	return between(g, a, b, func() float64 {
-		if g.Shape > 10 {
-			p := gammaPointAt(g.Shape, num.Widen(b))
-			return float64(p.factor * gammaLowerIntegral(g.Shape, -p.excess.Hi, (b-a)/b))
+		// From the end with the larger density outwards; by log x where the ends
+		// are far apart, which takes a small shape.
+		p, q := gammaPointAt(g.Shape, num.Widen(a)), gammaPointAt(g.Shape, num.Widen(b))
+		switch {
+		case b > 2*a:
+		case q.excess.Hi < 0:
+			return float64(q.factor * gammaLowerIntegral(g.Shape, -q.excess.Hi, (b-a)/b))
+		default:
+			return float64(p.factor * gammaUpperIntegral(g.Shape, p.excess.Hi, (b-a)/a))
 		}
 		return panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
 			return GammaPrefactor(g.Shape, float64(a*num.Exp(w)))

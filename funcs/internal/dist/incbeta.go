@@ -64,7 +64,7 @@ func betaNearRatio(x, y, a, b, below float64) float64 {
 	case x < 0.7 && float64(x*(a+b)) < 0.7*(a+1):
 		return betaSeries(x, a, b)
 	case min(a, b) > quadratureFrom && below < 0.3*min(a, b):
-		return betaIntegral(x/y, a, b, below, y, 1)
+		return betaIntegral(x/y, a, b, below, y, reach(a, below/y, b, x/y))
 	}
 	return betaFraction(x, y, a, b, below)
 }
@@ -133,7 +133,6 @@ func betaFraction(x, y, a, b, below float64) float64 {
 // exp(a (log(1-t) + t) + b (log(1+rt) - rt) - below t/y)/((1-t) (1+rt) y), r = x/y.
 func betaIntegral(r, a, b, below, y, width float64) float64 {
 	slope := below / y
-	width = min(width, reach(a, slope, b, r))
 	return num.Legendre(func(t float64) float64 {
 		rt := float64(r * t)
 		e := float64(a*num.Log1pmx(-t)) + float64(b*num.Log1pmx(rt)) - float64(slope*t)

@@ -77,11 +77,11 @@ func gammaTailsAt(a float64, x num.Wide) tails {
 	near := a > quadratureFrom && math.Abs(p.excess.Hi) < 0.3*a
 	switch {
 	case p.excess.Hi <= 0 && near:
-		t.fromLower(gammaLowerIntegral(a, -p.excess.Hi, 1))
+		t.fromLower(gammaLowerIntegral(a, -p.excess.Hi, reach(a, -p.excess.Hi, 0, 0)))
 	case p.excess.Hi <= 0:
 		t.fromLower(gammaLowerSeries(a, x.Hi))
 	case near:
-		t.fromUpper(gammaUpperIntegral(a, p.excess.Hi, math.Inf(1)))
+		t.fromUpper(gammaUpperIntegral(a, p.excess.Hi, reach(0, p.excess.Hi, a, 1)))
 	default:
 		t.fromUpper(gammaUpperFraction(a, x.Hi, p.excess.Hi))
 	}
@@ -164,7 +164,6 @@ func gammaUpperFraction(a, x, excess float64) float64 {
 // exp(a (log(1-t) + t) - below t)/(1-t), the part of the gamma law between
 // x (1-width) and x over its prefactor at x = a - below.
 func gammaLowerIntegral(a, below, width float64) float64 {
-	width = min(width, reach(a, below, 0, 0))
 	return num.Legendre(func(t float64) float64 {
 		return num.Exp(float64(a*num.Log1pmx(-t))-float64(below*t)) / (1 - t)
 	}, 0, width)
@@ -173,7 +172,6 @@ func gammaLowerIntegral(a, below, width float64) float64 {
 // gammaUpperIntegral is the same on the other side, between x and x (1+width)
 // at x = a + above.
 func gammaUpperIntegral(a, above, width float64) float64 {
-	width = min(width, reach(0, above, a, 1))
 	return num.Legendre(func(t float64) float64 {
 		return num.Exp(float64(a*num.Log1pmx(t))-float64(above*t)) / (1 + t)
 	}, 0, width)

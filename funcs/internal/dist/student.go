@@ -65,22 +65,39 @@ func (s Student) CDF(t float64) float64 { return s.SF(-t) }
 
 // Density is the density at t.
 func (s Student) Density(t float64) float64 {
+	t = math.Abs(t)
 	switch {
 	case !(s.DF > 0) || math.IsNaN(t):
 		return math.NaN()
 	case s.asNormal():
 		return Normal{}.Density(t)
+	case math.IsInf(t, 1):
+		return 0
+	case t >= 1:
+		return s.scaledDensity(t) / t
 	}
-	df := s.df()
 	// The density at 0 times (1 + t^2/DF)^(-(DF+1)/2).
+	df := s.df()
 	peak := num.Exp(logGammaRise(df/2, 0.5)) / math.Sqrt(df) / math.Sqrt(math.Pi)
-	root := math.Abs(t) / math.Sqrt(df)
-	if root > 1e150 {
-		return float64(peak * num.Exp(-(df+1)*num.Log(root)))
-	}
 	o := num.TwoProduct(t, t).Over(df)
-	e := num.Log1pmxWide(o.Plus(1), o).Add(o).Times(-(df + 1) / 2)
-	return float64(peak * num.ExpWide(e))
+	e := num.LogWide(o.Plus(1))
+	if o.Hi < 0.5 {
+		e = num.Log1pmxWide(o.Plus(1), o).Add(o)
+	}
+	return float64(peak * num.ExpWide(e.Times(-(df+1)/2)))
+}
+
+// scaledDensity is t times the density at t >= 1, which is the prefactor of the
+// tails, or DF times the tail where that is its leading term.
+func (s Student) scaledDensity(t float64) float64 {
+	df := s.df()
+	if t/math.Sqrt(df) > farRoot {
+		upper, _ := s.tails(t)
+		return float64(df * upper)
+	}
+	square := num.TwoProduct(t, t)
+	sum := square.Plus(df)
+	return betaPointAt(square.Div(sum), num.Widen(df).Div(sum), 0.5, df/2).factor
 }
 
 // Between is P(a <= T <= b).
@@ -103,14 +120,17 @@ func (s Student) narrow(a, b float64) float64 {
 		return s.narrow(a, 1) + s.narrow(1, b)
 	}
 	df := s.df()
-	scale := 1 / (df + float64(a*a))
+	root := math.Sqrt(df + float64(a*a))
+	if a > 1e150 {
+		root = a
+	}
+	// (1 + ((a+d)^2 - a^2)/(df + a^2))^(-(df+1)/2)
 	relative := func(d float64) float64 {
-		return num.Exp(-0.5 * (df + 1) * num.Log1p(float64(float64(d*scale)*(a+a+d))))
+		return num.Exp(-0.5 * (df + 1) * num.Log1p(float64((d/root)*((a+a+d)/root))))
 	}
 	if a >= 1 {
-		return s.Density(a) * panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
-			d := float64(a * num.Expm1(w))
-			return float64((a + d) * relative(d))
+		return s.scaledDensity(a) * panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
+			return float64(num.Exp(w) * relative(float64(a*num.Expm1(w))))
 		})
 	}
 	return s.Density(a) * num.Legendre(relative, 0, b-a)
