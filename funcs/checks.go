@@ -71,7 +71,7 @@ var outlierCheck = &Function{
 		}
 		c.rows = c.rows[:max(outliers, 1)] // the farthest value stands there in any case
 		c.set("outliers", outliers)
-		c.method = fmt.Sprintf("generalised ESD, up to %d outliers", most)
+		c.method = "generalised ESD, up to " + plural(most, "outlier")
 		c.sayOutliers(outliers, s.n)
 		return nil
 	},

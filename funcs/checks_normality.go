@@ -154,7 +154,12 @@ func andersonDarling(sorted []float64, s summary) (a2, p float64) {
 		terms[i] = float64(2*i+1) * (dist.NormalLogCDF(low) + dist.NormalLogSF(high))
 	}
 	a2 = -n - num.Sum(terms)/n
-	x := a2 * (1 + 0.75/n + 2.25/float64(n*n))
+	return a2, andersonDarlingP(a2 * (1 + 0.75/n + 2.25/float64(n*n)))
+}
+
+// andersonDarlingP is the p-value of A²(1 + 0.75/n + 2.25/n²).
+func andersonDarlingP(x float64) float64 {
+	var p float64
 	switch {
 	case x >= 0.6:
 		x = math.Min(x, 150) // the parabola's lowest point, where p is below 1e-185
@@ -166,5 +171,5 @@ func andersonDarling(sorted []float64, s summary) (a2, p float64) {
 	default:
 		p = -num.Expm1(polynomial(x, -13.436, 101.14, -223.73))
 	}
-	return a2, math.Max(0, math.Min(1, p))
+	return math.Max(0, math.Min(1, p))
 }
