@@ -132,7 +132,7 @@ func (c *Call) wilsonInterval(x, n, size float64, finite bool) limits {
 // (Wilson 1927).
 func wilsonLimits(share, n, z float64) (lower, upper float64) {
 	r := float64(z*z) / n
-	upper = (share + r/2 + math.Sqrt(float64(r*share)*(1-share)+float64(r*r)/4)) / (1 + r)
+	upper = (share + r/2 + math.Sqrt(float64(r*share*(1-share))+float64(r*r)/4)) / (1 + r)
 	switch share {
 	case 0:
 		lower = 0

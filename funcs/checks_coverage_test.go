@@ -1,0 +1,136 @@
+package funcs
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"testing"
+
+	"halfwidth/funcs/internal/dist"
+)
+
+// errors4 fails where a simulated share is more than 4 simulation errors off.
+func errors4(t *testing.T, what string, out *Outcome, result string, want float64) {
+	t.Helper()
+	got, resamples := resultOf(t, out, result), 20000.0
+	if r, ok := out.Arguments["resamples"].Value.(int); ok {
+		resamples = float64(r)
+	}
+	if e := math.Sqrt((want*(1-want) + 1/resamples) / resamples); math.Abs(got-want) > 4*e {
+		t.Errorf("%s: %s %v, want %v ± %v", what, result, got, want, 4*e)
+	}
+}
+
+// Every draw of n from a few values, each as likely.
+func TestCoverageOfEveryDraw(t *testing.T) {
+	values := []float64{0, 1, 5}
+	const n = 5
+	for _, d := range everyDirection {
+		for _, confidence := range []float64{0.8, 0.95} {
+			q := dist.Student{DF: n - 1}.UpperQuantile(tail(confidence, d))
+			var hits, low, high float64
+			for code := range 243 {
+				x, rest := make([]float64, n), code
+				for i := range x {
+					x[i] = values[rest%3] - 2 // less the mean
+					rest /= 3
+				}
+				s := summarise(x)
+				reach := q * s.sd / math.Sqrt(n)
+				switch {
+				case d != below && s.mean-reach > 0:
+					high++
+				case d != above && s.mean+reach < 0:
+					low++
+				default:
+					hits++
+				}
+			}
+			out := answer(t, "coverage-check", map[string]any{"sample": values, "n": n, "confidence": confidence, "direction": d})
+			what := fmt.Sprint(d, confidence)
+			errors4(t, what, out, "coverage", hits/243)
+			errors4(t, what, out, "interval-below", low/243)
+			errors4(t, what, out, "interval-above", high/243)
+			within(t, "the three shares", resultOf(t, out, "coverage")+resultOf(t, out, "interval-below")+resultOf(t, out, "interval-above"), 1, 1e-15)
+			c := (resultOf(t, out, "coverage")*20000 + 1) / 20002
+			within(t, "simulation-error", resultOf(t, out, "simulation-error"), math.Sqrt(c*(1-c)/20000), 1e-12)
+		}
+	}
+}
+
+// Draws without spread hold the target only where they equal it: of 1, 2 and 3
+// drawn twice, 1 of 3 such draws.
+func TestDrawsWithoutSpread(t *testing.T) {
+	if got := [3]int8{place([]float64{0, 0, 0}, 2, either), place([]float64{1, 1}, 2, either), place([]float64{-1, -1}, 2, either)}; got != [3]int8{0, 1, -1} {
+		t.Errorf("got %v", got)
+	}
+	if got := [2]int8{place([]float64{-1, -1}, 2, above), place([]float64{1, 1}, 2, below)}; got != [2]int8{0, 0} {
+		t.Errorf("one limit: got %v", got)
+	}
+	out := answer(t, "coverage-check", map[string]any{"sample": []float64{1, 2, 3}, "n": 2})
+	errors4(t, "1, 2 and 3", out, "coverage", 7.0/9) // the six unequal pairs and (2, 2)
+}
+
+func TestPredictedCoverageAndNNeeded(t *testing.T) {
+	skewed := []float64{1, 1, 2, 2, 3, 4, 5, 9, 14, 30}
+	for _, d := range everyDirection {
+		out := answer(t, "coverage-check", map[string]any{"sample": skewed, "direction": d, "resamples": 1000})
+		s := answer(t, "sample-summary", map[string]any{"sample": skewed})
+		g, k := resultOf(t, s, "skewness"), resultOf(t, s, "excess-kurtosis")
+		// The catalogue's formula, with z of 0.975 or 0.95.
+		z := map[string]float64{either: 1.959963984540054, above: 1.6448536269514722, below: 1.6448536269514722}[d]
+		density := math.Exp(-z*z/2) / math.Sqrt(2*math.Pi)
+		want := 0.95 + 2.0/10*density*z*(k*(z*z-3)/12-g*g*(z*z*z*z+2*z*z-3)/18)
+		switch d {
+		case above:
+			want = 0.95 + g*(2*z*z+1)*density/(6*math.Sqrt(10))
+		case below:
+			want = 0.95 - g*(2*z*z+1)*density/(6*math.Sqrt(10))
+		}
+		within(t, d+" predicted", resultOf(t, out, "predicted-coverage"), math.Min(1, want), 1e-12)
+		plan := answer(t, "enough-n-for-mean", map[string]any{"sample": skewed, "direction": d})
+		within(t, d+" n-needed", numberOf(t, out, "n-needed"), numberOf(t, plan, "n"), 0)
+	}
+	out := answer(t, "coverage-check", map[string]any{"sample": skewed})
+	if !raises(out, "coverage-short") {
+		t.Errorf("coverage %v without a caution", resultOf(t, out, "coverage"))
+	}
+	checkDeclared(t, out.Function, out)
+}
+
+func TestCoverageDoesNotFeelShiftOrGaps(t *testing.T) {
+	a := answer(t, "coverage-check", map[string]any{"sample": tenTimes, "resamples": 2000})
+	moved := []float64{math.NaN()}
+	for _, x := range tenTimes {
+		moved = append(moved, 4*x+1024)
+	}
+	b := answer(t, "coverage-check", map[string]any{"sample": moved, "resamples": 2000})
+	for _, r := range []string{"coverage", "interval-below", "interval-above", "n-needed"} {
+		within(t, r, resultOf(t, b, r), resultOf(t, a, r), 0)
+	}
+	at10 := answer(t, "coverage-check", map[string]any{"sample": tenTimes, "n": 10, "resamples": 2000})
+	sameResults(t, a, at10)
+}
+
+func TestCoverageRefusals(t *testing.T) {
+	for _, c := range []struct {
+		code      string
+		arguments map[string]any
+	}{
+		{"few-values", map[string]any{"sample": []float64{3}}},
+		{"no-spread", map[string]any{"sample": []float64{3, 3, 3}}},
+		{"too-many-draws", map[string]any{"sample": tenTimes, "n": 1_000_000}},
+	} {
+		out := answer(t, "coverage-check", c.arguments)
+		refusedFor(t, out, c.code)
+		checkDeclared(t, out.Function, out)
+	}
+	out := answer(t, "coverage-check", map[string]any{"sample": tenTimes, "n": 1_000_000})
+	if want := "That would draw 20000000000 values, but at most 200000000 are drawn in one call; ask for fewer resamples, or for a smaller n."; Note(out.Findings) != want {
+		t.Errorf("got %s", Note(out.Findings))
+	}
+	refuses(t, "coverage-check", map[string]any{"sample": tenTimes, "n": 1}, "n is 1, but must be a whole number, 2 or more")
+	if _, err := Answer(context.Background(), "coverage-check", map[string]any{"sample": tenTimes, "seed": -1}); err == nil {
+		t.Error("a seed below 0 is taken")
+	}
+}
