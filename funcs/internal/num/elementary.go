@@ -119,7 +119,7 @@ func logOf(k, f, c float64) float64 {
 	z := float64(s * s)
 	half := float64(0.5 * float64(f*f))
 	// log(1+f) = f - half + s (half + 2 z atanhTail(z)).
-	r := float64(s * (half + float64(2*z)*atanhTail(z)))
+	r := float64(s * (half + float64(float64(2*z)*atanhTail(z))))
 	return float64(k*ln2Hi) - ((half - (r + (float64(k*ln2Lo) + c))) - f)
 }
 
@@ -173,10 +173,10 @@ func logWide(w Wide) Wide {
 	s := f / t.Hi
 	rest := (math.FMA(-s, t.Hi, f) - float64(s*t.Lo)) / t.Hi
 	z := float64(s * s)
-	tail := float64(float64(2*z)*s)*atanhTail(z) + float64(2*rest)
+	tail := float64(float64(float64(2*z)*s)*atanhTail(z)) + float64(2*rest)
 	tail += w.Lo/w.Hi + float64(k*ln2Lo)
 	// k ln2Lo is rounded to about 1e-16 of 1e-8.
-	sum := TwoSum(float64(k*ln2Hi), 2*s)
+	sum := TwoSum(float64(k*ln2Hi), float64(2*s))
 	return quickTwoSum(sum.Hi, sum.Lo+tail)
 }
 
@@ -186,7 +186,7 @@ func Log1pmxWide(v, x Wide) Wide {
 	if x.Hi > -0.38 && x.Hi < 0.62 {
 		s := x.Div(x.Plus(2))
 		z := float64(s.Hi * s.Hi)
-		cubic := float64(float64(2*z)*s.Hi) * atanhTail(z)
+		cubic := float64(float64(float64(2*z)*s.Hi) * atanhTail(z))
 		return s.Mul(x).Neg().Plus(cubic)
 	}
 	return logWide(v).Sub(x)

@@ -1,5 +1,7 @@
 package num
 
+import "math"
+
 // Trapezoid integrates a positive f over the whole real line by the trapezoidal
 // rule with points centre + k step, halving the step until two sums agree to the
 // relative tolerance tol. For an analytic f that falls off on both sides the
@@ -23,10 +25,10 @@ func Trapezoid(f func(float64) float64, centre, step, tol float64) float64 {
 	h := step
 	sum := side(centre, h) + side(centre-h, -h)
 	for range 12 {
-		finer := sum + side(centre+h/2, h) + side(centre-h/2, -h)
-		before, now := float64(sum*h), float64(finer*h)/2
+		finer := sum + side(centre+float64(h/2), h) + side(centre-float64(h/2), -h)
+		before, now := float64(sum*h), float64(finer*h/2)
 		sum, h = finer, h/2
-		if d := now - before; d <= tol*now && -d <= tol*now {
+		if d := now - before; math.Abs(d) <= float64(tol*now) {
 			break
 		}
 	}

@@ -10,6 +10,8 @@ type Wide struct{ Hi, Lo float64 }
 
 // TwoSum is a + b without error, whatever the order of their sizes.
 func TwoSum(a, b float64) Wide {
+	// The conversions keep a product in an argument from being fused.
+	a, b = float64(a), float64(b)
 	s := a + b
 	v := s - a
 	return Wide{s, (a - (s - v)) + (b - v)}
@@ -17,6 +19,7 @@ func TwoSum(a, b float64) Wide {
 
 // quickTwoSum is a + b without error where |a| >= |b| or a is 0.
 func quickTwoSum(a, b float64) Wide {
+	a, b = float64(a), float64(b)
 	s := a + b
 	return Wide{s, b - (s - a)}
 }
