@@ -89,7 +89,7 @@ func betaSmall(x, y num.Wide, a, b float64) tails {
 func betaSeries(x, a, b float64) float64 {
 	term, sum := 1/a, 1/a
 	for n := 0.0; term > 1e-17*sum; n++ {
-		term *= float64(x*(a+b+n)) / (a + 1 + n)
+		term = float64(term * (float64(x*(a+b+n)) / (a + 1 + n)))
 		sum += term
 	}
 	return sum

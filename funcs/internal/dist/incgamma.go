@@ -187,7 +187,7 @@ func reach(a, slope, b, r float64) float64 {
 	// and not far enough for the second, so Newton's steps follow: the function
 	// is concave and each step ends on the far side.
 	curve := a + float64(float64(b*r)*r)
-	t := 2 * negligible / (slope + math.Sqrt(float64(slope*slope)+2*negligible*curve))
+	t := 2 * negligible / (slope + math.Sqrt(float64(slope*slope)+float64(2*negligible*curve)))
 	if b == 0 {
 		return min(t, 1)
 	}

@@ -141,7 +141,7 @@ func betaInverse(a, b, lower, upper float64) betaRoot {
 		if done {
 			step = max(min(step, 0.01), -0.01)
 		} else if !(w+step > lo && w+step < hi) {
-			step = 0.5*(lo+hi) - w
+			step = float64(0.5*(lo+hi)) - w
 		}
 		e := float64(x * num.Exp(step))
 		sum := e + y
@@ -176,10 +176,10 @@ func betaStart(a, b, p, logP float64) float64 {
 		// Abramowitz and Stegun 26.5.22, with 2a-1 and 2b-1 kept off 1.
 		w := num.Log(a / b)
 		z := Normal{}.UpperQuantile(p)
-		ra, rb := 1/(2*a-0.9), 1/(2*b-0.9)
+		ra, rb := 1/(float64(2*a)-0.9), 1/(float64(2*b)-0.9)
 		h := 2 / (ra + rb)
-		if l := (z*z - 3) / 6; h+l > 0 {
-			w -= 2 * (z*math.Sqrt(h+l)/h - (rb-ra)*(l+5.0/6-2/(3*h)))
+		if l := (float64(z*z) - 3) / 6; h+l > 0 {
+			w -= float64(2 * (z*math.Sqrt(h+l)/h - float64((rb-ra)*(l+5.0/6-2/(3*h)))))
 		}
 		if power < -0.7 {
 			w = max(w, power)
@@ -187,13 +187,13 @@ func betaStart(a, b, p, logP float64) float64 {
 		return w
 	case a >= 1:
 		// Nearly a gamma law with shape b for -log x, upper tail.
-		g := gammaStart(b, p, logP, -1) / (a + (b-1)/2)
+		g := gammaStart(b, p, logP, -1) / (a + float64((b-1)/2))
 		return -num.Log(num.Expm1(g))
 	case power < -0.7:
 		return power
 	case b >= 1:
 		// Nearly a gamma law with shape a for -log y.
-		g := gammaStart(a, p, logP, 1) / (b + (a-1)/2)
+		g := gammaStart(a, p, logP, 1) / (b + float64((a-1)/2))
 		return num.Log(num.Expm1(g))
 	}
 	if power = (num.Log1p(-p) + logABeta(b, a)) / b; power < -0.7 {

@@ -119,7 +119,7 @@ func (n Normal) Quantile(p float64) float64 {
 		z = wichura(&wichuraFar, r-5)
 	}
 	if q > 1e-300 {
-		z += math.Sqrt(2*math.Pi) * mills(z) * ((n.SF(z) - q) / q)
+		z += float64(math.Sqrt(2*math.Pi) * mills(z) * ((n.SF(z) - q) / q))
 	}
 	return math.Copysign(z, d)
 }

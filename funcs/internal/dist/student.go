@@ -28,7 +28,7 @@ func (s Student) tails(t float64) (upper, central float64) {
 		// x^a/(2 a B(a, 1/2)) with x = DF/t^2, a = DF/2.
 		e := num.LogWide(num.Widen(t)).Times(df).Neg()
 		e = e.Add(num.LogWide(num.Widen(df)).Times(df / 2))
-		e = e.Plus(-logGammaRise(df/2+0.5, 0.5))
+		e = e.Plus(-logGammaRise(float64(df/2)+0.5, 0.5))
 		upper = num.ExpWide(e) / (2 * math.Sqrt(math.Pi))
 		return upper, 0.5 - upper
 	}
@@ -153,9 +153,9 @@ func (s Student) UpperQuantile(q float64) float64 {
 func (s Student) upper(q float64) float64 {
 	df := s.df()
 	// The leading term of the tail, x^a/(2 a B), solved for t = sqrt(DF/x).
-	l := num.LogWide(num.Widen(2 * q)).Plus(num.Log(math.Sqrt(math.Pi)) + logGammaRise(df/2+0.5, 0.5))
+	l := num.LogWide(num.Widen(2 * q)).Plus(num.Log(math.Sqrt(math.Pi)) + logGammaRise(float64(df/2)+0.5, 0.5))
 	root := l.Over(-df)
-	if root.Hi > math.Log(farRoot) {
+	if root.Hi > num.Log(farRoot) {
 		return float64(math.Sqrt(df) * num.ExpWide(root))
 	}
 	r := betaInverse(0.5, df/2, 1-2*q, 2*q)
