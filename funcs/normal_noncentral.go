@@ -33,7 +33,7 @@ var noncentralTProbability = &Function{
 	Name:      "noncentral-t-probability",
 	Version:   1,
 	Summary:   "probability that a value of the noncentral t distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, tDF, shiftOfMean)...),
+	Inputs:    inputs(endsIn(NoUnit, tDF.within(atLeast(0.01)), shiftOfMean)...),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"Johnson & Welch 1940"},

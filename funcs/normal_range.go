@@ -9,7 +9,8 @@ import (
 var (
 	rangeGroups = count("groups", "of how many independent normal means the range is taken", 2).
 			within(Domain{Low: 2, High: 100000, Whole: true}) // the integrals were checked so far
-	rangeDF = degreesOfFreedom("df", "degrees of freedom of the standard deviation that the range is divided by; infinite where it is known", true)
+	rangeDF = degreesOfFreedom("df", "degrees of freedom of the standard deviation that the range is divided by; infinite where it is known", true).
+		within(atLeast(0.5)) // the integrals were checked so far down
 )
 
 func studentizedRangeLaw(c *Call) (dist.Distribution, string) {

@@ -69,7 +69,7 @@ func TestStudentizedRangeArgumentErrors(t *testing.T) {
 	}{
 		{"studentized-range-probability", map[string]any{"groups": 1, "df": 5.0, "to": 3.0}, "groups is 1, but must be a whole number, from 2 to 100000"},
 		{"studentized-range-quantile", map[string]any{"groups": 3.5, "df": 5.0, "probability": 0.5}, "groups is 3.5, but must be a whole number, from 2 to 100000"},
-		{"studentized-range-quantile", map[string]any{"groups": 3, "df": 0.0, "probability": 0.5}, `df is 0, but must be greater than 0, or the text "infinite"`},
+		{"studentized-range-quantile", map[string]any{"groups": 3, "df": 0.0, "probability": 0.5}, `df is 0, but must be 0.5 or more, or the text "infinite"`},
 		{"studentized-range-probability", map[string]any{"groups": 3, "df": 5.0, "from": 3.0, "to": 1.0}, "from is 3, but must not be greater than to (1); exchange the two"},
 	} {
 		_, err := Answer(context.Background(), c.function, c.arguments)

@@ -102,6 +102,9 @@ func (p oneSampleTest) detectable(c *Call, phrase string) error {
 // the difference in the direction claimed.
 func (c *Call) setDetectable(counts, phrase string, se float64, powerAt func(difference float64) float64) error {
 	wanted, unit := power.Of(c), se
+	if se < 1e-300 {
+		return refuse("too-large-to-hold", "sd", "The standard error, %s, is too small to count in; give the sd in a smaller unit.", brief(se))
+	}
 	if direction.Of(c) == below {
 		unit = -se
 	}
