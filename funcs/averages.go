@@ -185,8 +185,11 @@ var pairedInterval = &Function{
 			return err
 		}
 		se := s.sd / math.Sqrt(float64(s.n))
-		if se == 0 {
-			return c.noSpread(c.firstGiven("sample", "sd"))
+		switch {
+		case differences != nil && differOnlyByRounding(differences, sample.Of(c), secondSample.Of(c), s.mean):
+			return refuse("no-spread", "sample", "All differences are equal, so neither an interval nor a test exists; check whether one column was computed from the other.")
+		case se == 0:
+			return c.noSpread("sd")
 		}
 		law := dist.Student{DF: float64(s.n - 1)}
 		dir, ref := direction.Of(c), reference.Of(c)
@@ -213,4 +216,15 @@ var pairedInterval = &Function{
 		}
 		return c.checkDerived("sample", "The list of differences", differences, s)
 	},
+}
+
+// differOnlyByRounding reports that all differences are equal but for the
+// rounding of the values they were taken from: 3.3 - 3.2 is not 1.1 - 1.
+func differOnlyByRounding(differences, first, second []float64, mean float64) bool {
+	for i, d := range differences {
+		if math.Abs(d-mean) > 4e-16*math.Max(math.Abs(first[i]), math.Abs(second[i])) {
+			return false // never for a gap, which is NaN
+		}
+	}
+	return true
 }

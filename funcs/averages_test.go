@@ -234,6 +234,8 @@ func TestEqualValuesAreRefused(t *testing.T) {
 			map[string]any{"sample": []float64{5, 5}}},
 		{"prediction-interval", "The sd is 0, so neither an interval nor a test exists; check whether the values were rounded or copied down.",
 			map[string]any{"mean": 5.0, "sd": 0.0, "n": 9}},
+		{"paired-interval", "All differences are equal, so neither an interval nor a test exists; check whether one column was computed from the other.",
+			map[string]any{"sample": []float64{1.1, 2.1, 3.3}, "second-sample": []float64{1, 2, 3.2}}},
 		{"paired-interval", "The sd is 0, so neither an interval nor a test exists; check whether the values were rounded or copied down.",
 			map[string]any{"mean": 5.0, "sd": 0.0, "n": 9}},
 		{"mean-interval", "The sample has 1 value, but at least 2 are needed; measure more, or widen the condition.", map[string]any{"sample": []float64{5}}},

@@ -15,8 +15,8 @@ var (
 	noEnoughKind      = FindingKind{"heavy-tail", "the variance or the mean does not exist, so that no n is enough"}
 )
 
-// mostDraws is how many values one call draws at the most: some seconds on one
-// core.
+// mostDraws is how many values one call draws at the most: some ten seconds on one
+// core, a minute for the slowest population.
 const mostDraws = 2e8
 
 // tooManyDraws refuses to draw more than mostDraws values.

