@@ -8,6 +8,7 @@ import (
 	"math/rand/v2"
 	"runtime"
 	"slices"
+	"strings"
 	"testing"
 	"time"
 
@@ -44,6 +45,15 @@ func TestLimitsInterpolateAmongReplicates(t *testing.T) {
 	}
 	if b.limit(-2.4, &failed); failed == nil { // Φ(-2.4)·100 = 0.82
 		t.Error("a limit before the first replicate")
+	}
+	for _, estimate := range []float64{0, 100} { // all replicates on one side
+		if _, err := newBCa(estimate, counting(99), 0); err == nil || !strings.HasPrefix(err.Error(), "All resampled quantities lie on one side of the estimate") {
+			t.Errorf("estimate %v: %v", estimate, err)
+		}
+	}
+	failed = nil
+	if b.limit(2.4, &failed); failed == nil {
+		t.Error("a limit after the last replicate")
 	}
 	// With z0 and a: Φ(z0 + (z0+z)/(1 - a(z0+z))) of 99, Efron 1987, equation 6.7.
 	skewed, err := newBCa(40, counting(99), 0.05)
