@@ -34,14 +34,21 @@ type unread struct{}
 func (unread) String() string { return "\x00" }
 
 // long reports that a question may take more than a few milliseconds: it draws
-// at random, searches for a size, works out the rows of a table, brings many
-// numbers or reads sheets.
+// at random, integrates the range of many, searches for a size, works out the
+// rows of a table, brings many numbers or reads sheets.
 func (q *question) long() bool {
 	_, draws := q.function.Input("resamples")
-	return draws || q.function.Family == "sizes" || q.function.Table != nil || numbersIn(q.arguments) > quickNumbers || q.book != nil
+	_, ranges := q.function.Input("groups")
+	return draws || ranges || q.function.Family == "sizes" || q.function.Table != nil || numbersIn(q.arguments) > quickNumbers || q.book != nil
 }
 
 const quickNumbers = 1000
+
+// straight reports that the arguments go straight into a law of probability,
+// where the ends of a domain may take long; data do not come near them.
+func (q *question) straight() bool {
+	return q.function.Family == "normal" || q.function.Family == "counts"
+}
 
 func numbersIn(v Value) int {
 	n := len(v.Numbers)

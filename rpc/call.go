@@ -22,11 +22,12 @@ type Call struct {
 	came time.Time
 
 	// Of calls left to a worker:
-	ctx    context.Context
-	cancel context.CancelFunc
-	run    later
-	place  *list.Element // in the queue; nil once taken
-	size   int
+	ctx     context.Context
+	cancel  context.CancelFunc
+	abandon context.CancelFunc // of work begun in turn; nil where there is none
+	run     later
+	place   *list.Element // in the queue; nil once taken
+	size    int
 
 	mu       sync.Mutex // answered and progress
 	answered bool

@@ -112,13 +112,17 @@ func answer(ctx context.Context, call *Call) (any, error) {
 		})
 	}
 	q, err := read()
-	switch {
-	case err != nil:
+	if err != nil {
 		return nil, err
-	case q.long():
-		return Later(func(ctx context.Context) (any, error) { return call.outcome(ctx, q) })
 	}
-	return call.outcome(ctx, q)
+	work := func(ctx context.Context) (any, error) { return call.outcome(ctx, q) }
+	switch {
+	case q.long():
+		return Later(work)
+	case q.straight():
+		return call.soon(q.function.Name, work)
+	}
+	return work(ctx)
 }
 
 // ask makes a question of the members of a call, which lie at pointer.

@@ -15,9 +15,10 @@ type Options struct {
 	Limits  Limits   // what is 0 takes the default
 	Methods []Method // nil: Methods()
 
-	lookEvery time.Duration    // between looks at the client's process
-	ready     func() bool      // for the writer; nil: found out from out
-	began     func(s *Session) // lets a test look on
+	lookEvery  time.Duration    // between looks at the client's process
+	waitInTurn time.Duration    // 0: the constant of that name
+	ready      func() bool      // for the writer; nil: found out from out
+	began      func(s *Session) // lets a test look on
 }
 
 // Serve answers the messages of one client until it sends exit, its input ends,
@@ -33,6 +34,9 @@ func Serve(ctx context.Context, in io.Reader, out, errw io.Writer, opts Options)
 	}
 	if opts.lookEvery <= 0 {
 		opts.lookEvery = time.Second
+	}
+	if opts.waitInTurn <= 0 {
+		opts.waitInTurn = waitInTurn
 	}
 	if opts.ready == nil {
 		opts.ready = writableNow(out)

@@ -8,6 +8,7 @@ import (
 	"runtime/debug"
 	"strings"
 	"sync"
+	"sync/atomic"
 	"time"
 
 	"github.com/sourcegraph/jsonrpc2"
@@ -25,6 +26,7 @@ type Session struct {
 	remarks *remarks
 	conn    *jsonrpc2.Conn
 	books   books
+	slow    map[string]bool // kinds of work that took too long in turn
 	ctx     context.Context // ends when the session does
 	stop    context.CancelFunc
 
@@ -45,6 +47,8 @@ type Session struct {
 	others  int        // work that Go has begun
 	settled *sync.Cond // unsent or others has fallen, or waiting for them is over
 	pool    pool
+
+	runaways atomic.Int32 // works begun in turn that go on by themselves
 }
 
 type phase uint8
@@ -60,7 +64,7 @@ func newSession(ctx context.Context, out *frameWriter, remarks *remarks, opts Op
 	s := &Session{
 		options: opts, limits: opts.Limits, writer: out, remarks: remarks,
 		methods: map[string]*Method{}, encoding: "utf-16", trace: "off", ended: make(chan struct{}),
-		calls: map[*Call]struct{}{}, byKey: map[string]*Call{},
+		slow: map[string]bool{}, calls: map[*Call]struct{}{}, byKey: map[string]*Call{},
 	}
 	s.settled = sync.NewCond(&s.mu)
 	s.ctx, s.stop = context.WithCancel(ctx)
@@ -199,6 +203,9 @@ func (s *Session) forget(call *Call) {
 	}
 	s.mu.Unlock()
 	call.cancel()
+	if call.abandon != nil {
+		call.abandon()
+	}
 }
 
 // sent is told of a call whose reply has been queued.
