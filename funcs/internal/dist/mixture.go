@@ -44,18 +44,20 @@ func (m poissonMixture) peak(upper bool) (from, to float64) {
 		from, to = math.Floor(m.mean), math.Ceil(m.mean)
 	}
 	for to-from > 8+4*math.Sqrt(to) {
-		mid := math.Floor((from + to) / 2)
+		mid := math.Floor(from/2 + to/2)
 		here, next := m.term(mid, upper), m.term(mid+1, upper)
-		switch {
-		case next > here:
+		rising := next > here
+		if here == next {
+			if here > 0 {
+				return mid, mid
+			}
+			// Both underflow: the weight, if mid is too far from the mean, or
+			// else the central tail.
+			rising = upper != (m.weight(mid) == 0)
+		}
+		if rising {
 			from = mid
-		case next < here:
-			to = mid + 1
-		case here > 0:
-			return mid, mid + 1
-		case upper: // both underflow: the peak is towards the saddle
-			from = mid
-		default:
+		} else {
 			to = mid + 1
 		}
 	}
@@ -66,14 +68,16 @@ func (m poissonMixture) peak(upper bool) (from, to float64) {
 func (m poissonMixture) tail(upper bool) float64 {
 	from, to := m.peak(upper)
 	if m.mean > manyTerms {
-		centre := (from + to) / 2
+		// At whole numbers, so that j+1 is not rounded.
+		centre := math.Floor(from/2 + to/2)
+		step := 64 * math.Ceil(1.2*math.Sqrt(centre)/64)
 		f := func(j float64) float64 {
 			if j < 0 {
 				return 0
 			}
 			return m.term(j, upper)
 		}
-		return min(num.Trapezoid(f, centre, 1.2*math.Sqrt(centre), 1e-8), 1)
+		return min(num.Trapezoid(f, centre, step, 1e-8), 1)
 	}
 	// Beyond these ends the weights, and so the terms, have fallen by 1e-18 from
 	// the largest: a Poisson law of mean c has less at c - 9.2 sqrt(c) - 1 and at
@@ -107,15 +111,15 @@ func (m poissonMixture) tail(upper bool) float64 {
 	return min(sum, 1)
 }
 
-// firstInRange is start, or where the central tail underflows there the nearest
-// number on the way to end from which it does not.
+// firstInRange is start, or where the weight or the central tail underflows there
+// the nearest number on the way to end from which they do not.
 func (m poissonMixture) firstInRange(start, end float64, upper bool) float64 {
 	inRange := func(j float64) bool {
 		low, high := m.tails(j)
 		if upper {
 			low = high
 		}
-		return low >= 1e-300
+		return low >= 1e-300 && m.weight(j) >= 1e-300
 	}
 	if inRange(start) {
 		return start

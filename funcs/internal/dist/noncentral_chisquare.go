@@ -9,6 +9,10 @@ import (
 // Relative error of both tails 1e-13 for noncentralities to 1e4, 1e-12 beyond.
 type NoncentralChiSquare struct{ DF, Noncentrality float64 }
 
+// hugeNoncentrality is where the law is normal to 1e-12, its skewness, and its sd
+// 1e-12 of its mean.
+const hugeNoncentrality = 1e24
+
 func (d NoncentralChiSquare) valid() bool {
 	return d.DF > 0 && !math.IsInf(d.DF, 1) && d.Noncentrality >= 0
 }
@@ -28,7 +32,14 @@ func (d NoncentralChiSquare) tail(x float64, upper bool) float64 {
 	case math.IsInf(d.Noncentrality, 1):
 		return atZero
 	}
-	a, y := max(d.DF/2, 1e-300), x/2
+	if d.Noncentrality > hugeNoncentrality {
+		z := (x/2 - d.DF/2 - d.Noncentrality/2) / math.Sqrt(d.DF/2+d.Noncentrality)
+		if upper {
+			return Normal{}.SF(z)
+		}
+		return Normal{}.CDF(z)
+	}
+	a, y := max(d.DF/2, 1e-100), x/2
 	if d.Noncentrality/2 == 0 {
 		low, high := GammaTails(a, y)
 		if upper {

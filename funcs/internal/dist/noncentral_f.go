@@ -28,8 +28,16 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 			return F{d.DF1, d.DF2}.SF(x)
 		}
 		return F{d.DF1, d.DF2}.CDF(x)
-	case math.IsInf(d.DF2, 1):
+	case d.DF2 > manyDF:
 		return NoncentralChiSquare{d.DF1, d.Noncentrality}.tail(d.DF1*x, upper)
+	}
+	if d.Noncentrality > hugeNoncentrality {
+		// The numerator is as good as its mean; large x is a small denominator.
+		below, above := GammaTails(d.DF2/2, d.DF2/2*((1+d.Noncentrality/d.DF1)/x))
+		if upper {
+			return below
+		}
+		return above
 	}
 	r := d.DF1 / d.DF2 * x
 	if math.IsInf(r, 1) {
@@ -38,7 +46,7 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 	if r == 0 {
 		return atZero
 	}
-	a, b := max(d.DF1/2, 1e-300), max(d.DF2/2, 1e-300)
+	a, b := max(d.DF1/2, 1e-100), max(d.DF2/2, 1e-100)
 	y, z := r/(1+r), 1/(1+r)
 	mean := d.Noncentrality / 2
 	// j (a + j) = mean y (a + b + j)

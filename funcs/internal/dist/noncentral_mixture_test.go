@@ -124,21 +124,22 @@ func TestNoncentralMixtureHasNoSeam(t *testing.T) {
 }
 
 func TestNoncentralMixturesStandAnyArgument(t *testing.T) {
-	odd := []float64{0, 1, 40, 1e5, math.Inf(1)}
-	for _, df := range odd {
-		for _, df2 := range odd {
-			for _, lambda := range odd {
-				if df == 0 || df2 == 0 {
-					if !math.IsNaN((NoncentralF{df, df2, lambda}).CDF(1)) {
-						t.Errorf("no NaN outside the domain: %v %v", df, df2)
-					}
-					continue
-				}
-				for _, x := range odd {
-					d := NoncentralF{df, df2, lambda}
-					if low, high := d.CDF(x), d.SF(x); !(low >= 0 && high >= 0 && math.Abs(low+high-1) < 1e-3) {
-						t.Errorf("%v at %v: tails %v and %v", d, x, low, high)
-					}
+	check := func(d Distribution, valid bool, x float64) {
+		low, high := d.CDF(x), d.SF(x)
+		if valid != (low >= 0 && high >= 0 && math.Abs(low+high-1) < 1e-11) || !valid && !math.IsNaN(low) {
+			t.Errorf("%T%v at %v: tails %v and %v", d, d, x, low, high)
+		}
+		if q := d.Quantile(0.3); valid == math.IsNaN(q) {
+			t.Errorf("%T%v: quantile %v", d, d, q)
+		}
+	}
+	odd := []float64{math.NaN(), -1, 0, 1e-300, 1e-9, 1, 40, 1e5, 1e12, 1e300, math.Inf(1)}
+	for _, df := range []float64{math.NaN(), 0, 1e-9, 1, 40, 1e6, 1e10, math.Inf(1)} {
+		for _, lambda := range odd {
+			for _, x := range odd[1:] {
+				check(NoncentralChiSquare{df, lambda}, df > 0 && !math.IsInf(df, 1) && lambda >= 0, x)
+				for _, df2 := range []float64{math.NaN(), 0, 1e-3, 5, 1e6, 1e300, math.Inf(1)} {
+					check(NoncentralF{df, df2, lambda}, df > 0 && df2 > 0 && lambda >= 0, x)
 				}
 			}
 		}
