@@ -19,7 +19,9 @@ const mostResamples = 10_000_000
 // resample calls work for each resample from 0 to n-1, shared among the cores.
 // Each resample has its own stream, and work may write only to what belongs to
 // its resample or its worker, so that the digits do not depend on the cores.
-// newWorker gives the work of one goroutine, with scratch space of its own.
+// newWorker gives the work of one goroutine, with scratch space of its own. No
+// more of them run than there are cores: a program that allows more threads, to
+// stay quick at other things meanwhile, keeps the others free.
 func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *num.Stream)) error {
 	const chunk = 64 // resamples that a worker takes at once
 	var next struct {
@@ -34,7 +36,7 @@ func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *
 		return from, next.at
 	}
 	var all sync.WaitGroup
-	for range min(runtime.GOMAXPROCS(0), (n+chunk-1)/chunk) {
+	for range min(runtime.GOMAXPROCS(0), runtime.NumCPU(), (n+chunk-1)/chunk) {
 		all.Go(func() {
 			work, stream := newWorker(), num.NewStream()
 			for from, to := take(); from < to && ctx.Err() == nil; from, to = take() {
