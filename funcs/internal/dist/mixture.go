@@ -111,6 +111,25 @@ func (m poissonMixture) tail(upper bool) float64 {
 	return min(sum, 1)
 }
 
+// between is a sum of weight(j) times what each central law has between two
+// limits, where the tails nearly cancel; centre is about the largest term.
+func (m poissonMixture) between(centre float64, central func(j float64) float64) float64 {
+	centre = math.Round(max(centre, 0))
+	f := func(j float64) float64 {
+		if j < 0 {
+			return 0
+		}
+		return m.weight(j) * central(j)
+	}
+	step := 1.0
+	if centre > 200 {
+		// Wide enough for the trapezoidal rule in j.
+		step = math.Ceil(1.2 * math.Sqrt(centre))
+		return num.Trapezoid(f, centre, step, 1e-8)
+	}
+	return walk(f, centre, step, centre) + walk(f, centre-step, -step, 0)
+}
+
 // firstInRange is start, or where the weight or the central tail underflows there
 // the nearest number on the way to end from which they do not.
 func (m poissonMixture) firstInRange(start, end float64, upper bool) float64 {

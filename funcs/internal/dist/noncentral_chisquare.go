@@ -33,30 +33,38 @@ func (d NoncentralChiSquare) tail(x float64, upper bool) float64 {
 		return atZero
 	}
 	if d.Noncentrality > hugeNoncentrality {
-		z := (x/2 - d.DF/2 - d.Noncentrality/2) / math.Sqrt(d.DF/2+d.Noncentrality)
 		if upper {
-			return Normal{}.SF(z)
+			return Normal{}.SF(d.score(x))
 		}
-		return Normal{}.CDF(z)
+		return Normal{}.CDF(d.score(x))
 	}
-	a, y := max(d.DF/2, 1e-100), x/2
 	if d.Noncentrality/2 == 0 {
-		low, high := GammaTails(a, y)
+		low, high := GammaTails(max(d.DF/2, 1e-100), x/2)
 		if upper {
 			return high
 		}
 		return low
 	}
-	m := poissonMixture{
-		mean: d.Noncentrality / 2,
-		// j (j + a) = mean y
-		saddle: 2 * math.Sqrt(d.Noncentrality/2) * math.Sqrt(y) /
-			(a/2/math.Sqrt(d.Noncentrality/2)/math.Sqrt(y) + math.Hypot(a/2/math.Sqrt(d.Noncentrality/2)/math.Sqrt(y), 1)) / 2,
-		tails: func(j float64) (float64, float64) { return GammaTails(a+j, y) },
-		drop:  func(j float64) float64 { return GammaPrefactor(a+j, y) / (a + j) },
-		ratio: func(j float64) float64 { return y / (a + j + 1) },
+	return d.mixture(x).tail(upper)
+}
+
+// score is x less the mean in sds.
+func (d NoncentralChiSquare) score(x float64) float64 {
+	return (x/2 - d.DF/2 - d.Noncentrality/2) / math.Sqrt(d.DF/2+d.Noncentrality)
+}
+
+// mixture is the mixture for arguments about x.
+func (d NoncentralChiSquare) mixture(x float64) poissonMixture {
+	a, y, mean := max(d.DF/2, 1e-100), x/2, d.Noncentrality/2
+	g := math.Sqrt(mean) * math.Sqrt(y)
+	half := a / 2 / g
+	return poissonMixture{
+		mean:   mean,
+		saddle: g / (half + math.Hypot(half, 1)), // j (j + a) = mean y
+		tails:  func(j float64) (float64, float64) { return GammaTails(a+j, y) },
+		drop:   func(j float64) float64 { return GammaPrefactor(a+j, y) / (a + j) },
+		ratio:  func(j float64) float64 { return y / (a + j + 1) },
 	}
-	return m.tail(upper)
 }
 
 // CDF is P(X <= x).
@@ -66,7 +74,18 @@ func (d NoncentralChiSquare) CDF(x float64) float64 { return d.tail(x, false) }
 func (d NoncentralChiSquare) SF(x float64) float64 { return d.tail(x, true) }
 
 // Between is P(a <= X <= b).
-func (d NoncentralChiSquare) Between(a, b float64) float64 { return difference(d, a, b) }
+func (d NoncentralChiSquare) Between(a, b float64) float64 {
+	return between(d, a, b, func() float64 {
+		switch {
+		case d.Noncentrality > hugeNoncentrality:
+			return Normal{}.Between(d.score(a), d.score(b))
+		case d.Noncentrality/2 == 0:
+			return ChiSquare{d.DF}.Between(a, b)
+		}
+		m := d.mixture(a/2 + b/2)
+		return m.between(m.saddle, func(j float64) float64 { return ChiSquare{d.DF + 2*j}.Between(a, b) })
+	})
+}
 
 // Quantile is x with P(X <= x) = p.
 func (d NoncentralChiSquare) Quantile(p float64) float64 {

@@ -46,6 +46,11 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 	if r == 0 {
 		return atZero
 	}
+	return d.mixture(r).tail(upper)
+}
+
+// mixture is the mixture for arguments about x, given as r = DF1 x/DF2.
+func (d NoncentralF) mixture(r float64) poissonMixture {
 	a, b := max(d.DF1/2, 1e-100), max(d.DF2/2, 1e-100)
 	y, z := r/(1+r), 1/(1+r)
 	mean := d.Noncentrality / 2
@@ -56,14 +61,13 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 	if a > c {
 		saddle = 2 * c * ((a + b) / (a - c + root))
 	}
-	m := poissonMixture{
+	return poissonMixture{
 		mean:   mean,
 		saddle: saddle,
 		tails:  func(j float64) (float64, float64) { return BetaTails(y, z, a+j, b) },
 		drop:   func(j float64) float64 { return BetaPrefactor(y, z, a+j, b) / (a + j) },
 		ratio:  func(j float64) float64 { return y * ((a + b + j) / (a + j + 1)) },
 	}
-	return m.tail(upper)
 }
 
 // CDF is P(X <= x).
@@ -73,7 +77,28 @@ func (d NoncentralF) CDF(x float64) float64 { return d.tail(x, false) }
 func (d NoncentralF) SF(x float64) float64 { return d.tail(x, true) }
 
 // Between is P(a <= X <= b).
-func (d NoncentralF) Between(a, b float64) float64 { return difference(d, a, b) }
+func (d NoncentralF) Between(a, b float64) float64 {
+	return between(d, a, b, func() float64 {
+		switch r := d.DF1 / d.DF2 * (a/2 + b/2); {
+		case d.Noncentrality/2 == 0 || math.IsInf(d.DF1, 1):
+			return F{d.DF1, d.DF2}.Between(a, b)
+		case d.Noncentrality > hugeNoncentrality:
+			c := 1 + d.Noncentrality/d.DF1
+			return Gamma{d.DF2 / 2}.Between(d.DF2/2*(c/b), d.DF2/2*(c/a))
+		case d.DF2 > manyDF:
+			return NoncentralChiSquare{d.DF1, d.Noncentrality}.Between(d.DF1*a, d.DF1*b)
+		case !(r > 0) || math.IsInf(r, 1):
+			return difference(d, a, b)
+		default:
+			m := d.mixture(r)
+			return m.between(m.saddle, func(j float64) float64 {
+				// The central ratio j has DF1+2j degrees of freedom above.
+				scale := d.DF1 / (d.DF1 + 2*j)
+				return F{d.DF1 + 2*j, d.DF2}.Between(scale*a, scale*b)
+			})
+		}
+	})
+}
 
 // Quantile is x with P(X <= x) = p.
 func (d NoncentralF) Quantile(p float64) float64 { return d.solve(p, 1-p) }

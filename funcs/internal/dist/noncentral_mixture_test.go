@@ -110,6 +110,37 @@ func TestNoncentralMixtureTailsAndQuantilesAgree(t *testing.T) {
 	}
 }
 
+// Identity: what lies between is the sum of its pieces, also where the tails
+// nearly cancel.
+func TestNoncentralMixtureBetweenKeepsItsDigits(t *testing.T) {
+	rng := rand.New(rand.NewPCG(2, 4))
+	for i := range 120 {
+		lambda := math.Exp(9*rng.Float64() - 2)
+		df := math.Exp(5*rng.Float64() - 0.5)
+		mean := df + lambda
+		sd := math.Sqrt(2*df + 4*lambda)
+		a := max(mean+2*sd*rng.NormFloat64(), 0.1*mean)
+		b := a + sd*math.Exp(-20*rng.Float64())
+		var d Distribution = NoncentralChiSquare{df, lambda}
+		if i%2 == 1 {
+			d = NoncentralF{df, math.Exp(6 * rng.Float64()), lambda}
+			a, b = a/df, b/df
+		}
+		what := fmt.Sprintf("%T%v from %v to %v", d, d, a, b)
+		p := d.Between(a, b)
+		tails := d.CDF(b) - d.CDF(a)
+		if d.CDF(a) > 0.5 {
+			tails = d.SF(a) - d.SF(b)
+		}
+		if math.Abs(p-tails) > 3e-13*min(d.CDF(b), d.SF(a)) {
+			t.Errorf("%s: %v between, tails differ by %v", what, p, tails)
+		}
+		third := (b - a) / 3
+		parts := d.Between(a, a+third) + d.Between(a+third, b-third) + d.Between(b-third, b)
+		wantDigits(t, what, parts, p, 1e-12+2e-15*a/(b-a))
+	}
+}
+
 // The sum over every term and the rule that skips terms give the same tails.
 func TestNoncentralMixtureHasNoSeam(t *testing.T) {
 	for _, df := range []float64{1, 30, 5000} {

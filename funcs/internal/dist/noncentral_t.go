@@ -27,8 +27,49 @@ func (d NoncentralT) CDF(t float64) float64 { return d.mirror().SF(-t) }
 // mirror is the law of -T.
 func (d NoncentralT) mirror() NoncentralT { return NoncentralT{d.DF, -d.Noncentrality} }
 
-// Between is P(a <= T <= b).
-func (d NoncentralT) Between(a, b float64) float64 { return difference(d, a, b) }
+// Between is P(a <= T <= b): where the tails nearly cancel, as an average over s,
+// or over Z, of the probability that the other lies between its limits.
+func (d NoncentralT) Between(a, b float64) float64 {
+	return between(d, a, b, func() float64 {
+		nu, delta := d.DF, d.Noncentrality
+		switch {
+		case nu > manyDF:
+			return Normal{}.Between(a-delta, b-delta)
+		case d.far() && a < 0:
+			return d.mirror().betweenOverZ(-b, -a)
+		case d.far():
+			return d.betweenOverZ(a, b)
+		}
+		// The density of T at t is largest in s at the positive root of
+		// (nu + t^2) s^2 - t delta s - (nu + 1) = 0.
+		t := a/2 + b/2
+		p, q := nu/(nu+t*t), t/(nu+t*t)*delta
+		s := q/2 + math.Sqrt(q*q/4+p*(1+1/nu))
+		f := func(w float64) float64 {
+			x := s * num.Exp(w)
+			inside := logInterval(math.Abs(float64(t*x)-delta), (b-a)/2*x)
+			return num.Exp(float64(nu*scaleExponent(num.Log(s)+w)) + inside)
+		}
+		step := min(0.18, 1/math.Hypot(math.Sqrt(2*nu)*max(1, s), math.Abs(t)*s+8))
+		return scaleDensity1(nu) * num.Trapezoid(f, 0, step, 1e-8)
+	})
+}
+
+// betweenOverZ is P(a <= T <= b) for a > 0 and a large noncentrality.
+func (d NoncentralT) betweenOverZ(a, b float64) float64 {
+	nu, delta := d.DF, d.Noncentrality
+	root := math.Sqrt(nu) / b
+	f := func(z float64) float64 {
+		low, high := (z+delta)/b, (z+delta)/a
+		if low <= 0 {
+			return 0
+		}
+		return num.Exp(-float64(z*z)/2) * Gamma{nu / 2}.Between(nu/2*low*low, nu/2*high*high)
+	}
+	y := (delta + math.Hypot(delta, 2*math.Sqrt(nu)*math.Hypot(1, root))) / 2 / (1 + root*root)
+	step := min(0.5, 0.8/math.Hypot(1, math.Hypot(root, math.Sqrt(nu)/y)))
+	return num.Trapezoid(f, y-delta, step, 1e-8) / math.Sqrt(2*math.Pi)
+}
 
 // farNoncentrality is where integrating over Z takes the place of integrating
 // over s: the step that Phi makes in log s is then too narrow beside the width
@@ -68,10 +109,15 @@ func (d NoncentralT) logSF(t float64) float64 {
 
 // integral is log P(T > t), by whichever order of integration is smoother.
 func (d NoncentralT) integral(t float64) float64 {
-	if delta := math.Abs(d.Noncentrality); delta > farNoncentrality && delta > 7*math.Sqrt(d.DF) {
+	if d.far() {
 		return d.logSFOverZ(t)
 	}
 	return d.logSFOverScale(t)
+}
+
+func (d NoncentralT) far() bool {
+	delta := math.Abs(d.Noncentrality)
+	return delta > farNoncentrality && delta > 7*math.Sqrt(d.DF)
 }
 
 // logSFOverScale integrates over log s, with s = exp(u), u = peak + w.
