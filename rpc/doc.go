@@ -12,6 +12,11 @@
 //     a few workers, from what their handler captured while it was still in turn.
 //   - A result never holds NaN or an infinite number, an error never has code 0.
 //
+// The questions (functions.go) go through arguments.go, which turns JSON into
+// the values and expressions that the descriptor names, to package funcs, and
+// come back through outcome.go. schema.go and openrpc.go describe both ways from
+// the same descriptors.
+//
 // A message passes, in this order: frames.go (bytes to bodies), envelope.go (a
 // body to its members), transport.go (one message for the library, or an answer
 // to a faulty one), session.go (life cycle, order, cancelling), a handler of the
