@@ -52,8 +52,16 @@ func (d StudentizedRange) CDF(q float64) float64 { return d.probability(q, false
 // SF is P(range/s > q).
 func (d StudentizedRange) SF(q float64) float64 { return d.probability(q, true) }
 
-// Between is P(a <= range/s <= b).
-func (d StudentizedRange) Between(a, b float64) float64 { return difference(d, a, b) }
+// Between is P(a <= range/s <= b): where the tails nearly cancel, as an average of
+// P(a s <= range <= b s).
+func (d StudentizedRange) Between(a, b float64) float64 {
+	return between(d, a, b, func() float64 {
+		k, ratio := normalRange(d.Groups), (b-a)/a
+		law := d.law()
+		law.tail = func(w float64, _ bool) float64 { return k.between(w, w*ratio) }
+		return law.probability(a, true)
+	})
+}
 
 // Quantile is q with P(range/s <= q) = p.
 func (d StudentizedRange) Quantile(p float64) float64 { return d.solve(p, 1-p) }
@@ -172,4 +180,21 @@ func (k normalRange) upper(w float64) float64 {
 		return num.Exp(float64((n-1)*NormalLogCDF(z))-float64(z*z)/2) * -num.Expm1((n-1)*num.Log1p(-far/below))
 	}
 	return min(1, n*outwards(f, w/2, w/2, w/2, 0.8/math.Sqrt(1+math.Log(n)))/math.Sqrt(2*math.Pi))
+}
+
+// between is P(w < range < w + width): k times the integral of
+// phi(z) (P(z-w-width < Z < z)^(k-1) - P(z-w < Z < z)^(k-1)).
+func (k normalRange) between(w, width float64) float64 {
+	n := float64(k)
+	if !(w < 55) || !(width > 0) {
+		return 0
+	}
+	f := func(z float64) float64 {
+		whole := logInterval(math.Abs(z-w/2-width/2), w/2+width/2)
+		part := logInterval(math.Abs(z-w-width/2), width/2)
+		// Where the rest is all but the whole, part/whole is near 1.
+		share := min(num.Exp(part-whole), 1)
+		return num.Exp(float64((n-1)*whole)-float64(z*z)/2) * -num.Expm1((n-1)*num.Log1p(-share))
+	}
+	return min(1, n*outwards(f, w/2, min(0, w/2), w, 0.8/math.Sqrt(1+math.Log(n)))/math.Sqrt(2*math.Pi))
 }

@@ -106,6 +106,32 @@ func TestStudentizedRangeTailsAndQuantilesAgree(t *testing.T) {
 	}
 }
 
+// Identity: what lies between is the sum of its pieces, also where the tails
+// nearly cancel.
+func TestStudentizedRangeBetweenKeepsItsDigits(t *testing.T) {
+	rng := rand.New(rand.NewPCG(3, 3))
+	for i := range 40 {
+		d := StudentizedRange{3 + rng.IntN(40), math.Exp(rng.Float64()*10 - 0.5)}
+		if i%8 == 0 {
+			d.DF = math.Inf(1)
+		}
+		a := 6 * rng.Float64()
+		b := a + math.Exp(-18*rng.Float64())
+		what := fmt.Sprint(d, a, b)
+		p := d.Between(a, b)
+		tails := d.CDF(b) - d.CDF(a)
+		if d.CDF(a) > 0.5 {
+			tails = d.SF(a) - d.SF(b)
+		}
+		if math.Abs(p-tails) > 3e-14*min(d.CDF(b), d.SF(a)) {
+			t.Errorf("%s: %v between, tails differ by %v", what, p, tails)
+		}
+		third := (b - a) / 3
+		parts := d.Between(a, a+third) + d.Between(a+third, b-third) + d.Between(b-third, b)
+		wantDigits(t, what, parts, p, 1e-12+1e-15*(1+a)/(b-a))
+	}
+}
+
 // Many degrees of freedom approach infinitely many like 1/df.
 func TestStudentizedRangeApproachesKnownSpread(t *testing.T) {
 	for _, k := range []int{3, 20, 200} {
