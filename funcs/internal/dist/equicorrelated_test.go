@@ -24,6 +24,26 @@ func TestComparisonsWithControlReproducePrintedTable(t *testing.T) {
 	}
 }
 
+// The double integral over the common variable and over s at 40 digits, with
+// probabilities as plain differences.
+func TestMaxTMatchesHighPrecision(t *testing.T) {
+	for _, c := range []struct {
+		law             MaxT
+		t, lower, upper float64
+	}{
+		{ComparisonsWithControl(12, []int{8, 10, 15}, 41, true), 2.5, 0.955967985410463820943, 0.04403201458953617905696},
+		{ComparisonsWithControl(12, []int{8, 10, 15}, 41, false), -0.75, 0.05882092142631962865227, 0.9411790785736803713477},
+		{ComparisonsWithControl(5, []int{20, 6}, 7, false), 6, 0.9995300094608564391533, 0.0004699905391435608467275},
+		{JointPrediction(6, 4, 5, true), 3.5, 0.9441999326817659647993, 0.05580006731823403520074},
+		{JointPrediction(9, 3, 8, true), 11, 0.9999879945945690635629, 0.0000120054054309364371412},
+	} {
+		wantDigits(t, c.law, c.law.CDF(c.t), c.lower, 1e-13)
+		wantDigits(t, c.law, c.law.SF(c.t), c.upper, 1e-13)
+		wantDigits(t, c.law, c.law.Quantile(c.lower), c.t, 1e-11)
+		wantDigits(t, c.law, c.law.UpperQuantile(c.upper), c.t, 1e-12)
+	}
+}
+
 // Identity: one comparison, or one further value, is Student's t.
 func TestMaxTOfOneIsStudent(t *testing.T) {
 	rng := rand.New(rand.NewPCG(10, 1))

@@ -145,13 +145,18 @@ func (k normalRange) lower(w float64) float64 {
 // logInterval is log P(m-half < Z < m+half) for m >= 0.
 func logInterval(m, half float64) float64 {
 	a, b := m-half, m+half
-	switch {
-	case 2*half*max(1, b) < 1:
+	if 2*half*max(1, b) < 1 {
 		return num.Log(narrowInterval(m, half))
-	case a < 0:
-		return num.Log1p(-(Normal{}.SF(b) + Normal{}.SF(-a)))
 	}
-	return num.Log(Normal{}.SF(a) - Normal{}.SF(b))
+	// The farther tail is below 1e-17 of the nearer past this.
+	farther := 0.0
+	if m*half < 20 {
+		farther = Normal{}.SF(b)
+	}
+	if a < 0 {
+		return num.Log1p(-(farther + Normal{}.SF(-a)))
+	}
+	return num.Log(Normal{}.SF(a) - farther)
 }
 
 // narrowInterval is P(m-h < Z < m+h) by the Taylor series of the density about
