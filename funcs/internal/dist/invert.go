@@ -39,10 +39,30 @@ func settled(gap, step float64) bool {
 	return gap < 1e-5 && math.Abs(step) < 0.01 || gap < 4e-16
 }
 
+// leadingOnly is the logarithm of an argument so small that the leading term of
+// the lower tail is all of it. That term is inverted in logarithms, for with
+// shapes near 1e-3 the argument moves a thousand times as fast as its tail.
+const leadingOnly = -40
+
+// logProbability is log p to double length, where p + q = 1 and the smaller of
+// the two is exact.
+func logProbability(p, q float64) num.Wide {
+	if p <= q {
+		return num.LogWide(num.Widen(p))
+	}
+	return num.LogWide(num.TwoSum(1, -q))
+}
+
 // gammaInverse is x with P(a, x) = lower or Q(a, x) = upper, whichever is
 // smaller; the two sum to 1.
 func gammaInverse(a, lower, upper float64) float64 {
 	a = inRange(a)
+	if a < 1 {
+		// P(a, x) = x^a/Gamma(1+a) for small x.
+		if l := logProbability(lower, upper).Plus(logGamma1p(a)).Over(a); l.Hi < leadingOnly {
+			return num.ExpWide(l)
+		}
+	}
 	p, sign := lower, 1.0
 	if upper < lower {
 		p, sign = upper, -1
@@ -110,14 +130,47 @@ func gammaStart(a, p, logP, sign float64) float64 {
 // betaRoot is a solution of the beta inverse: x, y = 1 - x, and x/y.
 type betaRoot struct{ x, y, odds float64 }
 
+// swapped is the root of the mirrored law.
+func (r betaRoot) swapped() betaRoot { return betaRoot{r.y, r.x, 1 / r.odds} }
+
 // betaInverse solves I_x(a, b) = lower or 1 - I_x(a, b) = upper, whichever is
 // smaller; the two sum to 1.
 func betaInverse(a, b, lower, upper float64) betaRoot {
-	if upper < lower {
-		r := betaInverse(b, a, upper, lower)
-		return betaRoot{r.y, r.x, 1 / r.odds}
-	}
 	a, b = inRange(a), inRange(b)
+	if r, ok := betaEdge(a, b, lower, upper); ok {
+		return r
+	}
+	if r, ok := betaEdge(b, a, upper, lower); ok {
+		return r.swapped()
+	}
+	if upper < lower {
+		return betaNewton(b, a, upper).swapped()
+	}
+	return betaNewton(a, b, lower)
+}
+
+// betaEdge inverts I_x(a, b) = x^a/(a B(a, b)) where that is all of it.
+func betaEdge(a, b, lower, upper float64) (r betaRoot, ok bool) {
+	if a >= 1 {
+		return r, false
+	}
+	l := logProbability(lower, upper)
+	if b < 0.5 {
+		// Gamma(b)/Gamma(a+b) = (a+b)/b Gamma(1+b)/Gamma(1+a+b), the quotient in full.
+		l = l.Add(num.LogWide(num.TwoSum(a, b).Over(b))).Plus(logGamma1p(b) - logGamma1p(a+b))
+	} else {
+		l = l.Plus(-logGammaRise(b, a))
+	}
+	l = l.Plus(logGamma1p(a)).Over(a)
+	if l.Hi+num.Log(max(b, 1)) >= leadingOnly {
+		return r, false
+	}
+	x := num.ExpWide(l)
+	return betaRoot{x, 1, x}, true
+}
+
+// betaNewton solves I_x(a, b) = lower for lower <= 1/2.
+func betaNewton(a, b, lower float64) betaRoot {
 	p, logP := lower, num.Log(lower)
 	w := max(min(betaStart(a, b, p, logP), 700), -700)
 	e := num.Exp(-math.Abs(w))

@@ -71,7 +71,7 @@ func logGamma2(t float64) float64 {
 	return float64(t * (even + float64(t*odd)))
 }
 
-// logGamma1p is log Gamma(1+a) for 0 <= a <= 1, with full relative accuracy at
+// logGamma1p is log Gamma(1+a) for 0 <= a <= 1.5, with full relative accuracy at
 // its zeros 0 and 1.
 func logGamma1p(a float64) float64 {
 	if a > 0.5 {
