@@ -74,6 +74,8 @@ func wideMean(xs []float64) Wide {
 // Moments gives the moments of xs about their mean. Relative error some 1e-16
 // for the mean and the sum of squares, whatever the offset of the values; sums of
 // cubes and fourth powers are right to that of the sum of their sizes.
+// Squares of deviations beyond 1e154 leave the range of float64 and come out
+// infinite, those below 1e-154 lose digits.
 func Moments(xs []float64) Summary {
 	if len(xs) == 0 {
 		return Summary{Mean: math.NaN()}
