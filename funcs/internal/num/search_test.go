@@ -83,7 +83,7 @@ func TestSmallestFindsTheFirstFromAnyStart(t *testing.T) {
 }
 
 func TestSmallestAsksFewTimesNearItsStart(t *testing.T) {
-	for _, c := range []struct{ first, start, most int }{{1000, 1000, 2}, {1003, 1000, 6}, {1, 1 << 40, 90}, {math.MaxInt - 1, 5, 140}} {
+	for _, c := range []struct{ first, start, most int }{{1000, 1000, 2}, {1003, 1000, 6}, {1, 1 << 30, 90}, {math.MaxInt - 1, 5, 140}} {
 		calls := 0
 		n, found := Smallest(1, math.MaxInt-1, c.start, func(n int) bool { calls++; return n >= c.first })
 		if !found || n != c.first || calls > c.most {
