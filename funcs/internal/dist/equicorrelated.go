@@ -126,20 +126,10 @@ func (d MaxT) solve(lower, upper float64) float64 {
 			positive = upper < above
 		}
 	}
+	start := math.Sqrt(2*num.Log(d.count())) + 0.5
 	if !positive {
-		// Max below t needs at least the first below t.
-		start := min(Student{d.DF}.Quantile(min(lower, 0.4)), -0.01)
-		if lower <= upper {
-			return d.law().solve(lower, false, start)
-		}
-		return d.law().solve(upper, true, start)
+		start = -0.5
 	}
-	// Each variable beyond its own quantile is the most that the tail can be.
-	each := min(upper, 0.5) / d.count()
-	if d.TwoSided {
-		each /= 2
-	}
-	start := max(Student{d.DF}.UpperQuantile(each), 0.1)
 	if lower <= upper {
 		return d.law().solve(lower, false, start)
 	}

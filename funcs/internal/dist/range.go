@@ -78,9 +78,12 @@ func (d StudentizedRange) solve(lower, upper float64) float64 {
 	case upper == 0:
 		return math.Inf(1)
 	}
-	// An upper bound: each of k(k-1)/2 differences beyond its own quantile.
+	// For a known spread a small lower tail is sqrt(k) (q/sqrt(2 pi))^(k-1).
 	k := float64(d.Groups)
-	start := math.Sqrt2 * Student{d.DF}.UpperQuantile(min(upper, 0.5)/(k*(k-1)))
+	start := math.Sqrt(2*num.Log(k)) + 1
+	if lower < 0.01 {
+		start = min(start, math.Sqrt(2*math.Pi)*num.Exp(num.Log(lower/math.Sqrt(k))/(k-1)))
+	}
 	if lower < upper {
 		return d.law().solve(lower, false, start)
 	}

@@ -133,6 +133,9 @@ func (s studentized) likeliestLogScale(q float64, upper bool) (u, logPart float6
 	}
 	move, here := 1/math.Sqrt(2*s.df+20), f(0)
 	for math.IsInf(here, -1) && move < 1000 {
+		if s.df*max(scaleExponent(move), scaleExponent(-move)) < -800 {
+			break // no likely s makes the tail a float64
+		}
 		if left := f(-move); !math.IsInf(left, -1) {
 			u, here = -move, left
 		} else if right := f(move); !math.IsInf(right, -1) {
@@ -169,15 +172,13 @@ func (s studentized) probability(q float64, upper bool) float64 {
 // solve finds q of the same sign as start whose lower or upper tail is p.
 func (s studentized) solve(p float64, upper bool, start float64) float64 {
 	target := num.Log(p)
-	start = math.Copysign(min(max(math.Abs(start), 1e-300), 1e300), start)
-	if s.df > 100 {
-		// Near the quantile for a known spread, to which each step costs one tail.
-		f := func(y float64) float64 { return num.Log(s.tail(start*num.Exp(y), upper)) - target }
-		if s.df > manyDF {
-			return start * num.Exp(crossing(f, 0, 0.1, -700, 700, math.Abs(target)))
-		}
-		start *= num.Exp(crossingWithin(f, 0, 0.1, -700, 700, 0.1/math.Sqrt(s.df), 1e-6))
+	// For a known spread first, to which each step costs one tail. The nodes then
+	// lie where M does, whatever s does to q.
+	known := func(y float64) float64 { return num.Log(s.tail(start*num.Exp(y), upper)) - target }
+	if s.df > manyDF {
+		return start * num.Exp(crossing(known, 0, 0.1, -700, 700, math.Abs(target)))
 	}
+	start *= num.Exp(crossingWithin(known, 0, 0.1, -700, 700, 0.1/math.Sqrt(s.df+10), 1e-3))
 	n := s.nodes(start, upper)
 	if n == nil {
 		return math.NaN()
