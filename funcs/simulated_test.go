@@ -6,6 +6,8 @@ import (
 	"math"
 	"math/rand/v2"
 	"testing"
+
+	"halfwidth/funcs/internal/dist"
 )
 
 // simulated is a question about samples of a population that meets the
@@ -19,6 +21,35 @@ type simulated struct {
 	upper    string
 	slack    float64 // of an approximate interval: how far its coverage may lie from the confidence
 	atLeast  bool    // the interval is exact but discrete: its coverage is at least the confidence
+	few      bool    // a slow function: fewer samples
+	// holds tells whether the interval holds what it is for, where that is no
+	// fixed truth; nil compares the limits with truth.
+	holds func(out *Outcome, l limits, r *rand.Rand) bool
+}
+
+// holds tells whether limits, of which one may be absent, hold x.
+func (l limits) holds(x float64) bool {
+	return (!l.hasLower || l.lower <= x) && (!l.hasUpper || x <= l.upper)
+}
+
+// allRowsHold tells whether every row of a table holds its true difference, by
+// the names of the groups.
+func allRowsHold(first, second string, means map[string]float64) func(*Outcome, limits, *rand.Rand) bool {
+	return func(out *Outcome, _ limits, _ *rand.Rand) bool {
+		for _, row := range out.Rows {
+			truth := means[row.Values[first].(string)] - means[second]
+			if name, ok := row.Values["second"].(string); ok {
+				truth = means[row.Values[first].(string)] - means[name]
+			}
+			var l limits
+			l.lower, l.hasLower = row.Values["lower"].(float64)
+			l.upper, l.hasUpper = row.Values["upper"].(float64)
+			if !l.holds(truth) {
+				return false
+			}
+		}
+		return len(out.Rows) > 0
+	}
 }
 
 // normals draws n normal values.
@@ -117,6 +148,37 @@ var simulations = []simulated{
 	{function: "proportion-difference-interval", truth: 0.2, slack: 0.02, draw: func(r *rand.Rand) map[string]any {
 		return map[string]any{"first-successes": binomial(r, 60, 0.5), "first-n": 60, "second-successes": binomial(r, 50, 0.3), "second-n": 50}
 	}},
+	{function: "prediction-interval", draw: func(r *rand.Rand) map[string]any {
+		return map[string]any{"sample": normals(r, 7, 30, 5), "future": 3}
+	}, holds: func(_ *Outcome, l limits, r *rand.Rand) bool {
+		for _, x := range normals(r, 3, 30, 5) {
+			if !l.holds(x) {
+				return false
+			}
+		}
+		return true
+	}},
+	{function: "tolerance-interval", few: true, draw: func(r *rand.Rand) map[string]any {
+		return map[string]any{"sample": normals(r, 9, 0, 1), "content": 0.8}
+	}, holds: func(_ *Outcome, l limits, _ *rand.Rand) bool {
+		law, content := dist.Normal{}, 1.0
+		if l.hasLower {
+			content -= law.CDF(l.lower)
+		}
+		if l.hasUpper {
+			content -= law.SF(l.upper)
+		}
+		return content >= 0.8
+	}},
+	{function: "bootstrap-interval", truth: 30, slack: 0.05, few: true, draw: func(r *rand.Rand) map[string]any {
+		return map[string]any{"sample": normals(r, 25, 30, 5), "resamples": 999}
+	}},
+	{function: "pairwise-differences", few: true, draw: func(r *rand.Rand) map[string]any {
+		return map[string]any{"samples": []Group{{"a", normals(r, 5, 1, 5)}, {"b", normals(r, 5, 9, 5)}, {"c", normals(r, 5, 2, 5)}}}
+	}, holds: allRowsHold("first", "", map[string]float64{"a": 1, "b": 9, "c": 2})},
+	{function: "differences-from-control", few: true, draw: func(r *rand.Rand) map[string]any {
+		return map[string]any{"samples": []Group{{"a", normals(r, 5, 1, 5)}, {"b", normals(r, 8, 9, 5)}, {"c", normals(r, 6, 2, 5)}}, "control": "b"}
+	}, holds: allRowsHold("group", "b", map[string]float64{"a": 1, "b": 9, "c": 2})},
 	{function: "rate-interval", truth: 7, atLeast: true, draw: func(r *rand.Rand) map[string]any { return map[string]any{"count": poisson(r, 7)} }},
 	{function: "rate-ratio-interval", truth: 2, atLeast: true, draw: func(r *rand.Rand) map[string]any {
 		return map[string]any{"first-count": poisson(r, 12), "second-count": poisson(r, 6)}
@@ -141,8 +203,11 @@ func TestEveryIntervalCoversAsItSays(t *testing.T) {
 			}
 			r := rand.New(rand.NewPCG(uint64(k), 7))
 			const wanted = 0.9
-			hits, tried := 0, 0
-			for range samples {
+			hits, tried, wantedSamples := 0, 0, samples
+			if s.few {
+				wantedSamples = samples / 10
+			}
+			for range wantedSamples {
 				arguments := s.draw(r)
 				arguments["confidence"] = wanted
 				if _, ok := f.Input("checks"); ok {
@@ -163,16 +228,21 @@ func TestEveryIntervalCoversAsItSays(t *testing.T) {
 				if low == "" {
 					low, high = "lower", "upper"
 				}
-				lower, hasLower := out.Get(low)
-				upper, hasUpper := out.Get(high)
-				if (!hasLower || lower.(float64) <= s.truth) && (!hasUpper || upper.(float64) >= s.truth) {
+				var l limits
+				if v, ok := out.Get(low); ok {
+					l.lower, l.hasLower = v.(float64), true
+				}
+				if v, ok := out.Get(high); ok {
+					l.upper, l.hasUpper = v.(float64), true
+				}
+				if s.holds == nil && l.holds(s.truth) || s.holds != nil && s.holds(out, l, r) {
 					hits++
 				}
 			}
 			coverage := float64(hits) / float64(tried)
 			allowed := 4*math.Sqrt(wanted*(1-wanted)/float64(tried)) + s.slack
 			short, long := coverage < wanted-allowed, coverage > wanted+allowed && !s.atLeast
-			if short || long || tried < samples*9/10 {
+			if short || long || tried < wantedSamples*9/10 {
 				t.Errorf("%s, direction %s: the interval held the truth in %.4f of %d samples, want %.2f ± %.4f", s.function, dir, coverage, tried, wanted, allowed)
 			}
 		}
