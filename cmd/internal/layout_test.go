@@ -14,20 +14,21 @@ const module = "halfwidth/"
 // arrows says which packages of this module a package may import. A trailing
 // /... stands for the package and all below it.
 var arrows = map[string][]string{
-	"cmd/halfwidth":          {"cmd/internal/...", "workbook/page", "workbook", "workbook/calculation", "funcs"},
-	"cmd/halfwidth-server":   {"cmd/internal/...", "rpc"},
-	"cmd/internal/buildinfo": {},
-	"cmd/internal/gendocs":   {"funcs", "rpc"},
-	"cmd/internal/texttab":   {},
-	"rpc":                    {"workbook", "workbook/calculation", "funcs"},
-	"workbook/page":          {"workbook", "workbook/calculation", "funcs"},
-	"workbook":               {"workbook/calculation", "workbook/ooxml", "funcs"},
-	"workbook/demo":          {},
-	"workbook/ooxml":         {},
-	"workbook/calculation":   {"funcs"},
-	"funcs":                  {"funcs/internal/..."},
-	"funcs/internal/dist":    {"funcs/internal/num"},
-	"funcs/internal/num":     {},
+	"cmd/halfwidth":           {"cmd/internal/...", "workbook/page", "workbook", "workbook/calculation", "funcs"},
+	"cmd/halfwidth-server":    {"cmd/internal/...", "rpc"},
+	"cmd/internal/buildinfo":  {},
+	"cmd/internal/gendocs":    {"funcs", "rpc"},
+	"cmd/internal/texttab":    {},
+	"rpc":                     {"workbook", "workbook/calculation", "funcs"},
+	"workbook/page":           {"workbook", "workbook/calculation", "funcs"},
+	"workbook":                {"workbook/calculation", "workbook/ooxml", "funcs"},
+	"workbook/demo":           {},
+	"workbook/ooxml":          {},
+	"workbook/calculation":    {"funcs"},
+	"funcs":                   {"funcs/internal/..."},
+	"funcs/internal/accuracy": {"funcs", "funcs/internal/dist"},
+	"funcs/internal/dist":     {"funcs/internal/num"},
+	"funcs/internal/num":      {},
 }
 
 // doors says which packages alone import a library.
