@@ -83,9 +83,9 @@ func (d Binomial) UpperQuantile(q float64) int {
 func (d Binomial) first(p float64, ok func(k int) bool) int {
 	n := float64(d.N)
 	sd := math.Sqrt(n * d.P * (1 - d.P))
-	start := n * d.P
+	start := float64(n * d.P)
 	if p > 0 && p < 1 {
-		start += sd * Normal{}.Quantile(p)
+		start += float64(sd * Normal{}.Quantile(p))
 	}
 	return firstFrom(0, d.N, int(min(max(start, 0), n, 1<<62)), int(sd/16)+1, ok)
 }

@@ -69,7 +69,7 @@ func (d MaxT) count() float64 {
 }
 
 func (d MaxT) law() studentized {
-	return studentized{d.DF, d.numerator, 1.5 * math.Log(1+d.count())}
+	return studentized{d.DF, d.numerator, 1.5 * num.Log(1+d.count())}
 }
 
 // CDF is P(max <= t).
@@ -155,10 +155,10 @@ func (d MaxT) numerator(w float64, upper bool) float64 {
 	}
 	band, steepest, most := 0.0, 0.0, 0.0
 	for _, p := range d.parts {
-		band = max(band, p.shift*p.shift*(1+2*math.Log(p.count)))
+		band = max(band, p.shift*p.shift*(1+2*num.Log(p.count)))
 		steepest, most = max(steepest, p.shift/p.stretch), max(most, p.shift)
 	}
-	step := 1 / math.Sqrt(1+max(band, most*most*(1+2*math.Log(d.count()))))
+	step := 1 / math.Sqrt(1+max(band, float64(most*most*(1+2*num.Log(d.count())))))
 	f := func(y float64) float64 {
 		logAll := d.logAllBelow(w, y)
 		if upper {
@@ -185,7 +185,7 @@ func (d MaxT) numerator(w float64, upper bool) float64 {
 func (d MaxT) logAllBelow(w, y float64) float64 {
 	sum := 0.0
 	for _, p := range d.parts {
-		at, middle := p.stretch*w, p.shift*y
+		at, middle := float64(p.stretch*w), float64(p.shift*y)
 		if d.TwoSided {
 			sum += float64(p.count * logInterval(math.Abs(middle), at))
 		} else {
@@ -203,8 +203,8 @@ func (d MaxT) likeliestShift(w float64) float64 {
 	}
 	pull, bend := 0.0, 1.0
 	for _, p := range d.parts {
-		pull += p.count * p.shift * p.stretch
-		bend += p.count * p.shift * p.shift
+		pull += float64(p.count * p.shift * p.stretch)
+		bend += float64(p.count * p.shift * p.shift)
 	}
 	return -w * pull / bend
 }

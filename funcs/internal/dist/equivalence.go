@@ -50,7 +50,7 @@ func EquivalencePower(df, toLower, toUpper, significance float64) float64 {
 	// The product is log-concave: its panels grow to one peak and then fall.
 	sum, last := 0.0, 0.0
 	for range 2000 {
-		slope := df * (1 - top*top) / top
+		slope := df * (1 - float64(top*top)) / top
 		width := min(3/math.Sqrt(2*df), 3/math.Abs(t), 6/math.Abs(slope), top/2)
 		part := gauss16(f, top-width, top)
 		sum += part

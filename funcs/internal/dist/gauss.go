@@ -19,7 +19,7 @@ func gauss16(f func(float64) float64, a, b float64) float64 {
 	middle, half := a/2+b/2, b/2-a/2
 	sum := 0.0
 	for i, x := range gaussNodes {
-		d := half * x
+		d := float64(half * x)
 		sum += float64(gaussWeights[i] * (f(middle-d) + f(middle+d)))
 	}
 	return sum * half

@@ -97,7 +97,7 @@ func (d Hypergeometric) outwards(k, end, step int) float64 {
 // over 24. With an sd past 1e4 the next correction is below 1e-13 of the tail.
 func (d Hypergeometric) integrated(k, end, step, sd float64) float64 {
 	from := k - step/2
-	panel := step * sd / 2
+	panel := float64(step * sd / 2)
 	sum := 0.0
 	for range 200 {
 		to := from + panel

@@ -43,7 +43,7 @@ func (m poissonMixture) peak(upper bool) (from, to float64) {
 		// The side of the mixture where the central tails are near 1.
 		from, to = math.Floor(m.mean), math.Ceil(m.mean)
 	}
-	for to-from > 8+4*math.Sqrt(to) {
+	for to-from > 8+float64(4*math.Sqrt(to)) {
 		mid := math.Floor(from/2 + to/2)
 		here, next := m.term(mid, upper), m.term(mid+1, upper)
 		rising := next > here
@@ -82,8 +82,8 @@ func (m poissonMixture) tail(upper bool) float64 {
 	// Beyond these ends the weights, and so the terms, have fallen by 1e-18 from
 	// the largest: a Poisson law of mean c has less at c - 9.2 sqrt(c) - 1 and at
 	// c + 9.2 sqrt(c) + 16.
-	from = max(0, math.Floor(from-9.2*math.Sqrt(from))-1)
-	to = math.Ceil(to+9.2*math.Sqrt(to)) + 16
+	from = max(0, math.Floor(from-float64(9.2*math.Sqrt(from)))-1)
+	to = math.Ceil(to+float64(9.2*math.Sqrt(to))) + 16
 	// The recurrence adds: upwards for the upper tail, downwards for the lower.
 	if upper {
 		from = m.firstInRange(from, to, true)

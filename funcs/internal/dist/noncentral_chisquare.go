@@ -2,6 +2,8 @@ package dist
 
 import (
 	"math"
+
+	"halfwidth/funcs/internal/num"
 )
 
 // NoncentralChiSquare is the law of the sum of DF squared normal variables of
@@ -60,7 +62,7 @@ func (d NoncentralChiSquare) mixture(x float64) poissonMixture {
 	half := a / 2 / g
 	return poissonMixture{
 		mean:   mean,
-		saddle: g / (half + math.Hypot(half, 1)), // j (j + a) = mean y
+		saddle: g / (half + num.Hypot(half, 1)), // j (j + a) = mean y
 		tails:  func(j float64) (float64, float64) { return GammaTails(a+j, y) },
 		drop:   func(j float64) float64 { return GammaPrefactor(a+j, y) / (a + j) },
 		ratio:  func(j float64) float64 { return y / (a + j + 1) },

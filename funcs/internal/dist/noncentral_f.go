@@ -1,6 +1,10 @@
 package dist
 
-import "math"
+import (
+	"math"
+
+	"halfwidth/funcs/internal/num"
+)
 
 // NoncentralF is the law of (X/DF1)/(Y/DF2), with X noncentral chi-square and Y
 // independent chi-square. DF1 and DF2 (> 0) may be infinite.
@@ -55,8 +59,8 @@ func (d NoncentralF) mixture(r float64) poissonMixture {
 	y, z := r/(1+r), 1/(1+r)
 	mean := d.Noncentrality / 2
 	// j (a + j) = mean y (a + b + j)
-	c := mean * y
-	root := math.Hypot(a-c, 2*math.Sqrt(c)*math.Sqrt(a+b))
+	c := float64(mean * y)
+	root := num.Hypot(a-c, 2*math.Sqrt(c)*math.Sqrt(a+b))
 	saddle := (c - a + root) / 2
 	if a > c {
 		saddle = 2 * c * ((a + b) / (a - c + root))
@@ -120,7 +124,7 @@ func (d NoncentralF) solve(p, q float64) float64 {
 	if !math.IsInf(d.DF1, 1) {
 		mean := d.DF1 + d.Noncentrality
 		centre = mean / d.DF1
-		spread = math.Hypot(spread, math.Sqrt(2*mean+2*d.Noncentrality)/mean)
+		spread = num.Hypot(spread, math.Sqrt(2*(mean+d.Noncentrality))/mean)
 	}
 	if p <= q {
 		return solvePositive(d.CDF, p, centre, spread)

@@ -43,14 +43,14 @@ func (d NoncentralT) Between(a, b float64) float64 {
 		// The density of T at t is largest in s at the positive root of
 		// (nu + t^2) s^2 - t delta s - (nu + 1) = 0.
 		t := a/2 + b/2
-		p, q := nu/(nu+t*t), t/(nu+t*t)*delta
-		s := q/2 + math.Sqrt(q*q/4+p*(1+1/nu))
+		p, q := nu/(nu+float64(t*t)), t/(nu+float64(t*t))*delta
+		s := q/2 + math.Sqrt(float64(q*q)/4+float64(p*(1+1/nu)))
 		f := func(w float64) float64 {
 			x := s * num.Exp(w)
 			inside := logInterval(math.Abs(float64(t*x)-delta), (b-a)/2*x)
 			return num.Exp(float64(nu*scaleExponent(num.Log(s)+w)) + inside)
 		}
-		step := min(0.18, 1/math.Hypot(math.Sqrt(2*nu)*max(1, s), math.Abs(t)*s+8))
+		step := min(0.18, 1/num.Hypot(math.Sqrt(2*nu)*max(1, s), float64(math.Abs(t)*s)+8))
 		return scaleDensity1(nu) * num.Trapezoid(f, 0, step, 1e-8)
 	})
 }
@@ -66,8 +66,8 @@ func (d NoncentralT) betweenOverZ(a, b float64) float64 {
 		}
 		return num.Exp(-float64(z*z)/2) * Gamma{nu / 2}.Between(nu/2*low*low, nu/2*high*high)
 	}
-	y := (delta + math.Hypot(delta, 2*math.Sqrt(nu)*math.Hypot(1, root))) / 2 / (1 + root*root)
-	step := min(0.5, 0.8/math.Hypot(1, math.Hypot(root, math.Sqrt(nu)/y)))
+	y := (delta + num.Hypot(delta, 2*math.Sqrt(nu)*num.Hypot(1, root))) / 2 / (1 + float64(root*root))
+	step := min(0.5, 0.8/num.Hypot(1, num.Hypot(root, math.Sqrt(nu)/y)))
 	return num.Trapezoid(f, y-delta, step, 1e-8) / math.Sqrt(2*math.Pi)
 }
 
@@ -124,7 +124,7 @@ func (d NoncentralT) far() bool {
 func (d NoncentralT) logSFOverScale(t float64) float64 {
 	nu, delta := d.DF, d.Noncentrality
 	peak := d.peakLogScale(t)
-	sPeak := math.Exp(peak)
+	sPeak := num.Exp(peak)
 	logIntegrand := func(w float64) float64 {
 		u := peak + w
 		var x float64
@@ -168,7 +168,7 @@ func (d NoncentralT) logSFOverScale(t float64) float64 {
 	if delta-math.Copysign(ts, t) < 0 {
 		edge = max(edge, ts)
 	}
-	band := math.Hypot(math.Sqrt(2*nu)*max(1, sPeak), edge)
+	band := num.Hypot(math.Sqrt(2*nu)*max(1, sPeak), edge)
 	step := min(0.18, 1/band)
 	integral := top + num.Log(scaleDensity1(nu)*num.Trapezoid(f, 0, step, 1e-8))
 	if apart != 0 {
@@ -186,7 +186,7 @@ func (d NoncentralT) peakLogScale(t float64) float64 {
 		// With log Phi(x) about -x^2/2: (nu + t^2) s^2 - t delta s - nu = 0.
 		a := math.Abs(t)
 		along := math.Copysign(delta, delta*math.Copysign(1, t))
-		root := math.Hypot(delta, 2*math.Sqrt(nu)*math.Hypot(1, math.Sqrt(nu)/a))
+		root := num.Hypot(delta, 2*math.Sqrt(nu)*num.Hypot(1, math.Sqrt(nu)/a))
 		if along > 0 {
 			u = num.Log((along + root) / 2 / (a + nu/a))
 		} else {
@@ -195,10 +195,10 @@ func (d NoncentralT) peakLogScale(t float64) float64 {
 	}
 	for range 50 {
 		s := num.Exp(u)
-		x := delta - t*s
+		x := delta - float64(t*s)
 		ts, r := t*s, normalHazard(x)
-		slope := nu - nu*s*s - ts*r
-		bend := 2*nu*s*s + ts*r + ts*ts*r*(x+r)
+		slope := nu - float64(nu*s*s) - float64(ts*r)
+		bend := float64(2*nu*s*s) + float64(ts*r) + float64(ts*ts*r*(x+r))
 		move := math.Copysign(0.5, slope)
 		if bend > 0 {
 			move = min(max(slope/bend, -1), 1)
@@ -240,13 +240,13 @@ func (d NoncentralT) logSFOverZ(t float64) float64 {
 	z := 0.0
 	if t > delta {
 		a := math.Abs(delta)
-		y := (a + math.Hypot(a, 2*math.Sqrt(nu)*math.Hypot(1, root))) / 2 / (1 + root*root)
+		y := (a + num.Hypot(a, 2*math.Sqrt(nu)*num.Hypot(1, root))) / 2 / (1 + float64(root*root))
 		z = y - a
 		if t < 0 {
 			z = a - y
 		}
 	}
-	step := min(0.5, 0.8/math.Hypot(1, math.Hypot(root, math.Sqrt(nu)/(z+delta))))
+	step := min(0.5, 0.8/num.Hypot(1, num.Hypot(root, math.Sqrt(nu)/(z+delta))))
 	f := func(z float64) float64 { return num.Exp(-float64(z*z)/2) * tail(z) }
 	return num.Log(num.Trapezoid(f, z, step, 1e-8) / math.Sqrt(2*math.Pi))
 }
@@ -291,13 +291,14 @@ func (d NoncentralT) solveUpper(q float64) float64 {
 		return delta + z
 	}
 	target := num.Log(q)
-	f := func(y float64) float64 { return d.logSF(math.Sinh(y)) - target }
-	spread := math.Hypot(1, delta/math.Sqrt(2*nu))
+	f := func(y float64) float64 { return d.logSF(num.Sinh(y)) - target }
+	spread := num.Hypot(1, delta/math.Sqrt(2*nu))
 	start := delta + float64(z*min(spread, 1e150))
 	step := 0.5
 	if spread < 1e150 {
-		step = min(spread/math.Hypot(1, start), 0.5)
+		step = min(spread/num.Hypot(1, start), 0.5)
 	}
-	y := crossing(f, math.Asinh(start), step, -710, 710, math.Abs(target))
-	return math.Sinh(y)
+	first := math.Copysign(num.Log(math.Abs(start)+num.Hypot(start, 1)), start)
+	y := crossing(f, first, step, -710, 710, math.Abs(target))
+	return num.Sinh(y)
 }

@@ -23,7 +23,7 @@ type StudentizedRange struct {
 func (d StudentizedRange) valid() bool { return d.Groups >= 2 && d.DF > 0 }
 
 func (d StudentizedRange) law() studentized {
-	return studentized{d.DF, normalRange(d.Groups).tail, 1.75 * math.Log(float64(d.Groups))}
+	return studentized{d.DF, normalRange(d.Groups).tail, 1.75 * num.Log(float64(d.Groups))}
 }
 
 func (d StudentizedRange) probability(q float64, upper bool) float64 {
@@ -139,7 +139,7 @@ func (k normalRange) lower(w float64) float64 {
 	if k.within(half, half, 1) < 0.1 {
 		h = min(h, 1.3/math.Sqrt(n))
 	} else {
-		bend := 1 - half*half + (n-1)*w*Normal{}.Density(half)/(1-2*Normal{}.SF(half))
+		bend := 1 - float64(half*half) + float64((n-1)*w*Normal{}.Density(half))/(1-2*Normal{}.SF(half))
 		h = min(h, 1.3/math.Sqrt(max(bend, 1.5)))
 	}
 	return min(1, n*evenIntegral(f, 0, h)/math.Sqrt(8*math.Pi))
@@ -187,7 +187,7 @@ func (k normalRange) upper(w float64) float64 {
 		}
 		return num.Exp(float64((n-1)*NormalLogCDF(z))-float64(z*z)/2) * -num.Expm1((n-1)*num.Log1p(-far/below))
 	}
-	return min(1, n*outwards(f, w/2, w/2, w/2, 0.8/math.Sqrt(1+math.Log(n)))/math.Sqrt(2*math.Pi))
+	return min(1, n*outwards(f, w/2, w/2, w/2, 0.8/math.Sqrt(1+num.Log(n)))/math.Sqrt(2*math.Pi))
 }
 
 // between is P(w < range < w + width): k times the integral of
@@ -204,5 +204,5 @@ func (k normalRange) between(w, width float64) float64 {
 		share := min(num.Exp(part-whole), 1)
 		return num.Exp(float64((n-1)*whole)-float64(z*z)/2) * -num.Expm1((n-1)*num.Log1p(-share))
 	}
-	return min(1, n*outwards(f, w/2, min(0, w/2), w, 0.8/math.Sqrt(1+math.Log(n)))/math.Sqrt(2*math.Pi))
+	return min(1, n*outwards(f, w/2, min(0, w/2), w, 0.8/math.Sqrt(1+num.Log(n)))/math.Sqrt(2*math.Pi))
 }

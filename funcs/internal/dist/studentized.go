@@ -36,7 +36,7 @@ type scaleNodes struct {
 const finestSpacing = 1 << 10
 
 func (n *scaleNodes) node(i int) (x, slope float64) {
-	v := float64(i) * (n.step / finestSpacing)
+	v := float64(float64(i) * (n.step / finestSpacing))
 	if n.law.df >= 30 {
 		return v, 1
 	}
@@ -109,7 +109,7 @@ func (n *scaleNodes) average(y float64) float64 {
 // tail is too small for a float64.
 func (s studentized) nodes(q float64, upper bool) *scaleNodes {
 	base := q
-	band := 2*s.df + s.band*s.band
+	band := 2*s.df + float64(s.band*s.band)
 	if t := s.tail(q, upper); t < 1e-4 {
 		u, largest := s.likeliestLogScale(q, upper)
 		if largest < -800 {

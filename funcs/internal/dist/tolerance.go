@@ -77,10 +77,10 @@ func (t *twoSidedTolerance) tails(k float64) (confidence, missed float64) {
 			weight /= 2
 		}
 		low, high := GammaTails(a, a*float64(ratio*ratio))
-		low *= weight
-		high *= weight
-		missed += low
-		confidence += high
+		low = float64(low * weight)
+		high = float64(high * weight)
+		missed += float64(low)
+		confidence += float64(high)
 		peakLow, peakHigh = max(peakLow, low), max(peakHigh, high)
 		if y > 8 && !(low > 1e-18*peakLow) && !(high > 1e-18*peakHigh) {
 			break
@@ -112,7 +112,7 @@ func ToleranceFactor(n int, content, confidence float64) float64 {
 	// Wilson & Hilferty's approximation of chi-square, is a few per cent off.
 	df := t.n - 1
 	z := min(max(Normal{}.UpperQuantile(confidence), -10), 10)
-	root := max(1-2/(9*df)+z*math.Sqrt(2/(9*df)), 0.01)
+	root := max(1-2/(9*df)+float64(z*math.Sqrt(2/(9*df))), 0.01)
 	start := t.radius(0) * math.Sqrt((1+1/t.n)/(root*root*root))
 	return num.Exp(crossing(f, num.Log(start), min(0.02, 0.1/math.Sqrt(df)), -700, 700, num.Log(1/target)))
 }

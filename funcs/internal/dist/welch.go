@@ -49,7 +49,7 @@ func (w WelchDesign) Power(difference, significance float64, twoSided bool) floa
 		if weight == 0 {
 			return 0
 		}
-		first, second := a*u, b*rest
+		first, second := float64(a*u), float64(b*rest)
 		both := first + second
 		satterthwaite := both / (first*(first/both)/df1 + second*(second/both)/df2)
 		critical := Student{satterthwaite}.UpperQuantile(tail)
@@ -64,9 +64,9 @@ func (w WelchDesign) Power(difference, significance float64, twoSided bool) floa
 func shares(df1, df2, x float64) (u, rest float64) {
 	e := num.Exp(-math.Abs(x))
 	if x > 0 {
-		return df1 / (df1 + df2*e), df2 * e / (df1 + df2*e)
+		return df1 / (df1 + float64(df2*e)), df2 * e / (df1 + float64(df2*e))
 	}
-	return df1 * e / (df1*e + df2), df2 / (df1*e + df2)
+	return df1 * e / (float64(df1*e) + df2), df2 / (float64(df1*e) + df2)
 }
 
 // logShareWeight is log of the density of log U/(1-U) at log(df1/df2) + x over
