@@ -196,7 +196,7 @@ type cumulative struct {
 
 // poissonTable holds the law within 40 standard deviations and 40.
 func poissonTable(mean float64) cumulative {
-	reach := 40*math.Sqrt(mean) + 40
+	reach := float64(40*math.Sqrt(mean)) + 40
 	t := cumulative{first: max(0, int(mean-reach))}
 	for k := t.first; ; k++ {
 		p, _ := poissonTails(float64(k), mean)
@@ -221,7 +221,7 @@ func latticeDistance(mean, sd float64, atMost func(k float64) float64) float64 {
 		}
 		return math.Max(math.Abs(before-normal), math.Abs(atMost(k)-normal))
 	}
-	first, last := math.Max(0, math.Floor(mean-9*sd)), math.Ceil(mean+9*sd)+1
+	first, last := math.Max(0, math.Floor(mean-float64(9*sd))), math.Ceil(mean+float64(9*sd))+1
 	step := math.Max(1, math.Floor(sd/64))
 	best, largest := highest(at, first, last, step)
 	for step > 1 {

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
 )
 
 var (
@@ -73,7 +74,7 @@ var discoverySize = &Function{
 		if d.population > 0 {
 			hi = min(hi, d.population)
 		}
-		n, err := c.planN("tolerable-deviation-rate", hi, (float64(d.allowed)-math.Log(1-wanted))/d.rate,
+		n, err := c.planN("tolerable-deviation-rate", hi, (float64(d.allowed)-num.Log(1-wanted))/d.rate,
 			func(n int) bool { return reaches(d.confidence(n), wanted) }, func(n int) string { return "confidence " + percent(d.confidence(n)) })
 		if err != nil {
 			return err

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
 )
 
 var (
@@ -105,7 +106,7 @@ var varianceSize = &Function{
 			}
 			attained = func(n int) float64 { return variancePower(n, ratio, significance.Of(c), direction.Of(c)) }
 			holds = func(n int) bool { return reaches(attained(n), power.Of(c)) }
-			effect := math.Log(ratio)
+			effect := num.Log(ratio)
 			start, input = 2*normalPower(significance.Of(c), power.Of(c), direction.Of(c))/float64(effect*effect), "variance-ratio"
 		}
 		n, err := c.planN(input, largestPlan, start+2, holds, func(n int) string { return brief(attained(n)) })

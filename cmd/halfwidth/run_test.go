@@ -173,7 +173,7 @@ func TestPreviewWritesNothing(t *testing.T) {
 	book := copyTo(t, demo, dir, "larkmoor.xlsx")
 	before := readFile(t, book)
 	stdout, stderr, code := run(t, "preview", book)
-	if code != exitOK || stderr != "" || !strings.Contains(stdout, "minutes in Trips where depot = North") {
+	if code != exitOK || stderr != "" || !strings.Contains(stdout, "Trips!E2:E2001 where depot (B2:B2001) = North") {
 		t.Errorf("code %d, stderr %q, stdout\n%s", code, stderr, stdout)
 	}
 	entries, err := os.ReadDir(dir)

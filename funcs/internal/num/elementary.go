@@ -195,3 +195,26 @@ func Log1pmxWide(v, x Wide) Wide {
 // PowWide is w**a for w > 0, to nearly full precision also where the result is
 // very small or very large.
 func PowWide(w Wide, a float64) float64 { return ExpWide(logWide(w).Times(a)) }
+
+// Hypot is √(x² + y²) without overflow or underflow on the way, to about one
+// unit of the last place.
+func Hypot(x, y float64) float64 {
+	x, y = math.Abs(x), math.Abs(y)
+	if x < y {
+		x, y = y, x
+	}
+	if y == 0 || math.IsInf(x, 1) || math.IsNaN(x) {
+		return x
+	}
+	r := y / x
+	return float64(x * math.Sqrt(1+float64(r*r)))
+}
+
+// Sinh is the hyperbolic sine. Relative error a few units of the last place.
+func Sinh(x float64) float64 {
+	e := Expm1(math.Abs(x))
+	if math.IsInf(e, 1) {
+		return math.Copysign(e, x)
+	}
+	return math.Copysign((e+e/(e+1))/2, x)
+}
