@@ -7,6 +7,9 @@ import (
 	"testing"
 )
 
+// All of these are laws of the one interface.
+var _ = []Distribution{NoncentralT{}, NoncentralChiSquare{}, NoncentralF{}, StudentizedRange{}, MaxT{}}
+
 // Dunnett 1955, Table 1a: equal groups, one-sided, upper 5% points.
 func TestComparisonsWithControlReproducePrintedTable(t *testing.T) {
 	for _, r := range publishedTable(t, "dunnett-one-sided-095") {

@@ -1,6 +1,10 @@
 package dist
 
-import "math"
+import (
+	"math"
+
+	"halfwidth/funcs/internal/num"
+)
 
 // Hypergeometric is the law of the number of marked items among Draws taken
 // without replacement from Population items of which Marked are marked.
@@ -96,17 +100,23 @@ func (d Hypergeometric) outwards(k, end, step int) float64 {
 // before k: the integral of the probability function from there, plus its slope
 // over 24. With an sd past 1e4 the next correction is below 1e-13 of the tail.
 func (d Hypergeometric) integrated(k, end, step, sd float64) float64 {
-	from := k - step/2
-	panel := float64(step * sd / 2)
+	marked, draws := float64(d.Marked), float64(d.Draws)
+	rest := float64(d.Population) - marked - draws
+	// The probability t units outwards of k. Near 1e9 counts are 1e-7 apart, so
+	// what rounding takes off t is made good by the slope of the logarithm.
+	f := func(t float64) float64 {
+		x := k + float64(step*t)
+		lost := float64(step*t) - (x - k)
+		ratio := float64((marked-x)/(x+1)) * ((draws - x) / (rest + x + 1))
+		return d.term(x) * (1 + float64(lost*num.Log(ratio)))
+	}
+	from, last := -0.5, (end-k)*step
 	sum := 0.0
 	for range 200 {
-		to := from + panel
-		if (to-end)*step > 0 {
-			to = end
-		}
-		part := math.Abs(gauss16(d.term, from, to))
+		to := min(from+sd/2, last)
+		part := gauss16(f, from, to)
 		sum += part
-		if !(part > sum*1e-18) || to == end {
+		if !(part > sum*1e-18) || to == last {
 			break
 		}
 		from = to
