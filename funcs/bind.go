@@ -90,9 +90,9 @@ func (b *binder) unknown(arguments map[string]any) {
 	}
 	slices.Sort(strange)
 	for _, name := range strange {
-		advice := "its inputs are " + andList(names)
+		advice := "its inputs are " + AndList(names)
 		if near := Closest(name, names); len(near) > 0 {
-			advice = "did you mean " + orList(quoted(near)) + "?"
+			advice = "did you mean " + OrList(quoted(near)) + "?"
 		}
 		b.fail(name, "", "is no input of "+b.function.Name, advice)
 	}
@@ -130,11 +130,11 @@ func (b *binder) alternatives(one OneOf, arguments map[string]any) {
 	}
 	switch {
 	case partial != nil:
-		b.fail(lacks[0], "", "is missing", fmt.Sprintf("with %s give %s too", andList(present), andList(lacks)))
+		b.fail(lacks[0], "", "is missing", fmt.Sprintf("with %s give %s too", AndList(present), AndList(lacks)))
 	case len(present) == 0:
 		b.fail(one[0].Needs[0], "", "is missing", "give "+one.String())
 	default:
-		b.fail(present[len(present)-1], "", "cannot be given together with "+andList(present[:len(present)-1]), "give "+one.String())
+		b.fail(present[len(present)-1], "", "cannot be given together with "+AndList(present[:len(present)-1]), "give "+one.String())
 	}
 }
 
@@ -144,10 +144,10 @@ func (one OneOf) String() string {
 	for i, w := range one {
 		ways[i] = w.Needs[0]
 		if len(w.Needs) > 1 {
-			ways[i] += " with " + andList(w.Needs[1:])
+			ways[i] += " with " + AndList(w.Needs[1:])
 		}
 		if len(w.May) > 0 {
-			ways[i] += " (and perhaps " + andList(w.May) + ")"
+			ways[i] += " (and perhaps " + AndList(w.May) + ")"
 		}
 	}
 	if len(ways) == 1 {
@@ -176,9 +176,9 @@ func (b *binder) value(in Input, raw any) (any, bool) {
 		if ok && slices.Contains(in.Choices, text) {
 			return text, true
 		}
-		advice := "write " + orList(in.Choices)
+		advice := "write " + OrList(in.Choices)
 		if near := Closest(text, in.Choices); ok && len(near) > 0 {
-			advice = "did you mean " + orList(quoted(near)) + "? The choices are " + andList(in.Choices)
+			advice = "did you mean " + OrList(quoted(near)) + "? The choices are " + AndList(in.Choices)
 		}
 		b.fail(in.Name, show(raw), "must be one of its choices", advice)
 	case YesNo:
@@ -242,7 +242,7 @@ func (b *binder) number(in Input, group string, index int, raw any) (float64, bo
 func (in Input) Expects() string {
 	switch in.Kind {
 	case Choice:
-		return orList(in.Choices)
+		return OrList(in.Choices)
 	case YesNo:
 		return "yes or no"
 	case Text:

@@ -92,7 +92,7 @@ func (c *Call) sayOutliers(outliers, n int) {
 			alpha, c.withUnit(list[0], SameUnit), nText(n), c.method)
 	default:
 		c.sentence = fmt.Sprintf("At significance %s %d values are outliers: %s (%s; %s). Check whether they are right before leaving them out.",
-			alpha, outliers, c.withUnit(andList(list), SameUnit), nText(n), c.method)
+			alpha, outliers, c.withUnit(AndList(list), SameUnit), nText(n), c.method)
 	}
 }
 

@@ -61,7 +61,7 @@ var normalityCheck = &Function{
 			c.set("excess-kurtosis", excessKurtosis(m))
 		}
 		c.method = "Shapiro-Wilk by Royston's approximation, Anderson-Darling with estimated mean and sd"
-		c.sentence = fmt.Sprintf("%s (%s): a small p-value speaks against a normal population, a large one does not prove it.", andList(parts), nText(s.n))
+		c.sentence = fmt.Sprintf("%s (%s): a small p-value speaks against a normal population, a large one does not prove it.", AndList(parts), nText(s.n))
 		return nil
 	},
 }

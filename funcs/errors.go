@@ -81,7 +81,7 @@ type UnknownError struct {
 func (e *UnknownError) Error() string {
 	text := fmt.Sprintf("there is no %s %q", e.What, e.Name)
 	if len(e.Closest) > 0 {
-		text += "; did you mean " + orList(quoted(e.Closest)) + "?"
+		text += "; did you mean " + OrList(quoted(e.Closest)) + "?"
 	}
 	return text
 }
@@ -161,11 +161,11 @@ func quoted(texts []string) []string {
 	return out
 }
 
-// orList joins texts as "a, b or c".
-func orList(texts []string) string { return joinList(texts, " or ") }
+// OrList joins texts as "a, b or c".
+func OrList(texts []string) string { return joinList(texts, " or ") }
 
-// andList joins texts as "a, b and c".
-func andList(texts []string) string { return joinList(texts, " and ") }
+// AndList joins texts as "a, b and c".
+func AndList(texts []string) string { return joinList(texts, " and ") }
 
 func joinList(texts []string, last string) string {
 	if len(texts) < 2 {

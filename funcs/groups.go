@@ -104,7 +104,7 @@ func (c *Call) matched(names []string, lists ...In[List]) ([]string, [][]float64
 // nearestOf is the advice for a name that stands nowhere.
 func nearestOf(name string, names []string) string {
 	if near := Closest(name, names); len(near) > 0 {
-		return "did you mean " + orList(quoted(near)) + "?"
+		return "did you mean " + OrList(quoted(near)) + "?"
 	}
 	return "the groups are " + someNames(names)
 }
@@ -135,7 +135,7 @@ func someNames(names []string) string {
 	if len(names) > 5 {
 		return strings.Join(names[:4], ", ") + fmt.Sprintf(" and %d more", len(names)-4)
 	}
-	return andList(names)
+	return AndList(names)
 }
 
 // theGroups words groups: "The group North", "The groups North and Quay".

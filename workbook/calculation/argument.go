@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 
 	"halfwidth/funcs"
 )
@@ -118,7 +119,7 @@ func (a *argument) fromList(t *term, look lookUp) {
 		values[i] = cell.Number
 	}
 	if read != nil {
-		a.from.Origin.Range = joinList(read, "; ")
+		a.from.Origin.Range = strings.Join(read, "; ")
 	}
 	switch t.input.Kind {
 	case funcs.Numbers:

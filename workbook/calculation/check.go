@@ -207,7 +207,7 @@ func (p *Plan) readInputs(c *calcSheet, r *Row) {
 		in, ok := f.Input(bc.Name)
 		if !ok {
 			if isFilled(cell) {
-				r.refuse(at, Span{}, "not-an-input", fmt.Sprintf("%s: %s takes no %s. Empty the cell; its inputs are %s.", at, f.Name, bc.Name, andList(inputNames(f))))
+				r.refuse(at, Span{}, "not-an-input", fmt.Sprintf("%s: %s takes no %s. Empty the cell; its inputs are %s.", at, f.Name, bc.Name, funcs.AndList(inputNames(f))))
 			}
 			continue
 		}

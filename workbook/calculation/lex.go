@@ -5,6 +5,8 @@ import (
 	"strings"
 	"unicode"
 	"unicode/utf8"
+
+	"halfwidth/funcs"
 )
 
 // tokenKind is the kind of a token of a sample expression.
@@ -170,6 +172,15 @@ func isPlainWord(text string) bool {
 // quote writes a text in double quotes, those inside doubled.
 func quote(text string) string { return `"` + strings.ReplaceAll(text, `"`, `""`) + `"` }
 
+// quoteAll puts double quotes round each text.
+func quoteAll(texts []string) []string {
+	out := make([]string, len(texts))
+	for i, t := range texts {
+		out[i] = quote(t)
+	}
+	return out
+}
+
 // SyntaxError says what is wrong with a sample expression, and where.
 type SyntaxError struct {
 	Text    string // the expression
@@ -189,7 +200,7 @@ func (e *SyntaxError) Error() string {
 	}
 	b.WriteString(": " + e.Want)
 	if len(e.Closest) > 0 {
-		b.WriteString("; did you mean " + orList(quoteAll(e.Closest)) + "?")
+		b.WriteString("; did you mean " + funcs.OrList(quoteAll(e.Closest)) + "?")
 	}
 	return b.String()
 }

@@ -149,7 +149,7 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 				kinds[i] += " on " + p.Sheet
 			}
 		}
-		return located{}, unknownPlace(ref.Span, fmt.Sprintf("%s is the name of %s", quote(name), andList(kinds)), "Rename one of them.")
+		return located{}, unknownPlace(ref.Span, fmt.Sprintf("%s is the name of %s", quote(name), funcs.AndList(kinds)), "Rename one of them.")
 	case ref.File == "" && fileEnd(name) == len(name):
 		return lib.locate(&PlaceRef{File: name, HeaderRow: ref.HeaderRow, Span: ref.Span})
 	}
@@ -173,7 +173,7 @@ func inFile(file string) string {
 // suggest words which names exist: the closest, or the first few.
 func suggest(name string, names []string) string {
 	if near := funcs.Closest(name, names); len(near) > 0 {
-		return "Did you mean " + orList(quoteAll(near)) + "?"
+		return "Did you mean " + funcs.OrList(quoteAll(near)) + "?"
 	}
 	if len(names) == 0 {
 		return "There is none at all."
@@ -182,7 +182,7 @@ func suggest(name string, names []string) string {
 	if len(names) > most {
 		return "Names are " + strings.Join(names[:most], ", ") + " and others."
 	}
-	return "Names are " + andList(names) + "."
+	return "Names are " + funcs.AndList(names) + "."
 }
 
 func unknownPlace(span Span, what, advice string) *fault {

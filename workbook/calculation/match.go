@@ -111,9 +111,9 @@ func (sh *sheet) noUnit(row, col int, name ColumnRef) *fault {
 	for i, u := range units {
 		offers[i] = ColumnRef{Name: column, Unit: u.name}.String()
 	}
-	message := fmt.Sprintf("%s is a duration, kept as a fraction of a day. Name the unit you want: %s.", at, orList(offers))
+	message := fmt.Sprintf("%s is a duration, kept as a fraction of a day. Name the unit you want: %s.", at, funcs.OrList(offers))
 	if name.Name == "" {
-		message = fmt.Sprintf("%s is a duration, kept as a fraction of a day. Name its column and the unit you want, in SHEET: %s.", at, orList(offers))
+		message = fmt.Sprintf("%s is a duration, kept as a fraction of a day. Name its column and the unit you want, in SHEET: %s.", at, funcs.OrList(offers))
 	}
 	return &fault{Finding: funcs.Finding{Code: "duration-without-unit", Severity: funcs.Refused, Cells: []string{at}, Message: message}, span: name.Span}
 }
@@ -309,7 +309,7 @@ const mostValues = 100000
 // nearestValues words which values a column has.
 func nearestValues(word string, values []string) string {
 	if near := funcs.Closest(word, values); len(near) > 0 {
-		return "Did you mean " + orList(quoteAll(near)) + "?"
+		return "Did you mean " + funcs.OrList(quoteAll(near)) + "?"
 	}
 	if len(values) == 0 {
 		return "It holds no text at all."
@@ -319,7 +319,7 @@ func nearestValues(word string, values []string) string {
 	if len(values) > most {
 		return "It holds " + strings.Join(quoteAll(values[:most]), ", ") + " and others."
 	}
-	return "It holds " + andList(quoteAll(values)) + "."
+	return "It holds " + funcs.AndList(quoteAll(values)) + "."
 }
 
 // columnText writes a column's cells with their sheet.

@@ -243,7 +243,7 @@ func (c *calcSheet) checkOwn(b *Block, bc BlockColumn, known vocabulary) {
 		c.find(at, funcs.Caution, "missing-result-mark", fmt.Sprintf("%s is a result's name, but its column is left alone. Write > %s to have it filled in.", quote(bc.Title), bc.Name))
 	case b.Function != nil && words(nil).hasInput(bc.Name):
 		c.find(at, funcs.Caution, "near-miss", fmt.Sprintf("%s is no input of %s, so this column is left alone. Its inputs are %s.",
-			quote(bc.Title), b.Function.Name, andList(known.inputs)))
+			quote(bc.Title), b.Function.Name, funcs.AndList(known.inputs)))
 	case !known.hasResult(bc.Name):
 		if near := known.nearly(bc.Name); near != "" {
 			c.find(at, funcs.Caution, "near-miss", fmt.Sprintf("%s is no known name, so this column is left alone. Did you mean %s?", quote(bc.Title), quote(near)))

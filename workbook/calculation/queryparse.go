@@ -107,7 +107,7 @@ func (p *parser) column(what string) ColumnRef {
 			c.Unit += "s"
 		}
 		if t.kind != tokenWord || !slices.Contains(unitNames(), c.Unit) {
-			p.fail(t, "the unit of a duration is "+orList(unitNames())+"; parentheses that belong to a name stand in quotes with it",
+			p.fail(t, "the unit of a duration is "+funcs.OrList(unitNames())+"; parentheses that belong to a name stand in quotes with it",
 				funcs.Closest(t.text, unitNames())...)
 		}
 		if t := p.peek(); !p.accept(")") {
@@ -139,7 +139,7 @@ func (p *parser) place() PlaceRef {
 		}
 	case t.kind == tokenQuoted && after.kind == tokenWord && after.glue && after.text[0] == '/':
 		if fileEnd(t.text) != len(t.text) {
-			p.fail(t, "before the slash stands a file: its name ends in "+orList(fileKinds[:]))
+			p.fail(t, "before the slash stands a file: its name ends in "+funcs.OrList(fileKinds[:]))
 		}
 		p.next()
 		place.File, place.Name = t.text, after.text[1:]

@@ -124,5 +124,5 @@ func few(cells []string) string {
 	if len(cells) > most {
 		return strings.Join(cells[:most], ", ") + " and " + decimal(len(cells)-most) + " more"
 	}
-	return andList(cells)
+	return funcs.AndList(cells)
 }
