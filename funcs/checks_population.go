@@ -76,7 +76,7 @@ var populationCoverage = &Function{
 		}
 		share := c.results["coverage"].(float64)
 		c.method = fmt.Sprintf("%d samples of %d simulated, seed %d%s", resamples, n, seedInput.Of(c), how)
-		c.sentence = fmt.Sprintf("For a %s population the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; %s).",
+		c.sentence = fmt.Sprintf("For a population of shape %s the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; %s).",
 			c.shapeText(), percent(confidence.Of(c)), direction.Of(c), n, percent(share), brief(c.results["simulation-error"].(float64)), c.method)
 		return nil
 	},
