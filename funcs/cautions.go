@@ -164,13 +164,13 @@ type tailIndex struct {
 func hillTail(values []float64, confidence float64) (tailIndex, bool) {
 	n := len(values)
 	k := max(10, int(math.Sqrt(float64(n))))
-	centre := num.Median(num.Sorted(values))
-	d := make([]float64, n)
-	for i, x := range values {
+	d := slices.Clone(values)
+	centre := num.MedianOf(d)
+	for i, x := range d {
 		d[i] = math.Abs(x - centre)
 	}
-	slices.Sort(d)
-	base := d[n-1-k]
+	base := num.Select(d, n-1-k)
+	slices.Sort(d[n-k:]) // so that the sum below does not depend on the order of the values
 	if base == 0 {
 		return tailIndex{}, false
 	}

@@ -88,3 +88,53 @@ func Quantile(sorted []float64, p float64, t QuantileType) float64 {
 
 // Median is the median of sorted data, NaN when there are none.
 func Median(sorted []float64) float64 { return Quantile(sorted, 0.5, Type7) }
+
+// Select puts the k-th smallest value (k from 0) in its place in v, no greater
+// ones before it and no smaller ones behind, and gives it. It takes time in
+// proportion to the length, where sorting takes more.
+func Select(v []float64, k int) float64 {
+	lo, hi := 0, len(v)-1
+	for rounds := 0; lo < hi; rounds++ {
+		if rounds > 60 { // a list made to be slow
+			slices.Sort(v[lo : hi+1])
+			break
+		}
+		a, b, c := v[lo], v[lo+(hi-lo)/2], v[hi]
+		pivot := max(min(a, b), min(max(a, b), c)) // the middle one of three
+		i, j := lo, hi
+		for i <= j {
+			for v[i] < pivot {
+				i++
+			}
+			for v[j] > pivot {
+				j--
+			}
+			if i <= j {
+				v[i], v[j] = v[j], v[i]
+				i, j = i+1, j-1
+			}
+		}
+		switch {
+		case k <= j:
+			hi = j
+		case k >= i:
+			lo = i
+		default:
+			return v[k]
+		}
+	}
+	return v[k]
+}
+
+// MedianOf is the median of values in any order, which it puts in another.
+func MedianOf(v []float64) float64 {
+	n := len(v)
+	if n == 0 {
+		return math.NaN()
+	}
+	upper := Select(v, n/2)
+	if n%2 == 1 {
+		return upper
+	}
+	return Median([]float64{slices.Max(v[:n/2]), upper})
+}

@@ -104,3 +104,27 @@ func TestSortedLeavesItsInputAlone(t *testing.T) {
 		t.Errorf("%v from %v", s, xs)
 	}
 }
+
+// Sorting is the other way to the same values.
+func TestSelectAgreesWithSorting(t *testing.T) {
+	rng := rand.New(rand.NewPCG(3, 4))
+	for n := 1; n <= 200; n++ {
+		v := make([]float64, n)
+		for i := range v {
+			v[i] = float64(rng.IntN(1 + n/2)) // with ties
+		}
+		sorted := Sorted(v)
+		k := rng.IntN(n)
+		if got := Select(v, k); got != sorted[k] {
+			t.Fatalf("n = %d: value %d is %v, want %v", n, k, got, sorted[k])
+		}
+		for i, x := range v {
+			if i < k && x > v[k] || i > k && x < v[k] {
+				t.Fatalf("n = %d: %v at %d on the wrong side of %v at %d", n, x, i, v[k], k)
+			}
+		}
+		if got := MedianOf(v); got != Median(sorted) {
+			t.Fatalf("n = %d: median %v, want %v", n, got, Median(sorted))
+		}
+	}
+}
