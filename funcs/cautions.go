@@ -43,7 +43,7 @@ func (c *Call) checkSample(in In[[]float64]) error {
 		}
 		return nil
 	}
-	return c.checkValues(in.Name, v, summarise(withoutGaps(v)))
+	return c.checkValues(in.Name, v, c.summarise(withoutGaps(v)))
 }
 
 // checkValues raises the cautions of an ordered list of values whose summary
@@ -88,7 +88,7 @@ func (c *Call) checkSkewness(input, what string, values []float64, s summary) {
 	if s.n < fromValues {
 		return
 	}
-	g1 := skewness(num.Moments(values))
+	g1 := skewness(c.moments(values))
 	need := cochranFactor * float64(g1*g1)
 	if float64(s.n) <= need {
 		c.caution("skewed-for-n", input, "%s is skewed (skewness %s): with n = %d the interval may miss more often than it says; "+
