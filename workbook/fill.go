@@ -127,7 +127,7 @@ func open(ctx context.Context, path string, o Options) (*Book, *calculation.Plan
 		err = plan.Unreadable()
 	}
 	if err == nil {
-		err = somethingToDo(path, b, plan)
+		err = hasWork(path, b, plan)
 	}
 	if err != nil {
 		b.Close()
@@ -136,16 +136,16 @@ func open(ctx context.Context, path string, o Options) (*Book, *calculation.Plan
 	return b, plan, nil
 }
 
-// ErrNothingToDo is a workbook in which there is nothing to work out.
-var ErrNothingToDo = errors.New("nothing to work out")
+// ErrNoWork is a workbook in which there is nothing to work out.
+var ErrNoWork = errors.New("nothing to work out")
 
 // nothingError says what is missing from a workbook.
 type nothingError struct{ text string }
 
 func (e nothingError) Error() string { return e.text }
-func (e nothingError) Unwrap() error { return ErrNothingToDo }
+func (e nothingError) Unwrap() error { return ErrNoWork }
 
-func somethingToDo(path string, b *Book, plan *calculation.Plan) error {
+func hasWork(path string, b *Book, plan *calculation.Plan) error {
 	name := filepath.Base(path)
 	var sheets []string
 	for _, p := range b.Places() {

@@ -101,7 +101,7 @@ func eachBook(c *cobra.Command, f *bookFlags, books []string, work func(string) 
 
 // named puts the workbook's path before an error that does not name it.
 func named(path string, err error) error {
-	if strings.Contains(err.Error(), path) || errors.Is(err, workbook.ErrNothingToDo) {
+	if strings.Contains(err.Error(), path) || errors.Is(err, workbook.ErrNoWork) {
 		return err
 	}
 	return fmt.Errorf("%s: %w", path, err)
