@@ -102,7 +102,7 @@ type bootstrapQuantity struct {
 func (c *Call) bootstrapQuantity(n int) (bootstrapQuantity, error) {
 	switch bootstrapOf.Of(c) {
 	case "median":
-		return bootstrapQuantity{"median", func(v []float64) float64 { slices.Sort(v); return num.Median(v) }, mediansLeavingOneOut}, nil
+		return bootstrapQuantity{"median", func(v []float64) float64 { return num.MedianOf(v) }, mediansLeavingOneOut}, nil
 	case "sd":
 		return bootstrapQuantity{"standard deviation", func(v []float64) float64 { return summarise(v).sd }, sdsLeavingOneOut}, nil
 	case "trimmed-mean":
