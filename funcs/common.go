@@ -113,7 +113,10 @@ func (c *Call) tally() (used, skipped int, sampled bool) {
 		skipped += c.origin(in.Name).Skipped
 		switch v := from.Value.(type) {
 		case []float64:
-			used, sampled = used+present(v), true
+			sampled = true
+			if !c.counted {
+				used += present(v)
+			}
 		case []Group:
 			for _, g := range v {
 				used += present(g.Values)

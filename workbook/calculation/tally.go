@@ -67,7 +67,7 @@ func (t *tally) take(column *Column, row int, name ColumnRef, factor float64) fl
 	switch kind {
 	case Number:
 		if factor > 0 {
-			return t.skip(skippedNumber, column, row)
+			return t.leaveOut(skippedNumber, column, row)
 		}
 		t.used++
 		t.hide(row)
@@ -88,18 +88,18 @@ func (t *tally) take(column *Column, row int, name ColumnRef, factor float64) fl
 		if looksLikeNumber(text) {
 			t.looks.add(row, column.col, text)
 		}
-		return t.skip(skippedText, column, row)
+		return t.leaveOut(skippedText, column, row)
 	case Error:
-		return t.skip(skippedError, column, row)
+		return t.leaveOut(skippedError, column, row)
 	case Bool:
-		return t.skip(skippedBool, column, row)
+		return t.leaveOut(skippedBool, column, row)
 	case Date:
-		return t.skip(skippedDate, column, row)
+		return t.leaveOut(skippedDate, column, row)
 	}
 	return math.NaN()
 }
 
-func (t *tally) skip(kind skipKind, column *Column, row int) float64 {
+func (t *tally) leaveOut(kind skipKind, column *Column, row int) float64 {
 	t.skipped[kind].add(row, column.col, cellText(column.At(row)))
 	if t.keepSkips {
 		t.skips = append(t.skips, int32(row))
