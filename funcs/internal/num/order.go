@@ -92,8 +92,12 @@ func Median(sorted []float64) float64 { return Quantile(sorted, 0.5, Type7) }
 // Select puts the k-th smallest value (k from 0) in its place in v, no greater
 // ones before it and no smaller ones behind, and gives it. It takes time in
 // proportion to the length, where sorting takes more.
-func Select(v []float64, k int) float64 {
-	lo, hi := 0, len(v)-1
+func Select(v []float64, k int) float64 { return selectIn(v, 0, len(v)-1, k) }
+
+// selectIn is Select between lo and hi. In a long stretch the pivot is a guess at
+// the value sought, from a small part of it (Floyd & Rivest 1975), so that little
+// more than one pass is needed.
+func selectIn(v []float64, lo, hi, k int) float64 {
 	for rounds := 0; lo < hi; rounds++ {
 		if rounds > 60 { // a list made to be slow
 			slices.Sort(v[lo : hi+1])
@@ -101,6 +105,12 @@ func Select(v []float64, k int) float64 {
 		}
 		a, b, c := v[lo], v[lo+(hi-lo)/2], v[hi]
 		pivot := max(min(a, b), min(max(a, b), c)) // the middle one of three
+		if n := hi - lo + 1; n > 600 && rounds < 8 {
+			part := math.Cbrt(float64(n)) * math.Cbrt(float64(n)) / 2
+			before := int(part * (float64(k-lo) / float64(n)))
+			from := max(lo, k-before)
+			pivot = selectIn(v, from, min(hi, from+int(part)), k)
+		}
 		i, j := lo, hi
 		for i <= j {
 			for v[i] < pivot {
