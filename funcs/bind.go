@@ -11,7 +11,7 @@ import (
 // bind turns the arguments into typed values, fills in defaults, and reports
 // every bad argument at once, in catalogue order.
 func (f *Function) bind(ctx context.Context, arguments map[string]any) (*Call, error) {
-	c := &Call{Function: f, ctx: ctx, args: make(map[string]From, len(f.Inputs)), results: map[string]any{}}
+	c := &Call{Function: f, ctx: ctx, args: make(map[string]From, len(f.Inputs)), results: map[string]any{}, known: map[listKey]*listFacts{}}
 	b := &binder{function: f, call: c}
 	for _, in := range f.Inputs {
 		raw, given := arguments[in.Name]
@@ -24,6 +24,7 @@ func (f *Function) bind(ctx context.Context, arguments map[string]any) (*Call, e
 		}
 		if v, ok := b.value(in, from.Value); ok {
 			c.args[in.Name] = From{v, from.Origin}
+			c.remember(c.args[in.Name])
 		} else {
 			b.bad = append(b.bad, in.Name)
 		}

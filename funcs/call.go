@@ -22,7 +22,7 @@ type Call struct {
 	dropped  int  // values left out by the function itself, such as unpaired ones
 	method   string
 	sentence string
-	last     lastMoments
+	known    map[listKey]*listFacts
 }
 
 // Answer evaluates the function of that name. The arguments are values of the

@@ -44,7 +44,7 @@ func (c *Call) checkSample(in In[[]float64]) error {
 		}
 		return nil
 	}
-	return c.checkValues(in.Name, v, c.summarise(withoutGaps(v)))
+	return c.checkValues(in.Name, v, c.summarise(c.gapless(v)))
 }
 
 // checkValues raises the cautions of an ordered list of values whose summary
@@ -63,7 +63,7 @@ func (c *Call) checkDerived(input, what string, ordered []float64, s summary) er
 	if s.sd == 0 {
 		return nil
 	}
-	values := withoutGaps(ordered)
+	values := c.gapless(ordered)
 	c.checkSkewness(input, what, values, s)
 	c.checkNeighbours(input, what, ordered, s)
 	c.checkFar(input, what, 0, ordered, s)
@@ -102,7 +102,7 @@ func (c *Call) checkNeighbours(input, what string, ordered []float64, s summary)
 	if s.n < fromValues || c.origin(input).Unordered {
 		return
 	}
-	if r := num.Lag1(ordered); math.Abs(r) > neighbourFactor/math.Sqrt(float64(s.n)) {
+	if r := c.facts(ordered).lag1(); math.Abs(r) > neighbourFactor/math.Sqrt(float64(s.n)) {
 		c.caution("neighbours-alike", input, "Neighbouring values of %s are not independent (lag-1 autocorrelation %s), so the interval is too %s. "+
 			"Average over longer stretches, or see independence-check.", lowerFirst(what), brief(r), narrowOrWide(r))
 	}
@@ -121,13 +121,9 @@ func (c *Call) checkFar(input, what string, group int, ordered []float64, s summ
 	if s.n < 3 {
 		return
 	}
-	far, at := 0.0, -1
-	for i, x := range ordered {
-		if d := math.Abs(x - s.mean); d > far {
-			far, at = d, i
-		}
-	}
-	if at < 0 || far/s.sd <= esdCritical(s.n, farSignificance) {
+	at := c.facts(ordered).far()
+	far := math.Abs(ordered[at] - s.mean)
+	if far/s.sd <= esdCritical(s.n, farSignificance) {
 		return
 	}
 	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.addressIn(input, group, at), Message: fmt.Sprintf(
@@ -147,7 +143,7 @@ func (c *Call) checkTail(input, what string, values []float64) {
 	if len(values) < tailValues {
 		return
 	}
-	tail, ok := hillTail(values, tailConfidence)
+	tail, ok := c.facts(values).hill()
 	if ok && tail.upper < 2 {
 		c.caution("heavy-tail", input, "%s has tails so heavy (tail index %s, at most %s) that its variance may not exist: no n is enough for a t interval. "+
 			"Use median-interval, and see tail-check.", what, brief(tail.index), brief(tail.upper))

@@ -5,6 +5,7 @@ import (
 	"math"
 	"slices"
 	"strings"
+	"sync"
 )
 
 // CommonResults are the results that every function gives besides its own.
@@ -41,13 +42,28 @@ type Outcome struct {
 	Arguments map[string]From // as bound, defaults included
 
 	results map[string]any
+	late    func() string // the fingerprint, worked out when it is first asked for
 }
 
 // Get gives a result by name: a float64, int, string or bool. Status and note
 // are there always, the others only where they exist.
 func (o *Outcome) Get(name string) (any, bool) {
-	v, ok := o.results[name]
-	return v, ok
+	if v, ok := o.results[name]; ok || name != "fingerprint" || o.late == nil {
+		return v, ok
+	}
+	return o.late(), true
+}
+
+// Forget lets go of arguments that need not be held any longer. The fingerprint
+// stands for all of them: it is worked out before they go, or goes with them.
+func (o *Outcome) Forget(keepFingerprint bool, names ...string) {
+	for _, name := range names {
+		delete(o.Arguments, name)
+	}
+	if keepFingerprint && o.late != nil {
+		o.results["fingerprint"] = o.late()
+	}
+	o.late = nil
 }
 
 // Results lists what exists, in catalogue order: the function's own results,
@@ -59,7 +75,7 @@ func (o *Outcome) Results() []Argument {
 	var out []Argument
 	for _, list := range [][]Result{o.Function.Results, CommonResults} {
 		for _, r := range list {
-			if v, ok := o.results[r.Name]; ok {
+			if v, ok := o.Get(r.Name); ok {
 				out = append(out, Argument{r.Name, v})
 			}
 		}
@@ -99,7 +115,7 @@ func (c *Call) finish() *Outcome {
 		c.set("range", r)
 	}
 	c.set("version", c.Function.Version)
-	c.set("fingerprint", c.fingerprint())
+	o.late = sync.OnceValue(c.fingerprint)
 	return o
 }
 

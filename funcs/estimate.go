@@ -90,25 +90,6 @@ type summary struct {
 // variance of the mean.
 func (s summary) variance() float64 { return float64(s.sd*s.sd) / float64(s.n) }
 
-// lastMoments are the moments of the values looked at last, which the
-// computation and its checks both need.
-type lastMoments struct {
-	values  []float64
-	moments num.Summary
-}
-
-// moments are those of values without gaps; computed once for the same slice.
-func (c *Call) moments(values []float64) num.Summary {
-	l := c.last.values
-	if len(values) == 0 || len(l) != len(values) || &l[0] != &values[0] {
-		c.last = lastMoments{values, num.Moments(values)}
-	}
-	return c.last.moments
-}
-
-// summarise is the function of that name, on moments computed once.
-func (c *Call) summarise(values []float64) summary { return summaryFrom(c.moments(values)) }
-
 // summarise reduces values without gaps; sd is 0 where there is one.
 func summarise(values []float64) summary { return summaryFrom(num.Moments(values)) }
 
@@ -129,7 +110,7 @@ func (c *Call) summaryOf(sample In[[]float64], mean, sd In[float64], n In[int]) 
 		c.count(s.n + c.used)
 		return s, nil
 	}
-	s := c.summarise(withoutGaps(values))
+	s := c.summarise(c.gapless(values))
 	c.count(s.n + c.used)
 	if s.n < 2 {
 		return s, tooFew(sample.Name, s.n, 2)

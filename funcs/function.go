@@ -164,6 +164,7 @@ type Origin struct {
 	Skipped   int       // cells left out though they were not blank
 	Findings  []Finding // what the reading found; Input is filled in by the call
 	Unordered bool      // neighbours in the list are not neighbours in time
+	Facts     *Facts    // what is known of the values from other calls; may be nil
 	// Address gives the cell of value i (of a group, by its index), or "".
 	Address func(group, i int) string
 }

@@ -28,7 +28,7 @@ func (c *Call) readGroupsWith(further ...In[List]) ([]groupSummary, [][]float64,
 	var groups []groupSummary
 	if given, ok := samples.Given(c); ok {
 		for _, g := range given {
-			groups = append(groups, groupSummary{g.Name, g.Values, summarise(withoutGaps(g.Values))})
+			groups = append(groups, groupSummary{g.Name, g.Values, c.summarise(c.gapless(g.Values))})
 		}
 		c.count(total(groups))
 		_, columns, err := c.matched(namesOf(groups), further...)
@@ -210,7 +210,7 @@ func (c *Call) checkGroups(groups []groupSummary) error {
 		if g.values == nil || g.sd == 0 {
 			continue
 		}
-		what, values := "The group "+g.name, withoutGaps(g.values)
+		what, values := "The group "+g.name, c.gapless(g.values)
 		c.checkSkewness(input, what, values, g.summary)
 		c.checkNeighbours(input, what, g.values, g.summary)
 		c.checkFar(input, what, i, g.values, g.summary)

@@ -191,6 +191,7 @@ func (a *argument) fromReading(t *term, r *reading) {
 		return
 	}
 	origin.Skipped = r.tally.left()
+	origin.Facts = &r.facts
 	origin.Address = r.address
 	origin.Unordered = r.isRange && r.area.LastCol > r.area.FirstCol && r.area.LastRow > r.area.FirstRow
 	q := (*Query)(nil)
@@ -300,6 +301,7 @@ func (a *argument) fromEach(r *reading, q *Query) {
 	a.eachBy = q.ForEach.Name
 	for i, s := range r.series {
 		origin := &funcs.Origin{Unit: a.from.Origin.Unit, Skipped: s.skipped,
+			Facts:   &r.facts,
 			Range:   fmt.Sprintf("%s = %s", r.text, nameText(s.name)),
 			Address: func(_, k int) string { return r.address(i, k) }}
 		a.each = append(a.each, eachGroup{s.name, funcs.From{Value: s.values, Origin: origin}})

@@ -330,7 +330,7 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 			return result.addError(ctx, err, args)
 		}
 		result.Outcome = out
-		p.letGo(out)
+		p.letGo(r, out)
 		for _, f := range out.Findings {
 			result.add(f)
 		}
@@ -343,7 +343,7 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 		out, err := r.Function.Answer(ctx, call)
 		group := GroupOutcome{Name: g.name, Outcome: out}
 		if err == nil {
-			p.letGo(out)
+			p.letGo(r, out)
 		} else {
 			if ctx.Err() != nil {
 				return ctx.Err()
@@ -358,19 +358,22 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 
 // letGo drops the samples that were read from an outcome, unless they are to be
 // kept.
-func (p *Plan) letGo(out *funcs.Outcome) {
+func (p *Plan) letGo(r *Row, out *funcs.Outcome) {
 	if p.options.KeepValues {
 		return
 	}
+	var names []string
 	for name, from := range out.Arguments {
 		if from.Origin == nil || from.Origin.Range == "" {
 			continue
 		}
 		switch from.Value.(type) {
 		case []float64, []funcs.Group:
-			delete(out.Arguments, name)
+			names = append(names, name)
 		}
 	}
+	shown := r.Block.column(ResultColumn, "fingerprint") != nil || (r.each != nil && r.table != "")
+	out.Forget(shown, names...)
 }
 
 // errorLines gives the faults of a call, without the function's name.

@@ -7,6 +7,8 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+
+	"halfwidth/funcs"
 )
 
 // series is the values of one sample with the rows they stand in; for a count
@@ -33,6 +35,7 @@ type reading struct {
 	unit   string
 	sheet  *sheet
 	rows   int // rows that met the conditions
+	facts  funcs.Facts
 	// Of a range: where value i stands.
 	area    Area
 	isRange bool
