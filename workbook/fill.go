@@ -21,6 +21,8 @@ type Options struct {
 	Workers int          // rows worked out at once; 0 for as many as there are cores
 	Limits  ooxml.Limits // of what a workbook may cost
 
+	KeepValues bool // keep the samples that were read in the arguments of outcomes, as pictures need them
+
 	Output  string // file or folder to write to; empty for BOOK-filled beside the book
 	InPlace bool   // write over the book itself
 	Replace bool   // write over an output that was changed since
@@ -122,7 +124,7 @@ func open(ctx context.Context, path string, o Options) (*Book, *calculation.Plan
 	if err != nil {
 		return nil, nil, err
 	}
-	plan, err := calculation.NewPlan(ctx, b, calculation.Options{Sheets: o.Sheets, MayReplace: b.isOurTable})
+	plan, err := calculation.NewPlan(ctx, b, calculation.Options{Sheets: o.Sheets, MayReplace: b.isOurTable, KeepValues: o.KeepValues})
 	if err == nil {
 		err = plan.Unreadable()
 	}
