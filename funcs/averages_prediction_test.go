@@ -61,14 +61,14 @@ func TestPredictionFactorsLieBetweenOneAndBonferroni(t *testing.T) {
 
 // The mean of very many further values is the population's: a mean interval.
 func TestPredictionOfAMeanOfManyIsAMeanInterval(t *testing.T) {
-	a := answer(t, "prediction-interval", map[string]any{"sample": sixTimes, "future": 1 << 53, "of": "mean"})
+	a := answer(t, "prediction-interval", map[string]any{"sample": sixTimes, "future": largestCount, "of": "mean"})
 	b := answer(t, "mean-interval", map[string]any{"sample": sixTimes})
 	for _, limit := range []string{"lower", "upper"} {
 		within(t, limit, resultOf(t, a, limit), resultOf(t, b, limit), 1e-14)
 	}
 	refuses(t, "prediction-interval", map[string]any{"sample": sixTimes, "future": 0}, "future is 0, but must be a whole number, 1 or more")
 	refuses(t, "prediction-interval", map[string]any{"sample": sixTimes, "of": "all"}, `of is "all", but must be one of its choices; write each or mean`)
-	if out := answer(t, "prediction-interval", map[string]any{"mean": 0.0, "sd": 1.0, "n": 1 << 53, "future": 1 << 53}); out.Status != StatusOK {
+	if out := answer(t, "prediction-interval", map[string]any{"mean": 0.0, "sd": 1.0, "n": largestCount, "future": largestCount}); out.Status != StatusOK {
 		t.Errorf("%s: %s", out.Status, Note(out.Findings))
 	}
 }

@@ -174,7 +174,7 @@ func TestMeanIntervalOfAFinitePopulation(t *testing.T) {
 		"population-size is 5, but is smaller than the sample (n = 6); give the number in the whole population")
 
 	// 1 - n/N in whole numbers, though n/N rounds to 1 - 2^-50 and the like.
-	big := answer(t, "mean-interval", map[string]any{"mean": 1.0, "sd": 1.0, "n": 1<<50 - 3, "population-size": 1 << 50})
+	big := answer(t, "mean-interval", map[string]any{"mean": 1.0, "sd": 1.0, "n": math.MaxInt>>13 - 2, "population-size": math.MaxInt>>13 + 1})
 	within(t, "standard-error of nearly all", resultOf(t, big, "standard-error"), math.Sqrt(3)/math.Ldexp(1, 50), 1e-14)
 }
 
@@ -194,7 +194,7 @@ func TestMeanIntervalWithAKnownSD(t *testing.T) {
 }
 
 func TestMeanIntervalOfAHugeSummary(t *testing.T) {
-	out := answer(t, "mean-interval", map[string]any{"mean": 0.0, "sd": 1.0, "n": 1 << 53})
+	out := answer(t, "mean-interval", map[string]any{"mean": 0.0, "sd": 1.0, "n": largestCount})
 	within(t, "half-width", resultOf(t, out, "half-width"), 1.959963984540054/math.Sqrt(1<<53), 1e-13)
 }
 

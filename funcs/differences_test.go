@@ -212,7 +212,7 @@ func scaledSummary(v []float64, factor float64) summary {
 }
 
 func TestHugeCountsInSummaries(t *testing.T) {
-	n := 1 << 40
+	n := math.MaxInt >> 23
 	out := answer(t, "difference-interval", twoArguments(summary{n, 1, 1}, summary{n, 0, 1}))
 	// The normal limit; sds 1, so the standard error is √(2/n).
 	within(t, "lower", resultOf(t, out, "half-width"), 1.959963984540054*math.Sqrt(2/float64(n)), 1e-6)

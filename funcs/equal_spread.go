@@ -84,17 +84,17 @@ func (c *Call) centredDistances(groups []groupSummary, kind string) error {
 		squares += num.SumProducts(z, z)
 		distances[i] = groupSummary{g.name, z, summarise(z)}
 	}
-	between, within := sumsOfSquares(distances)
+	sums := valueSquares(distances)
 	if squares == 0 {
 		return c.noGroupSpread(groups)
 	}
 	// Distances that agree but for rounding, as in groups of two, give no yardstick.
-	if !(within > 1e-28*squares) {
+	if !(sums.within > 1e-28*squares) {
 		return refuse("few-values", "samples", "Within each group all values lie equally far from its centre, so nothing tells how much spreads vary by chance; "+
 			"measure at least 3 in each.")
 	}
 	df1, df2 := float64(len(groups)-1), dfWithin(groups)
-	f := (between / df1) / (within / df2)
+	f := (sums.between / df1) / (sums.within / df2)
 	p := dist.F{DF1: df1, DF2: df2}.SF(f)
 	c.set("statistic", f)
 	c.set("df-between", df1)

@@ -83,8 +83,9 @@ func wholeFrom(lowest int) Domain {
 	return Domain{Low: float64(lowest), High: largestCount, Whole: true}
 }
 
-// largestCount is 2^53, past which a double no longer tells whole numbers apart.
-const largestCount = 1 << 53
+// largestCount is 2^53, past which a double no longer tells whole numbers apart,
+// or all that an int holds.
+const largestCount = min(1<<53, math.MaxInt)
 
 // Inputs that several functions share: one name, default and wording for each.
 var (

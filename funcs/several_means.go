@@ -17,34 +17,72 @@ var severalMeansFindings = slices.Concat(twoMeansFindings, []FindingKind{fewGrou
 // pooledFirst is variances with pooled as the default, as is usual for several means.
 var pooledFirst = variances.withDefault(pooled)
 
-// sumsOfSquares are those between and within groups. Where the values are there
-// they enter directly, with means of double length, and no digit is lost to the
-// rounding of means and sds; else the sums come from the summaries.
-func sumsOfSquares(groups []groupSummary) (between, within float64) {
+// groupSquares are the sums of squares between and within groups.
+type groupSquares struct{ between, within float64 }
+
+// squaresOf adds up the squares of groups that have these means and these sums of
+// squares about them.
+func squaresOf(groups []groupSummary, means, about []num.Wide) groupSquares {
 	distances := make([]num.Wide, len(groups))
-	var origin, weighted, inner num.Wide
+	var weighted, within num.Wide
 	for i, g := range groups {
-		mean := num.Widen(g.mean)
-		if g.values != nil {
-			m := num.Moments(withoutGaps(g.values))
-			mean = num.Wide{Hi: m.Mean, Lo: m.MeanLow}
-			inner = inner.Plus(m.SumSquares)
-		} else if g.n > 1 {
-			inner = inner.Add(num.TwoProduct(g.sd, g.sd).Times(float64(g.n - 1)))
-		}
-		if i == 0 {
-			origin = mean
-		}
-		distances[i] = mean.Sub(origin)
+		distances[i] = means[i].Sub(means[0])
 		weighted = weighted.Add(distances[i].Times(float64(g.n)))
+		within = within.Add(about[i])
 	}
 	centre := weighted.Over(float64(total(groups)))
-	var outer num.Wide
+	var between num.Wide
 	for i, g := range groups {
 		d := distances[i].Sub(centre)
-		outer = outer.Add(d.Mul(d).Times(float64(g.n)))
+		between = between.Add(d.Mul(d).Times(float64(g.n)))
 	}
-	return outer.Float(), inner.Float()
+	return groupSquares{between.Float(), within.Float()}
+}
+
+// summarySquares come from means and sds as doubles.
+func summarySquares(groups []groupSummary) groupSquares {
+	means, about := make([]num.Wide, len(groups)), make([]num.Wide, len(groups))
+	for i, g := range groups {
+		means[i] = num.Widen(g.mean)
+		about[i] = num.TwoProduct(g.sd, g.sd).Times(float64(g.n - 1))
+	}
+	return squaresOf(groups, means, about)
+}
+
+// valueSquares come from the values, with means of double length, so that no digit
+// is lost to the rounding of means and sds.
+func valueSquares(groups []groupSummary) groupSquares {
+	means, about := make([]num.Wide, len(groups)), make([]num.Wide, len(groups))
+	for i, g := range groups {
+		m := num.Moments(withoutGaps(g.values))
+		means[i], about[i] = num.Wide{Hi: m.Mean, Lo: m.MeanLow}, num.Widen(m.SumSquares)
+	}
+	return squaresOf(groups, means, about)
+}
+
+// sameSquares is how near the two ways of adding up must come to count as one:
+// relative in both sums, that between counted as no less than its mean square
+// within, since an f below 1 tells nothing by its last digits.
+const sameSquares = 2e-14
+
+// near says whether s and v agree to within sameSquares.
+func (s groupSquares) near(v groupSquares, df1, df2 float64) bool {
+	least := v.within * (df1 / df2)
+	return math.Abs(s.between-v.between) <= sameSquares*math.Max(v.between, least) && math.Abs(s.within-v.within) <= sameSquares*v.within
+}
+
+// sumsOfSquares works from the means and sds, so that samples and their summaries
+// give the same digits. Where the values are there and show that rounding the
+// means to doubles has cost more than sameSquares, as it does for small
+// differences of large values, the sums come from the values.
+func sumsOfSquares(groups []groupSummary, df1, df2 float64) (s groupSquares, from string) {
+	s, from = summarySquares(groups), "means and sds"
+	if groups[0].values != nil {
+		if v := valueSquares(groups); !s.near(v, df1, df2) {
+			return v, "values (rounded means would cost digits)"
+		}
+	}
+	return s, from
 }
 
 // welchMeans is the test of several means with separate variances (Welch 1951,
@@ -133,7 +171,8 @@ func (c *Call) pooledMeans(groups []groupSummary) error {
 	if df2 == 0 {
 		return c.onlySingles(groups)
 	}
-	between, within := sumsOfSquares(groups)
+	sums, from := sumsOfSquares(groups, df1, df2)
+	between, within := sums.between, sums.within
 	if within == 0 {
 		return c.noGroupSpread(groups)
 	}
@@ -144,12 +183,7 @@ func (c *Call) pooledMeans(groups []groupSummary) error {
 	c.set("mean-square-within", within/df2)
 	c.set("r-squared", between/(between+within))
 	c.set("residual-sd", math.Sqrt(within/df2))
-	c.method = "one-way analysis of variance with one pooled variance of divisor " + brief(df2) + ", sums of squares from the "
-	if c.has("samples") {
-		c.method += "values"
-	} else {
-		c.method += "means and sds"
-	}
+	c.method = "one-way analysis of variance with one pooled variance of divisor " + brief(df2) + ", sums of squares from the " + from
 	c.setMeansTest(groups, f, df1, df2)
 	c.checkGroupSpreads(groups)
 	return nil

@@ -14,7 +14,7 @@ func TestPlansStandExtremeArguments(t *testing.T) {
 	extremes := map[Kind][]any{
 		Number:  {1e-300, 1e-9, 1e-3, 0.5, 0.999999999999, 1.0, 3.0, 1e9, 1e300, -1.0, -1e300, 0.0},
 		Level:   {1e-300, 1e-9, 0.05, 0.5, 0.95, 0.999999999999},
-		Count:   {0, 1, 2, 3, 17, 1000, 1_000_000_000, 1 << 53},
+		Count:   {0, 1, 2, 3, 17, 1000, 1_000_000_000, largestCount},
 		Numbers: {List{Values: []float64{1, 1e-300, 5}}, List{Values: []float64{1e300, 3, 1}}, List{Values: []float64{2, 40, 1e12}}, List{Values: []float64{7, 7, 7}}},
 		Sample:  {[]float64{1, 2, 4, 9}, []float64{1e300, -1e300, 5}, []float64{3}, []float64{2, 2}},
 		YesNo:   {true, false},

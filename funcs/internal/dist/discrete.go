@@ -87,7 +87,7 @@ func (d Binomial) first(p float64, ok func(k int) bool) int {
 	if p > 0 && p < 1 {
 		start += float64(sd * Normal{}.Quantile(p))
 	}
-	return firstFrom(0, d.N, int(min(max(start, 0), n, 1<<62)), int(sd/16)+1, ok)
+	return firstFrom(0, d.N, int(min(max(start, 0), n, math.MaxInt/2)), int(sd/16)+1, ok)
 }
 
 // firstFrom is the smallest k in [lo, hi] for which ok holds, where ok, once it
@@ -107,7 +107,7 @@ func firstFrom(lo, hi, start, step int, ok func(k int) bool) int {
 				break
 			}
 			hi = k
-			step = min(step, 1<<61) * 2
+			step = min(step, math.MaxInt/4) * 2
 		}
 	} else {
 		lo = k + 1
@@ -121,7 +121,7 @@ func firstFrom(lo, hi, start, step int, ok func(k int) bool) int {
 				break
 			}
 			lo = k + 1
-			step = min(step, 1<<61) * 2
+			step = min(step, math.MaxInt/4) * 2
 		}
 	}
 	for lo < hi {
