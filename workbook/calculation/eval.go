@@ -28,6 +28,7 @@ type RowResult struct {
 	Outcome  *funcs.Outcome // nil where the call was refused before it was made, or made for each group
 	Groups   []GroupOutcome // of a sample given `for each`
 	Edits    []Edit
+	Kept     bool // the outcome is that of an earlier run (RunAfter)
 
 	table   *TableSheet
 	skipped int // of a sample given `for each`
@@ -52,29 +53,7 @@ func (r *RowResult) Note() string {
 // Run works the rows out, by at most so many workers at once. The results do
 // not depend on their number. The error is the context's.
 func (p *Plan) Run(ctx context.Context, workers int) (*Results, error) {
-	done := make([]*RowResult, len(p.Rows))
-	look := func(c resultCell) (Cell, *fault) { return resultOf(done[c.row.order], c) }
-	for _, level := range p.levels() {
-		err := inParallel(ctx, workers, len(level), func(i int) error {
-			r := level[i]
-			result, err := p.work(ctx, r, look)
-			done[r.order] = result
-			return err
-		})
-		if err != nil {
-			return nil, err
-		}
-	}
-	out := &Results{Rows: done, Diagnostics: p.Diagnostics()}
-	for _, r := range done {
-		if r.Row.Block.column(ResultColumn, "note") == nil || r.Row.closed[r.Row.Block.column(ResultColumn, "note").Col] {
-			out.Diagnostics = append(out.Diagnostics, r.Findings...)
-		}
-		if r.table != nil {
-			out.Tables = append(out.Tables, *r.table)
-		}
-	}
-	return out, nil
+	return p.RunAfter(ctx, workers, nil)
 }
 
 // inParallel calls work for 0 to n-1 from several goroutines and gives the
