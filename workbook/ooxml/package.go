@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"io"
 	"io/fs"
-	"os"
 	"strings"
 	"sync"
 )
@@ -12,9 +11,8 @@ import (
 // Book is an open workbook. Its methods may be called from several goroutines
 // at once, except Close and SaveInPlace.
 type Book struct {
-	file string      // the name it was opened by
-	disk *os.File    // nil for a book that is not a file
-	info fs.FileInfo // of disk, when it was opened
+	file string // the name it was opened by
+	disk *File  // nil for a book that is not a file
 	src  io.ReaderAt
 	*container
 
@@ -90,23 +88,16 @@ type Calculation struct {
 
 // Open opens the workbook file. The caller closes it.
 func Open(path string, limits Limits) (*Book, error) {
-	f, err := os.Open(path)
+	f, err := OpenFile(path)
 	if err != nil {
-		return nil, &Error{File: path, Kind: ErrUnreadable, Reason: "the file cannot be opened: " + plainCause(err), Advice: "check its name and that you may read it", Err: err}
+		return nil, err
 	}
-	info, err := f.Stat()
-	if err == nil && !info.Mode().IsRegular() {
-		err = &Error{File: path, Kind: ErrNotWorkbook, Reason: "this is not a file", Advice: "name a workbook (.xlsx or .xlsm)"}
-	}
-	var b *Book
-	if err == nil {
-		b, err = OpenReaderAt(path, f, info.Size(), limits)
-	}
+	b, err := OpenReaderAt(path, f, f.Size(), limits)
 	if err != nil {
 		f.Close()
 		return nil, err
 	}
-	b.disk, b.info = f, info
+	b.disk = f
 	return b, nil
 }
 
