@@ -25,7 +25,8 @@ func (c *calcSheet) readRows(b *Block) {
 			r.Label = labelText(c.at(number, b.work))
 		}
 		if b.refused != nil {
-			r.faults = append(r.faults, Diagnostic{Finding: b.refused.Finding, Sheet: b.Sheet, Cell: CellRef{b.Header, b.work}})
+			r.faults = append(r.faults, Diagnostic{Finding: b.refused.Finding, Sheet: b.Sheet, Cell: CellRef{b.Header, b.work},
+				Span: b.refused.span, Instead: b.refused.instead})
 		}
 		if !b.named {
 			c.readFunction(r)
@@ -74,6 +75,7 @@ func (c *calcSheet) readFunction(r *Row) {
 		f, err := funcs.Lookup(nameForm(cell.Text))
 		if err != nil {
 			r.refuse(at, Span{}, "unknown-name", ended(fmt.Sprintf("%s names no function: %s", at, err)))
+			r.lastFault().Instead = closestOf(err)
 		}
 		r.Function = f
 	case !isFilled(cell):
@@ -260,6 +262,7 @@ func (p *Plan) readInput(c *calcSheet, r *Row, in funcs.Input, at CellRef, unit 
 	if f != nil {
 		finding := placed(in.Name, at.String(), f)
 		r.refuse(at, f.span, f.Code, finding.Message, append([]string{address}, f.Cells...)...)
+		r.lastFault().Instead = f.instead
 		return
 	}
 	if t == nil {

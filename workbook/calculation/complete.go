@@ -1,6 +1,9 @@
 package calculation
 
-import "context"
+import (
+	"context"
+	"strings"
+)
 
 // BlockAt gives the block that a cell of a calculation sheet lies in, with the
 // cell's column and row; the row is nil in the header and where it is no
@@ -47,3 +50,22 @@ func HeaderNames(ctx context.Context, source Source, sheet string) ([]string, er
 // NameText writes a name as it stands in an expression, in quotes where it
 // needs them.
 func NameText(name string) string { return nameText(name) }
+
+// WorkOut reads the text of a header cell: `work out`, or `work out: NAME`.
+func WorkOut(text string) (name string, ok bool) { return workOut(Cell{Kind: Text, Text: text}) }
+
+// HeaderName reads a header cell's text as a name in its one form, and reports
+// whether a result's mark stands before it.
+func HeaderName(text string) (name string, isResult bool) {
+	text, isResult = strings.CutPrefix(trim(text), ">")
+	name, _ = title(text)
+	return name, isResult
+}
+
+// DefaultName reads a cell `default NAME`.
+func DefaultName(text string) (name string, ok bool) {
+	return strings.CutPrefix(nameForm(text), "default-")
+}
+
+// OptionNames lists the names that a `default NAME` may set.
+func OptionNames() []string { return options() }

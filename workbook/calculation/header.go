@@ -304,6 +304,11 @@ func (b *bound) notFound(f *Frame, first, last int) {
 	missing := slices.Index(cols, 0)
 	name := b.names[missing]
 	texts := b.headerTexts(f, first, last, best)
+	defer func() {
+		for _, near := range funcs.Closest(name.Name, texts) {
+			b.fault.instead = append(b.fault.instead, ColumnRef{Name: near, Unit: name.Unit}.String())
+		}
+	}()
 	switch {
 	case best > 0:
 		b.refuse(name.Span, fmt.Sprintf("The header of %s in row %d has no column %s. %s", where, best, quote(name.Name), suggest(name.Name, texts)))

@@ -13,8 +13,9 @@ import (
 // that should be known about it.
 type fault struct {
 	funcs.Finding
-	span Span // in the expression or the cell's text; empty for the whole
-	tail bool // the message goes on from the input's name
+	span    Span     // in the expression or the cell's text; empty for the whole
+	tail    bool     // the message goes on from the input's name
+	instead []string // what may have been meant by the span
 }
 
 // library reads the sheets that expressions name, each of them once.
@@ -153,7 +154,11 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 	case ref.File == "" && fileEnd(name) == len(name):
 		return lib.locate(&PlaceRef{File: name, HeaderRow: ref.HeaderRow, Span: ref.Span})
 	}
-	return located{}, unknownPlace(ref.Span, fmt.Sprintf("There is no sheet, table or defined name %s%s", quote(name), inFile(ref.File)), suggest(name, sh.names()))
+	f = unknownPlace(ref.Span, fmt.Sprintf("There is no sheet, table or defined name %s%s", quote(name), inFile(ref.File)), suggest(name, sh.names()))
+	for _, near := range funcs.Closest(name, sh.names()) {
+		f.instead = append(f.instead, (&PlaceRef{File: ref.File, Name: near}).String())
+	}
+	return located{}, f
 }
 
 func firstOr(list []string, otherwise string) string {

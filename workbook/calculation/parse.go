@@ -140,6 +140,7 @@ func (c *calcSheet) readHeader(b *Block) {
 		f, err := funcs.Lookup(name)
 		if err != nil {
 			c.refuseBlock(b, b.work, "unknown-name", ended(fmt.Sprintf("%s names no function: %s", CellRef{b.Header, b.work}, err)))
+			b.refused.span, b.refused.instead = afterColon(c.at(b.Header, b.work).Text), closestOf(err)
 		} else {
 			b.Function, known = f, words(f)
 		}
@@ -165,6 +166,7 @@ func (c *calcSheet) readHeader(b *Block) {
 		if bc.Role == InputColumn && slices.Contains(summaries, bc.Name) && b.column(ResultColumn, bc.Name) == nil && c.isEmpty(b, bc.Col) {
 			c.find(CellRef{b.Header, bc.Col}, funcs.Information, "missing-result-mark",
 				fmt.Sprintf("The column %s is empty. It is an input; write > %s to have the result filled in.", quote(bc.Title), bc.Name))
+			c.meant("> " + bc.Name)
 		}
 	}
 }
@@ -186,6 +188,9 @@ func (c *calcSheet) readTitle(b *Block, bc *BlockColumn, known vocabulary) {
 			message = "No result is named after the > sign, so this column is left alone. Write a result, such as > mean."
 		}
 		c.find(CellRef{b.Header, bc.Col}, funcs.Caution, "unknown-name", message)
+		if name != "" {
+			c.meant(funcs.Closest(name, known.results)...)
+		}
 		bc.Name = ""
 	case known.hasInput(name):
 		bc.Role = InputColumn
@@ -241,12 +246,14 @@ func (c *calcSheet) checkOwn(b *Block, bc BlockColumn, known vocabulary) {
 	switch {
 	case known.hasResult(bc.Name) && b.column(ResultColumn, bc.Name) == nil && c.isEmpty(b, bc.Col):
 		c.find(at, funcs.Caution, "missing-result-mark", fmt.Sprintf("%s is a result's name, but its column is left alone. Write > %s to have it filled in.", quote(bc.Title), bc.Name))
+		c.meant("> " + bc.Name)
 	case b.Function != nil && words(nil).hasInput(bc.Name):
 		c.find(at, funcs.Caution, "near-miss", fmt.Sprintf("%s is no input of %s, so this column is left alone. Its inputs are %s.",
 			quote(bc.Title), b.Function.Name, funcs.AndList(known.inputs)))
 	case !known.hasResult(bc.Name):
 		if near := known.nearly(bc.Name); near != "" {
 			c.find(at, funcs.Caution, "near-miss", fmt.Sprintf("%s is no known name, so this column is left alone. Did you mean %s?", quote(bc.Title), quote(near)))
+			c.meant(near)
 		}
 	}
 }
@@ -280,6 +287,7 @@ func (c *calcSheet) addSetting(at CellRef, name string, known []string) {
 		c.find(at, funcs.Caution, "unknown-name", fmt.Sprintf("%s is data and no option, so it has no default. Give it in a column of the block.", quote(name)))
 	case !slices.Contains(known, name):
 		c.find(at, funcs.Caution, "unknown-name", fmt.Sprintf("There is no option %s, so this default sets nothing. %s", quote(name), suggest(name, known)))
+		c.meant(funcs.Closest(name, known)...)
 	case !isFilled(c.at(value.Row, value.Col)):
 		c.find(at, funcs.Caution, "no-value", fmt.Sprintf("The default %s has no value in %s, so it sets nothing. Write one there, or empty this cell.", name, value))
 	case name == decimalMark && !slices.Contains([]string{".", ",", "comma", "point"}, strings.Trim(fold(labelText(c.at(value.Row, value.Col))), `"'`)):

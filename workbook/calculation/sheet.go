@@ -131,6 +131,8 @@ type Diagnostic struct {
 	Sheet string
 	Cell  CellRef
 	Span  Span // within the cell's text; empty for the whole
+
+	Instead []string // what may have been meant by the Span, the likeliest first
 }
 
 // find adds a finding about the layout of the sheet.

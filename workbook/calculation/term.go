@@ -193,7 +193,7 @@ func (r *reader) text(t *term, text string) *fault {
 			return bad("bad-value", fmt.Sprintf("is %s, but must be %s; write a number with . as the decimal mark, or a cell such as B7", quote(trim(text)), expects(in)))
 		}
 		if syntax, ok := err.(*SyntaxError); ok {
-			f.span = syntax.Span
+			f.span, f.instead = syntax.Span, syntax.Closest
 		}
 		return f
 	}
@@ -332,7 +332,7 @@ func (r *reader) follow(t *term, calc *calcSheet, ref CellRef, written string) *
 		if f.Code != "circle" && f.tail {
 			f.Message = fmt.Sprintf("is read from %s, which %s", at, f.Message)
 		}
-		f.Cells, f.span = append(f.Cells, at), Span{}
+		f.Cells, f.span, f.instead = append(f.Cells, at), Span{}, nil
 		return f
 	}
 	got.unit, got.far = t.unit, true
