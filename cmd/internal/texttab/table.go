@@ -3,8 +3,6 @@
 package texttab
 
 import (
-	"encoding/csv"
-	"encoding/json"
 	"fmt"
 	"io"
 	"strconv"
@@ -47,13 +45,14 @@ type Row struct {
 
 // Write writes the table in the format.
 func (t *Table) Write(w io.Writer, f Format) error {
-	switch f {
-	case JSON:
-		return t.json(w)
-	case CSV:
-		return t.csv(w)
+	if f == Text {
+		return t.text(w)
 	}
-	return t.text(w)
+	s := NewStream(w, t.Columns, f)
+	for _, row := range t.Rows {
+		s.Add(row)
+	}
+	return s.Close()
 }
 
 // show writes a cell as text. In a table to be read, numbers are shortened to
@@ -157,69 +156,4 @@ func Wrap(text string, width int, indent string) string {
 		column += n
 	}
 	return b.String()
-}
-
-func (t *Table) csv(w io.Writer) error {
-	out := csv.NewWriter(w)
-	header := make([]string, 0, len(t.Columns)+1)
-	for _, c := range t.Columns {
-		header = append(header, c.Name)
-	}
-	if err := out.Write(append(header, "notes")); err != nil {
-		return err
-	}
-	for _, row := range t.Rows {
-		record := make([]string, len(t.Columns), len(t.Columns)+1)
-		for i, cell := range row.Cells {
-			record[i] = guarded(cell)
-		}
-		if err := out.Write(append(record, guarded(strings.Join(row.Notes, " ")))); err != nil {
-			return err
-		}
-	}
-	out.Flush()
-	return out.Error()
-}
-
-// guarded keeps a text from being taken for a formula by the program that opens
-// the CSV file: a leading space goes before =, +, - and @.
-func guarded(cell any) string {
-	text := show(cell, true)
-	if s, ok := cell.(string); ok && s != "" && strings.ContainsRune("=+-@", rune(s[0])) {
-		return " " + text
-	}
-	return text
-}
-
-func (t *Table) json(w io.Writer) error {
-	var b strings.Builder
-	b.WriteString("[")
-	for i, row := range t.Rows {
-		var members []string
-		member := func(name string, value any) error {
-			text, err := json.Marshal(value)
-			members = append(members, strconv.Quote(name)+": "+string(text))
-			return err
-		}
-		for j, cell := range row.Cells {
-			if cell == nil {
-				continue
-			}
-			if err := member(t.Columns[j].Name, cell); err != nil {
-				return err
-			}
-		}
-		if len(row.Notes) > 0 {
-			if err := member("notes", row.Notes); err != nil {
-				return err
-			}
-		}
-		if i > 0 {
-			b.WriteString(",")
-		}
-		b.WriteString("\n  {" + strings.Join(members, ", ") + "}")
-	}
-	b.WriteString("\n]\n")
-	_, err := io.WriteString(w, b.String())
-	return err
 }
