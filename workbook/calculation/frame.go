@@ -82,6 +82,55 @@ func (f *Frame) LastRow() int { return f.lastRow }
 // LastCol is the last column in which a value was set, 0 if there is none.
 func (f *Frame) LastCol() int { return f.lastCol }
 
+// chunkCost is what an empty chunk takes, in cells.
+const chunkCost = 8
+
+// Held is how many cells the frame keeps room for, the blanks between them
+// included: one far from the others costs more than one beside them.
+func (f *Frame) Held() int {
+	held := 0
+	for _, c := range f.columns {
+		if c == nil {
+			continue
+		}
+		held += chunkCost * len(c.chunks)
+		for i := range c.chunks {
+			held += len(c.chunks[i].kinds)
+		}
+	}
+	return held
+}
+
+// HeldWith is at least what Held would be after changes.
+func (f *Frame) HeldWith(changes []Change) int {
+	held := f.Held()
+	type place struct{ col, chunk int }
+	seen := map[place]bool{}
+	chunks := map[int]int{}
+	var last place
+	for _, c := range changes {
+		at := place{c.At.Col, (c.At.Row - 1) >> chunkBits}
+		if at == last || seen[at] {
+			continue
+		}
+		seen[at], last = true, at
+		column := f.column(at.col)
+		have := 0
+		if column != nil && at.chunk < len(column.chunks) {
+			have = len(column.chunks[at.chunk].kinds)
+		}
+		held += chunkRows - have
+		if most, known := chunks[at.col]; !known || at.chunk >= most {
+			if !known && column != nil {
+				most = len(column.chunks)
+			}
+			held += chunkCost * max(0, at.chunk+1-most)
+			chunks[at.col] = max(most, at.chunk+1)
+		}
+	}
+	return held
+}
+
 // Keep drops the columns that are not chosen; Column gives nil for them from
 // then on.
 func (f *Frame) Keep(c Columns) {

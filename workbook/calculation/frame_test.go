@@ -201,3 +201,26 @@ func TestChangedFrameEqualsOneBuiltAnew(t *testing.T) {
 		t.Errorf("%d texts are kept of 3001", len(frame.texts))
 	}
 }
+
+func TestHeldCountsTheRoomOfFarCells(t *testing.T) {
+	f := NewFrame()
+	for row := 1; row <= 10_000; row++ {
+		f.Set(row, 1, Cell{Kind: Number, Number: 1})
+	}
+	// Two full chunks of 4096, one of 2048, and 8 for each.
+	if got := f.Held(); got != 2*4096+2048+3*8 {
+		t.Errorf("a column of 10000 numbers holds %d", got)
+	}
+	random := rand.New(rand.NewPCG(3, 3))
+	for range 200 {
+		var changes []Change
+		for range random.IntN(5) {
+			at := CellRef{1 + random.IntN(MaxRow), 1 + random.IntN(40)}
+			changes = append(changes, Change{at, Cell{Kind: Number, Number: 2}}, Change{CellRef{at.Row, 1}, Cell{}})
+		}
+		most := f.HeldWith(changes)
+		if f = f.With(changes); f.Held() > most {
+			t.Fatalf("%d cells are held after %v, more than the %d foretold", f.Held(), changes, most)
+		}
+	}
+}
