@@ -1,7 +1,6 @@
 package workbook
 
 import (
-	"errors"
 	"fmt"
 	"io"
 	"os"
@@ -19,11 +18,14 @@ type folders struct {
 	dirs   []string
 	limits ooxml.Limits
 	opened map[string]calculation.Source
+	owner  string // how messages name what the files lie beside
+	advice string // what to do about a file that lies elsewhere
 }
 
 // newFolders gives the folders for a workbook.
 func newFolders(book string, named []string, limits ooxml.Limits) folders {
-	return folders{dirs: append([]string{filepath.Dir(book)}, named...), limits: limits, opened: map[string]calculation.Source{}}
+	return folders{dirs: append([]string{filepath.Dir(book)}, named...), limits: limits, opened: map[string]calculation.Source{},
+		owner: "workbook", advice: "beside the workbook, or name its folder with --data"}
 }
 
 // find resolves a file name. Symbolic links are followed before the check, so
@@ -31,7 +33,7 @@ func newFolders(book string, named []string, limits ooxml.Limits) folders {
 func (f folders) find(file string) (string, error) {
 	local := filepath.FromSlash(strings.ReplaceAll(file, `\`, "/"))
 	if !filepath.IsLocal(local) {
-		return "", errors.New("leads out of the workbook's folder; put the file beside the workbook, or name its folder with --data")
+		return "", fmt.Errorf("leads out of the %s's folder; put the file %s", f.owner, f.advice)
 	}
 	for _, dir := range f.dirs {
 		root, err := filepath.EvalSymlinks(dir)
@@ -43,7 +45,7 @@ func (f folders) find(file string) (string, error) {
 			continue
 		}
 		if inside, err := filepath.Rel(root, path); err != nil || !filepath.IsLocal(inside) {
-			return "", errors.New("is a link that leads out of the workbook's folder; put the file itself beside the workbook, or name its folder with --data")
+			return "", fmt.Errorf("is a link that leads out of the %s's folder; put the file itself %s", f.owner, f.advice)
 		}
 		if info, err := os.Stat(path); err == nil && info.Mode().IsRegular() {
 			return path, nil
