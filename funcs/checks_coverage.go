@@ -140,11 +140,8 @@ var coverageCheck = &Function{
 		if given, ok := coverageN.Given(c); ok {
 			n = given
 		}
-		centred := make([]float64, len(values))
 		m := num.Moments(values)
-		for i, x := range values {
-			centred[i] = (x - m.Mean) - m.MeanLow
-		}
+		centred := lessMean(values, m)
 		t, resamples, err := c.coverage(n, func(stream *num.Stream, x []float64) { stream.Resample(x, centred) })
 		if err != nil {
 			return err
