@@ -16,6 +16,7 @@ type Client struct {
 	ProcessID    int             // 0: not named
 	Capabilities json.RawMessage // ClientCapabilities of LSP
 	Options      json.RawMessage // initializationOptions
+	Folders      []string        // URIs of the folders open at initialize
 }
 
 // Capability gives one of the client's capabilities by its path, or nil.
@@ -49,6 +50,14 @@ func (s *Session) PositionEncoding() string {
 func (s *Session) Notify(method string, params any) {
 	if err := s.conn.Notify(s.ctx, method, params); err != nil && !errors.Is(err, jsonrpc2.ErrClosed) && s.ctx.Err() == nil {
 		s.remarks.say("the notification %s was not sent: %v", method, err)
+	}
+}
+
+// notifyOpen is Notify of a session that has not been shut down: nothing is
+// published after that.
+func (s *Session) notifyOpen(method string, params any) {
+	if s.now() == open {
+		s.Notify(method, params)
 	}
 }
 

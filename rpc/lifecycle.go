@@ -42,6 +42,10 @@ type initializeParams struct {
 	InitializationOptions json.RawMessage `json:"initializationOptions"`
 	Capabilities          json.RawMessage `json:"capabilities"`
 	Trace                 string          `json:"trace"`
+	RootURI               string          `json:"rootUri"`
+	WorkspaceFolders      []struct {
+		URI string `json:"uri"`
+	} `json:"workspaceFolders"`
 }
 
 type initializeResult struct {
@@ -54,6 +58,12 @@ func initialize(_ context.Context, call *Call, params initializeParams) (any, er
 	client := Client{
 		Name: params.ClientInfo.Name, Version: params.ClientInfo.Version, Locale: params.Locale,
 		Capabilities: params.Capabilities, Options: params.InitializationOptions,
+	}
+	for _, folder := range params.WorkspaceFolders {
+		client.Folders = append(client.Folders, folder.URI)
+	}
+	if len(client.Folders) == 0 && params.RootURI != "" {
+		client.Folders = []string{params.RootURI}
 	}
 	if params.ProcessID != nil && *params.ProcessID > 0 {
 		client.ProcessID = *params.ProcessID
@@ -99,6 +109,7 @@ func (s *Session) offer() map[string]any {
 		"methods":         append([]string{}, own...),
 		"limits": map[string]int{
 			"messageBytes": s.limits.MessageBytes, "headerBytes": s.limits.HeaderBytes, "depth": s.limits.Depth, "sampleValues": s.limits.SampleValues,
+			"openSheets": s.limits.OpenSheets, "openCells": s.limits.OpenCells,
 			"queue": s.limits.Queue, "queueBytes": s.limits.QueueBytes, "workers": s.limits.Workers,
 		},
 	}
