@@ -228,18 +228,24 @@ func TestSaveInPlaceRefuses(t *testing.T) {
 }
 
 // A failure after the temporary file was begun removes it: here a part that a
-// save copies lies beyond the end of the file.
+// save copies is overwritten while the book is open.
 func TestSaveRemovesItsTemporaryFile(t *testing.T) {
 	data := richBook(t)
 	at := bytes.Index(data, []byte("PK\x03\x04"))
 	for range 7 {
 		at += 4 + bytes.Index(data[at+4:], []byte("PK\x03\x04"))
 	}
-	damagedData := bytes.Clone(data)
-	copy(damagedData[at:], "XXXX")
-	b, path := fileBook(t, damagedData)
+	b, path := fileBook(t, data)
+	f, err := os.OpenFile(path, os.O_WRONLY, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, err = f.WriteAt([]byte("XXXX"), int64(at))
+	if err := errors.Join(err, f.Close()); err != nil {
+		t.Fatal(err)
+	}
 	out := filepath.Join(filepath.Dir(path), "out.xlsx")
-	_, err := b.SaveAs(out, oneEdit)
+	_, err = b.SaveAs(out, oneEdit)
 	if !errors.Is(err, ErrDamaged) || !strings.Contains(err.Error(), "the part does not lie where the file's directory says") {
 		t.Errorf("error %v", err)
 	}

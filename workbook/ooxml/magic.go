@@ -2,6 +2,7 @@ package ooxml
 
 import (
 	"bytes"
+	"errors"
 	"io"
 )
 
@@ -13,6 +14,10 @@ var compoundMagic = []byte{0xD0, 0xCF, 0x11, 0xE0, 0xA1, 0xB1, 0x1A, 0xE1}
 
 // notZip says what a file is that has no zip directory.
 func notZip(r io.ReaderAt, size int64, cause error) error {
+	var refusal *Error
+	if errors.As(cause, &refusal) {
+		return refusal
+	}
 	head := make([]byte, 512)
 	n, _ := r.ReadAt(head, 0)
 	head = head[:n]

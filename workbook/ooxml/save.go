@@ -9,6 +9,7 @@ import (
 	"io"
 	"maps"
 	"slices"
+	"strings"
 	"time"
 
 	"github.com/klauspost/compress/flate"
@@ -164,6 +165,13 @@ func (b *Book) copyEntry(out *zip.Writer, f *zip.File) error {
 		return place(sourceError(err), b.file, f.Name, "")
 	}
 	header := f.FileHeader
+	if strings.HasSuffix(f.Name, "/") {
+		// A folder holds nothing, and archive/zip writes nothing for it; some
+		// programs deflate that to two bytes.
+		header.Method, header.CompressedSize64, header.Flags = zip.Store, 0, header.Flags&^8
+		_, err := out.CreateRaw(&header)
+		return err
+	}
 	w, err := out.CreateRaw(&header)
 	if err != nil {
 		return err

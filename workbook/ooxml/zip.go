@@ -2,7 +2,6 @@ package ooxml
 
 import (
 	"archive/zip"
-	"bufio"
 	"errors"
 	"fmt"
 	"hash"
@@ -41,9 +40,11 @@ func partKey(name string) string {
 	}, name[1:])
 }
 
-// openContainer reads the directory of the zip file.
+// openContainer reads the directory of the zip file, and holds it against what
+// stands before the entries themselves.
 func openContainer(r io.ReaderAt, size int64, limits Limits) (*container, error) {
-	zr, err := zip.NewReader(r, size)
+	watch := newWatch(r, limits)
+	zr, err := zip.NewReader(watch, size)
 	if err != nil && !errors.Is(err, zip.ErrInsecurePath) {
 		return nil, notZip(r, size, err)
 	}
@@ -51,8 +52,16 @@ func openContainer(r io.ReaderAt, size int64, limits Limits) (*container, error)
 	if len(zr.File) > limits.Entries {
 		return nil, beyond(fmt.Sprintf("the file holds %d parts, the limit is %d", len(zr.File), limits.Entries), "Entries")
 	}
+	if err := watch.check(zr.File, size); err != nil {
+		return nil, err
+	}
 	for i, f := range zr.File {
 		if strings.HasSuffix(f.Name, "/") {
+			if f.UncompressedSize64 > 0 {
+				e := damaged("the entry is named as a folder and holds data")
+				e.Part = f.Name
+				return nil, e
+			}
 			continue
 		}
 		key := partKey(f.Name)
@@ -95,8 +104,6 @@ func (c *container) open(entry int) (io.Reader, error) {
 	}
 	size := int64(f.UncompressedSize64)
 	switch {
-	case f.CompressedSize64 > uint64(c.size):
-		return fail(damaged("the part is longer than the file"))
 	case size < 0 || size > c.limits.PartBytes:
 		return fail(beyond(fmt.Sprintf("the part inflates to %d bytes, the limit is %d", f.UncompressedSize64, c.limits.PartBytes), "PartBytes"))
 	case size > c.limits.RatioFrom && size/c.limits.Ratio > int64(f.CompressedSize64):
@@ -114,7 +121,7 @@ func (c *container) open(entry int) (io.Reader, error) {
 	case zip.Store:
 		p.src = raw
 	case zip.Deflate:
-		p.src = flate.NewReader(bufio.NewReaderSize(raw, 64<<10))
+		p.src = newInflater(raw)
 	default:
 		return fail(damaged(fmt.Sprintf("the part is compressed by method %d; only stored and deflated parts can be read", f.Method)))
 	}
@@ -127,8 +134,12 @@ func (c *container) count(entry int, size int64) *Error {
 	if c.read[entry] {
 		return nil
 	}
-	if c.total+size > c.limits.TotalBytes {
+	total := c.total + size
+	switch {
+	case total > c.limits.TotalBytes:
 		return beyond(fmt.Sprintf("the parts read inflate to more than %d bytes", c.limits.TotalBytes), "TotalBytes")
+	case total > c.limits.RatioFrom && total/c.limits.Ratio > c.size:
+		return beyond(fmt.Sprintf("the parts read inflate from %d to %d bytes, more than %d to 1", c.size, total, c.limits.Ratio), "Ratio")
 	}
 	c.read[entry] = true
 	c.total += size
@@ -147,16 +158,28 @@ func (c *container) load(entry int) ([]byte, error) {
 		e.Part = f.Name
 		return nil, e
 	}
-	data := make([]byte, f.UncompressedSize64)
-	_, err = io.ReadFull(r, data)
-	if err == nil {
-		// One more read fetches the verdict on length and checksum.
-		if _, err = io.ReadFull(r, make([]byte, 1)); err == io.EOF {
-			return data, nil
+	// Memory grows with what is there, not with what the directory promises.
+	size := int(f.UncompressedSize64)
+	data := make([]byte, 0, min(size, loadStep)+padding)
+	for err == nil {
+		if len(data) == cap(data)-padding && len(data) < size {
+			larger := make([]byte, len(data), min(size, 2*len(data))+padding)
+			copy(larger, data)
+			data = larger
 		}
+		// At the end one more read fetches the verdict on length and checksum.
+		var n int
+		n, err = r.Read(data[len(data):max(len(data)+1, cap(data)-padding)])
+		data = data[:len(data)+n]
+	}
+	if err == io.EOF {
+		return data, nil
 	}
 	return nil, place(err, "", f.Name, "")
 }
+
+// loadStep is how much memory a part gets before its first byte is read.
+const loadStep = 16 << 20
 
 // partReader inflates one part and holds it against its length and checksum.
 type partReader struct {
@@ -198,7 +221,12 @@ func (p *partReader) Read(b []byte) (int, error) {
 		}
 		n = 0
 	}
-	p.err = err
+	if p.err = err; err != nil {
+		if f, ok := p.src.(*inflater); ok {
+			p.src = nil
+			f.release()
+		}
+	}
 	return n, err
 }
 
