@@ -47,6 +47,36 @@ func HeaderNames(ctx context.Context, source Source, sheet string) ([]string, er
 	return names, err
 }
 
+// ColumnValues gives the different texts of a column of a sheet, in their order,
+// for completion; as many as asked for at most.
+func ColumnValues(ctx context.Context, source Source, sheet, column string, most int) ([]string, error) {
+	header, at := 0, 0
+	frame, err := source.Read(ctx, sheet, func(head *Frame) Columns {
+		for row := 1; row <= min(HeadRows, head.LastRow()); row++ {
+			for col := 1; col <= head.LastCol(); col++ {
+				if text := headerText(head.At(row, col)); text != "" && headerForm(text) == headerForm(column) {
+					header, at = row, col
+					return Columns{List: []int{col}}
+				}
+			}
+		}
+		return Columns{}
+	})
+	if err != nil || at == 0 {
+		return nil, err
+	}
+	var values []string
+	seen := map[string]bool{}
+	for row := header + 1; row <= min(frame.LastRow(), header+mostValues) && len(values) < most; row++ {
+		cell := frame.At(row, at)
+		if text := trim(cell.Text); cell.Kind == Text && text != "" && !seen[fold(text)] {
+			seen[fold(text)] = true
+			values = append(values, text)
+		}
+	}
+	return values, nil
+}
+
 // NameText writes a name as it stands in an expression, in quotes where it
 // needs them.
 func NameText(name string) string { return nameText(name) }

@@ -1,5 +1,9 @@
 package calculation
 
+// NoTablesInText says why a text calculation sheet has no table sheets; see
+// Options.NoTables.
+const NoTablesInText = "a text file has no second sheet for a table. Give every group a row with a condition such as where depot = North, ask in a workbook"
+
 // Columns counts the cells of a row.
 func (t *TextSheet) Columns(row int) int {
 	if row < 1 || row > len(t.rows) {
