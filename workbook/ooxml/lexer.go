@@ -29,6 +29,7 @@ type lexer struct {
 	base   int64     // the place in the part of buf[0]
 	err    error     // why src ended early
 	limits Limits
+	lent   *[]byte // the block, where it is to be given back
 
 	// The current token. Its slices are good until the next call.
 	kind    tokenKind
@@ -57,13 +58,40 @@ const padding = 64
 
 // newLexer reads UTF-8 XML from src, size bytes at a time.
 func newLexer(src io.Reader, size int, limits Limits) *lexer {
-	return &lexer{src: src, buf: make([]byte, size+padding), keep: -1, limits: limits}
+	x := &lexer{src: src, keep: -1, limits: limits}
+	if size == blockSize {
+		x.lent = blocks.Get().(*[]byte)
+		x.buf = *x.lent
+		clear(x.buf[:padding])
+	} else {
+		x.buf = make([]byte, size+padding)
+	}
+	return x
+}
+
+// release gives a lent block back. The lexer must not be used any more.
+func (x *lexer) release() {
+	if x.lent != nil {
+		blocks.Put(x.lent)
+		x.lent, x.buf = nil, nil
+	}
 }
 
 // dataLexer reads XML that is in memory. It needs its own copy for the padding.
 func dataLexer(data []byte, limits Limits) *lexer {
 	buf := make([]byte, len(data)+padding)
 	copy(buf, data)
+	return &lexer{buf: buf, end: len(data), keep: -1, limits: limits}
+}
+
+// ownLexer reads XML that is in memory and whose owner does not use it any more;
+// it needs no copy where there is room for the padding.
+func ownLexer(data []byte, limits Limits) *lexer {
+	if cap(data)-len(data) < padding {
+		return dataLexer(data, limits)
+	}
+	buf := data[:len(data)+padding]
+	clear(buf[len(data):])
 	return &lexer{buf: buf, end: len(data), keep: -1, limits: limits}
 }
 

@@ -14,7 +14,12 @@ type patch struct {
 // applyPatches copies src to dst with the patches made, which are in order and
 // do not overlap. It reads src to its end.
 func applyPatches(dst io.Writer, src io.Reader, patches []patch) error {
-	w := bufio.NewWriterSize(dst, 64<<10)
+	w := writers.Get().(*bufio.Writer)
+	w.Reset(dst)
+	defer func() {
+		w.Reset(nil)
+		writers.Put(w)
+	}()
 	var at int64
 	for _, p := range patches {
 		if _, err := io.CopyN(w, src, p.at-at); err != nil {

@@ -11,8 +11,6 @@ import (
 	"slices"
 	"strings"
 	"time"
-
-	"github.com/klauspost/compress/flate"
 )
 
 // Changes is what a save is to change.
@@ -111,7 +109,7 @@ func (b *Book) write(w io.Writer, j *job) error {
 		return err
 	}
 	out := zip.NewWriter(w)
-	out.RegisterCompressor(zip.Deflate, func(w io.Writer) (io.WriteCloser, error) { return flate.NewWriter(w, compression) })
+	out.RegisterCompressor(zip.Deflate, newDeflater)
 	if err := out.SetComment(b.zip.Comment); err != nil {
 		return err
 	}
@@ -176,7 +174,7 @@ func (b *Book) copyEntry(out *zip.Writer, f *zip.File) error {
 	if err != nil {
 		return err
 	}
-	n, err := io.Copy(w, sourceReader{raw})
+	n, err := copyLent(w, sourceReader{raw})
 	if err == nil && uint64(n) != f.CompressedSize64 {
 		err = sourceError(io.ErrUnexpectedEOF)
 	}

@@ -118,7 +118,9 @@ func (b *Book) scanEntry(sheet, entry int, options ScanOptions, visit func(*Row)
 		return SheetFacts{}, place(err, b.file, part, name)
 	}
 	size := min(blockSize, b.zip.File[entry].UncompressedSize64+1)
-	s := newScanner(newLexer(r, int(size), b.limits), options, visit)
+	x := newLexer(r, int(size), b.limits)
+	defer x.release()
+	s := newScanner(x, options, visit)
 	s.styles, s.date1904, s.table, s.plan = b.styleLimit(), b.date1904, b.sharedStrings, plan
 	if err := s.run(); err != nil {
 		var stopped visitError
@@ -241,8 +243,15 @@ func (s *scanner) mergedRange() error {
 type columnStyle struct{ first, last, style int }
 
 func (s *scanner) columnStyles() error {
+	count := 0
 	return s.children(func() error {
-		if s.plan == nil || !s.is("col") {
+		if !s.is("col") {
+			return nil
+		}
+		if count++; count > maxColumns {
+			return s.wrong("the sheet describes more than %d columns", maxColumns)
+		}
+		if s.plan == nil {
 			return nil
 		}
 		var c columnStyle
