@@ -335,3 +335,20 @@ func (r *reader) each(area ooxml.Range, visit func(row, col int, column *calcula
 		}
 	}
 }
+
+func (b *Book) source() calculation.Source { return b }
+
+func (b *Book) planOptions() calculation.Options {
+	return calculation.Options{MayReplace: b.isOurTable}
+}
+
+// noSheet says what to do about a workbook without a calculation sheet.
+func (b *Book) noSheet() string {
+	var sheets []string
+	for _, p := range b.places {
+		if p.Kind == calculation.Sheet {
+			sheets = append(sheets, p.Name)
+		}
+	}
+	return fmt.Sprintf("Sheets are %s. Name one \"Calculations\", or put \"calculation sheet\" in its A1.", strings.Join(sheets, ", "))
+}

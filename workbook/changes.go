@@ -6,8 +6,10 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"maps"
 	"os"
 	"regexp"
+	"slices"
 	"strings"
 	"unicode/utf8"
 
@@ -30,34 +32,79 @@ func (b *Book) isOurTable(sheet string) bool {
 	return false
 }
 
-// changes turns results into what is to be changed in the file.
-func (b *Book) changes(results *calculation.Results) (ooxml.Changes, error) {
-	c := ooxml.Changes{Edits: map[int][]ooxml.Edit{}}
+// bookChanges are the cells of a workbook that do not hold what was worked out,
+// and the table sheets that it lacks.
+type bookChanges struct {
+	book   *Book
+	all    []wanted // the cells that were looked at
+	absent []wanted // the table sheets that are not there
+	ooxml.Changes
+	rest bool // Recalculate is known
+}
+
+func (b *Book) changes(results *calculation.Results) (changes, error) {
+	c := &bookChanges{book: b, all: wantedByRows(results), Changes: ooxml.Changes{Edits: map[int][]ooxml.Edit{}}}
+	rows := map[*calculation.Row]*calculation.RowResult{}
 	for _, row := range results.Rows {
-		sheet := b.SheetIndex(row.Row.Sheet())
-		for _, e := range row.Edits {
-			c.Edits[sheet] = append(c.Edits[sheet], ooxml.Edit{Row: e.Cell.Row, Col: e.Cell.Col, Value: value(e.Value)})
-		}
+		rows[row.Row] = row
 	}
 	for _, t := range results.Tables {
-		if err := b.addTable(&c, t); err != nil {
-			return c, err
+		if err := c.addTable(t, rows[t.Row]); err != nil {
+			return nil, err
 		}
+	}
+	for _, w := range c.all {
+		sheet := b.SheetIndex(w.cell.sheet)
+		c.Edits[sheet] = append(c.Edits[sheet], ooxml.Edit{Row: w.cell.ref.Row, Col: w.cell.ref.Col, Value: value(w.value)})
 	}
 	for sheet, edits := range c.Edits {
 		changed, err := b.Changes(sheet, edits)
 		if err != nil {
-			return c, err
+			return nil, err
 		}
 		c.Edits[sheet] = changed
 	}
-	rest, err := b.restOn(c.Edits)
-	c.Recalculate = rest
-	return c, err
+	return c, nil
 }
 
 // addTable adds a table sheet, or replaces the cells of one that a fill made.
-func (b *Book) addTable(c *ooxml.Changes, t calculation.TableSheet) error {
+func (c *bookChanges) addTable(t calculation.TableSheet, row *calculation.RowResult) error {
+	at := c.book.SheetIndex(t.Name)
+	if at < 0 {
+		if t.Refused == "" {
+			c.absent = append(c.absent, wanted{cell: cell{sheet: t.Name}, row: row, name: "table", value: fmt.Sprintf("%d rows", len(t.Rows))})
+			c.Sheets = append(c.Sheets, newTable(t))
+		}
+		return nil
+	}
+	written := map[calculation.CellRef]bool{}
+	add := func(ref calculation.CellRef, name string, v any) {
+		written[ref] = true
+		c.all = append(c.all, wanted{cell: cell{t.Name, ref}, row: row, name: name, line: ref.Row, value: v})
+	}
+	if t.Refused == "" {
+		for j, name := range t.Header {
+			add(calculation.CellRef{Row: 1, Col: j + 1}, "header", name)
+		}
+	}
+	for i, line := range t.Rows {
+		for j, v := range line {
+			add(calculation.CellRef{Row: i + 2, Col: j + 1}, t.Header[j], v)
+		}
+	}
+	_, err := c.book.Scan(at, ooxml.ScanOptions{}, func(row *ooxml.Row) error {
+		for _, cell := range row.Cells {
+			if ref := (calculation.CellRef{Row: row.Number, Col: int(cell.Col)}); !written[ref] {
+				add(ref, "", nil)
+			}
+		}
+		return nil
+	})
+	return err
+}
+
+// newTable is the sheet of a table, marked as one that a fill made.
+func newTable(t calculation.TableSheet) ooxml.NewSheet {
 	rows := [][]ooxml.Value{make([]ooxml.Value, len(t.Header))}
 	for i, name := range t.Header {
 		rows[0][i] = ooxml.TextValue(name)
@@ -69,34 +116,89 @@ func (b *Book) addTable(c *ooxml.Changes, t calculation.TableSheet) error {
 		}
 		rows = append(rows, line)
 	}
-	at := b.SheetIndex(t.Name)
-	if at < 0 {
-		if t.Refused != "" {
-			return nil
+	mark := ooxml.DefinedName{Name: tableMark, Ref: "'" + strings.ReplaceAll(t.Name, "'", "''") + "'!$A$1", Hidden: true}
+	return ooxml.NewSheet{Name: t.Name, Rows: rows, Names: []ooxml.DefinedName{mark}}
+}
+
+func (c *bookChanges) compared() int { return len(c.all) + len(c.absent) }
+
+// differences reads what stands in the cells that change.
+func (c *bookChanges) differences() ([]Difference, error) {
+	at := map[cell]wanted{}
+	for _, w := range c.all {
+		at[w.cell] = w
+	}
+	var list []Difference
+	for _, sheet := range slices.Sorted(maps.Keys(c.Edits)) {
+		name := c.book.Sheets()[sheet].Name
+		stored, err := c.book.stored(sheet, c.Edits[sheet])
+		if err != nil {
+			return nil, err
 		}
-		mark := ooxml.DefinedName{Name: tableMark, Ref: "'" + strings.ReplaceAll(t.Name, "'", "''") + "'!$A$1", Hidden: true}
-		c.Sheets = append(c.Sheets, ooxml.NewSheet{Name: t.Name, Rows: rows, Names: []ooxml.DefinedName{mark}})
-		return nil
-	}
-	if t.Refused != "" {
-		rows = nil
-	}
-	written := map[[2]int]bool{}
-	for i, row := range rows {
-		for j, v := range row {
-			c.Edits[at] = append(c.Edits[at], ooxml.Edit{Row: i + 1, Col: j + 1, Value: v})
-			written[[2]int{i + 1, j + 1}] = true
+		for _, e := range c.Edits[sheet] {
+			ref := calculation.CellRef{Row: e.Row, Col: e.Col}
+			w := at[cell{name, ref}]
+			list = append(list, w.difference(stored[ref]))
 		}
 	}
-	_, err := b.Scan(at, ooxml.ScanOptions{}, func(row *ooxml.Row) error {
-		for _, cell := range row.Cells {
-			if at2 := [2]int{row.Number, int(cell.Col)}; !written[at2] {
-				c.Edits[at] = append(c.Edits[at], ooxml.Edit{Row: at2[0], Col: at2[1]})
+	for _, w := range c.absent {
+		list = append(list, w.difference(nil))
+	}
+	explain(slices.Concat(c.all, c.absent), list)
+	return list, nil
+}
+
+// stored reads the cells of a sheet that edits change.
+func (b *Book) stored(sheet int, edits []ooxml.Edit) (map[calculation.CellRef]any, error) {
+	columns := &ooxml.Columns{}
+	for _, e := range edits {
+		columns.Add(e.Col)
+	}
+	list := map[calculation.CellRef]any{}
+	_, err := b.Scan(sheet, ooxml.ScanOptions{Columns: columns}, func(row *ooxml.Row) error {
+		for i := range row.Cells {
+			c := &row.Cells[i]
+			var v any
+			switch c.Type {
+			case ooxml.TypeNumber, ooxml.TypeDate:
+				v = c.Number
+			case ooxml.TypeBool:
+				v = c.Number != 0
+			default:
+				text, err := b.CellText(c)
+				if err != nil {
+					return err
+				}
+				v = text
 			}
+			list[calculation.CellRef{Row: row.Number, Col: int(c.Col)}] = v
 		}
 		return nil
 	})
+	return list, err
+}
+
+// ready finds out whether formulas rest on the changes, before they are written.
+func (c *bookChanges) ready() (err error) {
+	if !c.rest {
+		c.Recalculate, err = c.book.restOn(c.Edits)
+		c.rest = err == nil
+	}
 	return err
+}
+
+func (c *bookChanges) saveAs(target string) (ooxml.Saved, error) {
+	if err := c.ready(); err != nil {
+		return ooxml.Saved{}, err
+	}
+	return c.book.SaveAs(target, c.Changes)
+}
+
+func (c *bookChanges) saveInPlace() (ooxml.Saved, error) {
+	if err := c.ready(); err != nil {
+		return ooxml.Saved{}, err
+	}
+	return c.book.SaveInPlace(c.Changes)
 }
 
 // value is a result as a cell holds it.
@@ -215,7 +317,7 @@ func partOfName(b byte) bool {
 // mayReplace refuses to write over an output that was changed since it was
 // filled. It is as it was where its seal holds, or where it holds what would be
 // written now.
-func (b *Book) mayReplace(target string, changes ooxml.Changes) error {
+func (c *bookChanges) mayReplace(target string) error {
 	there, err := os.Open(target)
 	if errors.Is(err, os.ErrNotExist) {
 		return nil
@@ -227,15 +329,22 @@ func (b *Book) mayReplace(target string, changes ooxml.Changes) error {
 	if sealed, err := ooxml.Sealed(target); sealed || err != nil {
 		return err
 	}
+	if err := c.ready(); err != nil {
+		return err
+	}
 	old, now := sha256.New(), sha256.New()
 	if _, err := io.Copy(old, there); err != nil {
 		return err
 	}
-	if _, err := b.Write(now, changes); err != nil {
+	if _, err := c.book.Write(now, c.Changes); err != nil {
 		return err
 	}
 	if !bytes.Equal(old.Sum(nil), now.Sum(nil)) {
-		return fmt.Errorf("%s is there and was changed since it was filled, or was not made by a fill; use --replace to write over it, or --output to write elsewhere", target)
+		return errChangedOutput(target)
 	}
 	return nil
+}
+
+func errChangedOutput(target string) error {
+	return fmt.Errorf("%s is there and was changed since it was filled, or was not made by a fill; use --replace to write over it, or --output to write elsewhere", target)
 }

@@ -26,6 +26,8 @@ type Options struct {
 	Output  string // file or folder to write to; empty for BOOK-filled beside the book
 	InPlace bool   // write over the book itself
 	Replace bool   // write over an output that was changed since
+
+	MakeFolders bool // make the folder to write to where it is not there
 }
 
 // Report is what working out one workbook gave.
@@ -63,11 +65,11 @@ func StatusOf(list []calculation.Diagnostic) funcs.Status {
 // Preview reads and resolves everything in a workbook; it computes nothing and
 // writes nothing.
 func Preview(ctx context.Context, path string, o Options) (*Report, error) {
-	b, plan, err := open(ctx, path, o)
+	d, plan, err := open(ctx, path, o)
 	if err != nil {
 		return nil, err
 	}
-	defer b.Close()
+	defer d.Close()
 	if err := plan.Count(ctx, o.workers()); err != nil {
 		return nil, err
 	}
@@ -81,16 +83,19 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 	if err != nil {
 		return nil, err
 	}
-	b, plan, err := open(ctx, path, o)
+	d, plan, err := open(ctx, path, o)
 	if err != nil {
 		return nil, err
 	}
-	defer b.Close()
+	defer d.Close()
 	results, err := plan.Run(ctx, o.workers())
 	if err != nil {
 		return nil, err
 	}
-	changes, err := b.changes(results)
+	changes, err := d.changes(results)
+	if err == nil {
+		err = ctx.Err() // from here on a book is written to its end
+	}
 	if err != nil {
 		return nil, err
 	}
@@ -99,15 +104,20 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 		if lock, found := ooxml.LockFile(path); found {
 			return nil, fmt.Errorf("%s is open in another program (%s is there); close it there first, or fill into another file", path, filepath.Base(lock))
 		}
-		report.Saved, err = b.SaveInPlace(changes)
+		report.Saved, err = changes.saveInPlace()
 		return report, err
 	}
 	if !o.Replace {
-		if err := b.mayReplace(target, changes); err != nil {
+		if err := changes.mayReplace(target); err != nil {
 			return nil, err
 		}
 	}
-	report.Saved, err = b.SaveAs(target, changes)
+	if o.MakeFolders {
+		if err := os.MkdirAll(filepath.Dir(target), 0o777); err != nil {
+			return nil, err
+		}
+	}
+	report.Saved, err = changes.saveAs(target)
 	return report, err
 }
 
@@ -118,58 +128,10 @@ func (o Options) workers() int {
 	return runtime.GOMAXPROCS(0)
 }
 
-// open opens a workbook and plans its calculation sheets.
-func open(ctx context.Context, path string, o Options) (*Book, *calculation.Plan, error) {
-	b, err := openBook(path, o.Limits, newFolders(path, o.Data, o.Limits))
-	if err != nil {
-		return nil, nil, err
-	}
-	plan, err := calculation.NewPlan(ctx, b, calculation.Options{Sheets: o.Sheets, MayReplace: b.isOurTable, KeepValues: o.KeepValues})
-	if err == nil {
-		err = plan.Unreadable()
-	}
-	if err == nil {
-		err = hasWork(path, b, plan)
-	}
-	if err != nil {
-		b.Close()
-		return nil, nil, err
-	}
-	return b, plan, nil
-}
-
-// ErrNoWork is a workbook in which there is nothing to work out.
-var ErrNoWork = errors.New("nothing to work out")
-
-// nothingError says what is missing from a workbook.
-type nothingError struct{ text string }
-
-func (e nothingError) Error() string { return e.text }
-func (e nothingError) Unwrap() error { return ErrNoWork }
-
-func hasWork(path string, b *Book, plan *calculation.Plan) error {
-	name := filepath.Base(path)
-	var sheets []string
-	for _, p := range b.Places() {
-		if p.Kind == calculation.Sheet {
-			sheets = append(sheets, p.Name)
-		}
-	}
-	switch {
-	case len(plan.Sheets) == 0:
-		return nothingError{fmt.Sprintf("%s: no calculation sheet. Sheets are %s. Name one \"Calculations\", or put \"calculation sheet\" in its A1.",
-			name, strings.Join(sheets, ", "))}
-	case len(plan.Rows) == 0 && len(plan.Diagnostics()) == 0:
-		return nothingError{fmt.Sprintf("%s: nothing to work out on %s. A block starts at a header row with a cell that reads \"work out\", "+
-			"an input such as \"sample\" and a result such as \"> mean\" beside it; the rows below are worked out.", name, strings.Join(plan.Sheets, ", "))}
-	}
-	return nil
-}
-
 // target is the file that a fill writes.
 func (o Options) target(path string) (string, error) {
 	ext := filepath.Ext(path)
-	beside := strings.TrimSuffix(path, ext) + "-filled" + ext
+	beside := outputName(path)
 	switch {
 	case o.InPlace && o.Output != "":
 		return "", errors.New("--in-place writes over the workbook itself; leave out --output")

@@ -57,10 +57,29 @@ func ParseTextSheet(name string, data []byte) (*TextSheet, error) {
 	for i, r := range t.rows {
 		t.frame.SetRow(i+1, 0)
 		for j, f := range r.fields {
+			if isFormulaText(f.text) {
+				t.frame.Set(i+1, j+1, Cell{Unsaved: true})
+				continue
+			}
 			t.frame.SetRow(i+1, t.dialect.setField(t.frame, i+1, j+1, []byte(f.text)))
 		}
 	}
 	return t, nil
+}
+
+// isFormulaText reports whether spreadsheet programs take a text for a formula.
+// Texts of ours that begin so have a space before them.
+func isFormulaText(text string) bool { return len(text) > 1 && text[0] == '=' }
+
+// Marked reports whether the first cell makes the file a calculation sheet.
+func (t *TextSheet) Marked() bool { return marksSheet(t.frame.At(1, 1)) }
+
+// Dimensions gives the number of rows, and the columns of the longest.
+func (t *TextSheet) Dimensions() (rows, columns int) {
+	for _, r := range t.rows {
+		columns = max(columns, len(r.fields))
+	}
+	return len(t.rows), columns
 }
 
 // hasDecimalComma looks for `default decimal-mark` with a comma right of it.
@@ -189,6 +208,39 @@ type TextEdit struct {
 	New  string
 }
 
+// Holds reports whether a cell reads as the value already: the same double, the
+// same text, however it is spelt.
+func (t *TextSheet) Holds(e Edit) bool {
+	if t.CellText(e.Cell) == t.valueText(e.Value) {
+		return true
+	}
+	cell := t.frame.At(e.Cell.Row, e.Cell.Col)
+	switch v := e.Value.(type) {
+	case float64:
+		return cell.Kind == Number && cell.Number == v
+	case int:
+		return cell.Kind == Number && cell.Number == float64(v)
+	case bool:
+		return cell.Kind == Bool && (cell.Number != 0) == v
+	}
+	return false
+}
+
+// Value gives what a cell reads as: a float64, a bool, or its text; nil where it
+// is empty.
+func (t *TextSheet) Value(c CellRef) any {
+	switch cell := t.frame.At(c.Row, c.Col); cell.Kind {
+	case Number:
+		return cell.Number
+	case Bool:
+		return cell.Number != 0
+	}
+	if text := t.CellText(c); text != "" {
+		return text
+	}
+	return nil
+}
+
 // Changes gives what the edits change in the file, in its order. A cell that
 // reads as it should already keeps its bytes.
 func (t *TextSheet) Changes(edits []Edit) []TextEdit {
@@ -215,9 +267,8 @@ func (t *TextSheet) rowChanges(r *textRow, edits []Edit) []TextEdit {
 	for _, e := range edits {
 		text := t.valueText(e.Value)
 		if e.Cell.Col <= len(r.fields) {
-			f := r.fields[e.Cell.Col-1]
-			if f.text != text {
-				out = append(out, TextEdit{f.span, t.encode(text)})
+			if !t.Holds(e) {
+				out = append(out, TextEdit{r.fields[e.Cell.Col-1].span, t.encode(text)})
 			}
 			continue
 		}

@@ -228,3 +228,14 @@ func (b *Block) duplicated(c BlockColumn) bool {
 	first := b.column(ResultColumn, c.Name)
 	return first != nil && first.Col != c.Col
 }
+
+// ResultName is the name of the result that a column of the block is for, empty
+// for other columns.
+func (b *Block) ResultName(col int) string {
+	for _, c := range b.Columns {
+		if c.Col == col && c.Role == ResultColumn {
+			return c.Name
+		}
+	}
+	return ""
+}

@@ -24,8 +24,8 @@ type Options struct {
 	// a page needs them. Otherwise a row's samples are let go once it is worked
 	// out, so that many rows over a large sheet take little memory.
 	KeepValues bool
-	// NoTables says why no table sheet can be written, as in a text file; empty
-	// where they can.
+	// NoTables says why no table sheet can be added, as to a text file, and what
+	// to do instead, without a full stop; empty where they can.
 	NoTables string
 }
 
@@ -149,14 +149,14 @@ func (p *Plan) claimTable(r *Row) {
 	case r.Function != nil && r.Function.Table == nil && r.each == nil:
 		r.caution(at, funcs.Caution, "no-table", fmt.Sprintf("%s gives no table here, so no sheet %s is written. Empty %s, or give the sample for each group.", r.Function.Name, quote(r.table), at))
 		r.table = ""
-	case p.options.NoTables != "":
-		r.refuse(at, Span{}, "no-table-sheet", fmt.Sprintf("%s: %s. Empty the cell.", at, p.options.NoTables))
-		r.table = ""
 	case first != nil:
 		r.refuse(at, Span{}, "given-twice", fmt.Sprintf("%s: the sheet %s is written by row %d already. Write another name.", at, quote(r.table), first.Number))
 		r.table = ""
 	case taken >= 0 && (p.options.MayReplace == nil || !p.options.MayReplace(own.places[taken].Name)):
 		r.refuse(at, Span{}, "sheet-taken", fmt.Sprintf("%s: there is a sheet %s already that no fill made, and it is never written over. Write another name.", at, quote(own.places[taken].Name)))
+		r.table = ""
+	case taken < 0 && p.options.NoTables != "":
+		r.refuse(at, Span{}, "no-table-sheet", fmt.Sprintf("%s: %s, or empty the cell.", at, p.options.NoTables))
 		r.table = ""
 	default:
 		if taken >= 0 {
@@ -191,6 +191,9 @@ func (p *Plan) checkTableUse(r *Row) {
 		return
 	}
 	switch {
+	case r.each != nil && p.options.NoTables != "":
+		r.refuse(r.each.Cell, r.each.term.span(r.each.term.query.query.ForEach.Span), "no-table-sheet", fmt.Sprintf(
+			"%s (%s): for each gives a row for every group, and they need a sheet, but %s, or leave out for each.", r.each.Cell, r.each.Name, p.options.NoTables))
 	case r.each != nil:
 		r.refuse(r.each.Cell, r.each.term.span(r.each.term.query.query.ForEach.Span), "no-table-sheet", fmt.Sprintf(
 			"%s (%s): for each gives a row for every group, and they need a sheet. Name one in a column headed `table sheet`, or write a condition such as where %s = …",
