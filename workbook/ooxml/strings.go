@@ -9,17 +9,15 @@ import (
 // stringTable is the shared strings part: its XML, and where each string lies.
 // Strings are decoded when they are asked for.
 type stringTable struct {
-	data   []byte // followed by padding
-	items  []stringItem
-	limits Limits
+	data    []byte // the part, followed by padding
+	decoded []byte // texts that the part does not hold as they are
+	items   []stringItem
+	limits  Limits
 }
 
-// stringItem is one shared string: the text of its only <t> element where that
-// needs no decoding, else the decoded text.
-type stringItem struct {
-	from, to uint32
-	text     *string
-}
+// stringItem says where a shared string lies: in data where its text needs no
+// decoding, else in decoded, whose places count on from the end of data.
+type stringItem struct{ from, to uint32 }
 
 // sharedStrings loads the table once.
 func (b *Book) sharedStrings() (*stringTable, error) {
@@ -39,10 +37,11 @@ func (b *Book) sharedStrings() (*stringTable, error) {
 
 // newStringTable passes once over the part.
 func newStringTable(data []byte, limits Limits) (*stringTable, error) {
-	if uint64(len(data)) > math.MaxUint32 {
-		return nil, beyond("the shared strings are longer than 4 GiB", "HeldBytes")
+	// What is decoded is no longer than what it is decoded from.
+	if 2*uint64(len(data))+padding > math.MaxUint32 {
+		return nil, beyond("the shared strings are longer than 2 GiB", "HeldBytes")
 	}
-	x := dataLexer(data, limits)
+	x := ownLexer(data, limits)
 	t := &stringTable{data: x.buf, limits: limits}
 	if err := x.next(); err != nil {
 		return nil, err
@@ -66,12 +65,13 @@ func newStringTable(data []byte, limits Limits) (*stringTable, error) {
 		case x.kind == tokenEOF:
 			return t, nil
 		case x.kind == tokenStart && x.depth() == 2 && x.is("si"):
-			raw, err := x.richText(nil)
+			from := len(t.decoded)
+			decoded, err := x.richText(t.decoded)
 			if err != nil {
 				return nil, err
 			}
-			text := string(raw)
-			t.items = append(t.items, stringItem{text: &text})
+			t.decoded = decoded
+			t.items = append(t.items, stringItem{from: uint32(len(t.data) + from), to: uint32(len(t.data) + len(decoded))})
 		case x.kind == tokenStart && x.depth() == 2:
 			if err := x.skip(); err != nil {
 				return nil, err
@@ -99,39 +99,34 @@ func (t *stringTable) plainItem(x *lexer) bool {
 	if n < 0 || !bytes.HasPrefix(b[i+n:], []byte("</t></si>")) || n > t.limits.TextLength || !plain(b[i:i+n]) {
 		return false
 	}
-	t.items = append(t.items, stringItem{from: uint32(i), to: uint32(i + n)})
+	t.items = append(t.items, stringItem{uint32(i), uint32(i + n)})
 	x.pos = i + n + len("</t></si>")
 	return true
 }
 
 // bytes gives the text of the string with this index, which must exist.
 func (t *stringTable) bytes(index int) []byte {
-	if item := t.items[index]; item.text != nil {
-		return []byte(*item.text)
-	} else {
-		return t.data[item.from:item.to]
+	item, held := t.items[index], uint32(len(t.data))
+	if item.from >= held {
+		return t.decoded[item.from-held : item.to-held]
 	}
+	return t.data[item.from:item.to]
 }
 
-func (t *stringTable) string(index int) string {
-	if text := t.items[index].text; text != nil {
-		return *text
-	}
-	return string(t.bytes(index))
-}
+func (t *stringTable) string(index int) string { return string(t.bytes(index)) }
 
 // richText reads on to the end of the current element, a string item or an
 // inline string, and appends its text: that of its own <t> and of the <t> of
 // its runs, phonetic runs left out (ECMA-376 part 1, 18.4.8).
 func (x *lexer) richText(dst []byte) ([]byte, error) {
-	depth := x.depth()
+	depth, from := x.depth(), len(dst)
 	for {
 		if err := x.next(); err != nil {
 			return dst, err
 		}
 		switch {
 		case x.kind == tokenEnd && x.depth() < depth:
-			return dst, checkLength(dst, x.limits)
+			return dst, checkLength(dst[from:], x.limits)
 		case x.kind != tokenStart:
 		case x.is("t"):
 			var err error
@@ -212,9 +207,5 @@ func outOfTable(index, count int) string {
 
 // empty tells whether the string with this index, which must exist, is empty.
 func (t *stringTable) empty(index int) bool {
-	item := &t.items[index]
-	if item.text != nil {
-		return *item.text == ""
-	}
-	return item.from == item.to
+	return t.items[index].from == t.items[index].to
 }
