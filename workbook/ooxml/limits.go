@@ -6,9 +6,11 @@ type Limits struct {
 	PartBytes  int64 // inflated bytes of one part; default 4 GiB
 	TotalBytes int64 // inflated bytes of all parts that are read; default 8 GiB
 	HeldBytes  int64 // inflated bytes of a part kept in memory (shared strings, styles, workbook); default 1 GiB
-	Ratio      int64 // inflated to compressed size of a part over RatioFrom; default 200
-	RatioFrom  int64 // inflated bytes from which Ratio counts; default 16 MiB
+	Ratio      int64 // inflated to compressed size of a part, and of all parts read to the file's size; default 200
+	RatioFrom  int64 // inflated bytes over which Ratio counts; default 16 MiB
 	Entries    int   // entries of the zip file; default 10,000
+	Names      int   // defined names; default 200,000
+	Relations  int   // relationships of one part; default 200,000
 	Rows       int   // highest row number; default 1,048,576
 	Columns    int   // highest column number; default 16,384
 	Depth      int   // nesting of XML elements; default 256
@@ -42,6 +44,8 @@ func (l Limits) WithDefaults() Limits {
 	set64(&l.Ratio, 200)
 	set64(&l.RatioFrom, 16<<20)
 	set(&l.Entries, 10000)
+	set(&l.Names, 200000)
+	set(&l.Relations, 200000)
 	set(&l.Rows, maxRows)
 	set(&l.Columns, maxColumns)
 	set(&l.Depth, 256)

@@ -6,6 +6,7 @@ import (
 	"io/fs"
 	"strings"
 	"sync"
+	"unicode"
 )
 
 // Book is an open workbook. Its methods may be called from several goroutines
@@ -18,7 +19,8 @@ type Book struct {
 
 	workbook   int // the entry of the workbook part
 	sheets     []Sheet
-	entries    []int // of the sheets
+	byName     map[string]int // sheets by foldName
+	entries    []int          // of the sheets
 	names      []DefinedName
 	tables     []Table
 	date1904   bool
@@ -108,7 +110,7 @@ func OpenReaderAt(name string, r io.ReaderAt, size int64, limits Limits) (*Book,
 	if err != nil {
 		return nil, place(err, name, "", "")
 	}
-	b := &Book{file: name, src: r, container: c, stringPart: -1}
+	b := &Book{file: name, src: r, container: c, stringPart: -1, byName: make(map[string]int)}
 	if err := b.readParts(); err != nil {
 		return nil, place(err, name, "", "")
 	}
@@ -127,10 +129,9 @@ func (b *Book) readParts() error {
 		switch {
 		case r.kind == "origin" && r.target != "" || strings.HasPrefix(r.target, "_xmlsignatures/"):
 			b.signed = true
-		case r.isOffice && r.kind == "officeDocument" && b.workbook < 0:
-			b.workbook = b.find(r.target)
-			if b.workbook < 0 {
-				return missing("the workbook", r.target)
+		case r.isOffice && r.kind == "officeDocument":
+			if err := b.only("the workbook", r.target, &b.workbook); err != nil {
+				return err
 			}
 		}
 	}
@@ -152,28 +153,43 @@ func (b *Book) readParts() error {
 	if err := b.readWorkbook(byID); err != nil {
 		return err
 	}
+	styles := -1
 	for _, r := range list {
 		if !r.isOffice || r.target == "" {
 			continue
 		}
-		switch entry := b.find(r.target); r.kind {
+		switch r.kind {
 		case "sharedStrings":
-			if entry < 0 {
-				return missing("the shared strings", r.target)
-			}
-			b.stringPart = entry
+			err = b.only("the shared strings", r.target, &b.stringPart)
 		case "styles":
-			if entry < 0 {
-				return missing("the styles", r.target)
-			}
-			if err := b.readStyles(entry); err != nil {
-				return err
-			}
+			err = b.only("the styles", r.target, &styles)
 		case "calcChain":
-			b.chain = entry >= 0
+			b.chain = b.find(r.target) >= 0
+		}
+		if err != nil {
+			return err
+		}
+	}
+	if styles >= 0 {
+		if err := b.readStyles(styles); err != nil {
+			return err
 		}
 	}
 	return b.readTables()
+}
+
+// only finds the part of a kind of which a book has one. Where two relationships
+// lead to two, programs would differ in which they read.
+func (b *Book) only(what, target string, entry *int) error {
+	found := b.find(target)
+	switch {
+	case target == "" || found < 0:
+		return missing(what, target)
+	case *entry >= 0 && *entry != found:
+		return damaged(fmt.Sprintf("the file has two parts for %s, %s and %s", what, b.name(*entry), b.name(found)))
+	}
+	*entry = found
+	return nil
 }
 
 // noWorkbook says what a zip file is that leads to no workbook part.
@@ -207,12 +223,22 @@ func (b *Book) Sheets() []Sheet { return b.sheets }
 
 // SheetIndex finds a sheet by its name, without regard to case; -1 if there is none.
 func (b *Book) SheetIndex(name string) int {
-	for i := range b.sheets {
-		if strings.EqualFold(b.sheets[i].Name, name) {
-			return i
-		}
+	if i, ok := b.byName[foldName(name)]; ok {
+		return i
 	}
 	return -1
+}
+
+// foldName gives names that strings.EqualFold holds equal the same form: of each
+// set of characters that differ in case only the first.
+func foldName(name string) string {
+	return strings.Map(func(c rune) rune {
+		least := c
+		for other := unicode.SimpleFold(c); other != c; other = unicode.SimpleFold(other) {
+			least = min(least, other)
+		}
+		return least
+	}, name)
 }
 
 // Date1904 tells whether dates count from 1904-01-01 instead of 1899-12-31.

@@ -192,6 +192,10 @@ func TestOpenRefuses(t *testing.T) {
 		{"two sheets of one part", workbookWith(`</sheets>`, `<sheet name="B" r:id="rId1"/></sheets>`).bytes(t), ErrDamaged, "part xl/workbook.xml: sheet B: the sheet and the sheet Trips share one part"},
 		{"a sheet without a name", workbookWith(`name="Trips"`, ``).bytes(t), ErrDamaged, fmt.Sprintf("part xl/workbook.xml: sheet number 1 has no name (byte %d)", strings.Index(workbookXML, "<sheet "))},
 		{"a name for a sheet that is not there", workbookWith(`</sheets>`, `</sheets><definedNames><definedName name="n" localSheetId="1">1</definedName></definedNames>`).bytes(t), ErrDamaged, "part xl/workbook.xml: the defined name n is for sheet number 2 of 1"},
+		{"two parts of shared strings", small.with("xl/_rels/workbook.xml.rels", relationsXML("worksheet", "worksheets/sheet1.xml", "sharedStrings", "sharedStrings.xml", "sharedStrings", "words.xml")).with("xl/words.xml", stringsXML).bytes(t), ErrDamaged, "the file has two parts for the shared strings, xl/sharedStrings.xml and xl/words.xml"},
+		{"two parts of styles", small.with("xl/_rels/workbook.xml.rels", relationsXML("worksheet", "worksheets/sheet1.xml", "styles", "styles.xml", "styles", "looks.xml")).with("xl/styles.xml", "").with("xl/looks.xml", "").bytes(t), ErrDamaged, "the file has two parts for the styles, xl/styles.xml and xl/looks.xml"},
+		{"two workbook parts", small.with("_rels/.rels", relationsXML("officeDocument", "xl/workbook.xml", "officeDocument", "xl/other.xml")).with("xl/other.xml", workbookXML).bytes(t), ErrDamaged, "the file has two parts for the workbook, xl/workbook.xml and xl/other.xml"},
+		{"two tables of one part", small.with("xl/worksheets/_rels/sheet1.xml.rels", relationsXML("table", "../tables/table1.xml", "table", "/xl/tables/table1.xml")).with("xl/tables/table1.xml", tableXML).bytes(t), ErrDamaged, "sheet Trips: two tables share the part xl/tables/table1.xml"},
 		{"two relationships of one id", small.with("xl/_rels/workbook.xml.rels", strings.ReplaceAll(workbookRels, "rId2", "rId1")).bytes(t), ErrDamaged, fmt.Sprintf(`part xl/_rels/workbook.xml.rels: two relationships have the id "rId1" (byte %d)`, strings.LastIndex(workbookRels, "<Relationship "))},
 		{"a table of a range that is no number", table(`totalsRowCount="1"`, `totalsRowCount="x"`).bytes(t), ErrDamaged, `part xl/tables/table1.xml: sheet Trips: the attribute totalsRowCount is "x", not a whole number (byte 56)`},
 		{"a defined name that ends early", workbookWith(`</sheets></workbook>`, `</sheets><definedNames><definedName name="n">A`).bytes(t), ErrDamaged, fmt.Sprintf("part xl/workbook.xml: the XML ends early, after %d bytes", len(workbookXML)-len("</workbook>")+len(`<definedNames><definedName name="n">A`))},
@@ -276,7 +280,7 @@ func TestScanRefusesDamagedParts(t *testing.T) {
 
 func TestOpenLimits(t *testing.T) {
 	sheet := rows(strings.Repeat(" ", 1<<20))
-	small := smallBook(sheet)
+	small := smallBook(sheet).with("xl/workbook.xml", strings.Replace(workbookXML, "</sheets>", `</sheets><definedNames><definedName name="a"/><definedName name="b"/><definedName name="c"/></definedNames>`, 1))
 	const sheetPart = "Trips.xlsx: part xl/worksheets/sheet1.xml: sheet Trips: "
 	size := len(sheet)
 	for _, test := range []struct {
@@ -285,6 +289,8 @@ func TestOpenLimits(t *testing.T) {
 		want   string
 	}{
 		{"entries", Limits{Entries: 5}, "Trips.xlsx: the file holds 6 parts, the limit is 5; if the file can be trusted, raise the limit Entries"},
+		{"defined names", Limits{Names: 2}, "Trips.xlsx: part xl/workbook.xml: the workbook has more than 2 defined names; if the file can be trusted, raise the limit Names"},
+		{"relationships", Limits{Relations: 1}, "Trips.xlsx: part xl/_rels/workbook.xml.rels: a part has more than 1 relationships; if the file can be trusted, raise the limit Relations"},
 		{"bytes of one part", Limits{PartBytes: 1 << 20}, fmt.Sprintf(sheetPart+"the part inflates to %d bytes, the limit is 1048576; if the file can be trusted, raise the limit PartBytes", size)},
 		{"bytes of all parts", Limits{TotalBytes: 1 << 20}, sheetPart + "the parts read inflate to more than 1048576 bytes; if the file can be trusted, raise the limit TotalBytes"},
 		{"bytes in memory", Limits{HeldBytes: 100}, fmt.Sprintf("Trips.xlsx: part _rels/.rels: the part inflates to %d bytes, the limit for parts kept in memory is 100; if the file can be trusted, raise the limit HeldBytes", len(packageRels))},
@@ -310,6 +316,18 @@ func TestOpenLimits(t *testing.T) {
 	for range 3 {
 		if got := scanFirst(t, b); got != "" {
 			t.Errorf("rows %q, want none", got)
+		}
+	}
+}
+
+// Sheets are found by the same rule as strings.EqualFold has.
+func TestSheetNamesAreFoldedAlike(t *testing.T) {
+	names := []string{"", "Trips", "TRIPS", "trips ", "ſtraße", "Straße", "STRASSE", "\u212A", "k", "K", "Ⱥ", "ⱥ", "Σ", "σ", "ς", "ß", "ẞ", "ı", "i", "İ", "Ǆ", "ǅ", "ǆ", "q'"}
+	for _, a := range names {
+		for _, b := range names {
+			if got, want := foldName(a) == foldName(b), strings.EqualFold(a, b); got != want {
+				t.Errorf("%q and %q: %v, want %v", a, b, got, want)
+			}
 		}
 	}
 }

@@ -63,6 +63,9 @@ func (c *container) relations(part string) ([]relation, error) {
 		if id != "" && ids[id] {
 			return x.wrong("two relationships have the id %.40q", id)
 		}
+		if len(list) == x.limits.Relations {
+			return beyond(fmt.Sprintf("a part has more than %d relationships", x.limits.Relations), "Relations")
+		}
 		ids[id] = true
 		r := relation{id: id, kind: kind[strings.LastIndexByte(kind, '/')+1:]}
 		r.isOffice = strings.HasPrefix(kind, relTransitional+"/") || strings.HasPrefix(kind, relStrict+"/")
@@ -93,7 +96,7 @@ func (c *container) walk(entry int, visit func(x *lexer) error) error {
 	if err != nil {
 		return err
 	}
-	return place(walk(dataLexer(data, c.limits), visit), "", c.name(entry), "")
+	return place(walk(ownLexer(data, c.limits), visit), "", c.name(entry), "")
 }
 
 func walk(x *lexer, visit func(x *lexer) error) error {

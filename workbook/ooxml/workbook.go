@@ -127,6 +127,7 @@ func (b *Book) readSheetList(x *lexer, related map[string]relation) error {
 		case "veryHidden":
 			s.State = VeryHidden
 		}
+		b.byName[foldName(name)] = len(b.sheets)
 		b.sheets = append(b.sheets, s)
 		b.entries = append(b.entries, entry)
 		return nil
@@ -137,6 +138,9 @@ func (b *Book) readNames(x *lexer) error {
 	return x.children(func() error {
 		if !x.is("definedName") {
 			return nil
+		}
+		if len(b.names) == x.limits.Names {
+			return beyond(fmt.Sprintf("the workbook has more than %d defined names", x.limits.Names), "Names")
 		}
 		n := DefinedName{Sheet: -1, Hidden: x.flag("hidden")}
 		var err error
@@ -157,6 +161,7 @@ func (b *Book) readNames(x *lexer) error {
 
 // readTables reads the tables of all worksheets.
 func (b *Book) readTables() error {
+	used := make(map[int]bool)
 	for i, s := range b.sheets {
 		if s.Kind != Worksheet {
 			continue
@@ -173,6 +178,10 @@ func (b *Book) readTables() error {
 			if r.target == "" || entry < 0 {
 				return place(missing("a table of this sheet", r.target), "", "", s.Name)
 			}
+			if used[entry] {
+				return place(damaged("two tables share the part "+b.name(entry)), "", "", s.Name)
+			}
+			used[entry] = true
 			t := Table{Sheet: i}
 			if err := b.readTable(entry, &t); err != nil {
 				return place(err, "", "", s.Name)
