@@ -298,29 +298,37 @@ func (p *planner) growDimension() {
 // refuse finds edits inside the range of an array formula, or inside a merged
 // range other than at its first cell.
 func (p *planner) refuse(facts *SheetFacts) error {
-	check := func(list []Range, first bool, reason, advice string) error {
-		list = slices.Clone(list)
-		slices.SortFunc(list, func(a, b Range) int { return cmp.Compare(a.FirstRow, b.FirstRow) })
-		reach := make([]int, len(list)) // the last row of this range and those before it
-		for i, r := range list {
-			reach[i] = r.LastRow
-			if i > 0 {
-				reach[i] = max(r.LastRow, reach[i-1])
+	if err := p.refuseIn(facts.Merged, true, "the cell lies inside the merged range %s", "write to its first cell, or unmerge the range"); err != nil {
+		return err
+	}
+	return p.refuseIn(facts.Arrays, false, "the cell lies in the range %s of one array formula", "leave it out, or delete the formula first")
+}
+
+// refuseIn goes down the rows with edits and keeps the ranges that reach the
+// row. Ranges that do not overlap, as in every sound sheet, are no more than a
+// row has columns.
+func (p *planner) refuseIn(list []Range, first bool, reason, advice string) error {
+	list = slices.Clone(list)
+	slices.SortFunc(list, func(a, b Range) int { return cmp.Compare(a.FirstRow, b.FirstRow) })
+	var reach []Range
+	for _, row := range p.rows {
+		reach = slices.DeleteFunc(reach, func(r Range) bool { return r.LastRow < row.row })
+		for len(list) > 0 && list[0].FirstRow <= row.row {
+			if list[0].LastRow >= row.row {
+				reach = append(reach, list[0])
 			}
+			list = list[1:]
 		}
-		for _, e := range p.edits {
-			i, _ := slices.BinarySearchFunc(list, e.Row+1, func(r Range, row int) int { return cmp.Compare(r.FirstRow, row) })
-			for i--; i >= 0 && reach[i] >= e.Row; i-- {
-				r := list[i]
+		if len(reach) > maxColumns {
+			return damaged(fmt.Sprintf("merged ranges or array formulas overlap in row %d", row.row))
+		}
+		for _, e := range p.edits[row.from:row.to] {
+			for _, r := range reach {
 				if r.Contains(e.Row, e.Col) && !(first && e.Row == r.FirstRow && e.Col == r.FirstCol) {
 					return &Error{Kind: ErrEdit, Cell: CellName(e.Row, e.Col), Reason: fmt.Sprintf(reason, r), Advice: advice}
 				}
 			}
 		}
-		return nil
 	}
-	if err := check(facts.Merged, true, "the cell lies inside the merged range %s", "write to its first cell, or unmerge the range"); err != nil {
-		return err
-	}
-	return check(facts.Arrays, false, "the cell lies in the range %s of one array formula", "leave it out, or delete the formula first")
+	return nil
 }

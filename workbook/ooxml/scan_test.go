@@ -143,6 +143,7 @@ func TestScanRefusesDamage(t *testing.T) {
 		{"bytes that are not UTF-8", rows("<row r=\"1\"><c r=\"A1\" t=\"str\"><v>a\xFF¦</v></c></row>"), "cell A1: the text is not valid UTF-8 (byte %d)"},
 		{"a wrong end tag", rows(`<row r="1"><c r="A1"><v>1¦</c></v></row>`), "cell A1: the end tag </c> does not end <v> (byte %d)"},
 		{"an end tag too many", rows(``) + `¦</worksheet>`, "the end tag </worksheet> ends nothing (byte %d)"},
+		{"more columns than there are", worksheet(`<cols>` + strings.Repeat(`<col min="1" max="1"/>`, maxColumns) + `¦<col min="1" max="1"/></cols><sheetData/>`), "the sheet describes more than 16384 columns (byte %d)"},
 		{"a cell after the last column", rows(`<row r="1"><c r="XFD1"/><c/></row>`), "row 1 has more than 16384 columns"},
 		{"a reference of no digits", rows(`<row r="1"><c r="A1" t="str"><v>¦&#x;</v></c></row>`), "cell A1: the reference &#x; means nothing in a workbook (byte %d)"},
 		{"a reference of wrong digits", rows(`<row r="1"><c r="A1" t="str"><v>¦&#1A;</v></c></row>`), "cell A1: the reference &#1A; means nothing in a workbook (byte %d)"},

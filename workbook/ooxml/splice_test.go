@@ -142,7 +142,10 @@ func TestSpliceRefuses(t *testing.T) {
 			}
 		})
 	}
-	_, err := Splice(io.Discard, strings.NewReader(worksheet("")), []Edit{cellEdit("A1", one)}, nil)
+	overlapping := `<sheetData/><mergeCells>` + strings.Repeat(`<mergeCell ref="B2:C9"/>`, maxColumns+1) + `</mergeCells>`
+	_, err := Splice(io.Discard, strings.NewReader(worksheet(overlapping)), []Edit{cellEdit("A1", one), cellEdit("A5", one)}, nil)
+	wantError(t, err, ErrDamaged, "merged ranges or array formulas overlap in row 5")
+	_, err = Splice(io.Discard, strings.NewReader(worksheet("")), []Edit{cellEdit("A1", one)}, nil)
 	wantError(t, err, ErrDamaged, "the sheet has no place for cells")
 	_, err = Splice(io.Discard, strings.NewReader(rows(`<row r="1"/><row r="1"/>`)), []Edit{cellEdit("A1", one)}, nil)
 	wantError(t, err, ErrDamaged, "row 1 is given twice")
