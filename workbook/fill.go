@@ -36,6 +36,8 @@ type Report struct {
 	Plan    *calculation.Plan
 	Results *calculation.Results // nil for a preview
 	Saved   ooxml.Saved          // Path is empty where nothing was written
+
+	Verification *Verification // of Verify only
 }
 
 // Counts counts rows by their status.
