@@ -24,7 +24,7 @@ var bootstrapInterval = &Function{
 		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
 		{"bias", Number, SameUnit, "mean of the resampled quantities less the estimate"},
 	},
-	Findings:    []FindingKind{fewValuesKind, noSpreadKind, neighboursKind, heavyTailKind, tooFewResamplesKind, tooManyDrawsKind},
+	Findings:    []FindingKind{fewValuesKind, noSpreadKind, neighboursKind, heavyTailKind, tooFewResamplesKind, tooManyDrawsKind, fewerResamplesKind},
 	Assumptions: []string{"independent values of one population", "a sample large enough to show what the population is like"},
 	Citations:   []string{"Efron 1987 (BCa)"},
 	Example: Example{
@@ -49,10 +49,11 @@ var bootstrapInterval = &Function{
 			return err
 		}
 		estimate := q.of(slices.Clone(values))
-		replicates := make([]float64, resamplesInput.Of(c))
-		if err := tooManyDraws(s.n, len(replicates)); err != nil {
+		resamples, lowered, err := c.resamplesFor(resamplesInput, s.n, q.cost)
+		if err != nil {
 			return err
 		}
+		replicates := make([]float64, resamples)
 		err = resample(c.ctx, seedInput.Of(c), len(replicates), func() func(int, *num.Stream) {
 			drawn := make([]float64, s.n)
 			return func(i int, stream *num.Stream) {
@@ -80,6 +81,9 @@ var bootstrapInterval = &Function{
 		c.set("bias", bias)
 		c.method = fmt.Sprintf("BCa bootstrap, %d resamples, seed %d", len(replicates), seedInput.Of(c))
 		c.say(statement{q.name, estimate, l, SameUnit, nText(s.n)})
+		if lowered {
+			c.sayLowered(resamplesInput, resamples, s.n, fmt.Sprintf("chance alone moves a limit by about %s", c.withUnit(brief(b.limitError(tail(confidence.Of(c), direction.Of(c)))), SameUnit)))
+		}
 		if checks.Of(c) {
 			c.checkFewOfAnyShape(s.n)
 			c.checkNeighbours("sample", "The sample", sample.Of(c), s)
@@ -92,6 +96,7 @@ var bootstrapInterval = &Function{
 // bootstrapQuantity is what is resampled.
 type bootstrapQuantity struct {
 	name string
+	cost int // of a value drawn and used, about; 1 for the mean
 	// of computes it from values that it may put in another order.
 	of func([]float64) float64
 	// leavingOneOut gives it for sorted values with each of them left out in turn.
@@ -102,22 +107,25 @@ type bootstrapQuantity struct {
 func (c *Call) bootstrapQuantity(n int) (bootstrapQuantity, error) {
 	switch bootstrapOf.Of(c) {
 	case "median":
-		return bootstrapQuantity{"median", func(v []float64) float64 { return num.MedianOf(v) }, mediansLeavingOneOut}, nil
+		return bootstrapQuantity{"median", 2, func(v []float64) float64 { return num.MedianOf(v) }, mediansLeavingOneOut}, nil
 	case "sd":
-		return bootstrapQuantity{"standard deviation", func(v []float64) float64 { return summarise(v).sd }, sdsLeavingOneOut}, nil
+		return bootstrapQuantity{"standard deviation", 1, func(v []float64) float64 { return summarise(v).sd }, sdsLeavingOneOut}, nil
 	case "trimmed-mean":
 		share := trimmedEachEnd.Of(c)
 		if n-1-2*trimmedOf(n-1, share) < 1 {
 			return bootstrapQuantity{}, refuse("few-values", "sample", "No value is left after trimming; measure more or trim less.")
 		}
 		of := func(v []float64) float64 {
-			slices.Sort(v)
 			g := trimmedOf(len(v), share)
+			if g > 0 { // only what is cut off need come to the ends
+				num.Select(v, g)
+				num.Select(v[g:], len(v)-1-2*g)
+			}
 			return num.Mean(v[g : len(v)-g])
 		}
-		return bootstrapQuantity{"trimmed mean", of, func(sorted []float64) []float64 { return trimmedLeavingOneOut(sorted, trimmedOf(len(sorted)-1, share)) }}, nil
+		return bootstrapQuantity{"trimmed mean", 2, of, func(sorted []float64) []float64 { return trimmedLeavingOneOut(sorted, trimmedOf(len(sorted)-1, share)) }}, nil
 	}
-	return bootstrapQuantity{"mean", num.Mean, func(sorted []float64) []float64 { return trimmedLeavingOneOut(sorted, 0) }}, nil
+	return bootstrapQuantity{"mean", 1, num.Mean, func(sorted []float64) []float64 { return trimmedLeavingOneOut(sorted, 0) }}, nil
 }
 
 func mediansLeavingOneOut(sorted []float64) []float64 {
@@ -220,4 +228,15 @@ func (b bca) limit(z float64, err *error) float64 {
 		return b.sorted[k-1]
 	}
 	return b.sorted[k-1] + float64((at-float64(k))*(b.sorted[k]-b.sorted[k-1]))
+}
+
+// limitError is the standard error that the number of resamples leaves a limit
+// with the probability q outside: the count of replicates beyond it is binomial,
+// and a standard deviation of that count either way spans twice the error.
+func (b bca) limitError(q float64) float64 {
+	size := float64(len(b.sorted))
+	middle, reach := q*size, math.Sqrt(size*q*(1-q))
+	at := func(x float64) float64 { return b.sorted[int(math.Max(0, math.Min(size-1, x)))] }
+	low, high := at(middle+reach)-at(middle-reach), at(size-middle+reach)-at(size-middle-reach)
+	return math.Max(low, high) / 2
 }

@@ -23,7 +23,7 @@ func (f *Function) bind(ctx context.Context, arguments map[string]any) (*Call, e
 			from = From{Value: raw}
 		}
 		if v, ok := b.value(in, from.Value); ok {
-			c.args[in.Name] = From{v, from.Origin}
+			c.args[in.Name] = From{Value: v, Origin: from.Origin}
 			c.remember(c.args[in.Name])
 		} else {
 			b.bad = append(b.bad, in.Name)
@@ -38,7 +38,7 @@ func (f *Function) bind(ctx context.Context, arguments map[string]any) (*Call, e
 			continue
 		}
 		if in.Default != nil {
-			c.args[in.Name] = From{Value: in.Default}
+			c.args[in.Name] = From{Value: in.Default, byDefault: true}
 		} else if f.Required(in.Name) {
 			b.fail(in.Name, "", "is missing", "give "+in.Summary)
 		}

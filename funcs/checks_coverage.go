@@ -11,22 +11,8 @@ import (
 var (
 	coverageResamples = resamplesInput.withDefault(20000)
 	coverageN         = count("n", "the n to look at; the sample's own where it is left out", 2).optional()
-	tooManyDrawsKind  = FindingKind{"too-many-draws", "resamples times n passes what is worked out in one call"}
 	noEnoughKind      = FindingKind{"heavy-tail", "the variance or the mean does not exist, so that no n is enough"}
 )
-
-// mostDraws is how many values one call draws at the most: some ten seconds on one
-// core, a minute for the slowest population.
-const mostDraws = 2e8
-
-// tooManyDraws refuses to draw more than mostDraws values.
-func tooManyDraws(n, resamples int) error {
-	if draws := float64(n) * float64(resamples); draws > mostDraws {
-		return refuse("too-many-draws", "resamples", "That would draw %s values, but at most %s are drawn in one call; ask for fewer resamples, or for a smaller n.",
-			brief(draws), brief(mostDraws))
-	}
-	return nil
-}
 
 // coverageResults are the results that both functions of coverage give.
 var coverageResults = []Result{
@@ -36,49 +22,69 @@ var coverageResults = []Result{
 	{"simulation-error", Number, NoUnit, "standard error of the coverage, from the number of resamples"},
 }
 
-// tally counts where the t intervals of simulated samples lie.
-type tally struct{ below, above, hits int }
+// coverageDraws is what coverage simulates: samples of n values less a target, a
+// value of which counts as cost draws.
+type coverageDraws struct {
+	n, cost int
+	draw    func(*num.Stream, []float64)
+	means   bool // whether the means are wanted too
+}
 
-// coverage draws samples of n values and gives the tally of their t intervals
-// about a target of 0; draw fills a sample with values less the target.
-func (c *Call) coverage(n int, draw func(*num.Stream, []float64)) (tally, int, error) {
-	resamples := coverageResamples.Of(c)
-	if err := tooManyDraws(n, resamples); err != nil {
-		return tally{}, 0, err
+// coverageTally counts where their t intervals about a target of 0 lie, and has
+// the means, in the order drawn, where they are wanted.
+type coverageTally struct {
+	below, above, hits int // where the intervals lie
+	resamples          int
+	lowered            bool
+	means              []float64
+}
+
+// coverage draws the samples.
+func (c *Call) coverage(s coverageDraws) (coverageTally, error) {
+	resamples, lowered, err := c.resamplesFor(coverageResamples, s.n, s.cost)
+	if err != nil {
+		return coverageTally{}, err
 	}
 	dir := direction.Of(c)
-	q := dist.Student{DF: float64(n - 1)}.UpperQuantile(tail(confidence.Of(c), dir))
+	q := dist.Student{DF: float64(s.n - 1)}.UpperQuantile(tail(confidence.Of(c), dir))
 	places := make([]int8, resamples)
-	err := resample(c.ctx, seedInput.Of(c), resamples, func() func(int, *num.Stream) {
-		x := make([]float64, n)
-		return func(i int, s *num.Stream) {
-			draw(s, x)
-			places[i] = place(x, q, dir)
+	out := coverageTally{resamples: resamples, lowered: lowered}
+	if s.means {
+		out.means = make([]float64, resamples)
+	}
+	err = resample(c.ctx, seedInput.Of(c), resamples, func() func(int, *num.Stream) {
+		x := make([]float64, s.n)
+		return func(i int, stream *num.Stream) {
+			s.draw(stream, x)
+			var mean float64
+			places[i], mean = place(x, q, dir)
+			if out.means != nil {
+				out.means[i] = mean
+			}
 		}
 	})
-	var t tally
 	for _, p := range places {
 		switch {
 		case p < 0:
-			t.below++
+			out.below++
 		case p > 0:
-			t.above++
+			out.above++
 		default:
-			t.hits++
+			out.hits++
 		}
 	}
-	return t, resamples, err
+	return out, err
 }
 
 // place tells whether the t interval of x lies below 0 (-1), above it (1) or
-// holds it (0).
-func place(x []float64, q float64, dir string) int8 {
+// holds it (0), and gives its mean.
+func place(x []float64, q float64, dir string) (at int8, mean float64) {
 	n := float64(len(x))
 	var sum float64
 	for _, v := range x {
 		sum += v
 	}
-	mean := sum / n
+	mean = sum / n
 	var ss float64
 	for _, v := range x {
 		d := v - mean
@@ -87,21 +93,24 @@ func place(x []float64, q float64, dir string) int8 {
 	reach := float64(q * math.Sqrt(ss/float64(n*(n-1))))
 	switch {
 	case dir != below && mean-reach > 0:
-		return 1
+		return 1, mean
 	case dir != above && mean+reach < 0:
-		return -1
+		return -1, mean
 	}
-	return 0
+	return 0, mean
 }
 
-// setCoverage gives the shares of a tally.
-func (c *Call) setCoverage(t tally, resamples int) {
-	b := float64(resamples)
-	share := (float64(t.hits) + 1) / (b + 2)
-	c.set("coverage", float64(t.hits)/b)
-	c.set("interval-below", float64(t.below)/b)
-	c.set("interval-above", float64(t.above)/b)
+// setCoverage gives the shares of a simulation.
+func (c *Call) setCoverage(s coverageTally, n int) {
+	b := float64(s.resamples)
+	share := (float64(s.hits) + 1) / (b + 2)
+	c.set("coverage", float64(s.hits)/b)
+	c.set("interval-below", float64(s.below)/b)
+	c.set("interval-above", float64(s.above)/b)
 	c.set("simulation-error", math.Sqrt(share*(1-share)/b))
+	if s.lowered {
+		c.sayLowered(coverageResamples, s.resamples, n, "the coverage has a simulation error of "+brief(c.results["simulation-error"].(float64)))
+	}
 }
 
 // allowedByDefault is how far coverage may fall short in n-needed.
@@ -115,7 +124,7 @@ var coverageCheck = &Function{
 	Results: append(append([]Result{}, coverageResults...),
 		Result{"predicted-coverage", Number, NoUnit, "the same from skewness and excess kurtosis (second order)"},
 		Result{"n-needed", Whole, NoUnit, "the smallest n whose predicted coverage is at most 0.01 short; absent where there is none"}),
-	Findings: []FindingKind{fewValuesKind, noSpreadKind, tooManyDrawsKind, heavyTailKind,
+	Findings: []FindingKind{fewValuesKind, noSpreadKind, tooManyDrawsKind, fewerResamplesKind, heavyTailKind,
 		{"coverage-short", "the coverage falls short of the confidence by more than 0.01 and three simulation errors"}},
 	Assumptions: []string{"the sample shows the shape of its population: rare values that it lacks are not seen"},
 	Citations:   []string{"Hall 1992", "Efron & Tibshirani 1993"},
@@ -142,12 +151,12 @@ var coverageCheck = &Function{
 		}
 		m := num.Moments(values)
 		centred := lessMean(values, m)
-		t, resamples, err := c.coverage(n, func(stream *num.Stream, x []float64) { stream.Resample(x, centred) })
+		sim, err := c.coverage(coverageDraws{n: n, cost: 1, draw: func(stream *num.Stream, x []float64) { stream.Resample(x, centred) }})
 		if err != nil {
 			return err
 		}
 		conf, dir := confidence.Of(c), direction.Of(c)
-		c.setCoverage(t, resamples)
+		c.setCoverage(sim, n)
 		g1, g2 := skewness(m), excessKurtosis(m)
 		predicted := func(n int) float64 { return predictedCoverage(float64(n), conf, dir, g1, g2) }
 		c.set("predicted-coverage", predicted(n))
@@ -159,7 +168,7 @@ var coverageCheck = &Function{
 			c.set("n-needed", needed)
 		}
 		share, errorOf := c.results["coverage"].(float64), c.results["simulation-error"].(float64)
-		c.method = fmt.Sprintf("%d samples of %d drawn from the data with replacement, seed %d", resamples, n, seedInput.Of(c))
+		c.method = fmt.Sprintf("%d samples of %d drawn from the data with replacement, seed %d", sim.resamples, n, seedInput.Of(c))
 		c.sentence = fmt.Sprintf("For data shaped like these, the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; predicted %s; %s).",
 			percent(conf), dir, n, percent(share), brief(errorOf), percent(toDigits(predicted(n))), c.method)
 		if short := conf - share; short > allowedByDefault && short > 3*errorOf {

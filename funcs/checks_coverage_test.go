@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"strings"
 	"testing"
 
 	"halfwidth/funcs/internal/dist"
@@ -61,11 +62,14 @@ func TestCoverageOfEveryDraw(t *testing.T) {
 // Draws without spread hold the target only where they equal it: of 1, 2 and 3
 // drawn twice, 1 of 3 such draws.
 func TestDrawsWithoutSpread(t *testing.T) {
-	if got := [3]int8{place([]float64{0, 0, 0}, 2, either), place([]float64{1, 1}, 2, either), place([]float64{-1, -1}, 2, either)}; got != [3]int8{0, 1, -1} {
-		t.Errorf("got %v", got)
-	}
-	if got := [2]int8{place([]float64{-1, -1}, 2, above), place([]float64{1, 1}, 2, below)}; got != [2]int8{0, 0} {
-		t.Errorf("one limit: got %v", got)
+	for _, c := range []struct {
+		dir  string
+		x    []float64
+		want int8
+	}{{either, []float64{0, 0, 0}, 0}, {either, []float64{1, 1}, 1}, {either, []float64{-1, -1}, -1}, {above, []float64{-1, -1}, 0}, {below, []float64{1, 1}, 0}} {
+		if got, mean := place(c.x, 2, c.dir); got != c.want || mean != c.x[0] {
+			t.Errorf("%v, direction %s: got %v and mean %v", c.x, c.dir, got, mean)
+		}
 	}
 	out := answer(t, "coverage-check", map[string]any{"sample": []float64{1, 2, 3}, "n": 2})
 	errors4(t, "1, 2 and 3", out, "coverage", 7.0/9) // the six unequal pairs and (2, 2)
@@ -125,12 +129,50 @@ func TestCoverageRefusals(t *testing.T) {
 		refusedFor(t, out, c.code)
 		checkDeclared(t, out.Function, out)
 	}
-	out := answer(t, "coverage-check", map[string]any{"sample": tenTimes, "n": 1_000_000})
-	if want := "That would draw 20000000000 values, but at most 200000000 are drawn in one call; ask for fewer resamples, or for a smaller n."; Note(out.Findings) != want {
-		t.Errorf("got %s", Note(out.Findings))
+	// 60,000,000 draws fit.
+	for _, c := range []struct {
+		arguments map[string]any
+		want      string
+	}{
+		{map[string]any{"n": 100_000}, "Only 600 samples of n = 100000 can be drawn in one call, too few for a steady answer; look at an n of at most 60000, or ask for from 100 to 600 resamples."},
+		{map[string]any{"n": 1_000_000}, "Only 60 samples of n = 1000000 can be drawn in one call, too few for a steady answer; look at an n of at most 60000."},
+		{map[string]any{"n": 100_000, "resamples": 1000}, "1000 resamples of n = 100000 would draw 100000000 values, but at most 60000000 are drawn in one call here; ask for at most 600 resamples."},
+		{map[string]any{"n": 1_000_000, "resamples": 20_000}, "20000 resamples of n = 1000000 would draw 20000000000 values, but at most 60000000 are drawn in one call here; ask for an n of at most 600000."},
+	} {
+		out := answer(t, "coverage-check", altered(c.arguments, "sample", tenTimes))
+		refusedFor(t, out, "too-many-draws")
+		if got := Note(out.Findings); got != c.want {
+			t.Errorf("got  %s\nwant %s", got, c.want)
+		}
 	}
 	refuses(t, "coverage-check", map[string]any{"sample": tenTimes, "n": 1}, "n is 1, but must be a whole number, 2 or more")
 	if _, err := Answer(context.Background(), "coverage-check", map[string]any{"sample": tenTimes, "seed": -1}); err == nil {
 		t.Error("a seed below 0 is taken")
+	}
+}
+
+// Where the default does not fit, as many samples are drawn as do, and that number
+// stands as the argument; asked for, it gives the same.
+func TestFewerResamplesThanTheDefault(t *testing.T) {
+	for name, arguments := range map[string]map[string]any{
+		"coverage-check":      {"sample": tenTimes, "n": 20_000},
+		"population-coverage": {"shape": "t", "parameter": 5.0, "n": 5000},
+		"bootstrap-interval":  {"sample": counting(20_000)},
+	} {
+		out := answer(t, name, arguments)
+		if out.Status == StatusRefused || !raises(out, "fewer-resamples") {
+			t.Errorf("%s: %s, %s", name, out.Status, Note(out.Findings))
+			continue
+		}
+		checkDeclared(t, out.Function, out)
+		asked := answer(t, name, altered(arguments, "resamples", 3000))
+		sameResults(t, out, asked)
+		if raises(asked, "fewer-resamples") {
+			t.Errorf("%s: 3000 resamples as asked: %s", name, Note(asked.Findings))
+		}
+	}
+	out := answer(t, "coverage-check", map[string]any{"sample": tenTimes, "n": 20_000})
+	if want := "3000 samples of n = 20000 were drawn instead of 20000, as many as fit in one call; the coverage has a simulation error of 0.00"; !strings.Contains(Note(out.Findings), want) {
+		t.Errorf("got %s", Note(out.Findings))
 	}
 }

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"sort"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -21,19 +20,20 @@ var (
 // population is a law to draw from. Its values come less the target.
 type population struct {
 	draw     func(*num.Stream, []float64)
-	sd       float64                     // +Inf where there is no finite variance
-	distance func(n int) (float64, bool) // exact sup|F - Φ| of the standardised mean, where there is a formula
+	cost     int                 // of drawing a value, about; 1 for one drawn from data
+	sd       float64             // +Inf where there is no finite variance
+	distance func(n int) float64 // exact sup|F - Φ| of the standardised mean, where there is a formula
 	noMean   bool
 }
 
 var populationCoverage = &Function{
 	Name:    "population-coverage",
-	Version: 1,
+	Version: 2,
 	Summary: "how often the t interval holds the true mean for a population of a known shape, and how far the mean is from normal",
 	Inputs:  inputs(shape, shapeParameter, populationN, coverageResamples, seedInput, confidence, direction),
 	Results: append(append([]Result{}, coverageResults...),
 		Result{"distance-from-normal", Number, NoUnit, "largest difference of the distribution function of the standardised mean from the normal one; absent without a finite variance"}),
-	Findings:    []FindingKind{tooManyDrawsKind, noEnoughKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
+	Findings:    []FindingKind{tooManyDrawsKind, fewerResamplesKind, noEnoughKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
 	Assumptions: []string{"independent draws"},
 	Citations:   []string{"central limit theorem", "Berry 1941", "Esseen 1942"},
 	Example: Example{
@@ -49,24 +49,20 @@ var populationCoverage = &Function{
 			return err
 		}
 		n := populationN.Of(c)
-		t, resamples, err := c.coverage(n, p.draw)
+		finite := !math.IsInf(p.sd, 1)
+		sim, err := c.coverage(coverageDraws{n: n, cost: p.cost, draw: p.draw, means: finite && p.distance == nil})
 		if err != nil {
 			return err
 		}
-		c.setCoverage(t, resamples)
+		c.setCoverage(sim, n)
 		how := ""
-		if !math.IsInf(p.sd, 1) {
-			d, exact := 0.0, false
+		if finite {
 			if p.distance != nil {
-				d, exact = p.distance(n)
-			}
-			if !exact {
-				if d, err = c.simulatedDistance(p, n, resamples); err != nil {
-					return err
-				}
+				c.set("distance-from-normal", p.distance(n))
+			} else {
+				c.set("distance-from-normal", simulatedDistance(sim.means, p.sd/math.Sqrt(float64(n))))
 				how = ", its distance from normal simulated too"
 			}
-			c.set("distance-from-normal", d)
 		} else {
 			what := "variance"
 			if p.noMean {
@@ -75,7 +71,7 @@ var populationCoverage = &Function{
 			c.caution("heavy-tail", "shape", "This population has no finite %s: no n is enough for a t interval, and the coverage does not settle at the confidence as n grows.", what)
 		}
 		share := c.results["coverage"].(float64)
-		c.method = fmt.Sprintf("%d samples of %d simulated, seed %d%s", resamples, n, seedInput.Of(c), how)
+		c.method = fmt.Sprintf("%d samples of %d simulated, seed %d%s", sim.resamples, n, seedInput.Of(c), how)
 		c.sentence = fmt.Sprintf("For a population of shape %s the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; %s).",
 			c.shapeText(), percent(confidence.Of(c)), direction.Of(c), n, percent(share), brief(c.results["simulation-error"].(float64)), c.method)
 		return nil
@@ -101,110 +97,60 @@ func (c *Call) population() (population, error) {
 		return population{}, c.wrong("parameter", shortest(a), "is not taken by the shape "+name, "leave it out")
 	}
 	inf := math.Inf(1)
-	normal := dist.Normal{}
 	switch name {
 	case "uniform":
-		return population{draw: each(func(u float64) float64 { return u - 0.5 }), sd: math.Sqrt(1.0 / 12)}, nil
+		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Uniform() - 0.5 }), sd: math.Sqrt(1.0 / 12)}, nil
 	case "exponential":
-		return population{draw: each(func(u float64) float64 { return -num.Log(u) - 1 }), sd: 1, distance: gammaDistance}, nil
+		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Exponential() - 1 }), sd: 1, distance: gammaDistance}, nil
 	case "lognormal":
 		if a > 20 { // so that neither mean nor variance passes what a double holds
 			return population{}, c.wrong("parameter", shortest(a), "must be at most 20 as the sd of a logarithm", "give a smaller one")
 		}
 		centre := num.Exp(float64(a*a) / 2)
-		return population{draw: each(func(u float64) float64 { return num.Exp(float64(a*normal.Quantile(u))) - centre }),
+		return population{cost: 2, draw: each(func(s *num.Stream) float64 { return num.Exp(float64(a*s.Normal())) - centre }),
 			sd: centre * math.Sqrt(num.Expm1(float64(a*a)))}, nil
 	case "bernoulli":
 		if a >= 1 {
 			return population{}, c.wrong("parameter", shortest(a), "must be a probability, strictly between 0 and 1", "give a smaller one")
 		}
-		return population{draw: each(func(u float64) float64 {
-			if u < a {
+		return population{cost: 1, draw: each(func(s *num.Stream) float64 {
+			if s.Uniform() < a {
 				return 1 - a
 			}
 			return -a
-		}), sd: math.Sqrt(a * (1 - a)), distance: func(n int) (float64, bool) {
-			return latticeDistance(float64(n)*a, math.Sqrt(float64(n)*a*(1-a)), func(k float64) float64 { return binomialAtMost(k, float64(n), a) }), true
+		}), sd: math.Sqrt(a * (1 - a)), distance: func(n int) float64 {
+			return latticeDistance(float64(n)*a, math.Sqrt(float64(n)*a*(1-a)), func(k float64) float64 { return binomialAtMost(k, float64(n), a) })
 		}}, nil
 	case "poisson":
 		if a > 1e6 {
 			return population{}, c.wrong("parameter", shortest(a), "must be at most 1000000", "give a smaller mean")
 		}
-		table := poissonTable(a)
-		return population{draw: each(func(u float64) float64 { return float64(table.first+sort.SearchFloat64s(table.atMost, u)) - a }),
-			sd: math.Sqrt(a), distance: func(n int) (float64, bool) {
-				mean := float64(n) * a
-				return latticeDistance(mean, math.Sqrt(mean), func(k float64) float64 { atMost, _ := poissonTails(k, mean); return atMost }), true
-			}}, nil
+		return population{cost: 4, draw: poissonDraws(a), sd: math.Sqrt(a), distance: func(n int) float64 {
+			mean := float64(n) * a
+			return latticeDistance(mean, math.Sqrt(mean), func(k float64) float64 { atMost, _ := poissonTails(k, mean); return atMost })
+		}}, nil
 	case "pareto":
 		if a <= 1 {
 			return population{}, refuse("no-mean", "parameter", "A pareto population of index %s has no mean, so no interval can hold it; use an index above 1.", shortest(a))
 		}
-		p := population{draw: each(func(u float64) float64 { return num.Exp(-num.Log(u)/a) - a/(a-1) }), sd: inf}
+		p := population{cost: 2, draw: each(func(s *num.Stream) float64 { return num.Exp(s.Exponential()/a) - a/(a-1) }), sd: inf}
 		if a > 2 {
 			p.sd = math.Sqrt(a/(a-2)) / (a - 1)
 		}
 		return p, nil
 	case "cauchy":
-		return population{draw: polarT(1), sd: inf, noMean: true}, nil
+		return population{cost: 2, draw: each(func(s *num.Stream) float64 { return s.Normal() / s.Normal() }), sd: inf, noMean: true}, nil
 	case "t":
 		if a < 0.25 { // its values would pass what a double holds
 			return population{}, c.wrong("parameter", shortest(a), "must be at least 0.25 degrees of freedom", "give more")
 		}
-		p := population{draw: polarT(a), sd: inf, noMean: a <= 1}
+		p := population{cost: 4, draw: studentDraws(a), sd: inf, noMean: a <= 1}
 		if a > 2 {
 			p.sd = math.Sqrt(a / (a - 2))
 		}
 		return p, nil
 	}
-	return population{draw: each(normal.Quantile), sd: 1, distance: func(int) (float64, bool) { return 0, true }}, nil
-}
-
-// each draws every value by inversion from a uniform number strictly between 0
-// and 1.
-func each(value func(u float64) float64) func(*num.Stream, []float64) {
-	return func(s *num.Stream, x []float64) {
-		for i := range x {
-			x[i] = value((float64(s.Uint64()>>11) + 0.5) * 0x1p-53)
-		}
-	}
-}
-
-// polarT draws Student t values (Bailey 1994, Polar generation of random
-// variates with the t-distribution).
-func polarT(df float64) func(*num.Stream, []float64) {
-	uniform := func(s *num.Stream) float64 { return (float64(s.Uint64()>>11)+0.5)*0x1p-52 - 1 }
-	return func(s *num.Stream, x []float64) {
-		for i := range x {
-			for {
-				u, v := uniform(s), uniform(s)
-				w := float64(u*u) + float64(v*v)
-				if w <= 1 {
-					x[i] = u * math.Sqrt(float64(df*num.Expm1(-2/df*num.Log(w)))/w)
-					break
-				}
-			}
-		}
-	}
-}
-
-// cumulative is a table of P(X <= k), k from first.
-type cumulative struct {
-	first  int
-	atMost []float64
-}
-
-// poissonTable holds the law within 40 standard deviations and 40.
-func poissonTable(mean float64) cumulative {
-	reach := float64(40*math.Sqrt(mean)) + 40
-	t := cumulative{first: max(0, int(mean-reach))}
-	for k := t.first; ; k++ {
-		p, _ := poissonTails(float64(k), mean)
-		t.atMost = append(t.atMost, p)
-		if p == 1 || float64(k) > mean+reach {
-			return t
-		}
-	}
+	return population{cost: 1, draw: each((*num.Stream).Normal), sd: 1, distance: func(int) float64 { return 0 }}, nil
 }
 
 // latticeDistance is sup|F - Φ| of a standardised law on the whole numbers from
@@ -233,7 +179,7 @@ func latticeDistance(mean, sd float64, atMost func(k float64) float64) float64 {
 
 // gammaDistance is sup|F - Φ| of the standardised mean of n exponential
 // values: the sum has a gamma law.
-func gammaDistance(n int) (float64, bool) {
+func gammaDistance(n int) float64 {
 	mean, sd := float64(n), math.Sqrt(float64(n))
 	law := dist.Gamma{Shape: mean}
 	at := func(z float64) float64 {
@@ -243,7 +189,7 @@ func gammaDistance(n int) (float64, bool) {
 	for step := 1.0 / 128; step > 1e-9; step /= 2 {
 		best, largest = climb(at, best, largest, step)
 	}
-	return largest, true
+	return largest
 }
 
 // highest is the largest of f from first to last in steps, and where it is.
@@ -267,27 +213,16 @@ func climb(f func(float64) float64, at, largest, step float64) (float64, float64
 	return at, largest
 }
 
-// simulatedDistance is sup|F - Φ| with F the empirical law of simulated
-// standardised means; it cannot be told from 0 below about 1/√resamples.
-func (c *Call) simulatedDistance(p population, n, resamples int) (float64, error) {
-	z := make([]float64, resamples)
-	scale := 1 / (p.sd * math.Sqrt(float64(n)))
-	err := resample(c.ctx, seedInput.Of(c), resamples, func() func(int, *num.Stream) {
-		x := make([]float64, n)
-		return func(i int, s *num.Stream) {
-			p.draw(s, x)
-			z[i] = num.Sum(x) * scale
-		}
-	})
-	if err != nil {
-		return 0, err
-	}
-	slices.Sort(z)
+// simulatedDistance is sup|F - Φ| with F the empirical law of simulated means in
+// units of their standard error, which it sorts; it cannot be told from 0 below
+// about 1/√resamples.
+func simulatedDistance(means []float64, standardError float64) float64 {
+	slices.Sort(means)
 	var largest float64
-	for i, v := range z {
-		normal := dist.Normal{}.CDF(v)
-		b := float64(len(z))
+	b := float64(len(means))
+	for i, v := range means {
+		normal := dist.Normal{}.CDF(v / standardError)
 		largest = math.Max(largest, math.Max(math.Abs(float64(i)/b-normal), math.Abs(float64(i+1)/b-normal)))
 	}
-	return largest, nil
+	return largest
 }

@@ -47,6 +47,7 @@ func TestDrawsFollowTheirLaws(t *testing.T) {
 		{"bernoulli", 0.3, nil},
 		{"poisson", 2.5, nil},
 		{"poisson", 1e4, nil},
+		{"poisson", 1e6, nil},
 	} {
 		p := populationOf(t, c.shape, c.parameter)
 		x, s := make([]float64, n), num.NewStream()
@@ -77,6 +78,34 @@ func TestDrawsFollowTheirLaws(t *testing.T) {
 	within(t, "lognormal sd", populationOf(t, "lognormal", 1.0).sd, math.Sqrt(math.E*(math.E-1)), 1e-14)
 	within(t, "pareto sd", populationOf(t, "pareto", 3.0).sd, math.Sqrt(3.0/4), 1e-14)
 	within(t, "t sd", populationOf(t, "t", 3.0).sd, math.Sqrt(3), 1e-15)
+}
+
+// Counts come as often as their law says: Pearson's statistic over the counts
+// expected 20 times or more stays below the 0.9999 quantile of chi-square.
+func TestPoissonDrawsFollowTheirLaw(t *testing.T) {
+	const n = 200_000
+	for _, mean := range []float64{0.01, 2.5, 9.99, 10, 47.3, 3000} {
+		x, s, counts := make([]float64, n), num.NewStream(), map[int]float64{}
+		s.Start(5, 2)
+		poissonDraws(mean)(s, x)
+		for _, v := range x {
+			counts[int(math.Round(v+mean))]++
+		}
+		law, classes, chi := dist.Poisson{Mean: mean}, 0, 0.0
+		rest, restSeen := float64(n), float64(n)
+		for k := range int(mean+12*math.Sqrt(mean)) + 20 {
+			if want := n * law.PMF(k); want >= 20 {
+				chi += (counts[k] - want) * (counts[k] - want) / want
+				classes, rest, restSeen = classes+1, rest-want, restSeen-counts[k]
+			}
+		}
+		if rest >= 1 {
+			chi, classes = chi+(restSeen-rest)*(restSeen-rest)/rest, classes+1
+		}
+		if most := (dist.ChiSquare{DF: float64(classes - 1)}).UpperQuantile(1e-4); chi > most {
+			t.Errorf("mean %v: Pearson's statistic %v, at most %v", mean, chi, most)
+		}
+	}
 }
 
 func TestPopulationCoverageAgainstExactValues(t *testing.T) {
@@ -136,8 +165,7 @@ func TestDistanceKeepsEsseensBound(t *testing.T) {
 	constant := float(t, publishedExample(t, "berry-esseen.lower_bound_on_c_esseen_1956").text)
 	p := (4 - math.Sqrt(10)) / 2
 	for _, n := range []int{100, 10_000, 1_000_000} {
-		out := answer(t, "population-coverage", map[string]any{"shape": "bernoulli", "parameter": p, "n": n, "resamples": 100})
-		ratio := resultOf(t, out, "distance-from-normal") * math.Sqrt(float64(n)*p*(1-p)) / (p*p + (1-p)*(1-p))
+		ratio := populationOf(t, "bernoulli", p).distance(n) * math.Sqrt(float64(n)*p*(1-p)) / (p*p + (1-p)*(1-p))
 		if ratio > 0.4690 || n >= 10_000 && math.Abs(ratio-constant) > 0.01 {
 			t.Errorf("n = %d: %v of ρ/(σ³√n), the constant is %v", n, ratio, constant)
 		}

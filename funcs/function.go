@@ -174,4 +174,6 @@ type Origin struct {
 type From struct {
 	Value  any
 	Origin *Origin
+
+	byDefault bool // the call did not give it
 }

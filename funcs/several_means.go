@@ -115,7 +115,7 @@ func welchMeans(groups []groupSummary) (f, dfBetween, dfWithin float64) {
 
 var analysisOfVariance = &Function{
 	Name:    "analysis-of-variance",
-	Version: 1,
+	Version: 2,
 	Summary: "whether the means of several groups differ: one-way analysis of variance, or Welch's test with separate variances",
 	Inputs:  inputs(samples, means, sds, ns, pooledFirst, checks),
 	OneOf:   []OneOf{meansWays},

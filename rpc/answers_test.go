@@ -13,13 +13,13 @@ import (
 	"halfwidth/funcs"
 )
 
-// endless draws as many values as one call may, which takes some seconds.
+// endless draws as many values as one call may, which takes some half a second.
 func endless() string {
 	values := make([]string, 300)
 	for i := range values {
 		values[i] = fmt.Sprint(i * i % 97)
 	}
-	return fmt.Sprintf(`{"name":"bootstrap-interval","arguments":{"sample":[%s],"of":"median","resamples":600000}}`, strings.Join(values, ","))
+	return fmt.Sprintf(`{"name":"bootstrap-interval","arguments":{"sample":[%s],"of":"median","resamples":100000}}`, strings.Join(values, ","))
 }
 
 const score = `{"name":"standard-score","arguments":{"value":12,"mean":10,"sd":2}}`

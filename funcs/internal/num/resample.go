@@ -1,20 +1,21 @@
 package num
 
-import "math/rand/v2"
+import (
+	"math/bits"
+	"math/rand/v2"
+)
 
 // Stream is the source of random numbers of one resample. Resample i of a seed
 // has a stream of its own, so that the digits do not depend on how the
 // resamples are shared among workers.
 type Stream struct {
-	pcg rand.PCG
-	*rand.Rand
+	pcg                 rand.PCG
+	normal, exponential *ziggurat
 }
 
 // NewStream gives a stream; Start sets it to a resample.
 func NewStream() *Stream {
-	s := &Stream{}
-	s.Rand = rand.New(&s.pcg)
-	return s
+	return &Stream{normal: normalLayers(), exponential: exponentialLayers()}
 }
 
 // Start sets the stream to the beginning of resample i of the seed. The seed
@@ -31,10 +32,26 @@ func mix(z uint64) uint64 {
 	return z ^ z>>31
 }
 
+// below is a whole number from 0 to n-1, each as likely: the upper half of a
+// product, without the few numbers that would favour some (Lemire 2019, Fast
+// random integer generation in an interval); a mask for powers of two.
+func (s *Stream) below(n uint64) uint64 {
+	if n&(n-1) == 0 {
+		return s.pcg.Uint64() & (n - 1)
+	}
+	at, rest := bits.Mul64(s.pcg.Uint64(), n)
+	if rest < n {
+		for least := -n % n; rest < least; {
+			at, rest = bits.Mul64(s.pcg.Uint64(), n)
+		}
+	}
+	return at
+}
+
 // Resample fills dst with values drawn from src with replacement.
 func (s *Stream) Resample(dst, src []float64) {
 	n := uint64(len(src))
 	for i := range dst {
-		dst[i] = src[s.Uint64N(n)]
+		dst[i] = src[s.below(n)]
 	}
 }
