@@ -8,7 +8,6 @@ import (
 	"io"
 	"maps"
 	"os"
-	"regexp"
 	"slices"
 	"strings"
 	"unicode/utf8"
@@ -229,89 +228,6 @@ func cut(text string) string {
 		end--
 	}
 	return text[:end] + " …"
-}
-
-// restOn reports whether a formula of the book may rest on a changed cell, so
-// that it must be worked out again. Where that cannot be told cheaply (names,
-// functions that build addresses) the answer is yes.
-func (b *Book) restOn(edits map[int][]ooxml.Edit) (bool, error) {
-	changed := map[int]bool{}
-	for sheet, list := range edits {
-		if len(list) > 0 {
-			changed[sheet] = true
-		}
-	}
-	if len(changed) == 0 {
-		return false, nil
-	}
-	sheets := b.Sheets()
-	rest := false
-	for at, s := range sheets {
-		if s.Kind != ooxml.Worksheet || rest || b.noFormulas[at] {
-			continue
-		}
-		_, err := b.Scan(at, ooxml.ScanOptions{Columns: &ooxml.Columns{}, Formula: func(row, col int, text []byte) {
-			rest = rest || b.formulaRests(string(text), at, edits)
-		}}, func(*ooxml.Row) error { return nil })
-		if err != nil {
-			return false, err
-		}
-	}
-	return rest, nil
-}
-
-var (
-	quotedSheet = regexp.MustCompile(`'((?:[^']|'')+)'!`)
-	plainSheet  = regexp.MustCompile(`([\p{L}\p{N}_.]+)!`)
-	cellRef     = regexp.MustCompile(`(?i)\$?[A-Z]{1,3}\$?[0-9]{1,7}(?::\$?[A-Z]{1,3}\$?[0-9]{1,7})?`)
-	anyAddress  = regexp.MustCompile(`(?i)\b(indirect|offset|index)\s*\(|\$?[A-Z]{1,3}:\$?[A-Z]{1,3}|\[`)
-)
-
-// formulaRests reports whether a formula on a sheet may rest on an edit.
-func (b *Book) formulaRests(text string, on int, edits map[int][]ooxml.Edit) bool {
-	if text == "" { // a follower of a shared formula, whose cells are not worked out here
-		return len(edits[on]) > 0
-	}
-	for _, m := range quotedSheet.FindAllStringSubmatch(text, -1) {
-		if at := b.SheetIndex(strings.ReplaceAll(m[1], "''", "'")); len(edits[at]) > 0 {
-			return true
-		}
-	}
-	for _, m := range plainSheet.FindAllStringSubmatch(text, -1) {
-		if at := b.SheetIndex(m[1]); len(edits[at]) > 0 {
-			return true
-		}
-	}
-	for _, n := range b.DefinedNames() {
-		sheet, _, ok := reference(n.Ref)
-		if touches := !ok || len(edits[b.SheetIndex(sheet)]) > 0; touches && strings.Contains(strings.ToLower(text), strings.ToLower(n.Name)) {
-			return true
-		}
-	}
-	if len(edits[on]) == 0 {
-		return false
-	}
-	if anyAddress.MatchString(text) {
-		return true
-	}
-	for _, m := range cellRef.FindAllStringIndex(text, -1) {
-		if m[0] > 0 && partOfName(text[m[0]-1]) || m[1] < len(text) && (partOfName(text[m[1]]) || text[m[1]] == '(') {
-			continue
-		}
-		area, ok := ooxml.ParseRange(text[m[0]:m[1]])
-		for _, e := range edits[on] {
-			if ok && area.Contains(e.Row, e.Col) {
-				return true
-			}
-		}
-	}
-	return false
-}
-
-// partOfName reports whether a byte continues a name or belongs to another
-// sheet's reference, so that what stands beside it is no cell of this sheet.
-func partOfName(b byte) bool {
-	return b >= utf8.RuneSelf || b == '_' || b == '.' || b == '!' || b >= '0' && b <= '9' || b >= 'A' && b <= 'Z' || b >= 'a' && b <= 'z'
 }
 
 // mayReplace refuses to write over an output that was changed since it was
