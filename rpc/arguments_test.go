@@ -193,11 +193,16 @@ func trips() calculation.Source {
 	return book
 }
 
+// held is an open book.
+func held(source calculation.Source) func() (calculation.Source, *Error) {
+	return func() (calculation.Source, *Error) { return source, nil }
+}
+
 func TestExpressionsReadTheBookNamed(t *testing.T) {
 	var session *Session
 	c := begin(t, Options{began: func(s *Session) {
 		session = s
-		s.books = books{"Trips.xlsx": trips, "Larkmoor.xlsx": func() calculation.Source { return calculation.NewRows() }}
+		s.books = books{"Trips.xlsx": held(trips()), "Larkmoor.xlsx": held(calculation.NewRows())}
 	}})
 	c.initialize()
 	ask := func(function, arguments string) reply {
@@ -242,7 +247,7 @@ func TestExpressionsReadTheBookNamed(t *testing.T) {
 		t.Errorf("misspelt: %+v %s", faulty.Error, faulty.Result)
 	}
 	c.send(`{"jsonrpc":"2.0","id":1,"method":"functions/answer","params":{"name":"mean-interval","arguments":{"sample":"minutes in Trips"},"book":"trips.xlsx"}}`)
-	c.want(`{"jsonrpc":"2.0","id":1,"error":{"code":-32602,"message":"book is \"trips.xlsx\", and no book of that name is open; open it first, or leave book out.",` +
+	c.want(`{"jsonrpc":"2.0","id":1,"error":{"code":-32602,"message":"book is \"trips.xlsx\", and no book of that name is open; open its sheets with sheets/didOpen first, or leave book out.",` +
 		`"data":{"argument":"book","pointer":"/book","reason":"is \"trips.xlsx\", and no book of that name is open","suggestion":"Trips.xlsx"}}}`)
 	c.leave()
 	if session.books == nil {
@@ -257,7 +262,7 @@ func (brokenSource) Places() []calculation.Place { panic("secret detail") }
 
 func TestAFaultOfOursStopsItsCallAlone(t *testing.T) {
 	c := begin(t, Options{began: func(s *Session) {
-		s.books = books{"b": func() calculation.Source { return brokenSource{} }}
+		s.books = books{"b": held(brokenSource{})}
 	}})
 	c.initialize()
 	const bad, good = `{"name":"mean-interval","arguments":{"sample":"a in b"}}`, `{"name":"standard-score","arguments":{"value":12,"mean":10,"sd":2}}`

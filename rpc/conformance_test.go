@@ -52,6 +52,10 @@ func play(t *testing.T, lines []string) {
 			opts.Limits.Depth = number(t, rest)
 		case "max-sample-values":
 			opts.Limits.SampleValues = number(t, rest)
+		case "max-open-sheets":
+			opts.Limits.OpenSheets = number(t, rest)
+		case "max-open-cells":
+			opts.Limits.OpenCells = number(t, rest)
 		case "workers":
 			opts.Limits.Workers = number(t, rest)
 		case "max-queue":
@@ -63,7 +67,7 @@ func play(t *testing.T, lines []string) {
 	for i, line := range lines {
 		word, rest, _ := strings.Cut(line, " ")
 		switch word {
-		case "", "#", "max-message-bytes", "max-header-bytes", "max-depth", "max-sample-values", "workers", "max-queue":
+		case "", "#", "max-message-bytes", "max-header-bytes", "max-depth", "max-sample-values", "max-open-sheets", "max-open-cells", "workers", "max-queue":
 		case "open":
 			c.initialize()
 		case "send":

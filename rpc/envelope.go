@@ -3,6 +3,7 @@ package rpc
 import (
 	"bytes"
 	"fmt"
+	"slices"
 	"unicode/utf8"
 )
 
@@ -181,29 +182,42 @@ func invalidRequest(message string) *Error {
 // memberOf gives the value of one member of a JSON object that is known to be
 // well formed, or nil. Where the member stands twice the last one counts.
 func memberOf(object []byte, name string) []byte {
-	var value []byte
+	value, _ := memberAt(object, name)
+	return value
+}
+
+// cutMember gives an object with null in the place of a member, and the member.
+func cutMember(object []byte, name string) (rest, value []byte) {
+	value, start := memberAt(object, name)
+	if value == nil {
+		return object, nil
+	}
+	return slices.Concat(object[:start], []byte("null"), object[start+len(value):]), value
+}
+
+func memberAt(object []byte, name string) (value []byte, at int) {
 	s := scanner{data: object}
 	s.space()
 	if s.peek() != '{' {
-		return nil
+		return nil, 0
 	}
 	for {
 		s.pos++
 		s.space()
 		raw, escaped, err := s.key()
 		if err != nil {
-			return value
+			return value, at
 		}
 		start, err := s.value()
 		if err != nil {
-			return value
+			return value, at
 		}
 		if plainEqual(raw, escaped, name) {
-			value = s.data[start:s.pos:s.pos]
+			value, at = s.data[start:s.pos:s.pos], start
 		}
 		s.space()
 		if s.peek() != ',' {
-			return value
+			return value, at
 		}
 	}
 }

@@ -335,6 +335,6 @@ func TestOneBadCallFailsAlone(t *testing.T) {
 	c.send(`{"jsonrpc":"2.0","id":2,"method":"functions/answerMany","params":{"calls":[]}}`)
 	c.want(`{"jsonrpc":"2.0","id":2,"result":[]}`)
 	c.send(`{"jsonrpc":"2.0","id":3,"method":"functions/answerMany","params":{"calls":[%s],"book":"Trips.xlsx"}}`, good)
-	c.wantPart(`"id":3`, `-32602`, `"book is \"Trips.xlsx\", and no book of that name is open; open it first, or leave book out."`, `"pointer":"/book"`)
+	c.wantPart(`"id":3`, `-32602`, `"book is \"Trips.xlsx\", and no book of that name is open; open its sheets with sheets/didOpen first, or leave book out."`, `"pointer":"/book"`)
 	c.leave()
 }

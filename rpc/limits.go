@@ -12,6 +12,8 @@ type Limits struct {
 	HeaderBytes  int           // length of one message's header
 	Depth        int           // nesting of a message, its own braces counted
 	SampleValues int           // numbers in one list
+	OpenSheets   int           // sheets open at once
+	OpenCells    int           // cells that they hold together, the blanks between them counted
 	Queue        int           // long calls waiting for a worker
 	QueueBytes   int           // params of the long calls waiting, together
 	Workers      int           // long calls running at once
@@ -27,6 +29,8 @@ func DefaultLimits() Limits {
 		HeaderBytes:  16 << 10,
 		Depth:        128,
 		SampleValues: 10_000_000,
+		OpenSheets:   256,
+		OpenCells:    50_000_000,
 		Queue:        1024,
 		QueueBytes:   256 << 20,
 		Workers:      runtime.NumCPU(),
@@ -39,7 +43,7 @@ func DefaultLimits() Limits {
 func (l Limits) withDefaults() Limits {
 	d := DefaultLimits()
 	for _, f := range []struct{ field, standard *int }{
-		{&l.MessageBytes, &d.MessageBytes}, {&l.HeaderBytes, &d.HeaderBytes}, {&l.Depth, &d.Depth}, {&l.SampleValues, &d.SampleValues}, {&l.Queue, &d.Queue},
+		{&l.MessageBytes, &d.MessageBytes}, {&l.HeaderBytes, &d.HeaderBytes}, {&l.Depth, &d.Depth}, {&l.SampleValues, &d.SampleValues}, {&l.OpenSheets, &d.OpenSheets}, {&l.OpenCells, &d.OpenCells}, {&l.Queue, &d.Queue},
 		{&l.QueueBytes, &d.QueueBytes}, {&l.Workers, &d.Workers}, {&l.UnsentBytes, &d.UnsentBytes},
 	} {
 		if *f.field <= 0 {

@@ -32,12 +32,16 @@ type Faulty struct{ Value }
 var (
 	faultyType  = reflect.TypeFor[Faulty]()
 	valueType   = reflect.TypeFor[Value]()
+	cellsType   = reflect.TypeFor[cellBlocks]()
 	numbersType = reflect.TypeFor[[]float64]()
 )
 
 // fill stores v, which came under the name given, as an element from 1 on or as
 // the whole (0).
 func fill(target reflect.Value, v Value, name string, element int) error {
+	if target.Type() == cellsType {
+		return nil // read apart, by readCells
+	}
 	if target.Type() == faultyType {
 		target.Set(reflect.ValueOf(Faulty{v}))
 		return nil
@@ -109,6 +113,8 @@ func wanted(t reflect.Type) string {
 	switch {
 	case t == numbersType:
 		return Numbers.String()
+	case t == cellsType:
+		return "a list of blocks of cells"
 	case t.Kind() == reflect.Pointer:
 		return wanted(t.Elem())
 	case t.Kind() == reflect.String:

@@ -25,12 +25,13 @@ func (p *pool) add(call *Call) bool {
 	if !idle && (p.waiting.Len() >= p.limits.Queue || p.waiting.Len() > 0 && p.bytes+call.size > p.limits.QueueBytes) {
 		return false
 	}
+	if idle { // then nothing waits
+		p.workers++
+		go p.work(call)
+		return true
+	}
 	call.place = p.waiting.PushBack(call)
 	p.bytes += call.size
-	if idle {
-		p.workers++
-		go p.work()
-	}
 	return true
 }
 
@@ -53,7 +54,7 @@ func (p *pool) take() *Call {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	front := p.waiting.Front()
-	if front == nil {
+	if front == nil || p.workers > p.limits.Workers {
 		p.workers--
 		return nil
 	}
@@ -62,15 +63,30 @@ func (p *pool) take() *Call {
 	return call
 }
 
-func (p *pool) work() {
-	for call := p.take(); call != nil; call = p.take() {
-		result, err := call.guard(func() (any, error) { return call.run(call.ctx) })
-		if rest, ok := result.(later); ok && err == nil {
-			result, err = call.guard(func() (any, error) { return rest(call.ctx) })
-		}
-		if err == nil && context.Cause(call.ctx) != nil {
-			err = errCancelled // what was worked out after a cancel counts for nothing
-		}
-		call.answer(result, err, false)
+// work runs a call and then what waits.
+func (p *pool) work(call *Call) {
+	for ; call != nil; call = p.take() {
+		call.finish()
 	}
+}
+
+// begun takes up a worker for a call whose work goes on already, also where
+// that makes one too many.
+func (p *pool) begun(call *Call) {
+	p.mu.Lock()
+	p.workers++
+	p.mu.Unlock()
+	go p.work(call)
+}
+
+// finish runs what a call has left, and answers it.
+func (c *Call) finish() {
+	result, err := c.guard(func() (any, error) { return c.run(c.ctx) })
+	if rest, ok := result.(later); ok && err == nil {
+		result, err = c.guard(func() (any, error) { return rest(c.ctx) })
+	}
+	if err == nil && context.Cause(c.ctx) != nil {
+		err = errCancelled // what was worked out after a cancel counts for nothing
+	}
+	c.answer(result, err, false)
 }

@@ -17,6 +17,7 @@ type Options struct {
 
 	lookEvery  time.Duration    // between looks at the client's process
 	waitInTurn time.Duration    // 0: the constant of that name
+	settle     time.Duration    // 0: the constant of that name
 	ready      func() bool      // for the writer; nil: found out from out
 	began      func(s *Session) // lets a test look on
 }
@@ -37,6 +38,9 @@ func Serve(ctx context.Context, in io.Reader, out, errw io.Writer, opts Options)
 	}
 	if opts.waitInTurn <= 0 {
 		opts.waitInTurn = waitInTurn
+	}
+	if opts.settle <= 0 {
+		opts.settle = settle
 	}
 	if opts.ready == nil {
 		opts.ready = writableNow(out)

@@ -26,6 +26,7 @@ type Session struct {
 	remarks *remarks
 	conn    *jsonrpc2.Conn
 	books   books
+	live    map[string]*liveBook
 	slow    map[string]bool // kinds of work that took too long in turn
 	ctx     context.Context // ends when the session does
 	stop    context.CancelFunc
@@ -64,7 +65,7 @@ func newSession(ctx context.Context, out *frameWriter, remarks *remarks, opts Op
 	s := &Session{
 		options: opts, limits: opts.Limits, writer: out, remarks: remarks,
 		methods: map[string]*Method{}, encoding: "utf-16", trace: "off", ended: make(chan struct{}),
-		slow: map[string]bool{}, calls: map[*Call]struct{}{}, byKey: map[string]*Call{},
+		slow: map[string]bool{}, live: map[string]*liveBook{}, calls: map[*Call]struct{}{}, byKey: map[string]*Call{},
 	}
 	s.settled = sync.NewCond(&s.mu)
 	s.ctx, s.stop = context.WithCancel(ctx)
@@ -162,15 +163,18 @@ func (s *Session) byName(call *Call, method *Method) (any, error) {
 
 // start runs a request in turn, or as far as its handler wants and the rest by a worker.
 func (s *Session) start(call *Call, method *Method) {
-	run := later(func(ctx context.Context) (any, error) { return s.byName(call, method) })
+	run, begun := later(func(ctx context.Context) (any, error) { return s.byName(call, method) }), false
 	if !method.Long {
 		result, err := call.guard(func() (any, error) { return run(s.ctx) })
-		rest, ok := result.(later)
-		if !ok || err != nil {
+		switch rest := result.(type) {
+		case later:
+			run = rest
+		case ongoing:
+			run, begun = later(rest), true
+		default:
 			call.answer(result, err, true)
 			return
 		}
-		run = rest
 	}
 	s.mu.Lock()
 	if s.phase == over { // ended by another goroutine meanwhile, which will not see this call
@@ -186,7 +190,9 @@ func (s *Session) start(call *Call, method *Method) {
 	}
 	s.unsent++
 	s.mu.Unlock()
-	if !s.pool.add(call) {
+	if begun {
+		s.pool.begun(call)
+	} else if !s.pool.add(call) {
 		call.answer(nil, &Error{Code: CodeServerCancelled, Message: fmt.Sprintf("%d long calls are waiting already; send this one again when some have been answered.", s.limits.Queue)}, true)
 	}
 }

@@ -9,11 +9,16 @@ import (
 // waitInTurn is how long messages wait for an answer that should be quick.
 const waitInTurn = 50 * time.Millisecond
 
+// ongoing is the rest of a call whose work has begun in turn and goes on by
+// itself: it waits for no worker.
+type ongoing later
+
 // soon does quick work in turn. Work that turns out long, as for an argument at
-// the end of its domain, goes on by itself, and a worker waits for its end: no
-// argument keeps the server from reading on. It costs some 20 microseconds more
-// than to do the work outright. While as many are going on as there are workers,
-// work of a kind that was long once is left to a worker.
+// the end of its domain, or on a machine with too much to do, goes on by itself
+// and answers when it has come to its end: no argument keeps the server from
+// reading on. It costs some 20 microseconds more than to do the work outright.
+// While as many are going on as there are workers, work of a kind that was long
+// once is left to a worker.
 func (c *Call) soon(kind string, work func(ctx context.Context) (any, error)) (any, error) {
 	s := c.Session
 	if s.slow[kind] && int(s.runaways.Load()) >= s.limits.Workers {
@@ -48,12 +53,12 @@ func (c *Call) soon(kind string, work func(ctx context.Context) (any, error)) (a
 	}
 	s.slow[kind] = true
 	c.abandon = cancel
-	return Later(func(ctx context.Context) (any, error) {
+	return ongoing(func(ctx context.Context) (any, error) {
 		select {
 		case a := <-done:
 			return a.result, a.err
 		case <-ctx.Done():
 			return nil, ctx.Err()
 		}
-	})
+	}), nil
 }

@@ -1,0 +1,183 @@
+package rpc
+
+import (
+	"context"
+	"fmt"
+	"runtime/debug"
+	"slices"
+	"sync"
+	"time"
+
+	"halfwidth/workbook/calculation"
+)
+
+// settle is how long a book must stay as it is before it is worked out, so that
+// a burst of changes is worked out once.
+const settle = 15 * time.Millisecond
+
+// liveBook works out a book whose sheets are open, and tells the client what a
+// change altered. It works on the newest state alone: a change stops what is
+// under way for an older one.
+type liveBook struct {
+	session *Session
+	name    string
+	held    *bookState // the newest; of the goroutine that reads messages
+
+	mu      sync.Mutex
+	state   *bookState // the newest to be worked out; nil: none
+	running bool
+	stop    context.CancelFunc // of what is under way
+
+	// Of the run that goes on, one at a time:
+	results *calculation.Results // of what was published last
+	told    told
+}
+
+func newLiveBook(s *Session, name string) *liveBook {
+	return &liveBook{session: s, name: name, told: newTold()}
+}
+
+// changed makes a state the newest. One of which a sheet is lost, or without
+// sheets, is not worked out.
+func (b *liveBook) changed(state *bookState) {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	if len(state.sheets) == 0 || slices.ContainsFunc(state.sheets, func(s *heldSheet) bool { return s.lost != nil }) {
+		state = nil
+	}
+	b.state = state
+	if b.stop != nil {
+		b.stop()
+	}
+	if state != nil && !b.running {
+		b.running = true
+		b.session.Go("sheets/publishResults", b.run)
+	}
+}
+
+// run works out states until the newest has been published.
+func (b *liveBook) run(ctx context.Context) {
+	for {
+		b.mu.Lock()
+		state := b.state
+		if state == nil || ctx.Err() != nil {
+			b.running, b.stop = false, nil
+			b.mu.Unlock()
+			return
+		}
+		newest, stop := context.WithCancel(ctx)
+		b.stop = stop
+		b.mu.Unlock()
+
+		results, plan, err := b.workOut(newest, state)
+		b.mu.Lock()
+		if b.state == state { // else a newer one has come
+			b.state = nil
+			switch {
+			case err == nil && results != nil:
+				b.publish(state, results, plan)
+			case err != nil && ctx.Err() == nil:
+				b.session.remarks.say("the book %s cannot be worked out: %v", quoted(b.name), err)
+				b.session.LogMessage(LogError, fmt.Sprintf("The book %s cannot be worked out: %v", quoted(b.name), err))
+			}
+		}
+		b.mu.Unlock()
+		stop()
+	}
+}
+
+// workOut works a state out once it has settled. The results are nil where
+// there is nothing to tell.
+func (b *liveBook) workOut(ctx context.Context, state *bookState) (results *calculation.Results, plan *calculation.Plan, err error) {
+	defer func() {
+		if fault := recover(); fault != nil {
+			b.session.remarks.trace(fmt.Sprintf("fault in working out a book: %v", fault), debug.Stack())
+			err = fmt.Errorf("%s", internalFault)
+		}
+	}()
+	timer := time.NewTimer(b.session.options.settle)
+	defer timer.Stop()
+	select {
+	case <-ctx.Done():
+		return nil, nil, ctx.Err()
+	case <-timer.C:
+	}
+	source, fault := state.source()
+	if fault != nil {
+		return nil, nil, fault
+	}
+	plan, err = calculation.NewPlan(ctx, source, calculation.Options{MayReplace: b.told.ownTable})
+	if err != nil || len(plan.Sheets) == 0 && b.results == nil {
+		return nil, nil, err
+	}
+	results, err = plan.RunAfter(ctx, max(1, b.session.limits.Workers/2), b.results)
+	return results, plan, err
+}
+
+// publish tells the client what the results of a state altered. It is called
+// with the lock held, so that no later state has come.
+func (b *liveBook) publish(state *bookState, results *calculation.Results, plan *calculation.Plan) {
+	p := publication{Book: b.name, Versions: map[string]int{}}
+	for _, s := range state.sheets {
+		p.Versions[s.name] = s.version
+	}
+	b.told.fill(&p, results, plan)
+	b.results = results
+	b.session.notifyOpen(publishMethod, p)
+}
+
+const publishMethod = "sheets/publishResults"
+
+// publication is the params of sheets/publishResults.
+type publication struct {
+	Book     string           `json:"book" doc:"the book"`
+	Versions map[string]int   `json:"versions" doc:"the version of each of its sheets that the results were worked out from"`
+	Cells    []publishedCell  `json:"cells" doc:"the result cells that have altered; null empties a cell"`
+	Rows     []publishedRow   `json:"rows" doc:"the calculations whose status or findings have altered"`
+	Tables   []publishedTable `json:"tables,omitempty" doc:"the sheets that results form and that have altered, whole"`
+	Findings *[]rowFinding    `json:"findings,omitempty" doc:"what was found about the layout of the calculation sheets, all of it, where that has altered"`
+}
+
+type publishedCell struct {
+	Sheet string `json:"sheet"`
+	Cell  string `json:"cell"`
+	Value any    `json:"value"`
+}
+
+type publishedRow struct {
+	Sheet    string       `json:"sheet"`
+	Row      int          `json:"row"`
+	Function string       `json:"function,omitempty"`
+	Label    string       `json:"label,omitempty"`
+	Status   string       `json:"status,omitempty"` // absent: there is no calculation in that row any more
+	Findings []rowFinding `json:"findings"`
+}
+
+type rowFinding struct {
+	Sheet    string   `json:"sheet,omitempty"` // the calculation sheet, of a finding about a layout
+	Code     string   `json:"code"`
+	Severity string   `json:"severity"`
+	Input    string   `json:"input,omitempty"`
+	Message  string   `json:"message"`
+	Cell     string   `json:"cell"`            // of the calculation sheet
+	Cells    []string `json:"cells,omitempty"` // where it came from
+}
+
+type publishedTable struct {
+	Sheet   string   `json:"sheet"`
+	Header  []string `json:"header"`
+	Rows    [][]any  `json:"rows"`
+	Refused string   `json:"refused,omitempty"`
+}
+
+func findingOf(d calculation.Diagnostic) rowFinding {
+	return rowFinding{"", d.Code, d.Severity.String(), d.Input, d.Message, d.Cell.String(), d.Cells}
+}
+
+// wireCell gives what stands in a result cell as JSON.
+func wireCell(value any) any {
+	if x, ok := value.(float64); ok {
+		return shortNumber(x)
+	}
+	return value
+}
