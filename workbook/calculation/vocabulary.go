@@ -92,36 +92,29 @@ func within(a, b string, edits int) bool {
 // data.
 var options = sync.OnceValue(func() []string {
 	var names []string
+	data := map[string]bool{} // inputs that are data to some function
 	for _, f := range funcs.All() {
-		for _, in := range f.Inputs {
-			if !slices.Contains(names, in.Name) && isOption(in.Name) {
+		for i := range f.Inputs {
+			in := &f.Inputs[i]
+			if _, met := data[in.Name]; !met {
 				names = append(names, in.Name)
 			}
+			data[in.Name] = data[in.Name] || !mayBeSet(in)
 		}
 	}
+	names = slices.DeleteFunc(names, func(name string) bool { return data[name] })
 	return append(names, decimalMark)
 })
 
 // decimalMark is the option that is no input: how text files write numbers.
 const decimalMark = "decimal-mark"
 
-func isOption(name string) bool {
-	known := false
-	for _, f := range funcs.All() {
-		in, ok := f.Input(name)
-		if !ok {
-			continue
-		}
-		known = true
-		switch in.Kind {
-		case funcs.Level, funcs.Choice, funcs.YesNo:
-		case funcs.Number, funcs.Count, funcs.Numbers:
-			if in.Default == nil {
-				return false
-			}
-		default:
-			return false
-		}
+func mayBeSet(in *funcs.Input) bool {
+	switch in.Kind {
+	case funcs.Level, funcs.Choice, funcs.YesNo:
+		return true
+	case funcs.Number, funcs.Count, funcs.Numbers:
+		return in.Default != nil
 	}
-	return known
+	return false
 }
