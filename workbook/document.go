@@ -41,6 +41,7 @@ func open(ctx context.Context, path string, o Options) (document, *calculation.P
 		return nil, nil, err
 	}
 	options := d.planOptions()
+	options.Progress = o.Progress
 	options.Sheets, options.KeepValues = o.Sheets, o.KeepValues
 	plan, err := calculation.NewPlan(ctx, d.source(), options)
 	if err == nil {

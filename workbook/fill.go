@@ -28,6 +28,10 @@ type Options struct {
 	Replace bool   // write over an output that was changed since
 
 	MakeFolders bool // make the folder to write to where it is not there
+
+	// Progress is told how many rows are worked out, by several goroutines at
+	// once. It may be nil.
+	Progress func(done, total int)
 }
 
 // Report is what working out one workbook gave.

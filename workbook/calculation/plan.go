@@ -27,6 +27,9 @@ type Options struct {
 	// NoTables says why no table sheet can be added, as to a text file, and what
 	// to do instead, without a full stop; empty where they can.
 	NoTables string
+	// Progress is told by a run how many of its rows are worked out, by several
+	// goroutines at once. It may be nil.
+	Progress func(done, total int)
 }
 
 // Plan is the calculation sheets of a book, read and resolved: blocks, rows,

@@ -4,6 +4,7 @@ import (
 	"context"
 	"reflect"
 	"slices"
+	"sync/atomic"
 )
 
 // RunAfter is Run where an earlier state of the book has been worked out: a row
@@ -15,11 +16,18 @@ func (p *Plan) RunAfter(ctx context.Context, workers int, before *Results) (*Res
 	done := make([]*RowResult, len(p.Rows))
 	look := func(c resultCell) (Cell, *fault) { return resultOf(done[c.row.order], c) }
 	earlier := newEarlier(before)
+	var worked atomic.Int64
+	tell := func() {
+		if p.options.Progress != nil {
+			p.options.Progress(int(worked.Add(1)), len(p.Rows))
+		}
+	}
 	for _, level := range p.levels() {
 		var anew []*Row
 		for _, r := range level {
 			if old := earlier.keeps(r, look); old != nil {
 				done[r.order] = old.movedTo(r)
+				tell()
 			} else {
 				anew = append(anew, r)
 			}
@@ -27,6 +35,7 @@ func (p *Plan) RunAfter(ctx context.Context, workers int, before *Results) (*Res
 		err := inParallel(ctx, workers, len(anew), func(i int) error {
 			result, err := p.work(ctx, anew[i], look)
 			done[anew[i].order] = result
+			tell()
 			return err
 		})
 		if err != nil {

@@ -6,6 +6,7 @@ import (
 	"math/rand/v2"
 	"reflect"
 	"slices"
+	"sync/atomic"
 	"testing"
 )
 
@@ -179,5 +180,31 @@ func sameResults(t *testing.T, got, want *Results) {
 			}
 		}
 		t.Fatalf("%d rows, want %d", len(a), len(b))
+	}
+}
+
+func TestProgressCountsEveryRow(t *testing.T) {
+	b := newLiveBook()
+	var told [7]atomic.Int64
+	plan, err := NewPlan(context.Background(), b.source(), Options{Progress: func(done, total int) {
+		if total != 6 {
+			t.Errorf("%d rows in all, want 6", total)
+		}
+		told[done].Add(1)
+	}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	results, err := plan.Run(context.Background(), 3)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := plan.RunAfter(context.Background(), 3, results); err != nil { // rows that are kept count too
+		t.Fatal(err)
+	}
+	for done := 1; done <= 6; done++ {
+		if n := told[done].Load(); n != 2 {
+			t.Errorf("%d rows were told %d times, want once a run", done, n)
+		}
 	}
 }
