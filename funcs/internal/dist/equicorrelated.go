@@ -168,6 +168,8 @@ func (d MaxT) numerator(w float64, upper bool) float64 {
 	}
 	total := 0.0
 	switch {
+	case step < gradedBelow:
+		total = d.graded(f, w, steepest, most)
 	case d.TwoSided && upper:
 		// Largest about y = l w, the likeliest Y when one X is beyond w.
 		total = evenIntegral(f, steepest*w, step)
@@ -179,6 +181,34 @@ func (d MaxT) numerator(w float64, upper bool) float64 {
 		total = outwards(f, d.likeliestShift(w), 0, 0, step)
 	}
 	return min(1, total/math.Sqrt(2*math.Pi))
+}
+
+// gradedBelow is the step of the trapezoidal rule below which graded panels take
+// fewer nodes.
+const gradedBelow = 0.03
+
+// graded integrates f where numerators of many values are all but the common Y:
+// then f changes within 1/most about y = -l w, and gently elsewhere. Panels of 16
+// points are narrow there and grow with the distance, less where many numerators
+// of one l make the change sharper.
+func (d MaxT) graded(f func(float64) float64, w, steepest, most float64) float64 {
+	sharp := math.Sqrt(1 + float64(2*num.Log(d.count())))
+	centre, narrow := -steepest*w, 2/(most*sharp)
+	zone, growth := (sharp+6)/most, min(0.5, 2/float64(sharp*sharp))
+	side := func(sign, end float64) float64 {
+		sum := 0.0
+		for at := 0.0; at < end; {
+			y := centre + float64(sign*at)
+			width := min(narrow+float64(growth*max(0, at-zone)), 8/(4+math.Abs(y)), end-at)
+			sum += gauss16(func(x float64) float64 { return f(centre + float64(sign*x)) }, at, at+width)
+			at += width
+		}
+		return sum
+	}
+	if d.TwoSided { // f is even: the transition below 0, and from 0 to it
+		return 2 * (side(-1, 10) + side(1, -centre))
+	}
+	return side(-1, max(centre, 0)+10) + side(1, max(-centre, 0)+10)
 }
 
 // logAllBelow is log of P(all X <= w | Y = y), or of all sizes.

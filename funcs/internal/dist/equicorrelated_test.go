@@ -88,6 +88,52 @@ func TestMaxTOfTwoIsOwensT(t *testing.T) {
 	}
 }
 
+// Groups of very many times the control's values, where one numerator is nearly
+// another: Owen's T as above, and both ways of integrating agree where they meet.
+func TestMaxTOfGroupsFarLargerThanTheControl(t *testing.T) {
+	rng := rand.New(rand.NewPCG(10, 4))
+	for range 60 {
+		a, b := 200+int(math.Exp(30*rng.Float64())), 200+int(math.Exp(30*rng.Float64()))
+		d := ComparisonsWithControl(1, []int{a, b}, math.Inf(1), false)
+		p, q := float64(a), float64(b)
+		r := math.Sqrt(p/(p+1)) * math.Sqrt(q/(q+1))
+		lack := (1/(p+1) + 1/(q+1) - 1/((p+1)*(q+1))) / (1 + r) // 1 - r without cancellation
+		w := 3 * rng.Float64()
+		both := Normal{}.SF(w) - 2*OwensT(w, math.Sqrt(lack/(1+r)))
+		what := fmt.Sprint(a, b, w)
+		wantDigits(t, what, d.SF(w), 2*Normal{}.SF(w)-both, 1e-12)
+		wantDigits(t, what, d.CDF(w)+d.SF(w), 1, 1e-13)
+		two := ComparisonsWithControl(1, []int{a, b}, math.Inf(1), true)
+		wantDigits(t, what, two.CDF(w)+two.SF(w), 1, 1e-13)
+		far := 10 + 20*rng.Float64() // here both beyond is both beyond on one side
+		both = Normal{}.SF(far) - 2*OwensT(far, math.Sqrt(lack/(1+r)))
+		if tail := 2*(Normal{}).SF(far) - both; tail > 1e-290 {
+			wantDigits(t, fmt.Sprint(a, b, far), two.SF(far), 2*tail, 1e-11)
+		}
+	}
+	d := ComparisonsWithControl(1, []int{150, 260, 400, 400, 3, 90}, 60, false)
+	f := func(upper bool, w float64) (float64, float64) {
+		steepest, most := 0.0, 0.0
+		for _, p := range d.parts {
+			steepest, most = max(steepest, p.shift/p.stretch), max(most, p.shift)
+		}
+		f := func(y float64) float64 {
+			all := d.logAllBelow(w, y)
+			if upper {
+				return math.Exp(-y*y/2) * -math.Expm1(all)
+			}
+			return math.Exp(all - y*y/2)
+		}
+		return d.graded(f, w, steepest, most), outwards(f, 0, -w-1, w+1, 0.02)
+	}
+	for _, w := range []float64{0.3, 1.5, 2.4, 5} {
+		for _, upper := range []bool{false, true} {
+			graded, even := f(upper, w)
+			wantDigits(t, fmt.Sprint(w, upper), graded, even, 1e-12)
+		}
+	}
+}
+
 func TestMaxTTailsAndQuantilesAgree(t *testing.T) {
 	rng := rand.New(rand.NewPCG(10, 3))
 	for i := range 60 {
