@@ -37,6 +37,7 @@ type Options struct {
 // Report is what working out one workbook gave.
 type Report struct {
 	Book    string
+	Notes   []string // what should be known of the file as a whole, such as a protected sheet
 	Plan    *calculation.Plan
 	Results *calculation.Results // nil for a preview
 	Saved   ooxml.Saved          // Path is empty where nothing was written
@@ -79,7 +80,7 @@ func Preview(ctx context.Context, path string, o Options) (*Report, error) {
 	if err := plan.Count(ctx, o.workers()); err != nil {
 		return nil, err
 	}
-	return &Report{Book: path, Plan: plan}, nil
+	return &Report{Book: path, Notes: d.notes(plan), Plan: plan}, nil
 }
 
 // Fill works out the calculation sheets of a workbook and writes the results
@@ -94,6 +95,11 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 		return nil, err
 	}
 	defer d.Close()
+	if o.InPlace {
+		if err := d.mayFillInPlace(); err != nil {
+			return nil, err
+		}
+	}
 	results, err := plan.Run(ctx, o.workers())
 	if err != nil {
 		return nil, err
@@ -105,10 +111,10 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 	if err != nil {
 		return nil, err
 	}
-	report := &Report{Book: path, Plan: plan, Results: results}
+	report := &Report{Book: path, Notes: d.notes(plan), Plan: plan, Results: results}
 	if o.InPlace {
-		if lock, found := ooxml.LockFile(path); found {
-			return nil, fmt.Errorf("%s is open in another program (%s is there); close it there first, or fill into another file", path, filepath.Base(lock))
+		if err := notLocked(path); err != nil { // it may have been opened since
+			return nil, err
 		}
 		report.Saved, err = changes.saveInPlace()
 		return report, err

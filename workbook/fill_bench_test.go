@@ -16,9 +16,9 @@ import (
 	"github.com/xuri/excelize/v2"
 )
 
-// bigBook writes a book of so many rows and columns, half of them numbers, with
-// a calculation sheet of two questions.
-func bigBook(b *testing.B, rows, cols int) string {
+// bookOf writes a book of so many rows and columns, half of them numbers, with a
+// calculation sheet of one question for each expression.
+func bookOf(b *testing.B, path string, rows, cols int, samples ...string) {
 	b.Helper()
 	f := excelize.NewFile()
 	defer f.Close()
@@ -51,21 +51,20 @@ func bigBook(b *testing.B, rows, cols int) string {
 	check(w.Flush())
 	_, err = f.NewSheet("Calculations")
 	check(err)
-	for i, line := range [][]any{
-		{"work out", "sample", "> mean", "> lower", "> upper", "> status"},
-		{"mean-interval", "minutes in Trips"},
-		{"mean-interval", "minutes in Trips where depot = North"},
-	} {
-		check(f.SetSheetRow("Calculations", fmt.Sprintf("A%d", i+1), &line))
+	check(f.SetSheetRow("Calculations", "A1", &[]any{"work out", "sample", "> mean", "> lower", "> upper", "> status"}))
+	for i, sample := range samples {
+		check(f.SetSheetRow("Calculations", fmt.Sprintf("A%d", i+2), &[]any{"mean-interval", sample}))
 	}
-	path := filepath.Join(b.TempDir(), "big.xlsx")
 	check(f.SaveAs(path))
-	return path
 }
 
-// inflateOnly reads the data sheet to its end and does nothing with it: the
-// floor that a fill is measured against.
-func inflateOnly(b *testing.B, path string) {
+// fiveSamples are the questions of a usual book.
+var fiveSamples = []string{"minutes in Trips", "minutes in Trips where depot = North", "minutes in Trips where depot = Quay",
+	"minutes in Trips where depot = Mill", "minutes in Trips where depot = Fell"}
+
+// inflateOnly reads the parts whose names end so to their end and does nothing
+// with them: the floor that a fill is measured against.
+func inflateOnly(b *testing.B, path, end string) {
 	in, err := zip.OpenReader(path)
 	if err != nil {
 		b.Fatal(err)
@@ -73,7 +72,7 @@ func inflateOnly(b *testing.B, path string) {
 	defer in.Close()
 	in.RegisterDecompressor(zip.Deflate, func(r io.Reader) io.ReadCloser { return flate.NewReader(r) })
 	for _, f := range in.File {
-		if !strings.HasSuffix(f.Name, "worksheets/sheet1.xml") {
+		if !strings.HasSuffix(f.Name, end) {
 			continue
 		}
 		r, err := f.Open()
@@ -87,21 +86,52 @@ func inflateOnly(b *testing.B, path string) {
 	}
 }
 
-// BenchmarkFill100k compares a fill of 100,000 rows by 10 columns with inflating
-// its data sheet alone, both on one core; see the metric times-inflate.
-func BenchmarkFill100k(b *testing.B) {
+// fillAgainstInflate compares fills of the books, on one core, with inflating
+// the parts whose names end so; see the metric times-inflate.
+func fillAgainstInflate(b *testing.B, end string, paths ...string) {
 	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(1))
-	path := bigBook(b, 100_000, 10)
 	const floors = 5
 	start := time.Now()
 	for range floors {
-		inflateOnly(b, path)
+		for _, path := range paths {
+			inflateOnly(b, path, end)
+		}
 	}
 	floor := time.Since(start) / floors
+	b.ReportAllocs()
 	for b.Loop() {
-		if _, err := Fill(context.Background(), path, Options{Replace: true}); err != nil {
-			b.Fatal(err)
+		for _, path := range paths {
+			if _, err := Fill(context.Background(), path, Options{Replace: true}); err != nil {
+				b.Fatal(err)
+			}
 		}
 	}
 	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(floor), "times-inflate")
+}
+
+// BenchmarkFill100k fills a book of 100,000 rows by 10 columns.
+func BenchmarkFill100k(b *testing.B) {
+	path := filepath.Join(b.TempDir(), "big.xlsx")
+	bookOf(b, path, 100_000, 10, fiveSamples[:2]...)
+	fillAgainstInflate(b, "worksheets/sheet1.xml", path)
+}
+
+// BenchmarkFill5000 fills a book of 5,000 rows by 6 columns.
+func BenchmarkFill5000(b *testing.B) {
+	path := filepath.Join(b.TempDir(), "book.xlsx")
+	bookOf(b, path, 5_000, 6, fiveSamples...)
+	fillAgainstInflate(b, "worksheets/sheet1.xml", path)
+}
+
+// BenchmarkFillSmallBooks fills 40 books of 40 rows by 3 columns. What counts
+// here is opening and saving, so that all parts are the floor.
+func BenchmarkFillSmallBooks(b *testing.B) {
+	dir := b.TempDir()
+	var paths []string
+	for i := range 40 {
+		path := filepath.Join(dir, fmt.Sprintf("book-%02d.xlsx", i))
+		bookOf(b, path, 40, 3, fiveSamples...)
+		paths = append(paths, path)
+	}
+	fillAgainstInflate(b, "", paths...)
 }

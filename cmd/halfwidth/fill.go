@@ -1,7 +1,6 @@
 package main
 
 import (
-	"errors"
 	"fmt"
 	"io"
 	"strings"
@@ -17,6 +16,8 @@ import (
 // bookFlags are the flags of the verbs that read workbooks.
 type bookFlags struct {
 	format *string
+	shard  string
+	quiet  bool
 	o      workbook.Options
 }
 
@@ -24,16 +25,18 @@ func addBookFlags(c *cobra.Command) *bookFlags {
 	f := &bookFlags{format: formatFlag(c)}
 	c.Flags().StringSliceVar(&f.o.Sheets, "sheet", nil, "a calculation sheet besides those named Calculations or marked in A1")
 	c.Flags().StringSliceVar(&f.o.Data, "data", nil, "a folder, besides the workbook's own, in which files named in expressions may lie")
-	c.Flags().IntVar(&f.o.Workers, "jobs", 0, "how many rows to work out at once (default: as many as there are cores)")
+	c.Flags().IntVar(&f.o.Workers, "jobs", 0, "how many books, and rows of one book, to work out at once (default: as many as there are cores)")
+	c.Flags().StringVar(&f.shard, "shard", "", "work on part `K/N` of the books only, such as 1/3; each is in one part, by its path")
+	c.Flags().BoolVar(&f.quiet, "quiet", false, "show no progress bar on a terminal")
 	return f
 }
 
 func fillCommand() *cobra.Command {
 	c := &cobra.Command{
-		Use:   "fill BOOK.xlsx…",
+		Use:   "fill BOOK.xlsx|FOLDER…",
 		Short: "Work out the calculation sheets and write the results beside the questions",
 		Long: "fill works out every calculation sheet of a workbook and writes the results into its result columns, as plain values.\n" +
-			"It writes BOOK-filled.xlsx beside the workbook, which itself stays as it is.",
+			"It writes BOOK-filled.xlsx beside the workbook, which itself stays as it is.\n" + aboutBatches,
 		Example: "  halfwidth fill testdata/workbooks/larkmoor.xlsx",
 		Args:    someBooks,
 	}
@@ -41,14 +44,15 @@ func fillCommand() *cobra.Command {
 	c.Flags().StringVarP(&f.o.Output, "output", "o", "", "the file, or the folder, to write to")
 	c.Flags().BoolVar(&f.o.InPlace, "in-place", false, "write into the workbook itself")
 	c.Flags().BoolVar(&f.o.Replace, "replace", false, "write over an output that was changed since it was filled")
-	c.RunE = func(c *cobra.Command, books []string) error {
-		if len(books) > 1 && f.o.Output != "" && !isFolder(f.o.Output) {
-			return usageError{fmt.Errorf("--output %s is one file, but there are %d workbooks; name a folder that is there", f.o.Output, len(books))}
-		}
-		return eachBook(c, f, books, func(path string) (*workbook.Report, error) { return workbook.Fill(c.Context(), path, f.o) }, printFilled, filledTable)
-	}
+	verb := bookVerb{done: "Filled", work: workbook.Fill, print: printFilled, tabulate: filledTable, sum: sumFilled}
+	c.RunE = func(c *cobra.Command, words []string) error { return eachBook(c, f, words, verb) }
 	return c
 }
+
+// aboutBatches is the part of the help on several books.
+const aboutBatches = "\nFolders are searched to their depth for .xlsx, .xlsm and *.calculations.csv or .tsv. Of several books, one that fails does not\n" +
+	"stop the rest, and one table sums up. The exit status is 0 where all rows are ok or caution, 1 where a row is refused or some\n" +
+	"book failed, 2 where all failed or none was found, 130 or 143 where an interrupt ended it."
 
 // someBooks asks for at least one workbook.
 func someBooks(c *cobra.Command, args []string) error {
@@ -56,55 +60,6 @@ func someBooks(c *cobra.Command, args []string) error {
 		return usageError{fmt.Errorf("no workbook named; write: %s", strings.TrimSpace(c.Example))}
 	}
 	return nil
-}
-
-// eachBook works on one workbook after the other. A book that fails does not
-// stop the rest.
-func eachBook(c *cobra.Command, f *bookFlags, books []string, work func(string) (*workbook.Report, error),
-	print func(io.Writer, *workbook.Report) error, tabulate func(*texttab.Table, *workbook.Report)) error {
-	format, err := formatOf(*f.format)
-	if err != nil {
-		return err
-	}
-	var failed []error
-	refused := false
-	all := newLongTable()
-	for _, path := range books {
-		report, err := work(path)
-		if err != nil {
-			failed = append(failed, named(path, err))
-			continue
-		}
-		refused = refused || report.Counts()[funcs.StatusRefused] > 0
-		if format == texttab.Text {
-			err = print(c.OutOrStdout(), report)
-		} else {
-			tabulate(all, report)
-		}
-		if err != nil {
-			return err
-		}
-	}
-	if format != texttab.Text {
-		if err := all.Write(c.OutOrStdout(), format); err != nil {
-			return err
-		}
-	}
-	switch {
-	case len(failed) > 0:
-		return errors.Join(failed...)
-	case refused:
-		return errRefused
-	}
-	return nil
-}
-
-// named puts the workbook's path before an error that does not name it.
-func named(path string, err error) error {
-	if strings.Contains(err.Error(), path) || errors.Is(err, workbook.ErrNoWork) {
-		return err
-	}
-	return fmt.Errorf("%s: %w", path, err)
 }
 
 // newLongTable is the table of CSV and JSON: a row for each result cell.
@@ -123,7 +78,7 @@ func filledTable(t *texttab.Table, r *workbook.Report) {
 			t.Rows = append(t.Rows, texttab.Row{Cells: append(head, nil, nil, nil), Notes: notes})
 		}
 		for _, e := range row.Edits {
-			cells := append(append([]any{}, head...), e.Cell.String(), columnName(row.Row.Block, e.Cell.Col), e.Value)
+			cells := append(append([]any{}, head...), e.Cell.String(), row.Row.Block.ResultName(e.Cell.Col), e.Value)
 			t.Rows = append(t.Rows, texttab.Row{Cells: cells, Notes: notes})
 			notes = nil
 		}
@@ -135,15 +90,6 @@ func functionName(r *calculation.Row) string {
 		return ""
 	}
 	return r.Function.Name
-}
-
-func columnName(b *calculation.Block, col int) string {
-	for _, c := range b.Columns {
-		if c.Col == col && c.Role == calculation.ResultColumn {
-			return c.Name
-		}
-	}
-	return ""
 }
 
 func notesOf(findings []calculation.Diagnostic) []string {
@@ -171,7 +117,7 @@ func printFilled(w io.Writer, r *workbook.Report) error {
 		}
 		fmt.Fprintln(w)
 	}
-	printDiagnostics(w, r.Results.Diagnostics)
+	printDiagnostics(w, r.Results.Diagnostics, filledFindings(r)...)
 	for _, t := range r.Results.Tables {
 		if t.Refused == "" {
 			fmt.Fprintf(w, "Sheet %s: a table of %d rows.\n", t.Name, len(t.Rows))
@@ -216,22 +162,65 @@ func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Ta
 	return t
 }
 
+// sumFilled says what became of a book in a batch: what was written, and the
+// findings that refuse a row or have no column to stand in.
+func sumFilled(r *workbook.Report) (outcome string, wrong bool, notes []string) {
+	outcome = "the results stand there already"
+	if r.Saved.Path != "" {
+		outcome = "wrote " + r.Saved.Path
+	}
+	for _, row := range r.Results.Rows {
+		notes = append(notes, refusals(row.Row, row.Findings)...)
+	}
+	return outcome, r.Counts()[funcs.StatusRefused] > 0, append(notes, looseFindings(r.Results.Diagnostics, filledFindings(r)...)...)
+}
+
+// filledFindings are the findings of each row.
+func filledFindings(r *workbook.Report) (list [][]calculation.Diagnostic) {
+	for _, row := range r.Results.Rows {
+		list = append(list, row.Findings)
+	}
+	return list
+}
+
+// refusals are the findings that refuse a row, with its place.
+func refusals(row *calculation.Row, findings []calculation.Diagnostic) (notes []string) {
+	for _, f := range findings {
+		if f.Severity == funcs.Refused {
+			notes = append(notes, fmt.Sprintf("%s, row %d: %s", row.Sheet(), row.Number, f.Message))
+		}
+	}
+	return notes
+}
+
+// looseFindings are those that have no column to stand in and are not among the
+// findings of a row.
+func looseFindings(list []calculation.Diagnostic, ofRows ...[]calculation.Diagnostic) (notes []string) {
+	said := map[string]bool{}
+	for _, row := range ofRows {
+		for _, f := range row {
+			said[f.Message] = true
+		}
+	}
+	for _, d := range list {
+		if d.Input == "" && !said[d.Message] {
+			notes = append(notes, fmt.Sprintf("%s, %s: %s", d.Severity, strings.Join(d.Cells, ", "), d.Message))
+		}
+	}
+	return notes
+}
+
 // longTexts are the results that are sentences.
 var longTexts = map[string]bool{"sentence": true, "method": true, "citation": true, "range": true}
 
 // printDiagnostics prints what has no column to stand in. Those of rows are
 // footnotes already.
-func printDiagnostics(w io.Writer, list []calculation.Diagnostic) {
-	printed := false
-	for _, d := range list {
-		if d.Input != "" {
-			continue
-		}
-		line := fmt.Sprintf("%s, %s: %s", d.Severity, strings.Join(d.Cells, ", "), d.Message)
-		fmt.Fprintln(w, texttab.Wrap(line, texttab.Width, "  "))
-		printed = true
+func printDiagnostics(w io.Writer, list []calculation.Diagnostic, ofRows ...[]calculation.Diagnostic) {
+	notes := looseFindings(list, ofRows...)
+	for _, note := range notes {
+		fmt.Fprintln(w, texttab.Wrap(note, texttab.Width, "  "))
 	}
-	if printed {
+	if len(notes) > 0 {
 		fmt.Fprintln(w)
 	}
 }

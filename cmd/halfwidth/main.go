@@ -6,11 +6,33 @@ import (
 	"context"
 	"os"
 	"os/signal"
+	"syscall"
 )
 
 func main() {
-	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt)
+	ctx, stop := withSignals(context.Background())
 	code := Run(ctx, os.Args[1:], os.Stdout, os.Stderr)
 	stop()
 	os.Exit(code)
+}
+
+// withSignals gives a context that the first interrupt, or request to terminate,
+// ends; the second ends the process at once.
+func withSignals(parent context.Context) (context.Context, func()) {
+	ctx, cancel := context.WithCancelCause(parent)
+	signals := make(chan os.Signal, 1)
+	signal.Notify(signals, os.Interrupt, syscall.SIGTERM)
+	go func() {
+		select {
+		case <-ctx.Done():
+		case s := <-signals:
+			code := exitInterrupted
+			if s == syscall.SIGTERM {
+				code = exitTerminated
+			}
+			cancel(interruption{code})
+		}
+		signal.Stop(signals)
+	}()
+	return ctx, func() { cancel(nil) }
 }

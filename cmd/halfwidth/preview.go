@@ -11,20 +11,37 @@ import (
 	"halfwidth/cmd/internal/texttab"
 	"halfwidth/funcs"
 	"halfwidth/workbook"
+	"halfwidth/workbook/calculation"
 )
 
 func previewCommand() *cobra.Command {
 	c := &cobra.Command{
-		Use:     "preview BOOK.xlsx…",
+		Use:     "preview BOOK.xlsx|FOLDER…",
 		Short:   "Show what would be worked out and from which cells; compute nothing, write nothing",
 		Example: "  halfwidth preview testdata/workbooks/larkmoor.xlsx",
 		Args:    someBooks,
 	}
 	f := addBookFlags(c)
-	c.RunE = func(c *cobra.Command, books []string) error {
-		return eachBook(c, f, books, func(path string) (*workbook.Report, error) { return workbook.Preview(c.Context(), path, f.o) }, printPreview, previewTable)
-	}
+	verb := bookVerb{done: "Looked through", work: workbook.Preview, print: printPreview, tabulate: previewTable, sum: sumPreview}
+	c.RunE = func(c *cobra.Command, words []string) error { return eachBook(c, f, words, verb) }
 	return c
+}
+
+// sumPreview says of a book in a batch what would keep rows from being worked
+// out.
+func sumPreview(r *workbook.Report) (outcome string, wrong bool, notes []string) {
+	for _, row := range r.Plan.Rows {
+		notes = append(notes, refusals(row, row.Findings())...)
+	}
+	return "nothing was computed or written", r.Counts()[funcs.StatusRefused] > 0, append(notes, looseFindings(r.Plan.Diagnostics(), plannedFindings(r)...)...)
+}
+
+// plannedFindings are the findings of each row.
+func plannedFindings(r *workbook.Report) (list [][]calculation.Diagnostic) {
+	for _, row := range r.Plan.Rows {
+		list = append(list, row.Findings())
+	}
+	return list
 }
 
 func isFolder(path string) bool {
@@ -63,7 +80,7 @@ func printPreview(w io.Writer, r *workbook.Report) error {
 		return err
 	}
 	fmt.Fprintln(w)
-	printDiagnostics(w, r.Plan.Diagnostics())
+	printDiagnostics(w, r.Plan.Diagnostics(), plannedFindings(r)...)
 	counts := r.Counts()
 	_, err := fmt.Fprintf(w, "%s: %d rows can be worked out, %d of them with a caution so far; %d refused. Nothing was computed or written.\n",
 		r.Book, counts[funcs.StatusOK]+counts[funcs.StatusCaution], counts[funcs.StatusCaution], counts[funcs.StatusRefused])

@@ -20,10 +20,23 @@ const (
 	exitOK      = 0 // every row is ok or caution
 	exitRefused = 1 // some row is refused
 	exitFailed  = 2 // the command could not be carried out
+
+	exitInterrupted = 130 // an interrupt ended it
+	exitTerminated  = 143 // a request to terminate ended it
 )
 
 // errRefused ends a command whose output already says which rows are refused.
 var errRefused = errors.New("some rows are refused")
+
+// partlyError ends a command whose output says what is wrong with some of it.
+type partlyError struct{ text string }
+
+func (e partlyError) Error() string { return e.text }
+
+// interruption is the cause of a context that a signal ended.
+type interruption struct{ code int }
+
+func (interruption) Error() string { return "interrupted" }
 
 // usageError is a command line that cannot be carried out as written.
 type usageError struct{ error }
@@ -62,8 +75,20 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	case errors.Is(err, errRefused):
 		return exitRefused
 	}
+	code := exitFailed
+	var partly partlyError
+	var stopped interruption
+	switch {
+	case errors.As(context.Cause(ctx), &stopped):
+		code = stopped.code
+		if errors.Is(err, context.Canceled) {
+			err = stopped
+		}
+	case errors.As(err, &partly):
+		code = exitRefused
+	}
 	fmt.Fprintf(stderr, "halfwidth: %s\n", strings.ReplaceAll(err.Error(), "\n", "\nhalfwidth: "))
-	return exitFailed
+	return code
 }
 
 // noVerb reports a first word that is no verb, with the closest ones.
