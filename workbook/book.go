@@ -7,6 +7,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"slices"
 	"strings"
 
 	"halfwidth/workbook/calculation"
@@ -20,6 +21,7 @@ type Book struct {
 	folders folders
 
 	noFormulas map[int]bool // sheets that were read whole and hold no formula
+	protected  map[int]bool // sheets that were read whole and are protected
 }
 
 var _ calculation.Source = (*Book)(nil)
@@ -31,7 +33,7 @@ func openBook(path string, limits ooxml.Limits, in folders) (*Book, error) {
 	if err != nil {
 		return nil, err
 	}
-	b := &Book{Book: file, folders: in, noFormulas: map[int]bool{}}
+	b := &Book{Book: file, folders: in, noFormulas: map[int]bool{}, protected: map[int]bool{}}
 	b.findPlaces()
 	return b, nil
 }
@@ -155,10 +157,15 @@ func (b *Book) scan(ctx context.Context, sheet int, choose func(*calculation.Fra
 	if !r.chosen {
 		r.keep()
 	}
-	if err == nil && facts.Formulas == 0 {
-		b.noFormulas[sheet] = true
+	if err == nil {
+		b.noFormulas[sheet] = facts.Formulas == 0
+		b.protected[sheet] = facts.Protected
 	}
-	r.cover(facts)
+	if e := r.cover(facts); e != nil {
+		s := b.Sheets()[sheet]
+		e.File, e.Part, e.Sheet = b.Name(), s.Part, s.Name
+		return nil, e
+	}
 	return r.frame, nil
 }
 
@@ -306,41 +313,68 @@ func (r *reader) shared(index int) (uint32, error) {
 
 // cover marks the cells of merged ranges but their first, and the blank cells
 // that an array formula fills.
-func (r *reader) cover(facts ooxml.SheetFacts) {
+func (r *reader) cover(facts ooxml.SheetFacts) *ooxml.Error {
+	columns := r.kept()
+	left := mostCovered
+	// each visits the kept cells of a range, down to the last filled row.
+	each := func(area ooxml.Range, visit func(row, col int, column *calculation.Column)) *ooxml.Error {
+		last := min(area.LastRow, r.frame.LastRow())
+		from, _ := slices.BinarySearch(columns, area.FirstCol)
+		for _, col := range columns[from:] {
+			if col > area.LastCol || last < area.FirstRow {
+				break
+			}
+			if left -= last - area.FirstRow + 1; left < 0 {
+				return &ooxml.Error{Kind: ooxml.ErrLimit, Cell: area.String(), Reason: fmt.Sprintf("merged ranges and array formulas overlap, or take up more than %d cells", mostCovered),
+					Advice: "unmerge the ranges"}
+			}
+			column := r.frame.Column(col)
+			for row := area.FirstRow; row <= last; row++ {
+				visit(row, col, column)
+			}
+		}
+		return nil
+	}
 	for _, m := range facts.Merged {
-		r.each(m, func(row, col int, column *calculation.Column) {
+		err := each(m, func(row, col int, column *calculation.Column) {
 			if row != m.FirstRow || col != m.FirstCol {
 				column.Cover(row)
 			}
 		})
+		if err != nil {
+			return err
+		}
 	}
 	for _, a := range facts.Arrays {
-		r.each(a, func(row, col int, column *calculation.Column) {
+		err := each(a, func(row, col int, column *calculation.Column) {
 			if cell := column.At(row); cell.Kind == calculation.Blank && !cell.Formula {
 				column.Flag(row, calculation.IsFormula|calculation.IsUnsaved)
 			}
 		})
+		if err != nil {
+			return err
+		}
 	}
+	return nil
 }
 
-// each visits the kept cells of a range, down to the last filled row.
-func (r *reader) each(area ooxml.Range, visit func(row, col int, column *calculation.Column)) {
-	for col := area.FirstCol; col <= area.LastCol; col++ {
-		column := r.frame.Column(col)
-		if column == nil {
-			continue
-		}
-		for row := area.FirstRow; row <= min(area.LastRow, r.frame.LastRow()); row++ {
-			visit(row, col, column)
+// mostCovered is how many cells merged ranges and array formulas may take up in
+// the columns that are read: a whole column sixteen times. Ranges that do not
+// overlap reach it in no sheet that people make.
+const mostCovered = 16 << 20
+
+// kept lists the columns that are kept, up to the last in which a value stands.
+func (r *reader) kept() []int {
+	var list []int
+	for col := 1; col <= r.frame.LastCol(); col++ {
+		if r.columns.Has(col) {
+			list = append(list, col)
 		}
 	}
+	return list
 }
 
 func (b *Book) source() calculation.Source { return b }
-
-func (b *Book) planOptions() calculation.Options {
-	return calculation.Options{MayReplace: b.isOurTable}
-}
 
 // noSheet says what to do about a workbook without a calculation sheet.
 func (b *Book) noSheet() string {
