@@ -16,21 +16,6 @@ import (
 	"halfwidth/workbook/ooxml"
 )
 
-// tableMark is the defined name, local to a sheet, that marks a table sheet as
-// one that a fill made.
-const tableMark = "halfwidth_table"
-
-// isOurTable reports whether a sheet is a table sheet that an earlier fill made.
-func (b *Book) isOurTable(sheet string) bool {
-	at := b.SheetIndex(sheet)
-	for _, n := range b.DefinedNames() {
-		if at >= 0 && n.Sheet == at && strings.EqualFold(n.Name, tableMark) {
-			return true
-		}
-	}
-	return false
-}
-
 // bookChanges are the cells of a workbook that do not hold what was worked out,
 // and the table sheets that it lacks.
 type bookChanges struct {

@@ -17,7 +17,11 @@ type document interface {
 	planOptions() calculation.Options
 	// changes finds the cells that do not hold what was worked out.
 	changes(*calculation.Results) (changes, error)
-	// noWork says what to do about a document without a calculation sheet.
+	// notes say what should be known of the file as a whole.
+	notes(*calculation.Plan) []string
+	// mayFillInPlace refuses to write over a file that must stay as it is.
+	mayFillInPlace() error
+	// noSheet says what to do about a document without a calculation sheet.
 	noSheet() string
 	Close() error
 }

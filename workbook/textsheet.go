@@ -73,6 +73,10 @@ func (t *textSheet) planOptions() calculation.Options {
 	return calculation.Options{NoTables: calculation.NoTablesInText}
 }
 
+func (t *textSheet) notes(*calculation.Plan) []string { return nil }
+
+func (t *textSheet) mayFillInPlace() error { return notLocked(t.file.Name()) }
+
 func (t *textSheet) noSheet() string {
 	name, end := splitName(filepath.Base(t.file.Name()))
 	return fmt.Sprintf("Name it %s.calculations%s, or put \"calculation sheet\" in its first cell.", name, end)

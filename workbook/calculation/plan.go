@@ -20,6 +20,10 @@ type Options struct {
 	// MayReplace reports whether a sheet that exists may be written anew as a
 	// table sheet: one that an earlier fill made. Nil allows none.
 	MayReplace func(sheet string) bool
+	// Kept says why a sheet that MayReplace allows must stay as it is all the
+	// same, as the rest of a sentence that starts with its name; empty where
+	// nothing speaks against it. It may be nil.
+	Kept func(sheet string) string
 	// KeepValues keeps the samples that were read in the Arguments of outcomes, as
 	// a page needs them. Otherwise a row's samples are let go once it is worked
 	// out, so that many rows over a large sheet take little memory.
@@ -158,6 +162,9 @@ func (p *Plan) claimTable(r *Row) {
 	case taken >= 0 && (p.options.MayReplace == nil || !p.options.MayReplace(own.places[taken].Name)):
 		r.refuse(at, Span{}, "sheet-taken", fmt.Sprintf("%s: there is a sheet %s already that no fill made, and it is never written over. Write another name.", at, quote(own.places[taken].Name)))
 		r.table = ""
+	case taken >= 0 && p.kept(own.places[taken].Name) != "":
+		r.refuse(at, Span{}, "sheet-taken", fmt.Sprintf("%s: the sheet %s %s, or write another name.", at, quote(own.places[taken].Name), p.kept(own.places[taken].Name)))
+		r.table = ""
 	case taken < 0 && p.options.NoTables != "":
 		r.refuse(at, Span{}, "no-table-sheet", fmt.Sprintf("%s: %s, or empty the cell.", at, p.options.NoTables))
 		r.table = ""
@@ -167,6 +174,13 @@ func (p *Plan) claimTable(r *Row) {
 		}
 		p.tables[key] = r
 	}
+}
+
+func (p *Plan) kept(sheet string) string {
+	if p.options.Kept == nil {
+		return ""
+	}
+	return p.options.Kept(sheet)
 }
 
 // checkRead refuses what can only be seen once the sheets are read: headers
