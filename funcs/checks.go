@@ -1,6 +1,7 @@
 package funcs
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -10,7 +11,8 @@ import (
 
 var checksFamily = []*Function{normalityCheck, outlierCheck, independenceCheck, tailCheck, coverageCheck, populationCoverage}
 
-var mostOutliers = count("most-outliers", "the most outliers looked for; at most a fifth of the values, and 1 below 15 values", 1).withDefault(10)
+var mostOutliers = count("most-outliers", "the most outliers looked for; at most a fifth of the values, and 1 below 15 values", 1).
+	within(Domain{Low: 1, High: 1000, Whole: true}).withDefault(10)
 
 var outlierCheck = &Function{
 	Name:    "outlier-check",
@@ -52,19 +54,18 @@ var outlierCheck = &Function{
 			most = max(1, min(mostOutliers.Of(c), s.n/5))
 		}
 		outliers := 0
-		rest := slices.Clone(given) // values taken out become gaps and keep the others' positions
+		rest := newPeeling(given)
 		for j := 1; j <= most && c.cancelled() == nil; j++ {
-			m := summarise(withoutGaps(rest))
+			m := rest.summary()
 			if m.sd == 0 {
 				break
 			}
-			at, far := farthest(rest, m.mean)
+			at, far := rest.takeFarthest(m.mean)
 			statistic, critical := far/m.sd, esdCritical(m.n, alpha)
 			if statistic > critical {
 				outliers = j
 			}
 			c.rows = append(c.rows, Row{Values: map[string]any{"position": at + 1, "value": given[at], "statistic": statistic, "critical-value": critical}})
-			rest[at] = math.NaN()
 		}
 		if err := c.cancelled(); err != nil {
 			return err
@@ -96,16 +97,74 @@ func (c *Call) sayOutliers(outliers, n int) {
 	}
 }
 
-// farthest gives the value farthest from the centre and its distance; the
-// first of equals.
-func farthest(values []float64, centre float64) (at int, distance float64) {
-	distance = -1
-	for i, x := range values {
-		if d := math.Abs(x - centre); d > distance {
-			at, distance = i, d
+// peeling takes the values farthest from the mean out of a sample, one by one. In
+// sorted order they lie at one end or the other, and mean and sum of squares
+// follow; they are worked out anew before the changes cost digits.
+type peeling struct {
+	values    []float64 // sorted
+	positions []int
+	mean      num.Wide
+	squares   num.Wide
+	whole     float64 // the sum of squares when it was last worked out
+}
+
+func newPeeling(given []float64) *peeling {
+	p := &peeling{}
+	for i, x := range given {
+		if !math.IsNaN(x) {
+			p.positions = append(p.positions, i)
 		}
 	}
-	return at, distance
+	middle := num.Median(num.Sorted(withoutGaps(given)))
+	// Of equal values the first in the sample is to be the outermost.
+	slices.SortFunc(p.positions, func(i, j int) int {
+		order := cmp.Compare(given[i], given[j])
+		if order == 0 && given[i] > middle {
+			return j - i
+		}
+		return cmp.Or(order, i-j)
+	})
+	for _, i := range p.positions {
+		p.values = append(p.values, given[i])
+	}
+	p.measure()
+	return p
+}
+
+func (p *peeling) measure() {
+	m := num.Moments(p.values)
+	p.mean, p.squares, p.whole = num.Wide{Hi: m.Mean, Lo: m.MeanLow}, num.Widen(m.SumSquares), m.SumSquares
+}
+
+// summary is that of the values left.
+func (p *peeling) summary() summary {
+	n := len(p.values)
+	return summary{n, p.mean.Float(), math.Sqrt(p.squares.Float() / float64(n-1))}
+}
+
+// takeFarthest takes out the value farthest from the centre, the first of equals,
+// and gives its position in the sample and its distance.
+func (p *peeling) takeFarthest(centre float64) (position int, distance float64) {
+	n := len(p.values)
+	low, high := centre-p.values[0], p.values[n-1]-centre
+	at, x := 0, p.values[0]
+	if high > low || high == low && p.positions[n-1] < p.positions[0] {
+		at, x = n-1, p.values[n-1]
+	}
+	position, distance = p.positions[at], math.Max(low, high)
+	if at == 0 {
+		p.values, p.positions = p.values[1:], p.positions[1:]
+	} else {
+		p.values, p.positions = p.values[:n-1], p.positions[:n-1]
+	}
+	d := num.Widen(x).Sub(p.mean)
+	p.mean = p.mean.Sub(d.Over(float64(n - 1)))
+	p.squares = p.squares.Sub(d.Mul(d).Times(float64(n)).Over(float64(n - 1)))
+	const kept = 1.0 / 64 // of the sum of squares: some 6 of 53 bits
+	if !(p.squares.Hi > kept*p.whole) {
+		p.measure()
+	}
+	return position, distance
 }
 
 var tailCheck = &Function{

@@ -63,7 +63,40 @@ func TestOutliersLookedFor(t *testing.T) {
 	}
 	refusedFor(t, answer(t, "outlier-check", map[string]any{"sample": []float64{1, 2}}), "few-values")
 	refusedFor(t, answer(t, "outlier-check", map[string]any{"sample": []float64{1, 1, 1}}), "no-spread")
-	refuses(t, "outlier-check", map[string]any{"sample": counting(9), "most-outliers": 0}, "most-outliers is 0, but must be a whole number, 1 or more")
+	refuses(t, "outlier-check", map[string]any{"sample": counting(9), "most-outliers": 0}, "most-outliers is 0, but must be a whole number, from 1 to 1000")
+}
+
+// Values taken out of the sorted sample are those that a search through all of it
+// finds, with the same statistics.
+func TestPeelingFindsTheFarthestOfAll(t *testing.T) {
+	rng := rand.New(rand.NewPCG(6, 4))
+	for trial := range 60 {
+		values := make([]float64, 40)
+		for i := range values {
+			values[i] = math.Round(10*rng.NormFloat64()) / 4
+			if trial%3 == 0 && i < 15 {
+				values[i] = math.Pow(-7, float64(i)) // each outlier hides the next
+			}
+		}
+		rng.Shuffle(len(values), func(i, j int) { values[i], values[j] = values[j], values[i] })
+		rest, peeled := slices.Clone(values), newPeeling(values)
+		for range 30 {
+			m := summarise(withoutGaps(rest))
+			at, far := -1, -1.0
+			for i, x := range rest {
+				if d := math.Abs(x - m.mean); d > far {
+					at, far = i, d
+				}
+			}
+			got := peeled.summary()
+			within(t, "sd", got.sd, m.sd, 1e-13)
+			position, distance := peeled.takeFarthest(got.mean)
+			if math.Abs(distance-far) > 1e-13*far || position != at && math.Abs(math.Abs(values[position]-m.mean)-far) > 1e-12 {
+				t.Fatalf("trial %d: position %d at %v, want %d at %v", trial, position, distance, at, far)
+			}
+			rest[position] = math.NaN()
+		}
+	}
 }
 
 func TestOutliersShiftAndScale(t *testing.T) {

@@ -30,7 +30,9 @@ func NewRankSum(ranks []float64, first int) (law RankSum, ok bool) {
 		return RankSum{}, false
 	}
 	sizes := tieSizes(ranks)
-	c := rankCounts{first: first, second: second, unit: 1}
+	// Counting by the smaller sample is less work. Where it is the second, the pairs
+	// counted are those in which its value is the larger: all less those of U.
+	c := rankCounts{first: min(first, second), second: max(first, second), unit: 1}
 	if len(sizes) < len(ranks) {
 		c.unit = 2
 	}
@@ -43,7 +45,10 @@ func NewRankSum(ranks []float64, first int) (law RankSum, ok bool) {
 			c.addTies(t)
 		}
 	}
-	counts := c.ways[first]
+	counts := c.ways[c.first]
+	if first > second {
+		slices.Reverse(counts)
+	}
 	if c.unit == 1 {
 		// Whole pairs only: between them no halves.
 		halves := make([]float64, 2*len(counts)-1)

@@ -50,7 +50,8 @@ func halving(h float64, sum func(first, h float64) float64) float64 {
 		old := total
 		total += sum(h/2, h)
 		h /= 2
-		if !(math.Abs(total-2*old) > 1e-8*total) {
+		// Below 1e-315 the terms themselves have few digits left to agree in.
+		if !(math.Abs(total-2*old) > max(1e-8*total, 1e-315)) {
 			break
 		}
 	}
