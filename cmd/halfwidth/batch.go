@@ -22,6 +22,7 @@ type bookVerb struct {
 	filled   bool   // it looks at outputs instead of the books that they were made of
 	work     func(ctx context.Context, path string, o workbook.Options) (*workbook.Report, error)
 	print    func(io.Writer, *workbook.Report) error                             // one book, as text
+	columns  []texttab.Column                                                    // of CSV and JSON; the first six as those of longColumns
 	tabulate func(*texttab.Table, *workbook.Report)                              // one book, as rows of CSV and JSON
 	sum      func(*workbook.Report) (outcome string, wrong bool, notes []string) // one book in the table of a batch
 }
@@ -70,7 +71,7 @@ func oneBook(c *cobra.Command, f *bookFlags, path string, v bookVerb, format tex
 	if format == texttab.Text {
 		err = v.print(c.OutOrStdout(), report)
 	} else {
-		t := newLongTable()
+		t := &texttab.Table{Columns: v.columns}
 		v.tabulate(t, report)
 		err = t.Write(c.OutOrStdout(), format)
 	}
@@ -176,7 +177,7 @@ func (b *batch) run(ctx context.Context, stdout io.Writer, bar *progress) error 
 			}
 		}()
 	}
-	out := newBatchTable(stdout, b.format, b.leftOut)
+	out := newBatchTable(stdout, b.format, b.verb.columns, b.leftOut)
 	for i := range ready {
 		out.add(<-ready[i])
 	}
@@ -210,7 +211,7 @@ func (b *batch) book(ctx context.Context, f workbook.Found) bookResult {
 		r.counts = report.Counts()
 		r.outcome, r.wrong, r.notes = b.verb.sum(report)
 		if b.format != texttab.Text {
-			t := newLongTable()
+			t := &texttab.Table{}
 			b.verb.tabulate(t, report)
 			r.rows = t.Rows
 		}

@@ -27,10 +27,10 @@ type batchTable struct {
 	wrong  bool
 }
 
-func newBatchTable(w io.Writer, f texttab.Format, leftOut []workbook.Found) *batchTable {
+func newBatchTable(w io.Writer, f texttab.Format, columns []texttab.Column, leftOut []workbook.Found) *batchTable {
 	t := &batchTable{w: w, leftOut: leftOut, counts: statusCounts{}}
 	if f != texttab.Text {
-		t.stream = texttab.NewStream(w, newLongTable().Columns, f)
+		t.stream = texttab.NewStream(w, columns, f)
 		return t
 	}
 	t.text = &texttab.Table{Columns: []texttab.Column{{Name: "book"}, {Name: "ok", Right: true}, {Name: "caution", Right: true},

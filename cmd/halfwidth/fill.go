@@ -3,6 +3,8 @@ package main
 import (
 	"fmt"
 	"io"
+	"path/filepath"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -36,7 +38,8 @@ func fillCommand() *cobra.Command {
 		Use:   "fill BOOK.xlsx|FOLDER…",
 		Short: "Work out the calculation sheets and write the results beside the questions",
 		Long: "fill works out every calculation sheet of a workbook and writes the results into its result columns, as plain values.\n" +
-			"It writes BOOK-filled.xlsx beside the workbook, which itself stays as it is.\n" + aboutBatches,
+			"It writes BOOK-filled.xlsx beside the workbook, which itself stays as it is. The questions may also stand in a text file,\n" +
+			"NAME.calculations.csv or .tsv, by the same rules.\n" + aboutBatches,
 		Example: "  halfwidth fill testdata/workbooks/larkmoor.xlsx",
 		Args:    someBooks,
 	}
@@ -44,7 +47,7 @@ func fillCommand() *cobra.Command {
 	c.Flags().StringVarP(&f.o.Output, "output", "o", "", "the file, or the folder, to write to")
 	c.Flags().BoolVar(&f.o.InPlace, "in-place", false, "write into the workbook itself")
 	c.Flags().BoolVar(&f.o.Replace, "replace", false, "write over an output that was changed since it was filled")
-	verb := bookVerb{done: "Filled", work: workbook.Fill, print: printFilled, tabulate: filledTable, sum: sumFilled}
+	verb := bookVerb{done: "Filled", work: workbook.Fill, print: printFilled, columns: longColumns, tabulate: filledTable, sum: sumFilled}
 	c.RunE = func(c *cobra.Command, words []string) error { return eachBook(c, f, words, verb) }
 	return c
 }
@@ -62,11 +65,9 @@ func someBooks(c *cobra.Command, args []string) error {
 	return nil
 }
 
-// newLongTable is the table of CSV and JSON: a row for each result cell.
-func newLongTable() *texttab.Table {
-	return &texttab.Table{Columns: []texttab.Column{{Name: "book"}, {Name: "sheet"}, {Name: "row"}, {Name: "function"}, {Name: "label"},
-		{Name: "status"}, {Name: "cell"}, {Name: "result"}, {Name: "value"}}}
-}
+// longColumns are the columns of CSV and JSON: a row for each result cell.
+var longColumns = []texttab.Column{{Name: "book"}, {Name: "sheet"}, {Name: "row"}, {Name: "function"}, {Name: "label"},
+	{Name: "status"}, {Name: "cell"}, {Name: "result"}, {Name: "value"}}
 
 // filledTable adds the result cells of a book to a long table; the notes of a
 // row stand at its first cell.
@@ -126,6 +127,9 @@ func printFilled(w io.Writer, r *workbook.Report) error {
 	if r.Saved.Recalculate {
 		fmt.Fprintln(w, "Formulas of the workbook rest on filled cells; they are worked out again when it is opened next.")
 	}
+	for _, note := range r.Notes {
+		fmt.Fprintln(w, texttab.Wrap(note, texttab.Width, "  "))
+	}
 	_, err := fmt.Fprintln(w, writtenLine(r))
 	return err
 }
@@ -167,7 +171,11 @@ func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Ta
 func sumFilled(r *workbook.Report) (outcome string, wrong bool, notes []string) {
 	outcome = "the results stand there already"
 	if r.Saved.Path != "" {
-		outcome = "wrote " + r.Saved.Path
+		written := r.Saved.Path
+		if filepath.Dir(written) == filepath.Dir(r.Book) {
+			written = filepath.Base(written)
+		}
+		outcome, notes = "wrote "+written, slices.Clone(r.Notes)
 	}
 	for _, row := range r.Results.Rows {
 		notes = append(notes, refusals(row.Row, row.Findings)...)

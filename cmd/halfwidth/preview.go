@@ -22,7 +22,7 @@ func previewCommand() *cobra.Command {
 		Args:    someBooks,
 	}
 	f := addBookFlags(c)
-	verb := bookVerb{done: "Looked through", work: workbook.Preview, print: printPreview, tabulate: previewTable, sum: sumPreview}
+	verb := bookVerb{done: "Looked through", work: workbook.Preview, print: printPreview, columns: longColumns, tabulate: previewTable, sum: sumPreview}
 	c.RunE = func(c *cobra.Command, words []string) error { return eachBook(c, f, words, verb) }
 	return c
 }
@@ -42,6 +42,11 @@ func plannedFindings(r *workbook.Report) (list [][]calculation.Diagnostic) {
 		list = append(list, row.Findings())
 	}
 	return list
+}
+
+func isFile(path string) bool {
+	info, err := os.Stat(path)
+	return err == nil && info.Mode().IsRegular()
 }
 
 func isFolder(path string) bool {
@@ -81,6 +86,9 @@ func printPreview(w io.Writer, r *workbook.Report) error {
 	}
 	fmt.Fprintln(w)
 	printDiagnostics(w, r.Plan.Diagnostics(), plannedFindings(r)...)
+	for _, note := range r.Notes {
+		fmt.Fprintln(w, texttab.Wrap(note, texttab.Width, "  "))
+	}
 	counts := r.Counts()
 	_, err := fmt.Fprintf(w, "%s: %d rows can be worked out, %d of them with a caution so far; %d refused. Nothing was computed or written.\n",
 		r.Book, counts[funcs.StatusOK]+counts[funcs.StatusCaution], counts[funcs.StatusCaution], counts[funcs.StatusRefused])
