@@ -111,16 +111,37 @@ var (
 	testSizeFindings  = []FindingKind{tooManyKind, noDifferenceKind, wrongSideKind, lowPowerKind}
 )
 
+// watched is a criterion that looks at the call's context first; once the call is
+// given up it holds without work, so that the search ends, and err says so.
+func (c *Call) watched(err *error, holds func(n int) bool) func(n int) bool {
+	return func(n int) bool {
+		if *err == nil {
+			*err = c.cancelled()
+		}
+		return *err != nil || holds(n)
+	}
+}
+
+// watchedRoot is num.Root of an f that looks at the call's context first; once the
+// call is given up, f seems to have found its root.
+func (c *Call) watchedRoot(f func(float64) float64, lo, hi float64) (x float64, found bool, err error) {
+	x, found = num.Root(func(x float64) float64 {
+		if err == nil {
+			err = c.cancelled()
+		}
+		if err != nil {
+			return 0
+		}
+		return f(x)
+	}, lo, hi)
+	return x, found, err
+}
+
 // smallestPlan finds the smallest n in [lo, hi] from which every n' up to 2n
 // holds, for a criterion that may hold by luck for a few values, then fails, and
 // from some n on holds for good. found is false where it does not hold at hi.
 func (c *Call) smallestPlan(lo, hi, start int, holds func(n int) bool) (n int, found bool, err error) {
-	watched := func(n int) bool {
-		if err == nil {
-			err = c.cancelled()
-		}
-		return err != nil || holds(n)
-	}
+	watched := c.watched(&err, holds)
 	for n := lo; n <= min(2*lo, hi); n++ {
 		if !watched(n) {
 			n, found = num.Smallest(n+1, hi, start, watched)
@@ -184,8 +205,8 @@ func (c *Call) smallestGroups(ratio, start float64, holds func(n, second int) bo
 		return 0, 0, false, err
 	}
 	first := max(largest(k-1)+1, smallestGroup)
-	n, found = num.Smallest(first, largest(k), first, func(n int) bool { return holds(n, k) })
-	return n, k, found, nil
+	n, found = num.Smallest(first, largest(k), first, c.watched(&err, func(n int) bool { return holds(n, k) }))
+	return n, k, found, err
 }
 
 // tooMany refuses a plan that largestPlan does not reach.
@@ -229,6 +250,9 @@ func (c *Call) planned(n int) (int, error) {
 
 // counting is how many of n that were planned count: what planned undoes.
 func (c *Call) counting(input string, n int) (int, error) {
+	if err := c.cancelled(); err != nil {
+		return 0, err
+	}
 	effect, lost := designEffect.Of(c), nonResponse.Of(c)
 	x := floorWhole(float64(float64(n)*(1-lost)) / effect)
 	if x > largestPlan {
@@ -249,7 +273,7 @@ func (c *Call) countingOf(population float64) (int, error) {
 		return 0, c.wrong("n", fmt.Sprint(n), fmt.Sprintf("is more than the population-size (%.0f)", population), "give at most that many")
 	}
 	if float64(n) == population && nonResponse.Of(c) == 0 {
-		return n, nil
+		return n, c.cancelled()
 	}
 	return c.counting("n", n)
 }

@@ -193,7 +193,10 @@ var ratePrecisionSize = &Function{
 		if p.relative(largestPlan) > wanted/rate {
 			return refuse("too-many", "half-width", "Not even the exposure for %d counts would do (it attains %s); ask for less.", largestPlan, brief(rate*p.relative(largestPlan)))
 		}
-		logCount, ok := num.Root(func(y float64) float64 { return p.relative(num.Exp(y)) - wanted/rate }, -650, num.Log(largestPlan))
+		logCount, ok, err := c.watchedRoot(func(y float64) float64 { return p.relative(num.Exp(y)) - wanted/rate }, -650, num.Log(largestPlan))
+		if err != nil {
+			return err
+		}
 		if !ok {
 			return refuse("any-exposure-does", "half-width", "Any exposure worth observing meets this half-width; give a smaller one.")
 		}
@@ -231,6 +234,9 @@ var ratePrecisionOf = &Function{
 	compute: func(c *Call) error {
 		p, err := c.ratePrecision()
 		if err != nil {
+			return err
+		}
+		if err := c.cancelled(); err != nil {
 			return err
 		}
 		exposure := exposureGiven.Of(c) * (1 - nonResponse.Of(c)) / designEffect.Of(c)

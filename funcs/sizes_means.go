@@ -5,7 +5,6 @@ import (
 	"math"
 
 	"halfwidth/funcs/internal/dist"
-	"halfwidth/funcs/internal/num"
 )
 
 // oneSampleTest is the plan of a t test of a mean or of paired differences.
@@ -118,7 +117,10 @@ func (c *Call) setDetectable(counts, phrase string, se float64, powerAt func(dif
 			return err
 		}
 	}
-	x, ok := num.Root(short, 0, hi)
+	x, ok, err := c.watchedRoot(short, 0, hi)
+	if err != nil {
+		return err
+	}
 	if !ok {
 		return fmt.Errorf("%w: no difference between 0 and %v standard errors has power %v", ErrInternal, hi, wanted)
 	}

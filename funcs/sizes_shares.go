@@ -68,7 +68,7 @@ func (c *Call) planShares(t sharesTest, wanted, guess float64) (sharesPlan, erro
 	}
 	low, _ := bound(high, +1)
 	low = max(smallestGroup, low-grain+1)
-	first, short, ok := failures(t, low, high, func(n int) bool { return holds(n, 0) })
+	first, short, ok := failures(t, low, high, func(n int) bool { return holds(n, 0) }, func() bool { return stopped != nil })
 	if !ok || stopped != nil {
 		return sharesPlan{n: high, excess: high - low, found: true}, stopped
 	}
@@ -88,8 +88,9 @@ func (c *Call) planShares(t sharesTest, wanted, guess float64) (sharesPlan, erro
 type stretch struct{ from, to int }
 
 // failures gives the first n from low to high that holds (high does), and the
-// stretches below high that fall short. ok is false where that costs too much.
-func failures(t sharesTest, low, high int, holds func(n int) bool) (first int, short []stretch, ok bool) {
+// stretches below high that fall short. ok is false where that costs too much, or
+// once stopped.
+func failures(t sharesTest, low, high int, holds func(n int) bool, stopped func() bool) (first int, short []stretch, ok bool) {
 	runs := float64(high-low)*t.cost(high) > affordable
 	if runs && float64(high-low)/float64(t.run(low)-low+1)*t.cost(high) > affordable {
 		return 0, nil, false
@@ -97,7 +98,7 @@ func failures(t sharesTest, low, high int, holds func(n int) bool) (first int, s
 	first = high
 	var cost float64
 	for n, to := low, 0; n < high; n = to + 1 {
-		if cost += t.cost(high); cost > affordable {
+		if cost += t.cost(high); cost > affordable || stopped() {
 			return 0, nil, false
 		}
 		to = n

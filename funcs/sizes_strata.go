@@ -18,6 +18,7 @@ type strata struct {
 	sizes, sds, costs []float64
 	weights           []float64
 	outside           float64
+	cancelled         func() error
 }
 
 func (c *Call) strata() (strata, error) {
@@ -29,7 +30,7 @@ func (c *Call) strata() (strata, error) {
 	if err != nil {
 		return strata{}, err
 	}
-	s := strata{names: names, sizes: columns[0], sds: columns[1], outside: tail(confidence.Of(c), direction.Of(c))}
+	s := strata{names: names, sizes: columns[0], sds: columns[1], outside: tail(confidence.Of(c), direction.Of(c)), cancelled: c.cancelled}
 	if len(columns) > 2 {
 		s.costs = columns[2]
 	} else {
@@ -119,11 +120,11 @@ func (s strata) everything() float64 {
 
 // lastMultiplier halves its way to two neighbouring doubles of which the
 // multiplier fits but the next does not, and gives both.
-func lastMultiplier(hi float64, fits func(k float64) bool) (fitting, next float64) {
+func (s strata) lastMultiplier(hi float64, fits func(k float64) bool) (fitting, next float64) {
 	lo := 0.0
 	for {
 		mid := lo + (hi-lo)/2
-		if mid <= lo || mid >= hi {
+		if mid <= lo || mid >= hi || s.cancelled() != nil {
 			return lo, hi
 		}
 		if fits(mid) {
@@ -140,7 +141,7 @@ func (s strata) forHalfWidth(wanted float64) []float64 {
 	if n := sizesAt(0); staysIn(s.halfWidth(n), wanted) {
 		return n
 	}
-	_, k := lastMultiplier(s.everything(), func(k float64) bool { return !staysIn(s.halfWidth(sizesAt(k)), wanted) })
+	_, k := s.lastMultiplier(s.everything(), func(k float64) bool { return !staysIn(s.halfWidth(sizesAt(k)), wanted) })
 	return sizesAt(k)
 }
 
@@ -155,7 +156,7 @@ func (s strata) forBudget(budget float64) (n []float64, least float64, ok bool) 
 	if all := s.everything(); staysIn(s.cost(s.quotas(all)), budget) {
 		return rounded(s.quotas(all), floorWhole), least, true
 	}
-	k, _ := lastMultiplier(s.everything(), func(k float64) bool { return staysIn(s.cost(s.quotas(k)), budget) })
+	k, _ := s.lastMultiplier(s.everything(), func(k float64) bool { return staysIn(s.cost(s.quotas(k)), budget) })
 	quotas := s.quotas(k)
 	n = rounded(quotas, floorWhole)
 	order := make([]int, len(n))
@@ -223,6 +224,9 @@ var stratifiedSize = &Function{
 		} else {
 			n = s.forHalfWidth(halfWidth.Of(c))
 			c.method = "optimal allocation, rounded up; t interval with Satterthwaite's degrees of freedom"
+		}
+		if err := c.cancelled(); err != nil {
+			return err
 		}
 		return c.setStrata(s, n)
 	},

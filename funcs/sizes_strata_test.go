@@ -69,7 +69,7 @@ func TestAllocationIsOptimal(t *testing.T) {
 // No other sizes of the same cost have a smaller standard error (the theorem
 // itself, tried out around the plan).
 func TestNoNeighbouringAllocationIsBetter(t *testing.T) {
-	s := strata{sizes: []float64{1000, 500, 2000}, sds: []float64{2, 4, 1}, costs: []float64{1, 1, 1}, weights: []float64{1, 1, 1}, outside: 0.025}
+	s := strata{sizes: []float64{1000, 500, 2000}, sds: []float64{2, 4, 1}, costs: []float64{1, 1, 1}, weights: []float64{1, 1, 1}, outside: 0.025, cancelled: t.Context().Err}
 	variance := func(n []float64) float64 {
 		var sum float64
 		for h := range n {
