@@ -43,7 +43,7 @@ const (
 // Methods gives a table for one session. What the rows share is theirs alone,
 // so that two sessions in one process do not meet.
 func Methods() []Method {
-	return slices.Concat(lifecycleMethods(), functionMethods(), sheetMethods(), discoverMethods())
+	return slices.Concat(lifecycleMethods(), functionMethods(), sheetMethods(), workbookMethods(), textMethods(), discoverMethods())
 }
 
 // Later is returned by a handler that has read its params and captured what it

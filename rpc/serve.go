@@ -14,6 +14,7 @@ type Options struct {
 	Version string   // of the program, given at initialize
 	Limits  Limits   // what is 0 takes the default
 	Methods []Method // nil: Methods()
+	MayFill []string // folders in which workbooks/fill may read and write, as ResolveFolders gives them
 
 	lookEvery  time.Duration    // between looks at the client's process
 	waitInTurn time.Duration    // 0: the constant of that name

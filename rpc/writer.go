@@ -25,6 +25,7 @@ type frameWriter struct {
 	mu      sync.Mutex
 	changed *sync.Cond
 	pending []byte
+	due     bool   // what is pending is to leave
 	spare   []byte // the buffer written last, used again
 	writing bool
 	closed  bool
@@ -91,6 +92,7 @@ func (w *frameWriter) leave() {
 		w.write()
 	}
 	if len(w.pending) > 0 {
+		w.due = true
 		w.changed.Broadcast()
 	}
 }
@@ -100,7 +102,7 @@ func (w *frameWriter) leave() {
 func (w *frameWriter) write() {
 	piece := w.pending
 	w.pending, w.spare = w.spare[:0], nil
-	w.writing = true
+	w.writing, w.due = true, false
 	w.mu.Unlock()
 	var err error
 	for at := 0; at < len(piece) && err == nil; {
@@ -115,7 +117,7 @@ func (w *frameWriter) write() {
 		w.mu.Unlock()
 	}
 	w.mu.Lock()
-	w.writing = false
+	w.writing, w.due = false, len(w.pending) > 0
 	if cap(piece) <= keepBuffer {
 		w.spare = piece
 	}
@@ -132,8 +134,8 @@ func (w *frameWriter) run() {
 	w.mu.Lock()
 	defer w.mu.Unlock()
 	for {
-		for w.writing || len(w.pending) == 0 {
-			if w.closed || w.err != nil {
+		for w.writing || len(w.pending) == 0 || !w.due && !w.closed {
+			if w.err != nil || w.closed && !w.writing {
 				return
 			}
 			w.changed.Wait()

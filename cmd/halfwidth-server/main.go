@@ -39,8 +39,12 @@ Options:
   --max-message-bytes N   longest message taken (%d)
   --max-depth N           deepest nesting taken (%d)
   --max-sample-values N   numbers taken in one list (%d)
+  --max-open-sheets N     sheets that a client may have open (%d)
+  --max-open-cells N      cells that these may hold, blanks between counted (%d)
   --max-queue N           long calls that may wait (%d)
   --workers N             long calls worked on at once (one a core: %d)
+  --may-fill DIR          a folder in which workbooks/fill may read and write
+                          files; to be given once for each (none)
   --version               print the version
   --help                  print this
 `
@@ -57,15 +61,22 @@ func run(args []string, in io.Reader, out, errw io.Writer) int {
 	help := flags.Bool("help", false, "")
 	showVersion := flags.Bool("version", false, "")
 	for name, field := range map[string]*int{
-		"max-message-bytes": &limits.MessageBytes, "max-depth": &limits.Depth, "max-sample-values": &limits.SampleValues, "max-queue": &limits.Queue, "workers": &limits.Workers,
+		"max-message-bytes": &limits.MessageBytes, "max-depth": &limits.Depth, "max-sample-values": &limits.SampleValues,
+		"max-open-sheets": &limits.OpenSheets, "max-open-cells": &limits.OpenCells, "max-queue": &limits.Queue, "workers": &limits.Workers,
 	} {
 		flags.Var(atLeastOne{field}, name, "")
 	}
+	var mayFill []string
+	flags.Func("may-fill", "", func(dir string) error {
+		dirs, err := rpc.ResolveFolders([]string{dir})
+		mayFill = append(mayFill, dirs...)
+		return err
+	})
 	standard := limits
 	err := flags.Parse(args)
 	switch {
 	case *help || errors.Is(err, flag.ErrHelp):
-		fmt.Fprintf(out, usage, standard.MessageBytes, standard.Depth, standard.SampleValues, standard.Queue, standard.Workers)
+		fmt.Fprintf(out, usage, standard.MessageBytes, standard.Depth, standard.SampleValues, standard.OpenSheets, standard.OpenCells, standard.Queue, standard.Workers)
 		return 0
 	case err != nil:
 		fmt.Fprintf(errw, "halfwidth-server: %v\nWrite halfwidth-server --help for the options.\n", err)
@@ -80,7 +91,7 @@ func run(args []string, in io.Reader, out, errw io.Writer) int {
 	// With all cores computing, a thread more for the reader and one for the
 	// writer bring a cancel from 22 ms to 0.1 ms.
 	runtime.GOMAXPROCS(cores + 2)
-	return rpc.Serve(context.Background(), in, out, errw, rpc.Options{Version: buildinfo.Version(), Limits: limits})
+	return rpc.Serve(context.Background(), in, out, errw, rpc.Options{Version: buildinfo.Version(), Limits: limits, MayFill: mayFill})
 }
 
 // atLeastOne is a whole number from 1 to what 31 bits hold.

@@ -67,6 +67,8 @@ func TestOptions(t *testing.T) {
 		{[]string{"--max-depth", "0"}, 2, "", "write a whole number from 1"},
 		{[]string{"--max-message-bytes=64MB"}, 2, "", "write a whole number from 1"},
 		{[]string{"--max-queue=1e3"}, 2, "", "write a whole number from 1"},
+		{[]string{"--may-fill", "no/such/folder"}, 2, "", `the folder "no/such/folder" cannot be found`},
+		{[]string{"--may-fill", "main.go"}, 2, "", `"main.go" is no folder`},
 		{[]string{"--no-such"}, 2, "", "-no-such"},
 		{[]string{"book.xlsx"}, 2, "", `"book.xlsx" is no option`},
 	} {
@@ -83,10 +85,10 @@ func TestLimitsReachTheServer(t *testing.T) {
 	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(0))
 	var out, errs bytes.Buffer
 	in := frame(initialize) + frame(`{"jsonrpc":"2.0","id":3,"method":"x","params":{"text":"`+strings.Repeat("x", 500)+`"}}`) + frame(shutdown) + frame(exit)
-	if code := run([]string{"--max-message-bytes", "400", "--max-depth=9", "--max-sample-values", "6", "--max-queue=7", "--workers", "3"}, strings.NewReader(in), &out, &errs); code != 0 {
+	if code := run([]string{"--max-message-bytes", "400", "--max-depth=9", "--max-sample-values", "6", "--max-queue=7", "--workers", "3", "--max-open-sheets=5", "--max-open-cells", "900", "--may-fill", ".", "--may-fill=.."}, strings.NewReader(in), &out, &errs); code != 0 {
 		t.Errorf("exit code %d, errors %q", code, errs.String())
 	}
-	for _, part := range []string{`"messageBytes":400`, `"depth":9`, `"sampleValues":6`, `"queue":7`, `"workers":3`, `"version":"` + buildinfo.Version() + `"`, "at most 400 are taken", done} {
+	for _, part := range []string{`"messageBytes":400`, `"depth":9`, `"sampleValues":6`, `"queue":7`, `"openSheets":5`, `"openCells":900`, `"workers":3`, `"version":"` + buildinfo.Version() + `"`, "at most 400 are taken", done} {
 		if !strings.Contains(out.String(), part) {
 			t.Errorf("the output lacks %s: %s", part, out.String())
 		}
