@@ -178,3 +178,22 @@ func BenchmarkNormalSF(b *testing.B) {
 		Normal{}.SF(1.7)
 	}
 }
+
+// What lies between 0 and b is half an incomplete beta function, which tails gives
+// by its series; and intervals that adjoin add up.
+func TestStudentBetweenKeepsItsDigitsForFewDegreesOfFreedom(t *testing.T) {
+	rng := rand.New(rand.NewPCG(4, 9))
+	for range 300 {
+		s := Student{math.Exp(-14 + 16*rng.Float64())}
+		a, b := math.Exp(-12+24*rng.Float64()), math.Exp(-12+24*rng.Float64())
+		a, b = min(a, b), max(a, b)
+		_, toA := s.tails(a)
+		_, toB := s.tails(b)
+		what := fmt.Sprint(s, a, b)
+		wantDigits(t, what, s.narrow(0, b), toB, 1e-12)
+		wantDigits(t, what, s.narrow(-a, b), toA+toB, 1e-12)
+		if toB > 1.5*toA { // else the difference has lost digits
+			wantDigits(t, what, s.narrow(a, b), toB-toA, 4e-12)
+		}
+	}
+}

@@ -108,18 +108,19 @@ func (s Student) Between(a, b float64) float64 {
 	return between(s, a, b, func() float64 { return s.narrow(a, b) })
 }
 
-// narrow integrates the density, from 0 and from 1 outwards in separate parts,
-// beyond 1 in log t, relative to its value at the inner end.
+// narrow integrates the density relative to its value at the inner end: in t up to
+// sqrt(DF), or 1, and in log t beyond, where it nears a power of t.
 func (s Student) narrow(a, b float64) float64 {
+	df := s.df()
+	corner := min(1, math.Sqrt(df))
 	switch {
 	case b <= 0:
 		return s.narrow(-b, -a)
 	case a < 0:
 		return s.narrow(0, -a) + s.narrow(0, b)
-	case a < 1 && b > 1:
-		return s.narrow(a, 1) + s.narrow(1, b)
+	case a < corner && b > corner:
+		return s.narrow(a, corner) + s.narrow(corner, b)
 	}
-	df := s.df()
 	root := math.Sqrt(df + float64(a*a))
 	if a > 1e150 {
 		root = a
@@ -128,8 +129,12 @@ func (s Student) narrow(a, b float64) float64 {
 	relative := func(d float64) float64 {
 		return num.Exp(-0.5 * (df + 1) * num.Log1p(float64((d/root)*((a+a+d)/root))))
 	}
-	if a >= 1 {
-		return s.scaledDensity(a) * panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
+	if a >= corner {
+		scaled := a * s.Density(a)
+		if a >= 1 {
+			scaled = s.scaledDensity(a)
+		}
+		return scaled * panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
 			return float64(num.Exp(w) * relative(float64(a*num.Expm1(w))))
 		})
 	}
