@@ -27,6 +27,7 @@ var adjustedPValues = &Function{
 	Summary: "p-values of several tests, adjusted for their number",
 	Inputs:  inputs(pValues, adjustment),
 	Table: []Result{
+		{"name", Text, NoUnit, "the p-value's name; absent where the list has no names"},
 		{"p-value", Number, NoUnit, "the p-value as given; absent for a blank"},
 		{"adjusted", Number, NoUnit, "the p-value to compare with the significance of all tests together"},
 	},
@@ -49,6 +50,9 @@ var adjustedPValues = &Function{
 		least, m := -1, 0
 		for i, p := range list.Values {
 			row := Row{Values: map[string]any{}}
+			if list.Names != nil {
+				row.Values["name"] = list.Names[i]
+			}
 			if !math.IsNaN(p) {
 				row.Values["p-value"], row.Values["adjusted"] = p, adjusted[i]
 				if m++; least < 0 || p < list.Values[least] {
@@ -66,8 +70,12 @@ var adjustedPValues = &Function{
 			holm:              "Holm's step-down method",
 			benjaminiHochberg: "Benjamini and Hochberg's step-up method",
 		}[kind]
+		smallest := pText(list.Values[least])
+		if list.Names != nil {
+			smallest += " of " + list.Names[least]
+		}
 		c.sentence = fmt.Sprintf("Of %s the smallest, %s, becomes %s when adjusted for all (%s).",
-			plural(m, "p-value"), pText(list.Values[least]), pText(adjusted[least]), c.method)
+			plural(m, "p-value"), smallest, pText(adjusted[least]), c.method)
 		return nil
 	},
 }

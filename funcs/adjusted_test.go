@@ -77,3 +77,20 @@ func TestAdjustedPValuesErrors(t *testing.T) {
 		}
 	}
 }
+
+// Named p-values keep their names, in the rows and in the sentence.
+func TestAdjustedPValuesKeepTheirNames(t *testing.T) {
+	out := answer(t, "adjusted-p-values", map[string]any{"p-values": List{Names: []string{"North", "Quay"}, Values: []float64{0.04, 0.01}}})
+	for i, want := range []string{"North", "Quay"} {
+		if got := out.Rows[i].Values["name"]; got != want {
+			t.Errorf("row %d is named %v, want %s", i, got, want)
+		}
+	}
+	if s, _ := out.Get("sentence"); !strings.Contains(s.(string), "the smallest, p = 0.01 of Quay, becomes p = 0.02") {
+		t.Errorf("sentence: %s", s)
+	}
+	unnamed := answer(t, "adjusted-p-values", map[string]any{"p-values": []float64{0.04, 0.01}})
+	if name, ok := unnamed.Rows[0].Values["name"]; ok {
+		t.Errorf("a list without names names its first %v", name)
+	}
+}
