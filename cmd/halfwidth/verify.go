@@ -84,7 +84,7 @@ func sumVerified(r *workbook.Report) (outcome string, wrong bool, notes []string
 	for _, row := range r.Results.Rows {
 		notes = append(notes, refusals(row.Row, row.Findings)...)
 	}
-	return s.String(), s.wrong(), append(notes, looseFindings(r.Results.Diagnostics)...)
+	return s.String(), s.wrong(), append(notes, looseFindings(r.Results.Diagnostics, filledFindings(r)...)...)
 }
 
 // printVerified lists what is out of date and says at the end how the rows
