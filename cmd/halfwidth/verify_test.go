@@ -181,3 +181,24 @@ func TestATextSheetGoesThroughTheVerbs(t *testing.T) {
 		t.Errorf("the last digit: code %d\n%s", code, stdout)
 	}
 }
+
+func TestFillSaysWhatItDoesWithAProtectedSheet(t *testing.T) {
+	book := filepath.Join(t.TempDir(), "book.xlsx")
+	makeBook(t, book, ask([]any{"work out", "sample", "> mean"}, []any{"mean-interval", "minutes in Trips"}))
+	f, err := excelize.OpenFile(book)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	if err := f.ProtectSheet("Calculations", &excelize.SheetProtectionOptions{}); err != nil {
+		t.Fatal(err)
+	}
+	if err := f.Save(); err != nil {
+		t.Fatal(err)
+	}
+	for _, verb := range []string{"preview", "fill"} {
+		if stdout, _, code := run(t, verb, book); code != exitOK || !strings.Contains(strings.Join(strings.Fields(stdout), " "), "the protection is left as it is.") {
+			t.Errorf("%s: code %d\n%s", verb, code, stdout)
+		}
+	}
+}
