@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"sync"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -156,30 +155,18 @@ type tailIndex struct {
 	index, lower, upper float64
 }
 
-// scratch lends room for a copy of a sample, which for long ones costs more to
-// get anew than to fill.
-var scratch = sync.Pool{New: func() any { return new([]float64) }}
-
 // hillTail estimates the tail index of |x - median| from its k largest values,
 // k = max(10, floor(√n)) (Hill 1975); not where the values are too alike.
 func hillTail(values []float64, confidence float64) (tailIndex, bool) {
 	n := len(values)
 	k := max(10, int(math.Sqrt(float64(n))))
-	room := scratch.Get().(*[]float64)
-	defer scratch.Put(room)
-	d := append((*room)[:0], values...)
-	*room = d
-	centre := num.MedianOf(d)
-	for i, x := range d {
-		d[i] = math.Abs(x - centre)
-	}
-	base := num.Select(d, n-1-k)
-	slices.Sort(d[n-k:]) // so that the sum below does not depend on the order of the values
+	far := num.Farthest(values, num.MedianIn(values), k+1)
+	base := far[0]
 	if base == 0 {
 		return tailIndex{}, false
 	}
 	var sum float64
-	for _, x := range d[n-k:] {
+	for _, x := range far[1:] {
 		sum += num.Log(x / base)
 	}
 	if sum <= 0 {

@@ -208,9 +208,9 @@ func (a *argument) fromReading(t *term, r *reading) {
 	case t.input.Kind == funcs.Numbers && q != nil && q.ForEach != nil:
 		a.oneEach(r, q)
 	case t.input.Kind == funcs.Numbers:
-		values := r.series[0].values
+		values := slices.Clone(r.series[0].values) // the reading may be gone before the call's outcome
 		if !t.input.MayBeGaps {
-			values = slices.DeleteFunc(slices.Clone(values), math.IsNaN)
+			values = slices.DeleteFunc(values, math.IsNaN)
 			origin.Address = nil
 		}
 		a.from.Value = funcs.List{Values: values}

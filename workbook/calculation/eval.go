@@ -103,6 +103,30 @@ func (p *Plan) levels() [][]*Row {
 	return levels
 }
 
+// byReading puts rows that read the same sample first beside one another, so
+// that few samples are held at a time.
+func byReading(level []*Row) []*Row {
+	first := map[cacheKey]int{}
+	place := func(r *Row) int {
+		for _, in := range r.Inputs {
+			if key, ok := keyOf(in.term); ok {
+				if _, seen := first[key]; !seen {
+					first[key] = len(first)
+				}
+				return first[key]
+			}
+		}
+		return -1
+	}
+	places := make(map[*Row]int, len(level))
+	for _, r := range level {
+		places[r] = place(r)
+	}
+	level = slices.Clone(level)
+	slices.SortStableFunc(level, func(a, b *Row) int { return places[a] - places[b] })
+	return level
+}
+
 // resultOf gives a result of a row that is worked out.
 func resultOf(r *RowResult, c resultCell) (Cell, *fault) {
 	at := c.address()

@@ -22,6 +22,7 @@ type rowsOfColumn struct{ col, first, last int }
 // kind, 0 where there is none.
 type columnFacts struct {
 	texts     []uint32 // the texts that stand in it, each once
+	counts    []int32  // by text: how many rows hold it
 	isTrue    bool
 	isFalse   bool
 	covered   int // inside a merged range
@@ -36,13 +37,17 @@ type gap struct{ first, last int }
 func (sh *sheet) columnFacts(col, first, last int) *columnFacts {
 	sh.facts.mu.Lock()
 	defer sh.facts.mu.Unlock()
+	return sh.columnFactsLocked(col, first, last)
+}
+
+// columnFactsLocked is columnFacts for a caller that holds the lock.
+func (sh *sheet) columnFactsLocked(col, first, last int) *columnFacts {
 	key := rowsOfColumn{col, first, last}
 	if f, ok := sh.facts.columns[key]; ok {
 		return f
 	}
-	f := &columnFacts{}
+	f := &columnFacts{counts: make([]int32, len(sh.frame.texts))}
 	c := sh.frame.column(col)
-	seen := make([]bool, len(sh.frame.texts))
 	note := func(at *int, row int) {
 		if *at == 0 {
 			*at = row
@@ -52,10 +57,11 @@ func (sh *sheet) columnFacts(col, first, last int) *columnFacts {
 		kind, flags := c.kind(row)
 		switch kind {
 		case Text:
-			if id := c.text(row); !seen[id] {
-				seen[id] = true
+			id := c.text(row)
+			if f.counts[id] == 0 {
 				f.texts = append(f.texts, id)
 			}
+			f.counts[id]++
 		case Bool:
 			f.isTrue = f.isTrue || flags&isTrue != 0
 			f.isFalse = f.isFalse || flags&isTrue == 0
@@ -166,11 +172,15 @@ func (sh *sheet) index(col, first, last int) *index {
 	}
 	x := &index{rows: make([][]int32, len(sh.frame.texts))}
 	c := sh.frame.column(col)
+	counts := sh.columnFactsLocked(col, first, last).counts
 	for row := first; row <= last; row++ {
 		switch kind, _ := c.kind(row); kind {
 		case Blank:
 		case Text:
 			id := c.text(row)
+			if x.rows[id] == nil {
+				x.rows[id] = make([]int32, 0, counts[id])
+			}
 			x.rows[id] = append(x.rows[id], int32(row))
 		default:
 			x.others = append(x.others, int32(row))
@@ -190,26 +200,28 @@ func (g *gathering) candidates() ([]int32, bool) {
 		return nil, false
 	}
 	sh := g.at.sheet
-	for _, t := range g.tests {
+	for i, t := range g.tests {
 		if op := t.condition.Op; op != Equal && op != IsOneOf || len(t.words) == 0 || t.column == nil {
 			continue
 		}
 		x := sh.index(t.column.col, g.first, g.last)
-		var rows []int32
-		lists := 0
+		lists := [][]int32{x.others}
+		n := len(x.others)
 		for _, id := range sh.columnFacts(t.column.col, g.first, g.last).texts {
 			if t.onText(sh.frame.texts[id]) == meets {
-				rows = append(rows, x.rows[id]...)
-				lists++
+				lists = append(lists, x.rows[id])
+				n += len(x.rows[id])
 			}
 		}
-		rows = append(rows, x.others...)
-		if len(rows) > (g.last-g.first)/4 {
+		if n > (g.last-g.first)/2 {
 			continue
 		}
-		if lists > 1 || len(x.others) > 0 {
-			slices.Sort(rows)
+		if len(lists) == 2 && len(x.others) == 0 {
+			g.tests = slices.Delete(g.tests, i, i+1) // all these rows meet it
+			return lists[1], true
 		}
+		rows := slices.Concat(lists...)
+		slices.Sort(rows)
 		return rows, true
 	}
 	return nil, false

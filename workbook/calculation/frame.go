@@ -271,14 +271,19 @@ func (c *Column) kindByte(row int) (*chunk, int) {
 	}
 	k := &c.chunks[at]
 	if i >= len(k.kinds) {
-		k.kinds = extend(k.kinds, i)
+		k.kinds = extend(k.kinds, i, at > 0 && len(c.chunks[at-1].kinds) == chunkRows)
 	}
 	return k, i
 }
 
-// extend lengthens s so that element i exists: to the next power of two.
-func extend[T any](s []T, i int) []T {
-	grown := make([]T, max(16, 1<<bits.Len(uint(i))))
+// extend lengthens s so that element i exists: to the next power of two, or to a
+// whole chunk where the one before is whole.
+func extend[T any](s []T, i int, whole bool) []T {
+	n := max(16, 1<<bits.Len(uint(i)))
+	if whole {
+		n = chunkRows
+	}
+	grown := make([]T, n)
 	copy(grown, s)
 	return grown
 }
@@ -292,7 +297,7 @@ func (c *Column) value(row int) (*chunk, int) {
 func (c *Column) SetNumber(row int, kind CellKind, x float64) {
 	k, i := c.value(row)
 	if i >= len(k.numbers) {
-		k.numbers = extend(k.numbers, i)
+		k.numbers = extend(k.numbers, i, len(k.kinds) == chunkRows)
 	}
 	k.kinds[i], k.numbers[i] = uint8(kind), x
 }
@@ -301,7 +306,7 @@ func (c *Column) SetNumber(row int, kind CellKind, x float64) {
 func (c *Column) SetText(row int, kind CellKind, id uint32) {
 	k, i := c.value(row)
 	if i >= len(k.texts) {
-		k.texts = extend(k.texts, i)
+		k.texts = extend(k.texts, i, len(k.kinds) == chunkRows)
 	}
 	k.kinds[i], k.texts[i] = uint8(kind), id
 }

@@ -18,11 +18,17 @@ type series struct {
 	order   float64 // the name as a number, NaN where it is none
 	col     int
 	values  []float64
-	rows    []int32
+	rows    rowList
 	totals  totals
 	sum     compensated
 	count   int
 	skipped int // cells that were not blank
+}
+
+// add adds a value and the row that it stands in.
+func (s *series) add(x float64, row int) {
+	s.values = append(s.values, x)
+	s.rows.add(row)
 }
 
 // reading is what an expression gave: its samples, and what is to be said of
@@ -61,10 +67,10 @@ func (r *reading) address(group, i int) string {
 		return r.sheet.address(r.area.FirstRow+i/width, r.area.FirstCol+i%width)
 	}
 	s := r.series[group]
-	if i >= len(s.rows) {
+	if i >= s.rows.n {
 		return ""
 	}
-	return r.sheet.address(int(s.rows[i]), s.col)
+	return r.sheet.address(s.rows.at(i), s.col)
 }
 
 // valueColumn is a column that a query takes numbers from.
@@ -78,7 +84,7 @@ type valueColumn struct {
 
 // gather reads what a query asks for from its sheet, which must be read.
 // keepSkips also lists the rows whose cells were skipped.
-func (b *bound) gather(ctx context.Context, keepSkips bool) (*reading, error) {
+func (b *bound) gather(ctx context.Context, keepSkips bool, room *rooms) (*reading, error) {
 	r := &reading{sheet: b.at.sheet}
 	if f := b.ready(); f != nil {
 		r.faults = append(r.faults, *f)
@@ -86,7 +92,7 @@ func (b *bound) gather(ctx context.Context, keepSkips bool) (*reading, error) {
 	}
 	r.tally = tally{sheet: b.at.sheet, keepSkips: keepSkips}
 	r.text = b.text()
-	g := &gathering{bound: b, reading: r}
+	g := &gathering{bound: b, reading: r, room: room}
 	if f := g.prepare(); f != nil {
 		r.faults = append(r.faults, *f)
 		return r, nil
@@ -102,9 +108,11 @@ func (b *bound) gather(ctx context.Context, keepSkips bool) (*reading, error) {
 type gathering struct {
 	*bound
 	reading *reading
+	room    *rooms
 	tests   []*test
 	columns []valueColumn
 	group   *Column
+	counts  []int32 // how many rows hold each text of the group's column
 	groups  map[string]*series
 	byText  []*series // the group of each text, as far as met
 	blank   []bool    // of each text: asked, and blank
@@ -158,6 +166,7 @@ func (g *gathering) prepare() *fault {
 		return f
 	}
 	g.group = sh.frame.column(col)
+	g.counts = sh.columnFacts(col, g.first, g.last).counts
 	g.groups = map[string]*series{}
 	g.byText = make([]*series, len(sh.frame.texts))
 	g.blank = make([]bool, len(sh.frame.texts))
@@ -169,23 +178,20 @@ func (g *gathering) run(ctx context.Context) error {
 	frame := g.at.sheet.frame
 	repeated := g.repeatedHeaders()
 	visit := func(row int) {
-		if frame.Row(row)&RowFilled == 0 {
+		flags := frame.Row(row)
+		if flags&RowFilled == 0 {
 			return
 		}
 		for len(repeated) > 0 && repeated[0] < row {
 			repeated = repeated[1:]
 		}
 		if (len(repeated) == 0 || repeated[0] != row) && g.meets(row) {
-			g.row(row)
+			g.row(row, flags)
 		}
 	}
 	const often = 0x3fff
 	if rows, ok := g.candidates(); ok {
-		for _, c := range g.columns {
-			if c.series != nil && g.query.What != Sum {
-				c.series.values, c.series.rows = make([]float64, 0, len(rows)), make([]int32, 0, len(rows))
-			}
-		}
+		g.makeRoom(len(rows))
 		for i, row := range rows {
 			if i&often == 0 && ctx.Err() != nil {
 				return ctx.Err()
@@ -194,6 +200,9 @@ func (g *gathering) run(ctx context.Context) error {
 		}
 		return nil
 	}
+	if len(g.tests) == 0 {
+		g.makeRoom(g.last - g.first + 1)
+	}
 	for row := g.first; row <= g.last; row++ {
 		if row&often == 0 && ctx.Err() != nil {
 			return ctx.Err()
@@ -201,6 +210,15 @@ func (g *gathering) run(ctx context.Context) error {
 		visit(row)
 	}
 	return nil
+}
+
+// makeRoom makes room for so many values in each sample that is no group.
+func (g *gathering) makeRoom(n int) {
+	for _, c := range g.columns {
+		if c.series != nil && g.query.What != Sum {
+			g.makeRoomFor(c.series, max(0, n))
+		}
+	}
 }
 
 // meets reports whether a row meets all conditions; a row that none of them
@@ -224,10 +242,10 @@ func (g *gathering) meets(row int) bool {
 }
 
 // row takes the values of a row that meets the conditions.
-func (g *gathering) row(row int) {
+func (g *gathering) row(row int, flags RowFlags) {
 	r := g.reading
 	r.rows++
-	byText := r.sheet.frame.Row(row)&RowTotal != 0
+	byText := flags&RowTotal != 0
 	if g.query.What == Count {
 		s := g.seriesFor(row, nil)
 		if s == nil {
@@ -235,7 +253,7 @@ func (g *gathering) row(row int) {
 		}
 		s.count++
 		r.tally.used++
-		r.tally.hide(row)
+		r.tally.hide(flags)
 		g.inside.add(row)
 		if byText {
 			s.totals.add(row, math.NaN(), true)
@@ -249,7 +267,7 @@ func (g *gathering) row(row int) {
 			continue
 		}
 		before := r.tally.used
-		x := r.tally.take(c.column, row, c.ref, c.factor)
+		x := r.tally.take(c.column, row, flags, c.ref, c.factor)
 		if r.tally.used > before {
 			g.inside.add(row)
 			s.totals.add(row, x, byText)
@@ -263,7 +281,7 @@ func (g *gathering) row(row int) {
 			}
 			continue
 		}
-		s.values, s.rows = append(s.values, x), append(s.rows, int32(row))
+		s.add(x, row)
 	}
 }
 
@@ -284,6 +302,7 @@ func (g *gathering) seriesFor(row int, c *valueColumn) *series {
 				g.blank[id] = true
 			} else {
 				g.byText[id] = g.named(name, c)
+				g.roomForGroup(g.byText[id], id)
 			}
 		}
 		if !g.blank[id] {
@@ -294,6 +313,20 @@ func (g *gathering) seriesFor(row int, c *valueColumn) *series {
 	}
 	g.reading.tally.noGroup.add(row, g.group.col, "")
 	return nil
+}
+
+// roomForGroup makes room for the values of a group whose rows have a text.
+func (g *gathering) roomForGroup(s *series, id uint32) {
+	if s.values == nil && g.query.What == Values && len(g.query.Where) == 0 {
+		g.makeRoomFor(s, int(g.counts[id]))
+	}
+}
+
+func (g *gathering) makeRoomFor(s *series, n int) {
+	s.values = g.room.forValues(n)
+	if g.group != nil || len(g.query.Where) > 0 {
+		s.rows.list = g.room.forRows(n)
+	}
 }
 
 // named gives the series of a group's name, a new one where it is the first.

@@ -85,7 +85,7 @@ func (t *term) newArgument() *argument {
 // read gathers a term that is a query or a range.
 func (t *term) read(ctx context.Context) (*reading, error) {
 	if t.query != nil {
-		return t.query.gather(ctx, true)
+		return t.query.gather(ctx, true, &rooms{})
 	}
 	return t.area.gather(ctx)
 }
@@ -156,9 +156,9 @@ func (p *pairing) add(i, j int) {
 	}
 	if math.IsNaN(x) != math.IsNaN(y) {
 		if p.dropped.n == 0 {
-			p.dropped.row = int(max(row, other))
+			p.dropped.row = max(row, other)
 			if row > 0 && other > 0 && row != other {
-				p.dropped.row = int(row)
+				p.dropped.row = row
 			}
 		}
 		p.dropped.n++
@@ -170,22 +170,22 @@ func (p *pairing) add(i, j int) {
 			p.two.tally.paired++
 		}
 	}
-	p.out[0].values, p.out[0].rows = append(p.out[0].values, x), append(p.out[0].rows, row)
-	p.out[1].values, p.out[1].rows = append(p.out[1].values, y), append(p.out[1].rows, other)
+	p.out[0].add(x, row)
+	p.out[1].add(y, other)
 }
 
 // valueAt gives value i with its row, and whether its cell was skipped.
-func valueAt(r *reading, i int) (x float64, row int32, skipped bool) {
+func valueAt(r *reading, i int) (x float64, row int, skipped bool) {
 	if i < 0 {
 		return math.NaN(), 0, false
 	}
 	s := r.series[0]
 	if !r.isRange {
-		row = s.rows[i]
+		row = s.rows.at(i)
 	} else {
-		row = int32(r.area.FirstRow + i/(r.area.LastCol-r.area.FirstCol+1))
+		row = r.area.FirstRow + i/(r.area.LastCol-r.area.FirstCol+1)
 	}
-	_, skipped = slices.BinarySearch(r.tally.skips, row)
+	_, skipped = slices.BinarySearch(r.tally.skips, int32(row))
 	return s.values[i], row, skipped && math.IsNaN(s.values[i])
 }
 
@@ -199,12 +199,12 @@ func (p *pairing) byRow() {
 		return
 	}
 	a, b := rowsOf(p.one), rowsOf(p.two)
-	for i, j := 0, 0; i < len(a) || j < len(b); {
+	for i, j := 0, 0; i < a.n || j < b.n; {
 		switch {
-		case j == len(b) || i < len(a) && a[i] < b[j]:
+		case j == b.n || i < a.n && a.at(i) < b.at(j):
 			p.add(i, -1)
 			i++
-		case i == len(a) || b[j] < a[i]:
+		case i == a.n || b.at(j) < a.at(i):
 			p.add(-1, j)
 			j++
 		default:
@@ -215,15 +215,11 @@ func (p *pairing) byRow() {
 }
 
 // rowsOf lists the row of each value.
-func rowsOf(r *reading) []int32 {
+func rowsOf(r *reading) rowList {
 	if !r.isRange {
 		return r.series[0].rows
 	}
-	rows := make([]int32, len(r.series[0].values))
-	for i := range rows {
-		rows[i] = int32(r.area.FirstRow + i)
-	}
-	return rows
+	return rowList{n: len(r.series[0].values), first: r.area.FirstRow}
 }
 
 // byKey pairs the values whose rows hold the same key.
@@ -234,8 +230,8 @@ func (p *pairing) byKey(first, second *bound) {
 		return
 	}
 	taken := make([]bool, len(p.two.series[0].values))
-	for i, row := range p.one.series[0].rows {
-		key := keyAt(first, int(row))
+	for i := range p.one.series[0].values {
+		key := keyAt(first, p.one.series[0].rows.at(i))
 		if key == "" {
 			continue
 		}
@@ -247,8 +243,8 @@ func (p *pairing) byKey(first, second *bound) {
 		taken[j] = true
 		p.add(i, j)
 	}
-	for j, row := range p.two.series[0].rows {
-		if key := keyAt(second, int(row)); key != "" && !taken[j] {
+	for j := range p.two.series[0].values {
+		if key := keyAt(second, p.two.series[0].rows.at(j)); key != "" && !taken[j] {
 			if _, found := keys[key]; !found {
 				p.add(-1, j)
 			}
@@ -259,21 +255,23 @@ func (p *pairing) byKey(first, second *bound) {
 // keys gives the place of the value of each key. A key that stands twice
 // refuses the sample.
 func (p *pairing) keys(r *reading, b *bound) (map[string]int, bool) {
-	m := make(map[string]int, len(r.series[0].rows))
+	rows := r.series[0].rows
+	m := make(map[string]int, rows.n)
 	col := b.col(*b.query.Matched)
-	for i, row := range r.series[0].rows {
-		key := keyAt(b, int(row))
+	for i := range rows.n {
+		row := rows.at(i)
+		key := keyAt(b, row)
 		if key == "" {
 			if !math.IsNaN(r.series[0].values[i]) {
-				r.tally.noKey.add(int(row), col, "")
+				r.tally.noKey.add(row, col, "")
 			}
 			continue
 		}
 		if first, twice := m[key]; twice {
-			one, two := r.sheet.address(int(r.series[0].rows[first]), col), r.sheet.address(int(row), col)
+			one, two := r.sheet.address(rows.at(first), col), r.sheet.address(row, col)
 			r.faults = append(r.faults, fault{Finding: funcs.Finding{Code: "key-repeated", Severity: funcs.Refused, Cells: []string{one, two},
 				Message: fmt.Sprintf("The key %s stands twice, in %s and %s, so its pair is not plain. Correct it, or leave one out by a condition.",
-					cellText(r.sheet.frame.At(int(row), col)), one, two)}, span: b.query.Matched.Span})
+					cellText(r.sheet.frame.At(row, col)), one, two)}, span: b.query.Matched.Span})
 			return nil, false
 		}
 		m[key] = i

@@ -131,6 +131,7 @@ func (b *boundRange) gather(ctx context.Context) (*reading, error) {
 	r.series = []*series{s}
 	frame := b.sheet.frame
 	last := min(area.LastRow, max(frame.LastRow(), area.FirstRow))
+	s.values = make([]float64, 0, max(0, last-area.FirstRow+1)*(area.LastCol-area.FirstCol+1))
 	for row := area.FirstRow; row <= last; row++ {
 		if row&0x3fff == 0 && ctx.Err() != nil {
 			return nil, ctx.Err()
@@ -138,7 +139,7 @@ func (b *boundRange) gather(ctx context.Context) (*reading, error) {
 		for col := area.FirstCol; col <= area.LastCol; col++ {
 			x := math.NaN()
 			if c := frame.column(col); c != nil {
-				x = r.tally.take(c, row, ColumnRef{Span: b.rng.Span}, 0)
+				x = r.tally.take(c, row, frame.Row(row), ColumnRef{Span: b.rng.Span}, 0)
 			}
 			s.values = append(s.values, x)
 			if !math.IsNaN(x) && area.FirstCol == area.LastCol {

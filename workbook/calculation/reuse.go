@@ -22,19 +22,25 @@ func (p *Plan) RunAfter(ctx context.Context, workers int, before *Results) (*Res
 			p.options.Progress(int(worked.Add(1)), len(p.Rows))
 		}
 	}
-	for _, level := range p.levels() {
+	levels := p.levels()
+	p.cache = cache{keep: p.options.KeepValues}
+	p.cache.expect(levels)
+	for _, level := range levels {
 		var anew []*Row
 		for _, r := range level {
 			if old := earlier.keeps(r, look); old != nil {
 				done[r.order] = old.movedTo(r)
+				p.cache.done(r)
 				tell()
 			} else {
 				anew = append(anew, r)
 			}
 		}
+		anew = byReading(anew)
 		err := inParallel(ctx, workers, len(anew), func(i int) error {
 			result, err := p.work(ctx, anew[i], look)
 			done[anew[i].order] = result
+			p.cache.done(anew[i])
 			tell()
 			return err
 		})

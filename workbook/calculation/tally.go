@@ -55,7 +55,7 @@ var skipWords = [...]string{"text", "error", "yes-or-no value", "date", "plain n
 
 // take gives the number of a cell that a sample may use. Other cells are
 // counted; NaN stands for them and for blanks.
-func (t *tally) take(column *Column, row int, name ColumnRef, factor float64) float64 {
+func (t *tally) take(column *Column, row int, ofRow RowFlags, name ColumnRef, factor float64) float64 {
 	kind, flags := column.kind(row)
 	if flags&IsFormula != 0 {
 		if flags&IsUnsaved != 0 {
@@ -70,7 +70,7 @@ func (t *tally) take(column *Column, row int, name ColumnRef, factor float64) fl
 			return t.leaveOut(skippedNumber, column, row)
 		}
 		t.used++
-		t.hide(row)
+		t.hide(ofRow)
 		return column.number(row)
 	case Duration:
 		if factor == 0 {
@@ -78,7 +78,7 @@ func (t *tally) take(column *Column, row int, name ColumnRef, factor float64) fl
 			return math.NaN()
 		}
 		t.used++
-		t.hide(row)
+		t.hide(ofRow)
 		return inUnit(column.number(row), factor)
 	case Text:
 		text := t.sheet.frame.texts[column.text(row)]
@@ -107,8 +107,8 @@ func (t *tally) leaveOut(kind skipKind, column *Column, row int) float64 {
 	return math.NaN()
 }
 
-func (t *tally) hide(row int) {
-	if t.sheet.frame.Row(row)&RowHidden != 0 {
+func (t *tally) hide(row RowFlags) {
+	if row&RowHidden != 0 {
 		t.hidden++
 	}
 }

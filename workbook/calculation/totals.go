@@ -23,7 +23,8 @@ const (
 // or as a sum that passes every value above. At the end of a sample, where
 // totals stand, it always counts.
 type totals struct {
-	all, part runningSum // values that are no suspects: from the start, since the last suspect
+	all, part runningSum // values that are no suspects: from the start, since the last sure suspect
+	parted    bool       // there was one; until then both are the same
 	suspects  []suspect
 	count     int
 }
@@ -48,7 +49,7 @@ func (r *runningSum) add(x float64) {
 	}
 	r.n++
 	r.sum += x
-	r.largest = math.Max(r.largest, math.Abs(x))
+	r.largest = max(r.largest, math.Abs(x))
 	r.varied = r.varied || x != r.first
 	r.whole = r.whole && x == math.Trunc(x)
 }
@@ -59,32 +60,46 @@ func (r *runningSum) matches(x float64) (match, sure bool) {
 	if r.n < totalFrom || !r.varied {
 		return false, false
 	}
-	near := func(y float64) bool {
-		return math.Abs(x-y) <= totalTolerance*math.Max(math.Abs(x), math.Abs(y))
+	// Nearly every value is told from both by little work: from the sum, if it
+	// is much smaller, and from the mean without a division, not too sharply.
+	size, n := math.Abs(r.sum), float64(r.n)
+	if 2*math.Abs(x) < size && math.Abs(x*n-r.sum) > 4*totalTolerance*size {
+		return false, false
 	}
-	if near(r.sum) {
+	if alike(x, r.sum) {
 		return true, math.Abs(x) > r.largest
 	}
-	mean := near(r.sum / float64(r.n))
-	return mean, mean && !r.whole
+	if alike(x, r.sum/n) {
+		return true, !r.whole
+	}
+	return false, false
+}
+
+// alike reports whether two numbers are the same but for rounding.
+func alike(x, y float64) bool {
+	return math.Abs(x-y) <= totalTolerance*max(math.Abs(x), math.Abs(y))
 }
 
 // add takes the next value of the sample and whether its row has a text that
 // starts like a total.
 func (t *totals) add(row int, x float64, byText bool) {
 	t.count++
-	one, sureOne := t.all.matches(x)
-	two, sureTwo := t.part.matches(x)
-	s := suspect{row: row, place: t.count, byText: byText, byValue: one || two, sure: sureOne || sureTwo}
-	if s.byText || s.byValue {
-		t.suspects = append(t.suspects, s)
+	match, sure := t.all.matches(x)
+	if t.parted {
+		two, sureTwo := t.part.matches(x)
+		match, sure = match || two, sure || sureTwo
 	}
-	if s.byText || s.sure {
-		t.part = runningSum{}
+	if byText || match {
+		t.suspects = append(t.suspects, suspect{row: row, place: t.count, byText: byText, byValue: match, sure: sure})
+	}
+	if byText || sure {
+		t.part, t.parted = runningSum{}, true
 		return
 	}
 	t.all.add(x)
-	t.part.add(x)
+	if t.parted {
+		t.part.add(x)
+	}
 }
 
 // findings gives the caution for the suspects, or the refusal where text and
