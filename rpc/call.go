@@ -7,6 +7,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"runtime/debug"
+	"strings"
 	"sync"
 	"time"
 )
@@ -63,6 +64,11 @@ func (c *Call) answer(result any, err error, inTurn bool) {
 	if c.id == nil {
 		if err != nil {
 			c.Session.remarks.say("%s (a notification) was not done: %v", c.Method, err)
+			wire, level := wireError(err), LogWarning
+			if wire.Code == CodeInternal {
+				level = LogError
+			}
+			c.Session.LogMessage(level, fmt.Sprintf("%.100s was not done: %s.", c.Method, strings.TrimSuffix(wire.Message, ".")))
 		}
 		return
 	}
@@ -99,7 +105,9 @@ func (s *Session) reply(c *Call, result any, err error, inTurn bool) {
 	}
 	s.forget(c)
 	if s.traced() {
-		s.Notify("$/logTrace", map[string]string{"message": fmt.Sprintf("%s (id %s) answered after %v", c.Method, c.id, time.Since(c.came).Round(time.Microsecond))})
+		s.logTrace(fmt.Sprintf("%s (id %s) answered after %v", c.Method, c.id, time.Since(c.came).Round(time.Microsecond)), func() string {
+			return fmt.Sprintf("%d bytes of params, %d bytes of reply", len(c.Params), buf.Len())
+		})
 	}
 	if inTurn {
 		_ = s.writer.gather(buf.Bytes()) // the writer itself tells of its errors

@@ -20,8 +20,10 @@ func TestCancelWhileRunning(t *testing.T) {
 	for _, id := range []string{`7`, `8`, `null`, `{}`, `[`} {
 		c.send(`{"jsonrpc":"2.0","method":"$/cancelRequest","params":{"id":%s}}`, id)
 	}
+	c.wantPart(`"method":"window/logMessage"`, "names no id")
 	c.wantPart(`"id":null`, `-32700`)
 	c.send(`{"jsonrpc":"2.0","method":"$/cancelRequest"}`)
+	c.wantPart(`"method":"window/logMessage"`, "names no id")
 	c.leave()
 }
 

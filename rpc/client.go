@@ -76,7 +76,24 @@ const (
 	LogLog
 )
 
-// LogMessage sends a line to the client's log.
+// LogMessage sends a line to the client's log, between initialize and shutdown.
 func (s *Session) LogMessage(level int, text string) {
-	s.Notify("window/logMessage", map[string]any{"type": level, "message": text})
+	s.notifyOpen("window/logMessage", map[string]any{"type": level, "message": text})
+}
+
+// logTrace tells of the server's doings, where the client wants to know: the
+// message at the trace levels messages and verbose, the rest at verbose alone.
+func (s *Session) logTrace(message string, rest func() string) {
+	s.mu.Lock()
+	level := s.trace
+	if s.phase != open {
+		level = "off"
+	}
+	s.mu.Unlock()
+	switch level {
+	case "messages":
+		s.Notify("$/logTrace", map[string]string{"message": message})
+	case "verbose":
+		s.Notify("$/logTrace", map[string]string{"message": message, "verbose": rest()})
+	}
 }

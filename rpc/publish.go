@@ -69,6 +69,7 @@ func (b *liveBook) run(ctx context.Context) {
 		b.stop = stop
 		b.mu.Unlock()
 
+		start := time.Now()
 		results, plan, err := b.workOut(newest, state)
 		b.mu.Lock()
 		if b.state == state { // else a newer one has come
@@ -76,6 +77,8 @@ func (b *liveBook) run(ctx context.Context) {
 			switch {
 			case err == nil && results != nil:
 				b.publish(state, results, plan)
+				b.session.logTrace(fmt.Sprintf("%s of %s published after %v", publishMethod, quoted(b.name), time.Since(start).Round(time.Microsecond)),
+					func() string { return workedAnew(results) })
 			case err != nil && ctx.Err() == nil:
 				b.session.remarks.say("the book %s cannot be worked out: %v", quoted(b.name), err)
 				b.session.LogMessage(LogError, fmt.Sprintf("The book %s cannot be worked out: %v", quoted(b.name), err))
@@ -84,6 +87,17 @@ func (b *liveBook) run(ctx context.Context) {
 		b.mu.Unlock()
 		stop()
 	}
+}
+
+// workedAnew says how many rows a change has had worked out again.
+func workedAnew(r *calculation.Results) string {
+	anew := 0
+	for _, row := range r.Rows {
+		if !row.Kept {
+			anew++
+		}
+	}
+	return fmt.Sprintf("%d of %d rows worked out anew", anew, len(r.Rows))
 }
 
 // workOut works a state out once it has settled. The results are nil where
@@ -110,7 +124,7 @@ func (b *liveBook) workOut(ctx context.Context, state *bookState) (results *calc
 	if err != nil || len(plan.Sheets) == 0 && b.results == nil {
 		return nil, nil, err
 	}
-	results, err = plan.RunAfter(ctx, max(1, b.session.limits.Workers/2), b.results)
+	results, err = plan.RunAfter(ctx, b.session.sheetWorkers(), b.results)
 	return results, plan, err
 }
 

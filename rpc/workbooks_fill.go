@@ -50,7 +50,7 @@ func fillWorkbook(ctx context.Context, call *Call, p fillParams) (any, error) {
 	if len(may) == 0 {
 		return nil, &Error{Code: CodeRequestFailed, Message: "This server fills no files; start it with --may-fill DIR, the folder in which it may."}
 	}
-	options := workbook.Options{Sheets: p.Sheets, Workers: max(1, call.Session.limits.Workers/2), InPlace: isYes(p.InPlace), Replace: isYes(p.Replace)}
+	options := workbook.Options{Sheets: p.Sheets, Workers: call.Session.sheetWorkers(), InPlace: isYes(p.InPlace), Replace: isYes(p.Replace)}
 	path, err := may.file(p.Path, "path")
 	if err != nil {
 		return nil, err
