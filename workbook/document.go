@@ -63,6 +63,7 @@ func open(ctx context.Context, path string, o Options) (document, *calculation.P
 
 func openDocument(path string, o Options) (document, error) {
 	in := newFolders(path, o.Data, o.Limits)
+	in.writes, in.sheets = o.Writes, o.Sheets
 	if isText(path) {
 		t, err := openTextSheet(path, o.Limits, in)
 		if err != nil {

@@ -27,7 +27,8 @@ type Options struct {
 	InPlace bool   // write over the book itself
 	Replace bool   // write over an output that was changed since
 
-	MakeFolders bool // make the folder to write to where it is not there
+	MakeFolders bool    // make the folder to write to where it is not there
+	Writes      *Writes // what the run writes besides, in a batch
 
 	// Progress is told how many rows are worked out, by several goroutines at
 	// once. It may be nil.

@@ -18,8 +18,10 @@ type folders struct {
 	dirs   []string
 	limits ooxml.Limits
 	opened map[string]calculation.Source
-	owner  string // how messages name what the files lie beside
-	advice string // what to do about a file that lies elsewhere
+	writes *Writes  // of the run; nil where it writes no other file
+	sheets []string // calculation sheets that the user named
+	owner  string   // how messages name what the files lie beside
+	advice string   // what to do about a file that lies elsewhere
 }
 
 // newFolders gives the folders for a workbook.
@@ -39,6 +41,9 @@ func (f folders) find(file string) (string, error) {
 		root, err := filepath.EvalSymlinks(dir)
 		if err != nil {
 			continue
+		}
+		if f.writes.output(filepath.Join(root, local)) {
+			return "", errSameRun
 		}
 		path, err := filepath.EvalSymlinks(filepath.Join(root, local))
 		if err != nil {
@@ -62,7 +67,7 @@ func (f folders) open(file string, options calculation.FileOptions) (calculation
 	}
 	key := fmt.Sprint(path, options)
 	if s, ok := f.opened[key]; ok {
-		return s, nil
+		return f.writes.guard(path, s, f.sheets)
 	}
 	var s calculation.Source
 	switch ext := strings.ToLower(filepath.Ext(path)); ext {
@@ -73,10 +78,11 @@ func (f folders) open(file string, options calculation.FileOptions) (calculation
 	default:
 		return nil, fmt.Errorf("ends in %q; name a .csv, .tsv, .xlsx or .xlsm file", ext)
 	}
-	if err == nil {
-		f.opened[key] = s
+	if err != nil {
+		return nil, err
 	}
-	return s, err
+	f.opened[key] = s
+	return f.writes.guard(path, s, f.sheets)
 }
 
 // close closes the workbooks that were opened.

@@ -19,6 +19,7 @@ import (
 // bookVerb is what a verb does with each book.
 type bookVerb struct {
 	done     string // what it has done with a book, for the last line of a batch
+	writes   bool   // it writes outputs
 	filled   bool   // it looks at outputs instead of the books that they were made of
 	work     func(ctx context.Context, path string, o workbook.Options) (*workbook.Report, error)
 	print    func(io.Writer, *workbook.Report) error                             // one book, as text
@@ -50,6 +51,9 @@ func eachBook(c *cobra.Command, f *bookFlags, words []string, v bookVerb) error 
 		}
 	}
 	b := &batch{verb: v, o: f.o, format: format, sharded: s.of > 0}
+	if v.writes {
+		b.o.Writes = writesOf(f.o, files.Found)
+	}
 	for _, found := range files.Found {
 		switch {
 		case !s.holds(found.Key):
@@ -93,6 +97,23 @@ func named(path string, err error) error {
 // outputs as the book lies below the folder that was named.
 func outputIn(dir string, f workbook.Found) string {
 	return filepath.Join(dir, f.Below, filepath.Base(workbook.OutputName(f.Path)))
+}
+
+// writesOf notes what a batch writes, in all shards.
+func writesOf(o workbook.Options, found []workbook.Found) *workbook.Writes {
+	var paths []string
+	for _, f := range found {
+		switch {
+		case f.LeftOut != "" || f.Err != nil:
+		case o.InPlace:
+			paths = append(paths, f.Path)
+		case o.Output != "":
+			paths = append(paths, outputIn(o.Output, f))
+		default:
+			paths = append(paths, workbook.OutputName(f.Path))
+		}
+	}
+	return workbook.NewWrites(paths, o.InPlace)
 }
 
 // checkOutputs refuses a folder for outputs that cannot be one, and two books

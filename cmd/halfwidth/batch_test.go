@@ -348,6 +348,45 @@ func TestFaultyFlagsOfABatchAreRefusedWithAdvice(t *testing.T) {
 	}
 }
 
+// What another book of the batch reads must not rest on which is filled first.
+func TestABookDoesNotReadWhatTheSameBatchWrites(t *testing.T) {
+	header := []any{"work out", "sample", "> mean", "> status"}
+	for _, c := range []struct {
+		name, sample string
+		flags        []string
+		want         string // empty where it may be read
+	}{
+		{"a sheet that stays, in place", "minutes in a.xlsx/Trips", []string{"--in-place"}, ""},
+		{"a sheet that is filled, in place", `"> mean" in a.xlsx/Calculations`, []string{"--in-place"}, "same run"},
+		{"a sheet that stays", `"> mean" in a.xlsx/Calculations`, nil, "holds no number"},
+		{"an output", `"> mean" in a-filled.xlsx/Calculations`, nil, "same run"},
+		{"a sheet of an output", "minutes in a-filled.xlsx/Trips", nil, "same run"},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			var printed []string
+			for _, jobs := range []string{"1", "8"} {
+				dir := t.TempDir()
+				t.Chdir(dir)
+				for _, name := range []string{"a.xlsx", "b.xlsx", "d.xlsx"} {
+					sample := "minutes in Trips"
+					if name == "b.xlsx" {
+						sample = c.sample
+					}
+					makeBook(t, name, ask(header, []any{"mean-interval", sample}))
+				}
+				stdout, stderr, code := run(t, append([]string{"fill", ".", "--jobs", jobs}, c.flags...)...)
+				if refused := c.want != ""; stderr != "" || (code == exitRefused) != refused || !strings.Contains(strings.Join(strings.Fields(stdout), " "), c.want) {
+					t.Errorf("code %d, stderr %q\n%s", code, stderr, stdout)
+				}
+				printed = append(printed, stdout)
+			}
+			if printed[0] != printed[1] {
+				t.Error("it rests on --jobs")
+			}
+		})
+	}
+}
+
 func TestOneFileOfTheBatchGivesTheBytesThatItGivesAlone(t *testing.T) {
 	dir := t.TempDir()
 	makeBooks(t, dir, 20)

@@ -47,7 +47,7 @@ func fillCommand() *cobra.Command {
 	c.Flags().StringVarP(&f.o.Output, "output", "o", "", "the file, or the folder, to write to")
 	c.Flags().BoolVar(&f.o.InPlace, "in-place", false, "write into the workbook itself")
 	c.Flags().BoolVar(&f.o.Replace, "replace", false, "write over an output that was changed since it was filled")
-	verb := bookVerb{done: "Filled", work: workbook.Fill, print: printFilled, columns: longColumns, tabulate: filledTable, sum: sumFilled}
+	verb := bookVerb{done: "Filled", writes: true, work: workbook.Fill, print: printFilled, columns: longColumns, tabulate: filledTable, sum: sumFilled}
 	c.RunE = func(c *cobra.Command, words []string) error { return eachBook(c, f, words, verb) }
 	return c
 }

@@ -161,6 +161,11 @@ func title(text string) (name, words string) {
 	return nameForm(text[:open]), trim(text[open+1 : len(text)-1])
 }
 
+// IsCalculationSheet reports whether a sheet is one by its name or its cell A1.
+func IsCalculationSheet(name string, head *Frame) bool {
+	return isCalculationSheet(name) || marksSheet(head.At(1, 1))
+}
+
 // isCalculationSheet reports whether a sheet is one by its name.
 func isCalculationSheet(name string) bool {
 	name = fold(name)
