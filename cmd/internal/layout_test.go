@@ -38,7 +38,6 @@ var doors = map[string][]string{
 	"gonum.org/v1/gonum":              {"funcs", "funcs/internal/dist", "funcs/internal/num"},
 	"gonum.org/v1/plot":               {"workbook/page"},
 	"github.com/spf13/cobra":          {"cmd/halfwidth"},
-	"github.com/schollz/progressbar":  {"cmd/halfwidth"},
 	"github.com/klauspost/compress":   {"workbook/ooxml"},
 }
 

@@ -35,8 +35,9 @@ func headerForm(s string) string { return fold(strings.Join(strings.Fields(s), "
 // nameForm gives the form of the names of functions, inputs and results: lower
 // case, with hyphens for spaces.
 func nameForm(s string) string {
-	s = strings.NewReplacer("_", "-", "\u2010", "-", "\u2011", "-").Replace(fold(s))
-	return strings.Join(strings.FieldsFunc(s, func(r rune) bool { return r == '-' || unicode.IsSpace(r) }), "-")
+	return strings.Join(strings.FieldsFunc(fold(s), func(r rune) bool {
+		return r == '-' || r == '_' || r == '\u2010' || r == '\u2011' || unicode.IsSpace(r)
+	}), "-")
 }
 
 // looksLikeNumber reports whether a text is a number but for separators, a
