@@ -160,8 +160,12 @@ func (c *textChanges) mayReplace(target string) error {
 	}
 	defer file.Close()
 	there, err := readTextSheet(file, ooxml.Limits{})
-	if err != nil || !c.sameElsewhere(there) {
+	if err != nil {
 		return errChangedOutput(target)
+	}
+	if at, differs := c.differsElsewhere(there); differs {
+		return fmt.Errorf("%s is there and reads otherwise in %s, outside the result columns: the questions or the output were changed since it was filled; "+
+			"use --replace to write over it, or --output to write elsewhere", target, at)
 	}
 	for _, d := range c.differencesIn(there) {
 		if !d.Reason.older() {
@@ -171,25 +175,22 @@ func (c *textChanges) mayReplace(target string) error {
 	return nil
 }
 
-// sameElsewhere reports whether a sheet reads as this one does outside the
-// result cells.
-func (c *textChanges) sameElsewhere(there *calculation.TextSheet) bool {
+// differsElsewhere gives the first cell outside the result cells in which a
+// sheet reads otherwise than this one.
+func (c *textChanges) differsElsewhere(there *calculation.TextSheet) (calculation.CellRef, bool) {
 	results := map[calculation.CellRef]bool{}
 	for _, w := range c.all {
 		results[w.cell.ref] = true
 	}
 	rows, columns := c.sheet.Dimensions()
 	rowsThere, columnsThere := there.Dimensions()
-	if rows != rowsThere {
-		return false
-	}
-	for row := 1; row <= rows; row++ {
+	for row := 1; row <= max(rows, rowsThere); row++ {
 		for col := 1; col <= max(columns, columnsThere); col++ {
 			at := calculation.CellRef{Row: row, Col: col}
 			if !results[at] && c.sheet.CellText(at) != there.CellText(at) {
-				return false
+				return at, true
 			}
 		}
 	}
-	return true
+	return calculation.CellRef{}, false
 }

@@ -165,10 +165,10 @@ func TestATextOutputThatWasChangedSinceIsNotWrittenOver(t *testing.T) {
 		{"nothing changed", header + row, same, same, same, ""},
 		{"the data changed", header + row, same, same, edit("31.5", "32.5"), ""},
 		{"a result is empty", header + row, edit(",31,", ",,"), same, same, ""},
-		{"a remark in the output", header + row, edit(",all,", ",all of them,"), same, same, "--replace"},
-		{"a row in the output", header + row, func(s string) string { return s + "\nmine\n" }, same, same, "--replace"},
+		{"a remark in the output", header + row, edit(",all,", ",all of them,"), same, same, "otherwise in B2,"},
+		{"a row in the output", header + row, func(s string) string { return s + "\nmine\n" }, same, same, "otherwise in A4,"},
 		{"a result typed over", header + row, edit(",31,", ",33,"), same, same, "D2: result typed over"},
-		{"a question added", header + row, same, func(s string) string { return s + row }, same, "--replace"},
+		{"a question added", header + row, same, func(s string) string { return s + row }, same, "otherwise in A3,"},
 		{"the data changed, and no fingerprint tells", noPrint + row, same, same, edit("31.5", "32.5"), "D2: differs (no fingerprint)"},
 		{"no sheet any more", header + row, func(string) string { return "\"" }, same, same, "--replace"},
 	} {
