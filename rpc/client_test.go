@@ -56,7 +56,9 @@ func beginWith(t testing.TB, opts Options, reading bool) *testClient {
 	if opts.Methods == nil {
 		opts.Methods = append(Methods(), testMethods()...)
 	}
-	opts.Version = "0.0-test"
+	if opts.Version == "" {
+		opts.Version = "0.0-test"
+	}
 	serverIn, in := io.Pipe()
 	out, serverOut := io.Pipe()
 	ctx, stop := context.WithCancel(context.Background())
@@ -159,7 +161,13 @@ func (c *testClient) wantPart(parts ...string) string {
 // initialize opens the session.
 func (c *testClient) initialize() {
 	c.t.Helper()
-	c.send(`{"jsonrpc":"2.0","id":"start","method":"initialize","params":{"processId":null,"capabilities":{}}}`)
+	c.initializeWith(`{"processId":null,"capabilities":{}}`)
+}
+
+// initializeWith opens the session with params of the initialize request.
+func (c *testClient) initializeWith(params string) {
+	c.t.Helper()
+	c.send(`{"jsonrpc":"2.0","id":"start","method":"initialize","params":%s}`, params)
 	c.wantPart(`"id":"start"`, `"serverInfo":{"name":"halfwidth-server","version":"0.0-test"}`)
 	c.send(`{"jsonrpc":"2.0","method":"initialized","params":{}}`)
 }

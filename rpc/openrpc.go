@@ -22,20 +22,45 @@ func discoverMethods() []Method {
 	}
 }
 
-// document is the OpenRPC document of the session's own methods. A method
-// without a result is a notification.
+// document is the OpenRPC document of the session's own methods.
 func (s *Session) document() object {
-	methods := []object{}
+	var methods []*Method
 	for _, name := range s.names {
-		if m := s.methods[name]; !m.Standard {
+		methods = append(methods, s.methods[name])
+	}
+	return openRPC(methods)
+}
+
+// openRPC describes the methods that LSP does not. One without a result is a
+// notification. OpenRPC has no place for notifications that a server sends;
+// they stand under x-notifications, in the form of methods.
+func openRPC(table []*Method) object {
+	methods, sent := []object{}, []object{}
+	for _, m := range table {
+		if !m.Standard {
 			methods = append(methods, m.document())
 		}
 	}
+	for _, m := range sentNotifications() {
+		sent = append(sent, m.document())
+	}
 	return object{
 		{"openrpc", "1.3.2"},
-		{"info", object{{"title", ServerName}, {"version", s.options.Version},
-			{"description", "Statistical functions over JSON-RPC 2.0, framed as in the base protocol of the Language Server Protocol 3.17, whose life cycle, cancelling and progress apply too. Schemas are JSON Schema 2020-12."}}},
+		{"info", object{{"title", ServerName}, {"version", fmt.Sprint(ProtocolVersion)},
+			{"description", "Statistical functions over JSON-RPC 2.0, framed as in the base protocol of the Language Server Protocol 3.17, whose life cycle, cancelling and progress apply too. Schemas are JSON Schema 2020-12. The version is that of the protocol; initialize gives the program's."}}},
 		{"methods", methods},
+		{"x-notifications", sent},
+	}
+}
+
+// sentNotifications are the notifications to the client that LSP does not
+// describe.
+func sentNotifications() []Method {
+	return []Method{
+		{Name: publishMethod, Notification: true, Params: reflect.TypeFor[publication](),
+			Doc: "Tells what a change of an open book altered in its results."},
+		{Name: refusedMethod, Notification: true, Params: reflect.TypeFor[sheetRefusal](),
+			Doc: "Tells that a message about a sheet was not taken, so that the sheet is not held until sheets/didOpen of it comes again."},
 	}
 }
 
@@ -70,6 +95,10 @@ func typeSchema(t reflect.Type) object {
 		return object{{"type", "object"}}
 	case valueType:
 		return object{}
+	case cellsType:
+		return blocksSchema()
+	case reflect.TypeFor[Error]():
+		return errorSchema()
 	}
 	switch t.Kind() {
 	case reflect.Pointer:
@@ -104,13 +133,16 @@ func listSchema() object { return typeSchema(reflect.TypeFor[[]listed]()) }
 
 func descriptionSchema() object { return typeSchema(reflect.TypeFor[description]()) }
 
-func answersSchema() object {
-	failure := object{{"type", "object"}, {"properties", object{
+func errorSchema() object {
+	return object{{"type", "object"}, {"properties", object{
 		{"code", object{{"type", "integer"}}}, {"message", object{{"type", "string"}}}, {"data", object{{"type", "object"}}}}}, {"required", []string{"code", "message"}}}
+}
+
+func answersSchema() object {
 	one := func(name string, schema object) object {
 		return object{{"type", "object"}, {"properties", object{{name, schema}}}, {"required", []string{name}}, {"additionalProperties", false}}
 	}
-	return object{{"type", "array"}, {"items", object{{"oneOf", []object{one("outcome", outcomeSchema(nil)), one("error", failure)}}}}}
+	return object{{"type", "array"}, {"items", object{{"oneOf", []object{one("outcome", outcomeSchema(nil)), one("error", errorSchema())}}}}}
 }
 
 // announceCatalogue lets a client see whether the catalogue is the one whose

@@ -1,7 +1,10 @@
 package rpc
 
 import (
+	"bytes"
 	"encoding/json"
+	"os"
+	"strings"
 	"testing"
 )
 
@@ -29,7 +32,7 @@ func TestTheDocumentHoldsEveryMethod(t *testing.T) {
 	if err := json.Unmarshal(r.Result, &document); err != nil {
 		t.Fatal(err)
 	}
-	if document.OpenRPC != "1.3.2" || document.Info.Title != ServerName || document.Info.Version != "0.0-test" {
+	if document.OpenRPC != "1.3.2" || document.Info.Title != ServerName || document.Info.Version != "1" {
 		t.Errorf("the document is %s of %+v", document.OpenRPC, document.Info)
 	}
 	described := document.Methods
@@ -77,5 +80,32 @@ func TestTheCatalogueIsAnnounced(t *testing.T) {
 	mark, _ := capabilities["experimental"].(map[string]any)["halfwidth"].(map[string]any)["catalogue"].(string)
 	if len(mark) != 16 {
 		t.Errorf("the catalogue's mark is %q", mark)
+	}
+}
+
+// The document is committed, so that it can be read without a server.
+// go test ./rpc -run OpenRPC -update renews it.
+func TestTheOpenRPCDocumentIsThatOfTheCode(t *testing.T) {
+	var table []*Method
+	for _, m := range Methods() {
+		table = append(table, &m)
+	}
+	var flat, want bytes.Buffer
+	if err := encodeJSON(&flat, openRPC(table)); err != nil {
+		t.Fatal(err)
+	}
+	if err := json.Indent(&want, flat.Bytes(), "", "\t"); err != nil {
+		t.Fatal(err)
+	}
+	want.WriteByte('\n')
+	const file = "openrpc.json"
+	if *update {
+		if err := os.WriteFile(file, want.Bytes(), 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	got, err := os.ReadFile(file)
+	if err != nil || strings.ReplaceAll(string(got), "\r\n", "\n") != want.String() {
+		t.Errorf("rpc/%s is not that of the code (%v); run: go test ./rpc -run OpenRPC -update", file, err)
 	}
 }

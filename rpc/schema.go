@@ -206,3 +206,25 @@ func findingSchema() object {
 			{"cells", object{{"type", "array"}, {"items", text}}}}},
 		{"required", []string{"code", "severity", "message"}}, {"additionalProperties", false}}
 }
+
+// blocksSchema describes the cells of a sheet, in blocks.
+func blocksSchema() object {
+	strict := func(name string, schema any) object {
+		return object{{"type", "object"}, {"properties", object{{name, schema}}}, {"required", []string{name}}, {"additionalProperties", false}}
+	}
+	number, text := object{{"type", "number"}}, object{{"type", "string"}}
+	values := []object{number, text, {{"type", "boolean"}}, {{"type", "null"}},
+		strict("date", object{{"anyOf", []object{number, text}}, {"description", "2026-03-02, 2026-03-02T08:15:00, or days since 1899-12-30"}}),
+		strict("duration", object{{"type", "number"}, {"description", "in days"}}), strict("error", text)}
+	cell := object{{"anyOf", append(slices.Clip(values), strict("formula", object{{"anyOf", values}, {"description", "what the formula gives; null where that is not known"}}))}}
+	list := object{{"type", "array"}, {"items", cell}}
+	block := func(name string, schema object) object {
+		return object{{"type", "object"}, {"properties", object{{"at", object{{"type", "string"}, {"description", "the first cell, such as B2"}}}, {name, schema}}},
+			{"required", []string{"at", name}}, {"additionalProperties", false}}
+	}
+	return object{{"type", "array"}, {"items", object{{"oneOf", []object{
+		block("rows", object{{"type", "array"}, {"items", list}}),
+		block("column", object{{"anyOf", []object{list, packedSchema()}}}),
+		strict("clear", object{{"type", "string"}, {"description", "a range that is blank from now on, such as A5:C9; in sheets/didChange only"}}),
+	}}}}}
+}

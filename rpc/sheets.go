@@ -177,10 +177,10 @@ const refusedMethod = "sheets/refused"
 
 // sheetRefusal is the params of sheets/refused.
 type sheetRefusal struct {
-	Book    string `json:"book"`
-	Sheet   string `json:"sheet"`
-	Version int    `json:"version"`
-	Error   *Error `json:"error"`
+	Book    string `json:"book" doc:"the book, empty where it could not be read"`
+	Sheet   string `json:"sheet" doc:"the sheet"`
+	Version int    `json:"version" doc:"the version that the message leads to"`
+	Error   *Error `json:"error" doc:"why: -32801 where the version does not fit, -32602 where the values cannot be taken, -32803 where a limit is passed"`
 }
 
 func (s *Session) bookNamed(name string) *bookState {
