@@ -1,10 +1,15 @@
 package rpc
 
 import (
+	"context"
 	"encoding/json"
 	"fmt"
+	"os"
+	"path/filepath"
 	"strings"
 	"testing"
+
+	"halfwidth/workbook"
 )
 
 // choose makes the edits of the action with a title.
@@ -88,6 +93,43 @@ func TestActionsAreOfTheKindsAskedFor(t *testing.T) {
 			if a.Kind != want {
 				t.Errorf("only %s: %+v", only, a)
 			}
+		}
+	}
+	e.leave()
+}
+
+// The demo sheet filled in an editor is, byte for byte, the one that a fill
+// writes.
+func TestAnEditorFillsAsTheCommandDoes(t *testing.T) {
+	e := newTextEditor(t, everything, "", nil)
+	for _, name := range []string{"handling.calculations.csv", "night.csv", "larkmoor.xlsx"} {
+		data, err := os.ReadFile("../testdata/workbooks/" + name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		e.write(name, string(data))
+	}
+	const name = "handling.calculations.csv"
+	report, err := workbook.Fill(context.Background(), filepath.Join(e.folder, name), workbook.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	want, err := os.ReadFile(report.Saved.Path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	before, err := os.ReadFile(filepath.Join(e.folder, name))
+	if err != nil {
+		t.Fatal(err)
+	}
+	e.open(name, string(before))
+	e.choose(name, "|Larkmoor", "Fill all results")
+	if got := e.buffers[name].text; got != string(want) || got == string(before) {
+		t.Errorf("the editor holds\n%s\nthe command wrote\n%s", got, want)
+	}
+	for _, d := range e.found(name) {
+		if d.Code == codeOutOfDate || d.Code == codeNotFilled {
+			t.Errorf("after a fill: %+v", d)
 		}
 	}
 	e.leave()

@@ -70,6 +70,8 @@ func play(t *testing.T, lines []string) {
 		case "", "#", "max-message-bytes", "max-header-bytes", "max-depth", "max-sample-values", "max-open-sheets", "max-open-cells", "workers", "max-queue":
 		case "open":
 			c.initialize()
+		case "open-with":
+			c.initializeWith(rest)
 		case "send":
 			c.raw(frame(rest))
 		case "raw":

@@ -87,6 +87,9 @@ func inlayHints(ctx context.Context, q *textQuestion, p rangeParams) (any, error
 				continue
 			}
 			name := w.resultName(r, e.Cell)
+			if r.Status == funcs.StatusRefused && name != "status" && name != "note" {
+				continue // the reason is shown by the diagnostics
+			}
 			hints = append(hints, inlayHint{at, name + " " + shortText(text, 60), w.resultHint(r, name, e.Value), true})
 		}
 	}

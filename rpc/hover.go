@@ -170,7 +170,7 @@ func (t *hoverText) row(w *workedText, r *calculation.RowResult, at *textPlace) 
 			fmt.Fprintf(t, "\n%s\n", t.plain(fmt.Sprint(sentence)))
 		}
 	}
-	if len(r.Findings) > 0 {
+	if len(r.Findings) > 0 && r.Outcome != nil && r.Status != funcs.StatusRefused {
 		t.WriteString("\n")
 	}
 	for _, d := range r.Findings {

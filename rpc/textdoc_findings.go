@@ -69,7 +69,7 @@ func (w *workedText) findings(show resultsAs) []textFinding {
 			c.add(d, r.Instead(d, w.sheet.CellText(d.Cell)))
 		}
 		c.addStale(r)
-		if show == asDiagnostics {
+		if show == asDiagnostics && r.Status != funcs.StatusRefused { // why it is refused is shown already
 			c.addPlain(calculation.CellRef{Row: r.Row.Number, Col: workColumn(r.Row.Block)}, severityHint, codeResults, w.summary(r))
 		}
 	}
@@ -178,16 +178,17 @@ func (c *findingList) addStale(r *calculation.RowResult) {
 		}
 	}
 	if first == nil {
-		if blank {
+		if blank && r.Status != funcs.StatusRefused { // why it is refused is shown already
 			c.unfilled = append(c.unfilled, r.Row.Block)
 		}
 		return
 	}
-	worked := "it should be empty, since the row is refused"
-	if text := c.sheet.ValueText(first.Value); text != "" {
-		worked = "worked out is " + shortText(strings.TrimSpace(text), 60)
-	} else if r.Status != funcs.StatusRefused {
-		worked = "it should be empty, since there is no such result"
+	worked := "worked out is " + shortText(strings.TrimSpace(c.sheet.ValueText(first.Value)), 60)
+	switch {
+	case r.Status == funcs.StatusRefused:
+		worked = "but the row is refused"
+	case first.Value == nil:
+		worked = "but there is no such result"
 	}
 	message := fmt.Sprintf("The results are out of date: %s (%s) holds %s, %s.", first.Cell, c.resultName(r, first.Cell), shortText(strings.TrimSpace(c.sheet.CellText(first.Cell)), 60), worked)
 	if more > 0 {
