@@ -128,7 +128,7 @@ func hostileSheets() []hostile {
 		{name: "every column of the first hundred rows", parts: asks(worksheetA+`<sheetData>`+tripRows+strings.Repeat(`<row>`+strings.Repeat(`<c><v>1</v></c>`, 16_384)+`</row>`, 60)+`</sheetData></worksheet>`, "Trips!B2:B7")},
 		{name: "a column more than there are", parts: sheet("", `<row>`+strings.Repeat(`<c/>`, 16_385)+`</row>`, ""), refused: "16384 columns"},
 		{name: "nested deep", parts: sheet(nested(100_000), "", ""), refused: "nested deeper than 256"},
-		{name: "nested deep in a cell", parts: sheet("", `<row><c>`+nested(100_000)+`</c></row>`, ""), refused: "nested deeper than 256"},
+		{name: "nested deep in a cell", parts: sheet("", `<row><c><extLst>`+nested(100_000)+`</extLst></c></row>`, ""), refused: "nested deeper than 256"},
 		{name: "a document type", parts: plain.with(tripsPart, laughs+`<worksheet/>`), refused: "DOCTYPE"},
 		{name: "an external entity", parts: sheet("", `<row><c t="str"><v>&passwd;</v></c></row>`, ""), refused: "&passwd; means nothing"},
 		{name: "a huge attribute of a cell", parts: sheet("", `<row><c x="`+strings.Repeat("x", 15<<20)+`"/></row>`, "")},

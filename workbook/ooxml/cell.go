@@ -99,7 +99,7 @@ func (s *scanner) cellContent(cell *Cell) (hasValue bool, err error) {
 			cell.Formula = true
 			return s.formula(int(cell.Col))
 		}
-		return s.skip()
+		return s.stray()
 	})
 	return hasValue || hasInline, err
 }

@@ -228,6 +228,20 @@ func (x *lexer) next() error {
 	}
 }
 
+// nextTag is next within elements that hold no text, as all do that hold cells or
+// lists: text there is a value that lost its tag.
+func (x *lexer) nextTag() error {
+	for {
+		err := x.next()
+		switch {
+		case err != nil || x.kind != tokenText:
+			return err
+		case len(trimSpace(x.text)) > 0:
+			return x.wrong("the text %.40q stands where it has no place", trimSpace(x.text))
+		}
+	}
+}
+
 // finish ends the part, if all that was opened is closed.
 func (x *lexer) finish() error {
 	if x.err != nil || len(x.opens) > 0 || !x.rootSeen {

@@ -23,7 +23,7 @@ func (s *scanner) sheetData() error {
 			}
 			continue
 		}
-		if err := s.next(); err != nil {
+		if err := s.nextTag(); err != nil {
 			return err
 		}
 		switch {
@@ -38,7 +38,7 @@ func (s *scanner) sheetData() error {
 				return err
 			}
 		case s.kind == tokenStart:
-			if err := s.skip(); err != nil {
+			if err := s.stray(); err != nil {
 				return err
 			}
 		}
@@ -124,7 +124,7 @@ func (s *scanner) cells() error {
 				return s.endRow()
 			}
 		}
-		if err := s.next(); err != nil {
+		if err := s.nextTag(); err != nil {
 			return err
 		}
 		switch {
@@ -135,7 +135,7 @@ func (s *scanner) cells() error {
 				return err
 			}
 		case s.kind == tokenStart:
-			if err := s.skip(); err != nil {
+			if err := s.stray(); err != nil {
 				return err
 			}
 		}

@@ -187,10 +187,15 @@ func (s *scanner) run() error {
 	}
 	seen := false
 	err := s.children(func() error {
-		if s.space != spaceMain {
+		switch {
+		case s.space == spaceCompatibility:
+			return s.alternative()
+		case s.space != spaceMain:
 			return nil
 		}
 		switch string(s.local) {
+		case "row", "c":
+			return s.stray()
 		case "sheetData":
 			if seen {
 				return s.wrong("the sheet's cells are given in two places")
@@ -218,6 +223,21 @@ func (s *scanner) run() error {
 	for s.kind != tokenEOF {
 		if err := s.next(); err != nil {
 			return err
+		}
+	}
+	return nil
+}
+
+// alternative passes over contents to choose from, such as controls, and refuses
+// those in which cells stand.
+func (s *scanner) alternative() error {
+	depth := s.depth()
+	for s.kind != tokenEnd || s.depth() >= depth {
+		if err := s.next(); err != nil {
+			return err
+		}
+		if s.kind == tokenStart && (s.is("sheetData") || s.is("mergeCells")) {
+			return s.wrong("the sheet's cells stand in contents to choose from (<AlternateContent>); open it in the program that wrote it, and save it as a plain workbook")
 		}
 	}
 	return nil

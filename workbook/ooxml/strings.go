@@ -73,7 +73,7 @@ func newStringTable(data []byte, limits Limits) (*stringTable, error) {
 			t.decoded = decoded
 			t.items = append(t.items, stringItem{from: uint32(len(t.data) + from), to: uint32(len(t.data) + len(decoded))})
 		case x.kind == tokenStart && x.depth() == 2:
-			if err := x.skip(); err != nil {
+			if err := x.stray(); err != nil {
 				return nil, err
 			}
 		}
@@ -134,6 +134,8 @@ func (x *lexer) richText(dst []byte) ([]byte, error) {
 				return dst, err
 			}
 		case x.is("r") && x.depth() == depth+1:
+		case x.space == spaceCompatibility:
+			return dst, x.stray()
 		default:
 			if err := x.skip(); err != nil {
 				return dst, err

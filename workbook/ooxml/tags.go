@@ -15,6 +15,7 @@ const (
 	spaceRelationships           // r:id
 	spacePackage                 // the relationship parts
 	spaceContentTypes
+	spaceCompatibility // mc:AlternateContent (ECMA-376 part 3)
 )
 
 const (
@@ -24,6 +25,7 @@ const (
 	relStrict         = "http://purl.oclc.org/ooxml/officeDocument/relationships"
 	packageRelations  = "http://schemas.openxmlformats.org/package/2006/relationships"
 	packageTypes      = "http://schemas.openxmlformats.org/package/2006/content-types"
+	compatibility     = "http://schemas.openxmlformats.org/markup-compatibility/2006"
 	namespaceOfPrefix = "xmlns"
 )
 
@@ -46,6 +48,8 @@ func namespaceOf(uri string) namespace {
 		return spacePackage
 	case packageTypes:
 		return spaceContentTypes
+	case compatibility:
+		return spaceCompatibility
 	}
 	return spaceOther
 }
@@ -135,7 +139,9 @@ func (x *lexer) startTag() error {
 	}
 	x.kind, x.name, x.single = tokenStart, name, single
 	x.pos += n + 1
-	x.split()
+	if !x.split() {
+		return x.wrong("the prefix of <%.40s> is not declared", name)
+	}
 	return nil
 }
 
@@ -232,23 +238,39 @@ func (x *lexer) unique() error {
 	return nil
 }
 
-// split finds the namespace and the local part of the token's name.
-func (x *lexer) split() {
+// split finds the namespace and the local part of the token's name. It is false
+// where the name has a prefix that is not declared.
+func (x *lexer) split() (declared bool) {
 	var prefix []byte
 	x.local = x.name
 	if i := bytes.IndexByte(x.name, ':'); i >= 0 {
 		prefix, x.local = x.name[:i], x.name[i+1:]
 	}
-	x.space = x.resolve(prefix)
+	x.space, declared = x.resolve(prefix)
+	return declared || len(prefix) == 0 || string(prefix) == "xml"
 }
 
-func (x *lexer) resolve(prefix []byte) namespace {
+func (x *lexer) resolve(prefix []byte) (space namespace, declared bool) {
 	for i := len(x.spaces) - 1; i >= 0; i-- {
 		if x.spaces[i].prefix == string(prefix) {
-			return x.spaces[i].space
+			return x.spaces[i].space, true
 		}
 	}
-	return spaceOther
+	return spaceOther, false
+}
+
+// stray passes over an element that has no place where it stands. In the
+// spreadsheet namespace it is refused, since values that a reader passes over are
+// missing from a sample; and so are contents to choose from. What other
+// namespaces add is not for this reader.
+func (x *lexer) stray() error {
+	switch {
+	case x.space == spaceCompatibility:
+		return x.wrong("<%.40s> stands among the values; open it in the program that wrote it, and save it as a plain workbook", x.name)
+	case x.space == spaceMain && string(x.local) != "extLst":
+		return x.wrong("<%.40s> stands where it has no place", x.name)
+	}
+	return x.skip()
 }
 
 // rawAttr gives the value, as it is written, of an attribute without a prefix.
@@ -288,8 +310,10 @@ func (x *lexer) flag(name string) bool {
 // attrIn gives the value of an attribute whose prefix is bound to the namespace.
 func (x *lexer) attrIn(space namespace, local string) (string, error) {
 	for _, a := range x.attrs {
-		if i := bytes.IndexByte(a.name, ':'); i > 0 && string(a.name[i+1:]) == local && x.resolve(a.name[:i]) == space {
-			return x.value(a.value)
+		if i := bytes.IndexByte(a.name, ':'); i > 0 && string(a.name[i+1:]) == local {
+			if bound, _ := x.resolve(a.name[:i]); bound == space {
+				return x.value(a.value)
+			}
 		}
 	}
 	return "", nil

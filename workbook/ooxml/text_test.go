@@ -78,7 +78,7 @@ func TestPlainTexts(t *testing.T) {
 
 func TestSharedStringsOfEveryForm(t *testing.T) {
 	data := `<!-- c --><sst xmlns="` + mainTransitional + `"><si><t>a</t></si> <si><t xml:space="preserve"> b </t></si><si><t>c &amp; d</t></si><si><r><t>e</t></r><r><rPr/><t>f</t></r><rPh><t>g</t></rPh></si><si/><si></si><si><t/></si>` +
-		`<extra><si><t>no</t></si></extra><si><t >h</t></si><si><t>ä_x000A_</t></si><si><t><![CDATA[<i>]]></t></si></sst>`
+		`<o:extra xmlns:o="urn:o"><si><t>no</t></si></o:extra><si><t >h</t></si><si><t>ä_x000A_</t></si><si><t><![CDATA[<i>]]></t></si></sst>`
 	table, err := newStringTable([]byte(data), Limits{}.WithDefaults())
 	if err != nil {
 		t.Fatal(err)

@@ -56,12 +56,12 @@ func (b *Book) readWorkbook(related map[string]relation) error {
 	return nil
 }
 
-// children calls visit at each start tag directly in the current element and
-// reads on to the element's end.
+// children calls visit at each start tag directly in the current element, which
+// holds no text of its own, and reads on to the element's end.
 func (x *lexer) children(visit func() error) error {
 	depth := x.depth()
 	for {
-		if err := x.next(); err != nil {
+		if err := x.nextTag(); err != nil {
 			return err
 		}
 		switch {
