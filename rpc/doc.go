@@ -17,6 +17,12 @@
 // come back through outcome.go. schema.go and openrpc.go describe both ways from
 // the same descriptors.
 //
+// The documents of an editor (textdoc.go) are kept as immutable states, one for
+// each version (textdoc_state.go); textdoc_live.go has the newest worked out and
+// publishes what textdoc_findings.go makes of it. completion.go, hover.go,
+// signature.go, actions.go, hints.go and symbols.go answer from the state that
+// was the newest when the question came.
+//
 // A message passes, in this order: frames.go (bytes to bodies), envelope.go (a
 // body to its members), transport.go (one message for the library, or an answer
 // to a faulty one), session.go (life cycle, order, cancelling), a handler of the

@@ -36,7 +36,7 @@ const everything = `{"workspace":{"applyEdit":true,"workspaceFolders":true,"work
 // newTextEditor starts a session with a folder of data files.
 func newTextEditor(t testing.TB, capabilities, options string, files map[string]string) *textEditor {
 	t.Helper()
-	e := &textEditor{testClient: begin(t, Options{settle: time.Millisecond}), folder: t.TempDir(), buffers: map[string]*lines{},
+	e := &textEditor{testClient: begin(t, Options{settle: time.Millisecond, Limits: Limits{Drain: 2 * patience}}), folder: t.TempDir(), buffers: map[string]*lines{},
 		versions: map[string]int{}, shown: map[string]publishedDiagnostics{}}
 	for name, text := range files {
 		e.write(name, text)

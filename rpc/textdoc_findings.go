@@ -59,7 +59,7 @@ func (w *workedText) findings(show resultsAs) []textFinding {
 	if w.sheet == nil {
 		return []textFinding{{diagnostic: w.damaged()}}
 	}
-	c := &findingList{workedText: w, seen: map[string]bool{}}
+	c := &findingList{workedText: w, seen: map[string]bool{}, places: relatedPlaces{w, map[string]*textState{}}}
 	layout := w.plan.Diagnostics()
 	for _, d := range layout {
 		c.add(d, d.Instead)
@@ -100,6 +100,7 @@ type findingList struct {
 	*workedText
 	list     []textFinding
 	seen     map[string]bool
+	places   relatedPlaces
 	unfilled []*calculation.Block // one for each row of it that is not filled
 }
 
@@ -109,7 +110,7 @@ var severities = map[funcs.Severity]int{funcs.Refused: severityError, funcs.Caut
 // refused comes with each of its rows, and is shown once.
 func (c *findingList) add(d calculation.Diagnostic, instead []string) {
 	f := textFinding{cell: d.Cell, within: d.Span, diagnostic: diagnostic{Range: c.span(d.Cell, d.Span), Severity: severities[d.Severity], Code: d.Code,
-		Source: diagnosticSource, Message: d.Message, Related: c.related(d)}}
+		Source: diagnosticSource, Message: d.Message, Related: c.places.of(d)}}
 	key := fmt.Sprint(d.Cell, d.Span, d.Code, d.Message)
 	if c.seen[key] {
 		return
@@ -142,23 +143,6 @@ func quotedName(text string) string {
 		return text
 	}
 	return `"` + text + `"`
-}
-
-// related gives the places in the document of the other cells that a finding
-// names.
-func (c *findingList) related(d calculation.Diagnostic) []relatedPlace {
-	var list []relatedPlace
-	for _, address := range d.Cells {
-		sheet, at, ok := strings.Cut(address, "!")
-		cell, isCell := calculation.ParseCell(at)
-		if !ok || !isCell || sheet != calculation.TextSheetName || cell == d.Cell {
-			continue
-		}
-		if _, there := c.sheet.CellSpan(cell); there {
-			list = append(list, relatedPlace{location{c.uri, c.span(cell, calculation.Span{})}, at})
-		}
-	}
-	return list
 }
 
 // addStale tells of result cells of a row that hold something else than was
