@@ -56,20 +56,22 @@ func (p *Plan) Run(ctx context.Context, workers int) (*Results, error) {
 	return p.RunAfter(ctx, workers, nil)
 }
 
-// inParallel calls work for 0 to n-1 from several goroutines and gives the
-// error of the lowest.
+// inParallel calls work for 0 to n-1 from this and other goroutines and gives
+// the error of the lowest.
 func inParallel(ctx context.Context, workers, n int, work func(int) error) error {
 	workers = max(1, min(workers, n))
 	errs := make([]error, n)
 	var next atomic.Int64
 	var group sync.WaitGroup
-	for range workers {
-		group.Go(func() {
-			for i := int(next.Add(1) - 1); i < n && ctx.Err() == nil; i = int(next.Add(1) - 1) {
-				errs[i] = work(i)
-			}
-		})
+	worker := func() {
+		for i := int(next.Add(1) - 1); i < n && ctx.Err() == nil; i = int(next.Add(1) - 1) {
+			errs[i] = work(i)
+		}
 	}
+	for range workers - 1 {
+		group.Go(worker)
+	}
+	worker()
 	group.Wait()
 	if err := ctx.Err(); err != nil {
 		return err

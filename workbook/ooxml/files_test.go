@@ -91,7 +91,9 @@ func TestSaveAs(t *testing.T) {
 }
 
 func TestSaveAsRefuses(t *testing.T) {
-	b, path := fileBook(t, richBook(t))
+	// Large enough not to be held in memory.
+	b, path := fileBook(t, smallBook(rows("")).with("xl/media/image1.png", strings.Repeat("dots", 1<<16)).
+		change("xl/media/image1.png", func(f *file) { f.store = true }).bytes(t))
 	dir := filepath.Dir(path)
 	_, err := b.SaveAs(filepath.Join(dir, ".", "Trips.xlsx"), oneEdit)
 	wantError(t, err, ErrTarget, path+": this is the workbook itself; give the output another name, or save in place")

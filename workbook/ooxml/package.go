@@ -1,6 +1,7 @@
 package ooxml
 
 import (
+	"bytes"
 	"fmt"
 	"io"
 	"io/fs"
@@ -94,13 +95,29 @@ func Open(path string, limits Limits) (*Book, error) {
 	if err != nil {
 		return nil, err
 	}
-	b, err := OpenReaderAt(path, f, f.Size(), limits)
+	b, err := OpenReaderAt(path, atOnce(f), f.Size(), limits)
 	if err != nil {
 		f.Close()
 		return nil, err
 	}
 	b.disk = f
 	return b, nil
+}
+
+// smallFile is the size up to which a file is read at once: many small reads
+// cost more than they save.
+const smallFile = 64 << 10
+
+// atOnce reads a small file. Where that fails, the reads that follow say why.
+func atOnce(f *File) io.ReaderAt {
+	if f.Size() > smallFile {
+		return f
+	}
+	data := make([]byte, f.Size())
+	if n, _ := f.ReadAt(data, 0); n < len(data) {
+		return f
+	}
+	return bytes.NewReader(data)
 }
 
 // OpenReaderAt opens a workbook held elsewhere than in a file; name stands for

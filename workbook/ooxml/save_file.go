@@ -77,7 +77,7 @@ func syncDir(dir string) {
 // is free and holds a lock on it, which ends with its process; a file that
 // nobody holds is left over from a process that was killed. So the next save of
 // a target finds what is to be removed without reading the whole folder.
-const tempNames = 8
+const tempNames = 4
 
 // tries is how often all names are tried: one may be held for a moment by a
 // process that looks whether it is left over.

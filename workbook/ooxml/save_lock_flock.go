@@ -15,13 +15,16 @@ const renamesOpenFiles = true
 // closed or the process ends, however it ends. known is false where the file
 // system has no locks.
 func tryLock(f *os.File) (locked, known bool) {
-	for {
-		switch err := syscall.Flock(int(f.Fd()), syscall.LOCK_EX|syscall.LOCK_NB); {
-		case err == nil:
-			return true, true
-		case errors.Is(err, syscall.EINTR):
-		default:
-			return false, errors.Is(err, syscall.EWOULDBLOCK)
-		}
+	raw, err := f.SyscallConn()
+	if err != nil {
+		return false, false
 	}
+	if failure := raw.Control(func(fd uintptr) {
+		for err = syscall.EINTR; errors.Is(err, syscall.EINTR); {
+			err = syscall.Flock(int(fd), syscall.LOCK_EX|syscall.LOCK_NB)
+		}
+	}); failure != nil {
+		return false, false
+	}
+	return err == nil, err == nil || errors.Is(err, syscall.EWOULDBLOCK)
 }
