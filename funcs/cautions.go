@@ -1,6 +1,7 @@
 package funcs
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -12,25 +13,20 @@ import (
 // The findings that functions of one sample raise by themselves.
 var (
 	fewValuesKind  = FindingKind{"few-values", "fewer than 5 values, or fewer than the computation needs"}
-	skewedKind     = FindingKind{"skewed-for-n", "n is at most 25 times the squared skewness (from n = 20)"}
-	neighboursKind = FindingKind{"neighbours-alike", "the lag-1 autocorrelation passes 2.58/√n in size (from n = 20)"}
+	skewedKind     = FindingKind{"skewed-for-n", "n is at most 25 times the squared skewness G1, and G1 differs from 0 at significance 0.01 (from n = 8)"}
+	neighboursKind = FindingKind{"neighbours-alike", "the lag-1 autocorrelation differs from that of independent values at significance 0.01 (from n = 10)"}
 	farValueKind   = FindingKind{"far-value", "the value farthest from the mean is an outlier at significance 0.01"}
-	heavyTailKind  = FindingKind{"heavy-tail", "the tails look too heavy for a finite variance (from n = 100)"}
+	heavyTailKind  = FindingKind{"heavy-tail", "the upper 95% limit of the tail index is below 2, so that the variance may not exist (from n = 150)"}
 	noSpreadKind   = FindingKind{"no-spread", "all values are equal, or the sd given is 0"}
-	spreadsKind    = FindingKind{"spreads-unlike", "with pooled variances, the larger sd is more than twice the smaller"}
+	spreadsKind    = FindingKind{"spreads-unlike", "with pooled variances, one sd is more than twice another and differs from it at significance 0.01 (of sds that are planned: twice)"}
 )
 
 var oneSampleFindings = []FindingKind{fewValuesKind, skewedKind, neighboursKind, farValueKind, heavyTailKind}
 
-// With these, a caution is raised; see the kinds for their meaning.
 const (
-	fewValues       = 5
-	fromValues      = 20   // skewness and autocorrelation say little below
-	cochranFactor   = 25   // Cochran 1977, Sampling Techniques, section 2.15: n > 25·G1²
-	neighbourFactor = 2.58 // the 0.995 normal quantile: 1% of independent samples pass
-	farSignificance = 0.01
-	tailValues      = 100
-	tailConfidence  = 0.95
+	fewValues      = 5
+	tailValues     = 100 // that tail-check asks for
+	tailConfidence = 0.95
 )
 
 // checkSample raises the cautions of a sample, where it was given and checks
@@ -85,12 +81,9 @@ func (c *Call) checkFewOfAnyShape(n int) {
 }
 
 func (c *Call) checkSkewness(input, what string, values []float64, s summary) {
-	if s.n < fromValues {
-		return
-	}
 	g1 := skewness(c.moments(values))
-	need := cochranFactor * float64(g1*g1)
-	if float64(s.n) <= need {
+	if skewedForN(g1, s.n) {
+		need := cochranFactor * float64(g1*g1)
 		c.caution("skewed-for-n", input, "%s is skewed (skewness %s): with n = %d the interval may miss more often than it says; "+
 			"more than %.0f values are the rule for this skewness. Try coverage-check, or enough-n-for-mean.",
 			what, brief(g1), s.n, math.Floor(need))
@@ -98,10 +91,10 @@ func (c *Call) checkSkewness(input, what string, values []float64, s summary) {
 }
 
 func (c *Call) checkNeighbours(input, what string, ordered []float64, s summary) {
-	if s.n < fromValues || c.origin(input).Unordered {
+	if s.n < neighboursFrom || c.origin(input).Unordered {
 		return
 	}
-	if r := c.facts(ordered).lag1(); math.Abs(r) > neighbourFactor/math.Sqrt(float64(s.n)) {
+	if r := c.facts(ordered).lag1(); neighboursAlike(r, s.n) {
 		c.caution("neighbours-alike", input, "Neighbouring values of %s are not independent (lag-1 autocorrelation %s), so the interval is too %s. "+
 			"Average over longer stretches, or see independence-check.", lowerFirst(what), brief(r), narrowOrWide(r))
 	}
@@ -122,7 +115,7 @@ func (c *Call) checkFar(input, what string, group int, ordered []float64, s summ
 	}
 	at := c.facts(ordered).far()
 	far := math.Abs(ordered[at] - s.mean)
-	if far/s.sd <= esdCritical(s.n, farSignificance) {
+	if far/s.sd <= esdCritical(s.n, rare) {
 		return
 	}
 	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.addressIn(input, group, at), Message: fmt.Sprintf(
@@ -139,7 +132,7 @@ func esdCritical(n int, significance float64) float64 {
 }
 
 func (c *Call) checkTail(input, what string, values []float64) {
-	if len(values) < tailValues {
+	if len(values) < heavyTailFrom {
 		return
 	}
 	tail, ok := c.facts(values).hill()
@@ -180,12 +173,14 @@ func hillTail(values []float64, confidence float64) (tailIndex, bool) {
 }
 
 // checkSpreads raises spreads-unlike for pooled variances.
-func (c *Call) checkSpreads(input string, sds ...float64) {
-	smallest, largest := slices.Min(sds), slices.Max(sds)
-	if checks.Of(c) && largest > 2*smallest {
-		c.caution("spreads-unlike", input, "The groups' standard deviations differ (%s to %s), so one pooled variance misleads. "+
-			"Use separate variances, or see equal-spread-test.", brief(smallest), brief(largest))
+func (c *Call) checkSpreads(input string, groups ...spreadOf) {
+	if !checks.Of(c) || !spreadsUnlike(groups) {
+		return
 	}
+	bySD := func(a, b spreadOf) int { return cmp.Compare(a.sd, b.sd) }
+	smallest, largest := slices.MinFunc(groups, bySD), slices.MaxFunc(groups, bySD)
+	c.caution("spreads-unlike", input, "The groups' standard deviations differ (%s to %s), so one pooled variance misleads. "+
+		"Use separate variances, or see equal-spread-test.", brief(smallest.sd), brief(largest.sd))
 }
 
 // skewness is G1 (Joanes & Gill 1998); 0 where it does not exist.

@@ -1,11 +1,11 @@
 package funcs
 
 import (
-	"fmt"
 	"math"
-	"math/rand/v2"
 	"strings"
 	"testing"
+
+	"halfwidth/funcs/internal/num"
 )
 
 func TestEachCautionIsReached(t *testing.T) {
@@ -15,7 +15,7 @@ func TestEachCautionIsReached(t *testing.T) {
 	}
 	skewed := make([]float64, 25)
 	for i := range skewed {
-		skewed[i] = math.Pow(float64(i*7%25)+1, 3)
+		skewed[i] = math.Pow(float64(i*7%25)+1, 4)
 	}
 	far := append([]float64{}, steady...)
 	far[4] = 12
@@ -59,102 +59,71 @@ func TestEachCautionIsReached(t *testing.T) {
 	}
 }
 
-// How often each caution comes for samples of known laws. Below 5% for normal
-// ones, but for skewed-for-n at its smallest n; often where it should. The tail
-// index of t(2) is 2 itself, so that heavy-tail seldom comes for it.
-func TestHowOftenCautionsCome(t *testing.T) {
-	const samples = 400
-	normal := func(r *rand.Rand) float64 { return r.NormFloat64() }
-	laws := []struct {
-		name string
-		draw func(r *rand.Rand, x []float64)
-	}{
-		{"normal", oneByOne(normal)},
-		{"exponential", oneByOne(func(r *rand.Rand) float64 { return r.ExpFloat64() })},
-		{"lognormal(1)", oneByOne(func(r *rand.Rand) float64 { return math.Exp(r.NormFloat64()) })},
-		{"t(2)", oneByOne(func(r *rand.Rand) float64 { return r.NormFloat64() / math.Sqrt(r.ExpFloat64()) })},
-		{"Cauchy", oneByOne(func(r *rand.Rand) float64 { return r.NormFloat64() / r.NormFloat64() })},
-		{"lag-1 dependence 0.5", func(r *rand.Rand, x []float64) {
-			last := r.NormFloat64() / math.Sqrt(0.75)
-			for i := range x {
-				last = 0.5*last + r.NormFloat64()
-				x[i] = last
+// Percentage points of the skewness √b₁ of normal samples (Pearson & Hartley 1966,
+// Biometrika Tables for Statisticians 1, Table 34B: upper 5% and 1%, 3 decimals).
+func TestSkewnessScoreGivesThePrintedPoints(t *testing.T) {
+	for _, c := range []struct{ n, five, one float64 }{{25, 0.711, 1.061}, {50, 0.533, 0.787}, {100, 0.389, 0.567}, {200, 0.280, 0.403}} {
+		g1 := math.Sqrt(c.n*(c.n-1)) / (c.n - 2) // G1 over √b₁
+		for point, z := range map[float64]float64{c.five: 1.6449, c.one: 2.3263} {
+			if got := skewnessScore(g1*point, c.n); math.Abs(got-z) > 0.02 {
+				t.Errorf("n = %v, √b₁ = %v: score %v, want %v", c.n, point, got, z)
 			}
-		}},
-	}
-	codes := []string{"few-values", "skewed-for-n", "neighbours-alike", "far-value", "heavy-tail"}
-	share := map[string]float64{}
-	table := fmt.Sprintf("%-22s %5s", "law", "n")
-	for _, code := range codes {
-		table += fmt.Sprintf(" %16s", code)
-	}
-	for k, law := range laws {
-		for _, n := range []int{4, 10, 20, 30, 100, 1000} {
-			rng := rand.New(rand.NewPCG(32, uint64(1000*k+n)))
-			table += fmt.Sprintf("\n%-22s %5d", law.name, n)
-			count := map[string]int{}
-			for range samples {
-				x := make([]float64, n)
-				law.draw(rng, x)
-				for _, f := range answer(t, "mean-interval", map[string]any{"sample": x}).Findings {
-					count[f.Code]++
-				}
-			}
-			for _, code := range codes {
-				p := float64(count[code]) / samples
-				share[fmt.Sprint(law.name, n, code)] = p
-				table += fmt.Sprintf(" %15.1f%%", 100*p)
+			if got := skewnessScore(-g1*point, c.n); got != -skewnessScore(g1*point, c.n) {
+				t.Errorf("n = %v: the score of -%v is %v", c.n, point, got)
 			}
 		}
 	}
-	t.Log("\n" + table)
-	for _, n := range []int{10, 20, 30, 100, 1000} {
-		for _, code := range codes {
-			most := 0.05
-			if code == "skewed-for-n" && n == 20 {
-				most = 0.12 // G1 of 20 normal values has an sd of 0.51, and 0.89 is the rule's bound
-			}
-			if p := share[fmt.Sprint("normal", n, code)]; p > most {
-				t.Errorf("normal, n = %d: %s for %v of samples", n, code, p)
-			}
-		}
+	if skewedForN(3, 7) || !skewedForN(2, 20) || skewedForN(2, 101) || skewedForN(0.95, 20) {
+		t.Error("the rule for skewness")
 	}
-	for where, least := range map[string]float64{
-		"normal4few-values": 1, "exponential30skewed-for-n": 0.6, "lognormal(1)100skewed-for-n": 0.6, "Cauchy1000heavy-tail": 0.95,
-		"Cauchy30far-value": 0.8, "lag-1 dependence 0.5100neighbours-alike": 0.9, "lag-1 dependence 0.51000neighbours-alike": 1,
-	} {
-		if share[where] < least {
-			t.Errorf("%s: %v of samples, want %v", where, share[where], least)
-		}
-	}
-
-	// Variances 1 to 9: spreads-unlike, with pooled variances only.
-	spreads := "\nsds      n   spreads-unlike"
-	for _, ratio := range []float64{1, 3} {
-		for _, n := range []int{10, 30, 100} {
-			rng := rand.New(rand.NewPCG(33, uint64(n)))
-			count := 0
-			for range samples {
-				out := answer(t, "difference-interval", map[string]any{"sample": noise(rng, n, 0, 1), "second-sample": noise(rng, n, 0, ratio), "variances": pooled})
-				if raises(out, "spreads-unlike") {
-					count++
-				}
-			}
-			p := float64(count) / samples
-			spreads += fmt.Sprintf("\n1 to %.0f %4d %15.1f%%", ratio, n, 100*p)
-			if ratio == 1 && p > 0.07 || ratio == 3 && n >= 30 && p < 0.9 {
-				t.Errorf("sds 1 to %v, n = %d: %v of samples", ratio, n, p)
-			}
-		}
-	}
-	t.Log(spreads)
 }
 
-// oneByOne draws every value alone.
-func oneByOne(value func(r *rand.Rand) float64) func(r *rand.Rand, x []float64) {
-	return func(r *rand.Rand, x []float64) {
-		for i := range x {
-			x[i] = value(r)
+// Mean and variance of the lag-1 autocorrelation over all 720 orders of six values
+// are those of Moran 1948 for values in random order and a normal fourth moment;
+// the mean, -1/n, is exact for any values.
+func TestMeanAutocorrelationOfAllOrders(t *testing.T) {
+	values, sum, count := []float64{-2, -1, -0.4, 0.4, 1, 2}, 0.0, 0
+	var permute func(k int)
+	permute = func(k int) {
+		if k == 1 {
+			sum, count = sum+num.Lag1(values), count+1
+			return
+		}
+		for i := range k {
+			permute(k - 1)
+			j := 0
+			if k%2 == 0 {
+				j = i
+			}
+			values[j], values[k-1] = values[k-1], values[j]
+		}
+	}
+	permute(6)
+	within(t, "orders", float64(count), 720, 0)
+	within(t, "mean of r", sum/float64(count), -1.0/6, 1e-12)
+	if neighboursAlike(0.9, 9) || !neighboursAlike(0.6, 20) || neighboursAlike(-0.5, 20) || !neighboursAlike(-0.65, 20) {
+		t.Error("the rule for neighbours")
+	}
+}
+
+// Sds of 5 values must differ by more than those of 30; planned ones by twice.
+func TestSpreadsUnlike(t *testing.T) {
+	for _, c := range []struct {
+		groups []spreadOf
+		want   bool
+	}{
+		{[]spreadOf{{1, 5}, {3, 5}}, false},           // F = 9 of 4 and 4 df, where 0.005 lies beyond 23.15
+		{[]spreadOf{{1, 5}, {4.9, 5}}, true},          // 24.01
+		{[]spreadOf{{2.1, 30}, {1, 30}}, true},        // F = 4.41, where 0.005 lies beyond 2.67
+		{[]spreadOf{{1.9, 3000}, {1, 30}}, false},     // less than twice
+		{[]spreadOf{{1, 5}, {4.9, 5}, {2, 5}}, false}, // six ordered pairs: 0.01/6 lies beyond 41
+		{[]spreadOf{{1, 5}, {7, 5}, {2, 40}}, true},
+		{[]spreadOf{{0, 2}, {1, 2}}, true},
+		{[]spreadOf{{sd: 1}, {sd: 2.1}}, true},
+		{[]spreadOf{{sd: 1}, {sd: 2}}, false},
+	} {
+		if got := spreadsUnlike(c.groups); got != c.want {
+			t.Errorf("%v: %v", c.groups, got)
 		}
 	}
 }

@@ -35,7 +35,7 @@ func (m twoMeans) methodText(interval, variances string) string {
 // checkMeans raises the cautions of two samples whose means are compared.
 func (c *Call) checkMeans(first, second summary) error {
 	if variances.Of(c) == pooled {
-		c.checkSpreads(c.firstGiven("sample", "first-sd"), first.sd, second.sd)
+		c.checkSpreads(c.firstGiven("sample", "first-sd"), spreadOf{first.sd, first.n}, spreadOf{second.sd, second.n})
 	}
 	return c.checkTwo(first, second)
 }

@@ -327,7 +327,7 @@ func TestSpreadsUnlikeIsRaisedOnlyWhenPooled(t *testing.T) {
 		want  bool
 	}{{pooled, 2.01, true}, {pooled, 2, false}, {separate, 9, false}} {
 		for _, name := range []string{"difference-interval", "ratio-interval"} {
-			out := answer(t, name, twoArguments(summary{9, 12.5, 1}, summary{12, 12, c.ratio}, Argument{"variances", c.kind}))
+			out := answer(t, name, twoArguments(summary{40, 12.5, 1}, summary{50, 12, c.ratio}, Argument{"variances", c.kind}))
 			if raises(out, "spreads-unlike") != c.want {
 				t.Errorf("%s, %s, %v: %v", name, c.kind, c.ratio, out.Findings)
 			}

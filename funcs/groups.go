@@ -224,10 +224,10 @@ func (c *Call) checkGroups(groups []groupSummary) error {
 
 // checkGroupSpreads raises spreads-unlike for the groups that have an sd.
 func (c *Call) checkGroupSpreads(groups []groupSummary) {
-	var given []float64
+	var given []spreadOf
 	for _, g := range groups {
 		if g.n > 1 {
-			given = append(given, g.sd)
+			given = append(given, spreadOf{g.sd, g.n})
 		}
 	}
 	if len(given) > 1 {

@@ -213,7 +213,7 @@ func (c *Call) groupSDs() (first, second float64) {
 		second = sd
 	}
 	if variances.Of(c) == pooled {
-		c.checkSpreads("second-sd", first, second)
+		c.checkSpreads("second-sd", spreadOf{sd: first}, spreadOf{sd: second})
 	}
 	return first, second
 }
