@@ -16,13 +16,13 @@ func TestEveryMessageIsAnsweredOnce(t *testing.T) {
 		random := rand.New(rand.NewPCG(seed, 99))
 		want := map[string]int{}
 		var stream strings.Builder
-		spoilt := false // the last body was no JSON, so that bytes after it count as its rest
-		for id := range 3000 {
+		spoilt := false        // the last body was no JSON, so that bytes after it count as its rest
+		for id := range 3000 { // four seeds: 12000 and more messages in all
 			expect := func(id string, code string) { want[id+" "+code]++ }
 			now := false
 			send := func(format string, values ...any) { stream.WriteString(frame(fmt.Sprintf(format, values...))) }
 			key := fmt.Sprint(id)
-			switch random.IntN(18) {
+			switch random.IntN(23) {
 			case 0:
 				send(`{"jsonrpc":"2.0","id":%d,"method":"test/echo","params":{"x":[%d]}}`, id, random.Int())
 				expect(key, "result")
@@ -89,6 +89,21 @@ func TestEveryMessageIsAnsweredOnce(t *testing.T) {
 			case 16:
 				send(`{"jsonrpc":"2.0","id":null,"method":"test/echo"}`)
 				expect("null", "result")
+			case 18:
+				send(`{"jsonrpc":"2.0","method":"sheets/didOpen","params":{"book":"held","sheet":"Trips","version":%d,"cells":[{"at":"A1","column":["minutes",%d,2]}]}}`, id, id)
+				send(`{"jsonrpc":"2.0","id":%d,"method":"functions/answer","params":{"name":"standard-score","arguments":{"value":1,"mean":"sum of minutes in Trips","sd":1},"book":"held"}}`, id)
+				expect(key, "result")
+			case 19:
+				sheet := []string{"Trips", "Calculations"}[random.IntN(2)]
+				send(`{"jsonrpc":"2.0","method":"sheets/didOpen","params":{"book":"b%d","sheet":%q,"version":1,"cells":[{"at":"A1","rows":[["work out","sample","> mean"],["mean-interval","1; 2; %d"]]}]}}`, random.IntN(4), sheet, id)
+			case 20:
+				send(`{"jsonrpc":"2.0","method":"sheets/didChange","params":{"book":"b%d","sheet":"Calculations","baseVersion":%d,"version":%d,"cells":[{"at":"B%d","rows":[[%d,"3; 4"]]},{"clear":"C7:D9"}]}}`,
+					random.IntN(4), random.IntN(4), random.IntN(4), 1+random.IntN(4), id)
+			case 21:
+				send(`{"jsonrpc":"2.0","method":"sheets/didClose","params":{"book":"b%d"}}`, random.IntN(4))
+			case 22:
+				send(`{"jsonrpc":"2.0","id":%d,"method":"workbooks/fill","params":{"path":"Trips.xlsx"}}`, id)
+				expect(key, "-32803")
 			case 17:
 				send(`{"jsonrpc":"2.0","id":%d,"result":"to no call"}`, id)
 			}
@@ -114,8 +129,12 @@ func TestEveryMessageIsAnsweredOnce(t *testing.T) {
 		for _, n := range want {
 			total += n
 		}
-		for range total + 1 {
+		for answers := 0; answers < total+1; {
 			m := c.next()
+			if strings.HasPrefix(m, `{"jsonrpc":"2.0","method":`) {
+				continue // results, refusals and log messages
+			}
+			answers++
 			id, rest, _ := strings.Cut(strings.TrimPrefix(m, `{"jsonrpc":"2.0","id":`), `,"`)
 			kind := "result"
 			if code, ok := strings.CutPrefix(rest, `error":{"code":`); ok {
@@ -128,6 +147,10 @@ func TestEveryMessageIsAnsweredOnce(t *testing.T) {
 				t.Fatalf("seed %d: not wanted, or once too often: %.300s", seed, m)
 			}
 		}
-		c.leave()
+		c.send(`{"jsonrpc":"2.0","id":"bye","method":"shutdown"}`)
+		for !strings.Contains(c.next(), `"id":"bye","result":null`) {
+		}
+		c.send(`{"jsonrpc":"2.0","method":"exit"}`)
+		c.ends(0)
 	}
 }

@@ -19,6 +19,10 @@ import (
 // TestMain lets the test's own binary be the server, so that it is tested as a
 // process of its own.
 func TestMain(m *testing.M) {
+	if busy := os.Getenv(clientEnv); busy != "" && os.Getenv("HALFWIDTH_SERVER_UNDER_TEST") == "" {
+		beClient(busy == "true")
+		return
+	}
 	if os.Getenv("HALFWIDTH_SERVER_UNDER_TEST") != "" {
 		main()
 		return
