@@ -71,7 +71,7 @@ func (t *textState) mended(p position) *textState {
 		m.lines = newLines(t.lines.text+"\n", t.lines.utf8)
 		return m
 	}
-	start := t.lines.starts[min(p.Line, len(t.lines.starts)-1)]
+	start := t.lines.starts[t.lines.position(offset).Line]
 	text := t.lines.text[:offset]
 	if strings.Count(text[start:], `"`)%2 == 1 {
 		text += `"`

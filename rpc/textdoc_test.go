@@ -297,6 +297,7 @@ func TestKeystrokesInALongSheetAreTakenAtOnce(t *testing.T) {
 func FuzzTextDocument(f *testing.F) {
 	f.Add(northSheet, 1, 20)
 	f.Add("work out: mean-interval;sample;> mean\nx;\"12; 13\n", 1, 8)
+	f.Add("\"", -83, 8)
 	f.Add("default confidence\t95%\n\"work out\"\tsample\t> mean\n", 0, 9)
 	f.Fuzz(func(t *testing.T, text string, line, character int) {
 		if strings.ToValidUTF8(text, "") != text || strings.Contains(text, "resamples") || strings.Contains(text, "-size") || strings.Contains(text, "coverage") || strings.Contains(text, "power") {
