@@ -47,7 +47,7 @@ func hostileParts() []hostile {
 		{name: "a shared string of many runs", parts: texts(`<si>` + strings.Repeat(`<r><t></t></r>`, million) + `</si>`)},
 		{name: "a shared string of 40,000 characters", parts: texts(`<si><t>` + strings.Repeat("x", 40_000) + `</t></si>`), refused: "the limit is 32767"},
 		{name: "a shared string of many short texts", parts: texts(`<si>` + strings.Repeat(`<t>xxxxxxxx</t>`, million) + `</si>`), refused: "the limit is 32767"},
-		{name: "shared strings nested deep", parts: texts(nested(100_000)), refused: "nested deeper than 256"},
+		{name: "shared strings nested deep", parts: texts("<extLst>" + nested(100_000) + "</extLst>"), refused: "nested deeper than 256"},
 		{name: "a document type in the shared strings", parts: plain.with(stringsPart, strings.Replace(sstA, "<sst", laughs+"<sst", 1)+tripStrings+`</sst>`), refused: "DOCTYPE"},
 		{name: "a document type in the workbook part", parts: plain.with(workbookPart, laughs+`<workbook/>`), refused: "DOCTYPE"},
 		{name: "a document type in the relationships", parts: plain.with(rootRels, laughs+`<Relationships/>`), refused: "DOCTYPE"},

@@ -92,6 +92,7 @@ func TestEveryFormThatMustBeAcceptedIs(t *testing.T) {
 		{"shared formulas", sheet(`<row r="1"><c r="A1"><f t="shared" ref="A1:B1" si="0">C1</f><v>1</v></c><c r="B1"><f t="shared" si="0"/><v>2</v></c></row>`), "1: A=f=1 B=f=2"},
 		{"rich and phonetic text", texts(`<si><r><rPr><b/><rFont val="x"/></rPr><t>No</t></r><r><t>rth</t></r></si><si><t>Quay &amp; Mill</t><rPh sb="0" eb="4"><t>kei</t></rPh><phoneticPr fontId="1"/></si>`), ""},
 		{"alternate content beside the cells", wholeBook(worksheet(`<sheetData>` + two + `</sheetData><mc:AlternateContent xmlns:mc="` + compatibility + `"><mc:Choice Requires="x14"><controls/></mc:Choice><mc:Fallback/></mc:AlternateContent><o:ext xmlns:o="urn:o"><sheetData><row r="1"/></sheetData></o:ext>`)), ""},
+		{"texts within what else a sheet has", wholeBook(worksheet(`<sheetData>` + two + `</sheetData><conditionalFormatting sqref="A1"><cfRule><formula>A1&gt;1</formula></cfRule></conditionalFormatting><headerFooter><oddHeader>&amp;P</oddHeader></headerFooter>`)), ""},
 		{"a sheet's name with quotes and signs", plain.with("xl/workbook.xml", strings.Replace(workbookXML, `"Trips"`, `"Quay's &quot;night&quot; &lt;&amp;&gt; 📦"`, 1)), ""},
 		{"a sheet's name of a thousand characters", plain.with("xl/workbook.xml", strings.Replace(workbookXML, `"Trips"`, `"`+strings.Repeat("Trips", 200)+`"`, 1)), ""},
 	} {

@@ -28,8 +28,10 @@ type lexer struct {
 	keep   int       // bytes from here on stay in the block; -1: none but the token's
 	base   int64     // the place in the part of buf[0]
 	err    error     // why src ended early
+	unread error     // err, where it came from src
 	limits Limits
 	lent   *[]byte // the block, where it is to be given back
+	step   int     // how much was asked for last
 
 	// The current token. Its slices are good until the next call.
 	kind    tokenKind
@@ -55,6 +57,9 @@ const blockSize = 512 << 10
 // padding is how many zeros follow the last byte, so that the fast paths may
 // look a few bytes ahead without asking whether there are any.
 const padding = 64
+
+// firstRead is how much of a part is read at first.
+const firstRead = 32 << 10
 
 // newLexer reads UTF-8 XML from src, size bytes at a time.
 func newLexer(src io.Reader, size int, limits Limits) *lexer {
@@ -127,13 +132,15 @@ func (x *lexer) fill() bool {
 		x.buf = larger
 		room *= 2
 	}
-	n, err := io.ReadFull(x.src, x.buf[x.end:room])
+	// The first reads are small: often only the head of a part is wanted.
+	x.step = min(max(2*x.step, firstRead), blockSize)
+	n, err := io.ReadFull(x.src, x.buf[x.end:min(room, x.end+x.step)])
 	x.end += n
 	clear(x.buf[x.end : x.end+padding])
 	if err != nil {
 		x.src = nil
 		if err != io.EOF && err != io.ErrUnexpectedEOF {
-			x.err = err
+			x.err, x.unread = err, err
 			return false
 		}
 	}
@@ -228,18 +235,16 @@ func (x *lexer) next() error {
 	}
 }
 
-// nextTag is next within elements that hold no text, as all do that hold cells or
-// lists: text there is a value that lost its tag.
-func (x *lexer) nextTag() error {
-	for {
-		err := x.next()
-		switch {
-		case err != nil || x.kind != tokenText:
-			return err
-		case len(trimSpace(x.text)) > 0:
-			return x.wrong("the text %.40q stands where it has no place", trimSpace(x.text))
-		}
+// nextIn is next within an element of a depth that holds no text itself, as all
+// do that hold cells or lists: text there is a value that lost its tag.
+func (x *lexer) nextIn(depth int) error {
+	if err := x.next(); err != nil {
+		return err
 	}
+	if x.kind == tokenText && x.depth() == depth && len(trimSpace(x.text)) > 0 {
+		return x.wrong("the text %.40q stands where it has no place", trimSpace(x.text))
+	}
+	return nil
 }
 
 // finish ends the part, if all that was opened is closed.

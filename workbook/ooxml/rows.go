@@ -23,7 +23,7 @@ func (s *scanner) sheetData() error {
 			}
 			continue
 		}
-		if err := s.nextTag(); err != nil {
+		if err := s.nextIn(depth); err != nil {
 			return err
 		}
 		switch {
@@ -124,7 +124,7 @@ func (s *scanner) cells() error {
 				return s.endRow()
 			}
 		}
-		if err := s.nextTag(); err != nil {
+		if err := s.nextIn(depth); err != nil {
 			return err
 		}
 		switch {

@@ -61,7 +61,7 @@ func (b *Book) readWorkbook(related map[string]relation) error {
 func (x *lexer) children(visit func() error) error {
 	depth := x.depth()
 	for {
-		if err := x.nextTag(); err != nil {
+		if err := x.nextIn(depth); err != nil {
 			return err
 		}
 		switch {

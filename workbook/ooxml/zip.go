@@ -181,7 +181,9 @@ func (c *container) load(entry int) ([]byte, error) {
 // loadStep is how much memory a part gets before its first byte is read.
 const loadStep = 16 << 20
 
-// partReader inflates one part and holds it against its length and checksum.
+// partReader inflates one part and holds it against its length and checksum. It
+// gives what was read up to where it finds fault, however the reads fall, so that
+// the fault is told at the same place each time.
 type partReader struct {
 	src  io.Reader
 	hash hash.Hash32
@@ -200,13 +202,14 @@ func (p *partReader) Read(b []byte) (int, error) {
 	p.n += int64(n)
 	switch {
 	case p.n > p.size:
-		n, err = 0, damaged(fmt.Sprintf("the part is longer than the %d bytes that the file's directory gives", p.size))
+		n -= int(min(p.n-p.size, int64(n)))
+		err = damaged(fmt.Sprintf("the part is longer than the %d bytes that the file's directory gives", p.size))
 	case err == nil:
 	case err == io.EOF || errors.Is(err, io.ErrUnexpectedEOF):
 		if p.n != p.size || err != io.EOF {
-			n, err = 0, damaged(fmt.Sprintf("the part is cut short: %d of %d bytes", p.n, p.size))
+			err = damaged(fmt.Sprintf("the part is cut short: %d of %d bytes", p.n, p.size))
 		} else if p.hash.Sum32() != p.sum {
-			n, err = 0, damaged("the part's checksum is wrong: some of its bytes changed after it was saved")
+			err = damaged("the part's checksum is wrong: some of its bytes changed after it was saved")
 		}
 	default:
 		cause := err

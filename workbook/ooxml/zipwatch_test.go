@@ -130,3 +130,31 @@ func TestOpenLimitsTheRatioOfAllParts(t *testing.T) {
 		t.Errorf("error %v", err)
 	}
 }
+
+// A fault of a part is told in the same words however the reads fall.
+func TestFaultsAreToldAlikeHoweverReadsFall(t *testing.T) {
+	data := strings.Repeat(`<row r="1"><c r="A1"><v>1</v></c></row>`, 5000)
+	sum, size := uint32(7), uint64(len(data)+5)
+	for _, change := range []func(*file){func(f *file) { f.sum = &sum }, func(f *file) { f.size = &size }} {
+		book := smallBook("").with("xl/x", data).change("xl/x", change).bytes(t)
+		c, err := openContainer(bytes.NewReader(book), int64(len(book)), Limits{}.WithDefaults())
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, step := range []int{1, 1000, 1 << 20} {
+			r, err := c.open(c.find("xl/x"))
+			if err != nil {
+				t.Fatal(err)
+			}
+			n, b := 0, make([]byte, step)
+			for err == nil {
+				var k int
+				k, err = r.Read(b)
+				n += k
+			}
+			if n != len(data) || !errors.Is(err, ErrDamaged) {
+				t.Errorf("%d bytes at a time: %d of %d bytes and error %v", step, n, len(data), err)
+			}
+		}
+	}
+}
