@@ -14,7 +14,8 @@ func (s *scanner) cell() error {
 		}
 		s.keep = -1
 	}
-	if s.known && col <= maxColumns {
+	// A part that cannot be read on is not at fault in the cell that was reached.
+	if s.known && col <= maxColumns && (err == nil || err != s.unread) {
 		return placeCell(err, s.row.Number, col)
 	}
 	return err
