@@ -36,6 +36,10 @@ type Book struct {
 	stringsOnce sync.Once
 	strings     *stringTable
 	stringsErr  error
+
+	knowing sync.Mutex
+	known   map[int]*knownSheet // by sheet
+	plans   map[int]*planner    // the last of each sheet
 }
 
 // SheetState says whether a sheet's tab can be seen.

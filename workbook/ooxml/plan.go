@@ -2,6 +2,7 @@ package ooxml
 
 import (
 	"cmp"
+	"errors"
 	"fmt"
 	"slices"
 	"strings"
@@ -10,7 +11,9 @@ import (
 // planner goes along with a scan and turns edits into patches of the part's
 // bytes. Its methods on a nil planner do nothing, for scans without edits.
 type planner struct {
-	edits   []Edit // in order of rows, then columns
+	asked   []Edit
+	edits   []Edit      // in order of rows, then columns
+	known   *knownSheet // what an earlier scan found; nil without one
 	text    func(index int) (string, error)
 	rows    []editRow
 	byRow   map[int]int // index in rows
@@ -41,7 +44,7 @@ type editRow struct {
 }
 
 func newPlanner(edits []Edit, text func(index int) (string, error)) (*planner, error) {
-	p := &planner{edits: slices.Clone(edits), text: text, byRow: make(map[int]int), found: make([]bool, len(edits)), before: make([]int64, len(edits))}
+	p := &planner{asked: slices.Clone(edits), edits: slices.Clone(edits), text: text, byRow: make(map[int]int), found: make([]bool, len(edits)), before: make([]int64, len(edits))}
 	slices.SortStableFunc(p.edits, func(a, b Edit) int { return cmp.Or(cmp.Compare(a.Row, b.Row), cmp.Compare(a.Col, b.Col)) })
 	for i, e := range p.edits {
 		err := e.Value.check()
@@ -64,6 +67,30 @@ func newPlanner(edits []Edit, text func(index int) (string, error)) (*planner, e
 		p.rows[len(p.rows)-1].to = i + 1
 	}
 	return p, nil
+}
+
+// errPlanned ends a scan that has met all it looked for, in a sheet that was
+// scanned to its end before.
+var errPlanned = errors.New("all edits are planned")
+
+// over tells whether no row with edits can follow.
+func (p *planner) over() bool {
+	return p != nil && p.known != nil && p.known.inOrder && p.passed == len(p.rows)
+}
+
+// answers tells whether the edits are those that were planned, or those of them
+// that change their cell.
+func (p *planner) answers(edits []Edit) bool {
+	return p != nil && (slices.Equal(edits, p.asked) || slices.Equal(edits, p.changes()))
+}
+
+// changes are the edits that change their cell, in order of rows and columns.
+func (p *planner) changes() []Edit {
+	list := make([]Edit, len(p.changed))
+	for i, k := range p.changed {
+		list[i] = p.edits[k]
+	}
+	return list
 }
 
 // wants tells whether the row has edits.

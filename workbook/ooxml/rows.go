@@ -17,6 +17,10 @@ func (s *scanner) sheetData() error {
 	data := tagAt{from: s.offset(s.start), to: s.offset(s.pos), single: s.single, name: string(s.name)}
 	depth := s.depth()
 	for {
+		if s.plan.over() {
+			s.plan.endData(data, -1)
+			return errPlanned
+		}
 		if s.fastRow() {
 			if err := s.cells(); err != nil {
 				return err
@@ -105,6 +109,8 @@ func (s *scanner) takeRow(number int) {
 	}
 	s.rowsSeen[number>>6] |= 1 << (number & 63)
 	s.row.Number = number
+	s.disordered = s.disordered || number < s.greatest
+	s.greatest = max(s.greatest, number)
 	s.known = true
 	if s.plan != nil && s.plan.startRow(number, s.rowTag) {
 		s.fast = false

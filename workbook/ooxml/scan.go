@@ -127,9 +127,36 @@ func (b *Book) scanEntry(sheet, entry int, options ScanOptions, visit func(*Row)
 		if errors.As(err, &stopped) {
 			return s.facts, stopped.error
 		}
+		if errors.Is(err, errPlanned) {
+			return plan.known.facts, nil
+		}
 		return s.facts, place(err, b.file, part, name)
 	}
+	b.learn(sheet, knownSheet{s.facts, !s.disordered})
 	return s.facts, nil
+}
+
+// knownSheet is what a scan to the end found of a sheet, which the next need not
+// look for again.
+type knownSheet struct {
+	facts   SheetFacts
+	inOrder bool // every row has a greater number than the one before
+}
+
+func (b *Book) learn(sheet int, k knownSheet) {
+	b.knowing.Lock()
+	defer b.knowing.Unlock()
+	if b.known == nil {
+		b.known = map[int]*knownSheet{}
+	}
+	b.known[sheet] = &k
+}
+
+// whatIsKnown is nil where the sheet was not scanned to its end.
+func (b *Book) whatIsKnown(sheet int) *knownSheet {
+	b.knowing.Lock()
+	defer b.knowing.Unlock()
+	return b.known[sheet]
 }
 
 // visitError carries an error of the caller's own past the code that adds
@@ -147,6 +174,8 @@ type scanner struct {
 	styles   int
 	careful  bool // the fast paths are off
 
+	disordered bool // a row has a smaller number than one before it
+
 	// The shared strings, fetched when the first cell points to one.
 	table   func() (*stringTable, error)
 	strings *stringTable
@@ -158,6 +187,7 @@ type scanner struct {
 	rowTag   tagAt    // where the row's start tag stands
 	prefix   []byte   // of rows and cells, with its colon
 	lastRow  int      // of the row before
+	greatest int      // the greatest number of a row so far
 	lastCol  int      // of the cell before
 	rowsSeen []uint64 // one bit a row; grows as rows come
 	colsSeen []uint32 // the stamp of the row that last held the column; grows likewise

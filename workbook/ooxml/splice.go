@@ -104,29 +104,37 @@ func (b *Book) Changes(sheet int, edits []Edit) ([]Edit, error) {
 	if err != nil {
 		return nil, err
 	}
-	list := make([]Edit, len(p.changed))
-	for i, k := range p.changed {
-		list[i] = p.edits[k]
-	}
-	return list, nil
+	return p.changes(), nil
 }
 
-// plan passes over a sheet to find out what its edits come to.
+// plan passes over a sheet to find out what its edits come to. The last plan of a
+// sheet is kept, since a save asks again what Changes asked.
 func (b *Book) plan(sheet int, edits []Edit) (*planner, error) {
 	entry, err := b.sheetEntry(sheet)
 	if err != nil {
 		return nil, err
+	}
+	if p := b.plans[sheet]; p.answers(edits) {
+		return p, nil
 	}
 	name, part := b.sheets[sheet].Name, b.name(entry)
 	p, err := newPlanner(edits, b.SharedString)
 	if err != nil {
 		return nil, place(err, b.file, part, name)
 	}
+	p.known = b.whatIsKnown(sheet)
 	facts, err := b.scanEntry(sheet, entry, ScanOptions{Columns: new(Columns)}, nil, p)
 	if err != nil {
 		return nil, err
 	}
-	return p, place(p.finish(&facts), b.file, part, name)
+	if err := p.finish(&facts); err != nil {
+		return nil, place(err, b.file, part, name)
+	}
+	if b.plans == nil {
+		b.plans = map[int]*planner{}
+	}
+	b.plans[sheet] = p
+	return p, nil
 }
 
 // splice copies the part from src with the patches that were planned.
