@@ -25,7 +25,7 @@ type textState struct {
 	damage *calculation.CSVError
 
 	plan   sync.Once
-	layout *calculation.Plan // blocks and rows, without data files
+	layout *calculation.Plan // blocks and rows, without what inputs mean
 
 	busy   chan struct{} // holds one while somebody works
 	worked *workedText
@@ -59,12 +59,11 @@ func (t *textState) parsed() *calculation.TextSheet {
 	return t.sheet
 }
 
-// laidOut finds blocks and rows, without reading a data file; nil where the
-// document is damaged.
+// laidOut finds blocks and rows; nil where the document is damaged.
 func (t *textState) laidOut() *calculation.Plan {
 	t.plan.Do(func() {
 		if sheet := t.parsed(); sheet != nil {
-			t.layout, _ = calculation.NewPlan(context.Background(), sheet.Source(nil), calculation.Options{}) // of a text in memory there is no error
+			t.layout = sheet.Layout()
 		}
 	})
 	return t.layout

@@ -1,5 +1,7 @@
 package calculation
 
+import "context"
+
 // NoTablesInText says why a text calculation sheet has no table sheets; see
 // Options.NoTables.
 const NoTablesInText = "a text file has no second sheet for a table. Give every group a row with a condition such as where depot = North, ask in a workbook"
@@ -24,3 +26,15 @@ func (t *TextSheet) Encode(text string) string { return t.encode(text) }
 
 // ValueText writes a value as a cell of the file reads it.
 func (t *TextSheet) ValueText(v any) string { return t.valueText(v) }
+
+// Layout finds the blocks and rows of the sheet. What the inputs of rows mean is
+// not read, so that it takes little time.
+func (t *TextSheet) Layout() *Plan {
+	p := &Plan{lib: newLibrary(t.Source(nil)), tables: map[string]*Row{}}
+	_ = p.findSheets(context.Background()) // reading from memory has no error
+	for _, c := range p.calcs {
+		p.Sheets = append(p.Sheets, c.sheet.name)
+		p.addBlocks(newCalcSheet(c.sheet))
+	}
+	return p
+}
