@@ -131,15 +131,18 @@ func esdCritical(n int, significance float64) float64 {
 	return (m - 1) / math.Sqrt(m) * math.Sqrt(1/((m-2)/float64(t*t)+1))
 }
 
-func (c *Call) checkTail(input, what string, values []float64) {
+// checkTail raises heavy-tail, and says whether it did.
+func (c *Call) checkTail(input, what string, values []float64) bool {
 	if len(values) < heavyTailFrom {
-		return
+		return false
 	}
 	tail, ok := c.facts(values).hill()
-	if ok && tail.upper < 2 {
+	heavy := ok && tail.upper < 2
+	if heavy {
 		c.caution("heavy-tail", input, "%s has tails so heavy (tail index %s, at most %s) that its variance may not exist: no n is enough for a t interval. "+
 			"Use median-interval, and see tail-check.", what, brief(tail.index), brief(tail.upper))
 	}
+	return heavy
 }
 
 // tailIndex is Hill's estimate with its limits.

@@ -22,6 +22,13 @@ var coverageResults = []Result{
 	{"simulation-error", Number, NoUnit, "standard error of the coverage, from the number of resamples"},
 }
 
+var (
+	resultPredicted = Result{"predicted-coverage", Number, NoUnit, "the same from skewness and excess kurtosis (second order): rough where it is far from the confidence; absent where they do not exist"}
+	resultNeeded    = Result{"n-needed", Whole, NoUnit, "the smallest n whose predicted coverage is at most 0.01 short; absent where there is none, or where the simulation shows more to be needed"}
+
+	coverageShortKind = FindingKind{"coverage-short", "the coverage falls short of the confidence by more than 0.01 and three simulation errors"}
+)
+
 // coverageDraws is what coverage simulates: samples of n values less a target, a
 // value of which counts as cost draws.
 type coverageDraws struct {
@@ -116,16 +123,68 @@ func (c *Call) setCoverage(s coverageTally, n int) {
 // allowedByDefault is how far coverage may fall short in n-needed.
 const allowedByDefault = 0.01
 
+// outlook is what skewness and excess kurtosis predict.
+type outlook struct {
+	coverage float64
+	needed   int // 0 where not even largestPlan would do
+}
+
+// predict gives the outlook for n.
+func (c *Call) predict(n int, g1, g2 float64) (outlook, error) {
+	conf, dir := confidence.Of(c), direction.Of(c)
+	predicted := func(n int) float64 { return predictedCoverage(float64(n), conf, dir, g1, g2) }
+	needed, found, err := c.smallestPlan(smallestGroup, largestPlan, smallestGroup, func(n int) bool { return reaches(predicted(n), conf-allowedByDefault) })
+	if !found {
+		needed = 0
+	}
+	return outlook{predicted(n), needed}, err
+}
+
+// simulatedShare words a share, in percent, to the second digit of its simulation
+// error.
+func (c *Call) simulatedShare() (share, simulationError string) {
+	s, e := 100*c.results["coverage"].(float64), 100*c.results["simulation-error"].(float64)
+	return toPlace(s, lastPlace(e, s)) + "%", toPlace(e, lastPlace(e, e))
+}
+
+// sayCoverage composes the sentence, and the caution where the coverage is short.
+// o is nil where nothing can be predicted; enough then says why, or is empty.
+func (c *Call) sayCoverage(input, of, target string, n int, o *outlook, enough string) {
+	conf := confidence.Of(c)
+	share, simulationError := c.simulatedShare()
+	missing := conf - c.results["coverage"].(float64)
+	short := missing > allowedByDefault && missing > 3*c.results["simulation-error"].(float64)
+	predicted, advice := "", "do not rely on it"
+	if o != nil {
+		c.set("predicted-coverage", o.coverage)
+		predicted = "; predicted " + percent(toDigits(o.coverage))
+		switch {
+		case o.needed == 0:
+			enough = fmt.Sprintf(" Not even %d values are predicted to bring it within 1 percentage point of %s.", largestPlan, percent(conf))
+		case short && o.needed <= n:
+			enough = " Skewness and excess kurtosis alone do not show how many would be enough."
+			advice = "measure more"
+		default:
+			c.set("n-needed", o.needed)
+			enough = fmt.Sprintf(" It is predicted to come within 1 percentage point of %s from n = %d on.", percent(conf), o.needed)
+			advice = fmt.Sprintf("measure about %d", o.needed)
+		}
+	}
+	c.sentence = fmt.Sprintf("For %s the %s t interval (direction %s) from n = %d holds %s in %s of cases (simulation error %s percentage points%s; %s).%s",
+		of, percent(conf), direction.Of(c), n, target, share, simulationError, predicted, c.method, enough)
+	if short {
+		c.caution("coverage-short", input, "The interval holds %s in only %s of cases instead of %s; %s, or use median-interval or bootstrap-interval.",
+			target, share, percent(conf), advice)
+	}
+}
+
 var coverageCheck = &Function{
-	Name:    "coverage-check",
-	Version: 1,
-	Summary: "how often the t interval holds the true mean, at this n, for a population shaped like these data",
-	Inputs:  inputs(sample, coverageN, coverageResamples, seedInput, confidence, direction, checks),
-	Results: append(append([]Result{}, coverageResults...),
-		Result{"predicted-coverage", Number, NoUnit, "the same from skewness and excess kurtosis (second order)"},
-		Result{"n-needed", Whole, NoUnit, "the smallest n whose predicted coverage is at most 0.01 short; absent where there is none"}),
-	Findings: []FindingKind{fewValuesKind, noSpreadKind, tooManyDrawsKind, fewerResamplesKind, heavyTailKind,
-		{"coverage-short", "the coverage falls short of the confidence by more than 0.01 and three simulation errors"}},
+	Name:        "coverage-check",
+	Version:     1,
+	Summary:     "how often the t interval holds the true mean, at this n, for a population shaped like these data",
+	Inputs:      inputs(sample, coverageN, coverageResamples, seedInput, confidence, direction, checks),
+	Results:     append(append([]Result{}, coverageResults...), resultPredicted, resultNeeded),
+	Findings:    []FindingKind{fewValuesKind, noSpreadKind, tooManyDrawsKind, fewerResamplesKind, heavyTailKind, coverageShortKind},
 	Assumptions: []string{"the sample shows the shape of its population: rare values that it lacks are not seen"},
 	Citations:   []string{"Hall 1992", "Efron & Tibshirani 1993"},
 	Example: Example{
@@ -155,33 +214,17 @@ var coverageCheck = &Function{
 		if err != nil {
 			return err
 		}
-		conf, dir := confidence.Of(c), direction.Of(c)
 		c.setCoverage(sim, n)
-		g1, g2 := skewness(m), excessKurtosis(m)
-		predicted := func(n int) float64 { return predictedCoverage(float64(n), conf, dir, g1, g2) }
-		c.set("predicted-coverage", predicted(n))
-		needed, found, err := c.smallestPlan(smallestGroup, largestPlan, smallestGroup, func(n int) bool { return reaches(predicted(n), conf-allowedByDefault) })
+		o, err := c.predict(n, skewness(m), excessKurtosis(m))
 		if err != nil {
 			return err
 		}
-		if found {
-			c.set("n-needed", needed)
-		}
-		share, errorOf := c.results["coverage"].(float64), c.results["simulation-error"].(float64)
 		c.method = fmt.Sprintf("%d samples of %d drawn from the data with replacement, seed %d", sim.resamples, n, seedInput.Of(c))
-		c.sentence = fmt.Sprintf("For data shaped like these, the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; predicted %s; %s).",
-			percent(conf), dir, n, percent(share), brief(errorOf), percent(toDigits(predicted(n))), c.method)
-		if short := conf - share; short > allowedByDefault && short > 3*errorOf {
-			more := "measure more"
-			if found && needed > n {
-				more += fmt.Sprintf(" (about %d for this skewness)", needed)
-			}
-			c.caution("coverage-short", "sample", "The interval holds the true mean in only %s of cases instead of %s; %s, or use median-interval or bootstrap-interval.",
-				percent(share), percent(conf), more)
+		seen, enough := &o, ""
+		if checks.Of(c) && c.checkTail("sample", "The sample", values) {
+			seen, enough = nil, " No n is enough if the tails are as heavy as they look."
 		}
-		if checks.Of(c) {
-			c.checkTail("sample", "The sample", values)
-		}
+		c.sayCoverage("sample", "data shaped like these,", "the true mean", n, seen, enough)
 		return c.cancelled()
 	},
 }

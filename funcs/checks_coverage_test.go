@@ -102,6 +102,30 @@ func TestPredictedCoverageAndNNeeded(t *testing.T) {
 	checkDeclared(t, out.Function, out)
 }
 
+// What coverage-check says of data that are skewed, of data so heavy-tailed that
+// no n helps, and what it leaves out then.
+func TestCoverageIsToldInPlainWords(t *testing.T) {
+	skewed := answer(t, "coverage-check", map[string]any{"sample": []float64{1, 1, 2, 2, 3, 4, 5, 9, 14, 30}, "resamples": 1000})
+	sentence, _ := skewed.Get("sentence")
+	needed := numberOf(t, skewed, "n-needed")
+	for _, want := range []string{
+		"For data shaped like these, the 95% t interval (direction either) from n = 10 holds the true mean in ", " percentage points; predicted ",
+		fmt.Sprintf(" It is predicted to come within 1 percentage point of 95%% from n = %.0f on.", needed),
+	} {
+		if !strings.Contains(sentence.(string), want) {
+			t.Errorf("got %s\nwant %s", sentence, want)
+		}
+	}
+	if note := Note(skewed.Findings); !strings.Contains(note, fmt.Sprintf("; measure about %.0f, or use median-interval or bootstrap-interval.", needed)) {
+		t.Errorf("note: %s", note)
+	}
+	heavy := answer(t, "coverage-check", map[string]any{"sample": paretoQuantiles(1000, 0.8), "resamples": 1000})
+	absent(t, heavy, "n-needed", "predicted-coverage")
+	if s, _ := heavy.Get("sentence"); !strings.HasSuffix(s.(string), " No n is enough if the tails are as heavy as they look.") || !raises(heavy, "heavy-tail") {
+		t.Errorf("heavy tails: %s", s)
+	}
+}
+
 func TestCoverageDoesNotFeelShiftOrGaps(t *testing.T) {
 	a := answer(t, "coverage-check", map[string]any{"sample": tenTimes, "resamples": 2000})
 	moved := []float64{math.NaN()}

@@ -24,6 +24,16 @@ type population struct {
 	sd       float64             // +Inf where there is no finite variance
 	distance func(n int) float64 // exact sup|F - Φ| of the standardised mean, where there is a formula
 	noMean   bool
+	// skewness and excess kurtosis, where there are four finite moments
+	g1, g2 float64
+	four   bool
+}
+
+// withMoments is p with its skewness and excess kurtosis, unless they pass what a
+// double can hold.
+func (p population) withMoments(g1, g2 float64) population {
+	p.g1, p.g2, p.four = g1, g2, finite(g1) && finite(g2)
+	return p
 }
 
 var populationCoverage = &Function{
@@ -31,9 +41,9 @@ var populationCoverage = &Function{
 	Version: 2,
 	Summary: "how often the t interval holds the true mean for a population of a known shape, and how far the mean is from normal",
 	Inputs:  inputs(shape, shapeParameter, populationN, coverageResamples, seedInput, confidence, direction),
-	Results: append(append([]Result{}, coverageResults...),
+	Results: append(append([]Result{}, coverageResults...), resultPredicted, resultNeeded,
 		Result{"distance-from-normal", Number, NoUnit, "largest difference of the distribution function of the standardised mean from the normal one; absent without a finite variance"}),
-	Findings:    []FindingKind{tooManyDrawsKind, fewerResamplesKind, noEnoughKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
+	Findings:    []FindingKind{tooManyDrawsKind, fewerResamplesKind, noEnoughKind, coverageShortKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
 	Assumptions: []string{"independent draws"},
 	Citations:   []string{"central limit theorem", "Berry 1941", "Esseen 1942"},
 	Example: Example{
@@ -49,14 +59,14 @@ var populationCoverage = &Function{
 			return err
 		}
 		n := populationN.Of(c)
-		finite := !math.IsInf(p.sd, 1)
-		sim, err := c.coverage(coverageDraws{n: n, cost: p.cost, draw: p.draw, means: finite && p.distance == nil})
+		hasVariance := !math.IsInf(p.sd, 1)
+		sim, err := c.coverage(coverageDraws{n: n, cost: p.cost, draw: p.draw, means: hasVariance && p.distance == nil})
 		if err != nil {
 			return err
 		}
 		c.setCoverage(sim, n)
 		how := ""
-		if finite {
+		if hasVariance {
 			if p.distance != nil {
 				c.set("distance-from-normal", p.distance(n))
 			} else {
@@ -68,20 +78,41 @@ var populationCoverage = &Function{
 			if p.noMean {
 				what = "mean"
 			}
-			c.caution("heavy-tail", "shape", "This population has no finite %s: no n is enough for a t interval, and the coverage does not settle at the confidence as n grows.", what)
+			c.caution("heavy-tail", "shape", "This population has no finite %s: no n is enough for a t interval, and the coverage does not settle at the confidence as n grows. Use median-interval.", what)
 		}
-		share := c.results["coverage"].(float64)
 		c.method = fmt.Sprintf("%d samples of %d simulated, seed %d%s", sim.resamples, n, seedInput.Of(c), how)
-		c.sentence = fmt.Sprintf("For a population of shape %s the %s t interval (direction %s) from n = %d holds the true mean in %s of cases (simulation error %s; %s).",
-			c.shapeText(), percent(confidence.Of(c)), direction.Of(c), n, percent(share), brief(c.results["simulation-error"].(float64)), c.method)
+		var seen *outlook
+		enough, target := "", "the true mean"
+		switch {
+		case p.noMean:
+			enough, target = " There is no mean, and no n is enough for one.", "the centre"
+		case !hasVariance:
+			enough = " Without a finite variance no n is enough."
+		case p.four:
+			o, err := c.predict(n, p.g1, p.g2)
+			if err != nil {
+				return err
+			}
+			seen = &o
+		default:
+			enough = " How many values would be enough cannot be predicted: the fourth moment is infinite."
+		}
+		c.sayCoverage("shape", c.shapeText(), target, n, seen, enough)
 		return nil
 	},
 }
 
+// shapeNeeds says what the parameter of a shape is.
+var shapeNeeds = map[string]string{"lognormal": "sd of the logarithm", "bernoulli": "probability", "poisson": "mean", "pareto": "index", "t": "degrees of freedom"}
+
 func (c *Call) shapeText() string {
-	text := shape.Of(c)
+	article := "a"
+	if shape.Of(c) == "exponential" {
+		article = "an"
+	}
+	text := article + " " + shape.Of(c) + " population"
 	if v, ok := shapeParameter.Given(c); ok {
-		text += " (" + brief(v) + ")"
+		text += fmt.Sprintf(" (%s %s)", shapeNeeds[shape.Of(c)], brief(v))
 	}
 	return text
 }
@@ -90,25 +121,24 @@ func (c *Call) shapeText() string {
 func (c *Call) population() (population, error) {
 	a, given := shapeParameter.Given(c)
 	name := shape.Of(c)
-	needs := map[string]string{"lognormal": "the sd of the logarithm", "bernoulli": "the probability", "poisson": "the mean", "pareto": "the index", "t": "the degrees of freedom"}
-	if what, ok := needs[name]; ok && !given {
-		return population{}, c.wrong("parameter", "", "is missing", fmt.Sprintf("the shape %s needs %s", name, what))
+	if what, ok := shapeNeeds[name]; ok && !given {
+		return population{}, c.wrong("parameter", "", "is missing", fmt.Sprintf("the shape %s needs the %s", name, what))
 	} else if !ok && given {
 		return population{}, c.wrong("parameter", shortest(a), "is not taken by the shape "+name, "leave it out")
 	}
 	inf := math.Inf(1)
 	switch name {
 	case "uniform":
-		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Uniform() - 0.5 }), sd: math.Sqrt(1.0 / 12)}, nil
+		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Uniform() - 0.5 }), sd: math.Sqrt(1.0 / 12)}.withMoments(0, -1.2), nil
 	case "exponential":
-		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Exponential() - 1 }), sd: 1, distance: gammaDistance}, nil
+		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Exponential() - 1 }), sd: 1, distance: gammaDistance}.withMoments(2, 6), nil
 	case "lognormal":
 		if a > 20 { // so that neither mean nor variance passes what a double holds
 			return population{}, c.wrong("parameter", shortest(a), "must be at most 20 as the sd of a logarithm", "give a smaller one")
 		}
 		centre := num.Exp(float64(a*a) / 2)
 		return population{cost: 2, draw: each(func(s *num.Stream) float64 { return num.Exp(float64(a*s.Normal())) - centre }),
-			sd: centre * math.Sqrt(num.Expm1(float64(a*a)))}, nil
+			sd: centre * math.Sqrt(num.Expm1(float64(a*a)))}.withMoments(lognormalMoments(a)), nil
 	case "bernoulli":
 		if a >= 1 {
 			return population{}, c.wrong("parameter", shortest(a), "must be a probability, strictly between 0 and 1", "give a smaller one")
@@ -120,7 +150,7 @@ func (c *Call) population() (population, error) {
 			return -a
 		}), sd: math.Sqrt(a * (1 - a)), distance: func(n int) float64 {
 			return latticeDistance(float64(n)*a, math.Sqrt(float64(n)*a*(1-a)), func(k float64) float64 { return binomialAtMost(k, float64(n), a) })
-		}}, nil
+		}}.withMoments((1-2*a)/math.Sqrt(a*(1-a)), 1/(a*(1-a))-6), nil
 	case "poisson":
 		if a > 1e6 {
 			return population{}, c.wrong("parameter", shortest(a), "must be at most 1000000", "give a smaller mean")
@@ -128,7 +158,7 @@ func (c *Call) population() (population, error) {
 		return population{cost: 4, draw: poissonDraws(a), sd: math.Sqrt(a), distance: func(n int) float64 {
 			mean := float64(n) * a
 			return latticeDistance(mean, math.Sqrt(mean), func(k float64) float64 { atMost, _ := poissonTails(k, mean); return atMost })
-		}}, nil
+		}}.withMoments(1/math.Sqrt(a), 1/a), nil
 	case "pareto":
 		if a <= 1 {
 			return population{}, refuse("no-mean", "parameter", "A pareto population of index %s has no mean, so no interval can hold it; use an index above 1.", shortest(a))
@@ -136,6 +166,9 @@ func (c *Call) population() (population, error) {
 		p := population{cost: 2, draw: each(func(s *num.Stream) float64 { return num.Exp(s.Exponential()/a) - a/(a-1) }), sd: inf}
 		if a > 2 {
 			p.sd = math.Sqrt(a/(a-2)) / (a - 1)
+		}
+		if a > 4 {
+			p = p.withMoments(2*(1+a)/(a-3)*math.Sqrt((a-2)/a), paretoKurtosis(a))
 		}
 		return p, nil
 	case "cauchy":
@@ -148,9 +181,26 @@ func (c *Call) population() (population, error) {
 		if a > 2 {
 			p.sd = math.Sqrt(a / (a - 2))
 		}
+		if a > 4 {
+			p = p.withMoments(0, 6/(a-4))
+		}
 		return p, nil
 	}
-	return population{cost: 1, draw: each((*num.Stream).Normal), sd: 1, distance: func(int) float64 { return 0 }}, nil
+	return population{cost: 1, draw: each((*num.Stream).Normal), sd: 1, distance: func(int) float64 { return 0 }}.withMoments(0, 0), nil
+}
+
+// lognormalMoments are skewness and excess kurtosis for an sd of the logarithm
+// (Johnson, Kotz & Balakrishnan 1994, Continuous Univariate Distributions 1, ch. 14).
+func lognormalMoments(a float64) (g1, g2 float64) {
+	w := num.Exp(float64(a * a))
+	square := float64(w * w)
+	return (w + 2) * math.Sqrt(num.Expm1(float64(a*a))), float64(square*square) + float64(2*w*square) + float64(3*square) - 6
+}
+
+// paretoKurtosis is the excess kurtosis for an index above 4 (the same, ch. 20).
+func paretoKurtosis(a float64) float64 {
+	r := 1 / a // in powers of it nothing passes a double
+	return 6 * (1 + r - float64(6*r*r) - float64(2*r*r*r)) / ((1 - float64(3*r)) * (1 - 4*r))
 }
 
 // latticeDistance is sup|F - Φ| of a standardised law on the whole numbers from

@@ -89,6 +89,9 @@ func predictedCoverage(n, confidence float64, dir string, skewness, kurtosis flo
 	return math.Max(0, math.Min(1, confidence+change))
 }
 
+// ruleOfThumb is the n that is often called enough, whatever the population.
+const ruleOfThumb = 30
+
 // cochranN is the smallest n above 25 times the squared skewness (Cochran 1977,
 // Sampling Techniques, section 2.15).
 func cochranN(skewness float64) float64 {
@@ -104,7 +107,8 @@ var enoughNForMean = &Function{
 	OneOf: []OneOf{{{Needs: []string{"sample"}}, {Needs: []string{"skewness", "excess-kurtosis"}}}},
 	Results: []Result{resultPlanN, resultPlanned,
 		{"predicted-coverage", Number, NoUnit, "the chance, predicted for n, that the interval holds the true mean"},
-		{"cochran-n", Whole, NoUnit, "the smallest n above 25 times the squared skewness"}},
+		{"cochran-n", Whole, NoUnit, "the smallest n above 25 times the squared skewness"},
+		{"coverage-at-30", Number, NoUnit, "the predicted chance for n = 30, the common rule of thumb"}},
 	Findings:    append([]FindingKind{tooManyKind, noSpreadKind}, oneSampleFindings...),
 	Assumptions: []string{"independent values of one population with a finite fourth moment"},
 	Citations:   []string{"Hall 1992", "Cochran 1977"},
@@ -134,9 +138,11 @@ var enoughNForMean = &Function{
 		}
 		c.set("predicted-coverage", predicted(n))
 		c.set("cochran-n", int(rule))
+		c.set("coverage-at-30", predicted(ruleOfThumb))
 		c.method = fmt.Sprintf("predicted coverage of the t interval for skewness %s and excess kurtosis %s", brief(g1), brief(g2))
 		c.sentence = fmt.Sprintf("Measure %s, planned for a coverage of at least %s: the %s interval (%s) is predicted to hold the true mean in %s of cases (%s); "+
-			"Cochran's rule asks for n = %.0f.%s", nText(n), percent(wanted), percent(conf), c.inDirection(), percent(toDigits(predicted(n))), c.method, rule, c.toPlan())
+			"Cochran's rule asks for n = %.0f, and the common rule of thumb, n = %d, is predicted to give %s.%s", nText(n), percent(wanted), percent(conf), c.inDirection(),
+			percent(toDigits(predicted(n))), c.method, rule, ruleOfThumb, percent(toDigits(predicted(ruleOfThumb))), c.toPlan())
 		return nil
 	},
 }
