@@ -158,6 +158,33 @@ func TestThePageOfTheDemoIsWholeAndSelfContained(t *testing.T) {
 	}
 }
 
+// The browser check of testdata/page opens this page: it has to show all kinds.
+func TestTheSheetOfPicturesShowsEveryKind(t *testing.T) {
+	r, err := workbook.Work(context.Background(), "../../testdata/page/pictures.calculations.csv",
+		workbook.Options{KeepValues: true, Data: []string{"../../testdata/workbooks"}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	checkPage(t, pageOf(t, r), r)
+	drawn := map[*rule]bool{}
+	refused := 0
+	for _, row := range r.Results.Rows {
+		if row.Status == funcs.StatusRefused {
+			refused++
+			continue
+		}
+		drawn[ruleFor(row.Row.Function)] = true
+	}
+	for i := range rules {
+		if !drawn[&rules[i]] {
+			t.Errorf("no row is drawn by rule %d", i)
+		}
+	}
+	if refused != 1 {
+		t.Errorf("%d rows are refused, want the one that is there for it", refused)
+	}
+}
+
 func TestTheMostSeriousFindingsStandFirst(t *testing.T) {
 	path := book(t, map[string][][]any{"Trips": append(trips(60), []any{"n/a", "North"}), "Calculations": {
 		{"work out", "label", "sample", "> mean", "> note"},

@@ -220,6 +220,16 @@ func (a answer) intervalOf(lower, upper string) interval {
 	if first := a.Function.Results; len(first) > 0 && first[0].Name != lower {
 		v.name, v.estimate = spaced(first[0].Name), a.result(first[0].Name)
 	}
+	switch future := a.given("future"); {
+	case !math.IsNaN(a.given("content")): // limits of values, not of an estimate
+		v.name = percent(a.given("content")) + " of all values"
+	case future == 1:
+		v.name = "the next value"
+	case future > 1 && a.word("of") == "mean":
+		v.name = "mean of the next " + figure(future)
+	case future > 1:
+		v.name = "each of the next " + figure(future)
+	}
 	return v
 }
 

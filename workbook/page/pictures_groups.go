@@ -180,6 +180,9 @@ func (f *picture) addRows(a answer) {
 		lo, hi = math.Min(lo, a), math.Max(hi, b)
 	}
 	p := newPanel(lo, hi, a.titled("differences"))
+	p.over(func(g pen) {
+		g.dashed(refInk, 1.6, vg.Point{X: g.x(0), Y: g.Max.Y}, vg.Point{X: g.x(0), Y: g.Min.Y - 6})
+	})
 	for _, v := range list {
 		p.row(lineHeight, func(g pen) { g.left(wordInk, g.down(0), v.name) })
 		p.row(bracketHeight, func(g pen) {
@@ -191,9 +194,6 @@ func (f *picture) addRows(a answer) {
 		})
 		f.says = append(f.says, v.says())
 	}
-	p.over(func(g pen) {
-		g.dashed(refInk, 1.6, vg.Point{X: g.x(0), Y: g.Max.Y}, vg.Point{X: g.x(0), Y: g.Min.Y - 6})
-	})
 	f.panels = append(f.panels, p)
 	f.caption = append(f.caption, "Below: the differences with their intervals; dashed: no difference.")
 }

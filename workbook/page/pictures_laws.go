@@ -3,6 +3,7 @@ package page
 import (
 	"context"
 	"math"
+	"strconv"
 	"strings"
 
 	"gonum.org/v1/plot/vg"
@@ -284,6 +285,9 @@ func drawShares(_ context.Context, a answer) (*picture, error) {
 	p := newPanel(lo, math.Max(hi, 1)*1.04, "share of the variance of the sum, in %")
 	for _, row := range rows {
 		name, _ := row.Values["item"].(string)
+		if _, err := strconv.Atoi(name); err == nil { // a place among items without names
+			name = "item " + name
+		}
 		share := asNumber(row.Values["share"])
 		p.addBar(name+", "+percentOf(share), 100*share)
 		f.says = append(f.says, name+": "+percentOf(share)+" of the variance.")

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"strings"
 
 	"gonum.org/v1/plot/vg"
 
@@ -68,10 +69,6 @@ func drawInterval(_ context.Context, a answer) (*picture, error) {
 		v.name, v.estimate = "sd", a.result("sd")
 		for i := range refs {
 			refs[i] = reference{"root of the reference:", math.Sqrt(refs[i].value), true}
-		}
-	case math.IsNaN(v.estimate):
-		if m := a.given("mean"); !math.IsNaN(m) {
-			v.name, v.estimate = "mean", m
 		}
 	}
 	f := &picture{}
@@ -142,7 +139,7 @@ func (f *picture) explain(v interval, refs []reference) {
 		f.caption = append(f.caption, sentence(bracket))
 	}
 	if len(refs) > 0 {
-		f.caption = append(f.caption, "Dashed: "+refs[0].name+".")
+		f.caption = append(f.caption, "Dashed: "+strings.TrimSuffix(refs[0].name, ":")+".")
 	}
 }
 
