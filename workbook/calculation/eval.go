@@ -361,19 +361,15 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 	return nil
 }
 
-// letGo drops the samples that were read from an outcome, unless they are to be
-// kept.
+// letGo drops from an outcome what was read from sheets, unless it is to be
+// kept: a number too, since its origin holds on to the sheet that it came from.
 func (p *Plan) letGo(r *Row, out *funcs.Outcome) {
 	if p.options.KeepValues {
 		return
 	}
 	var names []string
 	for name, from := range out.Arguments {
-		if from.Origin == nil || from.Origin.Range == "" {
-			continue
-		}
-		switch from.Value.(type) {
-		case []float64, []funcs.Group:
+		if from.Origin != nil && from.Origin.Range != "" {
 			names = append(names, name)
 		}
 	}

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math/rand/v2"
 	"reflect"
+	"runtime"
 	"slices"
 	"sync/atomic"
 	"testing"
@@ -207,4 +208,45 @@ func TestProgressCountsEveryRow(t *testing.T) {
 			t.Errorf("%d rows were told %d times, want once a run", done, n)
 		}
 	}
+}
+
+// Outcomes that are kept over many changes hold on to none of the sheets that
+// they were worked out from.
+func TestKeptOutcomesHoldNoEarlierSheet(t *testing.T) {
+	const rows, changes = 500_000, 40
+	trips, calc := NewFrame(), NewFrame()
+	trips.Set(rows, 1, plainCell(1.0))
+	for i, title := range []string{"work out", "p-values", "> note"} {
+		calc.Set(1, i+1, plainCell(title))
+	}
+	for i := range changes {
+		for row := 10*i + 1; row <= 10*i+3; row++ {
+			trips.Set(row, 1, plainCell(0.25))
+		}
+		calc.Set(i+2, 1, plainCell("adjusted-p-values"))
+		calc.Set(i+2, 2, plainCell(fmt.Sprintf("Trips!A%d:A%d", 10*i+1, 10*i+3)))
+	}
+	b := &liveBook{names: []string{"Trips", "Calculations"}, frames: map[string]*Frame{"Trips": trips, "Calculations": calc}}
+	held := func() int64 {
+		var m runtime.MemStats
+		runtime.GC()
+		runtime.ReadMemStats(&m)
+		return int64(m.HeapAlloc)
+	}
+	results := b.run(t, nil)
+	before := held()
+	for i := range changes {
+		b.change("Trips", CellRef{10*i + 1, 1}.String(), 0.5)
+		results = b.run(t, results)
+		for _, r := range results.Rows {
+			if r.Status == "refused" || r.Kept == (r.Row.Number == i+2) {
+				t.Fatalf("range %d changed: row %d is %s, kept: %v", i, r.Row.Number, r.Status, r.Kept)
+			}
+		}
+	}
+	// A frame of half a million rows has flags of half a megabyte, anew with each change.
+	if grown := held() - before; grown > 5_000_000 {
+		t.Errorf("%d changes left %d bytes", changes, grown)
+	}
+	runtime.KeepAlive(results)
 }
