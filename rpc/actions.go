@@ -6,6 +6,8 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+
+	"halfwidth/workbook/calculation"
 )
 
 // The commands that the client may have executed. They are for clients that take
@@ -125,7 +127,7 @@ func (c *Client) edit(t *textState, edits []textEdit) workspaceEdit {
 
 // fileFixes offers the closest file where one is not there.
 func (w *workedText) fileFixes(f *textFinding) []textFix {
-	if f.Code != "unreadable-file" {
+	if f.Code != "unreadable-file" || f.within == (calculation.Span{}) { // the name may stand in another cell
 		return nil
 	}
 	name := strings.Trim(w.sheet.CellText(f.cell)[f.within.Start:f.within.End], `"`)
