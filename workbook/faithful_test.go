@@ -204,7 +204,7 @@ func compareZips(t *testing.T, before, after []byte, changed func(name, before, 
 		g := a.File[i]
 		if f.Name == g.Name && f.CRC32 != g.CRC32 {
 			x, y := f.FileHeader, g.FileHeader
-			if x.Comment != y.Comment || !bytes.HasPrefix(y.Extra, x.Extra) || x.ModifiedDate != y.ModifiedDate || x.ModifiedTime != y.ModifiedTime || x.ExternalAttrs != y.ExternalAttrs {
+			if x.Comment != y.Comment || !bytes.HasPrefix(y.Extra, x.Extra) || !x.Modified.Equal(y.Modified) || x.ExternalAttrs != y.ExternalAttrs {
 				t.Errorf("%s: the entry is %+v, want %+v", f.Name, y, x)
 			}
 			changed(f.Name, inflated(t, f), inflated(t, g))
