@@ -120,6 +120,9 @@ func (c *Call) setCoverage(s coverageTally, n int) {
 	}
 }
 
+// roughFrom is how far from the confidence a second-order prediction is only rough.
+const roughFrom = 0.05
+
 // allowedByDefault is how far coverage may fall short in n-needed.
 const allowedByDefault = 0.01
 
@@ -158,6 +161,9 @@ func (c *Call) sayCoverage(input, of, target string, n int, o *outlook, enough s
 	if o != nil {
 		c.set("predicted-coverage", o.coverage)
 		predicted = "; predicted " + percent(toDigits(o.coverage))
+		if math.Abs(conf-o.coverage) > roughFrom {
+			predicted = "; predicted, but roughly so far out, " + percent(math.Round(o.coverage*100)/100)
+		}
 		switch {
 		case o.needed == 0:
 			enough = fmt.Sprintf(" Not even %d values are predicted to bring it within 1 percentage point of %s.", largestPlan, percent(conf))
