@@ -45,6 +45,9 @@ func eachBook(c *cobra.Command, f *bookFlags, words []string, v bookVerb) error 
 	if !files.Batch && s.of == 0 {
 		return oneBook(c, f, words[0], v, format)
 	}
+	if f.o.Output != "" && f.o.InPlace {
+		return usageError{errors.New("--in-place writes over the workbooks themselves; leave out --output")}
+	}
 	if f.o.Output != "" {
 		if err := checkOutputs(f.o.Output, files.Found); err != nil {
 			return err

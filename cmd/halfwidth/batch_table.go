@@ -60,6 +60,7 @@ func (t *batchTable) add(r bookResult) {
 	case r.fate == worked:
 		t.text.Rows = append(t.text.Rows, texttab.Row{Notes: r.notes, Cells: []any{r.book.Path,
 			r.counts[funcs.StatusOK], r.counts[funcs.StatusCaution], r.counts[funcs.StatusRefused], r.outcome}})
+	case r.fate == notStarted: // counted in the last line
 	case r.fate == noSheet:
 		r.notes = nil // the outcome says it
 		fallthrough

@@ -340,8 +340,9 @@ func TestFaultyFlagsOfABatchAreRefusedWithAdvice(t *testing.T) {
 		{"--shard=1/0", "such as 1/3"},
 		{"--shard=a/b", "such as 1/3"},
 		{"--jobs=-1", "write 1 or more"},
+		{"--in-place", "leave out --output"},
 	} {
-		stdout, stderr, code := run(t, "fill", t.TempDir(), c.flag)
+		stdout, stderr, code := run(t, "fill", t.TempDir(), "--output=filled", c.flag)
 		if code != exitFailed || stdout != "" || !strings.Contains(stderr, c.want) {
 			t.Errorf("%s: code %d, %q, %q", c.flag, code, stdout, stderr)
 		}
