@@ -23,6 +23,12 @@
 // signature.go, actions.go, hints.go and symbols.go answer from the state that
 // was the newest when the question came.
 //
+// Open sheets (sheets.go, cells.go) are frames that never change; a change makes
+// new ones, which share what stayed. A liveBook (publish.go) works out the newest
+// state of a book, keeping the outcomes of rows that read nothing changed, and
+// told.go finds what is new to the client. Files are filled by workbooks_fill.go.
+// PROTOCOL.md describes all of it from outside, openrpc.json for programs.
+//
 // A message passes, in this order: frames.go (bytes to bodies), envelope.go (a
 // body to its members), transport.go (one message for the library, or an answer
 // to a faulty one), session.go (life cycle, order, cancelling), a handler of the
