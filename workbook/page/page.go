@@ -151,6 +151,9 @@ func newView(ctx context.Context, r *workbook.Report) (*view, error) {
 	for _, d := range r.Plan.Diagnostics() {
 		v.Layout = append(v.Layout, newFinding(d))
 	}
+	for _, note := range r.Notes {
+		v.Layout = append(v.Layout, finding{Severity: funcs.Information.String(), Word: severityWords[funcs.Information], Message: note})
+	}
 	if len(v.First) == 0 && len(v.Layout) == 0 {
 		v.Quiet = "Nothing was found that makes an answer doubtful."
 	}
