@@ -81,7 +81,7 @@ func (c *Call) pooledPairs(groups []groupSummary) error {
 				return err
 			}
 			se := sd * math.Sqrt(1/float64(a.n)+1/float64(b.n))
-			c.addPair(a, b, se, critical, law)
+			c.addPair(pair{a, b, se, critical, pairValue(law, a, b, se)})
 		}
 	}
 	c.method = fmt.Sprintf("Tukey-Kramer studentized range of %s with one pooled variance and %s of freedom", plural(len(groups), "group"), degrees(df))
@@ -97,27 +97,41 @@ func (c *Call) separatePairs(groups []groupSummary) error {
 	if err := c.atLeastTwo(own); err != nil {
 		return err
 	}
-	done, still := 0, false
+	var pairs []pair
 	for i, a := range groups {
 		for _, b := range groups[i+1:] {
-			if err := c.cancelled(); err != nil {
-				return err
+			pairs = append(pairs, pair{a: a, b: b})
+		}
+	}
+	// A critical value for each pair, since each has its own degrees of freedom.
+	err := share(c.ctx, len(pairs), 4, func() func(int) {
+		return func(i int) {
+			p := &pairs[i]
+			if p.a.n < 2 || p.b.n < 2 {
+				return
 			}
-			m := twoMeans{}
-			if a.n > 1 && b.n > 1 {
-				m = compareMeans(a.summary, b.summary, separate)
-			}
-			switch {
-			case a.n < 2 || b.n < 2:
-				c.refusePair(a, b, "few-values", "a group of 1 value has no standard deviation of its own; measure at least 2.")
-			case m.se == 0:
-				still = true
-				c.refusePair(a, b, "no-spread", "in neither group do the values differ; check whether they were rounded or copied down.")
-			default:
+			m := compareMeans(p.a.summary, p.b.summary, separate)
+			if p.se = m.se; p.se > 0 {
 				law := dist.StudentizedRange{Groups: len(own), DF: m.df}
-				c.addPair(a, b, m.se, law.UpperQuantile(1-confidence.Of(c))/math.Sqrt2, law)
-				done++
+				p.critical = law.UpperQuantile(1-confidence.Of(c)) / math.Sqrt2
+				p.value = pairValue(law, p.a, p.b, p.se)
 			}
+		}
+	})
+	if err != nil {
+		return err
+	}
+	done, still := 0, false
+	for _, p := range pairs {
+		switch {
+		case p.a.n < 2 || p.b.n < 2:
+			c.refusePair(p.a, p.b, "few-values", "a group of 1 value has no standard deviation of its own; measure at least 2.")
+		case p.se == 0:
+			still = true
+			c.refusePair(p.a, p.b, "no-spread", "in neither group do the values differ; check whether they were rounded or copied down.")
+		default:
+			c.addPair(p)
+			done++
 		}
 	}
 	switch {
@@ -132,13 +146,25 @@ func (c *Call) separatePairs(groups []groupSummary) error {
 	return nil
 }
 
+// pair is two groups whose means are compared: the standard error of their
+// difference, how many of them reach to a limit, and the p-value.
+type pair struct {
+	a, b                groupSummary
+	se, critical, value float64
+}
+
+// pairValue is the p-value of two means.
+func pairValue(law dist.StudentizedRange, a, b groupSummary, se float64) float64 {
+	return law.SF(float64(math.Sqrt2 * math.Abs((a.mean-b.mean)/se)))
+}
+
 // addPair adds the row of the difference of two groups' means.
-func (c *Call) addPair(a, b groupSummary, se, critical float64, law dist.StudentizedRange) {
-	d := a.mean - b.mean + 0 // never -0
+func (c *Call) addPair(p pair) {
+	d := p.a.mean - p.b.mean + 0 // never -0
 	c.rows = append(c.rows, Row{Values: map[string]any{
-		"first": a.name, "second": b.name, "difference": d,
-		"lower": d - float64(critical*se), "upper": d + float64(critical*se),
-		"p-value": law.SF(float64(math.Sqrt2 * math.Abs(d/se))),
+		"first": p.a.name, "second": p.b.name, "difference": d,
+		"lower": d - float64(p.critical*p.se), "upper": d + float64(p.critical*p.se),
+		"p-value": p.value,
 	}})
 }
 

@@ -66,14 +66,26 @@ func (c *Call) sayLowered(in In[int], resamples, n int, left string) {
 // resample calls work for each resample from 0 to n-1, shared among the cores.
 // Each resample has its own stream, and work may write only to what belongs to
 // its resample or its worker, so that the digits do not depend on the cores.
-// newWorker gives the work of one goroutine, with scratch space of its own. No
-// more of them run than there are cores: a program that allows more threads, to
-// stay quick at other things meanwhile, keeps the others free.
+// newWorker gives the work of one goroutine, with scratch space of its own.
 func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *num.Stream)) error {
-	const chunk = 64 // resamples that a worker takes at once
+	return share(ctx, n, 64, func() func(int) {
+		work, stream := newWorker(), num.NewStream()
+		return func(i int) {
+			stream.Start(uint64(seed), uint64(i))
+			work(i, stream)
+		}
+	})
+}
+
+// share calls work for each item from 0 to n-1; a goroutine, which newWorker gives
+// its work, takes a chunk of them at a time. No more goroutines run than there are cores: a
+// program that allows more threads, to stay quick at other things meanwhile, keeps
+// the others free.
+func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) error {
 	var next struct {
 		sync.Mutex
-		at int
+		at    int
+		fault any // what a worker panicked with
 	}
 	take := func() (from, to int) {
 		next.Lock()
@@ -85,15 +97,24 @@ func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *
 	var all sync.WaitGroup
 	for range min(runtime.GOMAXPROCS(0), runtime.NumCPU(), (n+chunk-1)/chunk) {
 		all.Go(func() {
-			work, stream := newWorker(), num.NewStream()
+			defer func() {
+				if p := recover(); p != nil {
+					next.Lock()
+					defer next.Unlock()
+					next.fault = p
+				}
+			}()
+			work := newWorker()
 			for from, to := take(); from < to && ctx.Err() == nil; from, to = take() {
 				for i := from; i < to && ctx.Err() == nil; i++ {
-					stream.Start(uint64(seed), uint64(i))
-					work(i, stream)
+					work(i)
 				}
 			}
 		})
 	}
 	all.Wait()
+	if next.fault != nil {
+		panic(next.fault) // for the call's own guard, which does not see other goroutines
+	}
 	return ctx.Err()
 }

@@ -1,0 +1,57 @@
+package funcs
+
+import (
+	"errors"
+	"fmt"
+	"math/rand/v2"
+	"sync/atomic"
+	"testing"
+)
+
+func TestSharedWorkIsDoneOnce(t *testing.T) {
+	for _, n := range []int{0, 1, 3, 64, 1000} {
+		done := make([]atomic.Int32, n)
+		if err := share(t.Context(), n, 4, func() func(int) { return func(i int) { done[i].Add(1) } }); err != nil {
+			t.Fatal(err)
+		}
+		for i := range done {
+			if k := done[i].Load(); k != 1 {
+				t.Errorf("n = %d: item %d was worked on %d times", n, i, k)
+			}
+		}
+	}
+}
+
+// A fault of our own in another goroutine is an internal error, not the end of
+// the program.
+func TestAPanicInSharedWorkIsAnInternalError(t *testing.T) {
+	f := &Function{Name: "faulty", compute: func(c *Call) error {
+		return share(c.ctx, 100, 4, func() func(int) { return func(int) { panic("fault") } })
+	}}
+	if _, err := f.Answer(t.Context(), nil); !errors.Is(err, ErrInternal) {
+		t.Errorf("got %v", err)
+	}
+}
+
+// The rows of many pairs do not depend on the cores.
+func TestPairsGiveTheSameDigitsOnAnyCores(t *testing.T) {
+	rng := rand.New(rand.NewPCG(8, 8))
+	var groups []Group
+	for i := range 9 {
+		groups = append(groups, Group{fmt.Sprint("depot ", i), noise(rng, 3+i, 10, 1+float64(i))})
+	}
+	arguments := map[string]any{"samples": groups, "variances": separate}
+	var one, many *Outcome
+	onCores(1, func() { one = answer(t, "pairwise-differences", arguments) })
+	onCores(8, func() { many = answer(t, "pairwise-differences", arguments) })
+	if len(one.Rows) != 36 || len(many.Rows) != 36 {
+		t.Fatalf("%d and %d rows", len(one.Rows), len(many.Rows))
+	}
+	for i := range one.Rows {
+		for name, v := range one.Rows[i].Values {
+			if many.Rows[i].Values[name] != v {
+				t.Errorf("row %d: %s is %v and %v", i, name, v, many.Rows[i].Values[name])
+			}
+		}
+	}
+}
