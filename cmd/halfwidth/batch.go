@@ -5,8 +5,10 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"os"
 	"path/filepath"
 	"runtime"
+	"runtime/debug"
 	"strings"
 	"sync/atomic"
 
@@ -42,6 +44,7 @@ func eachBook(c *cobra.Command, f *bookFlags, words []string, v bookVerb) error 
 		return err
 	}
 	files := workbook.Find(words, v.filled)
+	collectLater(files.Found)
 	if !files.Batch && s.of == 0 {
 		return oneBook(c, f, words[0], v, format)
 	}
@@ -67,6 +70,22 @@ func eachBook(c *cobra.Command, f *bookFlags, words []string, v bookVerb) error 
 		}
 	}
 	return b.run(c.Context(), c.OutOrStdout(), newProgress(c.ErrOrStderr(), len(b.books), f.quiet))
+}
+
+// collectLater lets garbage grow twice as far as usual before it is collected,
+// unless some book is large: with one of usual size there is hardly anything worth
+// collecting before the end.
+func collectLater(found []workbook.Found) {
+	const large = 16 << 20
+	if os.Getenv("GOGC") != "" {
+		return
+	}
+	for _, f := range found {
+		if info, err := os.Stat(f.Path); err == nil && info.Size() >= large {
+			return
+		}
+	}
+	debug.SetGCPercent(200)
 }
 
 // oneBook works on one book that was named itself.

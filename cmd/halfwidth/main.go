@@ -6,16 +6,10 @@ import (
 	"context"
 	"os"
 	"os/signal"
-	"runtime/debug"
 	"syscall"
 )
 
 func main() {
-	// A run that fills one workbook of usual size ends before there is anything
-	// worth collecting.
-	if os.Getenv("GOGC") == "" {
-		debug.SetGCPercent(200)
-	}
 	ctx, stop := withSignals(context.Background())
 	code := Run(ctx, os.Args[1:], os.Stdout, os.Stderr)
 	stop()
