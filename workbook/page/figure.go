@@ -177,12 +177,26 @@ func (f *picture) alt() string {
 // The strokes of a pen.
 
 func (p pen) line(name ink, width vg.Length, points ...vg.Point) {
+	if len(points) < 2 {
+		return
+	}
 	p.StrokeLines(draw.LineStyle{Color: name, Width: width}, points)
 }
 
 // dashed draws a line that differs by its form, not by its colour alone.
 func (p pen) dashed(name ink, width vg.Length, points ...vg.Point) {
 	p.StrokeLines(draw.LineStyle{Color: name, Width: width, Dashes: []vg.Length{5, 4}}, points)
+}
+
+// segments draws a line between every two points, as one path.
+func (p pen) segments(name ink, width vg.Length, points []vg.Point) {
+	var path vg.Path
+	for i := 0; i+1 < len(points); i += 2 {
+		path.Move(points[i])
+		path.Line(points[i+1])
+	}
+	p.SetLineStyle(draw.LineStyle{Color: name, Width: width})
+	p.Stroke(path)
 }
 
 // dots draws dots of one size as one path.

@@ -220,6 +220,9 @@ func (a answer) intervalOf(lower, upper string) interval {
 	if first := a.Function.Results; len(first) > 0 && first[0].Name != lower {
 		v.name, v.estimate = spaced(first[0].Name), a.result(first[0].Name)
 	}
+	if of := a.word("of"); v.name == "estimate" && of != "" {
+		v.name = spaced(of)
+	}
 	switch future := a.given("future"); {
 	case !math.IsNaN(a.given("content")): // limits of values, not of an estimate
 		v.name = percent(a.given("content")) + " of all values"

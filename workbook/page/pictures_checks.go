@@ -169,6 +169,13 @@ func drawNormalPlot(ctx context.Context, a answer) (*picture, error) {
 	}, nil
 }
 
+// mostInOrder is how many places of a sequence are drawn one by one; longer ones
+// are drawn in so many stretches.
+const (
+	mostInOrder = 600
+	stretches   = 300
+)
+
 // drawSequence shows values in their order, gaps as gaps, about their median.
 func drawSequence(ctx context.Context, a answer) (*picture, error) {
 	values := a.sample("sample")
@@ -177,61 +184,83 @@ func drawSequence(ctx context.Context, a answer) (*picture, error) {
 		return nil, err
 	}
 	present := withoutGaps(values)
+	missing := len(values) - len(present)
 	lo, hi := spanOf(present...)
-	first, last := 1, len(values)
-	note := ""
-	if len(values) > mostDots { // a window is true to the order; a thinned sequence is not
-		last = mostDots
-		note = fmt.Sprintf("The first %d of %d places are drawn.", mostDots, len(values))
-	}
-	p := newPanel(float64(first)-0.5, float64(last)+0.5, a.titled("values")+" (upward) in their order")
+	p := newPanel(0.5, float64(len(values))+0.5, a.titled("values")+" (upward) in their order")
 	p.vertical(lo, hi, 150)
-	p.over(func(g pen) {
-		size := min(5, max(1.8, 900/vg.Length(last)))
-		var run, dots []vg.Point
-		var gaps []vg.Point
-		flush := func() {
-			if len(run) > 1 {
-				g.line(axisInk, 0.8, run...)
-			}
-			run = nil
-		}
-		for i := first; i <= last; i++ {
-			v := values[i-1]
-			if math.IsNaN(v) {
-				flush()
-				gaps = append(gaps, vg.Point{X: g.x(float64(i)), Y: g.Min.Y + 2})
-				continue
-			}
-			pt := vg.Point{X: g.x(float64(i)), Y: g.y(v)}
-			run, dots = append(run, pt), append(dots, pt)
-		}
-		flush()
-		g.dots(dotInk, size, dots)
-		for _, pt := range gaps {
-			g.line(ringInk, 1, pt, vg.Point{X: pt.X, Y: pt.Y + 6})
-		}
-		if !math.IsNaN(median) {
-			g.dashed(refInk, 1.6, vg.Point{X: g.Min.X, Y: g.y(median)}, vg.Point{X: g.Max.X, Y: g.y(median)})
-		}
-	})
 	f := &picture{
 		panels: []*panel{p},
-		says: []string{fmt.Sprintf("%s in their order, from %s to %s, in %s about the median %s.", sentenceStart(plural(len(present), "value")),
+		says: []string{fmt.Sprintf("%s in their order, from %s to %s, in %s about the median %s.", plural(len(present), "value"),
 			figure(slices.Min(present)), figure(slices.Max(present)), plural(int(a.result("runs")), "run"), figure(median))},
-		caption: []string{"Neighbours are joined. Dashed: median " + figure(median) + "."},
 	}
-	if missing := len(values) - len(present); missing > 0 {
+	each := (len(values) + stretches - 1) / stretches
+	if len(values) <= mostInOrder {
+		each = 1
+		f.caption = append(f.caption, "Neighbours are joined.")
+	} else {
+		f.caption = append(f.caption, fmt.Sprintf("Each stroke spans the smallest to the largest of %d successive values; the dot on it is their mean.", each))
+	}
+	f.caption = append(f.caption, "Dashed: median "+figure(median)+".")
+	if missing > 0 {
 		f.caption = append(f.caption, "Short strokes at the foot: "+plural(missing, "gap")+", where a value is missing.")
 		f.says = append(f.says, plural(missing, "gap")+".")
 	}
-	if note != "" {
-		f.caption = append(f.caption, note)
-	}
+	p.over(func(g pen) {
+		if each == 1 {
+			g.sequence(values)
+		} else {
+			g.stretches(values, each)
+		}
+		g.dashed(refInk, 1.6, vg.Point{X: g.Min.X, Y: g.y(median)}, vg.Point{X: g.Max.X, Y: g.y(median)})
+	})
 	return f, nil
 }
 
-func sentenceStart(s string) string { s = sentence(s); return s[:len(s)-1] }
+// sequence draws values one by one, joined where no gap lies between them.
+func (g pen) sequence(values []float64) {
+	var run, dots []vg.Point
+	for i, v := range values {
+		at := g.x(float64(i + 1))
+		if math.IsNaN(v) {
+			g.line(axisInk, 0.8, run...)
+			run = nil
+			g.gap(at)
+			continue
+		}
+		run, dots = append(run, vg.Point{X: at, Y: g.y(v)}), append(dots, vg.Point{X: at, Y: g.y(v)})
+	}
+	g.line(axisInk, 0.8, run...)
+	g.dots(dotInk, min(5, max(1.8, 900/vg.Length(len(values)))), dots)
+}
+
+// stretches draws so many successive values as one stroke, with their mean.
+func (g pen) stretches(values []float64, each int) {
+	var means, spans []vg.Point
+	for from := 0; from < len(values); from += each {
+		all := values[from:min(from+each, len(values))]
+		at := g.x(float64(from) + float64(len(all)+1)/2)
+		part := withoutGaps(all)
+		if len(part) < len(all) {
+			g.gap(at)
+		}
+		if len(part) == 0 {
+			continue
+		}
+		var mean float64
+		for _, v := range part {
+			mean += v / float64(len(part))
+		}
+		spans = append(spans, vg.Point{X: at, Y: g.y(slices.Min(part))}, vg.Point{X: at, Y: g.y(slices.Max(part))})
+		means = append(means, vg.Point{X: at, Y: g.y(mean)})
+	}
+	g.segments(axisInk, 0.8, spans)
+	g.dots(intervalInk, 2.8, means)
+}
+
+// gap marks a missing value at the foot.
+func (g pen) gap(at vg.Length) {
+	g.line(ringInk, 1, vg.Point{X: at, Y: g.Min.Y}, vg.Point{X: at, Y: g.Min.Y + 6})
+}
 
 // shownMeans is how many simulated means are ranked for a picture.
 const shownMeans = 499

@@ -31,9 +31,7 @@ func drawSample(_ context.Context, a answer) (*picture, error) {
 			refs[i] = reference{"root of the reference:", math.Sqrt(refs[i].value), true}
 		}
 	case a.word("of") == "sd":
-		v.name, own = "sd", true
-	case a.word("of") != "" && !math.IsNaN(v.estimate):
-		v.name = a.word("of")
+		own = true
 	}
 	s := newStrip("", a.sample("sample"), mostDots)
 	f := &picture{}
