@@ -42,7 +42,7 @@ func (interruption) Error() string { return "interrupted" }
 type usageError struct{ error }
 
 // verbs lists the commands in the order of the help.
-var verbs = []func() *cobra.Command{fillCommand, previewCommand, verifyCommand, pageCommand, functionsCommand, answerCommand}
+var verbs = []func() *cobra.Command{fillCommand, previewCommand, verifyCommand, pageCommand, starterCommand, functionsCommand, answerCommand}
 
 // Run carries out one command line and gives its exit code. Results go to
 // stdout, everything else to stderr.
