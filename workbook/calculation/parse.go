@@ -163,7 +163,7 @@ func (c *calcSheet) readHeader(b *Block) {
 		if bc.Role == OwnColumn && bc.Title != "" {
 			c.checkOwn(b, bc, known)
 		}
-		if bc.Role == InputColumn && slices.Contains(summaries, bc.Name) && b.column(ResultColumn, bc.Name) == nil && c.isEmpty(b, bc.Col) {
+		if bc.Role == InputColumn && slices.Contains(summaries, bc.Name) && b.column(ResultColumn, bc.Name) == nil && c.isEmpty(b, bc.Col) && c.someGives(b, bc.Name) {
 			c.find(CellRef{b.Header, bc.Col}, funcs.Information, "missing-result-mark",
 				fmt.Sprintf("The column %s is empty. It is an input; write > %s to have the result filled in.", quote(bc.Title), bc.Name))
 			c.meant("> " + bc.Name)
@@ -173,6 +173,23 @@ func (c *calcSheet) readHeader(b *Block) {
 
 // summaries are names that are inputs of some functions and results of others.
 var summaries = []string{"mean", "sd", "n"}
+
+// someGives reports whether a function that a block names gives a result.
+func (c *calcSheet) someGives(b *Block, name string) bool {
+	gives := func(f *funcs.Function) bool {
+		_, ok := f.Result(name)
+		return ok
+	}
+	if b.Function != nil {
+		return gives(b.Function)
+	}
+	for row := b.Header + 1; row <= b.LastRow; row++ {
+		if f, err := funcs.Lookup(nameForm(c.at(row, b.work).Text)); err == nil && gives(f) {
+			return true
+		}
+	}
+	return false
+}
 
 // readTitle reads one header cell.
 func (c *calcSheet) readTitle(b *Block, bc *BlockColumn, known vocabulary) {
