@@ -6,10 +6,12 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"io/fs"
 	"maps"
 	"os"
 	"slices"
 	"strings"
+	"syscall"
 	"unicode/utf8"
 
 	"halfwidth/workbook/calculation"
@@ -171,11 +173,11 @@ func (c *bookChanges) ready() (err error) {
 	return err
 }
 
-func (c *bookChanges) saveAs(target string) (ooxml.Saved, error) {
+func (c *bookChanges) saveAs(target string, last ...func() error) (ooxml.Saved, error) {
 	if err := c.ready(); err != nil {
 		return ooxml.Saved{}, err
 	}
-	return c.book.SaveAs(target, c.Changes)
+	return c.book.SaveAs(target, c.Changes, last...)
 }
 
 func (c *bookChanges) saveInPlace() (ooxml.Saved, error) {
@@ -219,11 +221,8 @@ func cut(text string) string {
 // filled. It is as it was where its seal holds, or where it holds what would be
 // written now.
 func (c *bookChanges) mayReplace(target string) error {
-	there, err := os.Open(target)
-	if errors.Is(err, os.ErrNotExist) {
-		return nil
-	}
-	if err != nil {
+	there, err := openOutput(target)
+	if there == nil {
 		return err
 	}
 	defer there.Close()
@@ -244,6 +243,28 @@ func (c *bookChanges) mayReplace(target string) error {
 		return errChangedOutput(target)
 	}
 	return nil
+}
+
+// openOutput opens an output to see whether it was changed. It gives nil where
+// there is none yet.
+func openOutput(target string) (*os.File, error) {
+	file, err := os.Open(target)
+	var cause *fs.PathError
+	switch {
+	case err == nil:
+		if info, err := file.Stat(); err != nil || !info.Mode().IsRegular() {
+			file.Close()
+			return nil, fmt.Errorf("%s is there and is no file; use --output to write elsewhere", target)
+		}
+		return file, nil
+	case errors.Is(err, fs.ErrNotExist):
+		return nil, nil
+	case errors.Is(err, syscall.ENAMETOOLONG):
+		return nil, fmt.Errorf("the output's name is too long: %s; use --output to give it a shorter one", target)
+	case errors.As(err, &cause):
+		err = cause.Err
+	}
+	return nil, fmt.Errorf("%s is there and cannot be read to see whether it was changed since it was filled: %w; use --output to write elsewhere", target, err)
 }
 
 func errChangedOutput(target string) error {

@@ -34,7 +34,7 @@ type changes interface {
 	compared() int
 	// mayReplace refuses to write over a file that was changed since it was filled.
 	mayReplace(target string) error
-	saveAs(target string) (ooxml.Saved, error)
+	saveAs(target string, last ...func() error) (ooxml.Saved, error)
 	saveInPlace() (ooxml.Saved, error)
 }
 

@@ -120,18 +120,45 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 		report.Saved, err = changes.saveInPlace()
 		return report, err
 	}
+	var last []func() error
 	if !o.Replace {
+		checked := stateOf(target)
 		if err := changes.mayReplace(target); err != nil {
 			return nil, err
 		}
+		last = append(last, func() error { // it may have been changed while this was written
+			if checked.same(stateOf(target)) {
+				return nil
+			}
+			return changes.mayReplace(target)
+		})
 	}
 	if o.MakeFolders {
 		if err := os.MkdirAll(filepath.Dir(target), 0o777); err != nil {
 			return nil, err
 		}
 	}
-	report.Saved, err = changes.saveAs(target)
+	report.Saved, err = changes.saveAs(target, last...)
 	return report, err
+}
+
+// state is what the system says of a file; nil where it says nothing.
+type state struct{ os.FileInfo }
+
+func stateOf(path string) state {
+	info, err := os.Stat(path)
+	if err != nil {
+		return state{}
+	}
+	return state{info}
+}
+
+// same reports that nothing was written to a file, or put in its place, since.
+func (s state) same(now state) bool {
+	if s.FileInfo == nil || now.FileInfo == nil {
+		return s.FileInfo == now.FileInfo
+	}
+	return os.SameFile(s.FileInfo, now.FileInfo) && s.Size() == now.Size() && s.ModTime().Equal(now.ModTime())
 }
 
 func (o Options) workers() int {

@@ -128,8 +128,8 @@ func (c *textChanges) save(w io.Writer) error {
 	return err
 }
 
-func (c *textChanges) saveAs(target string) (ooxml.Saved, error) {
-	if err := c.sheet.file.SaveAs(target, c.save); err != nil {
+func (c *textChanges) saveAs(target string, last ...func() error) (ooxml.Saved, error) {
+	if err := c.sheet.file.SaveAs(target, c.save, last...); err != nil {
 		return ooxml.Saved{}, err
 	}
 	return ooxml.Saved{Path: target, Cells: len(c.edits)}, nil
@@ -151,11 +151,8 @@ func (c *textChanges) saveInPlace() (ooxml.Saved, error) {
 // result cells it reads as the sheet does, and each result cell that would
 // change is empty, or its row's fingerprint shows that the inputs changed since.
 func (c *textChanges) mayReplace(target string) error {
-	file, err := os.Open(target)
-	if os.IsNotExist(err) {
-		return nil
-	}
-	if err != nil {
+	file, err := openOutput(target)
+	if file == nil {
 		return err
 	}
 	defer file.Close()

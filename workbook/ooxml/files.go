@@ -39,8 +39,9 @@ func (f *File) Size() int64 { return f.info.Size() }
 // SaveAs writes another file, through a temporary file in the same folder, so
 // that it is always whole. A file of that name is replaced; f itself is refused,
 // and so is a save after another program changed f. A nil f stands for data that
-// is in no file.
-func (f *File) SaveAs(path string, write func(io.Writer) error) error {
+// is in no file. What may still refuse it is called last, when all is written
+// and before the file takes its place.
+func (f *File) SaveAs(path string, write func(io.Writer) error, last ...func() error) error {
 	if info, err := os.Stat(path); err == nil {
 		switch {
 		case !info.Mode().IsRegular():
@@ -53,7 +54,14 @@ func (f *File) SaveAs(path string, write func(io.Writer) error) error {
 	if f != nil {
 		mode = f.info.Mode().Perm() | 0o200 // a copy of a read-only file can be written
 	}
-	return replace(path, mode, write, f.unchanged)
+	return replace(path, mode, write, func() error {
+		for _, refuse := range append([]func() error{f.unchanged}, last...) {
+			if err := refuse(); err != nil {
+				return err
+			}
+		}
+		return nil
+	})
 }
 
 // SaveInPlace writes over the file itself, through a temporary file in the same
@@ -83,12 +91,12 @@ func (f *File) SaveInPlace(write func(io.Writer) error) (string, error) {
 
 // SaveAs writes the book with its changes to another file; see File.SaveAs.
 // Without changes it is an exact copy.
-func (b *Book) SaveAs(path string, changes Changes) (Saved, error) {
+func (b *Book) SaveAs(path string, changes Changes, last ...func() error) (Saved, error) {
 	j, err := b.prepare(changes)
 	if err != nil {
 		return Saved{}, err
 	}
-	if err := b.disk.SaveAs(path, func(w io.Writer) error { return b.write(w, j) }); err != nil {
+	if err := b.disk.SaveAs(path, func(w io.Writer) error { return b.write(w, j) }, last...); err != nil {
 		return Saved{}, err
 	}
 	j.saved.Path = path

@@ -8,6 +8,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"syscall"
 	"time"
 )
 
@@ -52,6 +53,9 @@ func replace(path string, mode fs.FileMode, write func(io.Writer) error, last fu
 }
 
 func target(path, reason, advice string, cause error) *Error {
+	if errors.Is(cause, syscall.ENAMETOOLONG) {
+		advice = "give it a shorter name"
+	}
 	return &Error{File: path, Kind: ErrTarget, Reason: reason, Advice: advice, Err: cause}
 }
 
