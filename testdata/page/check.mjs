@@ -51,7 +51,7 @@ try {
       page.on('request', (request) => { if (request.url() !== url) say(`asks for ${request.url()}`); });
       await page.goto(url);
 
-      const seen = await page.evaluate(() => {
+      const seen = await page.evaluate((smallest) => {
         const root = document.documentElement;
         const texts = [...document.querySelectorAll('svg text')].map((t) => ({
           size: parseFloat(getComputedStyle(t).fontSize) * t.ownerSVGElement.getScreenCTM().a,
@@ -66,11 +66,10 @@ try {
             pictures: a.querySelectorAll('svg').length,
             named: [...a.querySelectorAll('svg')].every((s) => s.getAttribute('role') === 'img' && s.querySelector('title')?.textContent.length > 10),
           })),
-          small: texts.filter((t) => t.size < 11).map((t) => `${t.text} (${t.size.toFixed(1)})`),
+          small: texts.filter((t) => t.size < smallest).map((t) => `${t.text} (${t.size.toFixed(1)})`),
           spilled: texts.filter((t) => t.spill > 1).map((t) => t.text),
-          fonts: texts.length,
         };
-      });
+      }, smallestText);
       if (seen.sideways > 0) say(`it scrolls sideways by ${seen.sideways} pixels`);
       if (seen.articles.length === 0) say('it shows no calculation');
       for (const a of seen.articles) {

@@ -248,3 +248,57 @@ func TestTheBandOfANormalPlotIsThatOfOrderStatistics(t *testing.T) {
 		t.Errorf("scores %v (%v)", z, err)
 	}
 }
+
+// scaled multiplies every number among arguments that has the sample's unit.
+func scaled(f *funcs.Function, by, shift float64) map[string]any {
+	args := map[string]any{}
+	for _, a := range f.Example.Arguments {
+		in, _ := f.Input(a.Name)
+		args[a.Name] = a.Value
+		if in.Unit != funcs.SameUnit {
+			continue
+		}
+		change := func(list []float64) []float64 {
+			out := make([]float64, len(list))
+			for i, x := range list {
+				out[i] = x*by + shift
+			}
+			return out
+		}
+		switch v := a.Value.(type) {
+		case float64:
+			args[a.Name] = v * by
+		case []float64:
+			args[a.Name] = change(v)
+		case []funcs.Group:
+			var groups []funcs.Group
+			for _, g := range v {
+				groups = append(groups, funcs.Group{Name: g.Name, Values: change(g.Values)})
+			}
+			args[a.Name] = groups
+		case funcs.List:
+			args[a.Name] = funcs.List{Names: v.Names, Values: change(v.Values)}
+		}
+	}
+	return args
+}
+
+func TestPicturesStandNumbersOfAnySize(t *testing.T) {
+	for _, f := range funcs.All() {
+		for _, by := range []float64{1e300, 1e150, 1e12, 1e-12, 1e-150, 1e-300, 1e-310} {
+			for _, shift := range []float64{0, 1e15} {
+				out, err := f.Answer(context.Background(), scaled(f, by, shift))
+				if err != nil || out.Status == funcs.StatusRefused {
+					continue
+				}
+				p, err := drawPicture(context.Background(), answer{Outcome: out})
+				if err != nil {
+					t.Errorf("%s, times %g: %v", f.Name, by, err)
+				}
+				if p != nil {
+					p.check(t, f.Name)
+				}
+			}
+		}
+	}
+}
