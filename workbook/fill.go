@@ -122,16 +122,11 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 	}
 	var last []func() error
 	if !o.Replace {
-		checked := stateOf(target)
-		if err := changes.mayReplace(target); err != nil {
+		still, err := mayReplace(changes, target)
+		if err != nil {
 			return nil, err
 		}
-		last = append(last, func() error { // it may have been changed while this was written
-			if checked.same(stateOf(target)) {
-				return nil
-			}
-			return changes.mayReplace(target)
-		})
+		last = append(last, still)
 	}
 	if o.MakeFolders {
 		if err := os.MkdirAll(filepath.Dir(target), 0o777); err != nil {
@@ -140,6 +135,19 @@ func Fill(ctx context.Context, path string, o Options) (*Report, error) {
 	}
 	report.Saved, err = changes.saveAs(target, last...)
 	return report, err
+}
+
+// mayReplace refuses to write over an output that was changed since it was
+// filled. It gives the same question anew for when all is written: the output may
+// have been changed meanwhile.
+func mayReplace(c changes, target string) (still func() error, err error) {
+	asked := stateOf(target)
+	return func() error {
+		if asked.same(stateOf(target)) {
+			return nil
+		}
+		return c.mayReplace(target)
+	}, c.mayReplace(target)
 }
 
 // state is what the system says of a file; nil where it says nothing.
