@@ -82,7 +82,8 @@ func (c *Call) centredDistances(groups []groupSummary, kind string) error {
 			z = fromMedian(values)
 		}
 		squares += num.SumProducts(z, z)
-		distances[i] = groupSummary{g.name, z, summarise(z)}
+		m := num.Moments(z)
+		distances[i] = groupSummary{g.name, z, m, summaryFrom(m)}
 	}
 	sums := valueSquares(distances)
 	if squares == 0 {

@@ -4,13 +4,17 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+
+	"halfwidth/funcs/internal/num"
 )
 
 // groupSummary is one of several named groups, reduced to its summary. The
-// values, in order and with gaps, are there where they were given.
+// values, in order and with gaps, are there where they were given, and so are
+// their moments.
 type groupSummary struct {
-	name   string
-	values []float64
+	name    string
+	values  []float64
+	moments num.Summary
 	summary
 }
 
@@ -28,7 +32,8 @@ func (c *Call) readGroupsWith(further ...In[List]) ([]groupSummary, [][]float64,
 	var groups []groupSummary
 	if given, ok := samples.Given(c); ok {
 		for _, g := range given {
-			groups = append(groups, groupSummary{g.Name, g.Values, c.summarise(c.gapless(g.Values))})
+			m := c.moments(c.gapless(g.Values))
+			groups = append(groups, groupSummary{g.Name, g.Values, m, summaryFrom(m)})
 		}
 		c.count(total(groups))
 		_, columns, err := c.matched(namesOf(groups), further...)

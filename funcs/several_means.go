@@ -54,7 +54,7 @@ func summarySquares(groups []groupSummary) groupSquares {
 func valueSquares(groups []groupSummary) groupSquares {
 	means, about := make([]num.Wide, len(groups)), make([]num.Wide, len(groups))
 	for i, g := range groups {
-		m := num.Moments(withoutGaps(g.values))
+		m := g.moments
 		means[i], about[i] = num.Wide{Hi: m.Mean, Lo: m.MeanLow}, num.Widen(m.SumSquares)
 	}
 	return squaresOf(groups, means, about)
