@@ -191,7 +191,11 @@ func (g *gathering) run(ctx context.Context) error {
 	}
 	const often = 0x3fff
 	if rows, ok := g.candidates(); ok {
-		g.makeRoom(len(rows))
+		if len(g.tests) == 0 && len(repeated) == 0 {
+			g.makeRoom(len(rows), rows) // each of them gives a value
+		} else {
+			g.makeRoom(len(rows), nil)
+		}
 		for i, row := range rows {
 			if i&often == 0 && ctx.Err() != nil {
 				return ctx.Err()
@@ -201,7 +205,7 @@ func (g *gathering) run(ctx context.Context) error {
 		return nil
 	}
 	if len(g.tests) == 0 {
-		g.makeRoom(g.last - g.first + 1)
+		g.makeRoom(g.last-g.first+1, nil)
 	}
 	for row := g.first; row <= g.last; row++ {
 		if row&often == 0 && ctx.Err() != nil {
@@ -212,10 +216,12 @@ func (g *gathering) run(ctx context.Context) error {
 	return nil
 }
 
-// makeRoom makes room for so many values in each sample that is no group.
-func (g *gathering) makeRoom(n int) {
+// makeRoom makes room for so many values in each sample that is no group; rows are
+// those that they will stand in, where that is known.
+func (g *gathering) makeRoom(n int, rows []int32) {
 	for _, c := range g.columns {
 		if c.series != nil && g.query.What != Sum {
+			c.series.rows = rowList{list: rows, lent: rows != nil}
 			g.makeRoomFor(c.series, max(0, n))
 		}
 	}
@@ -324,7 +330,7 @@ func (g *gathering) roomForGroup(s *series, id uint32) {
 
 func (g *gathering) makeRoomFor(s *series, n int) {
 	s.values = g.room.forValues(n)
-	if g.group != nil || len(g.query.Where) > 0 {
+	if !s.rows.lent && (g.group != nil || len(g.query.Where) > 0) {
 		s.rows.list = g.room.forRows(n)
 	}
 }

@@ -19,7 +19,7 @@ func (r *rooms) forValues(n int) []float64 { return fromSpare(r, &r.values, n) }
 // forRows gives room for n rows, or more.
 func (r *rooms) forRows(n int) []int32 { return fromSpare(r, &r.rows, n) }
 
-// fromSpare takes the smallest spare room that is large enough.
+// fromSpare takes what is needed of the smallest spare room that is large enough.
 func fromSpare[T any](r *rooms, spare *[][]T, n int) []T {
 	r.mu.Lock()
 	defer r.mu.Unlock()
@@ -29,24 +29,30 @@ func fromSpare[T any](r *rooms, spare *[][]T, n int) []T {
 			best = i
 		}
 	}
-	if best < 0 || cap((*spare)[best]) > 2*n {
+	if best < 0 {
 		return make([]T, 0, n)
 	}
 	s := (*spare)[best]
-	*spare = slices.Delete(*spare, best, best+1)
-	return s[:0]
+	if rest := s[n:cap(s)]; cap(rest) >= leastSpare {
+		(*spare)[best] = rest
+	} else {
+		*spare = slices.Delete(*spare, best, best+1)
+	}
+	return s[:0:n]
 }
+
+// Shorter spare lists, and more of them, are not worth keeping.
+const leastSpare, mostSpare = 4096, 32
 
 // takeBack takes the memory of a reading that nobody reads any more.
 func (r *rooms) takeBack(read *reading) {
 	r.mu.Lock()
 	defer r.mu.Unlock()
-	const least, most = 4096, 16 // shorter lists, and more of them, are not worth it
 	for _, s := range read.series {
-		if cap(s.values) >= least && len(r.values) < most {
+		if cap(s.values) >= leastSpare && len(r.values) < mostSpare {
 			r.values = append(r.values, s.values)
 		}
-		if cap(s.rows.list) >= least && len(r.rows) < most {
+		if !s.rows.lent && cap(s.rows.list) >= leastSpare && len(r.rows) < mostSpare {
 			r.rows = append(r.rows, s.rows.list)
 		}
 		s.values, s.rows = nil, rowList{}

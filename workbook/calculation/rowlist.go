@@ -6,11 +6,13 @@ type rowList struct {
 	n     int
 	first int
 	list  []int32 // nil while each row is the one below the row before, unless there is room for them
+	lent  bool    // list belongs to an index of the sheet, and holds all rows to come
 }
 
 // add adds a row.
 func (l *rowList) add(row int) {
 	switch {
+	case l.lent:
 	case l.list != nil:
 		l.list = append(l.list, int32(row))
 	case l.n == 0:
