@@ -121,17 +121,24 @@ func printFilled(w io.Writer, r *workbook.Report) error {
 	printDiagnostics(w, r.Results.Diagnostics, filledFindings(r)...)
 	for _, t := range r.Results.Tables {
 		if t.Refused == "" {
-			fmt.Fprintf(w, "Sheet %s: a table of %d rows.\n", t.Name, len(t.Rows))
+			fmt.Fprintf(w, "Sheet %s: a table of %s.\n", t.Name, rowCount(len(t.Rows)))
 		}
 	}
 	if r.Saved.Recalculate {
 		fmt.Fprintln(w, "Formulas of the workbook rest on filled cells; they are worked out again when it is opened next.")
 	}
 	for _, note := range r.Notes {
-		fmt.Fprintln(w, texttab.Wrap(note, texttab.Width, "  "))
+		fmt.Fprintln(w, texttab.Wrap(note, texttab.ScreenOf(w).Width, "  "))
 	}
 	_, err := fmt.Fprintln(w, writtenLine(r))
 	return err
+}
+
+func rowCount(n int) string {
+	if n == 1 {
+		return "1 row"
+	}
+	return fmt.Sprintf("%d rows", n)
 }
 
 // blockArea names the cells of a block, such as A6:K10.
@@ -142,7 +149,7 @@ func blockArea(b *calculation.Block) string {
 // blockTable shows the rows of a block with their numbers; texts longer than a
 // word or two, such as sentences, are left to the workbook.
 func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Table {
-	t := &texttab.Table{Columns: []texttab.Column{{Name: "row", Right: true}, {Name: "work out"}, {Name: "label"}}}
+	t := &texttab.Table{Columns: []texttab.Column{{Name: "row", Right: true, Key: true}, {Name: "work out"}, {Name: "label", Key: true}}}
 	var shown []calculation.BlockColumn
 	for _, c := range b.Columns {
 		if c.Role != calculation.ResultColumn || c.Name == "status" || c.Name == "note" || longTexts[c.Name] {
@@ -151,7 +158,7 @@ func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Ta
 		shown = append(shown, c)
 		t.Columns = append(t.Columns, texttab.Column{Name: c.Name, Right: true})
 	}
-	t.Columns = append(t.Columns, texttab.Column{Name: "status"})
+	t.Columns = append(t.Columns, texttab.Column{Name: "status", Strong: []string{string(funcs.StatusRefused)}})
 	for _, row := range rows {
 		values := map[int]any{}
 		for _, e := range row.Edits {
@@ -218,15 +225,15 @@ func looseFindings(list []calculation.Diagnostic, ofRows ...[]calculation.Diagno
 	return notes
 }
 
-// longTexts are the results that are sentences.
-var longTexts = map[string]bool{"sentence": true, "method": true, "citation": true, "range": true}
+// longTexts are the results that are sentences, or that only programs read.
+var longTexts = map[string]bool{"sentence": true, "method": true, "citation": true, "range": true, "fingerprint": true}
 
 // printDiagnostics prints what has no column to stand in. Those of rows are
 // footnotes already.
 func printDiagnostics(w io.Writer, list []calculation.Diagnostic, ofRows ...[]calculation.Diagnostic) {
 	notes := looseFindings(list, ofRows...)
 	for _, note := range notes {
-		fmt.Fprintln(w, texttab.Wrap(note, texttab.Width, "  "))
+		fmt.Fprintln(w, texttab.Wrap(note, texttab.ScreenOf(w).Width, "  "))
 	}
 	if len(notes) > 0 {
 		fmt.Fprintln(w)

@@ -87,7 +87,7 @@ func printPreview(w io.Writer, r *workbook.Report) error {
 	fmt.Fprintln(w)
 	printDiagnostics(w, r.Plan.Diagnostics(), plannedFindings(r)...)
 	for _, note := range r.Notes {
-		fmt.Fprintln(w, texttab.Wrap(note, texttab.Width, "  "))
+		fmt.Fprintln(w, texttab.Wrap(note, texttab.ScreenOf(w).Width, "  "))
 	}
 	counts := r.Counts()
 	_, err := fmt.Fprintf(w, "%s: %d rows can be worked out, %d of them with a caution so far; %d refused. Nothing was computed or written.\n",

@@ -25,10 +25,10 @@ func write(t *testing.T, f Format) string {
 	return b.String()
 }
 
-func TestTextIsAlignedAndEqualNotesShareAFootnote(t *testing.T) {
+func TestNumbersStandByTheirDecimalMarksAndEqualNotesShareAFootnote(t *testing.T) {
 	want := "depot      mean\n" +
 		"North   31.4159  [1]\n" +
-		"Québec        7  [1][2]\n" +
+		"Québec   7       [1][2]\n" +
 		"=1+1\n\n" +
 		"[1] Few values.\n[2] Skewed.\n"
 	if got := write(t, Text); got != want {
