@@ -7,7 +7,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"io"
 	"io/fs"
 	"math"
 	"os"
@@ -19,7 +18,6 @@ import (
 	"github.com/xuri/excelize/v2"
 
 	"halfwidth/funcs"
-	"halfwidth/workbook/ooxml"
 )
 
 // ErrTaken is a file that is there already.
@@ -38,10 +36,7 @@ func WriteStarter(ctx context.Context, path string, list []*funcs.Function, repl
 	if err != nil {
 		return err
 	}
-	return (*ooxml.File)(nil).SaveAs(path, func(w io.Writer) error {
-		_, err := w.Write(data)
-		return err
-	})
+	return WriteFile(path, data)
 }
 
 // StarterFunctions gives the functions that words name: functions, families, or

@@ -11,7 +11,9 @@ import (
 
 func main() {
 	ctx, stop := withSignals(context.Background())
-	code := Run(ctx, os.Args[1:], os.Stdout, os.Stderr)
+	signal.Ignore(syscall.SIGPIPE)
+	ctx, cancel := context.WithCancelCause(ctx)
+	code := Run(ctx, os.Args[1:], &pipe{os.Stdout, cancel}, os.Stderr)
 	stop()
 	os.Exit(code)
 }

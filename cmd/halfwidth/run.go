@@ -22,6 +22,7 @@ const (
 	exitFailed  = 2 // the command could not be carried out
 
 	exitInterrupted = 130 // an interrupt ended it
+	exitBrokenPipe  = 141 // nobody reads what it prints any more
 	exitTerminated  = 143 // a request to terminate ended it
 )
 
@@ -66,10 +67,16 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		root.AddCommand(verb())
 	}
 	root.SetArgs(args)
-	root.SetOut(stdout)
+	printed := &printer{Writer: stdout}
+	root.SetOut(printed)
 	root.SetErr(stderr)
 	err := root.ExecuteContext(ctx)
+	if printed.err != nil {
+		err = printed.failure(ctx, err)
+	}
 	switch {
+	case errors.Is(err, errUnread):
+		return exitBrokenPipe
 	case err == nil:
 		return exitOK
 	case errors.Is(err, errRefused):

@@ -7,7 +7,6 @@ import (
 	"fmt"
 	"io/fs"
 	"os"
-	"path/filepath"
 
 	"halfwidth/workbook"
 )
@@ -36,32 +35,5 @@ func WriteFile(ctx context.Context, path string, r *workbook.Report, replace boo
 	if bytes.Equal(page.Bytes(), old) {
 		return nil
 	}
-	return replaceFile(path, page.Bytes())
-}
-
-// replaceFile writes beside the target, then renames.
-func replaceFile(path string, content []byte) (err error) {
-	f, err := os.CreateTemp(filepath.Dir(path), ".page-*")
-	if err != nil {
-		return err
-	}
-	defer func() {
-		if err != nil {
-			f.Close()
-			os.Remove(f.Name())
-		}
-	}()
-	if _, err = f.Write(content); err != nil {
-		return err
-	}
-	if err = f.Chmod(0o644); err != nil {
-		return err
-	}
-	if err = f.Sync(); err != nil {
-		return err
-	}
-	if err = f.Close(); err != nil {
-		return err
-	}
-	return os.Rename(f.Name(), path)
+	return workbook.WriteFile(path, page.Bytes())
 }
