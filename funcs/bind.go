@@ -291,18 +291,22 @@ func (b *binder) list(in Input, raw any) (any, bool) {
 
 // sample checks that a sample holds a number and no infinity.
 func (b *binder) sample(in Input, group string, v []float64) bool {
-	any := false
+	gaps := 0
 	for i, x := range v {
-		if math.IsInf(x, 0) {
+		if x-x == 0 {
+			continue
+		}
+		if !math.IsNaN(x) {
 			b.failAt(in.Name, group, i, shortest(x), "must be a finite number", "leave the cell blank where there is no value")
 			return false
 		}
-		any = any || !math.IsNaN(x)
+		gaps++
 	}
-	if !any {
+	if gaps == len(v) {
 		b.failAt(in.Name, group, -1, "", "holds no number", "give at least two values")
+		return false
 	}
-	return any
+	return true
 }
 
 func (b *binder) groups(in Input, raw any) (any, bool) {

@@ -343,6 +343,18 @@ func (c *Column) kind(row int) (CellKind, CellFlags) {
 	return CellKind(b & kindMask), CellFlags(b >> 4)
 }
 
+// plainNumber gives the number of a row of kind Number without flags.
+func (c *Column) plainNumber(row int) (float64, bool) {
+	at, i := (row-1)>>chunkBits, (row-1)&(chunkRows-1)
+	if c == nil || at >= len(c.chunks) {
+		return 0, false
+	}
+	if k := &c.chunks[at]; i < len(k.kinds) && k.kinds[i] == uint8(Number) {
+		return k.numbers[i], true
+	}
+	return 0, false
+}
+
 // number gives the number of a row whose kind has one.
 func (c *Column) number(row int) float64 {
 	return c.chunks[(row-1)>>chunkBits].numbers[(row-1)&(chunkRows-1)]
