@@ -76,7 +76,7 @@ func eachBook(c *cobra.Command, f *bookFlags, words []string, v bookVerb) error 
 // unless some book is large: with one of usual size there is hardly anything worth
 // collecting before the end.
 func collectLater(found []workbook.Found) {
-	const large = 16 << 20
+	const large = 4 << 20
 	if os.Getenv("GOGC") != "" {
 		return
 	}
