@@ -7,7 +7,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"io/fs"
 	"math"
 	"os"
 	"path/filepath"
@@ -29,7 +28,7 @@ func WriteStarter(ctx context.Context, path string, list []*funcs.Function, repl
 	if !strings.EqualFold(filepath.Ext(path), ".xlsx") {
 		return fmt.Errorf("a starter is an .xlsx workbook, but the name is %s; write %s.xlsx", path, strings.TrimSuffix(path, filepath.Ext(path)))
 	}
-	if _, err := os.Lstat(path); !replace && !errors.Is(err, fs.ErrNotExist) {
+	if _, err := os.Lstat(path); !replace && err == nil {
 		return fmt.Errorf("%s %w", path, ErrTaken)
 	}
 	data, err := Starter(ctx, list)

@@ -86,7 +86,7 @@ func (t *batchTable) close(done string) error {
 	if len(t.leftOut) > 0 {
 		fmt.Fprintln(t.w, "Left out:")
 		for _, f := range t.leftOut {
-			fmt.Fprintf(t.w, "  %s: %s\n", f.Path, f.LeftOut)
+			fmt.Fprintf(t.w, "  %s: %s\n", texttab.Clean(f.Path), f.LeftOut)
 		}
 		fmt.Fprintln(t.w)
 	}

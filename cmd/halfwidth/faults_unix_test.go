@@ -223,7 +223,7 @@ func TestWhatMayNotBeReadOrWrittenIsToldPlainly(t *testing.T) {
 		t.Fatal(err)
 	}
 	defer os.Chmod(closed, 0o700)
-	stdout, stderr, code := told(t, nobody(t, dir, "preview", dir))
+	stdout, stderr, code := told(t, nobody(t, dir, "preview", dir, "--format", "csv"))
 	if code != exitRefused || !strings.Contains(stdout, "closed") || !strings.Contains(stdout, "permission denied") {
 		t.Errorf("a folder that may not be read: code %d\n%s%s", code, stdout, stderr)
 	}
@@ -348,5 +348,46 @@ func TestTwoProcessesThatFillOneFileGiveOneWholeOutput(t *testing.T) {
 	}
 	if got := tree(t, dir); len(got) != 2 {
 		t.Errorf("the folder holds %d files", len(got))
+	}
+}
+
+// A path may be longer than the system takes in one piece, where it is reached
+// from a folder below.
+func TestABookInADeepFolderIsFilledFromThere(t *testing.T) {
+	home, err := os.Open(".")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer home.Close()
+	defer home.Chdir()
+	content := readFile(t, demo)
+	if err := os.Chdir(t.TempDir()); err != nil {
+		t.Fatal(err)
+	}
+	level := strings.Repeat("folder ", 30)
+	for range 25 {
+		if err := os.Mkdir(level, 0o700); err != nil {
+			t.Fatal(err)
+		}
+		if err := os.Chdir(level); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if err := os.WriteFile("book.xlsx", content, 0o600); err != nil {
+		t.Fatal(err)
+	}
+	for _, args := range [][]string{{"fill", "book.xlsx"}, {"verify", "book-filled.xlsx"}, {"page", "book.xlsx"}, {"fill", "--in-place", "book.xlsx"}} {
+		if stdout, stderr, code := run(t, args...); code != exitOK {
+			t.Errorf("%s: code %d\n%s%s", args[0], code, stdout, stderr)
+		}
+	}
+	entries, err := os.ReadDir(".")
+	if err != nil || len(entries) != 3 {
+		t.Errorf("the folder holds %v (%v)", entries, err)
+	}
+	// A path that is too long is refused in one line.
+	far := filepath.Join(strings.Repeat("x/", 3000), "book.xlsx")
+	if _, stderr, code := run(t, "fill", far); code != exitFailed || !strings.HasSuffix(stderr, "file name too long; check its name and that you may read it\n") {
+		t.Errorf("code %d, %s", code, stderr)
 	}
 }

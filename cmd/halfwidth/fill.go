@@ -25,9 +25,9 @@ type bookFlags struct {
 
 func addBookFlags(c *cobra.Command) *bookFlags {
 	f := &bookFlags{format: formatFlag(c)}
-	c.Flags().StringSliceVar(&f.o.Sheets, "sheet", nil, "a calculation sheet besides those named Calculations or marked in A1")
-	c.Flags().StringSliceVar(&f.o.Data, "data", nil, "a folder, besides the workbook's own, in which files named in expressions may lie")
-	c.Flags().IntVar(&f.o.Workers, "jobs", 0, "how many books, and rows of one book, to work out at once (default: as many as there are cores)")
+	c.Flags().StringSliceVar(&f.o.Sheets, "sheet", nil, "work out the sheet `NAME` besides those named Calculations or marked in A1")
+	c.Flags().StringSliceVar(&f.o.Data, "data", nil, "a `FOLDER`, besides the workbook's own, in which files named in expressions may lie")
+	c.Flags().IntVar(&f.o.Workers, "jobs", 0, "work out `N` books, and rows of one book, at once (default: as many as there are cores)")
 	c.Flags().StringVar(&f.shard, "shard", "", "work on part `K/N` of the books only, such as 1/3; each is in one part, by its path")
 	c.Flags().BoolVar(&f.quiet, "quiet", false, "show no progress bar on a terminal")
 	return f
@@ -44,7 +44,7 @@ func fillCommand() *cobra.Command {
 		Args:    someBooks,
 	}
 	f := addBookFlags(c)
-	c.Flags().StringVarP(&f.o.Output, "output", "o", "", "the file, or the folder, to write to")
+	c.Flags().StringVarP(&f.o.Output, "output", "o", "", "write to `FILE`, or into this folder")
 	c.Flags().BoolVar(&f.o.InPlace, "in-place", false, "write into the workbook itself")
 	c.Flags().BoolVar(&f.o.Replace, "replace", false, "write over an output that was changed since it was filled")
 	verb := bookVerb{done: "Filled", writes: true, work: workbook.Fill, print: printFilled, columns: longColumns, tabulate: filledTable, sum: sumFilled}
@@ -247,5 +247,5 @@ func writtenLine(r *workbook.Report) string {
 	if r.Saved.Path == "" {
 		return "Nothing to write: the results stand there already: " + rows + "."
 	}
-	return fmt.Sprintf("Wrote %s: %s.", r.Saved.Path, rows)
+	return fmt.Sprintf("Wrote %s: %s.", texttab.Clean(r.Saved.Path), rows)
 }

@@ -10,6 +10,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"halfwidth/cmd/internal/texttab"
 	"halfwidth/funcs"
 	"halfwidth/workbook"
 	"halfwidth/workbook/page"
@@ -72,7 +73,7 @@ func (p *pages) run(c *cobra.Command, words []string) error {
 		written++
 		counts := report.Counts()
 		refused = refused || counts[funcs.StatusRefused] > 0
-		if _, err := fmt.Fprintf(c.OutOrStdout(), "Wrote %s: %d rows ok, %d caution, %d refused.\n", targets[i],
+		if _, err := fmt.Fprintf(c.OutOrStdout(), "Wrote %s: %d rows ok, %d caution, %d refused.\n", texttab.Clean(targets[i]),
 			counts[funcs.StatusOK], counts[funcs.StatusCaution], counts[funcs.StatusRefused]); err != nil {
 			return err
 		}

@@ -59,13 +59,15 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		SilenceUsage:  true,
 		RunE:          func(c *cobra.Command, _ []string) error { return c.Help() },
 	}
-	root.CompletionOptions.HiddenDefaultCmd = true
-	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {
-		return usageError{fmt.Errorf("%w; see halfwidth %s --help", err, strings.TrimPrefix(c.CommandPath(), "halfwidth "))}
-	})
+	root.Example = "  halfwidth fill testdata/workbooks/larkmoor.xlsx"
+	root.SetFlagErrorFunc(wrongFlag)
+	root.SetUsageTemplate(usageTemplate)
 	for _, verb := range verbs {
-		root.AddCommand(verb())
+		c := verb()
+		complete(c)
+		root.AddCommand(c)
 	}
+	nameOwnVerbs(root)
 	root.SetArgs(args)
 	printed := &printer{Writer: stdout}
 	root.SetOut(printed)
@@ -94,7 +96,7 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	case errors.As(err, &partly):
 		code = exitRefused
 	}
-	fmt.Fprintf(stderr, "halfwidth: %s\n", strings.ReplaceAll(err.Error(), "\n", "\nhalfwidth: "))
+	fmt.Fprintf(stderr, "halfwidth: %s\n", strings.ReplaceAll(texttab.Clean(err.Error()), "\n", "\nhalfwidth: "))
 	return code
 }
 
@@ -105,7 +107,9 @@ func noVerb(c *cobra.Command, args []string) error {
 	}
 	var names []string
 	for _, sub := range c.Commands() {
-		names = append(names, sub.Name())
+		if sub.IsAvailableCommand() {
+			names = append(names, sub.Name())
+		}
 	}
 	if slices.Contains(funcs.Names(), args[0]) {
 		return usageError{fmt.Errorf("%s is a function; write: halfwidth answer %s NAME=VALUE…", args[0], args[0])}
@@ -118,7 +122,7 @@ func noVerb(c *cobra.Command, args []string) error {
 
 // formatFlag adds --format to a command.
 func formatFlag(c *cobra.Command) *string {
-	return c.Flags().String("format", string(texttab.Text), "how to print: text, json or csv")
+	return c.Flags().String("format", string(texttab.Text), "how to print, as `FORMAT`: text, json or csv")
 }
 
 // formatOf reads the value of --format.
