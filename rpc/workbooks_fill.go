@@ -8,6 +8,7 @@ import (
 	"path/filepath"
 	"reflect"
 	"strings"
+	"syscall"
 
 	"halfwidth/funcs"
 	"halfwidth/workbook"
@@ -69,6 +70,9 @@ func fillWorkbook(ctx context.Context, call *Call, p fillParams) (any, error) {
 		options.Output, err = may.output(*p.Output, filepath.Base(workbook.OutputName(path)))
 	case !options.InPlace:
 		options.Output, err = may.output(workbook.OutputName(path), "")
+		if info, statErr := os.Stat(options.Output); err == nil && statErr == nil && info.IsDir() {
+			err = badParams("", "output", "is not given, and the file beside the book that it would be, "+quoted(filepath.Base(options.Output))+", is a folder", "give an output")
+		}
 	}
 	if err != nil {
 		return nil, err
@@ -166,6 +170,9 @@ func (a allowed) real(path, pointer string) (real string, exists bool, err error
 	parent, parentErr := filepath.EvalSymlinks(filepath.Dir(full))
 	if parentErr != nil || !a.holds(parent) {
 		return "", false, outside
+	}
+	if errors.Is(err, syscall.ENAMETOOLONG) {
+		return "", false, badParams("/"+pointer, argument, "is "+quoted(path)+", a name too long for a file", "give it a shorter name")
 	}
 	if !errors.Is(err, os.ErrNotExist) {
 		return "", false, outside
