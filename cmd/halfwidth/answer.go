@@ -23,9 +23,9 @@ func answerCommand() *cobra.Command {
 			"  halfwidth answer mean-interval --book testdata/workbooks/larkmoor.xlsx sample='minutes in Trips where depot = North'",
 	}
 	format := formatFlag(c)
-	book := c.Flags().String("book", "", "the workbook whose sheets expressions name")
+	book := c.Flags().String("book", "", "the workbook, `FILE`, whose sheets expressions name")
 	var data []string
-	c.Flags().StringSliceVar(&data, "data", nil, "a folder, besides the workbook's own, in which files named in expressions may lie")
+	c.Flags().StringSliceVar(&data, "data", nil, "a `FOLDER`, besides the workbook's own, in which files named in expressions may lie")
 	c.RunE = func(c *cobra.Command, args []string) error {
 		f, err := formatOf(*format)
 		if err != nil {
@@ -78,36 +78,64 @@ func assignments(words []string) (map[string]string, error) {
 	return texts, nil
 }
 
-// printOutcome prints every result of an outcome: the sentence and the notes
-// first, then name and value with every digit.
+// printOutcome prints an outcome: as text the sentence first, or why there is
+// none, then what should be known of it, then its table, then name and value
+// with every digit.
 func printOutcome(w io.Writer, out *funcs.Outcome, f texttab.Format) error {
 	t := &texttab.Table{Columns: []texttab.Column{{Name: "result"}, {Name: "value"}}}
+	refused := out.Status == funcs.StatusRefused
 	var findings []string
 	for _, finding := range out.Findings {
 		findings = append(findings, finding.Message)
 	}
-	if out.Status == funcs.StatusRefused {
+	if f == texttab.Text {
+		if err := printWords(w, out); err != nil || refused {
+			return err
+		}
+		findings = nil // they are said
+	}
+	if refused {
 		t.Rows = append(t.Rows, texttab.Row{Cells: []any{"status", string(out.Status)}, Notes: findings})
 		return t.Write(w, f)
 	}
 	for _, r := range out.Results() {
 		row := texttab.Row{Cells: []any{r.Name, r.Value}}
-		if r.Name == "status" {
-			row.Notes = findings
-		}
-		if r.Name == "note" {
+		switch {
+		case r.Name == "note" || r.Name == "sentence" && f == texttab.Text:
 			continue
+		case r.Name == "status":
+			row.Notes = findings
 		}
 		if v, ok := r.Value.(float64); ok && f == texttab.Text {
 			row.Cells[1] = funcs.FormatArgument(v)
 		}
 		t.Rows = append(t.Rows, row)
 	}
-	if err := t.Write(w, f); err != nil || f != texttab.Text || len(out.Rows) == 0 {
-		return err
+	if f == texttab.Text && len(out.Rows) > 0 {
+		if err := outcomeTable(out).Write(w, f); err != nil {
+			return err
+		}
+		fmt.Fprintln(w)
 	}
-	fmt.Fprintln(w)
-	return outcomeTable(out).Write(w, f)
+	return t.Write(w, f)
+}
+
+// printWords prints the sentence of an outcome and its findings, each with its
+// severity.
+func printWords(w io.Writer, out *funcs.Outcome) error {
+	width := texttab.ScreenOf(w).Width
+	var lines []string
+	if sentence, ok := out.Get("sentence"); ok && out.Status != funcs.StatusRefused {
+		lines = append(lines, texttab.Wrap(fmt.Sprint(sentence), width, ""))
+	}
+	for _, f := range out.Findings {
+		lines = append(lines, texttab.Wrap(fmt.Sprintf("%s: %s", f.Severity, f.Message), width, "  "))
+	}
+	if out.Status != funcs.StatusRefused {
+		lines = append(lines, "")
+	}
+	_, err := fmt.Fprintln(w, strings.Join(lines, "\n"))
+	return err
 }
 
 // outcomeTable is the table that a function gives.

@@ -16,7 +16,7 @@ func functionsCommand() *cobra.Command {
 		Use:     "functions [NAME]",
 		Short:   "List the functions, or show one function's reference page",
 		Example: "  halfwidth functions\n  halfwidth functions mean-interval",
-		Args:    cobra.MaximumNArgs(1),
+		Args:    oneFunction,
 	}
 	format := formatFlag(c)
 	c.RunE = func(c *cobra.Command, args []string) error {
@@ -43,6 +43,14 @@ func functionsCommand() *cobra.Command {
 	return c
 }
 
+// oneFunction allows one name, or none.
+func oneFunction(_ *cobra.Command, args []string) error {
+	if len(args) > 1 {
+		return usageError{fmt.Errorf("%d names are given; name one function, or none for the list", len(args))}
+	}
+	return nil
+}
+
 func listFunctions(w io.Writer, f texttab.Format) error {
 	table := &texttab.Table{Columns: []texttab.Column{{Name: "family"}, {Name: "function"}, {Name: "summary"}}}
 	for _, family := range funcs.Families() {
@@ -50,7 +58,11 @@ func listFunctions(w io.Writer, f texttab.Format) error {
 			table.Rows = append(table.Rows, texttab.Row{Cells: []any{family.Name, function.Name, function.Summary}})
 		}
 	}
-	return table.Write(w, f)
+	if err := table.Write(w, f); err != nil || f != texttab.Text {
+		return err
+	}
+	_, err := fmt.Fprintln(w, "\nhalfwidth functions NAME shows what one takes and gives, with an example.")
+	return err
 }
 
 // inputTable lists a function's inputs and results, for programs to read.

@@ -21,7 +21,7 @@ func starterCommand() *cobra.Command {
 			"lists every name. --for takes functions and families (halfwidth functions lists both), or all.",
 		Example: "  halfwidth starter questions.xlsx --for mean-interval,difference-interval",
 	}
-	c.Flags().StringSliceVar(&words, "for", nil, "the functions or families to make blocks for, with commas between them, or all")
+	c.Flags().StringSliceVar(&words, "for", nil, "make blocks for these `FUNCTIONS` or families, with commas between them, or for all")
 	c.Flags().BoolVar(&replace, "replace", false, "write over a file that is there")
 	c.RunE = func(c *cobra.Command, args []string) error {
 		switch {
