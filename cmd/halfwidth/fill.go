@@ -112,7 +112,11 @@ func printFilled(w io.Writer, r *workbook.Report) error {
 		if len(byBlock[b]) == 0 {
 			continue
 		}
-		fmt.Fprintf(w, "%s %s\n\n", b.Sheet, blockArea(b))
+		title := b.Sheet + " " + blockArea(b)
+		if name := oneFunctionOf(byBlock[b]); name != "" {
+			title += ": " + name
+		}
+		fmt.Fprintf(w, "%s\n\n", texttab.Clean(title))
 		if err := blockTable(b, byBlock[b]).Write(w, texttab.Text); err != nil {
 			return err
 		}
@@ -146,10 +150,16 @@ func blockArea(b *calculation.Block) string {
 	return calculation.CellRef{Row: b.Header, Col: b.FirstCol}.String() + ":" + calculation.CellRef{Row: b.LastRow, Col: b.LastCol}.String()
 }
 
-// blockTable shows the rows of a block with their numbers; texts longer than a
-// word or two, such as sentences, are left to the workbook.
+// blockTable shows the rows of a block with their numbers, how far each may be
+// trusted first; texts longer than a word or two, such as sentences, are left to
+// the workbook.
 func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Table {
-	t := &texttab.Table{Columns: []texttab.Column{{Name: "row", Right: true, Key: true}, {Name: "work out"}, {Name: "label", Key: true}}}
+	t := &texttab.Table{Columns: []texttab.Column{{Name: "row", Right: true, Key: true}, {Name: "label", Key: true},
+		{Name: "status", Noted: true, Strong: []string{string(funcs.StatusRefused)}}}}
+	one := oneFunctionOf(rows) != ""
+	if !one {
+		t.Columns = append(t.Columns, texttab.Column{Name: "work out"})
+	}
 	var shown []calculation.BlockColumn
 	for _, c := range b.Columns {
 		if c.Role != calculation.ResultColumn || c.Name == "status" || c.Name == "note" || longTexts[c.Name] {
@@ -158,19 +168,33 @@ func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Ta
 		shown = append(shown, c)
 		t.Columns = append(t.Columns, texttab.Column{Name: c.Name, Right: true})
 	}
-	t.Columns = append(t.Columns, texttab.Column{Name: "status", Strong: []string{string(funcs.StatusRefused)}})
 	for _, row := range rows {
 		values := map[int]any{}
 		for _, e := range row.Edits {
 			values[e.Cell.Col] = e.Value
 		}
-		cells := []any{row.Row.Number, functionName(row.Row), row.Row.Label}
+		cells := []any{row.Row.Number, row.Row.Label, string(row.Status)}
+		if !one {
+			cells = append(cells, functionName(row.Row))
+		}
 		for _, c := range shown {
 			cells = append(cells, values[c.Col])
 		}
-		t.Rows = append(t.Rows, texttab.Row{Cells: append(cells, string(row.Status)), Notes: notesOf(row.Findings)})
+		t.Rows = append(t.Rows, texttab.Row{Cells: cells, Notes: notesOf(row.Findings)})
 	}
 	return t
+}
+
+// oneFunctionOf names the function of rows that all have the same; empty where
+// they have not.
+func oneFunctionOf(rows []*calculation.RowResult) string {
+	name := functionName(rows[0].Row)
+	for _, row := range rows {
+		if functionName(row.Row) != name {
+			return ""
+		}
+	}
+	return name
 }
 
 // sumFilled says what became of a book in a batch: what was written, and the

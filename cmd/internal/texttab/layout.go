@@ -14,14 +14,15 @@ const gap = 2
 type grid struct {
 	columns []Column
 	lines   [][]string
-	marks   []string // of each line: the numbers of its footnotes
+	words   [][]string // the cells without what was added to them
+	marks   []string   // of each line: the numbers of its footnotes, unless they stand in a noted column
 	widths  []int
 }
 
 // layout aligns the columns. On a terminal, texts that are too long for it are
 // broken at spaces, and a table whose columns do not fit goes on below itself,
 // its key columns repeated. The numbers of a row's footnotes stand in brackets
-// after its last cell; equal notes share one number.
+// in its noted column, or after its last cell; equal notes share one number.
 func (t *Table) layout(s Screen) string {
 	g, footnotes := t.grid()
 	var b strings.Builder
@@ -50,6 +51,8 @@ func (t *Table) grid() (*grid, []string) {
 	for _, c := range t.Columns {
 		g.lines[0] = append(g.lines[0], c.Name)
 	}
+	g.words = [][]string{g.lines[0]}
+	noted := slices.IndexFunc(t.Columns, func(c Column) bool { return c.Noted })
 	numbers := map[string]int{}
 	var footnotes []string
 	for _, row := range t.Rows {
@@ -64,6 +67,10 @@ func (t *Table) grid() (*grid, []string) {
 				numbers[note] = len(footnotes)
 			}
 			marks += "[" + strconv.Itoa(numbers[note]) + "]"
+		}
+		g.words = append(g.words, slices.Clone(line))
+		if noted >= 0 && marks != "" {
+			line[noted], marks = strings.TrimSpace(line[noted]+" "+marks), ""
 		}
 		g.lines, g.marks = append(g.lines, line), append(g.marks, marks)
 	}
@@ -226,7 +233,7 @@ func (g *grid) write(b *strings.Builder, columns []int, styled bool) {
 					out.WriteString(strings.Repeat(" ", gap))
 				}
 				pad := strings.Repeat(" ", max(0, g.widths[i]-cells(cell)))
-				if styled && cell != "" && (k == 0 || slices.Contains(g.columns[i].Strong, line[i])) {
+				if styled && cell != "" && (k == 0 || slices.Contains(g.columns[i].Strong, g.words[k][i])) {
 					cell = bold(cell)
 				}
 				if g.columns[i].Right {

@@ -69,6 +69,18 @@ func TestOnlyStyleDistinguishesAStyledTable(t *testing.T) {
 	}
 }
 
+func TestFootnotesStandInTheNotedColumn(t *testing.T) {
+	table := &Table{Columns: []Column{{Name: "status", Noted: true, Strong: []string{"refused"}}, {Name: "mean", Right: true}},
+		Rows: []Row{{Cells: []any{"ok", 3.5}}, {Cells: []any{"refused", nil}, Notes: []string{"No number."}}}}
+	want := "status       mean\nok            3.5\nrefused [1]\n\n[1] No number.\n"
+	if got := table.layout(Screen{Width: 80}); got != want {
+		t.Errorf("got\n%s\nwant\n%s", got, want)
+	}
+	if got := table.layout(Screen{Width: 80, Terminal: true, Styled: true}); !strings.Contains(got, bold("refused [1]")) {
+		t.Errorf("got\n%q", got)
+	}
+}
+
 func TestTextsDoNotSteerTheTerminal(t *testing.T) {
 	table := &Table{Columns: []Column{{Name: "label"}}, Rows: []Row{{Cells: []any{"\x1b[2J\u202edepot"}, Notes: []string{"holds \a"}}}}
 	got := table.layout(Screen{Width: 80, Terminal: true})

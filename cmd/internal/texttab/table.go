@@ -28,6 +28,7 @@ type Column struct {
 	Right  bool     // numbers, which stand under one another by their decimal marks in text
 	Key    bool     // tells rows apart; repeated where a table that is too wide goes on below
 	Strong []string // cells that a terminal shows in bold
+	Noted  bool     // the numbers of footnotes stand in its cells, instead of after the last
 }
 
 // Table is rows of cells under columns. A cell is a string, a number, a bool or
