@@ -16,6 +16,7 @@ const module = "halfwidth/"
 var arrows = map[string][]string{
 	"cmd/halfwidth":              {"cmd/internal/...", "workbook/page", "workbook", "workbook/calculation", "funcs"},
 	"cmd/halfwidth-server":       {"cmd/internal/...", "rpc"},
+	"cmd/internal/bench":         {"funcs"},
 	"cmd/internal/buildinfo":     {},
 	"cmd/internal/gendocs":       {"funcs", "rpc"},
 	"cmd/internal/texttab":       {},
@@ -35,11 +36,13 @@ var arrows = map[string][]string{
 // doors says which packages alone import a library.
 var doors = map[string][]string{
 	"github.com/sourcegraph/jsonrpc2": {"rpc"},
-	"github.com/xuri/excelize/v2":     {"workbook", "workbook/demo"},
+	"github.com/xuri/excelize/v2":     {"workbook", "workbook/demo", "cmd/internal/bench"},
 	"gonum.org/v1/gonum":              {"funcs", "funcs/internal/dist", "funcs/internal/num"},
 	"gonum.org/v1/plot":               {"workbook/page"},
 	"github.com/spf13/cobra":          {"cmd/halfwidth"},
-	"github.com/klauspost/compress":   {"workbook/ooxml"},
+	"github.com/spf13/pflag":          {"cmd/halfwidth"},
+	"golang.org/x/term":               {"cmd/halfwidth", "cmd/internal/texttab"},
+	"github.com/klauspost/compress":   {"workbook/ooxml", "cmd/internal/bench"},
 }
 
 // imports gives the packages of the module and what each imports, tests left
