@@ -90,7 +90,7 @@ func (t *batchTable) close(done string) error {
 		}
 		fmt.Fprintln(t.w)
 	}
-	_, err := fmt.Fprintln(t.w, t.lastLine(done))
+	_, err := fmt.Fprintln(t.w, texttab.Fit(t.w, t.lastLine(done)))
 	return err
 }
 

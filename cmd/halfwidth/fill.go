@@ -112,11 +112,7 @@ func printFilled(w io.Writer, r *workbook.Report) error {
 		if len(byBlock[b]) == 0 {
 			continue
 		}
-		title := b.Sheet + " " + blockArea(b)
-		if name := oneFunctionOf(byBlock[b]); name != "" {
-			title += ": " + name
-		}
-		fmt.Fprintf(w, "%s\n\n", texttab.Clean(title))
+		fmt.Fprintln(w, blockTitle(b, plannedRows(byBlock[b]))+"\n")
 		if err := blockTable(b, byBlock[b]).Write(w, texttab.Text); err != nil {
 			return err
 		}
@@ -134,7 +130,7 @@ func printFilled(w io.Writer, r *workbook.Report) error {
 	for _, note := range r.Notes {
 		fmt.Fprintln(w, texttab.Wrap(note, texttab.ScreenOf(w).Width, "  "))
 	}
-	_, err := fmt.Fprintln(w, writtenLine(r))
+	_, err := fmt.Fprintln(w, texttab.Fit(w, writtenLine(r)))
 	return err
 }
 
@@ -156,7 +152,7 @@ func blockArea(b *calculation.Block) string {
 func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Table {
 	t := &texttab.Table{Columns: []texttab.Column{{Name: "row", Right: true, Key: true}, {Name: "label", Key: true},
 		{Name: "status", Noted: true, Strong: []string{string(funcs.StatusRefused)}}}}
-	one := oneFunctionOf(rows) != ""
+	one := oneFunctionOf(plannedRows(rows)) != ""
 	if !one {
 		t.Columns = append(t.Columns, texttab.Column{Name: "work out"})
 	}
@@ -187,14 +183,32 @@ func blockTable(b *calculation.Block, rows []*calculation.RowResult) *texttab.Ta
 
 // oneFunctionOf names the function of rows that all have the same; empty where
 // they have not.
-func oneFunctionOf(rows []*calculation.RowResult) string {
-	name := functionName(rows[0].Row)
+func oneFunctionOf(rows []*calculation.Row) string {
+	name := functionName(rows[0])
 	for _, row := range rows {
-		if functionName(row.Row) != name {
+		if functionName(row) != name {
 			return ""
 		}
 	}
 	return name
+}
+
+func plannedRows(rows []*calculation.RowResult) []*calculation.Row {
+	list := make([]*calculation.Row, len(rows))
+	for i, row := range rows {
+		list[i] = row.Row
+	}
+	return list
+}
+
+// blockTitle names the cells of a block, and the function where its rows share
+// one.
+func blockTitle(b *calculation.Block, rows []*calculation.Row) string {
+	title := b.Sheet + " " + blockArea(b)
+	if name := oneFunctionOf(rows); name != "" {
+		title += ": " + name
+	}
+	return texttab.Clean(title)
 }
 
 // sumFilled says what became of a book in a batch: what was written, and the

@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"io"
+	"math"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -51,17 +52,39 @@ func oneFunction(_ *cobra.Command, args []string) error {
 	return nil
 }
 
+// listFunctions lists the functions, as text by family.
 func listFunctions(w io.Writer, f texttab.Format) error {
+	if f == texttab.Text {
+		return printFamilies(w)
+	}
 	table := &texttab.Table{Columns: []texttab.Column{{Name: "family"}, {Name: "function"}, {Name: "summary"}}}
 	for _, family := range funcs.Families() {
 		for _, function := range family.Functions {
 			table.Rows = append(table.Rows, texttab.Row{Cells: []any{family.Name, function.Name, function.Summary}})
 		}
 	}
-	if err := table.Write(w, f); err != nil || f != texttab.Text {
-		return err
+	return table.Write(w, f)
+}
+
+func printFamilies(w io.Writer) error {
+	column, screen := 0, texttab.ScreenOf(w)
+	for _, name := range funcs.Names() {
+		column = max(column, len(name)+4)
 	}
-	_, err := fmt.Fprintln(w, "\nhalfwidth functions NAME shows what one takes and gives, with an example.")
+	width := math.MaxInt
+	if screen.Terminal {
+		width = screen.Width
+	}
+	var b strings.Builder
+	for _, family := range funcs.Families() {
+		fmt.Fprintf(&b, "%s: %s\n", family.Name, family.Summary)
+		for _, function := range family.Functions {
+			b.WriteString(listed(function.Name, function.Summary, column, width))
+		}
+		b.WriteByte('\n')
+	}
+	b.WriteString("halfwidth functions NAME shows what one takes and gives, with an example.\n")
+	_, err := io.WriteString(w, b.String())
 	return err
 }
 

@@ -8,24 +8,52 @@ import (
 	"github.com/spf13/cobra"
 	"github.com/spf13/pflag"
 
+	"halfwidth/cmd/internal/texttab"
 	"halfwidth/funcs"
 )
 
-// usageTemplate is the help of a command below its description: how it is
-// written, an example that can be run, then verbs and flags.
-const usageTemplate = `Usage:
-  {{if .HasAvailableSubCommands}}{{.CommandPath}} VERB …
-  {{.CommandPath}} VERB --help{{else}}{{.UseLine}}{{end}}{{if .HasExample}}
+// printHelp prints the help of a command: what it does, how it is written, an
+// example that can be run, verbs and flags.
+func printHelp(c *cobra.Command, _ []string) {
+	w := c.OutOrStdout()
+	width := texttab.ScreenOf(w).Width
+	var b strings.Builder
+	long := c.Long
+	if long == "" {
+		long = c.Short + "."
+	}
+	for paragraph := range strings.SplitSeq(long, "\n\n") {
+		b.WriteString(texttab.Wrap(paragraph, width, "") + "\n\n")
+	}
+	b.WriteString("Usage:\n")
+	if !c.HasAvailableSubCommands() {
+		fmt.Fprintf(&b, "  %s\n", c.UseLine())
+	} else {
+		fmt.Fprintf(&b, "  %[1]s VERB …\n  %[1]s VERB --help\n", c.CommandPath())
+	}
+	if c.Example != "" {
+		fmt.Fprintf(&b, "\nExample:\n%s\n", c.Example)
+	}
+	if c.HasAvailableSubCommands() {
+		b.WriteString("\nVerbs:\n")
+		for _, sub := range c.Commands() {
+			if sub.IsAvailableCommand() {
+				b.WriteString(listed(sub.Name(), sub.Short, 14, width))
+			}
+		}
+	}
+	if c.HasAvailableLocalFlags() {
+		fmt.Fprintf(&b, "\nFlags:\n%s", c.LocalFlags().FlagUsagesWrapped(width))
+	}
+	fmt.Fprint(w, b.String())
+}
 
-Example:
-{{.Example}}{{end}}{{if .HasAvailableSubCommands}}
-
-Verbs:{{range .Commands}}{{if .IsAvailableCommand}}
-  {{rpad .Name .NamePadding}} {{.Short}}{{end}}{{end}}{{end}}{{if .HasAvailableLocalFlags}}
-
-Flags:
-{{.LocalFlags.FlagUsages | trimTrailingWhitespaces}}{{end}}
-`
+// listed is an entry of a list: a name, and at a column what is said of it.
+func listed(name, text string, column, width int) string {
+	indent := strings.Repeat(" ", column)
+	head := fmt.Sprintf("  %-*s", column-2, name)
+	return head + strings.ReplaceAll(texttab.Wrap(text, width-column, ""), "\n", "\n"+indent) + "\n"
+}
 
 // wrongFlag words an error about a flag, with the closest one where it is
 // misspelt.

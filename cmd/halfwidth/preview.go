@@ -55,44 +55,64 @@ func isFolder(path string) bool {
 }
 
 func printPreview(w io.Writer, r *workbook.Report) error {
-	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell"}, {Name: "work out"}, {Name: "label"}, {Name: "input"}, {Name: "value, or cells read"},
-		{Name: "values", Right: true}, {Name: "skipped", Right: true}}}
-	for _, row := range r.Plan.Rows {
-		notes := notesOf(row.Findings())
-		first := true
-		for _, in := range row.Inputs {
-			if in.Default {
-				continue
-			}
-			cells := []any{in.Cell.String(), functionName(row), row.Label, in.Name, in.Written, nil, nil}
-			if in.Range != "" {
-				cells[4], cells[5], cells[6] = in.Range, in.Used, in.Skipped
-				if len(in.Groups) > 0 {
-					cells[4] = cells[4].(string) + " (" + strings.Join(in.Groups, ", ") + ")"
-				}
-			}
-			if !first {
-				cells[1], cells[2] = nil, nil
-			}
-			t.Rows = append(t.Rows, texttab.Row{Cells: cells, Notes: notes})
-			first, notes = false, nil
+	for _, b := range r.Plan.Blocks {
+		if len(b.Rows) == 0 {
+			continue
 		}
-		if first {
-			t.Rows = append(t.Rows, texttab.Row{Cells: []any{fmt.Sprintf("row %d", row.Number), functionName(row), row.Label, nil, nil, nil, nil}, Notes: notes})
+		fmt.Fprintln(w, blockTitle(b, b.Rows)+"\n")
+		if err := previewBlock(b).Write(w, texttab.Text); err != nil {
+			return err
 		}
+		fmt.Fprintln(w)
 	}
-	if err := t.Write(w, texttab.Text); err != nil {
-		return err
-	}
-	fmt.Fprintln(w)
 	printDiagnostics(w, r.Plan.Diagnostics(), plannedFindings(r)...)
 	for _, note := range r.Notes {
 		fmt.Fprintln(w, texttab.Wrap(note, texttab.ScreenOf(w).Width, "  "))
 	}
 	counts := r.Counts()
-	_, err := fmt.Fprintf(w, "%s: %d rows can be worked out, %d of them with a caution so far; %d refused. Nothing was computed or written.\n",
-		r.Book, counts[funcs.StatusOK]+counts[funcs.StatusCaution], counts[funcs.StatusCaution], counts[funcs.StatusRefused])
+	_, err := fmt.Fprintln(w, texttab.Fit(w, fmt.Sprintf("%s: %d rows can be worked out, %d of them with a caution so far; %d refused. Nothing was computed or written.",
+		r.Book, counts[funcs.StatusOK]+counts[funcs.StatusCaution], counts[funcs.StatusCaution], counts[funcs.StatusRefused])))
 	return err
+}
+
+// previewBlock shows what the rows of a block are given and from which cells.
+func previewBlock(b *calculation.Block) *texttab.Table {
+	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell", Key: true}, {Name: "label", Noted: true}, {Name: "input"}, {Name: "value, or cells read"},
+		{Name: "values", Right: true}, {Name: "skipped", Right: true}}}
+	mixed := oneFunctionOf(b.Rows) == ""
+	if mixed {
+		t.Columns[1].Name = "work out: label"
+	}
+	for _, row := range b.Rows {
+		notes := notesOf(row.Findings())
+		first := true
+		add := func(cell any, rest ...any) {
+			label := row.Label
+			switch {
+			case !first:
+				label = ""
+			case mixed:
+				label = functionName(row) + ": " + label
+			}
+			t.Rows = append(t.Rows, texttab.Row{Cells: append([]any{cell, label}, rest...), Notes: notes})
+			first, notes = false, nil
+		}
+		for _, in := range row.Inputs {
+			switch {
+			case in.Default:
+			case in.Range == "":
+				add(in.Cell.String(), in.Name, in.Written, nil, nil)
+			case len(in.Groups) > 0:
+				add(in.Cell.String(), in.Name, in.Range+" ("+strings.Join(in.Groups, ", ")+")", in.Used, in.Skipped)
+			default:
+				add(in.Cell.String(), in.Name, in.Range, in.Used, in.Skipped)
+			}
+		}
+		if first {
+			add(fmt.Sprintf("row %d", row.Number), nil, nil, nil, nil)
+		}
+	}
+	return t
 }
 
 // previewTable adds the inputs of a book to a long table.

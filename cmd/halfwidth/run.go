@@ -61,7 +61,7 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	}
 	root.Example = "  halfwidth fill testdata/workbooks/larkmoor.xlsx"
 	root.SetFlagErrorFunc(wrongFlag)
-	root.SetUsageTemplate(usageTemplate)
+	root.SetHelpFunc(printHelp)
 	for _, verb := range verbs {
 		c := verb()
 		complete(c)
@@ -96,7 +96,9 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	case errors.As(err, &partly):
 		code = exitRefused
 	}
-	fmt.Fprintf(stderr, "halfwidth: %s\n", strings.ReplaceAll(texttab.Clean(err.Error()), "\n", "\nhalfwidth: "))
+	for line := range strings.SplitSeq(err.Error(), "\n") {
+		fmt.Fprintln(stderr, texttab.Fit(stderr, "halfwidth: "+line))
+	}
 	return code
 }
 

@@ -6,6 +6,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"halfwidth/cmd/internal/texttab"
 	"halfwidth/funcs"
 	"halfwidth/workbook"
 )
@@ -41,8 +42,8 @@ func starterCommand() *cobra.Command {
 		if err != nil {
 			return err
 		}
-		_, err = fmt.Fprintf(c.OutOrStdout(), "Wrote %s: a calculation sheet with worked rows of %s. Change or add rows, then run: halfwidth fill %s\n",
-			args[0], functionCount(list), args[0])
+		_, err = fmt.Fprintln(c.OutOrStdout(), texttab.Fit(c.OutOrStdout(), fmt.Sprintf("Wrote %s: a calculation sheet with worked rows of %s. Change or add rows, then run: halfwidth fill %s",
+			args[0], functionCount(list), args[0])))
 		return err
 	}
 	return c

@@ -115,7 +115,7 @@ func printVerified(w io.Writer, r *workbook.Report) error {
 	if output := unfilled(r); output != "" {
 		fmt.Fprintf(w, "No result is stored in this file; its output %s is there: verify that.\n", output)
 	}
-	_, err := fmt.Fprintf(w, "%s: %d result cells compared: %s. Nothing was written.\n", r.Book, r.Verification.Compared, standingOf(r))
+	_, err := fmt.Fprintln(w, texttab.Fit(w, fmt.Sprintf("%s: %d result cells compared: %s. Nothing was written.", r.Book, r.Verification.Compared, standingOf(r))))
 	return err
 }
 

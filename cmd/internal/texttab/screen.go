@@ -64,6 +64,15 @@ func Wrap(text string, width int, indent string) string {
 	return b.String()
 }
 
+// Fit breaks a line of text where w is a terminal that it is too long for;
+// elsewhere it stays one line, for programs to search.
+func Fit(w io.Writer, line string) string {
+	if s := ScreenOf(w); s.Terminal {
+		return Wrap(line, s.Width, "  ")
+	}
+	return Clean(line)
+}
+
 // Clean replaces what would steer a terminal instead of being shown: control
 // characters and marks that turn the direction of writing. Texts of workbooks
 // may hold anything.
