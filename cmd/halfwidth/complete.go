@@ -79,14 +79,17 @@ func valuesOf(in funcs.Input) []string {
 // completeFor offers functions, families and all, after those that a list names
 // already.
 func completeFor(_ *cobra.Command, _ []string, word string) ([]string, cobra.ShellCompDirective) {
-	before := word[:strings.LastIndexByte(word, ',')+1]
 	names := []string{cobra.CompletionWithDesc("all", "every function")}
 	for _, family := range funcs.Families() {
 		names = append(names, cobra.CompletionWithDesc(family.Name, family.Summary))
 	}
 	names = append(names, functionNames()...)
-	for i := range names {
-		names[i] = before + names[i]
+	if before := word[:strings.LastIndexByte(word, ',')+1]; before != "" {
+		for i := range names {
+			// The library's bash script does not find a word with a comma and a summary.
+			name, _, _ := strings.Cut(names[i], "\t")
+			names[i] = before + name
+		}
 	}
 	return names, cobra.ShellCompDirectiveNoFileComp | cobra.ShellCompDirectiveNoSpace
 }
