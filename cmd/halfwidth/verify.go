@@ -90,7 +90,7 @@ func sumVerified(r *workbook.Report) (outcome string, wrong bool, notes []string
 // printVerified lists what is out of date and says at the end how the rows
 // stand.
 func printVerified(w io.Writer, r *workbook.Report) error {
-	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell"}, {Name: "work out"}, {Name: "label"}, {Name: "result"},
+	t := &texttab.Table{Columns: []texttab.Column{{Name: "cell", Key: true}, {Name: "work out"}, {Name: "label"}, {Name: "result"},
 		{Name: "stored", Right: true}, {Name: "now", Right: true}, {Name: "reason"}}}
 	unknown := false
 	eachDifference(r, func(row *calculation.RowResult, d *workbook.Difference, notes []string) {
@@ -110,7 +110,7 @@ func printVerified(w io.Writer, r *workbook.Report) error {
 	}
 	printDiagnostics(w, r.Results.Diagnostics)
 	if unknown {
-		fmt.Fprintln(w, "With a column > fingerprint, verify could tell whether the inputs changed or a result was typed over.")
+		fmt.Fprintln(w, texttab.Fit(w, "With a column > fingerprint, verify could tell whether the inputs changed or a result was typed over."))
 	}
 	if output := unfilled(r); output != "" {
 		fmt.Fprintf(w, "No result is stored in this file; its output %s is there: verify that.\n", output)

@@ -17,6 +17,7 @@ type grid struct {
 	words   [][]string // the cells without what was added to them
 	marks   []string   // of each line: the numbers of its footnotes, unless they stand in a noted column
 	widths  []int
+	rigid   []bool // columns of numbers, which are not broken
 }
 
 // layout aligns the columns. On a terminal, texts that are too long for it are
@@ -47,7 +48,7 @@ func (t *Table) layout(s Screen) string {
 }
 
 func (t *Table) grid() (*grid, []string) {
-	g := &grid{columns: t.Columns, lines: [][]string{nil}, marks: []string{""}, widths: make([]int, len(t.Columns))}
+	g := &grid{columns: t.Columns, lines: [][]string{nil}, marks: []string{""}, widths: make([]int, len(t.Columns)), rigid: make([]bool, len(t.Columns))}
 	for _, c := range t.Columns {
 		g.lines[0] = append(g.lines[0], c.Name)
 	}
@@ -107,6 +108,7 @@ func (g *grid) alignDecimals(col int, rows []Row) {
 	most := 0
 	for i, row := range rows {
 		if isNumber(row) {
+			g.rigid[col] = true
 			most = max(most, behind(g.lines[i+1][col]))
 		}
 	}
@@ -183,7 +185,7 @@ func (g *grid) shrink(columns []int, width int) bool {
 	least := map[int]int{}
 	for _, i := range columns {
 		least[i] = g.widths[i]
-		if g.columns[i].Right {
+		if g.rigid[i] {
 			continue
 		}
 		least[i] = min(g.widths[i], narrow)
