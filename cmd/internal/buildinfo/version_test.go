@@ -16,6 +16,8 @@ func TestAVersionNamesReleaseRevisionAndGo(t *testing.T) {
 		{debug.BuildInfo{GoVersion: "go1.26.0", Main: debug.Module{Version: "v1.2.0"}}, "v1.2.0 go1.26.0"},
 		{debug.BuildInfo{GoVersion: "go1.26.0", Main: debug.Module{Version: "(devel)"}}, "development go1.26.0"},
 		{debug.BuildInfo{GoVersion: "go1.26.0", Settings: []debug.BuildSetting{revision}}, "development (0123456789ab) go1.26.0"},
+		{debug.BuildInfo{GoVersion: "go1.26.0", Main: debug.Module{Version: "v1.2.0"}, Settings: []debug.BuildSetting{revision}}, "v1.2.0 (0123456789ab) go1.26.0"},
+		{debug.BuildInfo{GoVersion: "go1.26.0", Main: debug.Module{Version: "v0.0.0-20261201161631-0123456789ab+dirty"}, Settings: []debug.BuildSetting{revision}}, "v0.0.0-20261201161631-0123456789ab+dirty go1.26.0"},
 		{debug.BuildInfo{GoVersion: "go1.26.0", Settings: []debug.BuildSetting{{Key: "vcs.revision", Value: "0123"}}}, "development go1.26.0"},
 	} {
 		if got := describe(&test.info); got != test.want {
