@@ -12,7 +12,7 @@ var controlGroup = In[string]{Input{Name: "control", Kind: Text, Summary: "the n
 
 var differencesFromControl = &Function{
 	Name:    "differences-from-control",
-	Version: 1,
+	Version: 2,
 	Summary: "differences of the means of several groups from that of a control group, with intervals that hold together",
 	Inputs:  inputs(samples, means, sds, ns, controlGroup, confidence, direction, checks),
 	OneOf:   []OneOf{meansWays},
@@ -75,7 +75,7 @@ func (c *Call) controlRows(groups []groupSummary, at int, sd, df float64) error 
 		sizes[i] = g.n
 	}
 	dir := direction.Of(c)
-	law := dist.ComparisonsWithControl(control.n, sizes, df, dir == either)
+	law := dist.ComparisonsWithControl(control.n, sizes, df, dir == either).Shared()
 	critical := law.UpperQuantile(1 - confidence.Of(c))
 	for _, g := range others {
 		if err := c.cancelled(); err != nil {

@@ -16,7 +16,7 @@ var differenceColumns = []Result{
 
 var pairwiseDifferences = &Function{
 	Name:    "pairwise-differences",
-	Version: 1,
+	Version: 2,
 	Summary: "differences of the means of several groups, two by two, with intervals that hold together",
 	Inputs:  inputs(samples, means, sds, ns, pooledFirst, confidence, checks),
 	OneOf:   []OneOf{meansWays},
@@ -73,22 +73,26 @@ func (c *Call) pooledPairs(groups []groupSummary) error {
 	if err != nil {
 		return err
 	}
-	law := dist.StudentizedRange{Groups: len(groups), DF: df}
+	law := dist.NewStudentizedRanges(len(groups)).Law(df)
 	critical := law.UpperQuantile(1-confidence.Of(c)) / math.Sqrt2
-	for i, a := range groups {
-		for _, b := range groups[i+1:] {
-			if err := c.cancelled(); err != nil {
-				return err
-			}
-			se := sd * math.Sqrt(1/float64(a.n)+1/float64(b.n))
-			c.addPair(pair{a, b, se, critical, pairValue(law, a, b, se)})
-		}
+	pairs, err := c.workOutPairs(groups, func(p *pair) {
+		p.se = sd * math.Sqrt(1/float64(p.a.n)+1/float64(p.b.n))
+		p.critical, p.value = critical, p.valueBy(law)
+	})
+	if err != nil {
+		return err
+	}
+	for _, p := range pairs {
+		c.addPair(p)
 	}
 	c.method = fmt.Sprintf("Tukey-Kramer studentized range of %s with one pooled variance and %s of freedom", plural(len(groups), "group"), degrees(df))
 	c.sayRows(groups, pairName)
 	c.checkGroupSpreads(groups)
 	return nil
 }
+
+// manyGroups is how many groups make interpolating the quantiles worth its start.
+const manyGroups = 25
 
 // separatePairs gives the rows with the variances of the two groups and
 // Satterthwaite's degrees of freedom (Games & Howell 1976).
@@ -97,25 +101,18 @@ func (c *Call) separatePairs(groups []groupSummary) error {
 	if err := c.atLeastTwo(own); err != nil {
 		return err
 	}
-	var pairs []pair
-	for i, a := range groups {
-		for _, b := range groups[i+1:] {
-			pairs = append(pairs, pair{a: a, b: b})
-		}
+	ranges := dist.NewStudentizedRanges(len(own))
+	quantile := func(df float64) float64 { return ranges.Law(df).UpperQuantile(1 - confidence.Of(c)) }
+	if len(groups) > manyGroups {
+		quantile = ranges.UpperQuantiles(1 - confidence.Of(c))
 	}
-	// A critical value for each pair, since each has its own degrees of freedom.
-	err := share(c.ctx, len(pairs), 4, func() func(int) {
-		return func(i int) {
-			p := &pairs[i]
-			if p.a.n < 2 || p.b.n < 2 {
-				return
-			}
-			m := compareMeans(p.a.summary, p.b.summary, separate)
-			if p.se = m.se; p.se > 0 {
-				law := dist.StudentizedRange{Groups: len(own), DF: m.df}
-				p.critical = law.UpperQuantile(1-confidence.Of(c)) / math.Sqrt2
-				p.value = pairValue(law, p.a, p.b, p.se)
-			}
+	pairs, err := c.workOutPairs(groups, func(p *pair) {
+		if p.a.n < 2 || p.b.n < 2 {
+			return
+		}
+		m := compareMeans(p.a.summary, p.b.summary, separate)
+		if p.se = m.se; p.se > 0 {
+			p.critical, p.value = quantile(m.df)/math.Sqrt2, p.valueBy(ranges.Law(m.df))
 		}
 	})
 	if err != nil {
@@ -153,9 +150,22 @@ type pair struct {
 	se, critical, value float64
 }
 
-// pairValue is the p-value of two means.
-func pairValue(law dist.StudentizedRange, a, b groupSummary, se float64) float64 {
-	return law.SF(float64(math.Sqrt2 * math.Abs((a.mean-b.mean)/se)))
+// valueBy is the p-value of the two means.
+func (p *pair) valueBy(law dist.StudentizedRange) float64 {
+	return law.SF(float64(math.Sqrt2 * math.Abs((p.a.mean-p.b.mean)/p.se)))
+}
+
+// workOutPairs lists the pairs of groups in order, each as work leaves it; the
+// cores share them.
+func (c *Call) workOutPairs(groups []groupSummary, work func(*pair)) ([]pair, error) {
+	var pairs []pair
+	for i, a := range groups {
+		for _, b := range groups[i+1:] {
+			pairs = append(pairs, pair{a: a, b: b})
+		}
+	}
+	err := share(c.ctx, len(pairs), 16, func() func(int) { return func(i int) { work(&pairs[i]) } })
+	return pairs, err
 }
 
 // addPair adds the row of the difference of two groups' means.

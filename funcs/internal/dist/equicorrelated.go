@@ -20,6 +20,19 @@ type MaxT struct {
 	DF       float64
 	TwoSided bool
 	parts    []loading
+	table    *tailTable // where probabilities share their integrals, else nil
+}
+
+// Shared is the same law for many probabilities: they share the integrals of known
+// spread.
+func (d MaxT) Shared() MaxT {
+	sides := 1.0
+	if d.TwoSided {
+		sides = 2
+	}
+	d.table = &tailTable{tail: d.numerator, signed: !d.TwoSided,
+		bound: func(w float64) float64 { return sides * d.count() * Normal{}.SF(w) }}
+	return d
 }
 
 // loading stands for count variables of the same l: P(X <= w | Y = y) is
@@ -34,7 +47,7 @@ func JointPrediction(past, future int, df float64, twoSided bool) MaxT {
 	if past < 1 || future < 1 {
 		return MaxT{DF: math.NaN()}
 	}
-	return MaxT{df, twoSided, []loading{{1 / math.Sqrt(n), math.Sqrt((n + 1) / n), float64(future)}}}
+	return MaxT{DF: df, TwoSided: twoSided, parts: []loading{{1 / math.Sqrt(n), math.Sqrt((n + 1) / n), float64(future)}}}
 }
 
 // ComparisonsWithControl is the law of Dunnett's comparisons of group means with
@@ -69,7 +82,11 @@ func (d MaxT) count() float64 {
 }
 
 func (d MaxT) law() studentized {
-	return studentized{d.DF, d.numerator, 1.5 * num.Log(1+d.count())}
+	tail := d.numerator
+	if d.table != nil {
+		tail = d.table.at
+	}
+	return studentized{d.DF, tail, 1.5 * num.Log(1+d.count())}
 }
 
 // CDF is P(max <= t).

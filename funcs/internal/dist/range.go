@@ -18,12 +18,18 @@ import (
 type StudentizedRange struct {
 	Groups int
 	DF     float64
+
+	table *tailTable // where it shares the integrals of known spread, else nil
 }
 
 func (d StudentizedRange) valid() bool { return d.Groups >= 2 && d.DF > 0 }
 
 func (d StudentizedRange) law() studentized {
-	return studentized{d.DF, normalRange(d.Groups).tail, 1.75 * num.Log(float64(d.Groups))}
+	tail := normalRange(d.Groups).tail
+	if d.table != nil {
+		tail = d.table.at
+	}
+	return studentized{d.DF, tail, 1.75 * num.Log(float64(d.Groups))}
 }
 
 func (d StudentizedRange) probability(q float64, upper bool) float64 {
@@ -101,8 +107,7 @@ func (k normalRange) tail(w float64, upper bool) float64 {
 		}
 		return 0
 	}
-	// P(range > w) <= k(k-1) P(Z > w/sqrt 2).
-	switch bound := n * (n - 1) * (Normal{}).SF(w/math.Sqrt2); {
+	switch bound := k.bound(w); {
 	case upper && bound < 1e-305:
 		return 0
 	case !upper && bound < 1e-18:
@@ -118,6 +123,12 @@ func (k normalRange) tail(w float64, upper bool) float64 {
 		}
 	}
 	return k.upper(w)
+}
+
+// bound of P(range > w) is k(k-1) P(Z > w/sqrt 2).
+func (k normalRange) bound(w float64) float64 {
+	n := float64(k)
+	return n * (n - 1) * Normal{}.SF(w/math.Sqrt2)
 }
 
 // within is P(-a < Z < b)^power for a, b >= 0.

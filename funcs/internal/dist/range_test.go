@@ -16,7 +16,7 @@ func TestStudentizedRangeMatchesHighPrecision(t *testing.T) {
 		if r["df"] != "inf" {
 			df = r.number(t, "df")
 		}
-		d := StudentizedRange{r.count(t, "k"), df}
+		d := StudentizedRange{Groups: r.count(t, "k"), DF: df}
 		var got float64
 		tolerance := 1e-12
 		switch strings.TrimPrefix(r.function(), "studentized_range_") {
@@ -42,7 +42,7 @@ func TestStudentizedRangeReproducesPrintedTable(t *testing.T) {
 			DF     tableNumber
 		}
 		parameters(t, r, &of)
-		wantPrinted(t, r, StudentizedRange{of.Groups, float64(of.DF)}.Quantile(of.P))
+		wantPrinted(t, r, StudentizedRange{Groups: of.Groups, DF: float64(of.DF)}.Quantile(of.P))
 	}
 }
 
@@ -53,7 +53,7 @@ func TestStudentizedRangeOfTwoIsStudent(t *testing.T) {
 	for range 60 {
 		df := math.Exp(rng.Float64()*14 - 2)
 		q := math.Exp(rng.NormFloat64() + 0.5)
-		law := StudentizedRange{2, df}.law()
+		law := StudentizedRange{Groups: 2, DF: df}.law()
 		what := fmt.Sprint("q=", q, " df=", df)
 		wantDigits(t, what, law.probability(q, true), 2*Student{df}.SF(q/math.Sqrt2), 1e-12)
 		wantDigits(t, what, law.probability(q, false), Student{df}.Between(-q/math.Sqrt2, q/math.Sqrt2), 1e-12)
@@ -67,7 +67,7 @@ func TestRangeHasTippettsMean(t *testing.T) {
 		const h = 0.01
 		mean := h / 2
 		for w := h; w < 15; w += h {
-			mean += h * StudentizedRange{n, math.Inf(1)}.SF(w)
+			mean += h * StudentizedRange{Groups: n, DF: math.Inf(1)}.SF(w)
 		}
 		// The rule is exact here but for h^2/12 times the slope at 0, which is
 		// the density 1/sqrt(pi) for n = 2 and 0 for more.
@@ -84,7 +84,7 @@ func TestRangeHasTippettsMean(t *testing.T) {
 func TestStudentizedRangeTailsAndQuantilesAgree(t *testing.T) {
 	rng := rand.New(rand.NewPCG(3, 2))
 	for range 60 {
-		d := StudentizedRange{2 + int(math.Exp(6*rng.Float64())), math.Exp(rng.Float64()*15 - 1)}
+		d := StudentizedRange{Groups: 2 + int(math.Exp(6*rng.Float64())), DF: math.Exp(rng.Float64()*15 - 1)}
 		q := math.Sqrt(2*math.Log(float64(d.Groups))+1) * math.Exp(rng.NormFloat64()/2)
 		what := fmt.Sprint("q=", q, " ", d)
 		low, high := d.CDF(q), d.SF(q)
@@ -95,7 +95,7 @@ func TestStudentizedRangeTailsAndQuantilesAgree(t *testing.T) {
 		if next := d.SF(q * (1 + 1e-6)); !(next < high || high == 0 || high > 1-1e-12) {
 			t.Errorf("%s: upper tail rises from %v to %v", what, high, next)
 		}
-		if more := (StudentizedRange{d.Groups + 1, d.DF}).SF(q); !(more > high || high > 1-1e-12) {
+		if more := (StudentizedRange{Groups: d.Groups + 1, DF: d.DF}).SF(q); !(more > high || high > 1-1e-12) {
 			t.Errorf("%s: another group takes the upper tail from %v to %v", what, high, more)
 		}
 		p := math.Exp(-50 * rng.Float64() * rng.Float64())
@@ -111,7 +111,7 @@ func TestStudentizedRangeTailsAndQuantilesAgree(t *testing.T) {
 func TestStudentizedRangeBetweenKeepsItsDigits(t *testing.T) {
 	rng := rand.New(rand.NewPCG(3, 3))
 	for i := range 40 {
-		d := StudentizedRange{3 + rng.IntN(40), math.Exp(rng.Float64()*10 - 0.5)}
+		d := StudentizedRange{Groups: 3 + rng.IntN(40), DF: math.Exp(rng.Float64()*10 - 0.5)}
 		if i%8 == 0 {
 			d.DF = math.Inf(1)
 		}
@@ -136,9 +136,9 @@ func TestStudentizedRangeBetweenKeepsItsDigits(t *testing.T) {
 func TestStudentizedRangeApproachesKnownSpread(t *testing.T) {
 	for _, k := range []int{3, 20, 200} {
 		for _, q := range []float64{2, 4, 8} {
-			limit := StudentizedRange{k, math.Inf(1)}
+			limit := StudentizedRange{Groups: k, DF: math.Inf(1)}
 			for _, df := range []float64{1e6, 1e9, 1e12} {
-				d := StudentizedRange{k, df}
+				d := StudentizedRange{Groups: k, DF: df}
 				wantDigits(t, fmt.Sprint("sf", q, d), d.SF(q), limit.SF(q), 1e3/df+1e-12)
 				wantDigits(t, fmt.Sprint("cdf", q, d), d.CDF(q), limit.CDF(q), 1e4/df+1e-11)
 			}
@@ -149,7 +149,7 @@ func TestStudentizedRangeApproachesKnownSpread(t *testing.T) {
 func TestStudentizedRangeStandsAnyArgument(t *testing.T) {
 	for _, k := range []int{-1, 1, 2, 3, 200, 20000} {
 		for _, df := range []float64{math.NaN(), 0, 0.1, 1, 30, 1e5, 1e15, 1e300, math.Inf(1)} {
-			d := StudentizedRange{k, df}
+			d := StudentizedRange{Groups: k, DF: df}
 			for _, q := range []float64{-1, 0, 1e-300, 1e-3, 3, 1e3, 1e300, math.Inf(1)} {
 				low, high := d.CDF(q), d.SF(q)
 				if k < 2 || !(df > 0) {
@@ -171,7 +171,7 @@ func TestStudentizedRangeStandsAnyArgument(t *testing.T) {
 
 func benchRange(b *testing.B, k int, df, q float64) {
 	for b.Loop() {
-		StudentizedRange{k, df}.SF(q)
+		StudentizedRange{Groups: k, DF: df}.SF(q)
 	}
 }
 func BenchmarkRange3_10(b *testing.B)    { benchRange(b, 3, 10, 3.9) }
@@ -182,6 +182,6 @@ func BenchmarkRange200_1(b *testing.B)   { benchRange(b, 200, 1, 70) }
 func BenchmarkRange200_Inf(b *testing.B) { benchRange(b, 200, math.Inf(1), 6) }
 func BenchmarkRangeQuantile(b *testing.B) {
 	for b.Loop() {
-		StudentizedRange{20, 40}.UpperQuantile(0.05)
+		StudentizedRange{Groups: 20, DF: 40}.UpperQuantile(0.05)
 	}
 }

@@ -120,7 +120,7 @@ func (s studentized) nodes(q float64, upper bool) *scaleNodes {
 	}
 	return &scaleNodes{
 		law: s, upper: upper, base: base, first: num.Log(q / base),
-		step: min(0.15, 0.84/math.Sqrt(band)), tails: map[int]float64{},
+		step: min(0.15, 0.84/math.Sqrt(band)), tails: make(map[int]float64, 64),
 	}
 }
 
