@@ -73,6 +73,25 @@ func TestTheExampleOfEveryReferencePageRunsAsPrinted(t *testing.T) {
 	}
 }
 
+func TestTheCommandsUnderStartAWorkbookRunAsTheReadmePrintsThem(t *testing.T) {
+	readme := string(readFile(t, "../../README.md"))
+	_, section, found := strings.Cut(readme, "\n## Start a workbook\n")
+	section, _, _ = strings.Cut(section, "\n## ")
+	t.Chdir(t.TempDir())
+	ran := 0
+	for line := range strings.Lines(section) {
+		if command, ok := strings.CutPrefix(line, "    halfwidth "); ok {
+			ran++
+			if _, stderr, code := run(t, words(command)...); code != exitOK || stderr != "" {
+				t.Errorf("%s: code %d, %s", command, code, stderr)
+			}
+		}
+	}
+	if !found || ran != 2 {
+		t.Errorf("%d commands stand in the section", ran)
+	}
+}
+
 func TestVerbsStandInTheHelpAsListed(t *testing.T) {
 	stdout, _, code := run(t, "--help")
 	at := 0
