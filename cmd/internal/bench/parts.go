@@ -220,8 +220,8 @@ func (b *bench) kernel(page *strings.Builder) error {
 
 // growth measures the time for each row, question or file at growing sizes.
 func (b *bench) growth(page *strings.Builder) error {
-	fmt.Fprint(page, "## Growth\n\nTime for each row, question or file, over that at the size marked 1, with the start of the process and of an empty book taken off. At a\n"+
-		"job that grows with its size and no faster, all figures from there on are near 1.\n\n")
+	fmt.Fprint(page, "## Growth\n\nTime for each row, question or file, over that at the size marked 1, with the start of the process and of an empty book taken off. Where a\n"+
+		"job grows no faster than its size, no figure after that passes 1 by much. What is mostly the start is not told apart from it.\n\n")
 	base := b.file(".xlsx")
 	if err := b.book(base, 10, 5, 1); err != nil {
 		return err
@@ -279,9 +279,12 @@ func (b *bench) growth(page *strings.Builder) error {
 			fmt.Fprintf(&head, " %s |", thousands(n))
 			rule.WriteString(" ---: |")
 			each := (t[1+i] - t[0]) / float64(n)
-			if i == first {
+			switch {
+			case i == first:
 				line.WriteString(" 1 |")
-			} else {
+			case t[1+i] < 1.5*t[0]:
+				line.WriteString(" mostly start |")
+			default:
 				fmt.Fprintf(&line, " %s |", figure(each/unit))
 			}
 		}
