@@ -325,22 +325,22 @@ func aboutFunction(f *funcs.Function) string {
 
 // calculations writes the calculation sheet.
 func (s *starter) calculations(blocks []*starterBlock, list []*funcs.Function, withTrips bool) {
-	const sheet = starterSheet
-	s.put(sheet, 1, 1, "calculation sheet")
+	sheet := s.sheet(starterSheet)
+	sheet.put(1, 1, "calculation sheet")
 	s.look(sheet, 1, 1, 1, 1, titleLook, "")
-	s.put(sheet, 1, 2, "Write one question a row, save the workbook, and run: halfwidth fill, with the workbook's name. The grey columns, headed >, are filled in.")
+	sheet.put(1, 2, "Write one question a row, save the workbook, and run: halfwidth fill, with the workbook's name. The grey columns, headed >, are filled in.")
 	about := "Select a header or a cell to read what belongs there. The sheet Names lists every input and result."
 	if withTrips {
 		about += " The sheet Trips holds invented values; replace it by your own."
 	}
-	s.put(sheet, 1, 3, about)
+	sheet.put(1, 3, about)
 	row := 5
 	for _, d := range sharedDefaults(list) {
-		s.put(sheet, 1, row, "default "+d.Name)
-		s.put(sheet, 2, row, d.Default)
+		sheet.put(1, row, "default "+d.Name)
+		sheet.put(2, row, d.Default)
 		s.look(sheet, 1, row, 1, row, nameLook, "")
 		s.look(sheet, 2, row, 2, row, inputLook, levelFormat(d.Default))
-		s.noteOn(sheet, starterCell(2, row), d.Name, sentenceOf(d.Summary)+" It holds for every row below whose own cell is empty.", choicesOf(d))
+		sheet.noteOn(starterCell(2, row), d.Name, sentenceOf(d.Summary)+" It holds for every row below whose own cell is empty.", choicesOf(d))
 		row++
 	}
 	if row > 5 {
@@ -356,22 +356,22 @@ func (s *starter) calculations(blocks []*starterBlock, list []*funcs.Function, w
 		}
 	}
 	for _, b := range blocks {
-		row = s.block(b, widths, row) + 1
+		row = s.block(sheet, b, widths, row) + 1
 	}
 	all := 0.0
 	for i, w := range widths {
-		s.widen(sheet, i+1, w)
+		sheet.widths[i+1] = w
 		all += w
 	}
 	header := 0
 	if len(blocks) == 1 {
 		header = row - 1 - readyRows - len(blocks[0].rows) - 1
 	}
-	s.freeze(sheet, 2, header)
+	sheet.frozenCols, sheet.frozenRows = 2, header
 	// The first two columns stand on every page; the others share the pages.
 	const onPage = 180
 	still := widths[0] + widths[1]
-	s.onPaper(sheet, int(math.Ceil(max(all-still, 1)/(onPage-still))), 2, header)
+	sheet.onPaper(int(math.Ceil(max(all-still, 1)/(onPage-still))), 2, header)
 }
 
 // sharedDefaults gives the levels that `default NAME` may set and that all the
@@ -412,10 +412,9 @@ func levelFormat(value any) string {
 }
 
 // block writes a block from a row on and gives the row below it.
-func (s *starter) block(b *starterBlock, widths []float64, row int) int {
-	const sheet = starterSheet
+func (s *starter) block(sheet *starterPart, b *starterBlock, widths []float64, row int) int {
 	for _, f := range b.functions {
-		s.put(sheet, 1, row, f.Name+": "+aboutFunction(f))
+		sheet.put(1, row, f.Name+": "+aboutFunction(f))
 		s.look(sheet, 1, row, 1, row, nameLook, "")
 		row++
 	}
@@ -433,7 +432,7 @@ func (s *starter) block(b *starterBlock, widths []float64, row int) int {
 		case c.text:
 			look = textLook
 		}
-		s.put(sheet, col, row, c.title)
+		sheet.put(col, row, c.title)
 		s.look(sheet, col, row, col, row, head, "")
 		format := ""
 		if levels[c.title] {
@@ -442,21 +441,21 @@ func (s *starter) block(b *starterBlock, widths []float64, row int) int {
 		s.look(sheet, col, first, col, last, look, format)
 		for k, r := range b.rows {
 			value := r.cells[c.title]
-			s.put(sheet, col, first+k, value)
+			sheet.put(col, first+k, value)
 			if levels[c.title] && value != nil {
 				s.look(sheet, col, first+k, col, first+k, look, levelFormat(value))
 			}
 		}
-		s.noteOn(sheet, starterCell(col, row), c.title, c.note, nil)
+		sheet.noteOn(starterCell(col, row), c.title, c.note, nil)
 		if !c.result {
-			s.noteOn(sheet, starterCell(col, first)+":"+starterCell(col, last), c.title, c.note, c.choices)
+			sheet.noteOn(starterCell(col, first)+":"+starterCell(col, last), c.title, c.note, c.choices)
 		}
 	}
 	head := 1.0
 	for i, c := range b.columns {
 		head = max(head, linesIn(c.title, widths[i]))
 	}
-	s.tall(sheet, row, head)
+	sheet.tall(row, head)
 	for k, r := range b.rows {
 		lines := 1.0
 		for i, c := range b.columns {
@@ -466,7 +465,7 @@ func (s *starter) block(b *starterBlock, widths []float64, row int) int {
 			}
 			lines = max(lines, linesIn(text, widths[i]))
 		}
-		s.tall(sheet, first+k, lines)
+		sheet.tall(first+k, lines)
 	}
 	return last + 1
 }
