@@ -115,11 +115,15 @@ func inputTable(f *funcs.Function) *texttab.Table {
 func exampleCommand(f *funcs.Function) string {
 	words := []string{"halfwidth", "answer", f.Name}
 	for _, a := range f.Example.Arguments {
-		word := a.Name + "=" + funcs.FormatArgument(a.Value)
-		if strings.ContainsAny(word, " ;<>\"*?&|()") {
-			word = "'" + word + "'"
-		}
-		words = append(words, word)
+		words = append(words, shellWord(a.Name+"="+funcs.FormatArgument(a.Value)))
 	}
 	return strings.Join(words, " ")
+}
+
+// shellWord quotes a word that a shell would split or read otherwise.
+func shellWord(word string) string {
+	if strings.ContainsAny(word, " ;<>\"'*?&|()$`\\") {
+		return "'" + strings.ReplaceAll(word, "'", `'\''`) + "'"
+	}
+	return word
 }

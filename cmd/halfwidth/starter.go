@@ -43,7 +43,7 @@ func starterCommand() *cobra.Command {
 			return err
 		}
 		_, err = fmt.Fprintln(c.OutOrStdout(), texttab.Fit(c.OutOrStdout(), fmt.Sprintf("Wrote %s: a calculation sheet with worked rows of %s. Change or add rows, then run: halfwidth fill %s",
-			args[0], functionCount(list), args[0])))
+			args[0], functionCount(list), shellWord(args[0]))))
 		return err
 	}
 	return c
