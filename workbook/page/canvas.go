@@ -3,24 +3,19 @@ package page
 import (
 	"fmt"
 	"html"
-	"image"
-	"image/color"
 	"math"
 	"strconv"
 	"strings"
+	"sync"
 
 	"gonum.org/v1/plot/font"
-	"gonum.org/v1/plot/text"
+	"gonum.org/v1/plot/font/liberation"
 	"gonum.org/v1/plot/vg"
-	"gonum.org/v1/plot/vg/draw"
 )
 
 // ink is a colour by the name of its class; the page's style sheet says what it
 // looks like on light paper, dark paper and in print.
 type ink string
-
-// RGBA is black: only the name is drawn.
-func (ink) RGBA() (r, g, b, a uint32) { return 0, 0, 0, 0xffff }
 
 // The inks.
 const (
@@ -38,104 +33,32 @@ const (
 	refWordInk  ink = "refword"
 )
 
-// canvas draws plots as SVG for a page: with classes in place of colours and
+// canvas is a picture as SVG for a page: with classes in place of colours and
 // fonts, in tenths of a unit, and each path relative to its last point, so that
-// a thousand dots take few bytes. The library's own SVG canvas writes every
-// colour and font into each element.
+// a thousand dots take few bytes. Heights are counted upward; a unit is a pixel
+// where the picture is as wide as it was drawn for.
 type canvas struct {
 	out    strings.Builder
-	width  vg.Length
 	height vg.Length
-	now    pencil
-	stack  []pencil
 }
 
-// pencil is the state that Push keeps.
-type pencil struct {
-	ink   ink
-	width vg.Length
-	dash  []vg.Length
-	m     matrix
-}
-
-// matrix is an affine map: x' = a·x + c·y + e, y' = b·x + d·y + f.
-type matrix struct{ a, b, c, d, e, f float64 }
-
-func (m matrix) at(p vg.Point) (x, y float64) {
-	px, py := float64(p.X), float64(p.Y)
-	return m.a*px + m.c*py + m.e, m.b*px + m.d*py + m.f
-}
-
-// then is the map that applies n first.
-func (m matrix) then(n matrix) matrix {
-	return matrix{
-		m.a*n.a + m.c*n.b, m.b*n.a + m.d*n.b,
-		m.a*n.c + m.c*n.d, m.b*n.c + m.d*n.d,
-		m.a*n.e + m.c*n.f + m.e, m.b*n.e + m.d*n.f + m.f,
-	}
-}
-
-var _ vg.CanvasSizer = (*canvas)(nil)
-
-func newCanvas(width, height vg.Length) *canvas {
-	c := &canvas{width: width, height: height}
-	c.now.m = matrix{a: 1, d: -1, f: float64(height)}
-	vg.Initialize(c)
-	return c
-}
-
-// Size is the size in units, which are pixels where the picture is as wide as
-// it was drawn for.
-func (c *canvas) Size() (w, h vg.Length) { return c.width, c.height }
-
-// SetLineWidth, SetLineDash and SetColor set what the next paths are drawn with.
-func (c *canvas) SetLineWidth(w vg.Length)                  { c.now.width = w }
-func (c *canvas) SetLineDash(dash []vg.Length, _ vg.Length) { c.now.dash = dash }
-func (c *canvas) SetColor(clr color.Color) {
-	c.now.ink = wordInk
-	if named, ok := clr.(ink); ok {
-		c.now.ink = named
-	}
-}
-
-// Rotate, Translate and Scale change the map from drawing to page.
-func (c *canvas) Rotate(rad float64) {
-	sin, cos := math.Sincos(rad)
-	c.now.m = c.now.m.then(matrix{a: cos, b: sin, c: -sin, d: cos})
-}
-func (c *canvas) Translate(p vg.Point) {
-	c.now.m = c.now.m.then(matrix{a: 1, d: 1, e: float64(p.X), f: float64(p.Y)})
-}
-func (c *canvas) Scale(x, y float64) { c.now.m = c.now.m.then(matrix{a: x, d: y}) }
-
-// Push and Pop keep the state and bring it back.
-func (c *canvas) Push() { c.stack = append(c.stack, c.now) }
-func (c *canvas) Pop() {
-	c.now = c.stack[len(c.stack)-1]
-	c.stack = c.stack[:len(c.stack)-1]
-}
-
-// Stroke draws a path as a line. A part of a path that goes nowhere is a dot.
-func (c *canvas) Stroke(path vg.Path) {
-	if c.now.width <= 0 || len(path) == 0 {
+// stroke draws a path as a line. A part of a path that goes nowhere is a dot.
+func (c *canvas) stroke(name ink, width vg.Length, dash string, path vg.Path) {
+	if len(path) == 0 {
 		return
 	}
-	fmt.Fprintf(&c.out, `<path class="%s" stroke-width="%s"`, c.now.ink, tenths(float64(c.now.width)))
-	if len(c.now.dash) > 0 {
-		parts := make([]string, len(c.now.dash))
-		for i, d := range c.now.dash {
-			parts[i] = tenths(float64(d))
-		}
-		fmt.Fprintf(&c.out, ` stroke-dasharray="%s"`, strings.Join(parts, " "))
+	fmt.Fprintf(&c.out, `<path class="%s" stroke-width="%s"`, name, tenths(float64(width)))
+	if dash != "" {
+		fmt.Fprintf(&c.out, ` stroke-dasharray="%s"`, dash)
 	}
 	c.out.WriteString(` d="`)
 	c.writePath(path)
 	c.out.WriteString("\"/>\n")
 }
 
-// Fill draws a path as an area.
-func (c *canvas) Fill(path vg.Path) {
-	fmt.Fprintf(&c.out, `<path class="%s-area" d="`, c.now.ink)
+// fill draws a path as an area.
+func (c *canvas) fill(name ink, path vg.Path) {
+	fmt.Fprintf(&c.out, `<path class="%s-area" d="`, name)
 	c.writePath(path)
 	c.out.WriteString("\"/>\n")
 }
@@ -146,8 +69,7 @@ func (c *canvas) writePath(path vg.Path) {
 	var from vg.Point
 	first := true
 	step := func(p vg.Point) (dx, dy int) {
-		x, y := c.now.m.at(p)
-		ix, iy := int(math.Round(x*10)), int(math.Round(y*10))
+		ix, iy := int(math.Round(float64(p.X)*10)), int(math.Round(float64(c.height-p.Y)*10))
 		dx, dy = ix-lastX, iy-lastY
 		lastX, lastY, from = ix, iy, p
 		return dx, dy
@@ -201,21 +123,26 @@ func (c *canvas) writePath(path vg.Path) {
 	}
 }
 
-// FillString draws text that starts at a point; words draws it otherwise.
-func (c *canvas) FillString(_ font.Face, at vg.Point, s string) { c.say(at, "start", s) }
+// anchor says which part of a text stands at its point.
+type anchor string
 
-// say draws text at a point that is its start, middle or end.
-func (c *canvas) say(at vg.Point, anchor, s string) {
-	x, y := c.now.m.at(at)
-	fmt.Fprintf(&c.out, `<text class="%s" x="%s" y="%s"`, c.now.ink, tenths(x), tenths(y))
-	if anchor != "start" {
-		fmt.Fprintf(&c.out, ` text-anchor="%s"`, anchor)
+const (
+	start  anchor = "start"
+	middle anchor = "middle"
+	end    anchor = "end"
+)
+
+// say draws one line of text on a base line.
+func (c *canvas) say(name ink, at vg.Point, a anchor, s string) {
+	if s == "" {
+		return
+	}
+	fmt.Fprintf(&c.out, `<text class="%s" x="%s" y="%s"`, name, tenths(float64(at.X)), tenths(float64(c.height-at.Y)))
+	if a != start {
+		fmt.Fprintf(&c.out, ` text-anchor="%s"`, a)
 	}
 	fmt.Fprintf(&c.out, ">%s</text>\n", html.EscapeString(printable(s)))
 }
-
-// DrawImage draws nothing: no picture of this page holds another.
-func (c *canvas) DrawImage(vg.Rectangle, image.Image) {}
 
 // tenths writes a length to a tenth of a unit.
 func tenths(x float64) string { return ofTenths(int(math.Round(x * 10))) }
@@ -235,44 +162,30 @@ func ofTenths(n int) string {
 	return sign + whole + "." + strconv.Itoa(n%10)
 }
 
-// words is the text handler of plots: it measures as the library does, and hands
-// the alignment on, so that text stands right in whatever font the page has.
-type words struct{ text.Plain }
+// face is a font of the widths of those that the style sheet names for pictures.
+// It is read on first use, for only pages need it.
+var face = sync.OnceValue(func() font.Face {
+	return font.NewCache(liberation.Collection()).Lookup(font.Font{Typeface: "Liberation", Variant: "Sans"}, textSize)
+})
 
-// Draw draws one line of text.
-func (words) Draw(c vg.Canvas, s string, style text.Style, at vg.Point) {
-	if s == "" {
-		return
+// widthOf is how wide a text is drawn; bold text is a little wider.
+func widthOf(name ink, s string) vg.Length {
+	f := face()
+	w := f.Width(printable(s))
+	if name == markWordInk {
+		w *= 1.07
 	}
-	c.SetColor(style.Color)
-	descent := style.FontExtents().Descent
-	if style.YAlign == text.YCenter {
-		at.Y -= descent + style.Font.Size*0.36 // an axis gives the middle of digits, and the descent on top
-	} else {
-		at.Y += style.Height(s) * vg.Length(style.YAlign) // callers give the top and the descent on top
-	}
-	anchor := "middle"
-	switch style.XAlign {
-	case text.XLeft:
-		anchor = "start"
-	case text.XRight:
-		anchor = "end"
-	}
-	inner(c).say(at, anchor, s)
+	return w
 }
 
-// inner finds the canvas below the library's areas.
-func inner(c vg.Canvas) *canvas {
-	for {
-		switch v := c.(type) {
-		case *canvas:
-			return v
-		case *draw.Canvas:
-			c = v.Canvas
-		case draw.Canvas:
-			c = v.Canvas
-		default:
-			panic(fmt.Sprintf("page: text on a %T", c))
-		}
+// shortened cuts a text so that it fits a width.
+func shortened(s string, width vg.Length) string {
+	if widthOf(wordInk, s) <= width {
+		return s
 	}
+	runes := []rune(s)
+	for len(runes) > 1 && widthOf(wordInk, string(runes)+"…") > width {
+		runes = runes[:len(runes)-1]
+	}
+	return strings.TrimRight(string(runes), " ") + "…"
 }

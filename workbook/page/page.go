@@ -26,7 +26,10 @@ var pageHTML string
 //go:embed page.css
 var pageCSS string
 
-var pageTemplate = template.Must(template.New("page").Parse(pageHTML))
+// pageTemplate is parsed on first use: most verbs write no page.
+var pageTemplate = sync.OnceValue(func() *template.Template {
+	return template.Must(template.New("page").Parse(pageHTML))
+})
 
 // Write writes the page of a workbook that was worked out with
 // workbook.Options.KeepValues. The error is the context's or the writer's.
@@ -36,7 +39,7 @@ func Write(ctx context.Context, w io.Writer, r *workbook.Report) error {
 		return err
 	}
 	var b bytes.Buffer
-	if err := pageTemplate.Execute(&b, v); err != nil {
+	if err := pageTemplate().Execute(&b, v); err != nil {
 		return fmt.Errorf("page of %s: %w", r.Book, err)
 	}
 	_, err = w.Write(b.Bytes())

@@ -6,7 +6,6 @@ import (
 	"math"
 	"slices"
 
-	"gonum.org/v1/plot"
 	"gonum.org/v1/plot/vg"
 	"halfwidth/funcs"
 )
@@ -321,7 +320,7 @@ func drawTail(ctx context.Context, a answer) (*picture, error) {
 		n := float64(len(values))
 		p := newPanel(math.Log10(far[most-1])-.05, math.Log10(far[0])+.05, "share farther out (upward) against distance from the median")
 		p.vertical(math.Log10(0.7/n), math.Log10(float64(most)/n)+.05, 150)
-		p.X.Tick.Marker, p.Y.Tick.Marker = powers{}, powers{}
+		p.x.ticks, p.y.ticks = powerTicks, powerTicks
 		p.over(func(g pen) {
 			points := make([]vg.Point, len(far))
 			for i, d := range far {
@@ -336,26 +335,4 @@ func drawTail(ctx context.Context, a answer) (*picture, error) {
 	f.addInterval("tail index", a.interval(), []reference{{name: "mean above", value: 1}, {name: "variance above", value: 2}})
 	f.caption = append(f.caption[:len(f.caption)-1], "Dashed: above 1 the mean is finite, above 2 the variance.")
 	return f, nil
-}
-
-// powers marks an axis of decimal logarithms with the numbers themselves.
-type powers struct{}
-
-// Ticks gives at most seven ticks, at 1, 2 and 5 times powers of ten or at
-// powers alone.
-func (powers) Ticks(lo, hi float64) []plot.Tick {
-	var out []plot.Tick
-	steps := []float64{1, 2, 5}
-	if hi-lo > 2 {
-		steps = steps[:1]
-	}
-	every := max(1, math.Ceil((hi-lo)/6))
-	for k := math.Floor(lo); k <= hi; k += every {
-		for _, m := range steps {
-			if v := k + math.Log10(m); v >= lo && v <= hi {
-				out = append(out, plot.Tick{Value: v, Label: figure(m * math.Pow(10, k))})
-			}
-		}
-	}
-	return out
 }

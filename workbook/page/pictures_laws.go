@@ -218,7 +218,7 @@ func drawLaw(ctx context.Context, a answer) (*picture, error) {
 	}
 	text := "probability " + figure(probability) + " " + says
 	p.row(lineHeight+8, func(g pen) {
-		g.label(markWordInk, (g.x(math.Max(from, p.X.Min))+g.x(math.Min(to, p.X.Max)))/2, g.down(6), text)
+		g.label(markWordInk, (g.x(math.Max(from, p.x.min))+g.x(math.Min(to, p.x.max)))/2, g.down(6), text)
 	})
 	return &picture{panels: []*panel{p}, says: []string{"Density of the law. " + sentence(text)},
 		caption: []string{"Curve: the density. Shaded: the part that the probability counts."}}, nil

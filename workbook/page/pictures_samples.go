@@ -189,7 +189,7 @@ func drawOutliers(_ context.Context, a answer) (*picture, error) {
 			at = append(at, vg.Point{X: x, Y: g.down(8)})
 		}
 		g.rings(intervalInk, 4, at)
-		x := g.Center().X
+		x := (g.Min.X + g.Max.X) / 2
 		if len(values) > 0 {
 			x = g.x(values[0])
 		}

@@ -232,7 +232,7 @@ func drawPlan(ctx context.Context, a answer) (*picture, error) {
 		if ys[len(ys)-1] < ys[0] { // a falling curve leaves room above
 			below = at.Y + lineHeight + 8
 		}
-		g.label(markWordInk, at.X+style(wordInk, 0, 0).Width(mark)/2+10, min(max(below, g.Min.Y+lineHeight), g.Max.Y), mark)
+		g.label(markWordInk, at.X+widthOf(markWordInk, mark)/2+10, min(max(below, g.Min.Y+lineHeight), g.Max.Y), mark)
 	})
 	f := &picture{panels: []*panel{g}}
 	f.says = append(f.says, "What other numbers attain: "+what+" from "+short(ys[0])+" at "+p.x+" = "+short(xs[0])+

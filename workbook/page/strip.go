@@ -114,7 +114,7 @@ func (p *panel) fit(strips []strip, height vg.Length) (size vg.Length) {
 func (p *panel) lanes(s strip, size vg.Length) int {
 	at := make([]vg.Length, len(s.sorted))
 	for i, v := range s.sorted {
-		at[i] = pictureWidth * 0.95 * vg.Length(p.X.Norm(v))
+		at[i] = pictureWidth * 0.95 * vg.Length(p.x.norm(v))
 	}
 	_, most := stack(at, size)
 	return most
@@ -307,8 +307,8 @@ func (p *panel) addReferences(refs []reference) {
 	lanes := make([]vg.Length, len(refs))
 	var ends []vg.Length
 	for i, r := range refs {
-		w := style(refWordInk, 0, 0).Width(r.label())
-		x := pictureWidth * vg.Length(p.X.Norm(r.value))
+		w := widthOf(refWordInk, r.label())
+		x := pictureWidth * vg.Length(p.x.norm(r.value))
 		at := min(max(x, w/2), pictureWidth-w/2)
 		lane := slices.IndexFunc(ends, func(e vg.Length) bool { return at-w/2 >= e+10 })
 		if lane < 0 {

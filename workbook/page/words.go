@@ -91,3 +91,11 @@ func printable(s string) string {
 		return r
 	}, strings.ToValidUTF8(s, "\uFFFD"))
 }
+
+// minus writes a negative number with a minus sign.
+func minus(s string) string {
+	if rest, ok := strings.CutPrefix(s, "-"); ok {
+		return "−" + rest
+	}
+	return s
+}
