@@ -122,7 +122,7 @@ func (c *Call) meanSummary() (summary, error) {
 	if !c.has("known-sd") || c.has("n") {
 		return c.summaryOf(sample, meanGiven, sdGiven, nGiven)
 	}
-	s := summarise(withoutGaps(sample.Of(c)))
+	s := c.summarise(c.gapless(sample.Of(c)))
 	c.count(s.n)
 	return s, nil
 }

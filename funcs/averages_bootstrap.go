@@ -35,8 +35,8 @@ var bootstrapInterval = &Function{
 		Source:    "the mean of the ten values; the limits depend on the draws",
 	},
 	compute: func(c *Call) error {
-		values := withoutGaps(sample.Of(c))
-		s := summarise(values)
+		values := c.gapless(sample.Of(c))
+		s := c.summarise(values)
 		c.count(s.n)
 		switch {
 		case s.n < 3:

@@ -30,7 +30,7 @@ var medianInterval = &Function{
 		Source:    "exact count: P(X <= 1) = 11/1024 for X binomial with n = 10 and chance ½, so the second smallest and second largest",
 	},
 	compute: func(c *Call) error {
-		values := num.Sorted(withoutGaps(sample.Of(c)))
+		values := num.Sorted(c.gapless(sample.Of(c)))
 		n := len(values)
 		c.count(n)
 		conf, dir := confidence.Of(c), direction.Of(c)

@@ -58,7 +58,7 @@ var trimmedMeanInterval = &Function{
 		Source:    "the defining formula by hand: winsorised sum of squares 42.5, over 6·5, t = 2.570581836 (JCGM 100 Table G.2)",
 	},
 	compute: func(c *Call) error {
-		values := withoutGaps(sample.Of(c))
+		values := c.gapless(sample.Of(c))
 		t := trimmed(num.Sorted(values), trimmedEachEnd.Of(c))
 		c.count(len(values))
 		if t.h < 2 {
@@ -79,7 +79,7 @@ var trimmedMeanInterval = &Function{
 		c.say(statement{"trimmed mean", t.mean, l, SameUnit, nText(len(values))})
 		if checks.Of(c) {
 			c.checkFewOfAnyShape(len(values))
-			c.checkNeighbours("sample", "The sample", sample.Of(c), summarise(values))
+			c.checkNeighbours("sample", "The sample", sample.Of(c), c.summarise(values))
 		}
 		return nil
 	},

@@ -79,14 +79,14 @@ func (c *Call) orderTolerance(n int, share, conf float64, dir, what string) erro
 		return refuse("confidence-not-attainable", "confidence", "With %s the smallest and largest value hold %s of the population with only %s confidence; "+
 			"measure more (see distribution-free-tolerance-size), or ask for less.", nText(n), percent(share), percent(attained))
 	}
-	values := withoutGaps(sample.Of(c))
+	values := c.gapless(sample.Of(c))
 	l := limitsOf(conf, dir, func(float64) float64 { return slices.Min(values) }, func(float64) float64 { return slices.Max(values) })
 	c.setLimits(l)
 	c.set("attained-confidence", attained)
 	c.method = "distribution-free limits, attained confidence " + percent(attained)
 	c.sayLimits(l, slices.Max(values)-slices.Min(values), what, nText(n))
 	if checks.Of(c) {
-		c.checkNeighbours("sample", "The sample", sample.Of(c), summarise(values))
+		c.checkNeighbours("sample", "The sample", sample.Of(c), c.summarise(values))
 	}
 	return nil
 }

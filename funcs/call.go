@@ -147,16 +147,18 @@ func (c *Call) outcome() (*Outcome, error) {
 		if !fits(v, r.Kind) {
 			return nil, fmt.Errorf("%w: %s gave %s as %T", ErrInternal, c.Function.Name, name, v)
 		}
-		if !finite(v) {
-			c.add(beyondDouble(name))
+	}
+	for _, r := range c.Function.Results {
+		if !finite(c.results[r.Name]) {
+			c.add(beyondDouble(r.Name))
 		}
 	}
 	for i := range c.rows {
 		row := &c.rows[i]
-		for name, v := range row.Values {
-			if !finite(v) {
-				delete(row.Values, name)
-				row.Findings = append(row.Findings, beyondDouble(name))
+		for _, column := range c.Function.Table {
+			if !finite(row.Values[column.Name]) {
+				delete(row.Values, column.Name)
+				row.Findings = append(row.Findings, beyondDouble(column.Name))
 			}
 		}
 	}

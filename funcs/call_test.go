@@ -6,6 +6,7 @@ import (
 	"crypto/sha256"
 	"errors"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -100,6 +101,22 @@ func TestARefusalIsAnOutcomeWithoutResults(t *testing.T) {
 		}
 		if note, _ := out.Get("note"); note == "" {
 			t.Errorf("%v: a refusal without its reason in the note", c.values)
+		}
+	}
+}
+
+func TestResultsBeyondADoubleAreNamedInCatalogueOrder(t *testing.T) {
+	for range 20 { // a map's order would show
+		out := answer(t, "analysis-of-variance", map[string]any{"samples": []Group{{"a", []float64{-1e300, 1e300}}, {"b", []float64{0, 1e300}}}})
+		var named []string
+		for _, f := range out.Findings {
+			if f.Code == "too-large-to-hold" {
+				named = append(named, strings.Fields(f.Message)[1])
+			}
+		}
+		want := []string{"f", "p-value", "sum-squares-between", "sum-squares-within", "mean-square-between", "mean-square-within", "r-squared", "residual-sd"}
+		if !slices.Equal(named, want) {
+			t.Fatalf("named %v, want %v", named, want)
 		}
 	}
 }

@@ -40,7 +40,7 @@ var outlierCheck = &Function{
 	},
 	compute: func(c *Call) error {
 		given := sample.Of(c)
-		s := summarise(withoutGaps(given))
+		s := c.summarise(c.gapless(given))
 		c.count(s.n)
 		switch {
 		case s.n < 3:
@@ -190,7 +190,7 @@ var tailCheck = &Function{
 		Source:    "the law the values were made from",
 	},
 	compute: func(c *Call) error {
-		values := withoutGaps(sample.Of(c))
+		values := c.gapless(sample.Of(c))
 		if len(values) < tailValues {
 			return tooFew("sample", len(values), tailValues)
 		}

@@ -201,8 +201,8 @@ var coverageCheck = &Function{
 		Source:    "exact count: of the four pairs, the two unequal ones hold the mean (20,000 draws, error 0.0035)",
 	},
 	compute: func(c *Call) error {
-		values := withoutGaps(sample.Of(c))
-		s := summarise(values)
+		values := c.gapless(sample.Of(c))
+		s := c.summarise(values)
 		c.count(s.n)
 		switch {
 		case s.n < 2:
@@ -214,7 +214,7 @@ var coverageCheck = &Function{
 		if given, ok := coverageN.Given(c); ok {
 			n = given
 		}
-		m := num.Moments(values)
+		m := c.moments(values)
 		centred := lessMean(values, m)
 		sim, err := c.coverage(coverageDraws{n: n, cost: 1, draw: func(stream *num.Stream, x []float64) { stream.Resample(x, centred) }})
 		if err != nil {

@@ -32,8 +32,8 @@ var independenceCheck = &Function{
 	},
 	compute: func(c *Call) error {
 		ordered := sample.Of(c)
-		values := withoutGaps(ordered)
-		s := summarise(values)
+		values := c.gapless(ordered)
+		s := c.summarise(values)
 		c.count(s.n)
 		switch {
 		case s.n < 3:
@@ -41,7 +41,7 @@ var independenceCheck = &Function{
 		case s.sd == 0:
 			return c.noSpread("sample")
 		}
-		r := num.Lag1(ordered)
+		r := c.facts(ordered).lag1()
 		n := float64(s.n)
 		effective := n
 		if r > 0 {

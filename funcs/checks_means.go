@@ -23,7 +23,7 @@ func SampleMeans(ctx context.Context, o *Outcome, most int) (*Means, error) {
 	if _, ok := o.Function.Result("coverage"); !ok || o.Status == StatusRefused {
 		return nil, fmt.Errorf("%w: %s (%s) simulates no means", ErrInternal, o.Function.Name, o.Status)
 	}
-	c := &Call{Function: o.Function, ctx: ctx, args: o.Arguments}
+	c := &Call{Function: o.Function, ctx: ctx, args: o.Arguments, known: map[listKey]*listFacts{}}
 	n, draw, sd, err := c.simulated()
 	if err != nil {
 		return nil, err
@@ -49,8 +49,8 @@ func (c *Call) simulated() (n int, draw func(*num.Stream, []float64), sd float64
 		p, err := c.population()
 		return populationN.Of(c), p.draw, p.sd, err
 	}
-	values := withoutGaps(sample.Of(c))
-	values = lessMean(values, num.Moments(values))
+	values := c.gapless(sample.Of(c))
+	values = lessMean(values, c.moments(values))
 	var squares float64
 	for _, x := range values {
 		squares += float64(x * x)

@@ -33,7 +33,7 @@ var normalityCheck = &Function{
 		Source:    "Shapiro & Wilk 1965, An analysis of variance test for normality, section 4 (W = 0.79)",
 	},
 	compute: func(c *Call) error {
-		values := num.Sorted(withoutGaps(sample.Of(c)))
+		values := num.Sorted(c.gapless(sample.Of(c)))
 		s := summarise(values)
 		c.count(s.n)
 		switch {

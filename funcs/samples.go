@@ -185,7 +185,7 @@ func (c *Call) checkSummary(d description) error {
 	}
 	ordered := sample.Of(c)
 	c.checkFar("sample", "The sample", 0, ordered, d.summary)
-	c.checkTail("sample", "The sample", withoutGaps(ordered))
+	c.checkTail("sample", "The sample", c.gapless(ordered))
 	return c.cancelled()
 }
 

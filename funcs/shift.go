@@ -36,7 +36,7 @@ var shiftInterval = &Function{
 		Source:    "data of NIST/SEMATECH e-Handbook of Statistical Methods, 7.3.1; all 167960 rank orders counted",
 	},
 	compute: func(c *Call) error {
-		x, y := num.Sorted(withoutGaps(sample.Of(c))), num.Sorted(withoutGaps(secondSample.Of(c)))
+		x, y := num.Sorted(c.gapless(sample.Of(c))), num.Sorted(c.gapless(secondSample.Of(c)))
 		n1, n2 := len(x), len(y)
 		c.count(n1 + n2)
 		if x[0] == x[n1-1] && y[0] == y[n2-1] {

@@ -160,7 +160,7 @@ func (c *Call) shape() (g1, g2 float64, err error) {
 		}
 		return g1, g2, nil
 	}
-	m := num.Moments(withoutGaps(values))
+	m := c.moments(c.gapless(values))
 	switch {
 	case m.N < 4:
 		return 0, 0, tooFew("sample", m.N, 4)

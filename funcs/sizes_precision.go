@@ -36,7 +36,7 @@ func (c *Call) meanPrecision() (meanPrecision, error) {
 		p.population = float64(size)
 	}
 	if values, ok := sample.Given(c); ok {
-		s := summarise(withoutGaps(values))
+		s := c.summarise(c.gapless(values))
 		switch {
 		case s.n < 2:
 			return p, tooFew("sample", s.n, 2)
