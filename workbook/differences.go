@@ -1,8 +1,8 @@
 package workbook
 
 import (
-	"regexp"
 	"slices"
+	"strings"
 
 	"halfwidth/funcs"
 	"halfwidth/workbook/calculation"
@@ -179,9 +179,7 @@ func pinned(f *funcs.Function, name string) bool {
 	return slices.ContainsFunc(f.Results, is) || slices.ContainsFunc(f.Table, is)
 }
 
-var fingerprint = regexp.MustCompile(`^[0-9a-f]{16}$`)
-
 func isFingerprint(v any) bool {
 	text, ok := v.(string)
-	return ok && fingerprint.MatchString(text)
+	return ok && len(text) == 16 && strings.Trim(text, "0123456789abcdef") == ""
 }

@@ -200,7 +200,7 @@ func (s *starter) trips() {
 		p.widths[i+1] = 11
 	}
 	s.look(p, 1, 1, len(tripColumns), 1, headLook, "")
-	for i, t := range larkmoorTrips {
+	for i, t := range larkmoorTrips() {
 		for j, v := range []any{t.number, t.depot, t.planned, t.minutes, t.parcels, t.damaged} {
 			p.put(j+1, i+2, v)
 		}

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"slices"
+	"sync"
 
 	"halfwidth/funcs"
 )
@@ -23,7 +24,7 @@ type trip struct {
 }
 
 // larkmoorTrips lists the invented trips, those of the depots in turn.
-var larkmoorTrips = func() []trip {
+var larkmoorTrips = sync.OnceValue(func() []trip {
 	const each = 10
 	depots := []struct {
 		name             string
@@ -51,7 +52,7 @@ var larkmoorTrips = func() []trip {
 		}
 	}
 	return list
-}()
+})
 
 // seen is an expression over the trips, and the value that it stands for.
 type seen struct {
@@ -118,7 +119,7 @@ func (t trip) column(name string) float64 {
 
 func column(name, depot string) seen {
 	var values []float64
-	for _, t := range larkmoorTrips {
+	for _, t := range larkmoorTrips() {
 		if t.depot == depot {
 			values = append(values, t.column(name))
 		}
@@ -137,7 +138,7 @@ func byDepot(name string) seen {
 // depotNames lists the depots as groups are ordered.
 func depotNames() []string {
 	var names []string
-	for _, t := range larkmoorTrips {
+	for _, t := range larkmoorTrips() {
 		names = append(names, t.depot)
 	}
 	slices.Sort(names)
@@ -155,7 +156,7 @@ func eachDepot(text string, of func(trip) float64) seen {
 
 func total(what, condition, depot string, of func(trip) float64) seen {
 	var sum float64
-	for _, t := range larkmoorTrips {
+	for _, t := range larkmoorTrips() {
 		if t.depot == depot {
 			sum += of(t)
 		}
