@@ -103,3 +103,21 @@ func TestTheCatalogueKnowsNoClockAndNoFiles(t *testing.T) {
 		}
 	}
 }
+
+// What costs at start is paid by every fill of a small workbook: fonts parsed by
+// init, and canvases and encodings that no verb uses.
+func TestTheCommandLinksNothingThatIsSlowToStart(t *testing.T) {
+	out, err := exec.Command("go", "list", "-deps", module+"cmd/halfwidth").Output()
+	if err != nil {
+		t.Fatal(err)
+	}
+	linked := strings.Fields(string(out))
+	for _, slow := range []string{"gonum.org/v1/plot", "gonum.org/v1/plot/text", "gonum.org/v1/plot/vg/draw", "encoding/gob", "image/png", "image/jpeg"} {
+		if slices.Contains(linked, slow) {
+			t.Errorf("cmd/halfwidth links %s", slow)
+		}
+	}
+	if !slices.Contains(linked, "gonum.org/v1/plot/vg") {
+		t.Error("the list of linked packages lacks what pages draw with")
+	}
+}
