@@ -104,17 +104,17 @@ func (p pen) drawAxes(frame vg.Rectangle) {
 	p.segments(axisInk, 1, strokes)
 }
 
-// mostTicks is how many ticks an axis of round values has at most.
-const mostTicks = 6
+// mostSteps is how many steps between ticks an axis of round values has at most.
+const mostSteps = 6
 
 // roundTicks marks round values: steps of 1, 2 or 5 times a power of ten.
 func roundTicks(lo, hi float64) []tick {
-	step, place := roundStep((hi - lo) / mostTicks)
+	step, place := roundStep((hi - lo) / mostSteps)
 	if step == 0 || math.IsInf(step, 0) {
 		return nil
 	}
 	var out []tick
-	for k := math.Ceil(lo/step - 1e-9); k*step <= hi+step*1e-9 && len(out) < 4*mostTicks; k++ {
+	for k := math.Ceil(lo/step - 1e-9); k*step <= hi+step*1e-9 && len(out) < 4*mostSteps; k++ {
 		out = append(out, tick{k * step, tickLabel(k*step, place, math.Max(math.Abs(lo), math.Abs(hi)))})
 	}
 	return out
