@@ -47,7 +47,7 @@ func measure(python string, small bool) (string, error) {
 		return "", err
 	}
 	defer os.RemoveAll(dir)
-	b := &bench{dir: dir, python: python, pairs: 5, scale: 1}
+	b := &bench{dir: dir, python: python, pairs: 3, scale: 1}
 	if small {
 		b.pairs, b.scale = 1, 100
 	}
