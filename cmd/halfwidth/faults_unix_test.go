@@ -16,8 +16,9 @@ import (
 )
 
 // told runs a process to its end and gives what it printed and its exit code;
-// of one that a signal ended, 128 and the signal's number.
-func told(t *testing.T, c *exec.Cmd) (stdout, stderr string, code int) {
+// of one that a signal ended, 128 and the signal's number. What is to be done
+// once it runs is done then.
+func told(t *testing.T, c *exec.Cmd, started ...func()) (stdout, stderr string, code int) {
 	t.Helper()
 	var out, errs bytes.Buffer
 	if c.Stdout == nil {
@@ -26,6 +27,9 @@ func told(t *testing.T, c *exec.Cmd) (stdout, stderr string, code int) {
 	c.Stderr = &errs
 	if err := c.Start(); err != nil {
 		t.Fatal(err)
+	}
+	for _, f := range started {
+		f()
 	}
 	late := time.AfterFunc(time.Minute, func() { _ = c.Process.Kill() })
 	_ = c.Wait() // the exit code says it
@@ -80,6 +84,7 @@ func withRoom(blocks int, c *exec.Cmd) *exec.Cmd {
 }
 
 func TestADiskWithoutRoomLeavesTheOldFiles(t *testing.T) {
+	wholeProcesses(t)
 	dir := t.TempDir()
 	book := copyTo(t, demo, dir, "larkmoor.xlsx")
 	text := filepath.Join(dir, "some.calculations.csv")
@@ -294,6 +299,7 @@ func TestAReaderThatGoesEndsTheCommandQuietly(t *testing.T) {
 }
 
 func TestASignalEndsAFillCleanly(t *testing.T) {
+	wholeProcesses(t)
 	dir := t.TempDir()
 	book := filepath.Join(dir, "slow.calculations.csv")
 	row := "bootstrap-interval,1; 2; 4; 8; 16; 3; 9; 27,1000000,\n"
@@ -304,11 +310,11 @@ func TestASignalEndsAFillCleanly(t *testing.T) {
 	for signal, want := range map[os.Signal]int{os.Interrupt: exitInterrupted, syscall.SIGTERM: exitTerminated} {
 		for _, args := range [][]string{{"fill", book}, {"fill", "--in-place", book}, {"page", book}} {
 			c := process(args...)
-			// The signal comes once the process surely listens.
-			timer := time.AfterFunc(700*time.Millisecond, func() { _ = c.Process.Signal(signal) })
 			start := time.Now()
-			_, stderr, code := told(t, c)
-			timer.Stop()
+			_, stderr, code := told(t, c, func() {
+				// The signal comes once the process surely listens.
+				time.AfterFunc(700*time.Millisecond, func() { _ = c.Process.Signal(signal) })
+			})
 			if code != want || stderr != "halfwidth: interrupted\n" || time.Since(start) > 20*time.Second {
 				t.Errorf("%v, %s: code %d after %v, stderr %q", signal, args[0], code, time.Since(start), stderr)
 			}
