@@ -335,7 +335,7 @@ func (r *reader) cover(facts ooxml.SheetFacts) *ooxml.Error {
 		}
 		return nil
 	}
-	for _, m := range facts.Merged {
+	for m := range facts.Merged.All() {
 		err := each(m, func(row, col int, column *calculation.Column) {
 			if row != m.FirstRow || col != m.FirstCol {
 				column.Cover(row)

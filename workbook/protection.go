@@ -47,8 +47,9 @@ func (b *Book) whyKept(sheet string) string {
 		return "cannot be read: " + err.Error() + ". Repair it"
 	case formula != "":
 		return "holds a formula in " + formula + ", which is never written over. Delete the formula"
-	case len(facts.Merged) > 0:
-		return "has merged cells in " + facts.Merged[0].String() + ". Unmerge them"
+	}
+	for merged := range facts.Merged.All() {
+		return "has merged cells in " + merged.String() + ". Unmerge them"
 	}
 	return ""
 }

@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"errors"
 	"fmt"
+	"iter"
 	"slices"
 	"strings"
 )
@@ -325,17 +326,25 @@ func (p *planner) growDimension() {
 // refuse finds edits inside the range of an array formula, or inside a merged
 // range other than at its first cell.
 func (p *planner) refuse(facts *SheetFacts) error {
-	if err := p.refuseIn(facts.Merged, true, "the cell lies inside the merged range %s", "write to its first cell, or unmerge the range"); err != nil {
+	if err := p.refuseIn(facts.Merged.All(), true, "the cell lies inside the merged range %s", "write to its first cell, or unmerge the range"); err != nil {
 		return err
 	}
-	return p.refuseIn(facts.Arrays, false, "the cell lies in the range %s of one array formula", "leave it out, or delete the formula first")
+	return p.refuseIn(slices.Values(facts.Arrays), false, "the cell lies in the range %s of one array formula", "leave it out, or delete the formula first")
 }
 
 // refuseIn goes down the rows with edits and keeps the ranges that reach the
 // row. Ranges that do not overlap, as in every sound sheet, are no more than a
 // row has columns.
-func (p *planner) refuseIn(list []Range, first bool, reason, advice string) error {
-	list = slices.Clone(list)
+func (p *planner) refuseIn(all iter.Seq[Range], first bool, reason, advice string) error {
+	if len(p.rows) == 0 {
+		return nil
+	}
+	var list []Range
+	for r := range all {
+		if r.FirstRow <= p.rows[len(p.rows)-1].row && r.LastRow >= p.rows[0].row {
+			list = append(list, r)
+		}
+	}
 	slices.SortFunc(list, func(a, b Range) int { return cmp.Compare(a.FirstRow, b.FirstRow) })
 	var reach []Range
 	for _, row := range p.rows {

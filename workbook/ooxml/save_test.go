@@ -247,7 +247,7 @@ func TestSecondReaderReadsWhatIsWritten(t *testing.T) {
 		}
 		return nil
 	})
-	if err != nil || facts.Rows != 50 || facts.Formulas != 1 || len(facts.Merged) != 1 {
+	if err != nil || facts.Rows != 50 || facts.Formulas != 1 || facts.Merged.Len() != 1 {
 		t.Errorf("facts %+v (%v)", facts, err)
 	}
 	out, _ := write(t, b, Changes{Sheets: newSheets, Recalculate: true, Edits: map[int][]Edit{0: {cellEdit("B2", NumberValue(0.1234567890123456)), cellEdit("H1", TextValue(" <&>\n_x0041_")), cellEdit("Z60", BoolValue(true)), cellEdit("A3", EmptyValue())}}})

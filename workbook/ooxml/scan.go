@@ -87,7 +87,7 @@ type SheetFacts struct {
 	LastCol    int     // the last column with a value or a formula, 0 if there is none
 	HiddenRows int     // filled rows that are hidden
 	Formulas   int     // cells with a formula
-	Merged     []Range // merged ranges
+	Merged     Ranges  // merged ranges
 	Arrays     []Range // ranges that one array formula or data table fills
 	AutoFilter *Range  // the filtered range, nil without one
 	Protected  bool    // the sheet is protected
@@ -285,7 +285,7 @@ func (s *scanner) mergedRange() error {
 	if !ok {
 		return s.wrong("a merged range is %.40q", ref)
 	}
-	s.facts.Merged = append(s.facts.Merged, r)
+	s.facts.Merged.add(r)
 	return nil
 }
 

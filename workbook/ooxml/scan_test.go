@@ -233,7 +233,7 @@ func TestScanFacts(t *testing.T) {
 	filter := facts.AutoFilter
 	facts.AutoFilter = nil
 	want := SheetFacts{Rows: 4, LastRow: 7, LastCol: 5, HiddenRows: 1, Formulas: 3, Protected: true,
-		Merged: []Range{{1, 1, 2, 2}, {4, 4, 5, 4}}, Arrays: []Range{{6, 3, 8, 3}, {7, 5, 9, 6}}}
+		Merged: rangesOf(Range{1, 1, 2, 2}, Range{4, 4, 5, 4}), Arrays: []Range{{6, 3, 8, 3}, {7, 5, 9, 6}}}
 	if fmt.Sprintf("%+v", facts) != fmt.Sprintf("%+v", want) {
 		t.Errorf("facts\n%+v\nwant\n%+v", facts, want)
 	}
@@ -344,5 +344,30 @@ func TestScanKeepsTextsUntilTheRowEnds(t *testing.T) {
 	}
 	if checked != 400 {
 		t.Errorf("%d cells, want 400", checked)
+	}
+}
+
+func rangesOf(list ...Range) Ranges {
+	var r Ranges
+	for _, a := range list {
+		r.add(a)
+	}
+	return r
+}
+
+func TestRangesKeepTheirOrderOverAllPieces(t *testing.T) {
+	var r Ranges
+	for i := range 3*rangesInPiece + 5 {
+		r.add(Range{FirstRow: i})
+	}
+	want := 0
+	for a := range r.All() {
+		if a.FirstRow != want {
+			t.Fatalf("range %d comes at place %d", a.FirstRow, want)
+		}
+		want++
+	}
+	if want != r.Len() || want != 3*rangesInPiece+5 {
+		t.Errorf("%d ranges, Len says %d", want, r.Len())
 	}
 }
