@@ -105,7 +105,11 @@ func (p *Plan) findSheets(ctx context.Context) error {
 	for _, name := range p.options.Sheets {
 		i := slices.IndexFunc(own.places, func(pl Place) bool { return pl.Kind == Sheet && fold(pl.Name) == fold(name) })
 		if i < 0 {
-			return &funcs.UnknownError{What: "sheet", Name: name, Closest: funcs.Closest(name, own.names(Sheet))}
+			unknown := &funcs.UnknownError{What: "sheet", Name: name, Closest: funcs.Closest(name, own.names(Sheet))}
+			if len(unknown.Closest) == 0 {
+				return fmt.Errorf("%w; its sheets are %s", unknown, few(own.names(Sheet)))
+			}
+			return unknown
 		}
 		named[own.places[i].Name] = true
 	}

@@ -65,6 +65,10 @@ func TestCalculationSheetsAreFoundByNameMarkAndWish(t *testing.T) {
 	if !errors.As(err, &unknown) || len(unknown.Closest) == 0 || unknown.Closest[0] != "Wished" {
 		t.Errorf("an unknown sheet gives %v", err)
 	}
+	_, err = NewPlan(context.Background(), src, Options{Sheets: []string{"Nothing like them"}})
+	if !errors.As(err, &unknown) || !strings.Contains(err.Error(), "; its sheets are ") {
+		t.Errorf("a sheet unlike all others gives %v", err)
+	}
 }
 
 func TestEachSheetIsReadOnceForAllCalculations(t *testing.T) {

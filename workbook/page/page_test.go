@@ -260,7 +260,7 @@ func TestAHundredThousandValuesStayASmallPage(t *testing.T) {
 
 func TestManyCalculationsMakeAPageInTime(t *testing.T) {
 	if testing.Short() {
-		t.Skip("long")
+		t.Skip("works out 400 calculations")
 	}
 	rows := [][]any{{"work out", "label", "sample", "second-sample", "sd", "half-width", "difference", "first-sd", "> n", "> note"}}
 	for i := range 400 {

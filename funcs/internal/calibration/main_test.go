@@ -10,7 +10,7 @@ import (
 
 func TestTheTableIsUpToDate(t *testing.T) {
 	if testing.Short() {
-		t.Skip("some 5 seconds")
+		t.Skip("draws every sample of the table")
 	}
 	want, err := page(samples)
 	if err != nil {
