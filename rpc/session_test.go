@@ -170,7 +170,7 @@ func TestResultsThatJSONCannotHoldAreOurFault(t *testing.T) {
 }
 
 func TestOrderIsKeptBetweenChangesAndQuestions(t *testing.T) {
-	c := begin(t, Options{})
+	c := begin(t, Options{Limits: Limits{Queue: 2000}}) // room for all, however slow the workers
 	c.initialize()
 	go func() {
 		var b strings.Builder
