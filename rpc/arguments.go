@@ -44,12 +44,6 @@ func (q *question) long() bool {
 
 const quickNumbers = 1000
 
-// straight reports that the arguments go straight into a law of probability,
-// where the ends of a domain may take long; data do not come near them.
-func (q *question) straight() bool {
-	return q.function.Family == "normal" || q.function.Family == "counts"
-}
-
 func numbersIn(v Value) int {
 	n := len(v.Numbers)
 	for _, m := range v.Members {

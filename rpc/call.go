@@ -22,13 +22,13 @@ type Call struct {
 	key  string // under which it can be cancelled; "" where it cannot
 	came time.Time
 
-	// Of calls left to a worker:
-	ctx     context.Context
-	cancel  context.CancelFunc
-	abandon context.CancelFunc // of work begun in turn; nil where there is none
-	run     later
-	place   *list.Element // in the queue; nil once taken
-	size    int
+	// Of calls left to a worker, or that became long:
+	listed bool // among the session's calls
+	ctx    context.Context
+	cancel context.CancelFunc
+	run    later
+	place  *list.Element // in the queue; nil once taken
+	size   int
 
 	mu       sync.Mutex // answered and progress
 	answered bool

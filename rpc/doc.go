@@ -8,8 +8,9 @@
 //     came. A message that cannot be read is answered with id null, and the
 //     connection goes on at the next Content-Length line.
 //   - Messages are taken in the order of arrival. Notifications and quick calls
-//     run to their end before the next message is looked at; long calls run on
-//     a few workers, from what their handler captured while it was still in turn.
+//     run to their end before the next message is looked at (soon.go: unless one
+//     turns out not to be quick); long calls run on a few workers, from what their
+//     handler captured while it was still in turn.
 //   - A result never holds NaN or an infinite number, an error never has code 0.
 //
 // The questions (functions.go) go through arguments.go, which turns JSON into
@@ -30,7 +31,7 @@
 // PROTOCOL.md describes all of it from outside, openrpc.json for programs.
 //
 // A message passes, in this order: frames.go (bytes to bodies), envelope.go (a
-// body to its members), transport.go (one message for the library, or an answer
-// to a faulty one), session.go (life cycle, order, cancelling), a handler of the
+// body to its members), transport.go (a reply of the client's to the library, or an
+// answer to a faulty message), session.go (life cycle, order, cancelling), a handler of the
 // table in methods.go, and writer.go (the reply to bytes).
 package rpc

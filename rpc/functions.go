@@ -93,7 +93,7 @@ type answerParams struct {
 // quickBytes is how long the params may be that are read in turn.
 const quickBytes = 32 << 10
 
-func answer(ctx context.Context, call *Call) (any, error) {
+func answer(_ context.Context, call *Call) (any, error) {
 	open := call.Session.books
 	read := func() (*question, error) {
 		var p answerParams
@@ -116,13 +116,10 @@ func answer(ctx context.Context, call *Call) (any, error) {
 		return nil, err
 	}
 	work := func(ctx context.Context) (any, error) { return call.outcome(ctx, q) }
-	switch {
-	case q.long():
+	if q.long() {
 		return Later(work)
-	case q.straight():
-		return call.soon(q.function.Name, work)
 	}
-	return work(ctx)
+	return call.soon(q.function.Name, work)
 }
 
 // ask makes a question of the members of a call, which lie at pointer.

@@ -70,13 +70,11 @@ func (p *pool) work(call *Call) {
 	}
 }
 
-// begun takes up a worker for a call whose work goes on already, also where
-// that makes one too many.
-func (p *pool) begun(call *Call) {
+// begun counts a worker more, also where that makes one too many.
+func (p *pool) begun() {
 	p.mu.Lock()
 	p.workers++
 	p.mu.Unlock()
-	go p.work(call)
 }
 
 // finish runs what a call has left, and answers it.
@@ -85,8 +83,14 @@ func (c *Call) finish() {
 	if rest, ok := result.(later); ok && err == nil {
 		result, err = c.guard(func() (any, error) { return rest(c.ctx) })
 	}
+	c.settle(result, err)
+}
+
+// settle answers a call whose work has come to its end. What was worked out
+// after a cancel counts for nothing.
+func (c *Call) settle(result any, err error) {
 	if err == nil && context.Cause(c.ctx) != nil {
-		err = errCancelled // what was worked out after a cancel counts for nothing
+		err = errCancelled
 	}
 	c.answer(result, err, false)
 }

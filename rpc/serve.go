@@ -55,11 +55,11 @@ func Serve(ctx context.Context, in io.Reader, out, errw io.Writer, opts Options)
 	s.stream = newStream(in, s)
 	// The library's context is not ctx: it would close the connection before
 	// the calls under way have been answered.
-	s.conn = jsonrpc2.NewConn(context.WithoutCancel(ctx), s.stream, s, jsonrpc2.SetLogger(remarks))
+	s.conn = jsonrpc2.NewConn(context.WithoutCancel(ctx), s.stream, s.stream, jsonrpc2.SetLogger(remarks))
 	if opts.began != nil {
 		opts.began(s)
 	}
-	close(s.stream.ready)
+	go s.stream.read()
 	select {
 	case <-s.ended:
 	case <-ctx.Done():

@@ -48,8 +48,9 @@ type Session struct {
 	others  int        // work that Go has begun
 	settled *sync.Cond // unsent or others has fallen, or waiting for them is over
 	pool    pool
+	turn    turn
 
-	runaways atomic.Int32 // works begun in turn that go on by themselves
+	runaways atomic.Int32 // works that have outlasted their turn and go on
 }
 
 type phase uint8
@@ -70,6 +71,7 @@ func newSession(ctx context.Context, out *frameWriter, remarks *remarks, opts Op
 	s.settled = sync.NewCond(&s.mu)
 	s.ctx, s.stop = context.WithCancel(ctx)
 	s.pool.limits = s.limits
+	s.turn = turn{session: s, wait: opts.waitInTurn}
 	for i := range opts.Methods {
 		m := &opts.Methods[i]
 		s.methods[m.Name] = m
@@ -78,25 +80,20 @@ func newSession(ctx context.Context, out *frameWriter, remarks *remarks, opts Op
 	return s
 }
 
-// Handle is called by the library with what the stream gave it: the mark of a
-// message that the stream holds.
-func (s *Session) Handle(_ context.Context, _ *jsonrpc2.Conn, req *jsonrpc2.Request) {
-	e, ok := s.stream.take(req.Method)
-	if !ok {
-		s.remarks.say("a message was lost between stream and session")
-		return
-	}
+// handle runs a request or notification, as far as it is run in turn, and
+// reports whether this goroutine is to read on.
+func (s *Session) handle(e envelope) (readsOn bool) {
 	call := &Call{Method: e.method, Params: json.RawMessage(e.params), Session: s, id: e.id, key: idKey(e.id), came: time.Now()}
 	method := s.methods[e.method]
 	if call.id == nil {
 		s.notified(call, method)
-		return
+		return true
 	}
 	if refusal := s.refusal(call, method); refusal != nil {
 		call.answer(nil, refusal, true)
-		return
+		return true
 	}
-	s.start(call, method)
+	return s.start(call, method)
 }
 
 // notified runs a notification to its end. None is ever answered.
@@ -162,44 +159,53 @@ func (s *Session) byName(call *Call, method *Method) (any, error) {
 }
 
 // start runs a request in turn, or as far as its handler wants and the rest by a worker.
-func (s *Session) start(call *Call, method *Method) {
-	run, begun := later(func(ctx context.Context) (any, error) { return s.byName(call, method) }), false
+func (s *Session) start(call *Call, method *Method) (readsOn bool) {
+	run := later(func(ctx context.Context) (any, error) { return s.byName(call, method) })
 	if !method.Long {
 		result, err := call.guard(func() (any, error) { return run(s.ctx) })
 		switch rest := result.(type) {
 		case later:
 			run = rest
-		case ongoing:
-			run, begun = later(rest), true
+		case left:
+			return false
 		default:
 			call.answer(result, err, true)
-			return
+			return true
 		}
 	}
-	s.mu.Lock()
-	if s.phase == over { // ended by another goroutine meanwhile, which will not see this call
-		s.mu.Unlock()
+	ctx, cancel := context.WithCancel(s.ctx)
+	switch {
+	case !s.enlist(call, run, ctx, cancel):
 		call.answer(nil, errEnding, true)
-		return
+	case !s.pool.add(call):
+		call.answer(nil, &Error{Code: CodeServerCancelled, Message: fmt.Sprintf("%d long calls are waiting already; send this one again when some have been answered.", s.limits.Queue)}, true)
 	}
-	call.run, call.size = run, len(call.Params)
-	call.ctx, call.cancel = context.WithCancel(s.ctx)
+	return true
+}
+
+// enlist counts a call among those under way, where it can be cancelled. It
+// fails if the session has been ended by another goroutine, which will not see
+// this call.
+func (s *Session) enlist(call *Call, run later, ctx context.Context, cancel context.CancelFunc) bool {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if s.phase == over {
+		cancel()
+		return false
+	}
+	call.listed, call.run, call.size = true, run, len(call.Params)
+	call.ctx, call.cancel = ctx, cancel
 	s.calls[call] = struct{}{}
 	if call.key != "" {
 		s.byKey[call.key] = call
 	}
 	s.unsent++
-	s.mu.Unlock()
-	if begun {
-		s.pool.begun(call)
-	} else if !s.pool.add(call) {
-		call.answer(nil, &Error{Code: CodeServerCancelled, Message: fmt.Sprintf("%d long calls are waiting already; send this one again when some have been answered.", s.limits.Queue)}, true)
-	}
+	return true
 }
 
 // forget frees the id of a call whose reply is about to be queued.
 func (s *Session) forget(call *Call) {
-	if call.run == nil {
+	if !call.listed {
 		return
 	}
 	s.mu.Lock()
@@ -209,14 +215,11 @@ func (s *Session) forget(call *Call) {
 	}
 	s.mu.Unlock()
 	call.cancel()
-	if call.abandon != nil {
-		call.abandon()
-	}
 }
 
 // sent is told of a call whose reply has been queued.
 func (s *Session) sent(call *Call) {
-	if call.run == nil {
+	if !call.listed {
 		return
 	}
 	s.mu.Lock()

@@ -2,63 +2,110 @@ package rpc
 
 import (
 	"context"
-	"sync/atomic"
+	"sync"
 	"time"
 )
 
 // waitInTurn is how long messages wait for an answer that should be quick.
 const waitInTurn = 50 * time.Millisecond
 
-// ongoing is the rest of a call whose work has begun in turn and goes on by
-// itself: it waits for no worker.
-type ongoing later
+// left is the result of a call whose work outlasted its turn: the goroutine
+// that did it has answered the call, and does not read messages any more.
+type left struct{}
 
-// soon does quick work in turn. Work that turns out long, as for an argument at
-// the end of its domain, or on a machine with too much to do, goes on by itself
-// and answers when it has come to its end: no argument keeps the server from
-// reading on. It costs some 20 microseconds more than to do the work outright.
-// While as many are going on as there are workers, work of a kind that was long
-// once is left to a worker.
+// soon does quick work in turn. If it turns out long, as for an argument at the
+// end of its domain, or on a machine with too much to do, another goroutine
+// reads on, and this one answers the call when the work has come to its end: no
+// argument keeps the server from reading. While as many works of that sort go on
+// as there are workers, work of a kind that was long once is left to a worker.
 func (c *Call) soon(kind string, work func(ctx context.Context) (any, error)) (any, error) {
 	s := c.Session
 	if s.slow[kind] && int(s.runaways.Load()) >= s.limits.Workers {
 		return Later(work)
 	}
-	ctx, cancel := context.WithCancel(s.ctx)
-	type answer struct {
-		result any
-		err    error
-	}
-	done := make(chan answer, 1)
-	var settled atomic.Bool // whether it is known which came first, the end of the work or that of the wait
-	go func() {
-		result, err := c.guard(func() (any, error) { return work(ctx) })
-		if !settled.CompareAndSwap(false, true) {
-			s.runaways.Add(-1)
-		}
-		done <- answer{result, err}
-	}()
-	timer := time.NewTimer(s.options.waitInTurn)
-	defer timer.Stop()
-	select {
-	case a := <-done:
-		cancel()
+	w := &inTurn{call: c, kind: kind, since: time.Now()}
+	w.ctx, w.cancel = context.WithCancel(s.ctx)
+	s.turn.begin(w)
+	result, err := c.guard(func() (any, error) { return work(w.ctx) })
+	if s.turn.end(w) {
+		w.cancel()
 		delete(s.slow, kind)
-		return a.result, a.err
-	case <-timer.C:
+		return result, err
 	}
-	s.runaways.Add(1)
-	if !settled.CompareAndSwap(false, true) {
-		s.runaways.Add(-1)
+	s.runaways.Add(-1)
+	c.settle(result, err)
+	s.pool.work(s.pool.take())
+	return left{}, nil
+}
+
+// inTurn is work that is done by the goroutine that reads messages.
+type inTurn struct {
+	call   *Call
+	kind   string
+	since  time.Time
+	ctx    context.Context
+	cancel context.CancelFunc
+}
+
+// turn watches the work that is done in turn. Looking at it now and then costs
+// less than a timer, or a goroutine, for each.
+type turn struct {
+	session *Session
+	wait    time.Duration
+
+	mu      sync.Mutex
+	work    *inTurn // nil between works
+	looking bool    // look will be called
+}
+
+func (t *turn) begin(w *inTurn) {
+	t.mu.Lock()
+	defer t.mu.Unlock()
+	t.work = w
+	if !t.looking {
+		t.looking = true
+		time.AfterFunc(t.wait, t.look)
 	}
-	s.slow[kind] = true
-	c.abandon = cancel
-	return ongoing(func(ctx context.Context) (any, error) {
-		select {
-		case a := <-done:
-			return a.result, a.err
-		case <-ctx.Done():
-			return nil, ctx.Err()
+}
+
+// end reports whether messages were kept waiting for the work to its end.
+func (t *turn) end(w *inTurn) bool {
+	t.mu.Lock()
+	defer t.mu.Unlock()
+	kept := t.work == w
+	if kept {
+		t.work = nil
+	}
+	return kept
+}
+
+// look reads messages on in the place of a goroutine whose work lasts too long.
+func (t *turn) look() {
+	t.mu.Lock()
+	w := t.work
+	if w != nil {
+		if rest := t.wait - time.Since(w.since); rest > 0 {
+			time.AfterFunc(rest, t.look)
+			t.mu.Unlock()
+			return
 		}
-	}), nil
+		t.work = nil
+		t.session.outlasted(w)
+	}
+	t.looking = false
+	t.mu.Unlock()
+	if w != nil {
+		t.session.stream.read()
+	}
+}
+
+// outlasted makes a long call of one whose work was begun in turn. The goroutine
+// at work on it counts as a worker, also where that makes one too many.
+func (s *Session) outlasted(w *inTurn) {
+	s.slow[w.kind] = true
+	s.runaways.Add(1)
+	s.pool.begun()
+	if !s.enlist(w.call, nil, w.ctx, w.cancel) {
+		w.call.answer(nil, errEnding, false)
+	}
 }

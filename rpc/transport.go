@@ -2,6 +2,7 @@ package rpc
 
 import (
 	"bytes"
+	"context"
 	"encoding/json"
 	"errors"
 	"io"
@@ -10,29 +11,22 @@ import (
 	"github.com/sourcegraph/jsonrpc2"
 )
 
-// stream is the library's ObjectStream over our frames. It shows the library
-// only what the library handles rightly:
-//   - of a request or notification a mark, in the place of its method; the session takes the message itself
-//     from the stream, with id and params as they came. (The library would close
-//     the connection on a fractional id or a batch, take id null for a
-//     notification, echo -1 as 18446744073709551615 and re-encode the params.)
-//   - replies to calls of ours, once checked.
-//
-// Faulty messages are answered here and never reach it. What the library sends,
-// calls and notifications of ours, goes through the one writer.
+// stream is the library's ObjectStream over our frames. The library keeps the
+// calls and notifications of ours: what it sends goes through the one writer, and
+// it reads the replies, once checked. Requests and notifications of the client go
+// to the session as they came. (The library would close the connection on a
+// fractional id or a batch, take id null for a notification, echo -1 as
+// 18446744073709551615 and re-encode the params.) Faulty messages are answered
+// here.
 type stream struct {
 	session *Session
 	frames  *frameReader
 	split   splitter
-	ready   chan struct{} // closed when the session may be used
-
-	seq     uint64
-	waiting bool // current has not been taken
-	current envelope
+	replies chan []byte
 }
 
 func newStream(in io.Reader, session *Session) *stream {
-	s := &stream{session: session, ready: make(chan struct{})}
+	s := &stream{session: session, replies: make(chan []byte)}
 	s.frames = newFrameReader(flushingReader{in, session.writer}, session.limits)
 	s.split.maxDepth = session.limits.Depth
 	return s
@@ -49,19 +43,20 @@ func (r flushingReader) Read(p []byte) (int, error) {
 	return r.in.Read(p)
 }
 
-// ReadObject gives the library its next message. At the end of the input it
-// returns only after what is under way has been answered or given up.
-func (s *stream) ReadObject(v any) error {
-	<-s.ready
+// read reads messages until no more come, or another goroutine reads on. At the
+// end of the input it returns only after what is under way has been answered or
+// given up.
+func (s *stream) read() {
 	for {
 		s.session.writer.waitRoom(s.session.limits.UnsentBytes)
 		if s.session.now() == over {
-			return io.EOF
+			return
 		}
 		body, fault, err := s.frames.next()
 		switch {
 		case err != nil:
-			return s.ended(err)
+			s.ended(err)
+			return
 		case fault != nil:
 			if fault.headerless {
 				s.session.remarks.say("%s", wantHeader)
@@ -69,51 +64,54 @@ func (s *stream) ReadObject(v any) error {
 				s.session.remarks.say("%s", fault.Message)
 			}
 			s.session.answerFault(nil, fault.Error)
-			continue
-		}
-		if mark := s.message(body); mark != nil {
-			if err := v.(json.Unmarshaler).UnmarshalJSON(mark); err != nil {
-				s.session.remarks.say("a message could not be handed on: %v", err)
-				continue
-			}
-			return nil
+		case !s.message(body):
+			return
 		}
 	}
 }
 
-// message reads a body and gives what the library is to see of it, or nil.
-func (s *stream) message(body []byte) []byte {
+// message hands on what a body holds, and reports whether to read on.
+func (s *stream) message(body []byte) (readsOn bool) {
 	e, fault := s.split.split(body)
 	switch {
 	case fault != nil && e.reply:
 		s.session.remarks.say("a reply could not be read: %s", fault.Message)
-		return nil
+		return true
 	case fault != nil:
 		if fault.Code == CodeParse {
 			s.frames.spoilt(body)
 		}
 		s.session.answerFault(e.id, fault)
-		return nil
-	case e.reply:
-		reply, err := checkedReply(e)
-		if err != nil {
-			s.session.remarks.say("a reply was passed over: %v", err)
-		}
-		return reply
+		return true
+	case !e.reply:
+		return s.session.handle(e)
 	}
-	s.seq++
-	s.current, s.waiting = e, true
-	return append(strconv.AppendUint([]byte(`{"method":"`), s.seq, 10), `"}`...)
+	reply, err := checkedReply(e)
+	if err != nil {
+		s.session.remarks.say("a reply was passed over: %v", err)
+		return true
+	}
+	select {
+	case s.replies <- reply:
+	case <-s.session.ended:
+	}
+	return true
 }
 
-// take gives the message of a mark, once.
-func (s *stream) take(mark string) (envelope, bool) {
-	if !s.waiting || mark != strconv.FormatUint(s.seq, 10) {
-		return envelope{}, false
+// ReadObject gives the library its next message, which is a reply.
+func (s *stream) ReadObject(v any) error {
+	for {
+		select {
+		case reply := <-s.replies:
+			err := v.(json.Unmarshaler).UnmarshalJSON(reply)
+			if err == nil {
+				return nil
+			}
+			s.session.remarks.say("a reply could not be handed on: %v", err)
+		case <-s.session.ended:
+			return io.EOF
+		}
 	}
-	e := s.current
-	s.current, s.waiting = envelope{}, false
-	return e, true
 }
 
 // checkedReply gives a reply in the form that the library reads without fault.
@@ -146,7 +144,7 @@ func checkedReply(e envelope) ([]byte, error) {
 }
 
 // ended is told why no more input comes.
-func (s *stream) ended(err error) error {
+func (s *stream) ended(err error) {
 	switch {
 	case err == io.ErrUnexpectedEOF:
 		s.session.remarks.say("the input ended inside a message")
@@ -154,7 +152,6 @@ func (s *stream) ended(err error) error {
 		s.session.remarks.say("the input cannot be read any more: %v", err)
 	}
 	s.session.inputEnded()
-	return io.EOF
 }
 
 // WriteObject sends a call or notification that the library has made.
@@ -165,6 +162,9 @@ func (s *stream) WriteObject(v any) error {
 	}
 	return s.session.writer.send(body)
 }
+
+// Handle would run a request that the library has read: there is none.
+func (s *stream) Handle(context.Context, *jsonrpc2.Conn, *jsonrpc2.Request) {}
 
 // Close is called by the library; input and output belong to Serve's caller.
 func (s *stream) Close() error { return nil }

@@ -265,16 +265,23 @@ func (p *valueParser) object(pointer string) (Value, error) {
 
 // onceEach finds fault with a member that stands twice.
 func (v *Value) onceEach() {
-	if len(v.Members) < 2 {
-		return
+	const few = 8 // are compared with each other for less than a map costs
+	var seen map[string]bool
+	if len(v.Members) > few {
+		seen = make(map[string]bool, len(v.Members))
 	}
-	seen := make(map[string]bool, len(v.Members))
 	for i := range v.Members {
 		m := &v.Members[i]
-		if seen[m.Name] {
+		twice := seen[m.Name]
+		for j := 0; seen == nil && j < i && !twice; j++ {
+			twice = v.Members[j].Name == m.Name
+		}
+		if twice {
 			m.Value.Fault = badParams(m.Value.Pointer, m.Name, "is given twice", "give each member once")
 			v.take(m.Value.Fault)
 		}
-		seen[m.Name] = true
+		if seen != nil {
+			seen[m.Name] = true
+		}
 	}
 }
