@@ -52,7 +52,7 @@ type lexer struct {
 
 // blockSize is how much of a part is in memory at once, as long as no single
 // tag or text is longer.
-const blockSize = 512 << 10
+const blockSize = 128 << 10
 
 // padding is how many zeros follow the last byte, so that the fast paths may
 // look a few bytes ahead without asking whether there are any.

@@ -62,13 +62,14 @@ func MedianIn(v []float64) float64 {
 // ascending order; the values stay as they are. k is at most their number.
 func Farthest(v []float64, centre float64, k int) []float64 {
 	distance := func(x float64) float64 { return math.Abs(x - centre) }
-	least := math.Inf(-1)
+	least, room := math.Inf(-1), len(v)
 	if len(v) >= fewFrom {
+		room = 2 * k
 		s := sampleOf(v, distance)
 		above := float64(k) / float64(len(v)) * float64(len(s))
 		least = s[max(0, len(s)-1-int(above+4*math.Sqrt(above)+8))]
 	}
-	far := make([]float64, 0, 2*k)
+	far := make([]float64, 0, room)
 	for _, x := range v {
 		if d := distance(x); d >= least {
 			far = append(far, d)
