@@ -24,7 +24,7 @@ func TestThePageHasEveryFigure(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	for _, want := range []string{"Measured on ", "| 10,000 × 5 | ", "| many short ones | ", "| one long list | ", "| without the automatic cautions | ", "| with them | ",
+	for _, want := range []string{"Measured on ", "| 10,000 × 5, beside the data | ", "| many short ones | ", "| one long list | ", "| without the automatic cautions | ", "| with them | ",
 		"| rows of a data sheet | 1,000 |", "| rows of a data file (csv) |", "| questions | 10 |", "| files | 10 |"} {
 		if !strings.Contains(page, want) {
 			t.Errorf("the page has no %q:\n%s", want, page)

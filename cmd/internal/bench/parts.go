@@ -8,119 +8,7 @@ import (
 	"path/filepath"
 	"strconv"
 	"strings"
-
-	"github.com/xuri/excelize/v2"
 )
-
-var depots = []string{"North", "Quay", "Mill", "Fell"}
-
-// book writes a workbook of trips, so many rows by so many columns, with so many
-// questions on a calculation sheet.
-func (b *bench) book(path string, rows, columns, questions int) error {
-	f := excelize.NewFile()
-	defer f.Close()
-	if err := f.SetSheetName("Sheet1", "Trips"); err != nil {
-		return err
-	}
-	if _, err := f.NewSheet("Calculations"); err != nil {
-		return err
-	}
-	random := rand.New(rand.NewPCG(1, 1))
-	write := func(sheet string, lines int, line func(i int) []any) error {
-		w, err := f.NewStreamWriter(sheet)
-		if err != nil {
-			return err
-		}
-		for i := range lines {
-			if err := w.SetRow(fmt.Sprintf("A%d", i+1), line(i)); err != nil {
-				return err
-			}
-		}
-		return w.Flush()
-	}
-	err := write("Trips", rows+1, func(i int) []any {
-		row := make([]any, columns)
-		for c := range row {
-			switch {
-			case i == 0:
-				row[c] = append([]string{"depot", "minutes", "cost"}, strings.Fields(strings.Repeat("other ", columns))...)[c]
-				if c > 2 {
-					row[c] = fmt.Sprintf("other %d", c)
-				}
-			case c == 0:
-				row[c] = depots[random.IntN(4)]
-			case c == 1:
-				row[c] = float64(random.IntN(6000)) / 100
-			default:
-				row[c] = random.NormFloat64()
-			}
-		}
-		return row
-	})
-	if err != nil {
-		return err
-	}
-	err = write("Calculations", questions+1, func(i int) []any {
-		if i == 0 {
-			return []any{"work out", "sample", "> mean", "> lower", "> upper", "> status"}
-		}
-		sample := []string{"minutes", "cost"}[i%2] + " in Trips"
-		if i > questions/2 {
-			sample += " where depot = " + depots[i%4]
-		}
-		return []any{"mean-interval", sample, nil, nil, nil, nil}
-	})
-	if err != nil {
-		return err
-	}
-	return f.SaveAs(path)
-}
-
-func (b *bench) fill(path ...string) job {
-	return job{program: b.program, args: append([]string{"fill", "--replace", "--format", "csv"}, path...), status: 1} // a small sample may refuse a row
-}
-
-// workbooks measures a fill of forty calculations over two columns.
-func (b *bench) workbooks(page *strings.Builder) error {
-	fmt.Fprint(page, "## Filling a workbook\n\nForty intervals over two columns, of all rows and of one depot's, written beside the questions. The floor only inflates the data\n"+
-		"sheet. The library is excelize, which only reads all rows and writes the cells; the script does the same intervals with openpyxl\nand scipy.\n\n"+
-		"| rows × columns | fill / inflating | library / fill | script / fill |\n| --- | ---: | ---: | ---: |\n")
-	scripted := b.hasPython("openpyxl", "scipy")
-	code := b.file(".py")
-	if err := os.WriteFile(code, []byte(script), 0o600); err != nil {
-		return err
-	}
-	for _, size := range []struct{ rows, columns int }{{5_000, 6}, {100_000, 10}, {1_000_000, 5}} {
-		path := b.file(".xlsx")
-		if err := b.book(path, size.rows/b.scale, size.columns, 40); err != nil {
-			return err
-		}
-		fill := b.fill(path)
-		floor, err := b.ratio(b.pairs, fill, as("inflate", path))
-		if err != nil {
-			return err
-		}
-		few := 3
-		if size.rows > 200_000 {
-			few = 1
-		}
-		library, err := b.ratio(few, as("excelize", path), fill)
-		if err != nil {
-			return err
-		}
-		by := "not measured"
-		if scripted && size.rows <= 200_000 {
-			ratio, err := b.ratio(1, job{program: b.python, args: []string{code, path}}, fill)
-			if err != nil {
-				return err
-			}
-			by = figure(ratio)
-		}
-		fmt.Fprintf(page, "| %s × %d | %s | %s | %s |\n", thousands(size.rows/b.scale), size.columns, figure(floor), figure(library), by)
-	}
-	page.WriteByte('\n')
-	return nil
-}
 
 // server measures requests that arrive all at once, and a long list.
 func (b *bench) server(page *strings.Builder) error {
@@ -158,7 +46,7 @@ func (b *bench) server(page *strings.Builder) error {
 		if err != nil {
 			return err
 		}
-		by := "not measured"
+		by := notMeasured
 		if b.hasPython("json") {
 			ratio, err := b.ratio(b.pairs, server, job{program: b.python, args: []string{code}, input: s.input})
 			if err != nil {
@@ -230,7 +118,7 @@ func (b *bench) growth(page *strings.Builder) error {
 	}{
 		{"rows of a data sheet", 10, []int{1_000, 10_000, 100_000, 1_000_000}, func(n int) ([]string, error) {
 			path := b.file(".xlsx")
-			return []string{path}, b.book(path, n, 5, 10)
+			return []string{path}, book(path, layout{rows: n, columns: 5, questions: 10})
 		}},
 		{"rows of a data file (csv)", 10, []int{1_000, 10_000, 100_000, 1_000_000}, func(n int) ([]string, error) {
 			path := b.file(".calculations.csv")
@@ -238,7 +126,7 @@ func (b *bench) growth(page *strings.Builder) error {
 		}},
 		{"questions", 1, []int{10, 100, 1_000, 10_000}, func(n int) ([]string, error) {
 			path := b.file(".xlsx")
-			return []string{path}, b.book(path, 1_000, 5, n)
+			return []string{path}, book(path, layout{rows: 1_000, columns: 5, questions: n})
 		}},
 		{"files", 1, []int{10, 30, 100, 300}, func(n int) ([]string, error) {
 			dir := b.file("")
@@ -246,7 +134,7 @@ func (b *bench) growth(page *strings.Builder) error {
 				return nil, err
 			}
 			for i := range n {
-				if err := b.book(filepath.Join(dir, fmt.Sprintf("book-%03d.xlsx", i)), 200, 5, 10); err != nil {
+				if err := book(filepath.Join(dir, fmt.Sprintf("book-%03d.xlsx", i)), layout{rows: 200, columns: 5, questions: 10}); err != nil {
 					return nil, err
 				}
 			}

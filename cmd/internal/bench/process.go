@@ -58,6 +58,26 @@ func as(role string, args ...string) job {
 
 // seconds runs a job and gives its processor time.
 func (j job) seconds() (float64, error) {
+	state, err := j.run()
+	if err != nil {
+		return 0, err
+	}
+	return (state.UserTime() + state.SystemTime()).Seconds(), nil
+}
+
+// peak runs a job and gives its largest memory in MiB.
+func (j job) peak() (string, error) {
+	state, err := j.run()
+	if err != nil {
+		return "", err
+	}
+	if mib := peakMiB(state); mib > 0 {
+		return figure(mib), nil
+	}
+	return notMeasured, nil
+}
+
+func (j job) run() (*os.ProcessState, error) {
 	c := exec.Command(j.program, j.args...)
 	if j.role != "" {
 		c.Env = append(os.Environ(), roleVariable+"="+j.role)
@@ -65,7 +85,7 @@ func (j job) seconds() (float64, error) {
 	if j.input != "" {
 		in, err := os.Open(j.input)
 		if err != nil {
-			return 0, err
+			return nil, err
 		}
 		defer in.Close()
 		c.Stdin = in
@@ -73,9 +93,9 @@ func (j job) seconds() (float64, error) {
 	var said strings.Builder
 	c.Stderr = &said
 	if err := c.Run(); err != nil && c.ProcessState.ExitCode() != j.status {
-		return 0, fmt.Errorf("%s: %w: %s", c, err, said.String())
+		return nil, fmt.Errorf("%s: %w: %s", c, err, said.String())
 	}
-	return (c.ProcessState.UserTime() + c.ProcessState.SystemTime()).Seconds(), nil
+	return c.ProcessState, nil
 }
 
 // ratio gives the median of what the first job takes over what the second does.

@@ -1,6 +1,6 @@
 //go:build linux || darwin
 
-package workbook
+package main
 
 import (
 	"os"
