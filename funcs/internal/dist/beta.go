@@ -15,29 +15,6 @@ func (d Beta) CDF(x float64) float64 { l, _ := BetaTails(x, 1-x, d.A, d.B); retu
 // SF is P(X > x).
 func (d Beta) SF(x float64) float64 { _, u := BetaTails(x, 1-x, d.A, d.B); return u }
 
-// Density is the density at x.
-func (d Beta) Density(x float64) float64 {
-	switch {
-	case !(d.A > 0) || !(d.B > 0) || math.IsNaN(x):
-		return math.NaN()
-	case x == 0 && d.A <= 1:
-		return betaEnd(d.A, d.B)
-	case x == 1 && d.B <= 1:
-		return betaEnd(d.B, d.A)
-	case x <= 0 || x >= 1:
-		return 0
-	}
-	return BetaPrefactor(x, 1-x, d.A, d.B) / float64(x*(1-x))
-}
-
-// betaEnd is the density at 0 for a <= 1.
-func betaEnd(a, b float64) float64 {
-	if a < 1 {
-		return math.Inf(1)
-	}
-	return b
-}
-
 // Between is P(a <= X <= b).
 func (d Beta) Between(a, b float64) float64 {
 	a, b = max(a, 0), min(b, 1)
@@ -55,7 +32,7 @@ func betaNarrow(xa, ya, xb, yb num.Wide, width, a, b float64) float64 {
 	odds := num.Log1p(width/xa.Hi) + num.Log1p(width/yb.Hi)
 	if odds > 1 {
 		x, y := xb.Hi, yb.Hi
-		return panels(0, odds, func(w float64) float64 {
+		return panels(odds, func(w float64) float64 {
 			e := float64(x * num.Exp(-w))
 			return BetaPrefactor(e/(e+y), y/(e+y), a, b)
 		})

@@ -1,6 +1,10 @@
 package dist
 
-import "math"
+import (
+	"math"
+
+	"halfwidth/funcs/internal/num"
+)
 
 // Binomial is the law of the number of successes in N (0 or more) independent
 // trials of probability P (0 to 1).
@@ -78,8 +82,8 @@ func (d Binomial) UpperQuantile(q float64) int {
 	return d.first(1-q, func(k int) bool { return d.SF(k) <= q })
 }
 
-// first is the smallest k from 0 to N for which ok holds, near the quantile p of
-// a normal law of the same mean and sd.
+// first is the smallest k from 0 to N for which ok holds, which it does at N, near
+// the quantile p of a normal law of the same mean and sd.
 func (d Binomial) first(p float64, ok func(k int) bool) int {
 	n := float64(d.N)
 	sd := math.Sqrt(n * d.P * (1 - d.P))
@@ -87,52 +91,8 @@ func (d Binomial) first(p float64, ok func(k int) bool) int {
 	if p > 0 && p < 1 {
 		start += float64(sd * Normal{}.Quantile(p))
 	}
-	return firstFrom(0, d.N, int(min(max(start, 0), n, math.MaxInt/2)), int(sd/16)+1, ok)
-}
-
-// firstFrom is the smallest k in [lo, hi] for which ok holds, where ok, once it
-// holds, goes on holding, and is taken to hold at hi. It walks from start in
-// doubling steps, then halves.
-func firstFrom(lo, hi, start, step int, ok func(k int) bool) int {
-	k := min(max(start, lo), hi)
-	if ok(k) {
-		hi = k
-		for hi > lo {
-			k = lo
-			if hi-lo > step {
-				k = hi - step
-			}
-			if !ok(k) {
-				lo = k + 1
-				break
-			}
-			hi = k
-			step = min(step, math.MaxInt/4) * 2
-		}
-	} else {
-		lo = k + 1
-		for lo < hi {
-			k = hi
-			if hi-lo > step {
-				k = lo + step
-			}
-			if k == hi || ok(k) {
-				hi = k
-				break
-			}
-			lo = k + 1
-			step = min(step, math.MaxInt/4) * 2
-		}
-	}
-	for lo < hi {
-		k = lo + (hi-lo)/2
-		if ok(k) {
-			hi = k
-		} else {
-			lo = k + 1
-		}
-	}
-	return lo
+	k, _ := num.Smallest(0, d.N, int(min(max(start, 0), n)), ok)
+	return k
 }
 
 // Poisson is the law of a count with the given Mean (0 or more).

@@ -162,10 +162,8 @@ func TestHypergeometricMatchesExactCounts(t *testing.T) {
 			terms = append(terms, new(big.Rat).SetFrac(ways, all))
 		}
 		lower, upper := runningTails(terms)
-		for k, p := range terms {
-			want, _ := p.Float64()
+		for k := range terms {
 			what := fmt.Sprint(d, " k=", k)
-			wantDigits(t, what, d.PMF(k), want, 2e-13)
 			wantDigits(t, what, d.CDF(k), lower[k], 2e-13)
 			wantDigits(t, what, d.SF(k), upper[k], 2e-13)
 		}
@@ -230,7 +228,7 @@ func TestDiscreteLawsStandAnyArgument(t *testing.T) {
 			for _, b := range counts {
 				for _, n := range counts {
 					h := Hypergeometric{n, a, b}
-					check(fmt.Sprint("hypergeometric ", h, k), h.valid(), h.PMF(k), h.CDF(k), h.SF(k))
+					check(fmt.Sprint("hypergeometric ", h, k), h.valid(), h.CDF(k), h.SF(k))
 				}
 			}
 		}

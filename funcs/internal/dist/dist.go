@@ -48,16 +48,16 @@ func between(d Distribution, a, b float64, narrow func() float64) float64 {
 // density is not at hand; where the tails nearly cancel, so do digits.
 func difference(d Distribution, a, b float64) float64 { return between(d, a, b, nil) }
 
-// panels integrates a smooth f from a to b in panels of at most length 2.
-func panels(a, b float64, f func(float64) float64) float64 {
-	n := math.Ceil((b - a) / 2)
+// panels integrates a smooth f from 0 to end in panels of at most length 2.
+func panels(end float64, f func(float64) float64) float64 {
+	n := math.Ceil(end / 2)
 	if !(n > 0 && n < 1e4) {
 		return 0
 	}
 	var sum float64
-	step := (b - a) / n
+	step := end / n
 	for i := 0.0; i < n; i++ {
-		sum += num.Legendre(f, a+float64(i*step), a+float64((i+1)*step))
+		sum += num.Legendre(f, float64(i*step), float64((i+1)*step))
 	}
 	return sum
 }

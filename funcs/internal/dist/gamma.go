@@ -15,20 +15,6 @@ func (g Gamma) CDF(x float64) float64 { l, _ := GammaTails(g.Shape, x); return l
 // SF is P(X > x).
 func (g Gamma) SF(x float64) float64 { _, u := GammaTails(g.Shape, x); return u }
 
-// Density is the density at x.
-func (g Gamma) Density(x float64) float64 {
-	if x == 0 && g.Shape <= 1 {
-		if g.Shape == 1 {
-			return 1
-		}
-		return math.Inf(1)
-	}
-	if !(x > 0) {
-		return 0 * x
-	}
-	return GammaPrefactor(g.Shape, x) / x
-}
-
 // Between is P(a <= X <= b).
 func (g Gamma) Between(a, b float64) float64 {
 	return between(g, a, b, func() float64 {
@@ -42,7 +28,7 @@ func (g Gamma) Between(a, b float64) float64 {
 		default:
 			return float64(p.factor * gammaUpperIntegral(g.Shape, p.excess.Hi, (b-a)/a))
 		}
-		return panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
+		return panels(num.Log1p((b-a)/a), func(w float64) float64 {
 			return GammaPrefactor(g.Shape, float64(a*num.Exp(w)))
 		})
 	})
@@ -81,9 +67,6 @@ func (c ChiSquare) CDF(x float64) float64 { return c.gamma().CDF(x / 2) }
 
 // SF is P(X > x).
 func (c ChiSquare) SF(x float64) float64 { return c.gamma().SF(x / 2) }
-
-// Density is the density at x.
-func (c ChiSquare) Density(x float64) float64 { return c.gamma().Density(x/2) / 2 }
 
 // Between is P(a <= X <= b).
 func (c ChiSquare) Between(a, b float64) float64 { return c.gamma().Between(a/2, b/2) }

@@ -19,24 +19,11 @@ func (d Hypergeometric) support() (lo, hi int) {
 	return max(0, d.Draws-(d.Population-d.Marked)), min(d.Draws, d.Marked)
 }
 
-// PMF is P(X = k), from three binomial probabilities as Loader 2000 (Fast and
-// accurate computation of binomial probabilities). Relative error 1e-13 for
-// populations to 1e9.
-func (d Hypergeometric) PMF(k int) float64 {
-	if !d.valid() {
-		return math.NaN()
-	}
-	if lo, hi := d.support(); k < lo || k > hi {
-		return 0
-	} else if lo == hi {
-		return 1
-	}
-	return d.term(float64(k))
-}
-
-// term is the probability function continued to real k inside the support. With
-// p = draws/population it is b(k; marked) b(draws-k; rest)/b(draws; population),
-// in which the rounding of p cancels.
+// term is P(X = k), continued to real k inside the support, from three binomial
+// probabilities as Loader 2000 (Fast and accurate computation of binomial
+// probabilities): with p = draws/population it is
+// b(k; marked) b(draws-k; rest)/b(draws; population), in which the rounding of p
+// cancels. Relative error 1e-13 for populations to 1e9.
 func (d Hypergeometric) term(k float64) float64 {
 	all, marked, draws := float64(d.Population), float64(d.Marked), float64(d.Draws)
 	p, q := draws/all, float64(d.Population-d.Draws)/all

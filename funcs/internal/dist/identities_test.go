@@ -42,10 +42,8 @@ func TestLawsAgreeWithTheirClosedForms(t *testing.T) {
 			{"t mirrored", Student{df}.CDF(-x), Student{df}.SF(x)},
 			{"t mirrored, quantile", Student{df}.Quantile(u), -Student{df}.UpperQuantile(u)},
 			{"t with infinite df", Student{math.Inf(1)}.SF(x), Normal{}.SF(x)},
-			{"chi-square density", ChiSquare{2}.Density(x), math.Exp(-x/2) / 2},
 			{"Cauchy density", Student{1}.Density(x), 1 / (math.Pi * (1 + x*x))},
-			{"uniform density", Beta{1, 1}.Density(u), 1},
-			{"gamma density", Gamma{3}.Density(x), x * x / 2 * math.Exp(-x)},
+			{"gamma prefactor", GammaPrefactor(3, x), x * x * x / 2 * math.Exp(-x)},
 		} {
 			if c.want < 1e-290 {
 				continue

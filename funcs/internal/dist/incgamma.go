@@ -83,7 +83,7 @@ func gammaTailsAt(a float64, x num.Wide) tails {
 	case near:
 		t.fromUpper(gammaUpperIntegral(a, p.excess.Hi, reach(0, p.excess.Hi, a, 1)))
 	default:
-		t.fromUpper(gammaUpperFraction(a, x.Hi, p.excess.Hi))
+		t.fromUpper(gammaUpperFraction(a, p.excess.Hi))
 	}
 	return t
 }
@@ -140,8 +140,8 @@ func gammaLowerSeries(a, x float64) float64 {
 
 // gammaUpperFraction is Q(a, x) over the prefactor by the even part of
 // Legendre's continued fraction, 1/(x+1-a - 1(1-a)/(x+3-a - 2(2-a)/(x+5-a - ...,
-// by the forward recurrence of its convergents.
-func gammaUpperFraction(a, x, excess float64) float64 {
+// by the forward recurrence of its convergents; excess is x - a.
+func gammaUpperFraction(a, excess float64) float64 {
 	b := excess + 1
 	p0, q0, p1, q1 := 0.0, 1.0, 1.0, b
 	last := 1 / b

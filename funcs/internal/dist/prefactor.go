@@ -133,14 +133,13 @@ func logGammaRise(b, a float64) float64 {
 // A gammaPoint is x^a e^-x / Gamma(a) and what belongs to it: the distance of x
 // from a, without rounding error, and the logarithm of the prefactor.
 type gammaPoint struct {
-	a, x   float64
 	excess num.Wide // x - a
 	log    float64
 	factor float64
 }
 
 func gammaPointAt(a float64, x num.Wide) gammaPoint {
-	p := gammaPoint{a: a, x: x.Hi, excess: x.Plus(-a)}
+	p := gammaPoint{excess: x.Plus(-a)}
 	// x^a e^-x / Gamma(a) = gammaShape(a) exp(a (log(x/a) - (x-a)/a)).
 	e := deviance(x, num.Widen(a), p.excess.Over(a)).Times(a)
 	g := gammaShape(a)
@@ -151,16 +150,14 @@ func gammaPointAt(a float64, x num.Wide) gammaPoint {
 
 // A betaPoint is x^a y^b / B(a, b) and what belongs to it.
 type betaPoint struct {
-	a, b   float64
-	x, y   num.Wide // x + y = 1
 	below  num.Wide // a y - b x = a - (a+b) x, positive below the mean
 	log    float64  // of the prefactor
 	factor float64  // x^a y^b / B(a, b)
 }
 
+// betaPointAt takes x and y = 1 - x.
 func betaPointAt(x, y num.Wide, a, b float64) betaPoint {
-	p := betaPoint{a: a, b: b, x: x, y: y}
-	p.below = y.Times(a).Sub(x.Times(b))
+	p := betaPoint{below: y.Times(a).Sub(x.Times(b))}
 	ab := num.TwoSum(a, b)
 	// With p = a/(a+b): a log(x/p) + b log(y/q), where x/p - 1 = -below/a and
 	// y/q - 1 = below/b, so that the first-order terms cancel by themselves.

@@ -117,7 +117,7 @@ func (k normalRange) tail(w float64, upper bool) float64 {
 	}
 	// The range is below w whenever all variables are within w/2 of 0, so this
 	// is a lower bound of P(range <= w); where it is small take the complement.
-	if k.within(w/2, w/2, n) < 0.3 {
+	if within(w/2, w/2, n) < 0.3 {
 		if low := k.lower(w); low < 0.7 {
 			return 1 - low
 		}
@@ -132,7 +132,7 @@ func (k normalRange) bound(w float64) float64 {
 }
 
 // within is P(-a < Z < b)^power for a, b >= 0.
-func (k normalRange) within(a, b, power float64) float64 {
+func within(a, b, power float64) float64 {
 	return num.Exp(power * num.Log1p(-(Normal{}.SF(a) + Normal{}.SF(b))))
 }
 
@@ -147,7 +147,7 @@ func (k normalRange) lower(w float64) float64 {
 		return e * num.Exp((n-1)*logInterval(m, half))
 	}
 	h := 0.9
-	if k.within(half, half, 1) < 0.1 {
+	if within(half, half, 1) < 0.1 {
 		h = min(h, 1.3/math.Sqrt(n))
 	} else {
 		bend := 1 - float64(half*half) + float64((n-1)*w*Normal{}.Density(half))/(1-2*Normal{}.SF(half))

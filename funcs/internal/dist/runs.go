@@ -35,21 +35,6 @@ func (d Runs) mixture(probability func(h Hypergeometric, k int) float64, even, o
 // onlyOne tells that all things are alike, so that they form one run.
 func (d Runs) onlyOne() bool { return d.First == 0 || d.Second == 0 }
 
-// PMF is P(R = r). Relative error 1e-13 to 1e5 things.
-func (d Runs) PMF(r int) float64 {
-	switch {
-	case !d.valid():
-		return math.NaN()
-	case d.onlyOne() && r == 1:
-		return 1
-	case d.onlyOne() || r < 2:
-		return 0
-	case r%2 == 0:
-		return d.mixture(Hypergeometric.PMF, r/2-1, -1)
-	}
-	return d.mixture(Hypergeometric.PMF, -1, r/2)
-}
-
 // CDF is P(R <= r).
 func (d Runs) CDF(r int) float64 {
 	switch {

@@ -1,6 +1,10 @@
 package dist
 
-import "math"
+import (
+	"math"
+
+	"halfwidth/funcs/internal/num"
+)
 
 // crossing finds where the monotone function f passes 0. It walks from x in
 // steps that double until f changes sign, within lo and hi, then narrows the
@@ -81,13 +85,8 @@ func chandrupatla(f func(float64) float64, a, fa, b, fb, tol, near float64) floa
 			b, fb = a, fa
 		}
 		a, fa = x, fx
-		t = 0.5
-		xi, phi := (a-b)/(c-b), (fa-fb)/(fc-fb)
-		if phi*phi < xi && (1-phi)*(1-phi) < 1-xi {
-			t = float64(fa/(fb-fa)*(fc/(fb-fc))) + float64((c-a)/(b-a)*(fa/(fc-fa))*(fb/(fc-fb)))
-			if math.IsNaN(t) {
-				t = 0.5
-			}
+		if t = num.Interpolated(a, fa, b, fb, c, fc); math.IsNaN(t) {
+			t = 0.5
 		}
 	}
 	return a/2 + b/2

@@ -134,7 +134,7 @@ func (s Student) narrow(a, b float64) float64 {
 		if a >= 1 {
 			scaled = s.scaledDensity(a)
 		}
-		return scaled * panels(0, num.Log1p((b-a)/a), func(w float64) float64 {
+		return scaled * panels(num.Log1p((b-a)/a), func(w float64) float64 {
 			return float64(num.Exp(w) * relative(float64(a*num.Expm1(w))))
 		})
 	}

@@ -69,7 +69,7 @@ func contentRadius(z, content, start float64) float64 {
 func (t *twoSidedTolerance) tails(k float64) (confidence, missed float64) {
 	a := (t.n - 1) / 2
 	peakLow, peakHigh := 0.0, 0.0
-	for i := 0; i < 4000; i++ {
+	for i := range 4000 {
 		y := float64(i) * t.step
 		ratio := t.radius(i) / k
 		weight := num.Exp(-float64(y*y) / 2)
@@ -79,8 +79,8 @@ func (t *twoSidedTolerance) tails(k float64) (confidence, missed float64) {
 		low, high := GammaTails(a, a*float64(ratio*ratio))
 		low = float64(low * weight)
 		high = float64(high * weight)
-		missed += float64(low)
-		confidence += float64(high)
+		missed += low
+		confidence += high
 		peakLow, peakHigh = max(peakLow, low), max(peakHigh, high)
 		if y > 8 && !(low > 1e-18*peakLow) && !(high > 1e-18*peakHigh) {
 			break
@@ -117,20 +117,6 @@ func ToleranceFactor(n int, content, confidence float64) float64 {
 	return num.Exp(crossing(f, num.Log(start), min(0.02, 0.1/math.Sqrt(df)), -700, 700, num.Log(1/target)))
 }
 
-// ToleranceConfidence is the confidence with which mean +- factor*sd of n values
-// of a normal law holds at least the content.
-func ToleranceConfidence(n int, content, factor float64) float64 {
-	switch {
-	case !toleranceDomain(n, content) || math.IsNaN(factor):
-		return math.NaN()
-	case factor <= 0:
-		return 0
-	}
-	t := newTwoSidedTolerance(n, content)
-	confidence, _ := t.tails(factor)
-	return confidence
-}
-
 // oneSidedTolerance is the law of sqrt(n) k where mean + k*sd is the quantile of
 // the law at the content: noncentral t (Johnson & Welch 1940).
 func oneSidedTolerance(n int, content float64) NoncentralT {
@@ -149,13 +135,4 @@ func OneSidedToleranceFactor(n int, content, confidence float64) float64 {
 		return math.NaN()
 	}
 	return oneSidedTolerance(n, content).Quantile(confidence) / math.Sqrt(float64(n))
-}
-
-// OneSidedToleranceConfidence is the confidence with which mean + factor*sd of n
-// values of a normal law has at least the content below it.
-func OneSidedToleranceConfidence(n int, content, factor float64) float64 {
-	if !toleranceDomain(n, content) || math.IsNaN(factor) {
-		return math.NaN()
-	}
-	return oneSidedTolerance(n, content).CDF(factor * math.Sqrt(float64(n)))
 }

@@ -156,14 +156,12 @@ func Log1pmx(x float64) float64 {
 	case x == -1 || math.IsInf(x, 1):
 		return math.Inf(-1)
 	}
-	w := logWide(TwoSum(1, x))
+	w := LogWide(TwoSum(1, x))
 	return (w.Hi - x) + w.Lo
 }
 
 // LogWide is the logarithm of w > 0 to about 3e-18 absolute.
-func LogWide(w Wide) Wide { return logWide(w) }
-
-func logWide(w Wide) Wide {
+func LogWide(w Wide) Wide {
 	if !(w.Hi > 0) || math.IsInf(w.Hi, 1) {
 		return Wide{Log(w.Hi), 0}
 	}
@@ -189,12 +187,12 @@ func Log1pmxWide(v, x Wide) Wide {
 		cubic := float64(float64(float64(2*z)*s.Hi) * atanhTail(z))
 		return s.Mul(x).Neg().Plus(cubic)
 	}
-	return logWide(v).Sub(x)
+	return LogWide(v).Sub(x)
 }
 
 // PowWide is w**a for w > 0, to nearly full precision also where the result is
 // very small or very large.
-func PowWide(w Wide, a float64) float64 { return ExpWide(logWide(w).Times(a)) }
+func PowWide(w Wide, a float64) float64 { return ExpWide(LogWide(w).Times(a)) }
 
 // Hypot is √(x² + y²) without overflow or underflow on the way, to about one
 // unit of the last place.

@@ -50,12 +50,7 @@ func Root(f func(float64) float64, lo, hi float64) (x float64, ok bool) {
 			b, fb = a, fa
 		}
 		a, fa = x, fx
-		// a is the newest point, b across the root, c the one before.
-		t = 0.5
-		xi, phi := (a-b)/(c-b), (fa-fb)/(fc-fb)
-		if float64(phi*phi) < xi && float64((1-phi)*(1-phi)) < 1-xi {
-			t = float64(fa/(fb-fa)*(fc/(fb-fc))) + float64((c-a)/(b-a)*(fa/(fc-fa))*(fb/(fc-fb)))
-		}
+		t = Interpolated(a, fa, b, fb, c, fc)
 		// Off the ends by a few doubles, so that the far end comes near as well.
 		edge := 4 * 0x1p-53 * math.Abs(a) / math.Abs(b-a)
 		if !(t >= edge) {
@@ -63,6 +58,18 @@ func Root(f func(float64) float64, lo, hi float64) (x float64, ok bool) {
 		}
 		t = min(t, 1-min(edge, 0.5))
 	}
+}
+
+// Interpolated is where on the way from a, the newest point, to b, across the root
+// from it, a function seems to be 0: by inverse quadratic interpolation through
+// these two and c, the point before a, where Chandrupatla's condition allows it,
+// else halfway.
+func Interpolated(a, fa, b, fb, c, fc float64) (share float64) {
+	xi, phi := (a-b)/(c-b), (fa-fb)/(fc-fb)
+	if float64(phi*phi) < xi && float64((1-phi)*(1-phi)) < 1-xi {
+		return float64(fa/(fb-fa)*(fc/(fb-fc))) + float64((c-a)/(b-a)*(fa/(fc-fa))*(fb/(fc-fb)))
+	}
+	return 0.5
 }
 
 // doublesBetween is how many steps to a neighbouring double lead from a to b.

@@ -104,9 +104,6 @@ func SumProducts(x, y []float64) float64 {
 	return total(hi, lo)
 }
 
-// WeightedMean is the mean of xs with the given weights.
-func WeightedMean(xs, weights []float64) float64 { return SumProducts(xs, weights) / Sum(weights) }
-
 // Lag1 is the lag-1 autocorrelation of xs in their order: the sum of products of
 // the deviations of neighbours from the mean over the sum of squared deviations.
 // NaN stands for a gap, across which nobody is a neighbour. NaN where there is no

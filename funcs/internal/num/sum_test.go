@@ -112,14 +112,3 @@ func TestSumsNearTheEndOfTheDoubles(t *testing.T) {
 		t.Errorf("mean of nothing %v", got)
 	}
 }
-
-// By hand: (3*1 + 1*5)/(3 + 1); and weights of 1 give the mean.
-func TestWeightedMean(t *testing.T) {
-	if got := WeightedMean([]float64{1, 5}, []float64{3, 1}); got != 2 {
-		t.Errorf("got %v, want 2", got)
-	}
-	xs := []float64{1e9 + 0.25, 1e9 + 0.5, 1e9 + 1.5}
-	if got := WeightedMean(xs, []float64{1, 1, 1}); got != Mean(xs) || got != 1e9+0.75 {
-		t.Errorf("got %v, want %v", got, 1e9+0.75)
-	}
-}
