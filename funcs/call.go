@@ -23,6 +23,7 @@ type Call struct {
 	method   string
 	sentence string
 	known    map[listKey]*listFacts
+	among    int // the samples that the automatic cautions look at; 0 stands for one
 }
 
 // Answer evaluates the function of that name. The arguments are values of the

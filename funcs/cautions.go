@@ -13,10 +13,10 @@ import (
 // The findings that functions of one sample raise by themselves.
 var (
 	fewValuesKind  = FindingKind{"few-values", "fewer than 5 values, or fewer than the computation needs"}
-	skewedKind     = FindingKind{"skewed-for-n", "n is at most 25 times the squared skewness G1, and G1 differs from 0 at significance 0.01 (from n = 8)"}
-	neighboursKind = FindingKind{"neighbours-alike", "the lag-1 autocorrelation differs from that of independent values at significance 0.01 (from n = 10)"}
-	farValueKind   = FindingKind{"far-value", "the value farthest from the mean is an outlier at significance 0.01"}
-	heavyTailKind  = FindingKind{"heavy-tail", "the upper 95% limit of the tail index is below 2, so that the variance may not exist (from n = 150)"}
+	skewedKind     = FindingKind{"skewed-for-n", "n is at most 25 times the squared skewness G1, and G1 differs from 0 at significance 0.01 over all samples of the call (from n = 8)"}
+	neighboursKind = FindingKind{"neighbours-alike", "the lag-1 autocorrelation differs from that of independent values at significance 0.01 over all samples of the call (from n = 10)"}
+	farValueKind   = FindingKind{"far-value", "the value farthest from the mean is an outlier at significance 0.01 over all samples of the call"}
+	heavyTailKind  = FindingKind{"heavy-tail", "the upper limit of the tail index, 95% over all samples of the call, is below 2, so that the variance may not exist (from n = 150)"}
 	noSpreadKind   = FindingKind{"no-spread", "all values are equal, or the sd given is 0"}
 	spreadsKind    = FindingKind{"spreads-unlike", "with pooled variances, one sd is more than twice another and differs from it at significance 0.01 (of sds that are planned: twice)"}
 )
@@ -82,7 +82,7 @@ func (c *Call) checkFewOfAnyShape(n int) {
 
 func (c *Call) checkSkewness(input, what string, values []float64, s summary) {
 	g1 := skewness(c.moments(values))
-	if skewedForN(g1, s.n) {
+	if skewedForN(g1, s.n, c.rare()) {
 		need := cochranFactor * float64(g1*g1)
 		c.caution("skewed-for-n", input, "%s is skewed (skewness %s): with n = %d the interval may miss more often than it says; "+
 			"more than %.0f values are the rule for this skewness. Try coverage-check, or enough-n-for-mean.",
@@ -94,7 +94,7 @@ func (c *Call) checkNeighbours(input, what string, ordered []float64, s summary)
 	if s.n < neighboursFrom || c.origin(input).Unordered {
 		return
 	}
-	if r := c.facts(ordered).lag1(); neighboursAlike(r, s.n) {
+	if r := c.facts(ordered).lag1(); neighboursAlike(r, s.n, c.rare()) {
 		c.caution("neighbours-alike", input, "Neighbouring values of %s are not independent (lag-1 autocorrelation %s), so the interval is too %s. "+
 			"Average over longer stretches, or see independence-check.", lowerFirst(what), brief(r), narrowOrWide(r))
 	}
@@ -115,7 +115,7 @@ func (c *Call) checkFar(input, what string, group int, ordered []float64, s summ
 	}
 	at := c.facts(ordered).far()
 	far := math.Abs(ordered[at] - s.mean)
-	if far/s.sd <= esdCritical(s.n, rare) {
+	if far/s.sd <= esdCritical(s.n, c.rare()) {
 		return
 	}
 	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.addressIn(input, group, at), Message: fmt.Sprintf(
@@ -137,6 +137,9 @@ func (c *Call) checkTail(input, what string, values []float64) bool {
 		return false
 	}
 	tail, ok := c.facts(values).hill()
+	if c.among > 1 {
+		tail = tail.within(1 - (1-tailConfidence)/float64(c.among))
+	}
 	heavy := ok && tail.upper < 2
 	if heavy {
 		c.caution("heavy-tail", input, "%s has tails so heavy (tail index %s, at most %s) that its variance may not exist: no n is enough for a t interval. "+
@@ -168,11 +171,15 @@ func hillTail(values []float64, confidence float64) (tailIndex, bool) {
 	if sum <= 0 {
 		return tailIndex{}, false
 	}
-	law, outside := dist.ChiSquare{DF: float64(2 * k)}, (1-confidence)/2
-	h := tailIndex{k: k, index: float64(k) / sum}
-	h.lower = h.index * law.Quantile(outside) / float64(2*k)
-	h.upper = h.index * law.UpperQuantile(outside) / float64(2*k)
-	return h, true
+	return tailIndex{k: k, index: float64(k) / sum}.within(confidence), true
+}
+
+// within gives the index its limits of that confidence.
+func (h tailIndex) within(confidence float64) tailIndex {
+	law, outside := dist.ChiSquare{DF: float64(2 * h.k)}, (1-confidence)/2
+	h.lower = h.index * law.Quantile(outside) / float64(2*h.k)
+	h.upper = h.index * law.UpperQuantile(outside) / float64(2*h.k)
+	return h
 }
 
 // checkSpreads raises spreads-unlike for pooled variances.

@@ -7,10 +7,11 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
-// The rules by which cautions come. Each comes for about 1 in 100 samples when all
-// is well, at any n from its first: a sample goes through four of them, and a
-// caution that often speaks without cause is soon not read. FUNCTIONS.md has a
-// table of how often they come, made by funcs/internal/calibration.
+// The rules by which cautions come. Each comes for about 1 in 100 calls when all is
+// well, at any n from its first and for any number of samples: a sample goes through
+// four of them, and a caution that often speaks without cause is soon not read.
+// FUNCTIONS.md has a table of how often they come, made by
+// funcs/internal/calibration.
 
 const (
 	skewedFrom     = 8  // values from which the law of G1 is known well enough
@@ -20,15 +21,20 @@ const (
 	rare           = 0.01
 )
 
-// rareNormal is the normal quantile that the size of 1 in 100 values passes.
-const rareNormal = 2.5758293035489
+// rare is the significance at which one sample is looked at, so that all samples of
+// the call together give a caution about as seldom as one (Bonferroni): without it
+// every tenth comparison of ten groups in order would have a far value.
+func (c *Call) rare() float64 { return rare / float64(max(1, c.among)) }
+
+// rareNormal is the normal quantile that the size of such a share of values passes.
+func rareNormal(share float64) float64 { return dist.Normal{}.UpperQuantile(share / 2) }
 
 // skewedForN says whether n falls short of Cochran's rule by a skewness G1 that is
-// no accident. The rule alone would take in every tenth normal sample of 20, as
-// its bound, √n/5, is then within 1.8 standard errors of 0; from n = 31 on the
-// second condition follows from the first.
-func skewedForN(g1 float64, n int) bool {
-	return n >= skewedFrom && float64(n) <= cochranFactor*float64(g1*g1) && math.Abs(skewnessScore(g1, float64(n))) > rareNormal
+// no accident. The rule alone would take in every twelfth normal sample of 20, as
+// its bound, √n/5, is then within 1.8 standard errors of 0; for a share of 0.01 the
+// second condition follows from the first from n = 31 on.
+func skewedForN(g1 float64, n int, share float64) bool {
+	return n >= skewedFrom && float64(n) <= cochranFactor*float64(g1*g1) && math.Abs(skewnessScore(g1, float64(n))) > rareNormal(share)
 }
 
 // skewnessScore is the normal score of the skewness of n >= 8 normal values
@@ -45,9 +51,9 @@ func skewnessScore(g1, n float64) float64 {
 // neighboursAlike says whether a lag-1 autocorrelation of n values in order is no
 // accident: for independent normal values it has mean -1/n and standard deviation
 // (n-2)/(n√(n-1)) (Moran 1948, Some theorems on time series II).
-func neighboursAlike(r float64, n int) bool {
+func neighboursAlike(r float64, n int, share float64) bool {
 	m := float64(n)
-	return n >= neighboursFrom && math.Abs(r+1/m) > rareNormal*(m-2)/(m*math.Sqrt(m-1))
+	return n >= neighboursFrom && math.Abs(r+1/m) > rareNormal(share)*(m-2)/(m*math.Sqrt(m-1))
 }
 
 // spreadOf is a group's sd with its n, which is 0 for an sd that is planned.

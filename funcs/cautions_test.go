@@ -73,7 +73,7 @@ func TestSkewnessScoreGivesThePrintedPoints(t *testing.T) {
 			}
 		}
 	}
-	if skewedForN(3, 7) || !skewedForN(2, 20) || skewedForN(2, 101) || skewedForN(0.95, 20) {
+	if skewedForN(3, 7, rare) || !skewedForN(2, 20, rare) || skewedForN(2, 101, rare) || skewedForN(0.95, 20, rare) {
 		t.Error("the rule for skewness")
 	}
 }
@@ -101,7 +101,7 @@ func TestMeanAutocorrelationOfAllOrders(t *testing.T) {
 	permute(6)
 	within(t, "orders", float64(count), 720, 0)
 	within(t, "mean of r", sum/float64(count), -1.0/6, 1e-12)
-	if neighboursAlike(0.9, 9) || !neighboursAlike(0.6, 20) || neighboursAlike(-0.5, 20) || !neighboursAlike(-0.65, 20) {
+	if neighboursAlike(0.9, 9, rare) || !neighboursAlike(0.6, 20, rare) || neighboursAlike(-0.5, 20, rare) || !neighboursAlike(-0.65, 20, rare) {
 		t.Error("the rule for neighbours")
 	}
 }
@@ -124,6 +124,31 @@ func TestSpreadsUnlike(t *testing.T) {
 	} {
 		if got := spreadsUnlike(c.groups); got != c.want {
 			t.Errorf("%v: %v", c.groups, got)
+		}
+	}
+}
+
+// A value as far out as one sample of 30 in 200 to 1000 has it: it
+// is a caution beside one more sample, and none among ten.
+func TestSignificanceIsSharedAmongSamples(t *testing.T) {
+	far := make([]float64, 30)
+	for i := range far {
+		far[i] = float64(i*7%30) / 10
+	}
+	far[4] = 5.3
+	s := summarise(far)
+	reach := (5.3 - s.mean) / s.sd
+	if reach < esdCritical(30, rare/2) || reach > esdCritical(30, rare/10) {
+		t.Fatalf("the far value lies %v standard deviations out", reach)
+	}
+	for _, count := range []int{2, 10} {
+		groups := []Group{{"0", far}}
+		for i := 1; i < count; i++ {
+			groups = append(groups, Group{string(rune('0' + i)), far[5:]})
+		}
+		out := answer(t, "analysis-of-variance", map[string]any{"samples": groups})
+		if raises(out, "far-value") != (count == 2) {
+			t.Errorf("%d groups: %s", count, Note(out.Findings))
 		}
 	}
 }

@@ -71,7 +71,7 @@ var independenceCheck = &Function{
 // checkNeighboursAlways raises the caution about neighbours whatever the
 // function's `checks`, which it does not have.
 func (c *Call) checkNeighboursAlways(ordered []float64, s summary, r float64) {
-	if neighboursAlike(r, s.n) {
+	if neighboursAlike(r, s.n, c.rare()) {
 		c.caution("neighbours-alike", "sample", "Neighbouring values are not independent, so an interval that takes them for independent is too %s; "+
 			"average over longer stretches, or count only effective-n values.", narrowOrWide(r))
 	}

@@ -211,6 +211,11 @@ func (c *Call) checkGroups(groups []groupSummary) error {
 		c.caution("few-values", input, "%s %s fewer than %d values: the answer rests on the values being normal. Measure at least %d in each.",
 			theGroups(few), verb, fewValues, fewValues)
 	}
+	for _, g := range groups {
+		if g.values != nil && g.sd > 0 {
+			c.among++
+		}
+	}
 	for i, g := range groups {
 		if g.values == nil || g.sd == 0 {
 			continue

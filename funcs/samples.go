@@ -176,7 +176,7 @@ func (c *Call) checkSummary(d description) error {
 			"check whether the values were rounded or copied down.")
 		return nil
 	}
-	if !c.origin("sample").Unordered && neighboursAlike(d.lag, d.n) {
+	if !c.origin("sample").Unordered && neighboursAlike(d.lag, d.n, c.rare()) {
 		c.caution("neighbours-alike", "sample", "Neighbouring values of the sample are not independent (lag-1 autocorrelation %s), so the "+
 			"standard error is too %s. Average over longer stretches, or see independence-check.", brief(d.lag), smallOrLarge(d.lag))
 	}

@@ -83,6 +83,7 @@ var shiftInterval = &Function{
 			counts: fmt.Sprintf("n = %d and %d", n1, n2)})
 		c.sayTest(ref, SameUnit, "u", u, p)
 		if checks.Of(c) {
+			c.among = 2
 			c.checkNeighbours("sample", "The sample", sample.Of(c), summary{n: n1})
 			c.checkNeighbours("second-sample", "The second-sample", secondSample.Of(c), summary{n: n2})
 		}

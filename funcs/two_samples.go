@@ -27,6 +27,7 @@ func (c *Call) checkTwo(first, second summary) error {
 		c.checkFew("second-n", "The second group", second.n)
 		return nil
 	}
+	c.among = 2
 	if err := c.checkValues("sample", sample.Of(c), first); err != nil {
 		return err
 	}

@@ -98,10 +98,13 @@ func functionPages(root string) ([]byte, error) {
 	return b.Bytes(), nil
 }
 
-const aboutCautions = `Percentages of 1000 simulated samples of n values for which a caution comes: of mean-interval, and for spreads-unlike of
-difference-interval with pooled variances. Made by ` + "`go run ./funcs/internal/calibration " + cautionTable + "`" + `. (few-values is not
-shown: it comes below 5 values.) A caution comes for about 1 in 100 samples of independent normal values with one variance, at any n.
+const aboutCautions = `Percentages of 1000 simulated calls for which a caution comes: of mean-interval for one sample of n values, of difference-interval with
+pooled variances for two, of analysis-of-variance for ten groups of n. Made by
+` + "`go run ./funcs/internal/calibration " + cautionTable + "`" + `. Of independent normal values with one variance each caution
+takes in about 1 call in 100, at any n and for any number of groups, and all of them together fewer than 5 from n = 5 on. No-spread and
+cells-skipped are facts of the values and cells at hand and have nothing to calibrate.
 
+- few-values comes below 5 values, always.
 - skewed-for-n asks for two things: that n is at most 25·G1² (Cochran's rule), and that the skewness G1 differs from 0 at significance
   0.01 (D'Agostino 1970). At n = 20 the first alone would take in 8% of normal samples; from 31 it implies the second.
 - neighbours-alike compares the lag-1 autocorrelation with its mean -1/n and standard deviation (n-2)/(n√(n-1)) for independent normal
@@ -112,5 +115,7 @@ shown: it comes below 5 values.) A caution comes for about 1 in 100 samples of i
   exist, cannot be told from that lognormal law at such n: a rule that found it more often would accuse both.
 - spreads-unlike asks that one sd is more than twice another, and that their F test is significant at 0.01, shared among all pairs
   (Bonferroni). Twice alone would take in every fifth pair of groups of 5.
+- Where a call has several samples, the significance of each caution is shared among them Ten groups, each looked at
+  with 0.01, would give a caution in every tenth call without cause.
 
 `
