@@ -97,6 +97,9 @@ func (c *completer) places(names *nameReader, begun string) {
 			continue // a damaged book is told of once it is named
 		}
 		for _, p := range source.Places() {
+			if p.NoRange != "" {
+				continue
+			}
 			c.add((&calculation.PlaceRef{File: file, Name: p.Name}).String(), itemModule, p.Kind.String())
 		}
 	}

@@ -84,11 +84,12 @@ func initialize(_ context.Context, call *Call, params initializeParams) (any, er
 		}
 	}
 	s.mu.Lock()
-	s.phase, s.client, s.encoding = open, client, encoding
+	s.client, s.encoding = client, encoding
 	if knownTrace(params.Trace) {
 		s.trace = params.Trace
 	}
 	s.mu.Unlock()
+	s.enter(open)
 	if client.ProcessID != 0 {
 		go s.watch(client.ProcessID)
 	}
@@ -118,10 +119,17 @@ func (s *Session) offer() map[string]any {
 func nothing(context.Context, *Call) (any, error) { return nil, nil }
 
 func shutdown(_ context.Context, call *Call) (any, error) {
-	call.Session.mu.Lock()
-	call.Session.phase = shutDown
-	call.Session.mu.Unlock()
+	call.Session.enter(shutDown)
 	return nil, nil
+}
+
+// enter begins a phase, unless the session has been ended meanwhile.
+func (s *Session) enter(next phase) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if s.phase != over {
+		s.phase = next
+	}
 }
 
 func exit(_ context.Context, call *Call) (any, error) {

@@ -64,6 +64,7 @@ func Serve(ctx context.Context, in io.Reader, out, errw io.Writer, opts Options)
 	case <-s.ended:
 	case <-ctx.Done():
 		s.end("the server was told to stop")
+		<-s.ended // another goroutine may be ending it
 	}
 	writer.close(s.limits.Patience)
 	_ = s.conn.Close()

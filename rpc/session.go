@@ -189,12 +189,12 @@ func (s *Session) start(call *Call, method *Method) (readsOn bool) {
 func (s *Session) enlist(call *Call, run later, ctx context.Context, cancel context.CancelFunc) bool {
 	s.mu.Lock()
 	defer s.mu.Unlock()
+	call.ctx, call.cancel = ctx, cancel
 	if s.phase == over {
 		cancel()
 		return false
 	}
 	call.listed, call.run, call.size = true, run, len(call.Params)
-	call.ctx, call.cancel = ctx, cancel
 	s.calls[call] = struct{}{}
 	if call.key != "" {
 		s.byKey[call.key] = call
@@ -282,6 +282,7 @@ func (s *Session) end(reason string) {
 	if reason != "" {
 		s.remarks.say("%s", reason)
 	}
+	s.turn.giveUp()
 	for _, call := range left {
 		s.pool.drop(call)
 		call.answer(nil, errEnding, false)

@@ -99,6 +99,17 @@ func (t *turn) look() {
 	}
 }
 
+// giveUp answers the call of the work that is under way when another goroutine
+// ends the session. Nobody reads on.
+func (t *turn) giveUp() {
+	t.mu.Lock()
+	defer t.mu.Unlock()
+	if w := t.work; w != nil {
+		t.work = nil
+		t.session.outlasted(w)
+	}
+}
+
 // outlasted makes a long call of one whose work was begun in turn. The goroutine
 // at work on it counts as a worker, also where that makes one too many.
 func (s *Session) outlasted(w *inTurn) {
