@@ -21,9 +21,9 @@ func ExampleFunction_Answer() {
 	}
 	lower, _ := out.Get("lower")
 	upper, _ := out.Get("upper")
-	fmt.Printf("%s: %.4f to %.4f\n", out.Status, lower, upper)
 	// t of 4 degrees of freedom at 0.995 is 4.60409 in the printed tables, the mean 12.18, the sd 0.319374.
-	// Output: caution: 11.5224 to 12.8376
+	fmt.Printf("%s: %.4f to %.4f\n", out.Status, lower, upper)
+	// Output: ok: 11.5224 to 12.8376
 }
 
 func ExampleFunction_Answer_refused() {

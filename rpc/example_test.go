@@ -26,8 +26,8 @@ func ExampleServe() {
 	}
 	var out strings.Builder
 	code := rpc.Serve(context.Background(), strings.NewReader(in.String()), &out, os.Stderr, rpc.Options{})
-	fmt.Println(code, strings.Count(out.String(), "Content-Length: "), strings.Contains(out.String(), `"score":1,`))
 	// (12 - 10)/2 is 1.
+	fmt.Println(code, strings.Count(out.String(), "Content-Length: "), strings.Contains(out.String(), `"score":1,`))
 	// Output: 0 3 true
 }
 
