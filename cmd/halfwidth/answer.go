@@ -23,9 +23,9 @@ func answerCommand() *cobra.Command {
 			"  halfwidth answer mean-interval --book testdata/workbooks/larkmoor.xlsx sample='minutes in Trips where depot = North'",
 	}
 	format := formatFlag(c)
-	book := c.Flags().String("book", "", "the workbook, `FILE`, whose sheets expressions name")
+	book := c.Flags().String("book", "", "take the sheets that expressions name from the workbook `FILE`")
 	var data []string
-	c.Flags().StringSliceVar(&data, "data", nil, "a `FOLDER`, besides the workbook's own, in which files named in expressions may lie")
+	c.Flags().StringSliceVar(&data, "data", nil, "allow the files that expressions name to lie in `FOLDER`, besides the workbook's own")
 	c.RunE = func(c *cobra.Command, args []string) error {
 		f, err := formatOf(*format)
 		if err != nil {

@@ -26,7 +26,7 @@ type bookFlags struct {
 func addBookFlags(c *cobra.Command) *bookFlags {
 	f := &bookFlags{format: formatFlag(c)}
 	c.Flags().StringSliceVar(&f.o.Sheets, "sheet", nil, "work out the sheet `NAME` besides those named Calculations or marked in A1")
-	c.Flags().StringSliceVar(&f.o.Data, "data", nil, "a `FOLDER`, besides the workbook's own, in which files named in expressions may lie")
+	c.Flags().StringSliceVar(&f.o.Data, "data", nil, "allow the files that expressions name to lie in `FOLDER`, besides the workbook's own")
 	c.Flags().IntVar(&f.o.Workers, "jobs", 0, "work out `N` books, and rows of one book, at once (default: as many as there are cores)")
 	c.Flags().StringVar(&f.shard, "shard", "", "work on part `K/N` of the books only, such as 1/3; each is in one part, by its path")
 	c.Flags().BoolVar(&f.quiet, "quiet", false, "show no progress bar on a terminal")

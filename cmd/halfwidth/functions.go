@@ -14,8 +14,10 @@ import (
 
 func functionsCommand() *cobra.Command {
 	c := &cobra.Command{
-		Use:     "functions [NAME]",
-		Short:   "List the functions, or show one function's reference page",
+		Use:   "functions [NAME]",
+		Short: "List the functions, or show one function's reference page",
+		Long: "functions lists every function by its family, with what it gives. With a NAME it shows that function's page: what it takes, what it\n" +
+			"gives, what it may find, its assumptions and citations, and an example for the shell.",
 		Example: "  halfwidth functions\n  halfwidth functions mean-interval",
 		Args:    oneFunction,
 	}

@@ -26,16 +26,20 @@ func printHelp(c *cobra.Command, _ []string) {
 		b.WriteString(texttab.Wrap(paragraph, width, "") + "\n\n")
 	}
 	b.WriteString("Usage:\n")
+	below, more := "verb", " …"
+	if c.HasParent() {
+		below, more = "shell", "" // those of completion
+	}
 	if !c.HasAvailableSubCommands() {
 		fmt.Fprintf(&b, "  %s\n", c.UseLine())
 	} else {
-		fmt.Fprintf(&b, "  %[1]s VERB …\n  %[1]s VERB --help\n", c.CommandPath())
+		fmt.Fprintf(&b, "  %[1]s %[2]s%[3]s\n  %[1]s %[2]s --help\n", c.CommandPath(), strings.ToUpper(below), more)
 	}
 	if c.Example != "" {
 		fmt.Fprintf(&b, "\nExample:\n%s\n", c.Example)
 	}
 	if c.HasAvailableSubCommands() {
-		b.WriteString("\nVerbs:\n")
+		fmt.Fprintf(&b, "\n%s%ss:\n", strings.ToUpper(below[:1]), below[1:])
 		for _, sub := range c.Commands() {
 			if sub.IsAvailableCommand() {
 				b.WriteString(listed(sub.Name(), sub.Short, 14, width))
@@ -43,9 +47,32 @@ func printHelp(c *cobra.Command, _ []string) {
 		}
 	}
 	if c.HasAvailableLocalFlags() {
-		fmt.Fprintf(&b, "\nFlags:\n%s", c.LocalFlags().FlagUsagesWrapped(width))
+		b.WriteString("\nFlags:\n" + listOfFlags(c.LocalFlags(), width))
 	}
 	fmt.Fprint(w, b.String())
+}
+
+// listOfFlags lists flags, each with the word that its text gives its value.
+func listOfFlags(flags *pflag.FlagSet, width int) string {
+	var names, texts []string
+	column := 0
+	flags.VisitAll(func(f *pflag.Flag) {
+		value, text := pflag.UnquoteUsage(f)
+		name := "    --" + f.Name
+		if f.Shorthand != "" {
+			name = "-" + f.Shorthand + ", --" + f.Name
+		}
+		if value != "" {
+			name += " " + value
+		}
+		names, texts = append(names, name), append(texts, text)
+		column = max(column, len(name)+4)
+	})
+	var b strings.Builder
+	for i, name := range names {
+		b.WriteString(listed(name, texts[i], column, width))
+	}
+	return b.String()
 }
 
 // listed is an entry of a list: a name, and at a column what is said of it.
@@ -75,9 +102,18 @@ func wrongFlag(c *cobra.Command, err error) error {
 // The verbs stand in the help as they are listed, by how often they are used.
 func init() { cobra.EnableCommandSorting = false }
 
+// intoShell says how each shell takes its script.
+var intoShell = map[string]string{
+	"bash":       "To have it in every shell, put this line into ~/.bashrc (it needs the package bash-completion): source <(halfwidth completion bash)",
+	"zsh":        "To have it in every shell, put this line into ~/.zshrc, after compinit: source <(halfwidth completion zsh)",
+	"fish":       "To have it in every shell, put this line into ~/.config/fish/config.fish: halfwidth completion fish | source",
+	"powershell": "To have it in every shell, put this line into the file that $PROFILE names: halfwidth completion powershell | Out-String | Invoke-Expression",
+}
+
 // nameOwnVerbs describes the verbs that the library adds in our words. The help
 // verb is left out of lists: --help does the same.
 func nameOwnVerbs(root *cobra.Command) {
+	root.Flags().BoolP("version", "v", false, "print the version and the Go release it was built with")
 	root.InitDefaultHelpCmd()
 	root.InitDefaultCompletionCmd()
 	for _, c := range root.Commands() {
@@ -90,6 +126,14 @@ func nameOwnVerbs(root *cobra.Command) {
 			c.Example = "  halfwidth completion bash"
 			c.RunE = func(c *cobra.Command, _ []string) error { return c.Help() }
 			c.Args = noVerb
+			for _, shell := range c.Commands() {
+				shell.Short = "Print the script for " + shell.Name()
+				shell.Long = shell.Short + ". " + intoShell[shell.Name()]
+				shell.Example = "  halfwidth completion " + shell.Name()
+				if f := shell.Flags().Lookup("no-descriptions"); f != nil {
+					f.Usage = "complete names without what they mean"
+				}
+			}
 		}
 	}
 }

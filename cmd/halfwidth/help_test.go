@@ -8,6 +8,7 @@ import (
 	"testing"
 
 	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
 
 	"halfwidth/funcs"
 )
@@ -101,6 +102,22 @@ func TestVerbsStandInTheHelpAsListed(t *testing.T) {
 			t.Fatalf("%s is missing or out of order in\n%s", verb().Name(), stdout)
 		}
 		at += next
+	}
+}
+
+// The word for a flag's value is ours, in capitals, and not the name of a type.
+func TestEveryFlagNamesItsValue(t *testing.T) {
+	for _, verb := range verbs {
+		verb().Flags().VisitAll(func(f *pflag.Flag) {
+			if value, text := pflag.UnquoteUsage(f); value != strings.ToUpper(value) || f.Value.Type() != "bool" && value == "" || text == "" {
+				t.Errorf("%s --%s %s: %q", verb().Name(), f.Name, value, text)
+			}
+		})
+	}
+	for _, shell := range []string{"bash", "zsh", "fish", "powershell"} {
+		if help, _, code := run(t, "completion", shell, "--help"); code != exitOK || !strings.Contains(help, intoShell[shell][len(intoShell[shell])-20:]) {
+			t.Errorf("code %d, help on %s:\n%s", code, shell, help)
+		}
 	}
 }
 

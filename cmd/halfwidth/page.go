@@ -36,11 +36,11 @@ func pageCommand() *cobra.Command {
 		Args:    someBooks,
 		RunE:    p.run,
 	}
-	c.Flags().StringVarP(&p.output, "output", "o", "", "the page to write, or the folder to write pages to")
+	c.Flags().StringVarP(&p.output, "output", "o", "", "write the page to `FILE`, or pages into this folder")
 	c.Flags().BoolVar(&p.replace, "replace", false, "write over a file that is no page of halfwidth")
-	c.Flags().StringSliceVar(&p.o.Sheets, "sheet", nil, "a calculation sheet besides those named Calculations or marked in A1")
-	c.Flags().StringSliceVar(&p.o.Data, "data", nil, "a folder, besides the workbook's own, in which files named in expressions may lie")
-	c.Flags().IntVar(&p.o.Workers, "jobs", 0, "how many rows to work out at once (default: as many as there are cores)")
+	c.Flags().StringSliceVar(&p.o.Sheets, "sheet", nil, "work out the sheet `NAME` besides those named Calculations or marked in A1")
+	c.Flags().StringSliceVar(&p.o.Data, "data", nil, "allow the files that expressions name to lie in `FOLDER`, besides the workbook's own")
+	c.Flags().IntVar(&p.o.Workers, "jobs", 0, "work out `N` rows at once (default: as many as there are cores)")
 	return c
 }
 

@@ -16,8 +16,11 @@ import (
 
 func previewCommand() *cobra.Command {
 	c := &cobra.Command{
-		Use:     "preview BOOK.xlsx|FOLDER…",
-		Short:   "Show what would be worked out and from which cells; compute nothing, write nothing",
+		Use:   "preview BOOK.xlsx|FOLDER…",
+		Short: "Show what would be worked out and from which cells; compute nothing, write nothing",
+		Long: "preview reads the workbook and shows for each row what every input would be: the value, or the cells that an expression leads\n" +
+			"to, with how many values they hold and how many are skipped. What would be refused is told. Nothing is computed or written.\n" +
+			"The exit status is 0 where all rows can be worked out, 1 where a row would be refused.",
 		Example: "  halfwidth preview testdata/workbooks/larkmoor.xlsx",
 		Args:    someBooks,
 	}

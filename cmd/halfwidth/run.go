@@ -52,7 +52,8 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		Use:   "halfwidth",
 		Short: "Statistics of the numbers in a workbook, written beside them as plain values",
 		Long: "halfwidth works out a calculation sheet: how sure an average is, whether a difference is real, how many must be measured.\n" +
-			"The answers are written into the sheet's result columns as plain values, with a note on whether they may be trusted.",
+			"The answers are written into the sheet's result columns as plain values, with a note on whether they may be trusted.\n\n" +
+			"The exit status is 0 where every row is ok or caution, 1 where some row is refused, 2 where the command could not be carried out.",
 		Version:       buildinfo.Version(),
 		Args:          noVerb,
 		SilenceErrors: true,
@@ -60,6 +61,7 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		RunE:          func(c *cobra.Command, _ []string) error { return c.Help() },
 	}
 	root.Example = "  halfwidth fill testdata/workbooks/larkmoor.xlsx"
+	root.PersistentFlags().BoolP("help", "h", false, "print this help")
 	root.SetFlagErrorFunc(wrongFlag)
 	root.SetHelpFunc(printHelp)
 	for _, verb := range verbs {
@@ -124,7 +126,7 @@ func noVerb(c *cobra.Command, args []string) error {
 
 // formatFlag adds --format to a command.
 func formatFlag(c *cobra.Command) *string {
-	return c.Flags().String("format", string(texttab.Text), "how to print, as `FORMAT`: text, json or csv")
+	return c.Flags().String("format", string(texttab.Text), "print as `FORMAT`: text (which is the default), json or csv")
 }
 
 // formatOf reads the value of --format.
