@@ -44,8 +44,8 @@ func (b *Book) Close() error {
 	return b.Book.Close()
 }
 
-// findPlaces lists sheets, tables, and those defined names that stand for one
-// range. A name of the whole book goes before one of a single sheet.
+// findPlaces lists sheets, tables and defined names, but for those that programs
+// keep for themselves.
 func (b *Book) findPlaces() {
 	sheets := b.Sheets()
 	for _, s := range sheets {
@@ -58,23 +58,29 @@ func (b *Book) findPlaces() {
 			FirstRow: t.Range.FirstRow, LastRow: t.Range.LastRow, FirstCol: t.Range.FirstCol, LastCol: t.Range.LastCol,
 			HeaderRows: t.HeaderRows, TotalsRows: t.TotalsRows})
 	}
-	seen := map[string]bool{}
-	for _, local := range []bool{false, true} {
-		for _, n := range b.DefinedNames() {
-			sheet, r, ok := reference(n.Ref)
-			at := b.SheetIndex(sheet)
-			key := strings.ToLower(n.Name)
-			if n.Hidden || (n.Sheet >= 0) != local || !ok || at < 0 || seen[key] {
-				continue
-			}
-			seen[key] = true
-			b.places = append(b.places, calculation.Place{Kind: calculation.DefinedName, Name: n.Name, Sheet: sheets[at].Name,
-				FirstRow: r.FirstRow, LastRow: r.LastRow, FirstCol: r.FirstCol, LastCol: r.LastCol})
+	for _, n := range b.DefinedNames() {
+		if n.Hidden || strings.HasPrefix(strings.ToLower(n.Name), builtInName) {
+			continue
 		}
+		p := calculation.Place{Kind: calculation.DefinedName, Name: n.Name}
+		if n.Sheet >= 0 {
+			p.Only = sheets[n.Sheet].Name
+		}
+		sheet, r, ok := reference(n.Ref)
+		if at := b.SheetIndex(sheet); ok && at >= 0 && sheets[at].Kind == ooxml.Worksheet {
+			p.Sheet, p.FirstRow, p.LastRow, p.FirstCol, p.LastCol = sheets[at].Name, r.FirstRow, r.LastRow, r.FirstCol, r.LastCol
+		} else {
+			p.NoRange = n.Ref
+		}
+		b.places = append(b.places, p)
 	}
 }
 
-// reference reads Trips!$C$2:$C$61 or 'Night shift'!C:D.
+// builtInName starts the names that programs give to print areas and the like
+// (ECMA-376 part 1, 18.2.5).
+const builtInName = "_xlnm."
+
+// reference reads Trips!$C$2:$C$61, 'Night shift'!C:D or Trips!2:61.
 func reference(text string) (sheet string, r ooxml.Range, ok bool) {
 	mark := strings.LastIndexByte(text, '!')
 	if mark < 0 {
@@ -84,16 +90,7 @@ func reference(text string) (sheet string, r ooxml.Range, ok bool) {
 	if strings.HasPrefix(sheet, "'") && strings.HasSuffix(sheet, "'") && len(sheet) > 1 {
 		sheet = strings.ReplaceAll(sheet[1:len(sheet)-1], "''", "'")
 	}
-	area := text[mark+1:]
-	if r, ok = ooxml.ParseRange(area); ok {
-		return sheet, r, true
-	}
-	from, to, found := strings.Cut(area, ":")
-	if !found {
-		return "", r, false
-	}
-	r, ok = ooxml.ParseRange(from + "1:" + to + "1")
-	r.LastRow = ooxml.Limits{}.WithDefaults().Rows
+	r, ok = anyRange(text[mark+1:])
 	return sheet, r, ok
 }
 
@@ -232,7 +229,7 @@ func (r *reader) cell(row int, cell *ooxml.Cell) error {
 		return nil
 	}
 	switch cell.Type {
-	case ooxml.TypeNumber, ooxml.TypeDate:
+	case ooxml.TypeNumber, ooxml.TypeDate, ooxml.TypeTime:
 		if cell.Saved {
 			kind, x := r.kind(cell), cell.Number
 			if kind == calculation.Date && r.book.Date1904() {
@@ -271,10 +268,18 @@ const days1904 = 1462
 
 // kind is the kind of a number by the format of its cell.
 func (r *reader) kind(cell *ooxml.Cell) calculation.CellKind {
-	if cell.Type == ooxml.TypeDate {
+	if cell.Type == ooxml.TypeTime {
+		return calculation.Duration
+	}
+	kind := r.formatKind(int(cell.Style))
+	if cell.Type == ooxml.TypeDate && kind == calculation.Number {
 		return calculation.Date
 	}
-	style := int(cell.Style)
+	return kind
+}
+
+// formatKind is the kind of the numbers that a style shows.
+func (r *reader) formatKind(style int) calculation.CellKind {
 	if style < len(r.formats) && r.formats[style] != calculation.Blank {
 		return r.formats[style]
 	}
@@ -311,8 +316,8 @@ func (r *reader) shared(index int) (uint32, error) {
 	return id, nil
 }
 
-// cover marks the cells of merged ranges but their first, and the blank cells
-// that an array formula fills.
+// cover marks the cells of merged ranges but their first, and the cells that an
+// array formula or a data table fills.
 func (r *reader) cover(facts ooxml.SheetFacts) *ooxml.Error {
 	columns := r.kept()
 	left := mostCovered
@@ -347,8 +352,12 @@ func (r *reader) cover(facts ooxml.SheetFacts) *ooxml.Error {
 	}
 	for _, a := range facts.Arrays {
 		err := each(a, func(row, col int, column *calculation.Column) {
-			if cell := column.At(row); cell.Kind == calculation.Blank && !cell.Formula {
+			switch cell := column.At(row); {
+			case cell.Formula || cell.Covered:
+			case cell.Kind == calculation.Blank:
 				column.Flag(row, calculation.IsFormula|calculation.IsUnsaved)
+			default:
+				column.Flag(row, calculation.IsFormula)
 			}
 		})
 		if err != nil {

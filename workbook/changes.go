@@ -146,7 +146,7 @@ func (b *Book) stored(sheet int, edits []ooxml.Edit) (map[calculation.CellRef]an
 			c := &row.Cells[i]
 			var v any
 			switch c.Type {
-			case ooxml.TypeNumber, ooxml.TypeDate:
+			case ooxml.TypeNumber, ooxml.TypeDate, ooxml.TypeTime:
 				v = c.Number
 			case ooxml.TypeBool:
 				v = c.Number != 0

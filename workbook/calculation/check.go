@@ -184,6 +184,8 @@ func (c *calcSheet) readTable(r *Row) {
 		r.refuse(at, Span{}, "bad-value", fmt.Sprintf("%s holds %s, which cannot name a sheet. Write a name, or empty the cell.", at, describe(cell)))
 	case strings.ContainsAny(name, `[]:*?/\`) || strings.HasPrefix(name, "'") || strings.HasSuffix(name, "'"):
 		r.refuse(at, Span{}, "bad-value", fmt.Sprintf("%s: a sheet's name holds none of [ ] : * ? / \\ and no single quote at its ends. Write another name.", at))
+	case strings.EqualFold(name, "History"):
+		r.refuse(at, Span{}, "bad-value", fmt.Sprintf("%s: spreadsheet programs keep the name %s for a sheet of their own. Write another name.", at, name))
 	case ByteToUTF16(name, len(name)) > maxSheetName:
 		r.refuse(at, Span{}, "bad-value", fmt.Sprintf("%s: a sheet's name has at most %d characters. Write a shorter one.", at, maxSheetName))
 	default:
@@ -198,7 +200,7 @@ func (p *Plan) readInputs(c *calcSheet, r *Row) {
 	if f == nil || r.Block.refused != nil {
 		return
 	}
-	p.lib.options = c.fileOptions(r.Block)
+	p.lib.options, p.lib.asking = c.fileOptions(r.Block), c.sheet.name
 	given := map[string]bool{}
 	for _, bc := range r.Block.Columns {
 		if bc.Role != InputColumn {

@@ -24,6 +24,7 @@ type library struct {
 	files   map[fileKey]*shelf
 	order   []*sheet    // sheets asked for, in the order in which they were first named
 	options FileOptions // of the block that is being read
+	asking  string      // the calculation sheet that is being read; empty where there is none
 }
 
 // fileKey is a file together with how it is read.
@@ -107,11 +108,13 @@ func (s *shelf) sheetCount() int {
 // address writes a cell with its sheet.
 func (sh *sheet) address(row, col int) string { return sh.label + "!" + CellRef{row, col}.String() }
 
-// names lists the names of the places, of one kind or of all.
+// names lists the names of the places, of one kind or of all, each once.
 func (s *shelf) names(kinds ...PlaceKind) []string {
 	var out []string
+	seen := map[string]bool{}
 	for _, p := range s.places {
-		if len(kinds) == 0 || slices.Contains(kinds, p.Kind) {
+		if (len(kinds) == 0 || slices.Contains(kinds, p.Kind)) && p.NoRange == "" && !seen[p.Name] {
+			seen[p.Name] = true
 			out = append(out, p.Name)
 		}
 	}
@@ -133,20 +136,24 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 		}
 		name = sheets[0]
 	}
-	var found []Place
-	for _, p := range sh.places {
-		if fold(p.Name) == fold(name) {
-			found = append(found, p)
-		}
+	asking := ""
+	if sh == lib.own {
+		asking = lib.asking
 	}
+	found := sh.called(name, asking)
 	switch {
+	case len(found) == 1 && found[0].NoRange != "":
+		return located{}, unknownPlace(ref.Span, fmt.Sprintf("%s is a defined name for %.60s, which is not one range of a sheet", quote(name), found[0].NoRange), "Let it stand for one, or name the sheet.")
 	case len(found) == 1:
 		return located{sh.sheet(found[0].Sheet), found[0]}, nil
 	case len(found) > 1:
 		kinds := make([]string, len(found))
 		for i, p := range found {
 			kinds[i] = p.Kind.String()
-			if p.Kind != Sheet {
+			switch {
+			case p.Only != "":
+				kinds[i] += " of the sheet " + p.Only
+			case p.Kind != Sheet && p.Sheet != "":
 				kinds[i] += " on " + p.Sheet
 			}
 		}
@@ -159,6 +166,37 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 		f.instead = append(f.instead, (&PlaceRef{File: ref.File, Name: near}).String())
 	}
 	return located{}, f
+}
+
+// called gives the places of a name, seen from a sheet. Of defined names of one
+// name, that of the sheet itself hides that of the book, which hides those of
+// other sheets, as spreadsheet programs have it. One that stands for no range is
+// found where nothing else is.
+func (s *shelf) called(name, from string) []Place {
+	var found []Place
+	rank := func(p Place) int {
+		switch p.Only {
+		case from:
+			return 2
+		case "":
+			return 1
+		}
+		return 0
+	}
+	best := 0
+	for _, p := range s.places {
+		if fold(p.Name) == fold(name) {
+			found = append(found, p)
+			if p.Kind == DefinedName {
+				best = max(best, rank(p))
+			}
+		}
+	}
+	found = slices.DeleteFunc(found, func(p Place) bool { return p.Kind == DefinedName && rank(p) < best })
+	if i := slices.IndexFunc(found, func(p Place) bool { return p.NoRange == "" }); i < 0 {
+		return found[:min(1, len(found))]
+	}
+	return slices.DeleteFunc(found, func(p Place) bool { return p.NoRange != "" })
 }
 
 func firstOr(list []string, otherwise string) string {

@@ -87,14 +87,19 @@ func readScenario(t *testing.T, text string) *scenario {
 				sheet = file
 			}
 			files[file].AddFrame(sheet, frameOf(t, body))
-		case "table", "name": // NAME SHEET!AREA [no-header] [totals]
+		case "table", "name": // NAME SHEET!AREA [no-header] [totals] [of SHEET], or NAME =FORMULA
+			if name, formula, ok := strings.Cut(name, " ="); ok {
+				s.source.AddPlace(Place{Kind: DefinedName, Name: name, NoRange: formula})
+				break
+			}
+			name, only, _ := strings.Cut(name, " of ")
 			fields := strings.Fields(name)
 			sheet, area, _ := strings.Cut(fields[1], "!")
 			a, ok := ParseArea(area)
 			if !ok {
 				t.Fatalf("part %q: no area", head)
 			}
-			p := Place{Kind: DefinedName, Name: fields[0], Sheet: sheet, FirstRow: a.FirstRow, LastRow: a.LastRow, FirstCol: a.FirstCol, LastCol: a.LastCol}
+			p := Place{Kind: DefinedName, Name: fields[0], Only: only, Sheet: sheet, FirstRow: a.FirstRow, LastRow: a.LastRow, FirstCol: a.FirstCol, LastCol: a.LastCol}
 			if kind == "table" {
 				p.Kind, p.HeaderRows = Table, 1
 				if slices.Contains(fields, "no-header") {

@@ -39,7 +39,7 @@ const (
 // String words the kind with its article.
 func (k PlaceKind) String() string { return [...]string{"a sheet", "a table", "a defined name"}[k] }
 
-// Place is a sheet, a table or a defined range of a Source. Rows and columns
+// Place is a sheet, a table or a defined name of a Source. Rows and columns
 // count from 1; for a sheet they are 0.
 type Place struct {
 	Kind                                 PlaceKind
@@ -47,6 +47,8 @@ type Place struct {
 	Sheet                                string // the sheet it lies on; for a sheet its own name
 	FirstRow, LastRow, FirstCol, LastCol int    // the whole range, header and totals rows included
 	HeaderRows, TotalsRows               int    // of a table
+	Only                                 string // of a defined name: the one sheet that it holds for; empty for the whole book
+	NoRange                              string // of a defined name: what it stands for where that is not one range of a sheet
 }
 
 // Source gives samples their rows: a workbook file, a CSV file beside it, or

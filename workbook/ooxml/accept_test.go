@@ -125,6 +125,8 @@ func TestValuesAreReadAsTheyStand(t *testing.T) {
 		{`<c r="A1" s="1"><v>0</v></c><c r="B1" s="1"><v>60</v></c><c r="C1" s="1"><v>-1</v></c>`, "1: A/1=0 B/1=60 C/1=-1"},
 		{`<c r="A1" t="d"><v>2024-03-05T08:15:00+02:00</v></c>`, "1: A=date 45356.34375"},
 		{`<c r="A1" t="d"><v>1899-12-31</v></c>`, "1: A=date 0"},
+		{`<c r="A1" t="d"><v>1899-12-30T06:00:00</v></c>`, "1: A=date 0.25"},
+		{`<c r="A1" t="d"><v>06:00:00</v></c>`, "1: A=time 0.25"},
 		{`<c r="A1" t="e"><v>#SPILL!</v></c><c r="B1" t="e"><f>1/0</f><v>#DIV/0!</v></c>`, "1: A=error #SPILL! B=f=error #DIV/0!"},
 		{`<c r="A1" t="str"><v xml:space="preserve"> a </v></c><c r="B1" t="inlineStr"><is><t> b </t></is></c>`, "1: A=' a ' B=' b '"},
 		{`<c r="A1" t="str"><v>&#x1F4E6;` + "\U0001F4E6" + `_xD83D__xDCE6_</v></c>`, "1: A='📦📦📦'"},

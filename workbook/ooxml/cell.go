@@ -177,9 +177,12 @@ func (s *scanner) decode(cell *Cell, text []byte, wanted bool) (filled bool, err
 			return false, s.faulty("the cell's value is %.40q, neither true nor false", text)
 		}
 	case TypeDate:
-		var ok bool
-		if cell.Number, ok = parseDate(text, s.date1904); !ok {
+		var clock, ok bool
+		if cell.Number, clock, ok = parseDate(text, s.date1904); !ok {
 			return false, s.faulty("the cell's value is %.40q, not a date in the form 2024-03-05T08:15:00", text)
+		}
+		if clock {
+			cell.Type = TypeTime
 		}
 	default:
 		if len(text) == 0 {

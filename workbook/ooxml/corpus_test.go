@@ -212,6 +212,8 @@ func render(texts func(c *Cell) (string, error), r *Row) string {
 			fmt.Fprintf(&s, "error %s", text)
 		case TypeDate:
 			fmt.Fprintf(&s, "date %s", strconv.FormatFloat(c.Number, 'g', -1, 64))
+		case TypeTime:
+			fmt.Fprintf(&s, "time %s", strconv.FormatFloat(c.Number, 'g', -1, 64))
 		}
 	}
 	return s.String()

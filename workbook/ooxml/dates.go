@@ -66,9 +66,11 @@ func DateOf(serial float64, date1904 bool) (year, month, day int, seconds float6
 }
 
 // parseDate reads the date, time of day, or both that a cell of the type d holds
-// (ISO 8601, as ECMA-376 part 1, 18.18.11 has it) as a serial number. A
-// zone is passed over: the cell means the time that it shows.
-func parseDate(text []byte, date1904 bool) (float64, bool) {
+// (ISO 8601, as ECMA-376 part 1, 18.18.11 has it) as a serial number, and tells
+// whether it is a time of day alone. A zone is passed over: the cell means the
+// time that it shows. The 30th of December 1899, from which strict books count
+// (18.17.4.1), is day 0 like the day after it.
+func parseDate(text []byte, date1904 bool) (serial float64, clock, ok bool) {
 	s := string(text)
 	for _, layout := range [...]string{"2006-01-02", "2006-01-02T15:04:05", "2006-01-02T15:04:05Z07:00", "2006-01-02 15:04:05",
 		"2006-01-02T15:04", "2006-01-02T15:04Z07:00", "15:04:05", "15:04"} {
@@ -76,13 +78,16 @@ func parseDate(text []byte, date1904 bool) (float64, bool) {
 		if err != nil {
 			continue
 		}
-		clock := time.Duration(t.Hour())*time.Hour + time.Duration(t.Minute())*time.Minute + time.Duration(t.Second())*time.Second + time.Duration(t.Nanosecond())
-		part := clock.Seconds() / daySeconds
+		since := time.Duration(t.Hour())*time.Hour + time.Duration(t.Minute())*time.Minute + time.Duration(t.Second())*time.Second + time.Duration(t.Nanosecond())
+		part := since.Seconds() / daySeconds
 		if layout[0] == '1' {
-			return part, true
+			return part, true, true
 		}
-		serial := Serial(t.Year(), int(t.Month()), t.Day(), date1904) + part
-		return serial, serial >= 0 && serial < lastSerial
+		serial = Serial(t.Year(), int(t.Month()), t.Day(), date1904) + part
+		if year, month, day := t.Date(); year == 1899 && month == time.December && day == 30 && !date1904 {
+			serial = part
+		}
+		return serial, false, serial >= 0 && serial < lastSerial
 	}
-	return 0, false
+	return 0, false, false
 }

@@ -59,12 +59,12 @@ func TestTimesRoundToMicroseconds(t *testing.T) {
 func TestISODates(t *testing.T) {
 	for text, want := range map[string]float64{"2024-03-05": 45356, "2024-03-05T12:00:00": 45356.5, "2024-03-05T12:00": 45356.5, "2024-03-05T12:00:00.5": 45356.5 + 0.5/86400,
 		"2024-03-05T12:00:00Z": 45356.5, "2024-03-05T12:00:00+02:00": 45356.5, "06:00:00": 0.25, "06:00": 0.25, "1900-01-01": 1} {
-		if got, ok := parseDate([]byte(text), false); !ok || math.Abs(got-want) > 1e-9 {
+		if got, clock, ok := parseDate([]byte(text), false); !ok || math.Abs(got-want) > 1e-9 || clock != (text[2] == ':') {
 			t.Errorf("%s is %v (%v), want %v", text, got, ok, want)
 		}
 	}
 	for _, text := range []string{"", "2024", "2024-13-01", "2024-02-30", "1899-01-01", "25:00:00", "5 March 2024"} {
-		if got, ok := parseDate([]byte(text), false); ok {
+		if got, _, ok := parseDate([]byte(text), false); ok {
 			t.Errorf("%q is %v, want no date", text, got)
 		}
 	}

@@ -36,7 +36,36 @@ func notZip(r io.ReaderAt, size int64, cause error) error {
 		e.Err = cause
 		return e
 	}
-	return &Error{Kind: ErrNotWorkbook, Reason: "the file is not a zip file, as workbooks are", Advice: "name a workbook (.xlsx or .xlsm)", Err: cause}
+	e := &Error{Kind: ErrNotWorkbook, Reason: "the file is not a zip file, as workbooks are", Advice: "name a workbook (.xlsx or .xlsm)", Err: cause}
+	if what := textForm(head); what != "" {
+		e.Reason, e.Advice = e.Reason+", but "+what, "open it in a spreadsheet program and save it as .xlsx"
+	}
+	return e
+}
+
+// textForm says what a file is that begins as text does; "" for other files.
+// Programs export tables as web pages, XML or separated text and name them as
+// workbooks, which spreadsheet programs open all the same.
+func textForm(head []byte) string {
+	head = bytes.TrimPrefix(head, []byte("\xEF\xBB\xBF"))
+	if bytes.HasPrefix(head, []byte{0xFF, 0xFE}) || bytes.HasPrefix(head, []byte{0xFE, 0xFF}) {
+		return "text"
+	}
+	start := bytes.ToLower(trimSpace(head))
+	switch {
+	case len(start) == 0 || bytes.IndexByte(head, 0) >= 0:
+		return ""
+	case bytes.HasPrefix(start, []byte("<?xml")) && !bytes.Contains(start, []byte("<html")):
+		return "XML"
+	case start[0] == '<':
+		return "a web page"
+	}
+	for _, c := range head {
+		if c < ' ' && !isXMLSpace(c) {
+			return ""
+		}
+	}
+	return "text"
 }
 
 // holdsUTF16 looks for an ASCII text written in UTF-16, little endian, as the

@@ -164,7 +164,12 @@ func TestOpenRefuses(t *testing.T) {
 		want string
 	}{
 		{"an empty file", nil, ErrNotWorkbook, "the file is empty; name a workbook (.xlsx or .xlsm)"},
-		{"a text file", []byte("depot;minutes\n"), ErrNotWorkbook, "the file is not a zip file, as workbooks are; name a workbook (.xlsx or .xlsm)"},
+		{"a text file", []byte("depot;minutes\n"), ErrNotWorkbook, "the file is not a zip file, as workbooks are, but text; open it in a spreadsheet program and save it as .xlsx"},
+		{"text in UTF-16", []byte("\xFF\xFEd\x00;\x00"), ErrNotWorkbook, "the file is not a zip file, as workbooks are, but text; open it in a spreadsheet program and save it as .xlsx"},
+		{"a web page", []byte("\xEF\xBB\xBF\r\n<HTML><table>"), ErrNotWorkbook, "the file is not a zip file, as workbooks are, but a web page; open it in a spreadsheet program and save it as .xlsx"},
+		{"a web page in XML", []byte(xmlHead + "<!DOCTYPE html><html>"), ErrNotWorkbook, "the file is not a zip file, as workbooks are, but a web page; open it in a spreadsheet program and save it as .xlsx"},
+		{"a workbook in one XML file", []byte(xmlHead + `<?mso-application progid="Excel.Sheet"?><Workbook>`), ErrNotWorkbook, "the file is not a zip file, as workbooks are, but XML; open it in a spreadsheet program and save it as .xlsx"},
+		{"a picture", []byte("\x89PNG\r\n\x1a\n"), ErrNotWorkbook, "the file is not a zip file, as workbooks are; name a workbook (.xlsx or .xlsm)"},
 		{"a truncated file", whole[:len(whole)*2/3], ErrDamaged, "the file is cut short: its zip directory is missing or unreadable; copy or download it again; if the original is no better, " + adviceDamaged},
 		{"an encrypted workbook", compoundFile("EncryptedPackage"), ErrEncrypted, "the file is encrypted; open it with its password, save it without a password, and use that file"},
 		{"an older workbook", compoundFile("Workbook"), ErrNotWorkbook, "the file is in an older binary format; open it in a spreadsheet program and save it as .xlsx"},

@@ -13,6 +13,7 @@ const (
 	TypeBool                   // Number is 1 or 0
 	TypeError                  // Text is the error's code, such as #N/A
 	TypeDate                   // a date written out in ISO 8601; Number is its serial number
+	TypeTime                   // a time of day written out in ISO 8601; Number is its fraction of a day
 )
 
 // Cell is one cell of a row that is not blank.

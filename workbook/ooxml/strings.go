@@ -134,10 +134,12 @@ func (x *lexer) richText(dst []byte) ([]byte, error) {
 				return dst, err
 			}
 		case x.is("r") && x.depth() == depth+1:
-		case x.space == spaceCompatibility:
-			return dst, x.stray()
-		default:
+		case x.is("rPr") || x.is("rPh") || x.is("phoneticPr"):
 			if err := x.skip(); err != nil {
+				return dst, err
+			}
+		default:
+			if err := x.stray(); err != nil {
 				return dst, err
 			}
 		}
@@ -159,6 +161,10 @@ func (x *lexer) elementText(dst []byte) ([]byte, error) {
 				return dst, err
 			}
 			return dst[:from+len(unescape(dst[from:]))], nil
+		case x.kind == tokenStart:
+			if err := x.stray(); err != nil {
+				return dst, err
+			}
 		case x.kind == tokenText && x.depth() == depth:
 			if dst, err = x.appendText(dst, x.text, x.literal); err != nil {
 				return dst, err

@@ -1,0 +1,118 @@
+package workbook
+
+import (
+	"context"
+	"os"
+	"path/filepath"
+	"regexp"
+	"strings"
+	"testing"
+
+	"halfwidth/funcs"
+	"halfwidth/workbook/calculation"
+)
+
+// filledRows fills a book and gives what became of its rows.
+func filledRows(t *testing.T, p parts) []*calculation.RowResult {
+	t.Helper()
+	path := filepath.Join(t.TempDir(), "book.xlsx")
+	if err := os.WriteFile(path, p.zip(t, ""), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	report, err := Fill(context.Background(), path, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return report.Results.Rows
+}
+
+// minutesOfTrips are the cells of the small book with minutes.
+var minutesOfTrips = regexp.MustCompile(`(<c r="B\d")><v>[\d.]+</v></c>`)
+
+// Some programs write times of day as they are read, by ISO 8601 (ECMA-376 part
+// 1, 18.18.11), and strict books give them the day from which they count.
+func TestWrittenTimesOfDayAreDurations(t *testing.T) {
+	styles := stylesA + `<cellXfs count="3"><xf numFmtId="0"/><xf numFmtId="14"/><xf numFmtId="20"/></cellXfs></styleSheet>`
+	for name, cell := range map[string]string{
+		"a time alone":                      ` t="d"><v>06:00:00</v></c>`,
+		"a time alone, shown as a date":     ` t="d" s="1"><v>06:00:00</v></c>`,
+		"with the first day of strict":      ` t="d" s="2"><v>1899-12-30T06:00:00</v></c>`,
+		"with the first day, shown as time": ` t="d" s="2"><v>1899-12-31T06:00:00</v></c>`,
+	} {
+		for _, date1904 := range []string{"0", "1"} {
+			if date1904 == "1" && strings.Contains(cell, "1899") {
+				continue
+			}
+			book := func(sample string) parts {
+				return plainBook().with(stylesPart, styles).with(questionPart, strings.Replace(question(sample), "mean-interval", "sample-summary", 1)).
+					with(workbookPart, workbookA+`<workbookPr date1904="`+date1904+`"/>`+bookSheets+`</workbook>`).
+					with(tripsPart, worksheetA+`<sheetData>`+minutesOfTrips.ReplaceAllString(tripRows, "$1"+cell)+`</sheetData></worksheet>`)
+			}
+			row := filledRows(t, book("minutes (hours) in Trips"))[0]
+			if note := filledRows(t, book("minutes in Trips"))[0].Note(); !strings.Contains(note, "Trips!B2 is a duration") {
+				t.Errorf("%s, 1904 %s: without a unit: %q", name, date1904, note)
+			}
+			if mean := sampleMean(t, row); mean != 6.0 {
+				t.Errorf("%s, 1904 %s: the mean is %v, want 6 hours: %s", name, date1904, mean, row.Note())
+			}
+		}
+	}
+}
+
+// A cell that another cell's array formula or data table fills holds a formula's
+// value, though no formula stands in it.
+func TestResultCellsThatAFormulaFillsRefuseTheirRow(t *testing.T) {
+	for _, formula := range []string{`<f t="array" ref="C2:D3">A1</f>`, `<f t="dataTable" ref="C2:D3" r1="A1"/>`} {
+		below := `<row r="3"><c r="A3" t="inlineStr"><is><t>mean-interval</t></is></c><c r="B3" t="inlineStr"><is><t>1; 2; 4</t></is></c><c r="C3"><v>5</v></c></row>` +
+			`<row r="4"><c r="A4" t="inlineStr"><is><t>mean-interval</t></is></c><c r="B4" t="inlineStr"><is><t>1; 2; 4</t></is></c></row></sheetData>`
+		sheet := strings.Replace(question("1; 2; 4"), `</row></sheetData>`, `<c r="C2">`+formula+`<v>7</v></c></row>`+below, 1)
+		rows := filledRows(t, plainBook().with(questionPart, sheet))
+		for i, want := range []funcs.Status{funcs.StatusRefused, funcs.StatusRefused, funcs.StatusCaution} {
+			if rows[i].Status != want || want == funcs.StatusRefused && !strings.Contains(rows[i].Note(), "holds a formula, which is never overwritten") {
+				t.Errorf("%s: row %d is %s: %s", formula, i+2, rows[i].Status, rows[i].Note())
+			}
+		}
+	}
+}
+
+// The values of an array formula are saved results, in each of its cells.
+func TestValuesOfArrayFormulasAreSavedResults(t *testing.T) {
+	row := filledRows(t, plainBook().with(tripsPart, worksheetA+`<sheetData>`+strings.Replace(tripRows, `<c r="B2">`, `<c r="B2"><f t="array" ref="B2:B7">D2:D7</f>`, 1)+`</sheetData></worksheet>`))[0]
+	if note := row.Note(); !strings.Contains(note, "6 values are the last saved result of a formula") {
+		t.Errorf("the note is %q", note)
+	}
+}
+
+func TestANameThatProgramsKeepIsNoTableSheet(t *testing.T) {
+	sheet := strings.NewReplacer("&gt; mean", "table sheet", `</row></sheetData>`, `<c r="C2" t="inlineStr"><is><t>history</t></is></c></row></sheetData>`).Replace(question("minutes in Trips for each depot"))
+	row := filledRows(t, plainBook().with(questionPart, sheet))[0]
+	if row.Status != funcs.StatusRefused || !strings.Contains(row.Note(), "C2: spreadsheet programs keep the name history") {
+		t.Errorf("%s: %s", row.Status, row.Note())
+	}
+}
+
+// Names of print areas and the like are no places; a name of a row's cells is one.
+func TestWhichDefinedNamesArePlaces(t *testing.T) {
+	book := func(sample string) parts {
+		return plainBook().with(questionPart, question(sample)).with(workbookPart, workbookA+bookSheets+`<definedNames><definedName name="_xlnm.Print_Area" localSheetId="0">Trips!$A$1:$B$7</definedName>`+
+			`<definedName name="few" localSheetId="1">Trips!$1:$5</definedName><definedName name="few">Trips!$A$1:$B$7</definedName><definedName name="gone">Trips!#REF!</definedName></definedNames></workbook>`)
+	}
+	if mean := sampleMean(t, filledRows(t, book("minutes in few"))[0]); mean != 125.0/4 {
+		t.Errorf("the name of the sheet's own gives the mean %v, want that of the first four trips", mean)
+	}
+	for sample, want := range map[string]string{"minutes in gone": `"gone" is a defined name for Trips!#REF!`, "minutes in nowhere": "Names are Trips, Calculations and few."} {
+		if note := filledRows(t, book(sample))[0].Note(); !strings.Contains(note, want) {
+			t.Errorf("%s: %q", sample, note)
+		}
+	}
+}
+
+// sampleMean gives the row's mean.
+func sampleMean(t *testing.T, row *calculation.RowResult) any {
+	t.Helper()
+	if row.Outcome == nil {
+		t.Fatalf("no outcome: %s", row.Note())
+	}
+	mean, _ := row.Outcome.Get("mean")
+	return mean
+}
