@@ -1,4 +1,5 @@
-// Package internal holds the test of the arrows between packages.
+// Package internal holds the tests of the tree as a whole: the arrows between
+// packages, the libraries, the examples and the pages for people.
 package internal
 
 import (
