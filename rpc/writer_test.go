@@ -35,7 +35,7 @@ func TestFramesOfManyGoroutinesStayWhole(t *testing.T) {
 		}
 		group.Wait()
 		w.flush()
-		w.close(time.Second)
+		w.close(patience)
 		got := framesOf(strings.NewReader(out.String()), Limits{})
 		if len(got) != 4001 || got[4000] != "EOF" {
 			t.Fatalf("%d frames came out whole", len(got)-1)
@@ -75,7 +75,7 @@ func TestGatheredFramesLeaveTogether(t *testing.T) {
 	if out.calls != 1 || out.Len() != 10*len(frame("{}")) {
 		t.Errorf("%d bytes left in %d writes", out.Len(), out.calls)
 	}
-	w.close(time.Second)
+	w.close(patience)
 	if err := w.send([]byte("{}")); !errors.Is(err, errOutputClosed) {
 		t.Errorf("a closed writer says %v", err)
 	}
@@ -103,7 +103,7 @@ func TestAFailedWriteIsToldOnce(t *testing.T) {
 			t.Error("a broken writer took a frame")
 		}
 		w.waitRoom(0)
-		w.close(time.Second)
+		w.close(patience)
 		if len(told) != 0 {
 			t.Errorf("told again: %v", <-told)
 		}

@@ -61,7 +61,7 @@ func TestLawsStandAnyArgument(t *testing.T) {
 		}
 	}
 	t.Logf("slowest pair of calls: %v", slowest)
-	if slowest > 100*time.Millisecond {
+	if slowest > time.Second {
 		t.Errorf("slowest pair of calls took %v", slowest)
 	}
 }
