@@ -23,6 +23,13 @@ func intervalResults(name, summary string) []Result {
 	}
 }
 
+// setInterval gives the results of intervalResults.
+func (c *Call) setInterval(name string, estimate float64, l limits) {
+	c.set(name, estimate)
+	c.setLimits(l)
+	c.set("half-width", l.halfWidth(estimate))
+}
+
 var (
 	resultSE = Result{"standard-error", Number, SameUnit, "standard error of the estimate"}
 	resultN  = Result{"n", Whole, NoUnit, "how many values"}
@@ -83,9 +90,7 @@ var meanInterval = &Function{
 		}
 		conf, dir := confidence.Of(c), direction.Of(c)
 		l := symmetric(conf, dir, s.mean, se, law)
-		c.set("mean", s.mean)
-		c.setLimits(l)
-		c.set("half-width", l.halfWidth(s.mean))
+		c.setInterval("mean", s.mean, l)
 		c.set("standard-error", se)
 		c.set("n", s.n)
 		if s.n > 1 && (c.has("sample") || c.has("sd")) {
@@ -95,7 +100,7 @@ var meanInterval = &Function{
 			c.method = "z interval with the known sd " + brief(known)
 		} else {
 			c.set("df", float64(s.n-1))
-			c.method = fmt.Sprintf("t interval with %s of freedom, sd with divisor n - 1", degrees(float64(s.n-1)))
+			c.method = fmt.Sprintf("t interval with %s, sd with divisor n - 1", degrees(float64(s.n-1)))
 		}
 		if finite {
 			c.setTotals(float64(size), s.mean, l)
@@ -107,10 +112,7 @@ var meanInterval = &Function{
 		}
 		if ref, ok := reference.Given(c); ok {
 			value := (s.mean - ref) / se
-			p := pValue(dir, value, law)
-			c.set(statistic, value)
-			c.set("p-value", p)
-			c.sayTest(ref, SameUnit, statistic, value, p)
+			c.setTest(ref, SameUnit, statistic, value, pValue(dir, value, law))
 		}
 		return c.checkSample(sample)
 	},
@@ -195,19 +197,14 @@ var pairedInterval = &Function{
 		dir, ref := direction.Of(c), reference.Of(c)
 		l := symmetric(confidence.Of(c), dir, s.mean, se, law)
 		t := (s.mean - ref) / se
-		p := pValue(dir, t, law)
-		c.set("difference", s.mean)
-		c.setLimits(l)
-		c.set("half-width", l.halfWidth(s.mean))
+		c.setInterval("difference", s.mean, l)
 		c.set("standard-error", se)
 		c.set("n", s.n)
 		c.set("sd", s.sd)
 		c.set("df", law.DF)
-		c.set("t", t)
-		c.set("p-value", p)
-		c.method = fmt.Sprintf("t interval of the differences with %s of freedom, sd with divisor n - 1", degrees(law.DF))
+		c.method = fmt.Sprintf("t interval of the differences with %s, sd with divisor n - 1", degrees(law.DF))
 		c.say(statement{"mean difference (sample - second-sample)", s.mean, l, SameUnit, nText(s.n) + " pairs"})
-		c.sayTest(ref, SameUnit, "t", t, p)
+		c.setTest(ref, SameUnit, "t", t, pValue(dir, t, law))
 		if differences == nil {
 			return c.checkSample(sample)
 		}

@@ -38,11 +38,8 @@ var bootstrapInterval = &Function{
 		values := c.gapless(sample.Of(c))
 		s := c.summarise(values)
 		c.count(s.n)
-		switch {
-		case s.n < 3:
-			return tooFew("sample", s.n, 3)
-		case s.sd == 0:
-			return c.noSpread("sample")
+		if err := c.enough("sample", s, 3); err != nil {
+			return err
 		}
 		q, err := c.bootstrapQuantity(s.n)
 		if err != nil {
@@ -148,8 +145,7 @@ func mediansLeavingOneOut(sorted []float64) []float64 {
 func sdsLeavingOneOut(sorted []float64) []float64 {
 	m, out := num.Moments(sorted), make([]float64, len(sorted))
 	n := float64(m.N)
-	for i, x := range sorted {
-		d := (x - m.Mean) - m.MeanLow
+	for i, d := range lessMean(sorted, m) {
 		out[i] = math.Sqrt(math.Max(0, m.SumSquares-float64(d*d)*n/(n-1)) / (n - 2))
 	}
 	return out
@@ -159,11 +155,7 @@ func sdsLeavingOneOut(sorted []float64) []float64 {
 // They come less the mean of all, which keeps the digits of small differences.
 func trimmedLeavingOneOut(sorted []float64, g int) []float64 {
 	n, out := len(sorted), make([]float64, len(sorted))
-	m := num.Moments(sorted)
-	d := make([]float64, n)
-	for i, x := range sorted {
-		d[i] = (x - m.Mean) - m.MeanLow
-	}
+	d := lessMean(sorted, num.Moments(sorted))
 	// Of the n-1 left, those kept are g to n-2-g, and so in sorted order g to n-1-g
 	// without the one left out, or without the end on its side.
 	kept := num.Sum(d[g : n-g])

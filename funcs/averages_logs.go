@@ -10,28 +10,22 @@ import (
 
 var positiveOnlyKind = FindingKind{"not-positive", "a value is zero or negative, so that it has no logarithm"}
 
-// logarithms gives the natural logarithms of a sample of positive values, in
-// order and with its gaps, and their summary.
-func (c *Call) logarithms(in In[[]float64]) ([]float64, summary, error) {
-	values := in.Of(c)
+// logarithms gives the natural logarithms of the sample's values, which must be
+// positive, in order and with their gaps, and their summary.
+func (c *Call) logarithms() ([]float64, summary, error) {
+	values := sample.Of(c)
 	logs := make([]float64, len(values))
 	for i, x := range values {
 		if x <= 0 {
-			return nil, summary{}, &refusal{Finding{Code: "not-positive", Severity: Refused, Input: in.Name, Cells: c.address(in.Name, i),
-				Message: fmt.Sprintf("Value %d of %s is %s, and only positive values have a logarithm; use mean-interval or median-interval, "+
-					"or leave such rows out by a condition.", i+1, in.Name, shortest(x))}}
+			return nil, summary{}, &refusal{Finding{Code: "not-positive", Severity: Refused, Input: "sample", Cells: c.address("sample", 0, i),
+				Message: fmt.Sprintf("Value %d of sample is %s, and only positive values have a logarithm; use mean-interval or median-interval, "+
+					"or leave such rows out by a condition.", i+1, shortest(x))}}
 		}
 		logs[i] = num.Log(x)
 	}
 	s := summarise(withoutGaps(logs))
 	c.count(s.n)
-	switch {
-	case s.n < 2:
-		return nil, s, tooFew(in.Name, s.n, 2)
-	case s.sd == 0:
-		return nil, s, c.noSpread(in.Name)
-	}
-	return logs, s, nil
+	return logs, s, c.enough("sample", s, 2)
 }
 
 // exponential gives limits on the scale of the values from limits of their
@@ -64,7 +58,7 @@ var geometricMeanInterval = &Function{
 		Source:    "the t interval of 1…5, 3 ± 2.776445105·√(2.5/5) (t quantile of JCGM 100 Table G.2), raised to the base e",
 	},
 	compute: func(c *Call) error {
-		logs, s, err := c.logarithms(sample)
+		logs, s, err := c.logarithms()
 		if err != nil {
 			return err
 		}
@@ -76,7 +70,7 @@ var geometricMeanInterval = &Function{
 		c.set("geometric-sd", num.Exp(s.sd))
 		c.set("n", s.n)
 		c.set("df", law.DF)
-		c.method = fmt.Sprintf("t interval of the logarithms with %s of freedom, sd with divisor n - 1", degrees(law.DF))
+		c.method = fmt.Sprintf("t interval of the logarithms with %s, sd with divisor n - 1", degrees(law.DF))
 		c.say(statement{"geometric mean", estimate, l, SameUnit, nText(s.n)})
 		return c.checkDerived("sample", "The list of logarithms", logs, s)
 	},
@@ -104,7 +98,7 @@ var lognormalMeanInterval = &Function{
 		Source:    "the defining formula at ȳ = 3, s² = 2.5, n = 5, t = 2.776445105 (JCGM 100 Table G.2)",
 	},
 	compute: func(c *Call) error {
-		logs, s, err := c.logarithms(sample)
+		logs, s, err := c.logarithms()
 		if err != nil {
 			return err
 		}
@@ -117,7 +111,7 @@ var lognormalMeanInterval = &Function{
 		c.set("mean", estimate)
 		c.setLimits(l)
 		c.set("n", s.n)
-		c.method = fmt.Sprintf("modified Cox interval with the t quantile of %s of freedom, sd of the logarithms with divisor n - 1", degrees(law.DF))
+		c.method = fmt.Sprintf("modified Cox interval with the t quantile of %s, sd of the logarithms with divisor n - 1", degrees(law.DF))
 		c.say(statement{"mean of a lognormal population", estimate, l, SameUnit, nText(s.n)})
 		return c.checkDerived("sample", "The list of logarithms", logs, s)
 	},

@@ -48,7 +48,7 @@ var medianInterval = &Function{
 			return refuse("confidence-not-attainable", "confidence", "With %s no limits reach %s confidence; the most that is attainable is %s. "+
 				"Measure more, or ask for less.", nText(n), percent(conf), percent(1-sides*law.CDF(0)))
 		}
-		l := limitsOf(conf, dir, func(float64) float64 { return values[k-1] }, func(float64) float64 { return values[n-k] })
+		l := limitsAt(dir, values[k-1], values[n-k])
 		median := num.Median(values)
 		attained := 1 - sides*law.CDF(k-1)
 		c.set("median", median)

@@ -52,7 +52,7 @@ var predictionInterval = &Function{
 		perSD := math.Sqrt(1 + 1/n) // sd of a further value about the mean, in sds
 		critical := dist.Student{DF: df}.UpperQuantile
 		what := "hold the further value"
-		c.method = fmt.Sprintf("t prediction limits with %s of freedom, sd with divisor n - 1", degrees(df))
+		c.method = fmt.Sprintf("t prediction limits with %s, sd with divisor n - 1", degrees(df))
 		switch {
 		case predictionOf.Of(c) == predictMean:
 			perSD = math.Sqrt(1/n + 1/float64(m))
@@ -67,11 +67,11 @@ var predictionInterval = &Function{
 				return law.UpperQuantile(q)
 			}
 			what = fmt.Sprintf("hold all %d further values together", m)
-			c.method = fmt.Sprintf("joint prediction limits by the equicorrelated t law with %s of freedom, sd with divisor n - 1", degrees(df))
+			c.method = fmt.Sprintf("joint prediction limits by the equicorrelated t law with %s, sd with divisor n - 1", degrees(df))
 		}
 		factor := critical(tail(confidence.Of(c), dir)) * perSD
 		reach := float64(factor * s.sd)
-		l := limitsOf(confidence.Of(c), dir, func(float64) float64 { return s.mean - reach }, func(float64) float64 { return s.mean + reach })
+		l := limitsAt(dir, s.mean-reach, s.mean+reach)
 		c.setLimits(l)
 		c.set("factor", factor)
 		c.set("n", s.n)

@@ -75,7 +75,7 @@ var trimmedMeanInterval = &Function{
 		c.setLimits(l)
 		c.set("n", len(values))
 		c.set("df", law.DF)
-		c.method = fmt.Sprintf("trimmed t interval, %d values left out at each end, winsorised sum of squares, %s of freedom", t.g, degrees(law.DF))
+		c.method = fmt.Sprintf("trimmed t interval, %d values left out at each end, winsorised sum of squares, %s", t.g, degrees(law.DF))
 		c.say(statement{"trimmed mean", t.mean, l, SameUnit, nText(len(values))})
 		if checks.Of(c) {
 			c.checkFewOfAnyShape(len(values))

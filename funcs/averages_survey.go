@@ -74,7 +74,7 @@ var stratifiedInterval = &Function{
 			law := dist.Student{DF: float64(variance*variance) / spread}
 			l = symmetric(confidence.Of(c), direction.Of(c), mean, se, law)
 			c.set("df", law.DF)
-			c.method = fmt.Sprintf("stratified t interval with %s of freedom (Satterthwaite), finite factor in each stratum", degrees(law.DF))
+			c.method = fmt.Sprintf("stratified t interval with %s (Satterthwaite), finite factor in each stratum", degrees(law.DF))
 		} else if !wholePopulation(groups, columns[0]) {
 			return c.noGroupSpread(groups)
 		} else {
@@ -176,7 +176,7 @@ var ratioOfSumsInterval = &Function{
 		c.set("standard-error", se)
 		c.set("n", n)
 		c.set("df", law.DF)
-		c.method = fmt.Sprintf("ratio of sums, linearised, with the t quantile of %s of freedom", degrees(law.DF))
+		c.method = fmt.Sprintf("ratio of sums, linearised, with the t quantile of %s", degrees(law.DF))
 		if finite {
 			c.method += fmt.Sprintf(", finite population of %d", size)
 		}
@@ -220,5 +220,5 @@ func (c *Call) completePairs() (first, second []float64, err error) {
 		}
 	}
 	c.count(len(first))
-	return first, second, c.enoughPairs(len(first))
+	return first, second, enoughPairs(len(first))
 }

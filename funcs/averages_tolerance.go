@@ -59,7 +59,7 @@ var toleranceInterval = &Function{
 			factor = dist.ToleranceFactor(s.n, share, conf)
 		}
 		reach := float64(factor * s.sd)
-		l := limitsOf(conf, dir, func(float64) float64 { return s.mean - reach }, func(float64) float64 { return s.mean + reach })
+		l := limitsAt(dir, s.mean-reach, s.mean+reach)
 		c.setLimits(l)
 		c.set("factor", factor)
 		c.set("attained-confidence", conf)
@@ -80,11 +80,12 @@ func (c *Call) orderTolerance(n int, share, conf float64, dir, what string) erro
 			"measure more (see distribution-free-tolerance-size), or ask for less.", nText(n), percent(share), percent(attained))
 	}
 	values := c.gapless(sample.Of(c))
-	l := limitsOf(conf, dir, func(float64) float64 { return slices.Min(values) }, func(float64) float64 { return slices.Max(values) })
+	lowest, highest := slices.Min(values), slices.Max(values)
+	l := limitsAt(dir, lowest, highest)
 	c.setLimits(l)
 	c.set("attained-confidence", attained)
 	c.method = "distribution-free limits, attained confidence " + percent(attained)
-	c.sayLimits(l, slices.Max(values)-slices.Min(values), what, nText(n))
+	c.sayLimits(l, highest-lowest, what, nText(n))
 	if checks.Of(c) {
 		c.checkNeighbours("sample", "The sample", sample.Of(c), c.summarise(values))
 	}

@@ -122,11 +122,9 @@ func (c *Call) origin(name string) *Origin {
 	return &Origin{}
 }
 
-// address is the cell of value i of a sample, as a list of at most one.
-func (c *Call) address(input string, i int) []string { return c.addressIn(input, 0, i) }
-
-// addressIn is the cell of value i of one of the groups of an input.
-func (c *Call) addressIn(input string, group, i int) []string {
+// address is the cell of value i of a sample, which is group 0, or of one of the
+// groups of an input, as a list of at most one.
+func (c *Call) address(input string, group, i int) []string {
 	if o := c.origin(input); o.Address != nil {
 		if a := o.Address(group, i); a != "" {
 			return []string{a}

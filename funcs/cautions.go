@@ -118,7 +118,7 @@ func (c *Call) checkFar(input, what string, group int, ordered []float64, s summ
 	if far/s.sd <= esdCritical(s.n, c.rare()) {
 		return
 	}
-	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.addressIn(input, group, at), Message: fmt.Sprintf(
+	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.address(input, group, at), Message: fmt.Sprintf(
 		"Value %d of %s, %s, lies %s standard deviations from the mean. Check that it is right; keep it if it is, and see outlier-check.",
 		at+1, lowerFirst(what), shortest(ordered[at]), brief(far/s.sd))})
 }

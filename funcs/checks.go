@@ -42,11 +42,8 @@ var outlierCheck = &Function{
 		given := sample.Of(c)
 		s := c.summarise(c.gapless(given))
 		c.count(s.n)
-		switch {
-		case s.n < 3:
-			return tooFew("sample", s.n, 3)
-		case s.sd == 0:
-			return c.noSpread("sample")
+		if err := c.enough("sample", s, 3); err != nil {
+			return err
 		}
 		alpha := significance.Of(c)
 		most := 1

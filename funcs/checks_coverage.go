@@ -204,11 +204,8 @@ var coverageCheck = &Function{
 		values := c.gapless(sample.Of(c))
 		s := c.summarise(values)
 		c.count(s.n)
-		switch {
-		case s.n < 2:
-			return tooFew("sample", s.n, 2)
-		case s.sd == 0:
-			return c.noSpread("sample")
+		if err := c.enough("sample", s, 2); err != nil {
+			return err
 		}
 		n := s.n
 		if given, ok := coverageN.Given(c); ok {

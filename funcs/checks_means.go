@@ -61,12 +61,3 @@ func (c *Call) simulated() (n int, draw func(*num.Stream, []float64), sd float64
 	}
 	return n, func(s *num.Stream, x []float64) { s.Resample(x, values) }, math.Sqrt(squares / float64(len(values))), nil
 }
-
-// lessMean gives the values less their mean.
-func lessMean(values []float64, m num.Summary) []float64 {
-	out := make([]float64, len(values))
-	for i, x := range values {
-		out[i] = (x - m.Mean) - m.MeanLow
-	}
-	return out
-}

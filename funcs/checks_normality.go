@@ -36,11 +36,8 @@ var normalityCheck = &Function{
 		values := num.Sorted(c.gapless(sample.Of(c)))
 		s := summarise(values)
 		c.count(s.n)
-		switch {
-		case s.n < 3:
-			return tooFew("sample", s.n, 3)
-		case s.sd == 0:
-			return c.noSpread("sample")
+		if err := c.enough("sample", s, 3); err != nil {
+			return err
 		}
 		var parts []string
 		if s.n <= 5000 {

@@ -100,7 +100,7 @@ func (c *Call) controlRows(groups []groupSummary, at int, sd, df float64) error 
 		}
 		c.rows = append(c.rows, Row{Values: values})
 	}
-	c.method = fmt.Sprintf("Dunnett's comparisons of %s with the control group %s, one pooled variance and %s of freedom",
+	c.method = fmt.Sprintf("Dunnett's comparisons of %s with the control group %s, one pooled variance and %s",
 		plural(len(others), "group"), control.name, degrees(df))
 	if dir != either {
 		c.method += ", direction " + dir

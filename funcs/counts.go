@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"halfwidth/funcs/internal/dist"
+	"halfwidth/funcs/internal/num"
 )
 
 var counts = []*Function{proportionInterval, proportionDifferenceInterval, proportionsComparison, rateInterval, rateRatioInterval}
@@ -112,7 +113,7 @@ func (c *Call) wilsonInterval(x, n, size float64, finite bool) limits {
 	if finite {
 		c.method += fmt.Sprintf(", finite population of %s", shortest(size))
 		if n == size {
-			return limitsOf(confidence.Of(c), direction.Of(c), func(float64) float64 { return share }, func(float64) float64 { return share })
+			return limitsAt(direction.Of(c), share, share)
 		}
 		n *= (size - 1) / (size - n)
 	}
@@ -170,24 +171,10 @@ func (c *Call) testShare(x, n, ref float64, size int, finite bool) {
 				shortest(ref), size)
 			return
 		}
-		p = hypergeometricPValue(int(x), int(n), int(marked), size, dir)
+		law := dist.Hypergeometric{Population: size, Marked: int(marked), Draws: int(n)}
+		p = tailP(dir, law.CDF(int(x)), law.SF(int(x)-1))
 	}
-	c.set("p-value", p)
-	c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(ref), sided(dir), pText(p))
-}
-
-// hypergeometricPValue is the tail in the direction claimed, or the smaller
-// one doubled.
-func hypergeometricPValue(x, n, marked, size int, dir string) float64 {
-	law := dist.Hypergeometric{Population: size, Marked: marked, Draws: n}
-	atMost, atLeast := law.CDF(x), law.SF(x-1)
-	switch dir {
-	case above:
-		return atLeast
-	case below:
-		return atMost
-	}
-	return math.Min(1, 2*math.Min(atMost, atLeast))
+	c.setExactTest(ref, p)
 }
 
 // hypergeometricLimits are the fewest and the most marked of the population
@@ -196,28 +183,16 @@ func hypergeometricLimits(x, n, size int, conf float64, dir string) limits {
 	law := func(marked int) dist.Hypergeometric {
 		return dist.Hypergeometric{Population: size, Marked: marked, Draws: n}
 	}
+	fewest, most := x, size-(n-x) // that are possible
+	middle := fewest + int(float64(most-fewest)*float64(x)/float64(n))
 	return limitsOf(conf, dir,
-		func(q float64) float64 { // the fewest marked with P(X >= x) > q
-			lo, hi := x-1, size-(n-x) // rejected or impossible; possible
-			for hi-lo > 1 {
-				if mid := lo + (hi-lo)/2; !staysIn(law(mid).SF(x-1), q) {
-					hi = mid
-				} else {
-					lo = mid
-				}
-			}
-			return float64(hi) / float64(size)
+		func(q float64) float64 { // the fewest with P(X >= x) > q
+			marked, _ := num.Smallest(fewest, most, middle, func(marked int) bool { return marked == most || !staysIn(law(marked).SF(x-1), q) })
+			return float64(marked) / float64(size)
 		},
-		func(q float64) float64 { // the most marked with P(X <= x) > q
-			lo, hi := x, size-(n-x)+1
-			for hi-lo > 1 {
-				if mid := lo + (hi-lo)/2; !staysIn(law(mid).CDF(x), q) {
-					lo = mid
-				} else {
-					hi = mid
-				}
-			}
-			return float64(lo) / float64(size)
+		func(q float64) float64 { // the most with P(X <= x) > q
+			beyond, _ := num.Smallest(fewest+1, most+1, middle, func(marked int) bool { return marked > most || staysIn(law(marked).CDF(x), q) })
+			return float64(beyond-1) / float64(size)
 		})
 }
 

@@ -9,6 +9,15 @@ import (
 
 // What the intervals and tests of counts and their plans share.
 
+// The kinds of interval of a proportion.
+const (
+	wilson     = "wilson"
+	exactShare = "clopper-pearson"
+)
+
+var shareKind = choice("kind", "wilson: from the score test, near its confidence on average; clopper-pearson: exact, never below its confidence",
+	wilson, exactShare)
+
 // binomialAtLeast is P(X >= x) for X ~ Binomial(n, p); x may be a fraction, as
 // the incomplete beta function continues it.
 func binomialAtLeast(x, n, p float64) float64 {
@@ -34,16 +43,9 @@ func binomialAtMost(x, n, p float64) float64 {
 	return upper
 }
 
-// binomialPValue is the exact p-value of x successes in n against the reference:
-// the tail in the direction claimed; for either, the smaller one doubled.
+// binomialPValue is the exact p-value of x successes in n against the reference.
 func binomialPValue(x, n, reference float64, direction string) float64 {
-	switch direction {
-	case above:
-		return binomialAtLeast(x, n, reference)
-	case below:
-		return binomialAtMost(x, n, reference)
-	}
-	return math.Min(1, 2*math.Min(binomialAtLeast(x, n, reference), binomialAtMost(x, n, reference)))
+	return tailP(direction, binomialAtMost(x, n, reference), binomialAtLeast(x, n, reference))
 }
 
 // pooledScoreZ is the score statistic of the difference of two proportions,

@@ -47,17 +47,8 @@ var rateInterval = &Function{
 		c.method = "exact Poisson interval (Garwood)"
 		c.say(statement{"rate", x / t, l, NoUnit, fmt.Sprintf("%s in %s", plural(int(x), "event"), brief(t))})
 		if ref, ok := rateReference.Given(c); ok {
-			mean := float64(ref * t)
-			atMost, atLeast := poissonTails(x, mean)
-			p := atMost
-			switch dir {
-			case above:
-				p = atLeast
-			case either:
-				p = math.Min(1, 2*math.Min(atMost, atLeast))
-			}
-			c.set("p-value", p)
-			c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(ref), sided(dir), pText(p))
+			atMost, atLeast := poissonTails(x, float64(ref*t))
+			c.setExactTest(ref, tailP(dir, atMost, atLeast))
 		}
 		return nil
 	},
@@ -123,8 +114,6 @@ var rateRatioInterval = &Function{
 			})
 		ref := ratioReference.Of(c)
 		chance := float64(ref*t1) / (float64(ref*t1) + t2)
-		p := binomialPValue(x1, x1+x2, chance, dir)
-		c.set("p-value", p)
 		c.method = "exact conditional interval of a ratio of Poisson rates"
 		counts := fmt.Sprintf("%s and %s", plural(int(x1), "event"), plural(int(x2), "event"))
 		if x2 > 0 {
@@ -141,7 +130,7 @@ var rateRatioInterval = &Function{
 				c.sentence = fmt.Sprintf("The ratio of rates (first / second) has no upper limit (%s direction, %s; %s).", dir, counts, c.method)
 			}
 		}
-		c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(ref), sided(dir), pText(p))
+		c.setExactTest(ref, binomialPValue(x1, x1+x2, chance, dir))
 		return nil
 	},
 }

@@ -76,8 +76,8 @@ var proportionsComparison = &Function{
 		if least := slices.Min(n) * min(share, 1-share); least < 5 {
 			c.caution("few-expected", "successes", "The smallest expected count is %s, below 5, so the test is a rough guide; join groups, or measure more.", brief(least))
 		}
-		c.method = fmt.Sprintf("chi-square test with %s of freedom; pairwise score limits (Newcombe, method 10), p-values adjusted by Holm's method", degrees(df))
-		c.sentence = fmt.Sprintf("Over %d groups (n = %s in all) the shares give chi-square = %s with %s of freedom, %s; the %s have %s intervals (method 10 of Newcombe), each alone, and p-values adjusted by Holm's method.",
+		c.method = fmt.Sprintf("chi-square test with %s; pairwise score limits (Newcombe, method 10), p-values adjusted by Holm's method", degrees(df))
+		c.sentence = fmt.Sprintf("Over %d groups (n = %s in all) the shares give chi-square = %s with %s, %s; the %s have %s intervals (method 10 of Newcombe), each alone, and p-values adjusted by Holm's method.",
 			len(names), shortest(allN), brief(chi), degrees(df), pText(p), plural(len(names)*(len(names)-1)/2, "pair"), percent(confidence.Of(c)))
 		c.pairsOfShares(names, x, n)
 		return nil

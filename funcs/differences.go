@@ -27,9 +27,9 @@ var twoMeansFindings = slices.Concat(severalChecks, []FindingKind{spreadsKind})
 // methodText names the interval, its degrees of freedom and the divisor.
 func (m twoMeans) methodText(interval, variances string) string {
 	if variances == pooled {
-		return fmt.Sprintf("%s with one pooled variance and %s of freedom, sds with divisor n - 1", interval, degrees(m.df))
+		return fmt.Sprintf("%s with one pooled variance and %s, sds with divisor n - 1", interval, degrees(m.df))
 	}
-	return fmt.Sprintf("%s with separate variances and %s of freedom by Satterthwaite, sds with divisor n - 1", interval, degrees(m.df))
+	return fmt.Sprintf("%s with separate variances and %s by Satterthwaite, sds with divisor n - 1", interval, degrees(m.df))
 }
 
 // checkMeans raises the cautions of two samples whose means are compared.
@@ -78,19 +78,14 @@ var differenceInterval = &Function{
 		dir, ref := direction.Of(c), reference.Of(c)
 		l := symmetric(confidence.Of(c), dir, m.difference, m.se, law)
 		t := (m.difference - ref) / m.se
-		p := pValue(dir, t, law)
-		c.set("difference", m.difference)
-		c.setLimits(l)
-		c.set("half-width", l.halfWidth(m.difference))
+		c.setInterval("difference", m.difference, l)
 		c.set("standard-error", m.se)
 		c.set("df", m.df)
-		c.set("t", t)
-		c.set("p-value", p)
 		c.set("pooled-sd", m.pooledSD)
 		c.set("standardized-difference", (m.difference-ref)/m.pooledSD*hedgesFactor(float64(first.n-1)+float64(second.n-1)))
 		c.method = m.methodText("t interval", kind)
 		c.say(statement{what: "difference of means (first - second)", estimate: m.difference, limits: l, unit: SameUnit, counts: nTexts(first, second)})
-		c.sayTest(ref, SameUnit, "t", t, p)
+		c.setTest(ref, SameUnit, "t", t, pValue(dir, t, law))
 		return c.checkMeans(first, second)
 	},
 }

@@ -105,7 +105,7 @@ func (c *Call) centredDistances(groups []groupSummary, kind string) error {
 	if kind == brownForsythe {
 		c.method = "Brown-Forsythe test: analysis of variance of the distances from the groups' medians"
 	}
-	c.saySpreads(groups, fmt.Sprintf("f = %s with %s and %s of freedom", brief(f), brief(df1), degrees(df2)), p)
+	c.saySpreads(groups, fmt.Sprintf("f = %s with %s and %s", brief(f), brief(df1), degrees(df2)), p)
 	return nil
 }
 
@@ -166,6 +166,6 @@ func (c *Call) bartlettTest(groups []groupSummary, _ string) error {
 	c.set("df-between", df1)
 	c.set("p-value", p)
 	c.method = "Bartlett's test of equal variances, variances with divisor n - 1"
-	c.saySpreads(groups, fmt.Sprintf("chi-square = %s with %s of freedom", brief(chi), degrees(df1)), p)
+	c.saySpreads(groups, fmt.Sprintf("chi-square = %s with %s", brief(chi), degrees(df1)), p)
 	return nil
 }

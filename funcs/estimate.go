@@ -27,14 +27,17 @@ func (l limits) halfWidth(estimate float64) float64 {
 	}
 }
 
-// tail is the probability outside each limit that exists: the whole of
-// 1 - confidence for a one-sided claim, half of it for both limits.
-func tail(confidence float64, direction string) float64 {
+// oneTail is the share of a probability that each tail has: the whole of it for a
+// one-sided claim, half of it for either.
+func oneTail(probability float64, direction string) float64 {
 	if direction == either {
-		return (1 - confidence) / 2
+		return probability / 2
 	}
-	return 1 - confidence
+	return probability
 }
+
+// tail is the probability outside each limit that exists.
+func tail(confidence float64, direction string) float64 { return oneTail(1-confidence, direction) }
 
 // limitsOf gives the limits that the direction asks for. The functions give the
 // limit that leaves the probability q outside, below and above.
@@ -50,6 +53,11 @@ func limitsOf(confidence float64, direction string, lower, upper func(q float64)
 	return l
 }
 
+// limitsAt gives those of two limits that the direction asks for.
+func limitsAt(direction string, lower, upper float64) limits {
+	return limits{lower, upper, direction != below, direction != above}
+}
+
 // symmetric gives the limits estimate ± quantile·se of a law symmetric about 0.
 func symmetric(confidence float64, direction string, estimate, se float64, law dist.Distribution) limits {
 	return limitsOf(confidence, direction,
@@ -60,13 +68,19 @@ func symmetric(confidence float64, direction string, estimate, se float64, law d
 // pValue is the probability of a statistic at least as far in the direction
 // claimed; for either, twice the smaller tail, at most 1.
 func pValue(direction string, statistic float64, law dist.Distribution) float64 {
+	return tailP(direction, law.CDF(statistic), law.SF(statistic))
+}
+
+// tailP is pValue from both tails: the probability of a statistic at most, and at
+// least, as large as the one found.
+func tailP(direction string, atMost, atLeast float64) float64 {
 	switch direction {
 	case above:
-		return law.SF(statistic)
+		return atLeast
 	case below:
-		return law.CDF(statistic)
+		return atMost
 	}
-	return math.Min(1, 2*math.Min(law.CDF(statistic), law.SF(statistic)))
+	return math.Min(1, 2*math.Min(atMost, atLeast))
 }
 
 // setLimits gives the limits as results under the names lower and upper.
@@ -101,6 +115,15 @@ func summaryFrom(m num.Summary) summary {
 	return s
 }
 
+// lessMean gives the values less their mean.
+func lessMean(values []float64, m num.Summary) []float64 {
+	out := make([]float64, len(values))
+	for i, x := range values {
+		out[i] = (x - m.Mean) - m.MeanLow
+	}
+	return out
+}
+
 // summaryOf reads a sample, or the summary given in its place. A sample of one
 // value is refused.
 func (c *Call) summaryOf(sample In[[]float64], mean, sd In[float64], n In[int]) (summary, error) {
@@ -116,6 +139,18 @@ func (c *Call) summaryOf(sample In[[]float64], mean, sd In[float64], n In[int]) 
 		return s, tooFew(sample.Name, s.n, 2)
 	}
 	return s, nil
+}
+
+// enough refuses a sample of fewer values than the computation needs, or of values
+// that are all equal.
+func (c *Call) enough(input string, s summary, need int) error {
+	switch {
+	case s.n < need:
+		return tooFew(input, s.n, need)
+	case s.sd == 0:
+		return c.noSpread(input)
+	}
+	return nil
 }
 
 // tooFew refuses a sample with fewer values than the computation needs.
@@ -156,7 +191,7 @@ func (c *Call) pairs() (summary, []float64, error) {
 	}
 	s := summarise(withoutGaps(differences))
 	c.count(s.n)
-	return s, differences, c.enoughPairs(s.n)
+	return s, differences, enoughPairs(s.n)
 }
 
 // sameLength refuses two samples that cannot pair value by value.
@@ -170,7 +205,7 @@ func (c *Call) sameLength(first, second []float64) error {
 }
 
 // enoughPairs refuses fewer than two complete pairs.
-func (c *Call) enoughPairs(n int) error {
+func enoughPairs(n int) error {
 	if n < 2 {
 		return refuse("few-values", "sample", "%s, but at least 2 are needed; fill in the missing partners.", map[int]string{0: "No pair is complete", 1: "Only one pair is complete"}[n])
 	}
@@ -189,10 +224,6 @@ func correlation(x, y []float64) (float64, bool) {
 	if ma.SumSquares == 0 || mb.SumSquares == 0 {
 		return 0, false
 	}
-	da, db := make([]float64, len(a)), make([]float64, len(b))
-	for i := range a {
-		da[i], db[i] = (a[i]-ma.Mean)-ma.MeanLow, (b[i]-mb.Mean)-mb.MeanLow
-	}
-	r := num.SumProducts(da, db) / (math.Sqrt(ma.SumSquares) * math.Sqrt(mb.SumSquares))
+	r := num.SumProducts(lessMean(a, ma), lessMean(b, mb)) / (math.Sqrt(ma.SumSquares) * math.Sqrt(mb.SumSquares))
 	return math.Max(-1, math.Min(1, r)), true
 }

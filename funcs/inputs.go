@@ -45,8 +45,11 @@ func (in In[T]) within(d Domain) In[T] {
 	return in
 }
 
+// described is a typed input of whatever type.
+type described interface{ describe() Input }
+
 // inputs lists descriptors of typed inputs in catalogue order.
-func inputs(list ...interface{ describe() Input }) []Input {
+func inputs(list ...described) []Input {
 	out := make([]Input, len(list))
 	for i, in := range list {
 		out[i] = in.describe()

@@ -107,7 +107,7 @@ var normalProbability = &Function{
 	Name:        "normal-probability",
 	Version:     1,
 	Summary:     "probability that a normal quantity lies between two values, or beyond one",
-	Inputs:      inputs(endsIn(SameUnit, lawMean.withDefault(0), lawSD.withDefault(1))...),
+	Inputs:      withEnds(SameUnit, lawMean.withDefault(0), lawSD.withDefault(1)),
 	OneOf:       ends,
 	Results:     probabilityResults,
 	Assumptions: []string{"a normal quantity whose mean and standard deviation are known"},

@@ -17,7 +17,7 @@ func (c *Call) correlate(items *sumItems) error {
 		largest = math.Max(largest, math.Abs(x))
 	}
 	if largest == 0 {
-		return c.noSumSpread(items)
+		return noSumSpread(items)
 	}
 	if math.IsInf(largest, 0) {
 		return &refusal{beyondDouble("sd")}
@@ -37,7 +37,7 @@ func (c *Call) correlate(items *sumItems) error {
 		variance = variance.Add(response[i].Times(a[i]))
 	}
 	if !(variance.Float() > 0) {
-		return c.noSumSpread(items)
+		return noSumSpread(items)
 	}
 	items.share = make([]float64, len(a))
 	for i := range a {
@@ -50,7 +50,7 @@ func (c *Call) correlate(items *sumItems) error {
 	return nil
 }
 
-func (c *Call) noSumSpread(items *sumItems) error {
+func noSumSpread(items *sumItems) error {
 	input := "sds"
 	if items.triangular {
 		input = "highs"

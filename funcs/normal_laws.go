@@ -24,15 +24,11 @@ var (
 		"upper probability is given as itself", below, above)
 )
 
-// endsIn lists a law's parameters and the two ends, which have the unit u.
-func endsIn(u Unit, parameters ...In[float64]) []interface{ describe() Input } {
-	var out []interface{ describe() Input }
-	for _, p := range parameters {
-		out = append(out, p)
-	}
+// withEnds lists a law's parameters and the two ends, which have the unit u.
+func withEnds(u Unit, parameters ...described) []Input {
 	low, high := lowEnd, highEnd
 	low.Unit, high.Unit = u, u
-	return append(out, low, high)
+	return append(inputs(parameters...), low.Input, high.Input)
 }
 
 var probabilityResults = []Result{
@@ -51,7 +47,8 @@ func probabilityOf(law lawOf) func(*Call) error {
 		x, words := law(c)
 		a, hasLow := lowEnd.Given(c)
 		b, hasHigh := highEnd.Given(c)
-		u := c.unitOf("from")
+		from, _ := c.Function.Input("from")
+		u := from.Unit
 		var inside, outside float64
 		var where string
 		switch {
@@ -95,22 +92,11 @@ func quantileOf(law lawOf) func(*Call) error {
 		if n, ok := x.(normalLaw); ok {
 			scale = n.sd
 		}
+		result, _ := c.Function.Result("value")
 		c.sentence = fmt.Sprintf("Under %s, a value is %s %s with probability %s.",
-			words, relation, c.withUnit(toPlace(value, lastPlace(scale, value)-3), c.resultUnit("value")), chanceText(p, 1-p))
+			words, relation, c.withUnit(toPlace(value, lastPlace(scale, value)-3), result.Unit), chanceText(p, 1-p))
 		return nil
 	}
-}
-
-// unitOf is how the unit of an input follows from the sample's.
-func (c *Call) unitOf(input string) Unit {
-	in, _ := c.Function.Input(input)
-	return in.Unit
-}
-
-// resultUnit is how the unit of a result follows from the sample's.
-func (c *Call) resultUnit(result string) Unit {
-	r, _ := c.Function.Result(result)
-	return r.Unit
 }
 
 // chanceText words a probability whose complement is known too: four digits, or
@@ -126,12 +112,12 @@ var lawDF = degreesOfFreedom("df", "degrees of freedom", false)
 
 func studentLaw(c *Call) (dist.Distribution, string) {
 	df := lawDF.Of(c)
-	return dist.Student{DF: df}, "Student's t distribution with " + degreesText(df)
+	return dist.Student{DF: df}, "Student's t distribution with " + degrees(df)
 }
 
 func chiSquareLaw(c *Call) (dist.Distribution, string) {
 	df := lawDF.Of(c)
-	return dist.ChiSquare{DF: df}, "the chi-square distribution with " + degreesText(df)
+	return dist.ChiSquare{DF: df}, "the chi-square distribution with " + degrees(df)
 }
 
 var (
@@ -141,22 +127,7 @@ var (
 
 func fLaw(c *Call) (dist.Distribution, string) {
 	d1, d2 := firstDF.Of(c), secondDF.Of(c)
-	return dist.F{DF1: d1, DF2: d2}, fmt.Sprintf("the F distribution with %s and %s", dfText(d1), degreesText(d2))
-}
-
-// degreesText words degrees of freedom, infinite ones too.
-func degreesText(df float64) string {
-	if isInfinite(df) {
-		return "infinite degrees of freedom"
-	}
-	return degrees(df) + " of freedom"
-}
-
-func dfText(df float64) string {
-	if isInfinite(df) {
-		return Infinite
-	}
-	return brief(df)
+	return dist.F{DF1: d1, DF2: d2}, fmt.Sprintf("the F distribution with %s and %s", dfText(d1), degrees(d2))
 }
 
 var tDF = degreesOfFreedom("df", "degrees of freedom; infinite is the normal distribution", true)
@@ -165,7 +136,7 @@ var tProbability = &Function{
 	Name:      "t-probability",
 	Version:   1,
 	Summary:   "probability that a value of Student's t distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, tDF)...),
+	Inputs:    withEnds(NoUnit, tDF),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"Student 1908", "JCGM 100 Table G.2"},
@@ -200,7 +171,7 @@ var chiSquareProbability = &Function{
 	Name:      "chi-square-probability",
 	Version:   1,
 	Summary:   "probability that a value of the chi-square distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, lawDF)...),
+	Inputs:    withEnds(NoUnit, lawDF),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"ISO 3534-1"},
@@ -235,7 +206,7 @@ var fProbability = &Function{
 	Name:      "f-probability",
 	Version:   1,
 	Summary:   "probability that a value of the F distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, firstDF, secondDF)...),
+	Inputs:    withEnds(NoUnit, firstDF, secondDF),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"ISO 3534-1"},

@@ -14,26 +14,26 @@ var (
 func noncentralTLaw(c *Call) (dist.Distribution, string) {
 	df, delta := lawDF.Of(c), shiftOfMean.Of(c)
 	return dist.NoncentralT{DF: df, Noncentrality: delta},
-		fmt.Sprintf("the noncentral t distribution with %s and noncentrality %s", degreesText(df), brief(delta))
+		fmt.Sprintf("the noncentral t distribution with %s and noncentrality %s", degrees(df), brief(delta))
 }
 
 func noncentralChiSquareLaw(c *Call) (dist.Distribution, string) {
 	df, lambda := lawDF.Of(c), squaredMean.Of(c)
 	return dist.NoncentralChiSquare{DF: df, Noncentrality: lambda},
-		fmt.Sprintf("the noncentral chi-square distribution with %s and noncentrality %s", degreesText(df), brief(lambda))
+		fmt.Sprintf("the noncentral chi-square distribution with %s and noncentrality %s", degrees(df), brief(lambda))
 }
 
 func noncentralFLaw(c *Call) (dist.Distribution, string) {
 	d1, d2, lambda := firstDF.Of(c), secondDF.Of(c), squaredMean.Of(c)
 	return dist.NoncentralF{DF1: d1, DF2: d2, Noncentrality: lambda},
-		fmt.Sprintf("the noncentral F distribution with %s and %s and noncentrality %s", dfText(d1), degreesText(d2), brief(lambda))
+		fmt.Sprintf("the noncentral F distribution with %s and %s and noncentrality %s", dfText(d1), degrees(d2), brief(lambda))
 }
 
 var noncentralTProbability = &Function{
 	Name:      "noncentral-t-probability",
 	Version:   1,
 	Summary:   "probability that a value of the noncentral t distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, tDF.within(atLeast(0.01)), shiftOfMean)...),
+	Inputs:    withEnds(NoUnit, tDF.within(atLeast(0.01)), shiftOfMean),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"Johnson & Welch 1940"},
@@ -51,7 +51,7 @@ var noncentralChiSquareProbability = &Function{
 	Name:      "noncentral-chi-square-probability",
 	Version:   1,
 	Summary:   "probability that a value of the noncentral chi-square distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, lawDF, squaredMean)...),
+	Inputs:    withEnds(NoUnit, lawDF, squaredMean),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"Johnson, Kotz & Balakrishnan 1995"},
@@ -69,7 +69,7 @@ var noncentralFProbability = &Function{
 	Name:      "noncentral-f-probability",
 	Version:   1,
 	Summary:   "probability that a value of the noncentral F distribution lies between two values, or beyond one",
-	Inputs:    inputs(endsIn(NoUnit, firstDF, secondDF, squaredMean)...),
+	Inputs:    withEnds(NoUnit, firstDF, secondDF, squaredMean),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"Johnson, Kotz & Balakrishnan 1995"},

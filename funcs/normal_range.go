@@ -16,19 +16,14 @@ var (
 func studentizedRangeLaw(c *Call) (dist.Distribution, string) {
 	groups, df := rangeGroups.Of(c), rangeDF.Of(c)
 	return dist.StudentizedRange{Groups: groups, DF: df},
-		fmt.Sprintf("the studentized range of %d groups with %s", groups, degreesText(df))
-}
-
-// rangeInputs lists the law's own inputs before those given.
-func rangeInputs(more ...interface{ describe() Input }) []Input {
-	return append(inputs(rangeGroups, rangeDF), inputs(more...)...)
+		fmt.Sprintf("the studentized range of %d groups with %s", groups, degrees(df))
 }
 
 var studentizedRangeProbability = &Function{
 	Name:      "studentized-range-probability",
 	Version:   1,
 	Summary:   "probability that the range of several normal means over their estimated sd lies between two values, or beyond one",
-	Inputs:    rangeInputs(endsIn(NoUnit)...),
+	Inputs:    withEnds(NoUnit, rangeGroups, rangeDF),
 	OneOf:     ends,
 	Results:   probabilityResults,
 	Citations: []string{"Copenhaver & Holland 1988"},
@@ -46,7 +41,7 @@ var studentizedRangeQuantile = &Function{
 	Name:      "studentized-range-quantile",
 	Version:   1,
 	Summary:   "value of the studentized range with a given probability below or above it",
-	Inputs:    rangeInputs(probability, countedFrom),
+	Inputs:    inputs(rangeGroups, rangeDF, probability, countedFrom),
 	Results:   quantileResults(NoUnit),
 	Citations: []string{"Copenhaver & Holland 1988"},
 	Example: Example{

@@ -85,7 +85,7 @@ func (c *Call) pooledPairs(groups []groupSummary) error {
 	for _, p := range pairs {
 		c.addPair(p)
 	}
-	c.method = fmt.Sprintf("Tukey-Kramer studentized range of %s with one pooled variance and %s of freedom", plural(len(groups), "group"), degrees(df))
+	c.method = fmt.Sprintf("Tukey-Kramer studentized range of %s with one pooled variance and %s", plural(len(groups), "group"), degrees(df))
 	c.sayRows(groups, pairName)
 	c.checkGroupSpreads(groups)
 	return nil

@@ -64,10 +64,7 @@ var ratioInterval = &Function{
 		c.method = m.methodText("Fieller interval", kind)
 		c.say(statement{what: "ratio of means (first over second)", estimate: f.ratio, limits: l, counts: nTexts(first, second)})
 		if t := f.statistic(ref); !math.IsNaN(t) {
-			p := pValue(dir, t, law)
-			c.set("t", t)
-			c.set("p-value", p)
-			c.sayTest(ref, NoUnit, "t", t, p)
+			c.setTest(ref, NoUnit, "t", t, pValue(dir, t, law))
 		}
 		return c.checkMeans(first, second)
 	},
@@ -121,8 +118,7 @@ func (f fieller) limits(confidence float64, direction string, law dist.Student) 
 	if t < 0 { // a one-sided confidence below one half
 		lower, upper = upper, lower
 	}
-	return limitsOf(confidence, direction,
-		func(float64) float64 { return lower }, func(float64) float64 { return upper }), true
+	return limitsAt(direction, lower, upper), true
 }
 
 // statistic is t against a reference ratio; NaN where both parts of its standard

@@ -137,10 +137,24 @@ func (c *Call) sayAt(confidence float64, s statement) {
 	c.sentence = b.String()
 }
 
+// setTest gives a statistic against the reference with its p-value, and adds the
+// comparison to the sentence.
+func (c *Call) setTest(reference float64, u Unit, statistic string, value, p float64) {
+	c.set(statistic, value)
+	c.set("p-value", p)
+	c.sayTest(reference, u, statistic, value, p)
+}
+
 // sayTest adds the comparison with the reference to the sentence.
 func (c *Call) sayTest(reference float64, u Unit, statistic string, value, p float64) {
 	c.sentence += fmt.Sprintf(" Against the reference %s: %s = %s, %s%s.", c.withUnit(shortest(reference), u), statistic, brief(value),
 		sided(direction.Of(c)), pText(p))
+}
+
+// setExactTest is setTest for a p-value that comes from no statistic.
+func (c *Call) setExactTest(reference, p float64) {
+	c.set("p-value", p)
+	c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(reference), sided(direction.Of(c)), pText(p))
 }
 
 // sided words which tails a p-value counts.
@@ -159,12 +173,21 @@ func plural(n int, noun string) string {
 	return strconv.Itoa(n) + " " + noun + "s"
 }
 
-// degrees words degrees of freedom: "1 degree", "24 degrees", "17.62 degrees".
+// degrees words degrees of freedom: "1 degree of freedom", "17.62 degrees of
+// freedom".
 func degrees(df float64) string {
 	if df == 1 {
-		return "1 degree"
+		return "1 degree of freedom"
 	}
-	return brief(df) + " degrees"
+	return dfText(df) + " degrees of freedom"
+}
+
+// dfText words the number alone.
+func dfText(df float64) string {
+	if isInfinite(df) {
+		return Infinite
+	}
+	return brief(df)
 }
 
 // lowerFirst lowers the first letter of a phrase for use inside a sentence.

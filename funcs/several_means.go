@@ -222,6 +222,6 @@ func (c *Call) setMeansTest(groups []groupSummary, f, df1, df2 float64) {
 	c.set("df-between", df1)
 	c.set("df-within", df2)
 	c.set("p-value", p)
-	c.sentence = fmt.Sprintf("The means of %s (n = %d in all) are compared: f = %s with %s and %s of freedom, %s (%s).",
+	c.sentence = fmt.Sprintf("The means of %s (n = %d in all) are compared: f = %s with %s and %s, %s (%s).",
 		plural(len(groups), "group"), total(groups), brief(f), brief(df1), degrees(df2), pText(p), c.method)
 }

@@ -37,11 +37,8 @@ func (c *Call) meanPrecision() (meanPrecision, error) {
 	}
 	if values, ok := sample.Given(c); ok {
 		s := c.summarise(c.gapless(values))
-		switch {
-		case s.n < 2:
-			return p, tooFew("sample", s.n, 2)
-		case s.sd == 0:
-			return p, c.noSpread("sample")
+		if err := c.enough("sample", s, 2); err != nil {
+			return p, err
 		}
 		p.sd, p.pilotDF = s.sd, float64(s.n-1)
 		return p, c.checkSample(sample)

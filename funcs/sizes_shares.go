@@ -195,14 +195,6 @@ func (s shareTest) run(n int) int {
 	return next - 1
 }
 
-// oneTail is the significance of one rejection tail.
-func oneTail(significance float64, direction string) float64 {
-	if direction == either {
-		return significance / 2
-	}
-	return significance
-}
-
 // sharesPairTest is the test of two proportions by the pooled score z.
 type sharesPairTest struct {
 	first, second, significance float64

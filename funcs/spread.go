@@ -148,7 +148,7 @@ var pooledVariance = &Function{
 		c.set("df", df)
 		c.set("groups", len(groups))
 		c.set("n", total(groups))
-		c.method = fmt.Sprintf("equal-tailed chi-square interval with %s of freedom, sum of squares within groups over their n - 1", degrees(df))
+		c.method = fmt.Sprintf("equal-tailed chi-square interval with %s, sum of squares within groups over their n - 1", degrees(df))
 		c.say(statement{what: "pooled variance", estimate: variance, limits: l, unit: SquaredUnit,
 			counts: fmt.Sprintf("n = %d in %s", total(groups), plural(len(groups), "group"))})
 		c.sayRoot("pooled standard deviation", sd, l)
@@ -192,17 +192,14 @@ var varianceInterval = &Function{
 		c.setVariance("variance", "sd", variance, s.sd, l)
 		c.set("n", s.n)
 		c.set("df", df)
-		c.method = fmt.Sprintf("equal-tailed chi-square interval with %s of freedom, variance with divisor n - 1", degrees(df))
+		c.method = fmt.Sprintf("equal-tailed chi-square interval with %s, variance with divisor n - 1", degrees(df))
 		if dir != either {
-			c.method = fmt.Sprintf("chi-square limit with %s of freedom, variance with divisor n - 1", degrees(df))
+			c.method = fmt.Sprintf("chi-square limit with %s, variance with divisor n - 1", degrees(df))
 		}
 		c.say(statement{what: "variance", estimate: variance, limits: l, unit: SquaredUnit, counts: nText(s.n)})
 		if ref, ok := reference.Given(c); ok {
 			chi := df * (variance / ref)
-			p := pValue(dir, chi, dist.ChiSquare{DF: df})
-			c.set("chi-square", chi)
-			c.set("p-value", p)
-			c.sayTest(ref, SquaredUnit, "chi-square", chi, p)
+			c.setTest(ref, SquaredUnit, "chi-square", chi, pValue(dir, chi, dist.ChiSquare{DF: df}))
 		}
 		c.sayRoot("standard deviation", s.sd, l)
 		return c.checkSample(sample)
@@ -253,16 +250,13 @@ var varianceRatioInterval = &Function{
 			func(q float64) float64 { return ratio / law.UpperQuantile(q) },
 			func(q float64) float64 { return ratio / law.Quantile(q) })
 		f := ratio / ref
-		p := pValue(dir, f, law)
 		c.set("ratio", ratio)
 		c.setLimits(l)
-		c.set("f", f)
 		c.set("first-df", law.DF1)
 		c.set("second-df", law.DF2)
-		c.set("p-value", p)
-		c.method = fmt.Sprintf("F interval with %s and %s of freedom, variances with divisor n - 1", brief(law.DF1), degrees(law.DF2))
+		c.method = fmt.Sprintf("F interval with %s and %s, variances with divisor n - 1", brief(law.DF1), degrees(law.DF2))
 		c.say(statement{what: "ratio of variances (first over second)", estimate: ratio, limits: l, counts: nTexts(first, second)})
-		c.sayTest(ref, NoUnit, "f", f, p)
+		c.setTest(ref, NoUnit, "f", f, pValue(dir, f, law))
 		return c.checkTwo(first, second)
 	},
 }
