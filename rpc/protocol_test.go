@@ -71,6 +71,43 @@ func TestProtocolPage(t *testing.T) {
 	}
 }
 
+// PROTOCOL.md names every method of our own, every code of an error, and
+// every member of a description.
+func TestTheProtocolPageIsWhole(t *testing.T) {
+	text, err := os.ReadFile("PROTOCOL.md")
+	if err != nil {
+		t.Fatal(err)
+	}
+	names := func(what, name string) {
+		if !strings.Contains(string(text), name) {
+			t.Errorf("PROTOCOL.md does not name %s %s", what, name)
+		}
+	}
+	for _, m := range Methods() {
+		if !m.Standard {
+			names("the method", m.Name)
+		}
+	}
+	for code := range knownCodes {
+		names("the code", "| "+strconv.Itoa(code)+" |")
+	}
+	c := begin(t, Options{Methods: Methods()})
+	open := func(request string) map[string]json.RawMessage {
+		var reply struct {
+			Result map[string]json.RawMessage
+		}
+		c.raw(frame(request))
+		if err := json.Unmarshal([]byte(c.next()), &reply); err != nil || len(reply.Result) == 0 {
+			t.Fatalf("%v: %s", err, request)
+		}
+		return reply.Result
+	}
+	open(`{"jsonrpc":"2.0","id":1,"method":"initialize","params":{"processId":null,"capabilities":{}}}`)
+	for member := range open(`{"jsonrpc":"2.0","id":2,"method":"functions/describe","params":{"name":"outlier-check"}}`) {
+		names("the member", "`"+member+"`")
+	}
+}
+
 // separator is that of paths, as it stands in JSON.
 func separator(t *testing.T) string {
 	return strings.Trim(string(mustEncode(t, string(filepath.Separator))), `"`)
