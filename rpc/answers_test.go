@@ -61,10 +61,10 @@ func TestProgressEndsBeforeTheReply(t *testing.T) {
 	c.leave()
 
 	// Calls that last: reports rise between begin and end.
-	slow := `{"name":"bootstrap-interval","arguments":{"sample":[1,2,4,8,16,32],"resamples":200000}}`
+	slow := `{"name":"bootstrap-interval","arguments":{"sample":[1,2,4,8,16,32],"resamples":100000}}`
 	c = begin(t, Options{})
 	c.initialize()
-	c.send(`{"jsonrpc":"2.0","id":1,"method":"functions/answerMany","params":{"calls":[%s],"workDoneToken":"t"}}`, strings.Repeat(slow+",", 39)+slow)
+	c.send(`{"jsonrpc":"2.0","id":1,"method":"functions/answerMany","params":{"calls":[%s],"workDoneToken":"t"}}`, strings.Repeat(slow+",", 19)+slow)
 	c.wantPart(`"kind":"begin"`)
 	last, reports := 0, 0
 	for {
