@@ -116,3 +116,45 @@ func sampleMean(t *testing.T, row *calculation.RowResult) any {
 	mean, _ := row.Outcome.Get("mean")
 	return mean
 }
+
+// A line that goes on beyond its header has a cell that was cut in two, as an
+// unquoted decimal comma does; its numbers would be wrong.
+func TestLinesOfTextFilesLongerThanTheirHeader(t *testing.T) {
+	long := strings.Repeat("North,10\n", 150)
+	for _, test := range []struct {
+		text, comma string
+		want        any // the mean, or a part of the refusal
+	}{
+		{"minutes\n1,5\n2,5\n", "", "data.csv!B2 lies beyond the header, row 1 with 1 cell, so a cell of row 2 may be cut in two"},
+		{"minutes\n1,5\n2,5\n", ",", 2.0},
+		{"depot,minutes\nNorth,1,5\nQuay,2,5\n", ",", "data.csv!C2 lies beyond the header"},
+		{"depot,minutes\nNorth,\"1,5\"\nQuay,\"2,5\"\n", ",", 2.0},
+		{"depot,minutes\nNorth,10\nQuay, new,20\n", "", "data.csv!C3 lies beyond the header, row 1 with 2 cells"},
+		{"depot,minutes\n" + long + "North,1,5\n" + long, "", "data.csv!C152 lies beyond"},
+		{"depot,minutes\n" + long + "North,1,5,7\nNorth,1,5\n", "", "data.csv!C152 lies beyond"},
+		{"depot,minutes\nNorth,10,\nQuay,20,,\n", "", 15.0},
+		{"depot,minutes,\nNorth,10,late\nQuay,20\n", "", 15.0},
+		{"Trips,of,the,week\ndepot,minutes\nNorth,10\nQuay\nMill,20\n", "", 15.0},
+		{"depot,minutes\nNorth,10\nQuay,20\n\ndepot,minutes,cost\nNorth,30,7\n", "", 20.0},
+	} {
+		path := filepath.Join(t.TempDir(), "a.calculations.csv")
+		sheet := "work out\tsample\t> mean\nsample-summary\tminutes in data.csv\t\n"
+		if test.comma != "" {
+			sheet = "default decimal-mark\t,\n\n" + sheet
+		}
+		write(t, path, sheet)
+		write(t, filepath.Join(filepath.Dir(path), "data.csv"), test.text)
+		report, err := Fill(context.Background(), path, Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		row := report.Results.Rows[0]
+		if want, ok := test.want.(string); ok {
+			if row.Status != funcs.StatusRefused || !strings.Contains(row.Note(), want) {
+				t.Errorf("%.60q: %s: %s", test.text, row.Status, row.Note())
+			}
+		} else if mean := sampleMean(t, row); mean != test.want {
+			t.Errorf("%.60q: the mean is %v, want %v", test.text, mean, test.want)
+		}
+	}
+}

@@ -21,15 +21,16 @@ var byteOrderMark = []byte("\xef\xbb\xbf")
 // findDialect finds the separator from the header line: the first line that has
 // one of comma, semicolon and tab outside quotes; a line with `work out` in a
 // calculation sheet goes before others. Of several, the most frequent is it.
-// A .tsv file has tabs.
-func findDialect(name string, head []byte) dialect {
+// A .tsv file has tabs. Where numbers have a decimal comma, a comma between digits
+// separates nothing.
+func findDialect(name string, head []byte, decimalComma bool) dialect {
 	if strings.HasSuffix(strings.ToLower(name), ".tsv") {
-		return dialect{separator: '\t'}
+		return dialect{'\t', decimalComma}
 	}
 	head = bytes.TrimPrefix(head, byteOrderMark)
 	best := byte(0)
 	for _, line := range splitLines(head) {
-		sep := commonest(line)
+		sep := commonest(line, decimalComma)
 		if sep == 0 {
 			continue
 		}
@@ -37,13 +38,17 @@ func findDialect(name string, head []byte) dialect {
 			best = sep
 		}
 		if bytes.Contains(bytes.ToLower(line), []byte("work out")) {
-			return dialect{separator: sep}
+			return dialect{sep, decimalComma}
 		}
 	}
-	if best == 0 {
+	switch {
+	case best != 0:
+	case decimalComma:
+		best = ';'
+	default:
 		best = ','
 	}
-	return dialect{separator: best}
+	return dialect{best, decimalComma}
 }
 
 // splitLines splits into lines, a break inside quotes not counting.
@@ -64,13 +69,17 @@ func splitLines(data []byte) [][]byte {
 
 // commonest gives the separator that stands most often outside quotes, 0 where
 // none does.
-func commonest(line []byte) byte {
+func commonest(line []byte, decimalComma bool) byte {
+	isDigit := func(i int) bool { return i >= 0 && i < len(line) && '0' <= line[i] && line[i] <= '9' }
+
 	var count [256]int
 	quoted := false
-	for _, c := range line {
-		if c == '"' {
+	for i, c := range line {
+		switch {
+		case c == '"':
 			quoted = !quoted
-		} else if !quoted {
+		case quoted, decimalComma && c == ',' && isDigit(i-1) && isDigit(i+1):
+		default:
 			count[c]++
 		}
 	}
@@ -182,6 +191,10 @@ func (s *csvScanner) next() bool {
 	for {
 		f, next, ok := s.field(pos)
 		if !ok {
+			return false
+		}
+		if len(s.fields) == MaxCol {
+			s.err = &CSVError{first, fmt.Sprintf("it has more than %d columns", MaxCol)}
 			return false
 		}
 		s.fields = append(s.fields, f)

@@ -28,9 +28,26 @@ func TestSeparatorIsFoundFromTheHeaderLine(t *testing.T) {
 		{"x.calculations.csv", "work out,sample,> mean\nmean-interval,12; 13; 14; 15\n", ','},
 		{"empty.csv", "", ','},
 	} {
-		if got := findDialect(c.name, []byte(c.head)).separator; got != c.want {
+		if got := findDialect(c.name, []byte(c.head), false).separator; got != c.want {
 			t.Errorf("%q: separator %q, want %q", c.head, got, c.want)
 		}
+	}
+	for head, want := range map[string]byte{"minutes\n1,5\n": ';', "minutes, net\n\"1,5\",2\n": ',', "a,b\n": ',', "up to 1,5\ndepot;minutes\n": ';', "minutes\n12\n": ';'} {
+		if got := findDialect("trips.csv", []byte(head), true).separator; got != want {
+			t.Errorf("%q with decimal commas: separator %q, want %q", head, got, want)
+		}
+	}
+}
+
+func TestALineOfTooManyCellsIsRefusedBeforeItIsHeld(t *testing.T) {
+	for _, line := range []string{strings.Repeat(",", MaxCol), strings.Repeat(",", 4<<20)} {
+		_, err := readCSV(t, "a,b\n"+line+"\n1,2\n", FileOptions{})
+		if err == nil || err.Error() != "is damaged in line 2: it has more than 16384 columns" {
+			t.Errorf("%d cells: %v", len(line)+1, err)
+		}
+	}
+	if _, err := readCSV(t, "a,b\n"+strings.Repeat(",", MaxCol-1)+"\n", FileOptions{}); err != nil {
+		t.Error(err)
 	}
 }
 

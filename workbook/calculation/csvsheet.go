@@ -37,12 +37,12 @@ const TextSheetName = "Calculations"
 // ParseTextSheet reads a text calculation sheet. The name decides by its ending
 // whether it is a .tsv file. The error is a *CSVError.
 func ParseTextSheet(name string, data []byte) (*TextSheet, error) {
-	t := &TextSheet{name: name, data: data, dialect: findDialect(name, data)}
+	t := &TextSheet{name: name, data: data, dialect: findDialect(name, data, false)}
 	s := newCSVScanner(bytes.NewReader(data), t.dialect)
 	for s.next() {
 		r := textRow{end: s.end.Start}
-		if len(s.fields) > MaxCol || len(t.rows) >= MaxRow {
-			return nil, &CSVError{s.line, fmt.Sprintf("a sheet has at most %d rows and %d columns", MaxRow, MaxCol)}
+		if len(t.rows) >= MaxRow {
+			return nil, &CSVError{s.line, fmt.Sprintf("a sheet has at most %d rows", MaxRow)}
 		}
 		for _, f := range s.fields {
 			r.fields = append(r.fields, textField{f.span, string(f.text)})

@@ -52,8 +52,7 @@ func (t *TextFile) Read(ctx context.Context, sheet string, choose func(head *Fra
 	if err != nil && err != io.EOF && err != io.ErrUnexpectedEOF {
 		return nil, err
 	}
-	d := findDialect(t.name, head[:n])
-	d.decimalComma = t.options.DecimalComma
+	d := findDialect(t.name, head[:n], t.options.DecimalComma)
 	s := newCSVScanner(io.MultiReader(bytes.NewReader(head[:n]), file), d)
 	f := NewFrame()
 	chosen := false
@@ -70,17 +69,20 @@ func (t *TextFile) Read(ctx context.Context, sheet string, choose func(head *Fra
 		if row > MaxRow {
 			return nil, fmt.Errorf("has more than %d rows", MaxRow)
 		}
-		if len(s.fields) > MaxCol {
-			return nil, fmt.Errorf("has more than %d columns in line %d", MaxCol, s.line)
-		}
 		if row&0x3fff == 0 && ctx.Err() != nil {
 			return nil, ctx.Err()
 		}
 		var flags RowFlags
+		last := 0
 		for i := range s.fields {
-			flags |= d.setField(f, row, i+1, s.fields[i].text)
+			of := d.setField(f, row, i+1, s.fields[i].text)
+			if of&RowFilled != 0 {
+				last = i + 1
+			}
+			flags |= of
 		}
 		f.SetRow(row, flags)
+		f.SetWidth(row, len(s.fields), last)
 	}
 	if s.err != nil {
 		return nil, s.err

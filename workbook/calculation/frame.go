@@ -42,6 +42,7 @@ type Frame struct {
 	compact int // how many texts there were when none was out of use
 	lastRow int
 	lastCol int
+	widths  lineWidths // of a text file
 }
 
 // NewFrame gives an empty frame that keeps all columns.

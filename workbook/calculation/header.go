@@ -105,7 +105,8 @@ func (b *bound) ready() *fault {
 	for b.last >= b.first && sh.frame.Row(b.last)&RowFilled == 0 {
 		b.last--
 	}
-	return nil
+	b.checkWidths()
+	return b.fault
 }
 
 // findHeader looks for the header. In the head it gives up without a fault

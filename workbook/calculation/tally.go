@@ -181,7 +181,7 @@ func (t *tally) findings(span Span) []fault {
 			wereWas(n, "cell"), strings.Join(parts, ", "), at(*first), first.text, t.advice())
 	}
 	if s := t.looks; s.n > 0 {
-		say("text-looks-like-number", funcs.Caution, []string{at(s)}, "%s like a number but stands there as text; the first is %s, %s. Turn them into numbers in the sheet.",
+		say("text-looks-like-number", funcs.Caution, []string{at(s)}, "%s as text; the first is %s, %s. Turn them into numbers in the sheet.",
 			looks(s.n), at(s), quote(trim(s.text)))
 	}
 	if s := t.undecided; s.n > 0 {
@@ -222,9 +222,9 @@ func wereWas(n int, noun string) string {
 
 func looks(n int) string {
 	if n == 1 {
-		return "1 of the skipped texts looks"
+		return "1 of the skipped texts looks like a number but stands there"
 	}
-	return decimal(n) + " of the skipped texts look"
+	return decimal(n) + " of the skipped texts look like numbers but stand there"
 }
 
 func valuesAre(n int) string {
