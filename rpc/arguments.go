@@ -320,11 +320,13 @@ func shown(v Value) string {
 	return v.Kind.String()
 }
 
+// longestSaid is how many bytes of a client's text a message repeats.
+const longestSaid = 60
+
 // quoted puts a text in quotes, cut where it would swell a message.
 func quoted(text string) string {
-	const most = 60
-	if len(text) > most {
-		cut := most
+	if len(text) > longestSaid {
+		cut := longestSaid
 		for !utf8.RuneStart(text[cut]) {
 			cut--
 		}

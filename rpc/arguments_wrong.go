@@ -32,14 +32,14 @@ func (q *question) refuseAt(e *funcs.ArgumentError, pointer string) {
 	for i, in := range f.Inputs {
 		names[i] = in.Name
 	}
-	position := slices.Index(names, e.Argument)
+	position, said := slices.Index(names, e.Argument), *e
 	if position < 0 {
-		position = len(names)
+		position, said.Argument = len(names), sayName(e.Argument)
 		if best := near(e.Argument, names); best != "" {
 			suggestion = best
 		}
 	}
-	q.wrong = append(q.wrong, wrong{position, ErrorData{Function: f.Name, Argument: e.Argument, Pointer: pointer, Reason: reason, Suggestion: suggestion}, e.Error()})
+	q.wrong = append(q.wrong, wrong{position, ErrorData{Function: f.Name, Argument: e.Argument, Pointer: pointer, Reason: reason, Suggestion: suggestion}, said.Error()})
 }
 
 // refuseFault notes an argument whose JSON has a fault.

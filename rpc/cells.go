@@ -90,7 +90,8 @@ func (r *cellReader) wrongAt(pointer, wanted, advice string) error {
 	if v.Fault != nil {
 		return v.Fault
 	}
-	return badParams(pointer, lastOf(pointer), "is "+shown(v)+", not "+wanted, advice)
+	argument, element := partAt(pointer)
+	return badElement(pointer, argument, element, "is "+shown(v)+", not "+wanted, advice)
 }
 
 // blockMembers are the members of a block.

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"math"
 	"reflect"
+	"strconv"
 	"strings"
 )
 
@@ -88,7 +89,11 @@ func fill(target reflect.Value, v Value, name string, element int) error {
 	case target.Kind() == reflect.Int && v.Kind == Number:
 		const most = 1 << 53 // beyond it not every whole number is a double
 		if v.Number != math.Trunc(v.Number) || math.Abs(v.Number) > most {
-			return badElement(v.Pointer, name, element, "is "+string(appendNumber(nil, v.Number)), "give a whole number")
+			advice := "give a whole number"
+			if math.Abs(v.Number) > most {
+				advice += fmt.Sprintf(" from -%d to %d", most, most)
+			}
+			return badElement(v.Pointer, name, element, "is "+string(appendNumber(nil, v.Number)), advice)
 		}
 		target.SetInt(int64(v.Number))
 		return nil
@@ -137,6 +142,12 @@ func fieldOf(f reflect.StructField) (name string, required bool) {
 	return name, options != "omitempty"
 }
 
+// needed reports whether a member may not be left out.
+func needed(f reflect.StructField) bool {
+	_, required := fieldOf(f)
+	return required
+}
+
 func fillStruct(target reflect.Value, v Value) error {
 	t := target.Type()
 	names := make([]string, t.NumField())
@@ -151,6 +162,8 @@ func fillStruct(target reflect.Value, v Value) error {
 		switch {
 		case given[m.Name]:
 			return m.Value.Fault
+		case known && m.Value.Kind == Null && needed(t.Field(i)) && t.Field(i).Type != cellsType && t.Field(i).Type != faultyType:
+			return badParams(m.Value.Pointer, m.Name, "is null", "give "+wanted(t.Field(i).Type))
 		case known:
 			if err := fill(target.Field(i), m.Value, m.Name, 0); err != nil {
 				return err
@@ -165,7 +178,7 @@ func fillStruct(target reflect.Value, v Value) error {
 		given[m.Name] = true
 	}
 	for i := range t.NumField() {
-		if member, required := fieldOf(t.Field(i)); required && !given[member] {
+		if member := names[i]; needed(t.Field(i)) && !given[member] {
 			return badParams(pointerTo(v.Pointer, member), member, "is missing", "give "+wanted(t.Field(i).Type))
 		}
 	}
@@ -177,13 +190,33 @@ func unknownMember(m Member, names []string) error {
 	if len(names) > 0 {
 		advice = "the members are " + strings.Join(names, ", ")
 	}
-	fault := badParams(m.Value.Pointer, m.Name, "is unknown", advice)
+	fault := badParams(m.Value.Pointer, sayName(m.Name), "is unknown", advice)
 	if best := near(m.Name, names); best != "" {
-		fault = badParams(m.Value.Pointer, m.Name, "is unknown", fmt.Sprintf("did you mean %s?", best))
+		fault = badParams(m.Value.Pointer, sayName(m.Name), "is unknown", fmt.Sprintf("did you mean %s?", best))
 		fault.Message = strings.TrimSuffix(fault.Message, ".")
 		fault.Data.Suggestion = best
 	}
+	fault.Data.Argument = m.Name
 	return fault
+}
+
+// sayName gives a name that the client made up as a message says it: in quotes
+// where it is empty, and cut where it would swell the message.
+func sayName(name string) string {
+	if name == "" || len(name) > longestSaid {
+		return quoted(name)
+	}
+	return name
+}
+
+// partAt gives what a pointer leads to as messages name it: the member, and the
+// element of its list, counted from 1, or 0.
+func partAt(pointer string) (argument string, element int) {
+	last := lastOf(pointer)
+	if i, err := strconv.Atoi(last); err == nil {
+		return lastOf(strings.TrimSuffix(pointer, "/"+last)), i + 1
+	}
+	return last, 0
 }
 
 // lastOf gives the last name in a JSON Pointer.

@@ -2,6 +2,7 @@ package rpc
 
 import (
 	"math"
+	"strings"
 	"testing"
 )
 
@@ -46,7 +47,7 @@ func TestFaultyParamsAreRefusedByName(t *testing.T) {
 	for _, test := range []struct{ params, pointer, message string }{
 		{``, "/name", "name is missing; give a text."},
 		{`{}`, "/name", "name is missing; give a text."},
-		{`{"name":null}`, "/name", "name is null; leave it out, or give a text."},
+		{`{"name":null}`, "/name", "name is null; give a text."},
 		{`{"name":7}`, "/name", "name is a number; give a text."},
 		{`{"Name":"a"}`, "/Name", "Name is unknown; did you mean name?"},
 		{`{"name":"a","levle":0.9}`, "/levle", "levle is unknown; did you mean level?"},
@@ -55,7 +56,7 @@ func TestFaultyParamsAreRefusedByName(t *testing.T) {
 		{`{"name":"a","level":"0.9"}`, "/level", "level is a text; give a number."},
 		{`{"name":"a","level":1e400}`, "/level", "level is 1e400, which no double holds; the largest is about 1.8e308."},
 		{`{"name":"a","count":2.5}`, "/count", "count is 2.5; give a whole number."},
-		{`{"name":"a","count":1e300}`, "/count", "count is 1e+300; give a whole number."},
+		{`{"name":"a","count":1e300}`, "/count", "count is 1e+300; give a whole number from -9007199254740992 to 9007199254740992."},
 		{`{"name":"a","pooled":"yes"}`, "/pooled", "pooled is a text; give true or false."},
 		{`{"name":"a","pooled":0}`, "/pooled", "pooled is a number; give true or false."},
 		{`{"name":"a","sample":3}`, "/sample", "sample is a number; give a list of numbers."},
@@ -71,6 +72,8 @@ func TestFaultyParamsAreRefusedByName(t *testing.T) {
 		{`{"name":"a","calls":[{"name":"x"},{"nam":"y"}]}`, "/calls/1/nam", "nam is unknown; did you mean name?"},
 		{`{"name":"a","calls":[{"name":"x","workDoneToken":1}]}`, "/calls/0/workDoneToken", "workDoneToken is unknown; the members are name."},
 		{`{"name":"a","name":"b"}`, "/name", "name is given twice; give each member once."},
+		{`{"name":"a","":0}`, "/", `"" is unknown; the members are name, sample, level, count, pooled, depots, given, options, calls.`},
+		{`{"name":"a","` + strings.Repeat("x", 1000) + `":0}`, "/" + strings.Repeat("x", 1000), `"` + strings.Repeat("x", 60) + `…" is unknown; the members are name, sample, level, count, pooled, depots, given, options, calls.`},
 	} {
 		t.Run(test.params, func(t *testing.T) {
 			var p tripParams

@@ -392,7 +392,8 @@ func tooManySteps(pointer string) *Error {
 func areaOf(text, pointer string) (calculation.Area, *Error) {
 	area, ok := calculation.ParseArea(text)
 	if !ok {
-		return area, badParams(pointer, lastOf(pointer), "is "+quoted(text), `give a range, such as "A1:D61"`)
+		argument, element := partAt(pointer)
+		return area, badElement(pointer, argument, element, "is "+quoted(text), `give a range, such as "A1:D61"`)
 	}
 	if area.WholeCols {
 		area.LastRow = calculation.MaxRow

@@ -150,6 +150,9 @@ func (a allowed) real(path, pointer string) (real string, exists bool, err error
 	if path == "" || strings.ContainsRune(path, 0) {
 		return "", false, badParams("/"+pointer, argument, "is empty or no path", "give the path of a file")
 	}
+	if len(path) > 5 && strings.EqualFold(path[:5], "file:") {
+		return "", false, badParams("/"+pointer, argument, "is "+quoted(path)+", a URI", "give the path that it stands for")
+	}
 	outside := badParams("/"+pointer, argument, "is "+quoted(path)+", which does not lie in a folder that this server may fill, once links and .. are resolved",
 		"start the server with --may-fill and its folder")
 	full, err := filepath.Abs(path)

@@ -133,6 +133,7 @@ func TestOnlyFilesInTheFoldersNamedAreFilled(t *testing.T) {
 		"a data folder by a link":          fmt.Sprintf(`{"path":%q,"data":[%q]}`, book, linkedDir),
 		"the folder above":                 fmt.Sprintf(`{"path":%q}`, filepath.Dir(inside)),
 		"a folder of a like name":          fmt.Sprintf(`{"path":%q}`, inside+"side/handling.calculations.csv"),
+		"a URI":                            fmt.Sprintf(`{"path":%q}`, uriOf(book)),
 		"nothing":                          `{"path":""}`,
 	} {
 		r := c.fill(params)
@@ -140,7 +141,10 @@ func TestOnlyFilesInTheFoldersNamedAreFilled(t *testing.T) {
 			t.Errorf("%s: %+v %s", name, r.Error, r.Result)
 			continue
 		}
-		if name != "nothing" && !strings.Contains(r.Error.Message, "does not lie in a folder that this server may fill") {
+		if name == "a URI" && !strings.Contains(r.Error.Message, "give the path that it stands for") {
+			t.Errorf("%s: %s", name, r.Error.Message)
+		}
+		if name != "nothing" && name != "a URI" && !strings.Contains(r.Error.Message, "does not lie in a folder that this server may fill") {
 			t.Errorf("%s: %s", name, r.Error.Message)
 		}
 	}
