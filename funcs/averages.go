@@ -114,7 +114,7 @@ var meanInterval = &Function{
 			value := (s.mean - ref) / se
 			c.setTest(ref, SameUnit, statistic, value, pValue(dir, value, law))
 		}
-		return c.checkSample(sample)
+		return c.checkSample()
 	},
 }
 
@@ -206,7 +206,7 @@ var pairedInterval = &Function{
 		c.say(statement{"mean difference (sample - second-sample)", s.mean, l, SameUnit, nText(s.n) + " pairs"})
 		c.setTest(ref, SameUnit, "t", t, pValue(dir, t, law))
 		if differences == nil {
-			return c.checkSample(sample)
+			return c.checkSample()
 		}
 		if r, ok := correlation(sample.Of(c), secondSample.Of(c)); ok {
 			c.set("correlation", r)

@@ -81,9 +81,8 @@ var bootstrapInterval = &Function{
 		if lowered {
 			c.sayLowered(resamplesInput, resamples, s.n, fmt.Sprintf("chance alone moves a limit by about %s", c.withUnit(brief(b.limitError(tail(confidence.Of(c), direction.Of(c)))), SameUnit)))
 		}
+		c.checkOfAnyShape(s.n)
 		if checks.Of(c) {
-			c.checkFewOfAnyShape(s.n)
-			c.checkNeighbours("sample", "The sample", sample.Of(c), s)
 			c.checkTail("sample", "The sample", values)
 		}
 		return nil

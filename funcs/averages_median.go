@@ -65,10 +65,7 @@ var medianInterval = &Function{
 		}
 		c.method += ", attained confidence " + percent(attained)
 		c.say(statement{"median", median, l, SameUnit, nText(n)})
-		if checks.Of(c) {
-			c.checkFewOfAnyShape(n)
-			c.checkNeighbours("sample", "The sample", sample.Of(c), summarise(values))
-		}
+		c.checkOfAnyShape(n)
 		return nil
 	},
 }

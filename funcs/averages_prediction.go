@@ -77,6 +77,6 @@ var predictionInterval = &Function{
 		c.set("n", s.n)
 		c.set("df", df)
 		c.sayLimits(l, reach, what+" with "+percent(confidence.Of(c))+" confidence", nText(s.n))
-		return c.checkSample(sample)
+		return c.checkSample()
 	},
 }

@@ -77,10 +77,7 @@ var trimmedMeanInterval = &Function{
 		c.set("df", law.DF)
 		c.method = fmt.Sprintf("trimmed t interval, %d values left out at each end, winsorised sum of squares, %s", t.g, degrees(law.DF))
 		c.say(statement{"trimmed mean", t.mean, l, SameUnit, nText(len(values))})
-		if checks.Of(c) {
-			c.checkFewOfAnyShape(len(values))
-			c.checkNeighbours("sample", "The sample", sample.Of(c), c.summarise(values))
-		}
+		c.checkOfAnyShape(len(values))
 		return nil
 	},
 }

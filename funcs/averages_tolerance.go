@@ -65,7 +65,7 @@ var toleranceInterval = &Function{
 		c.set("attained-confidence", conf)
 		c.method = fmt.Sprintf("normal tolerance limits, exact factor %s, sd with divisor n - 1", brief(factor))
 		c.sayLimits(l, reach, what, nText(s.n))
-		return c.checkSample(sample)
+		return c.checkSample()
 	},
 }
 
@@ -87,7 +87,7 @@ func (c *Call) orderTolerance(n int, share, conf float64, dir, what string) erro
 	c.method = "distribution-free limits, attained confidence " + percent(attained)
 	c.sayLimits(l, highest-lowest, what, nText(n))
 	if checks.Of(c) {
-		c.checkNeighbours("sample", "The sample", sample.Of(c), c.summarise(values))
+		c.checkNeighbours("sample", "The sample", sample.Of(c), n)
 	}
 	return nil
 }

@@ -25,21 +25,20 @@ var oneSampleFindings = []FindingKind{fewValuesKind, skewedKind, neighboursKind,
 
 const (
 	fewValues      = 5
-	tailValues     = 100 // that tail-check asks for
 	tailConfidence = 0.95
 )
 
 // checkSample raises the cautions of a sample, where it was given and checks
 // are on, and the few-values caution of a summary.
-func (c *Call) checkSample(in In[[]float64]) error {
-	v, ok := in.Given(c)
+func (c *Call) checkSample() error {
+	v, ok := sample.Given(c)
 	if !ok {
 		if n, ok := nGiven.Given(c); ok && checks.Of(c) {
 			c.checkFew("n", "The sample", n)
 		}
 		return nil
 	}
-	return c.checkValues(in.Name, v, c.summarise(c.gapless(v)))
+	return c.checkValues("sample", v, c.summarise(c.gapless(v)))
 }
 
 // checkValues raises the cautions of an ordered list of values whose summary
@@ -59,8 +58,8 @@ func (c *Call) checkDerived(input, what string, ordered []float64, s summary) er
 		return nil
 	}
 	values := c.gapless(ordered)
-	c.checkSkewness(input, what, values, s)
-	c.checkNeighbours(input, what, ordered, s)
+	c.checkSkewness(input, what, values)
+	c.checkNeighbours(input, what, ordered, s.n)
 	c.checkFar(input, what, 0, ordered, s)
 	c.checkTail(input, what, values)
 	return c.cancelled()
@@ -73,28 +72,34 @@ func (c *Call) checkFew(input, what string, n int) {
 	}
 }
 
-// checkFewOfAnyShape is checkFew for a method that asks for no shape.
-func (c *Call) checkFewOfAnyShape(n int) {
+// checkOfAnyShape raises the cautions of a sample of n values for a method that
+// asks for no shape.
+func (c *Call) checkOfAnyShape(n int) {
+	if !checks.Of(c) {
+		return
+	}
 	if n < fewValues {
 		c.caution("few-values", "sample", "The sample has only %s: so few show little of their population. Measure at least %d.", plural(n, "value"), fewValues)
 	}
+	c.checkNeighbours("sample", "The sample", sample.Of(c), n)
 }
 
-func (c *Call) checkSkewness(input, what string, values []float64, s summary) {
-	g1 := skewness(c.moments(values))
-	if skewedForN(g1, s.n, c.rare()) {
+func (c *Call) checkSkewness(input, what string, values []float64) {
+	g1, n := skewness(c.moments(values)), len(values)
+	if skewedForN(g1, n, c.rare()) {
 		need := cochranFactor * float64(g1*g1)
 		c.caution("skewed-for-n", input, "%s is skewed (skewness %s): with n = %d the interval may miss more often than it says; "+
 			"more than %.0f values are the rule for this skewness. Try coverage-check, or enough-n-for-mean.",
-			what, brief(g1), s.n, math.Floor(need))
+			what, brief(g1), n, math.Floor(need))
 	}
 }
 
-func (c *Call) checkNeighbours(input, what string, ordered []float64, s summary) {
-	if s.n < neighboursFrom || c.origin(input).Unordered {
+// checkNeighbours looks at values in order, n of them without the gaps.
+func (c *Call) checkNeighbours(input, what string, ordered []float64, n int) {
+	if n < neighboursFrom || c.origin(input).Unordered {
 		return
 	}
-	if r := c.facts(ordered).lag1(); neighboursAlike(r, s.n, c.rare()) {
+	if r := c.facts(ordered).lag1(); neighboursAlike(r, n, c.rare()) {
 		c.caution("neighbours-alike", input, "Neighbouring values of %s are not independent (lag-1 autocorrelation %s), so the interval is too %s. "+
 			"Average over longer stretches, or see independence-check.", lowerFirst(what), brief(r), narrowOrWide(r))
 	}

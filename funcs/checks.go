@@ -164,6 +164,9 @@ func (p *peeling) takeFarthest(centre float64) (position int, distance float64) 
 	return position, distance
 }
 
+// tailValues is how many values tail-check asks for.
+const tailValues = 100
+
 var tailCheck = &Function{
 	Name:    "tail-check",
 	Version: 1,

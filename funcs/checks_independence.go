@@ -35,11 +35,8 @@ var independenceCheck = &Function{
 		values := c.gapless(ordered)
 		s := c.summarise(values)
 		c.count(s.n)
-		switch {
-		case s.n < 3:
-			return tooFew("sample", s.n, 3)
-		case s.sd == 0:
-			return c.noSpread("sample")
+		if err := c.enough("sample", s, 3); err != nil {
+			return err
 		}
 		r := c.facts(ordered).lag1()
 		n := float64(s.n)
@@ -63,18 +60,12 @@ var independenceCheck = &Function{
 		c.method = "runs about the median, " + how
 		c.sentence = fmt.Sprintf("The lag-1 autocorrelation is %s, worth %s independent values of %d; %d runs about the median, two-sided %s (%s).",
 			brief(r), brief(effective), s.n, runs.runs, pText(p), c.method)
-		c.checkNeighboursAlways(ordered, s, r)
+		if neighboursAlike(r, s.n, c.rare()) { // always: the function has no input `checks`
+			c.caution("neighbours-alike", "sample", "Neighbouring values are not independent, so an interval that takes them for independent is too %s; "+
+				"average over longer stretches, or count only effective-n values.", narrowOrWide(r))
+		}
 		return nil
 	},
-}
-
-// checkNeighboursAlways raises the caution about neighbours whatever the
-// function's `checks`, which it does not have.
-func (c *Call) checkNeighboursAlways(ordered []float64, s summary, r float64) {
-	if neighboursAlike(r, s.n, c.rare()) {
-		c.caution("neighbours-alike", "sample", "Neighbouring values are not independent, so an interval that takes them for independent is too %s; "+
-			"average over longer stretches, or count only effective-n values.", narrowOrWide(r))
-	}
 }
 
 // sides gives, for each stretch of values without a gap, on which side of the
@@ -133,16 +124,16 @@ const exactRuns = 50
 func (r runCount) pValue() (float64, string) {
 	if len(r.lengths) == 1 {
 		law := dist.Runs{First: r.above, Second: r.below}
-		return math.Min(1, 2*math.Min(law.CDF(r.runs), law.SF(r.runs-1))), "exact p-value"
+		return tailP(either, law.CDF(r.runs), law.SF(r.runs-1)), "exact p-value"
 	}
 	if r.above <= exactRuns && r.below <= exactRuns {
 		atMost, atLeast := r.exactTails()
-		return math.Min(1, 2*math.Min(atMost, atLeast)), "exact p-value"
+		return tailP(either, atMost, atLeast), "exact p-value"
 	}
 	mean, sd := r.moments()
 	atMost := dist.Normal{}.CDF((float64(r.runs) + 0.5 - mean) / sd)
 	atLeast := dist.Normal{}.SF((float64(r.runs) - 0.5 - mean) / sd)
-	return math.Min(1, 2*math.Min(atMost, atLeast)), "normal p-value with continuity correction"
+	return tailP(either, atMost, atLeast), "normal p-value with continuity correction"
 }
 
 // exactTails counts all orders by their number of runs, from left to right: at
@@ -151,7 +142,7 @@ func (r runCount) pValue() (float64, string) {
 // side are those of drawing without replacement.
 func (r runCount) exactTails() (atMost, atLeast float64) {
 	n := r.above + r.below
-	type state [2][][]float64 // by side of the last: [above so far][runs]
+	type state [2][][]float64 // by side of the last, 1 for above: [above so far][runs]
 	newState := func() state {
 		var s state
 		for side := range s {
@@ -162,46 +153,34 @@ func (r runCount) exactTails() (atMost, atLeast float64) {
 		}
 		return s
 	}
-	now, started, done := newState(), false, 0
-	for _, length := range r.lengths {
-		for i := range length {
-			next := newState()
-			step := func(up, runs int, p float64) {
-				if left := n - done; up < r.above {
-					next[1][up+1][runs] += p * float64(r.above-up) / float64(left)
-				}
-			}
-			stepDown := func(up, runs int, p float64) {
-				if left, down := n-done, done-up; down < r.below {
-					next[0][up][runs] += p * float64(r.below-down) / float64(left)
-				}
-			}
-			if !started {
-				step(0, 1, 1)
-				stepDown(0, 1, 1)
-				started = true
-			} else {
-				for last := range now {
-					for up := range now[last] {
-						for runs, p := range now[last][up] {
-							if p == 0 {
-								continue
-							}
-							newUp, newDown := runs, runs
-							if i == 0 || last == 0 {
-								newUp++
-							}
-							if i == 0 || last == 1 {
-								newDown++
-							}
-							step(up, newUp, p)
-							stepDown(up, newDown, p)
+	now, done := newState(), 0
+	now[0][0][0] = 1
+	take := func(begins bool) {
+		next := newState()
+		for last := range now {
+			for up := range now[last] {
+				for runs, p := range now[last][up] {
+					if p == 0 {
+						continue
+					}
+					for side, left := range []int{r.below - (done - up), r.above - up} {
+						if left == 0 {
+							continue
 						}
+						after := runs
+						if begins || side != last {
+							after++
+						}
+						next[side][up+side][after] += p * float64(left) / float64(n-done)
 					}
 				}
 			}
-			now = next
-			done++
+		}
+		now, done = next, done+1
+	}
+	for _, length := range r.lengths {
+		for i := range length {
+			take(i == 0)
 		}
 	}
 	for last := range now {

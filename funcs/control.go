@@ -40,11 +40,8 @@ var differencesFromControl = &Function{
 		Source:    "Dunnett's integral at 25 digits",
 	},
 	compute: func(c *Call) error {
-		groups, err := c.readGroups()
+		groups, err := c.readSeveral()
 		if err != nil {
-			return err
-		}
-		if err := c.atLeastTwo(groups); err != nil {
 			return err
 		}
 		name := controlGroup.Of(c)

@@ -142,14 +142,8 @@ func fromMedian(values []float64) []float64 {
 // weighted means (Bartlett 1937). With xᵢ = sᵢ²/s² - 1, s² pooled, the sum
 // Σ(nᵢ-1)·log(s²/sᵢ²) is formed as Σ(nᵢ-1)·(xᵢ - log(1+xᵢ)), all terms positive.
 func (c *Call) bartlettTest(groups []groupSummary, _ string) error {
-	var still []groupSummary
-	for _, g := range groups {
-		if g.sd == 0 {
-			still = append(still, g)
-		}
-	}
-	if still != nil {
-		return c.noGroupSpread(still)
+	if err := c.eachVaries(groups); err != nil {
+		return err
 	}
 	_, sd := pooledSpread(summariesOf(groups)...)
 	df1, df2 := float64(len(groups)-1), dfWithin(groups)

@@ -81,7 +81,7 @@ type UnknownError struct {
 func (e *UnknownError) Error() string {
 	text := fmt.Sprintf("there is no %s %q", e.What, e.Name)
 	if len(e.Closest) > 0 {
-		text += "; did you mean " + OrList(quoted(e.Closest)) + "?"
+		text += "; " + didYouMean(e.Closest)
 	}
 	return text
 }
@@ -151,6 +151,9 @@ func editDistance(a, b []rune) int {
 	}
 	return last[len(b)]
 }
+
+// didYouMean words the names near to what was written.
+func didYouMean(near []string) string { return "did you mean " + OrList(quoted(near)) + "?" }
 
 // quoted puts double quotes round each text.
 func quoted(texts []string) []string {

@@ -110,11 +110,10 @@ type Function struct {
 
 // Input finds an input by name.
 func (f *Function) Input(name string) (Input, bool) {
-	i := slices.IndexFunc(f.Inputs, func(in Input) bool { return in.Name == name })
-	if i < 0 {
-		return Input{}, false
+	if i := f.position(name); i < len(f.Inputs) {
+		return f.Inputs[i], true
 	}
-	return f.Inputs[i], true
+	return Input{}, false
 }
 
 // Result finds a result by name, common ones included.

@@ -26,6 +26,15 @@ func (c *Call) readGroups() ([]groupSummary, error) {
 	return groups, err
 }
 
+// readSeveral is readGroups for a comparison, which takes two groups or more.
+func (c *Call) readSeveral() ([]groupSummary, error) {
+	groups, err := c.readGroups()
+	if err != nil {
+		return nil, err
+	}
+	return groups, c.atLeastTwo(groups)
+}
+
 // readGroupsWith is readGroups together with further lists that have a number
 // for each group, such as the sizes of strata.
 func (c *Call) readGroupsWith(further ...In[List]) ([]groupSummary, [][]float64, error) {
@@ -109,7 +118,7 @@ func (c *Call) matched(names []string, lists ...In[List]) ([]string, [][]float64
 // nearestOf is the advice for a name that stands nowhere.
 func nearestOf(name string, names []string) string {
 	if near := Closest(name, names); len(near) > 0 {
-		return "did you mean " + OrList(quoted(near)) + "?"
+		return didYouMean(near)
 	}
 	return "the groups are " + someNames(names)
 }
@@ -151,6 +160,14 @@ func theGroups(groups []groupSummary) string {
 	return "The groups " + someNames(namesOf(groups))
 }
 
+// theGroupsHave words groups with their verb: "The group North has".
+func theGroupsHave(groups []groupSummary) string {
+	if len(groups) == 1 {
+		return theGroups(groups) + " has"
+	}
+	return theGroups(groups) + " have"
+}
+
 // groupsInput is the input to which findings about the groups belong.
 func (c *Call) groupsInput() string { return c.firstGiven("samples", "ns") }
 
@@ -174,12 +191,8 @@ func (c *Call) ownSpread(groups []groupSummary) []groupSummary {
 		}
 	}
 	if without != nil {
-		verb := "has"
-		if len(without) > 1 {
-			verb = "have"
-		}
-		c.caution("few-values", c.groupsInput(), "%s %s only 1 value, which has no standard deviation of its own: left out. Measure at least 2.",
-			theGroups(without), verb)
+		c.caution("few-values", c.groupsInput(), "%s only 1 value, which has no standard deviation of its own: left out. Measure at least 2.",
+			theGroupsHave(without))
 		c.count(total(with))
 	}
 	return with
@@ -189,6 +202,20 @@ func (c *Call) ownSpread(groups []groupSummary) []groupSummary {
 func (c *Call) noGroupSpread(groups []groupSummary) error {
 	return refuse("no-spread", c.firstGiven("samples", "sds"), "%s: all values equal (sd 0), so neither an interval nor a test exists; "+
 		"check whether the values were rounded or copied down.", theGroups(groups))
+}
+
+// eachVaries refuses groups of which some have only equal values.
+func (c *Call) eachVaries(groups []groupSummary) error {
+	var still []groupSummary
+	for _, g := range groups {
+		if g.sd == 0 {
+			still = append(still, g)
+		}
+	}
+	if still != nil {
+		return c.noGroupSpread(still)
+	}
+	return nil
 }
 
 // checkGroups raises the cautions of a sample for each group.
@@ -204,12 +231,8 @@ func (c *Call) checkGroups(groups []groupSummary) error {
 		}
 	}
 	if few != nil {
-		verb := "has"
-		if len(few) > 1 {
-			verb = "have"
-		}
-		c.caution("few-values", input, "%s %s fewer than %d values: the answer rests on the values being normal. Measure at least %d in each.",
-			theGroups(few), verb, fewValues, fewValues)
+		c.caution("few-values", input, "%s fewer than %d values: the answer rests on the values being normal. Measure at least %d in each.",
+			theGroupsHave(few), fewValues, fewValues)
 	}
 	for _, g := range groups {
 		if g.values != nil && g.sd > 0 {
@@ -221,8 +244,8 @@ func (c *Call) checkGroups(groups []groupSummary) error {
 			continue
 		}
 		what, values := "The group "+g.name, c.gapless(g.values)
-		c.checkSkewness(input, what, values, g.summary)
-		c.checkNeighbours(input, what, g.values, g.summary)
+		c.checkSkewness(input, what, values)
+		c.checkNeighbours(input, what, g.values, g.n)
 		c.checkFar(input, what, i, g.values, g.summary)
 		c.checkTail(input, what, values)
 		if err := c.cancelled(); err != nil {

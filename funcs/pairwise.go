@@ -48,11 +48,8 @@ var pairwiseDifferences = &Function{
 		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.4.7.1, worked to 12 digits",
 	},
 	compute: func(c *Call) error {
-		groups, err := c.readGroups()
+		groups, err := c.readSeveral()
 		if err != nil {
-			return err
-		}
-		if err := c.atLeastTwo(groups); err != nil {
 			return err
 		}
 		rows := c.pooledPairs

@@ -20,7 +20,7 @@ func WriteReference(w io.Writer, f *Function) error {
 	}
 	b.WriteString("\nInputs:\n\n")
 	for _, in := range f.Inputs {
-		fmt.Fprintf(&b, "- `%s` (%s%s): %s\n", in.Name, in.Kind, f.takes(in), in.Summary)
+		fmt.Fprintf(&b, "- `%s` (%s%s): %s\n", in.Name, in.Kind, takes(in), in.Summary)
 	}
 	if len(f.Results) > 0 {
 		b.WriteString("\nResults:\n\n")
@@ -52,46 +52,34 @@ func WriteReference(w io.Writer, f *Function) error {
 }
 
 // takes words domain, unit and default of an input.
-func (f *Function) takes(in Input) string {
-	var parts []string
-	switch in.Kind {
-	case Choice, YesNo, Text:
-		if in.Kind == Choice {
-			parts = append(parts, in.Expects())
-		}
-	default:
-		if d := in.Expects(); d != anyNumber.String() {
-			parts = append(parts, d)
-		}
+func takes(in Input) string {
+	text := ""
+	if expects := in.Expects(); in.Kind != YesNo && in.Kind != Text && expects != anyNumber.String() {
+		text = "; " + expects
 	}
-	switch in.Unit {
-	case SameUnit:
-		parts = append(parts, "unit of the sample")
-	case SquaredUnit:
-		parts = append(parts, "unit of the sample, squared")
-	}
+	text += unitText(in.Unit)
 	switch {
 	case in.Default != nil:
-		parts = append(parts, "default "+FormatArgument(in.Default))
+		text += "; default " + FormatArgument(in.Default)
 	case in.Optional:
-		parts = append(parts, "may be left out")
+		text += "; may be left out"
 	}
-	if parts == nil {
-		return ""
+	return text
+}
+
+func unitText(u Unit) string {
+	switch u {
+	case SameUnit:
+		return "; unit of the sample"
+	case SquaredUnit:
+		return "; unit of the sample, squared"
 	}
-	return "; " + strings.Join(parts, "; ")
+	return ""
 }
 
 func writeResults(b *strings.Builder, list []Result) {
 	for _, r := range list {
-		unit := ""
-		switch r.Unit {
-		case SameUnit:
-			unit = "; unit of the sample"
-		case SquaredUnit:
-			unit = "; unit of the sample, squared"
-		}
-		fmt.Fprintf(b, "- `%s` (%s%s): %s\n", r.Name, r.Kind, unit, r.Summary)
+		fmt.Fprintf(b, "- `%s` (%s%s): %s\n", r.Name, r.Kind, unitText(r.Unit), r.Summary)
 	}
 }
 

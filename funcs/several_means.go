@@ -147,11 +147,8 @@ var analysisOfVariance = &Function{
 		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.4.3.3",
 	},
 	compute: func(c *Call) error {
-		groups, err := c.readGroups()
+		groups, err := c.readSeveral()
 		if err != nil {
-			return err
-		}
-		if err := c.atLeastTwo(groups); err != nil {
 			return err
 		}
 		test := c.pooledMeans
@@ -200,14 +197,8 @@ func (c *Call) separateMeans(groups []groupSummary) error {
 	if err := c.atLeastTwo(groups); err != nil {
 		return err
 	}
-	var still []groupSummary
-	for _, g := range groups {
-		if g.sd == 0 {
-			still = append(still, g)
-		}
-	}
-	if still != nil {
-		return c.noGroupSpread(still)
+	if err := c.eachVaries(groups); err != nil {
+		return err
 	}
 	f, df1, df2 := welchMeans(groups)
 	c.method = "Welch's test of several means with separate variances, sds with divisor n - 1"

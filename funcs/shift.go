@@ -68,12 +68,9 @@ var shiftInterval = &Function{
 			return err
 		}
 		u := num.Sum(ranks[:n1]) - float64(n1)*float64(n1+1)/2
-		p := law.pValue(u, dir)
 		c.set("shift", shift)
 		c.setLimits(l)
 		c.set("attained-confidence", attained)
-		c.set("u", u)
-		c.set("p-value", p)
 		name := "exact law of the rank sum"
 		if pairs > dist.MaxRankPairs {
 			name = "normal law of the rank sum, with correction for ties and continuity"
@@ -81,11 +78,11 @@ var shiftInterval = &Function{
 		c.method = fmt.Sprintf("Hodges-Lehmann estimate with limits from the %s, attained confidence %s", name, percent(roundDown(attained)))
 		c.say(statement{what: "shift (first - second)", estimate: shift, limits: l, unit: SameUnit,
 			counts: fmt.Sprintf("n = %d and %d", n1, n2)})
-		c.sayTest(ref, SameUnit, "u", u, p)
+		c.setTest(ref, SameUnit, "u", u, tailP(dir, law.atMost(u), law.atLeast(u)))
 		if checks.Of(c) {
 			c.among = 2
-			c.checkNeighbours("sample", "The sample", sample.Of(c), summary{n: n1})
-			c.checkNeighbours("second-sample", "The second-sample", secondSample.Of(c), summary{n: n2})
+			c.checkNeighbours("sample", "The sample", sample.Of(c), n1)
+			c.checkNeighbours("second-sample", "The second-sample", secondSample.Of(c), n2)
 		}
 		return nil
 	},
@@ -95,7 +92,7 @@ var shiftInterval = &Function{
 func roundDown(level float64) float64 { return math.Floor(float64(level*1e4)+1e-6) / 1e4 }
 
 // rankLaw is a law of u where only chance separates the samples: P(U <= u) and
-// P(U >= u).
+// P(U >= u) (Mann & Whitney 1947).
 type rankLaw struct{ atMost, atLeast func(u float64) float64 }
 
 // lawOfRanks is the exact law given the pooled ranks, of which the first n1
@@ -160,16 +157,4 @@ func shiftedRanks(x, y []float64, reference float64) (ranks []float64, ties []in
 		pooled = append(pooled, v-reference)
 	}
 	return num.Ranks(append(pooled, y...))
-}
-
-// pValue is the chance of u at least as far in the direction claimed (Mann &
-// Whitney 1947).
-func (l rankLaw) pValue(u float64, direction string) float64 {
-	switch direction {
-	case above:
-		return l.atLeast(u)
-	case below:
-		return l.atMost(u)
-	}
-	return math.Min(1, 2*math.Min(l.atMost(u), l.atLeast(u)))
 }

@@ -167,5 +167,5 @@ func (c *Call) shape() (g1, g2 float64, err error) {
 	case m.SumSquares == 0:
 		return 0, 0, c.noSpread("sample")
 	}
-	return skewness(m), excessKurtosis(m), c.checkSample(sample)
+	return skewness(m), excessKurtosis(m), c.checkSample()
 }

@@ -41,7 +41,7 @@ func (c *Call) meanPrecision() (meanPrecision, error) {
 			return p, err
 		}
 		p.sd, p.pilotDF = s.sd, float64(s.n-1)
-		return p, c.checkSample(sample)
+		return p, c.checkSample()
 	}
 	p.sd = expectedSD.Of(c)
 	if n, ok := pilotN.Given(c); ok {

@@ -202,7 +202,7 @@ var varianceInterval = &Function{
 			c.setTest(ref, SquaredUnit, "chi-square", chi, pValue(dir, chi, dist.ChiSquare{DF: df}))
 		}
 		c.sayRoot("standard deviation", s.sd, l)
-		return c.checkSample(sample)
+		return c.checkSample()
 	},
 }
 
