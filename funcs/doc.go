@@ -25,4 +25,12 @@
 //
 // Repeatability. No clock, no global random state, no environment: the same
 // inputs give the same digits on every machine, and the same fingerprint.
+//
+// # Where things are
+//
+// function.go has the descriptor, call.go and bind.go the way of a call,
+// registry.go the list of families; each family has a file of its name, which
+// goes on in others (sizes_power.go). The package imports its own internal
+// packages alone: dist for laws of probability, num for arithmetic. It knows no
+// workbooks, files, wires or terminals.
 package funcs

@@ -1,6 +1,3 @@
-// Package workbook fills workbooks: it reads a book's sheets as the source of
-// samples, works out its calculation sheets and writes the results beside the
-// questions.
 package workbook
 
 import (

@@ -1,5 +1,6 @@
 // Command halfwidth-server answers statistical questions over its standard
-// input and output, in JSON-RPC 2.0 framed as in the Language Server Protocol.
+// input and output, in JSON-RPC 2.0 framed as in the Language Server Protocol. It
+// reads its options and hands the streams to package rpc.
 package main
 
 import (

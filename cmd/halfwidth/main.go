@@ -1,5 +1,9 @@
 // Command halfwidth answers statistical questions about the numbers in
 // workbooks and writes the answers beside the questions, as plain values.
+//
+// Each verb has a file of its name: its flags, its help, what it prints. run.go
+// has the table of verbs and the exit codes; batch.go works on several books at
+// once. The work itself is package workbook's.
 package main
 
 import (

@@ -1,6 +1,12 @@
 // Package page shows a workbook that was worked out as one self-contained page:
 // what was found, then every calculation with its sentence, its findings and a
 // picture.
+//
+// Contract: the page needs no network, no script and no file beside it, and the
+// same report gives the same bytes. Every function has a picture (pictures.go
+// finds it from the descriptor), and the picture says in words what it shows.
+// Nothing is estimated here: numbers come from the report, or are asked of
+// package funcs. Reading and working out are package workbook's.
 package page
 
 import (

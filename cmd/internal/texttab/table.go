@@ -1,5 +1,10 @@
 // Package texttab lays out one table as aligned text with numbered footnotes,
 // as CSV or as JSON.
+//
+// Contract: off a terminal a row is one line and nothing is decorated; on one,
+// tables fit its width. Numbers are shortened in text alone; CSV and JSON keep
+// every digit. Texts cannot steer a terminal or start a formula in a sheet
+// program. It knows nothing of what the cells mean.
 package texttab
 
 import (

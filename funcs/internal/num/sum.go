@@ -1,7 +1,8 @@
 // Package num holds the arithmetic that the statistical functions rest on:
 // compensated sums and moments, ranks and quantiles of data, bracketing
 // searches, the trapezoidal rule, and the elementary functions in a form whose
-// digits do not depend on the processor.
+// digits do not depend on the processor. It knows no laws of probability, which
+// are package dist's above it, and no missing values: callers leave gaps out.
 package num
 
 import "math"
