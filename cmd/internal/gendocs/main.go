@@ -115,7 +115,7 @@ cells-skipped are facts of the values and cells at hand and have nothing to cali
   exist, cannot be told from that lognormal law at such n: a rule that found it more often would accuse both.
 - spreads-unlike asks that one sd is more than twice another, and that their F test is significant at 0.01, shared among all pairs
   (Bonferroni). Twice alone would take in every fifth pair of groups of 5.
-- Where a call has several samples, the significance of each caution is shared among them Ten groups, each looked at
+- Where a call has several samples, the significance of each caution is shared among them. Ten groups, each looked at
   with 0.01, would give a caution in every tenth call without cause.
 
 `
