@@ -10,6 +10,7 @@ import (
 	"path"
 	"path/filepath"
 	"regexp"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -36,6 +37,15 @@ func goFiles(t *testing.T) (list []string) {
 		t.Fatal(err)
 	}
 	return list
+}
+
+func read(t *testing.T, name string) []byte {
+	t.Helper()
+	text, err := os.ReadFile(filepath.Join(root, name))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return text
 }
 
 func parsed(t *testing.T, name string) *ast.File {
@@ -94,6 +104,9 @@ var fileNames = regexp.MustCompile(`[\w./-]*\w\.(go|md|json|lua|mjs|js|py|css|ht
 // goCommand is a go command over packages of the module, as pages write it.
 var goCommand = regexp.MustCompile(`\bgo (?:run|build|install|test)((?: \./[\w/-]+)+)`)
 
+// goTest is a go command over one package that picks tests by their name.
+var goTest = regexp.MustCompile(`go test \./([\w/-]+)[^\n` + "`" + `]*? -(run|fuzz|bench) '?\^?([A-Z]\w*)`)
+
 // A page that leads people through the tree names what is there.
 func TestThePagesNameFilesThatAreThere(t *testing.T) {
 	files := goFiles(t)
@@ -104,6 +117,16 @@ func TestThePagesNameFilesThatAreThere(t *testing.T) {
 	made := map[string]bool{"larkmoor.html": true, "R.html": true, "demo.html": true, "pictures.html": true} // by a command beside them
 	commands := 0
 	check := func(page, text string) {
+		for _, command := range goTest.FindAllStringSubmatch(text, -1) {
+			kind := map[string]string{"run": "Test", "fuzz": "Fuzz", "bench": "Benchmark"}[command[2]]
+			wanted := regexp.MustCompile(`(?m)^func ` + kind + `\w*` + strings.TrimPrefix(command[3], kind))
+			if !slices.ContainsFunc(files, func(name string) bool {
+				return path.Dir(name) == command[1] && strings.HasSuffix(name, "_test.go") && wanted.Match(read(t, name))
+			}) {
+				t.Errorf("%s says %q, but there is no such test", page, command[0])
+			}
+			commands++
+		}
 		for _, command := range goCommand.FindAllStringSubmatch(text, -1) {
 			for folder := range strings.FieldsSeq(command[1]) {
 				commands++
@@ -137,30 +160,22 @@ func TestThePagesNameFilesThatAreThere(t *testing.T) {
 		pages = append(pages, filepath.ToSlash(below))
 	}
 	for _, page := range pages {
-		text, err := os.ReadFile(filepath.Join(root, page))
-		if err != nil {
-			t.Fatal(err)
-		}
-		check(page, string(text))
+		check(page, string(read(t, page)))
 	}
 	for _, name := range files {
 		if file := parsed(t, name); file.Doc != nil {
 			check(name, file.Doc.Text())
 		}
 	}
-	if commands < 10 {
-		t.Errorf("%d packages stand in go commands", commands)
+	if commands < 15 {
+		t.Errorf("%d packages and tests stand in go commands", commands)
 	}
 }
 
 // The layers of DEVELOPERS.md name every package of the module.
 func TestTheTableOfPackagesIsWhole(t *testing.T) {
-	text, err := os.ReadFile(filepath.Join(root, "DEVELOPERS.md"))
-	if err != nil {
-		t.Fatal(err)
-	}
 	var named []string
-	for line := range strings.Lines(string(text)) {
+	for line := range strings.Lines(string(read(t, "DEVELOPERS.md"))) {
 		if cells := strings.Split(line, "|"); len(cells) == 4 {
 			for name := range strings.SplitSeq(cells[1], ",") {
 				named = append(named, strings.TrimSpace(name))
