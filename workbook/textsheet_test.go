@@ -343,3 +343,36 @@ func TestATextSheetIsVerified(t *testing.T) {
 		t.Errorf("other data: %q", list)
 	}
 }
+
+// What stands right of a separator that was meant for a cell's own is kept, and no
+// number comes of it. The limit is 1 - 5/√2 tan(0.475 π), as t with one degree of
+// freedom is a tangent.
+func TestALineOfATextSheetThatIsLongerThanItsHeader(t *testing.T) {
+	const numbers, decimals = "work out;sample;> mean;> status\n", "work out,mean,sd,n,> lower,> status\n"
+	for _, test := range []struct{ header, line, filled, note string }{
+		{numbers, "sample-summary;1; 2; 3;;", "", "The line of row 2 has 6 cells, and that of its header 4, so a cell of it may be cut in two. Put cells that hold the separator in quotes."},
+		{numbers, "sample-summary;1; 2; 3;;;my remark", "", "has 7 cells"},
+		{numbers, `sample-summary;"1; 2; 3";;`, `sample-summary;"1; 2; 3";2;caution`, ""},
+		{numbers, `sample-summary;"1; 2; 3";;;my remark`, `sample-summary;"1; 2; 3";2;caution;my remark`, ""},
+		{numbers, "sample-summary;7", "sample-summary;7;7;caution", ""},
+		{decimals, "mean-interval,1,5,2,10,,", "mean-interval,1,5,2,-43.92321766046877,caution,", "The line of row 2 has 7 cells"},
+		{decimals, "mean-interval,1,5,2,,", "mean-interval,1,5,2,-43.92321766046877,caution", ""},
+		{"work out,sample,> mean,,work out,sample,> mean\n", "sample-summary,7,,,sample-summary,9,", "sample-summary,7,7,,sample-summary,9,9", ""},
+	} {
+		path := filepath.Join(t.TempDir(), "a.calculations.csv")
+		write(t, path, test.header+test.line+"\n")
+		report, err := Fill(t.Context(), path, Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if note := report.Results.Rows[0].Note(); !strings.Contains(note, test.note) || test.note == "" && strings.Contains(note, "The line of row") {
+			t.Errorf("%q: the note is %q", test.line, note)
+		}
+		if test.filled == "" {
+			test.filled = test.line
+		}
+		if got := read(t, outputName(path)); got != test.header+test.filled+"\n" {
+			t.Errorf("%q is filled to %q, want %q", test.line, got, test.header+test.filled+"\n")
+		}
+	}
+}

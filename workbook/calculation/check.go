@@ -36,6 +36,7 @@ func (c *calcSheet) readRows(b *Block) {
 			c.results[CellRef{number, bc.Col}] = resultCell{r, bc.Name}
 		}
 		c.checkResultCells(r)
+		c.checkLine(r)
 		b.Rows = append(b.Rows, r)
 	}
 }

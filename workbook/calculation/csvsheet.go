@@ -56,13 +56,18 @@ func ParseTextSheet(name string, data []byte) (*TextSheet, error) {
 	t.frame = NewFrame()
 	for i, r := range t.rows {
 		t.frame.SetRow(i+1, 0)
+		line := lineWidth{row: i + 1, cells: len(r.fields)}
 		for j, f := range r.fields {
+			if f.text != "" {
+				line.last = j + 1
+			}
 			if isFormulaText(f.text) {
 				t.frame.Set(i+1, j+1, Cell{Unsaved: true})
 				continue
 			}
 			t.frame.SetRow(i+1, t.dialect.setField(t.frame, i+1, j+1, []byte(f.text)))
 		}
+		t.frame.lines = append(t.frame.lines, line)
 	}
 	return t, nil
 }

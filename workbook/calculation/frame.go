@@ -42,7 +42,8 @@ type Frame struct {
 	compact int // how many texts there were when none was out of use
 	lastRow int
 	lastCol int
-	widths  lineWidths // of a text file
+	widths  lineWidths  // of a text file
+	lines   []lineWidth // of a text calculation sheet, by row - 1
 }
 
 // NewFrame gives an empty frame that keeps all columns.
