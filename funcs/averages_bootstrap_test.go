@@ -152,16 +152,17 @@ func TestSimulationsGiveTheSameDigitsOnAnyCores(t *testing.T) {
 	}
 }
 
-// Cancelled work stops within a tenth of a second. The shortest of three attempts
-// counts, and far more is allowed, as the machine may be busy.
+// Cancelled work stops within a tenth of a second. The shortest of several attempts
+// counts, as the machine may be busy.
 func TestSimulationsStopWhenCancelled(t *testing.T) {
+	const tenth = 100 * time.Millisecond
 	for name, arguments := range map[string]map[string]any{
 		"bootstrap-interval":  {"sample": counting(20_000), "of": "median", "resamples": 1500},
 		"coverage-check":      {"sample": counting(200_000), "resamples": 300},
 		"population-coverage": {"shape": "lognormal", "parameter": 1.0, "n": 20_000, "resamples": 1500},
 	} {
 		shortest := time.Hour
-		for range 3 {
+		for attempt := 0; attempt < 3 || attempt < 20 && shortest > tenth; attempt++ {
 			ctx, cancel := context.WithCancel(context.Background())
 			var cancelled time.Time
 			time.AfterFunc(10*time.Millisecond, func() { cancelled = time.Now(); cancel() })
@@ -171,7 +172,7 @@ func TestSimulationsStopWhenCancelled(t *testing.T) {
 			}
 			shortest = min(shortest, time.Since(cancelled))
 		}
-		if shortest > time.Second {
+		if shortest > tenth {
 			t.Errorf("%s: stopped after %v", name, shortest)
 		}
 	}

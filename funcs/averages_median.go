@@ -46,7 +46,7 @@ var medianInterval = &Function{
 		}
 		if k == 0 {
 			return refuse("confidence-not-attainable", "confidence", "With %s no limits reach %s confidence; the most that is attainable is %s. "+
-				"Measure more, or ask for less.", nText(n), percent(conf), percent(1-sides*law.CDF(0)))
+				"Measure more, or ask for less.", nText(n), percent(conf), percent(roundDown(1-sides*law.CDF(0))))
 		}
 		l := limitsAt(dir, values[k-1], values[n-k])
 		median := num.Median(values)
@@ -63,7 +63,7 @@ var medianInterval = &Function{
 		case below:
 			c.method = fmt.Sprintf("order statistic %d", n+1-k)
 		}
-		c.method += ", attained confidence " + percent(attained)
+		c.method += ", attained confidence " + percent(roundDown(attained))
 		c.say(statement{"median", median, l, SameUnit, nText(n)})
 		c.checkOfAnyShape(n)
 		return nil

@@ -300,9 +300,9 @@ func TestSentencesOfAverages(t *testing.T) {
 			"Values up to 40.3 minutes hold all 3 further values together with 95% confidence (direction below, n = 6; " +
 				"joint prediction limits by the equicorrelated t law with 5 degrees of freedom, sd with divisor n - 1)."},
 		{"median-interval", map[string]any{"sample": minutes},
-			"The median is 30.6 minutes, 95% interval 27.3 to 35.1 (half-width 3.9, either direction, n = 6; order statistics 1 and 6, attained confidence 96.875%)."},
+			"The median is 30.6 minutes, 95% interval 27.3 to 35.1 (half-width 3.9, either direction, n = 6; order statistics 1 and 6, attained confidence 96.87%)."},
 		{"median-interval", map[string]any{"sample": minutes, "direction": below},
-			"The median is 30.6 minutes, at most 35.1 with 95% confidence (half-width 4.5, direction below, n = 6; order statistic 6, attained confidence 98.4375%)."},
+			"The median is 30.6 minutes, at most 35.1 with 95% confidence (half-width 4.5, direction below, n = 6; order statistic 6, attained confidence 98.43%)."},
 	} {
 		if got, _ := answer(t, c.name, c.arguments).Get("sentence"); got != c.want {
 			t.Errorf("%s\ngot  %v\nwant %s", c.name, got, c.want)

@@ -77,14 +77,14 @@ func (c *Call) orderTolerance(n int, share, conf float64, dir, what string) erro
 	attained := orderConfidence(n, share, dir)
 	if !reaches(attained, conf) {
 		return refuse("confidence-not-attainable", "confidence", "With %s the smallest and largest value hold %s of the population with only %s confidence; "+
-			"measure more (see distribution-free-tolerance-size), or ask for less.", nText(n), percent(share), percent(attained))
+			"measure more (see distribution-free-tolerance-size), or ask for less.", nText(n), percent(share), percent(roundDown(attained)))
 	}
 	values := c.gapless(sample.Of(c))
 	lowest, highest := slices.Min(values), slices.Max(values)
 	l := limitsAt(dir, lowest, highest)
 	c.setLimits(l)
 	c.set("attained-confidence", attained)
-	c.method = "distribution-free limits, attained confidence " + percent(attained)
+	c.method = "distribution-free limits, attained confidence " + percent(roundDown(attained))
 	c.sayLimits(l, highest-lowest, what, nText(n))
 	if checks.Of(c) {
 		c.checkNeighbours("sample", "The sample", sample.Of(c), n)

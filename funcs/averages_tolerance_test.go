@@ -65,7 +65,7 @@ func TestToleranceRefusals(t *testing.T) {
 	}
 	refusedFor(t, answer(t, "tolerance-interval", map[string]any{"mean": 1.0, "sd": 0.0, "n": 50}), "no-spread")
 	out = answer(t, "tolerance-interval", map[string]any{"sample": counting(10), "kind": distributionFree})
-	if want := "With n = 10 the smallest and largest value hold 95% of the population with only 8.61383558993% confidence; " +
+	if want := "With n = 10 the smallest and largest value hold 95% of the population with only 8.61% confidence; " +
 		"measure more (see distribution-free-tolerance-size), or ask for less."; Note(out.Findings) != want { // 1 - 10·0.95⁹ + 9·0.95¹⁰
 		t.Errorf("got %s", Note(out.Findings))
 	}

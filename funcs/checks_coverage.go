@@ -123,6 +123,15 @@ func (c *Call) setCoverage(s coverageTally, n int) {
 // roughFrom is how far from the confidence a second-order prediction is only rough.
 const roughFrom = 0.05
 
+// predictedShare words a predicted coverage: to 4 digits, or where it is rough to the
+// nearest percent.
+func predictedShare(coverage, confidence float64) string {
+	if math.Abs(confidence-coverage) > roughFrom {
+		return "roughly " + percent(math.Round(coverage*100)/100)
+	}
+	return percent(toDigits(coverage))
+}
+
 // allowedByDefault is how far coverage may fall short in n-needed.
 const allowedByDefault = 0.01
 
@@ -157,29 +166,27 @@ func (c *Call) sayCoverage(input, of, target string, n int, o *outlook, enough s
 	share, simulationError := c.simulatedShare()
 	missing := conf - c.results["coverage"].(float64)
 	short := missing > allowedByDefault && missing > 3*c.results["simulation-error"].(float64)
-	predicted, advice := "", "do not rely on it"
+	predicted, advice := "", "no n is enough: use median-interval"
 	if o != nil {
 		c.set("predicted-coverage", o.coverage)
-		predicted = "; predicted " + percent(toDigits(o.coverage))
-		if math.Abs(conf-o.coverage) > roughFrom {
-			predicted = "; predicted, but roughly so far out, " + percent(math.Round(o.coverage*100)/100)
-		}
+		predicted = "; predicted " + predictedShare(o.coverage, conf)
+		advice = "do not rely on it, and use median-interval or bootstrap-interval"
 		switch {
 		case o.needed == 0:
 			enough = fmt.Sprintf(" Not even %d values are predicted to bring it within 1 percentage point of %s.", largestPlan, percent(conf))
 		case short && o.needed <= n:
 			enough = " Skewness and excess kurtosis alone do not show how many would be enough."
-			advice = "measure more"
+			advice = "measure more, or use median-interval or bootstrap-interval"
 		default:
 			c.set("n-needed", o.needed)
 			enough = fmt.Sprintf(" It is predicted to come within 1 percentage point of %s from n = %d on.", percent(conf), o.needed)
-			advice = fmt.Sprintf("measure about %d", o.needed)
+			advice = fmt.Sprintf("measure about %d, or use median-interval or bootstrap-interval", o.needed)
 		}
 	}
 	c.sentence = fmt.Sprintf("For %s the %s t interval (direction %s) from n = %d holds %s in %s of cases (simulation error %s percentage points%s; %s).%s",
 		of, percent(conf), direction.Of(c), n, target, share, simulationError, predicted, c.method, enough)
 	if short {
-		c.caution("coverage-short", input, "The interval holds %s in only %s of cases instead of %s; %s, or use median-interval or bootstrap-interval.",
+		c.caution("coverage-short", input, "The interval holds %s in only %s of cases instead of %s; %s.",
 			target, share, percent(conf), advice)
 	}
 }

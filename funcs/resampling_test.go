@@ -1,9 +1,11 @@
 package funcs
 
 import (
+	"context"
 	"errors"
 	"fmt"
 	"math/rand/v2"
+	"runtime"
 	"sync/atomic"
 	"testing"
 )
@@ -19,6 +21,25 @@ func TestSharedWorkIsDoneOnce(t *testing.T) {
 				t.Errorf("n = %d: item %d was worked on %d times", n, i, k)
 			}
 		}
+	}
+}
+
+// Once cancelled, no worker begins another item: at most those under way end.
+func TestSharedWorkEndsWhenCancelled(t *testing.T) {
+	ctx, cancel := context.WithCancel(t.Context())
+	var begun atomic.Int32
+	err := share(ctx, 1_000_000, 64, func() func(int) {
+		return func(int) {
+			switch k := begun.Add(1); {
+			case k == 100:
+				cancel()
+			case k > 100:
+				<-ctx.Done()
+			}
+		}
+	})
+	if most := int32(100 + runtime.NumCPU()); !errors.Is(err, context.Canceled) || begun.Load() > most {
+		t.Errorf("%v after %d items, want at most %d", err, begun.Load(), most)
 	}
 }
 

@@ -140,9 +140,16 @@ var enoughNForMean = &Function{
 		c.set("cochran-n", int(rule))
 		c.set("coverage-at-30", predicted(ruleOfThumb))
 		c.method = fmt.Sprintf("predicted coverage of the t interval for skewness %s and excess kurtosis %s", brief(g1), brief(g2))
+		thumb, few := "which is enough", ""
+		if !reaches(predicted(ruleOfThumb), wanted) {
+			thumb = "which is too little"
+		}
+		if n < fewValues {
+			few = " So few values make a wide interval, and the prediction is rough for them: plan the half-width with mean-precision-size."
+		}
 		c.sentence = fmt.Sprintf("Measure %s, planned for a coverage of at least %s: the %s interval (%s) is predicted to hold the true mean in %s of cases (%s); "+
-			"Cochran's rule asks for n = %.0f, and the common rule of thumb, n = %d, is predicted to give %s.%s", nText(n), percent(wanted), percent(conf), c.inDirection(),
-			percent(toDigits(predicted(n))), c.method, rule, ruleOfThumb, percent(toDigits(predicted(ruleOfThumb))), c.toPlan())
+			"Cochran's rule asks for n = %.0f. The rule of thumb n = %d, which asks nothing of the values, is predicted to give %s, %s.%s%s", nText(n), percent(wanted),
+			percent(conf), c.inDirection(), predictedShare(predicted(n), conf), c.method, rule, ruleOfThumb, predictedShare(predicted(ruleOfThumb), conf), thumb, few, c.toPlan())
 		return nil
 	},
 }

@@ -35,6 +35,9 @@ func makeBooks(t *testing.T, dir string, n int) {
 			{"mean-interval", "minutes in Trips"},
 			{"mean-interval", "minutes in Trips where depot = " + depot},
 			{"median-interval", "minutes in Trips"},
+			{},
+			{"work out", "sample", "resamples", "> coverage"}, // a simulation, whose digits must not rest on --jobs
+			{"coverage-check", "minutes in Trips", 200.0},
 		}})
 		made[i] = readFile(t, path)
 	}
