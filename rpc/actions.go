@@ -64,7 +64,7 @@ type actionParams struct {
 	Range        textRange  `json:"range"`
 	Context      struct {
 		Only []string `json:"only"`
-	} `json:"context"`
+	} `json:"context,omitempty"`
 }
 
 // actions offers what mends the findings in the lines asked about, and to fill
@@ -166,6 +166,9 @@ func (d *textDesk) execute(_ context.Context, call *Call, p struct {
 	}
 	state := live.held
 	if p.Command == editCommand {
+		if len(args.Edits) == 0 {
+			return nil, badParams("/arguments/0/edits", "edits", "is missing or empty", "give the object that came with the command")
+		}
 		s.applyEdit(args.Title, client.edit(state, args.Edits))
 		return nil, nil
 	}

@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"reflect"
 )
 
 // textDesk is the text calculation sheets that an editor has open: what the rows
@@ -62,6 +63,9 @@ type textQuestion struct {
 // is worked out by a worker, from the text as it is now.
 func asked[P documentNamer](d *textDesk, name, doc string, announce func(*Client, map[string]any), answer func(context.Context, *textQuestion, P) (any, error)) Method {
 	return Lenient(Method{Name: name, Standard: true, Doc: doc, Announce: announce}, func(_ context.Context, call *Call, p P) (any, error) {
+		if err := lacking(call.Params, reflect.TypeFor[P]()); err != nil {
+			return nil, err
+		}
 		live := d.open[p.documentURI()]
 		if live == nil {
 			return nil, nil
@@ -69,6 +73,23 @@ func asked[P documentNamer](d *textDesk, name, doc string, announce func(*Client
 		q := &textQuestion{textState: live.held, session: call.Session, client: call.Session.Client(), show: d.show, markdown: d.markdown}
 		return Later(func(ctx context.Context) (any, error) { return answer(ctx, q, p) })
 	})
+}
+
+// lacking finds the first member of a question that is left out or null, though
+// LSP does not let it be: which document, place or range is asked about must not
+// be guessed.
+func lacking(params []byte, t reflect.Type) error {
+	for i := range t.NumField() {
+		name, required := fieldOf(t.Field(i))
+		switch value := memberOf(params, name); {
+		case !required || value != nil && value[0] != 'n':
+		case value == nil:
+			return badParams(pointerTo("", name), name, "is missing", "give "+wanted(t.Field(i).Type))
+		default:
+			return badParams(pointerTo("", name), name, "is null", "give "+wanted(t.Field(i).Type))
+		}
+	}
+	return nil
 }
 
 // documentNamer is the params of a question about a document.
