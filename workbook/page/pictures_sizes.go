@@ -181,6 +181,9 @@ func (p *plan) curve(ctx context.Context) (xs, ys []float64, err error) {
 	return xs, ys, nil
 }
 
+// ruleOfThumb is the n that is often called enough.
+const ruleOfThumb = 30
+
 // drawPlan shows what other numbers of values would attain, with the chosen one
 // marked.
 func drawPlan(ctx context.Context, a answer) (*picture, error) {
@@ -192,6 +195,10 @@ func drawPlan(ctx context.Context, a answer) (*picture, error) {
 	if err != nil || len(xs) == 0 {
 		return nil, err
 	}
+	thumb := a.result("coverage-at-30") // the rule of thumb stands on the curve too, as what it is
+	if at, found := slices.BinarySearch(xs, ruleOfThumb); !math.IsNaN(thumb) && !found {
+		xs, ys = slices.Insert(xs, at, ruleOfThumb), slices.Insert(ys, at, thumb)
+	}
 	lox, hix := spanOf(append(slices.Clone(xs), p.chosen)...)
 	seen := append(slices.Clone(ys), p.attained, p.wanted)
 	loy, hiy := spanOf(seen...)
@@ -200,6 +207,8 @@ func drawPlan(ctx context.Context, a answer) (*picture, error) {
 		loy = math.Min(loy, 0)
 	case strings.HasSuffix(p.y, "power"):
 		loy, hiy = math.Min(0, loy), 1.02
+	case !math.IsNaN(thumb): // room for its words
+		loy, hiy = loy-0.15*(hiy-loy), hiy+0.15*(hiy-loy)
 	}
 	what := spaced(strings.TrimPrefix(p.y, "attained-"))
 	if p.y == "attained" {
@@ -222,6 +231,17 @@ func drawPlan(ctx context.Context, a answer) (*picture, error) {
 		}
 		g.line(lineInk, 1, points...)
 		g.dots(dotInk, 4, points)
+		if !math.IsNaN(thumb) {
+			at, words := vg.Point{X: g.x(ruleOfThumb), Y: g.y(thumb)}, "rule of thumb n = "+short(ruleOfThumb)
+			g.rings(refInk, 6, []vg.Point{at})
+			if half := widthOf(refWordInk, words) / 2; at.X+12+2*half <= pictureWidth {
+				g.label(refWordInk, at.X+12+half, at.Y+lineHeight/2, words)
+			} else if ys[len(ys)-1] < ys[0] { // the curve comes from above, so there is room below
+				g.label(refWordInk, pictureWidth-half, at.Y-8, words)
+			} else {
+				g.label(refWordInk, pictureWidth-half, at.Y+lineHeight+8, words)
+			}
+		}
 		if math.IsNaN(p.attained) {
 			return
 		}
@@ -241,6 +261,10 @@ func drawPlan(ctx context.Context, a answer) (*picture, error) {
 		f.caption = append(f.caption, "Each dot: what that "+p.x+" attains. Large dot: the one of this answer.")
 	} else {
 		f.caption = append(f.caption, "Each dot: the n for another "+spaced(p.over)+". Large dot: the one of this answer.")
+	}
+	if !math.IsNaN(thumb) {
+		f.caption = append(f.caption, "Ring: the rule of thumb, whatever the values.")
+		f.says = append(f.says, "The rule of thumb n = "+short(ruleOfThumb)+" attains "+short(thumb)+".")
 	}
 	if !math.IsNaN(p.wanted) {
 		f.caption = append(f.caption, "Dashed: wanted, "+figure(p.wanted)+".")

@@ -306,3 +306,13 @@ func TestPicturesStandNumbersOfAnySize(t *testing.T) {
 		}
 	}
 }
+
+// The rule of thumb of 30 is on the curve of the n that these values need.
+func TestTheRuleOfThumbIsDrawn(t *testing.T) {
+	for _, args := range []map[string]any{{"skewness": 2.0, "excess-kurtosis": 6.0}, {"skewness": 0.2, "excess-kurtosis": 0.0}, {"skewness": 0.0, "excess-kurtosis": 6.0}} {
+		p := drawn(t, "enough-n-for-mean", args)
+		if svg := string(p.svg("x")); !strings.Contains(p.alt(), "The rule of thumb n = 30 attains 0.9") || strings.Count(svg, ">rule of thumb n = 30<") != 1 {
+			t.Errorf("%v: %s", args, p.alt())
+		}
+	}
+}
