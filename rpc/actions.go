@@ -211,8 +211,10 @@ func (s *Session) applyEdit(title string, edit workspaceEdit) {
 		case s.ctx.Err() != nil:
 		case err != nil:
 			s.LogMessage(LogWarning, fmt.Sprintf("%s: the client refused the edit: %v", title, err))
+		case !answer.Applied && answer.Reason != "":
+			s.LogMessage(LogWarning, fmt.Sprintf("%s: the client did not make the edit: %s", title, answer.Reason))
 		case !answer.Applied:
-			s.LogMessage(LogWarning, fmt.Sprintf("%s: the client did not make the edit. %s", title, answer.Reason))
+			s.LogMessage(LogWarning, fmt.Sprintf("%s: the client did not make the edit", title))
 		}
 	}()
 }

@@ -65,7 +65,16 @@ func (s *Session) notifyOpen(method string, params any) {
 // workers and Go may ask: the reply is read by the goroutine that runs
 // handlers in turn.
 func (s *Session) Ask(ctx context.Context, method string, params, result any) error {
-	return s.conn.Call(ctx, method, params, result)
+	err := s.conn.Call(ctx, method, params, result)
+	var refusal *jsonrpc2.Error
+	var kind *json.UnmarshalTypeError
+	switch {
+	case errors.As(err, &refusal):
+		return errors.New(oneLine(refusal.Message))
+	case errors.As(err, &kind):
+		return errors.New("its answer is " + kindWord(kind.Value))
+	}
+	return err
 }
 
 // Levels of LogMessage (MessageType of LSP).

@@ -97,7 +97,7 @@ func (c *completer) places(names *nameReader, begun string) {
 			continue // a damaged book is told of once it is named
 		}
 		for _, p := range source.Places() {
-			if p.NoRange != "" {
+			if p.NoRange != "" || p.Kind == calculation.OtherSheet {
 				continue
 			}
 			c.add((&calculation.PlaceRef{File: file, Name: p.Name}).String(), itemModule, p.Kind.String())

@@ -115,13 +115,20 @@ func (s *stream) ReadObject(v any) error {
 }
 
 // checkedReply gives a reply in the form that the library reads without fault.
-// Ids of our calls are whole numbers.
+// Ids of our calls are whole numbers. Some clients write both result and error,
+// as JSON-RPC 1.0 did, and null for the one that does not apply. An error that
+// cannot be read is one all the same, since something may wait for it.
 func checkedReply(e envelope) ([]byte, error) {
 	if _, err := strconv.ParseUint(string(e.id), 10, 64); err != nil {
 		return nil, errors.New("its id is none of ours")
 	}
 	if e.result != nil && e.failure != nil {
-		return nil, errors.New("it has both result and error")
+		switch {
+		case string(e.failure) == "null":
+			e.failure = nil
+		case string(e.result) != "null":
+			return nil, errors.New("it has both result and error")
+		}
 	}
 	var b bytes.Buffer
 	b.WriteString(`{"id":`)
@@ -132,7 +139,7 @@ func checkedReply(e envelope) ([]byte, error) {
 	} else {
 		var failure jsonrpc2.Error
 		if err := json.Unmarshal(e.failure, &failure); err != nil {
-			return nil, errors.New("its error has no whole code and no text")
+			failure = jsonrpc2.Error{Code: CodeInternal, Message: "the client's error has no whole code and no text"}
 		}
 		b.WriteString(`,"error":`)
 		if err := encodeJSON(&b, failure); err != nil {
