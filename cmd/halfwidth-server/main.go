@@ -12,6 +12,7 @@ import (
 	"os"
 	"os/signal"
 	"runtime"
+	"strings"
 	"syscall"
 
 	"halfwidth/cmd/internal/buildinfo"
@@ -87,7 +88,7 @@ func run(args []string, in io.Reader, out, errw io.Writer) int {
 		fmt.Fprintf(out, usage, standard.MessageBytes, standard.Depth, standard.SampleValues, standard.OpenSheets, standard.OpenCells, standard.Queue, standard.Workers)
 		return 0
 	case err != nil:
-		fmt.Fprintf(errw, "halfwidth-server: %v\nWrite halfwidth-server --help for the options.\n", err)
+		fmt.Fprintf(errw, "halfwidth-server: %s\nWrite halfwidth-server --help for the options.\n", inOurWords(err))
 		return 2
 	case flags.NArg() > 0:
 		fmt.Fprintf(errw, "halfwidth-server: %q is no option, and there is nothing else to name\nWrite halfwidth-server --help for the options.\n", flags.Arg(0))
@@ -100,6 +101,23 @@ func run(args []string, in io.Reader, out, errw io.Writer) int {
 	// writer bring a cancel from 22 ms to 0.1 ms.
 	runtime.GOMAXPROCS(cores + 2)
 	return rpc.Serve(context.Background(), in, out, errw, rpc.Options{Version: buildinfo.Version(), Limits: limits, MayFill: mayFill})
+}
+
+// inOurWords words an error of package flag as the help words options.
+func inOurWords(err error) string {
+	text := err.Error()
+	if name, ok := strings.CutPrefix(text, "flag provided but not defined: -"); ok {
+		return "there is no option --" + name
+	}
+	if name, ok := strings.CutPrefix(text, "flag needs an argument: -"); ok {
+		return "--" + name + " needs a value"
+	}
+	if rest, ok := strings.CutPrefix(text, "invalid value "); ok {
+		value, rest, _ := strings.Cut(rest, " for flag -")
+		name, why, _ := strings.Cut(rest, ": ")
+		return "--" + name + " is " + value + ": " + why
+	}
+	return text
 }
 
 // atLeastOne is a whole number from 1 to what 31 bits hold.

@@ -75,6 +75,9 @@ func TestOptions(t *testing.T) {
 		{[]string{"--may-fill", "main.go"}, 2, "", `"main.go" is no folder`},
 		{[]string{"--no-such"}, 2, "", "-no-such"},
 		{[]string{"book.xlsx"}, 2, "", `"book.xlsx" is no option`},
+		{[]string{"--wrokers", "2"}, 2, "", "there is no option --wrokers\n"},
+		{[]string{"--workers"}, 2, "", "--workers needs a value\n"},
+		{[]string{"--workers", "0"}, 2, "", `--workers is "0": write a whole number from 1`},
 	} {
 		var out, errs bytes.Buffer
 		code := run(test.args, strings.NewReader(""), &out, &errs)
