@@ -126,7 +126,7 @@ func TestTheClientCanBeAskedAndTold(t *testing.T) {
 	ask()
 	c.wantPart(`"method":"window/showMessageRequest"`, `"id":0`)
 	for _, foreign := range []string{`{"jsonrpc":"2.0","id":99,"result":1}`, `{"jsonrpc":"2.0","id":-1,"result":1}`, `{"jsonrpc":"2.0","id":"x","result":1}`,
-		`{"jsonrpc":"2.0","result":1}`, `{"jsonrpc":"2.0","id":0,"result":1,"error":{"code":1,"message":""}}`, `{"jsonrpc":"2.0","id":0,"error":7}`} {
+		`{"jsonrpc":"2.0","result":1}`, `{"jsonrpc":"2.0","id":0,"result":1,"error":{"code":1,"message":""}}`, `{"jsonrpc":"2.0","id":98,"error":7}`} {
 		c.send("%s", foreign)
 	}
 	c.send(`{"jsonrpc":"2.0","id":0,"result":{"Title":"North"}}`)
