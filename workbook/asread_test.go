@@ -158,3 +158,22 @@ func TestLinesOfTextFilesLongerThanTheirHeader(t *testing.T) {
 		}
 	}
 }
+
+// A chart sheet has no cells to read, and its name is no new sheet's.
+func TestAChartSheetIsNoPlaceAndItsNameIsTaken(t *testing.T) {
+	book := func(question string) parts {
+		return plainBook().with(questionPart, question).with("xl/chartsheets/sheet1.xml", xmlHead+`<chartsheet xmlns="`+mainSpace+`"/>`).
+			with(workbookRels, relsA+bookRels+relation("rId9", "chartsheet", "chartsheets/sheet1.xml")+`</Relationships>`).
+			with(workbookPart, workbookA+strings.Replace(bookSheets, `</sheets>`, `<sheet name="Chart" sheetId="3" r:id="rId9"/></sheets>`, 1)+`</workbook>`)
+	}
+	groups := strings.NewReplacer("&gt; mean", "table sheet", `</row></sheetData>`, `<c r="C2" t="inlineStr"><is><t>CHART</t></is></c></row></sheetData>`).Replace(question("minutes in Trips for each depot"))
+	for question, want := range map[string]string{
+		question("minutes in Chart"): `"Chart" is a chart, dialog or macro sheet, without cells. Name a worksheet.`,
+		groups:                       `C2: there is a sheet "Chart" already that no fill made`,
+		question("minutes in Chrt"):  "Names are Trips and Calculations.",
+	} {
+		if row := filledRows(t, book(question))[0]; row.Status != funcs.StatusRefused || !strings.Contains(row.Note(), want) {
+			t.Errorf("%s: %s, want %s", row.Status, row.Note(), want)
+		}
+	}
+}

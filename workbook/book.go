@@ -46,9 +46,11 @@ func (b *Book) Close() error {
 func (b *Book) findPlaces() {
 	sheets := b.Sheets()
 	for _, s := range sheets {
-		if s.Kind == ooxml.Worksheet {
-			b.places = append(b.places, calculation.Place{Kind: calculation.Sheet, Name: s.Name, Sheet: s.Name})
+		kind := calculation.Sheet
+		if s.Kind != ooxml.Worksheet {
+			kind = calculation.OtherSheet
 		}
+		b.places = append(b.places, calculation.Place{Kind: kind, Name: s.Name, Sheet: s.Name})
 	}
 	for _, t := range b.Tables() {
 		b.places = append(b.places, calculation.Place{Kind: calculation.Table, Name: t.Name, Sheet: sheets[t.Sheet].Name,

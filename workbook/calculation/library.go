@@ -113,7 +113,7 @@ func (s *shelf) names(kinds ...PlaceKind) []string {
 	var out []string
 	seen := map[string]bool{}
 	for _, p := range s.places {
-		if (len(kinds) == 0 || slices.Contains(kinds, p.Kind)) && p.NoRange == "" && !seen[p.Name] {
+		if (len(kinds) == 0 || slices.Contains(kinds, p.Kind)) && !p.empty() && !seen[p.Name] {
 			seen[p.Name] = true
 			out = append(out, p.Name)
 		}
@@ -142,6 +142,8 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 	}
 	found := sh.called(name, asking)
 	switch {
+	case len(found) == 1 && found[0].Kind == OtherSheet:
+		return located{}, unknownPlace(ref.Span, fmt.Sprintf("%s is %s, without cells", quote(name), OtherSheet), "Name a worksheet.")
 	case len(found) == 1 && found[0].NoRange != "":
 		return located{}, unknownPlace(ref.Span, fmt.Sprintf("%s is a defined name for %.60s, which is not one range of a sheet", quote(name), found[0].NoRange), "Let it stand for one, or name the sheet.")
 	case len(found) == 1:
@@ -193,11 +195,14 @@ func (s *shelf) called(name, from string) []Place {
 		}
 	}
 	found = slices.DeleteFunc(found, func(p Place) bool { return p.Kind == DefinedName && rank(p) < best })
-	if i := slices.IndexFunc(found, func(p Place) bool { return p.NoRange == "" }); i < 0 {
+	if !slices.ContainsFunc(found, func(p Place) bool { return !p.empty() }) {
 		return found[:min(1, len(found))]
 	}
-	return slices.DeleteFunc(found, func(p Place) bool { return p.NoRange != "" })
+	return slices.DeleteFunc(found, Place.empty)
 }
+
+// empty tells whether nothing can be found in a place.
+func (p Place) empty() bool { return p.NoRange != "" || p.Kind == OtherSheet }
 
 func firstOr(list []string, otherwise string) string {
 	if len(list) > 0 {

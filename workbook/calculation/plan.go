@@ -155,7 +155,7 @@ func (p *Plan) claimTable(r *Row) {
 	at := CellRef{r.Number, bc.Col}
 	key := fold(r.table)
 	own := p.lib.own
-	taken := slices.IndexFunc(own.places, func(pl Place) bool { return pl.Kind == Sheet && fold(pl.Name) == key })
+	taken := slices.IndexFunc(own.places, func(pl Place) bool { return (pl.Kind == Sheet || pl.Kind == OtherSheet) && fold(pl.Name) == key })
 	switch first := p.tables[key]; {
 	case r.Function != nil && r.Function.Table == nil && r.each == nil:
 		r.caution(at, funcs.Caution, "no-table", fmt.Sprintf("%s gives no table here, so no sheet %s is written. Empty %s, or give the sample for each group.", r.Function.Name, quote(r.table), at))

@@ -34,10 +34,13 @@ const (
 	Sheet PlaceKind = iota
 	Table
 	DefinedName
+	OtherSheet // a sheet without cells: nothing is found in it, but its name is taken
 )
 
 // String words the kind with its article.
-func (k PlaceKind) String() string { return [...]string{"a sheet", "a table", "a defined name"}[k] }
+func (k PlaceKind) String() string {
+	return [...]string{"a sheet", "a table", "a defined name", "a chart, dialog or macro sheet"}[k]
+}
 
 // Place is a sheet, a table or a defined name of a Source. Rows and columns
 // count from 1; for a sheet they are 0.
