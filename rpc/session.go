@@ -51,6 +51,7 @@ type Session struct {
 	turn    turn
 
 	runaways atomic.Int32 // works that have outlasted their turn and go on
+	unheard  atomic.Int32 // requests of tell without a reply
 }
 
 type phase uint8

@@ -252,10 +252,20 @@ func watchFiles(s *Session) {
 	}}})
 }
 
+// mostUnheard is how many requests of tell may be without a reply, so that a client
+// that never replies takes no more memory with every change.
+const mostUnheard = 100
+
 // tell sends a request whose reply nothing waits for, not even the end of the
-// session. A refusal is told to the error stream.
+// session. A refusal is told to the error stream. To a client that has left
+// mostUnheard of them without a reply nothing more is sent.
 func (s *Session) tell(method string, params any) {
+	if s.unheard.Add(1) > mostUnheard {
+		s.unheard.Add(-1)
+		return
+	}
 	go func() {
+		defer s.unheard.Add(-1)
 		if err := s.Ask(s.ctx, method, params, new(json.RawMessage)); err != nil && s.ctx.Err() == nil {
 			s.remarks.say("the client refused %s: %v", method, err)
 		}

@@ -1,6 +1,7 @@
 package rpc
 
 import (
+	"context"
 	"encoding/json"
 	"strings"
 	"testing"
@@ -56,4 +57,38 @@ func TestRepliesOfEveryForm(t *testing.T) {
 			}
 		})
 	}
+}
+
+// A client that never replies is asked no more after a while, and again once it
+// has replied.
+func TestAClientThatNeverRepliesIsAskedNoMore(t *testing.T) {
+	methods := append(Methods(), Method{Name: "test/tell", Handler: func(_ context.Context, call *Call) (any, error) {
+		call.Session.tell("workspace/codeLens/refresh", nil)
+		return nil, nil
+	}})
+	c := begin(t, Options{Methods: methods})
+	c.initialize()
+	asked := 0
+	tell := func() {
+		c.send(`{"jsonrpc":"2.0","id":"t","method":"test/tell"}`)
+		for m := c.next(); !strings.Contains(m, `"id":"t"`); m = c.next() {
+			asked++
+		}
+	}
+	for range 2 * mostUnheard {
+		tell()
+	}
+	for ; asked < mostUnheard; asked++ { // the calls leave from goroutines of their own
+		c.wantPart("workspace/codeLens/refresh")
+	}
+	c.send(`{"jsonrpc":"2.0","id":0,"result":null}`)
+	for deadline := time.Now().Add(patience); asked == mostUnheard; time.Sleep(time.Millisecond) {
+		if tell(); time.Now().After(deadline) {
+			t.Fatal("after a reply nothing more is asked")
+		}
+	}
+	if asked > mostUnheard+1 {
+		t.Errorf("%d calls were sent", asked)
+	}
+	c.leave()
 }
