@@ -12,13 +12,15 @@ var averages = []*Function{meanInterval, pairedInterval, predictionInterval, tol
 
 var knownSD = number("known-sd", "the standard deviation, where it is known beforehand and not estimated", positive, SameUnit).optional()
 
+// sampleWays are the ways of giving one sample.
+var sampleWays = OneOf{{Needs: []string{"sample"}}, {Needs: []string{"mean", "sd", "n"}}}
+
 // intervalResults are the results of an interval for a quantity in the
 // sample's unit.
 func intervalResults(name, summary string) []Result {
 	return []Result{
 		{name, Number, SameUnit, summary},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"half-width", Number, SameUnit, "half the distance of the limits, or the distance of the one limit from the estimate"},
 	}
 }
@@ -30,7 +32,16 @@ func (c *Call) setInterval(name string, estimate float64, l limits) {
 	c.set("half-width", l.halfWidth(estimate))
 }
 
+// Results that several functions give.
 var (
+	resultLower = Result{"lower", Number, SameUnit, "lower limit; absent for direction below"}
+	resultUpper = Result{"upper", Number, SameUnit, "upper limit; absent for direction above"}
+	ratioLower  = Result{"lower", Number, NoUnit, "lower limit; absent for direction below"} // of a ratio, share or rate
+	ratioUpper  = Result{"upper", Number, NoUnit, "upper limit; absent for direction above"}
+
+	resultTotalLower = Result{"total-lower", Number, SameUnit, "lower limit of the total"}
+	resultTotalUpper = Result{"total-upper", Number, SameUnit, "upper limit of the total"}
+
 	resultSE = Result{"standard-error", Number, SameUnit, "standard error of the estimate"}
 	resultN  = Result{"n", Whole, NoUnit, "how many values"}
 	resultSD = Result{"sd", Number, SameUnit, "standard deviation (divisor n - 1)"}
@@ -52,10 +63,8 @@ var meanInterval = &Function{
 		resultSE, resultN, resultSD, resultDF, resultT,
 		Result{"z", Number, NoUnit, "z statistic against the reference, with known-sd"},
 		resultP,
-		Result{"total", Number, SameUnit, "population-size times the mean"},
-		Result{"total-lower", Number, SameUnit, "lower limit of the total"},
-		Result{"total-upper", Number, SameUnit, "upper limit of the total"}),
-	Findings:    append(oneSampleFindings, noSpreadKind),
+		Result{"total", Number, SameUnit, "population-size times the mean"}, resultTotalLower, resultTotalUpper),
+	Findings:    intervalFindings,
 	Assumptions: []string{"independent values of one population", "normal values, or n large enough for their skewness"},
 	Citations:   []string{"ISO 2602", "Cochran 1977 (finite population)"},
 	Example: Example{
@@ -75,10 +84,9 @@ var meanInterval = &Function{
 		if isKnown {
 			sd, law, statistic = known, dist.Normal{}, "z"
 		}
-		size, finite := populationSize.Given(c)
-		if finite && s.n > size {
-			return c.wrong("population-size", fmt.Sprint(size), fmt.Sprintf("is smaller than the sample (%s)", nText(s.n)),
-				"give the number in the whole population")
+		size, finite, err := c.sampledPopulation(s.n, "give the number in the whole population")
+		if err != nil {
+			return err
 		}
 		se := sd / math.Sqrt(float64(s.n))
 		whole := finite && s.n == size
@@ -104,7 +112,7 @@ var meanInterval = &Function{
 		}
 		if finite {
 			c.setTotals(float64(size), s.mean, l)
-			c.method += fmt.Sprintf(", finite population of %d", size)
+			c.method += ofPopulation(float64(size))
 		}
 		c.say(statement{"mean", s.mean, l, SameUnit, nText(s.n)})
 		if whole { // nothing is left to be unsure about
@@ -128,6 +136,19 @@ func (c *Call) meanSummary() (summary, error) {
 	c.count(s.n)
 	return s, nil
 }
+
+// sampledPopulation is the size of the population, where it is given, from which a
+// sample of n comes; advice says what to give in place of fewer than n.
+func (c *Call) sampledPopulation(n int, advice string) (size int, finite bool, err error) {
+	size, finite = populationSize.Given(c)
+	if finite && n > size {
+		err = c.wrong("population-size", fmt.Sprint(size), fmt.Sprintf("is smaller than the sample (%s)", nText(n)), advice)
+	}
+	return size, finite, err
+}
+
+// ofPopulation words the size of a finite population for a method.
+func ofPopulation(size float64) string { return fmt.Sprintf(", finite population of %.0f", size) }
 
 // finiteFactor is √(1 - n/N), which sampling without replacement puts on a
 // standard error (Cochran 1977, equation 2.20).
@@ -168,7 +189,7 @@ var pairedInterval = &Function{
 	Results: append(intervalResults("difference", "mean of the differences"),
 		resultSE, resultN, resultSD, resultDF, resultT, resultP,
 		Result{"correlation", Number, NoUnit, "correlation of the two values of a pair"}),
-	Findings:    append(oneSampleFindings, noSpreadKind),
+	Findings:    intervalFindings,
 	Assumptions: []string{"pairs independent of one another", "normal differences, or enough pairs for their skewness"},
 	Citations:   []string{"ISO 3301"},
 	Example: Example{

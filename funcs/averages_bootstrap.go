@@ -20,8 +20,7 @@ var bootstrapInterval = &Function{
 	Inputs:  inputs(sample, bootstrapOf, trimmedEachEnd, resamplesInput, seedInput, confidence, direction, checks),
 	Results: []Result{
 		{"estimate", Number, SameUnit, "the quantity of the sample"},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"bias", Number, SameUnit, "mean of the resampled quantities less the estimate"},
 	},
 	Findings:    []FindingKind{fewValuesKind, noSpreadKind, neighboursKind, heavyTailKind, tooFewResamplesKind, tooManyDrawsKind, fewerResamplesKind},

@@ -35,6 +35,9 @@ func (l limits) exponential() limits {
 	return l
 }
 
+// powersOfE have the logarithms 1, 2, 3, 4 and 5.
+var powersOfE = []Argument{{"sample", []float64{math.E, math.E * math.E, math.E * math.E * math.E, 54.598150033144236, 148.4131591025766}}}
+
 var geometricMeanInterval = &Function{
 	Name:    "geometric-mean-interval",
 	Version: 1,
@@ -42,8 +45,7 @@ var geometricMeanInterval = &Function{
 	Inputs:  inputs(sample, confidence, direction, checks),
 	Results: []Result{
 		{"geometric-mean", Number, SameUnit, "the exponential of the mean logarithm"},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"geometric-sd", Number, NoUnit, "the exponential of the standard deviation (divisor n - 1) of the logarithms"},
 		resultN, resultDF,
 	},
@@ -52,7 +54,7 @@ var geometricMeanInterval = &Function{
 	Citations:   []string{"ISO 2602 on logarithms"},
 	Example: Example{
 		Label:     "powers of e, so that the logarithms are 1, 2, 3, 4 and 5",
-		Arguments: []Argument{{"sample", []float64{math.E, math.E * math.E, math.E * math.E * math.E, 54.598150033144236, 148.4131591025766}}},
+		Arguments: powersOfE,
 		Want:      []Argument{{"geometric-mean", 20.085536923187668}, {"lower", 2.82005627}, {"upper", 143.057001}},
 		Tolerance: 1e-7,
 		Source:    "the t interval of 1…5, 3 ± 2.776445105·√(2.5/5) (t quantile of JCGM 100 Table G.2), raised to the base e",
@@ -83,8 +85,7 @@ var lognormalMeanInterval = &Function{
 	Inputs:  inputs(sample, confidence, direction, checks),
 	Results: []Result{
 		{"mean", Number, SameUnit, "estimate of the population's mean, exp(ȳ + s²/2) of the logarithms"},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		resultN,
 	},
 	Findings:    append([]FindingKind{positiveOnlyKind, noSpreadKind}, oneSampleFindings...),
@@ -92,7 +93,7 @@ var lognormalMeanInterval = &Function{
 	Citations:   []string{"Zhou & Gao 1997", "Olsson 2005 (modified Cox)"},
 	Example: Example{
 		Label:     "powers of e, so that the logarithms are 1, 2, 3, 4 and 5",
-		Arguments: []Argument{{"sample", []float64{math.E, math.E * math.E, math.E * math.E * math.E, 54.598150033144236, 148.4131591025766}}},
+		Arguments: powersOfE,
 		Want:      []Argument{{"mean", 70.10541234668786}, {"lower", 3.02610869}, {"upper", 1624.12172}},
 		Tolerance: 1e-7,
 		Source:    "the defining formula at ȳ = 3, s² = 2.5, n = 5, t = 2.776445105 (JCGM 100 Table G.2)",

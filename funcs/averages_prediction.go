@@ -23,10 +23,9 @@ var predictionInterval = &Function{
 	Summary: "limits for further values of the same population, or for their mean",
 	Inputs: inputs(sample, meanGiven, sdGiven, nGiven, future, predictionOf,
 		confidence.as("confidence", "the confidence that the further values lie within the limits"), direction, checks),
-	OneOf: []OneOf{{{Needs: []string{"sample"}}, {Needs: []string{"mean", "sd", "n"}}}},
+	OneOf: []OneOf{sampleWays},
 	Results: []Result{
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"factor", Number, NoUnit, "how many sds each limit lies from the mean"},
 		resultN, resultDF,
 	},

@@ -42,8 +42,7 @@ var trimmedMeanInterval = &Function{
 	Inputs:  inputs(sample, trimmedEachEnd, confidence, direction, checks),
 	Results: []Result{
 		{"trimmed-mean", Number, SameUnit, "mean of the values kept"},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"n", Whole, NoUnit, "how many values before trimming"},
 		resultDF,
 	},

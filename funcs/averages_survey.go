@@ -9,25 +9,18 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
-var (
-	resultTotal      = Result{"total", Number, SameUnit, "the total over the population"}
-	resultTotalLower = Result{"total-lower", Number, SameUnit, "lower limit of the total"}
-	resultTotalUpper = Result{"total-upper", Number, SameUnit, "upper limit of the total"}
-
-	sizes = In[List]{Input{Name: "sizes", Kind: Numbers, Domain: wholeFrom(1), Summary: "how many there are in all in each stratum"}}
-)
+var sizes = In[List]{Input{Name: "sizes", Kind: Numbers, Domain: wholeFrom(1), Summary: "how many there are in all in each stratum"}}
 
 var stratifiedInterval = &Function{
 	Name:    "stratified-interval",
 	Version: 1,
 	Summary: "mean and total of a population sampled by strata, with confidence intervals",
 	Inputs:  inputs(sizes, samples, means, sds, ns, confidence, direction, checks),
-	OneOf:   []OneOf{{{Needs: []string{"samples"}}, {Needs: []string{"means", "sds", "ns"}}}},
+	OneOf:   []OneOf{meansWays},
 	Results: []Result{
 		{"mean", Number, SameUnit, "mean of the population: the strata's means weighted by their sizes"},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
-		resultTotal, resultTotalLower, resultTotalUpper, resultSE, resultDF,
+		resultLower, resultUpper,
+		{"total", Number, SameUnit, "the total over the population"}, resultTotalLower, resultTotalUpper, resultSE, resultDF,
 	},
 	Findings:    append([]FindingKind{noSpreadKind}, oneSampleFindings...),
 	Assumptions: []string{"a simple random sample within each stratum", "normal stratum means"},
@@ -123,8 +116,7 @@ var ratioOfSumsInterval = &Function{
 	Paired: true,
 	Results: []Result{
 		{"ratio", Number, NoUnit, "sum of the numerators over sum of the denominators"},
-		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
-		{"upper", Number, NoUnit, "upper limit; absent for direction above"},
+		ratioLower, ratioUpper,
 		{"standard-error", Number, NoUnit, "standard error of the ratio"},
 		{"n", Whole, NoUnit, "how many rows"},
 		resultDF,
@@ -145,9 +137,9 @@ var ratioOfSumsInterval = &Function{
 			return err
 		}
 		n := len(y)
-		size, finite := populationSize.Given(c)
-		if finite && n > size {
-			return c.wrong("population-size", fmt.Sprint(size), fmt.Sprintf("is smaller than the sample (%s)", nText(n)), "give the number of all rows")
+		size, finite, err := c.sampledPopulation(n, "give the number of all rows")
+		if err != nil {
+			return err
 		}
 		sum := num.Sum(x)
 		if sum == 0 {
@@ -178,7 +170,7 @@ var ratioOfSumsInterval = &Function{
 		c.set("df", law.DF)
 		c.method = fmt.Sprintf("ratio of sums, linearised, with the t quantile of %s", degrees(law.DF))
 		if finite {
-			c.method += fmt.Sprintf(", finite population of %d", size)
+			c.method += ofPopulation(float64(size))
 		}
 		c.say(statement{"ratio of sums (sample / second-sample)", ratio, l, NoUnit, nText(n) + " rows"})
 		if whole {

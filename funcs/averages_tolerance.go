@@ -21,10 +21,9 @@ var toleranceInterval = &Function{
 	Summary: "limits that hold a given share of the population, with a given confidence",
 	Inputs: inputs(sample, meanGiven, sdGiven, nGiven, content, toleranceKind,
 		confidence.as("confidence", "the confidence that the limits hold the content"), direction, checks),
-	OneOf: []OneOf{{{Needs: []string{"sample"}}, {Needs: []string{"mean", "sd", "n"}}}},
+	OneOf: []OneOf{sampleWays},
 	Results: []Result{
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"factor", Number, NoUnit, "how many sds each limit lies from the mean; kind normal only"},
 		resultN,
 		{"attained-confidence", Number, NoUnit, "the confidence that the limits have"},

@@ -21,7 +21,11 @@ var (
 	spreadsKind    = FindingKind{"spreads-unlike", "with pooled variances, one sd is more than twice another and differs from it at significance 0.01 (of sds that are planned: twice)"}
 )
 
-var oneSampleFindings = []FindingKind{fewValuesKind, skewedKind, neighboursKind, farValueKind, heavyTailKind}
+// What functions of a sample raise, and those that need some spread in it.
+var (
+	oneSampleFindings = []FindingKind{fewValuesKind, skewedKind, neighboursKind, farValueKind, heavyTailKind}
+	intervalFindings  = slices.Concat(oneSampleFindings, []FindingKind{noSpreadKind})
+)
 
 const (
 	fewValues      = 5

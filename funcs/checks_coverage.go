@@ -3,6 +3,7 @@ package funcs
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -11,8 +12,16 @@ import (
 var (
 	coverageResamples = resamplesInput.withDefault(20000)
 	coverageN         = count("n", "the n to look at; the sample's own where it is left out", 2).optional()
-	noEnoughKind      = FindingKind{"heavy-tail", "the variance or the mean does not exist, so that no n is enough"}
+	noVarianceKind    = FindingKind{"heavy-tail", "the variance or the mean does not exist, so that no n is enough"}
 )
+
+// coverageSize is the n to look at: the sample's own, or the one asked for.
+func (c *Call) coverageSize(own int) int {
+	if n, ok := coverageN.Given(c); ok {
+		return n
+	}
+	return own
+}
 
 // coverageResults are the results that both functions of coverage give.
 var coverageResults = []Result{
@@ -123,13 +132,13 @@ func (c *Call) setCoverage(s coverageTally, n int) {
 // roughFrom is how far from the confidence a second-order prediction is only rough.
 const roughFrom = 0.05
 
-// predictedShare words a predicted coverage: to 4 digits, or where it is rough to the
-// nearest percent.
+// predictedShare words a predicted coverage: to 4 decimals of a share, or where it is
+// rough to the nearest percent.
 func predictedShare(coverage, confidence float64) string {
 	if math.Abs(confidence-coverage) > roughFrom {
 		return "roughly " + percent(math.Round(coverage*100)/100)
 	}
-	return percent(toDigits(coverage))
+	return percent(math.Round(coverage*1e4) / 1e4)
 }
 
 // allowedByDefault is how far coverage may fall short in n-needed.
@@ -145,7 +154,7 @@ type outlook struct {
 func (c *Call) predict(n int, g1, g2 float64) (outlook, error) {
 	conf, dir := confidence.Of(c), direction.Of(c)
 	predicted := func(n int) float64 { return predictedCoverage(float64(n), conf, dir, g1, g2) }
-	needed, found, err := c.smallestPlan(smallestGroup, largestPlan, smallestGroup, func(n int) bool { return reaches(predicted(n), conf-allowedByDefault) })
+	needed, found, err := c.smallestPlan(largestPlan, 0, func(n int) bool { return reaches(predicted(n), conf-allowedByDefault) })
 	if !found {
 		needed = 0
 	}
@@ -196,7 +205,7 @@ var coverageCheck = &Function{
 	Version:     1,
 	Summary:     "how often the t interval holds the true mean, at this n, for a population shaped like these data",
 	Inputs:      inputs(sample, coverageN, coverageResamples, seedInput, confidence, direction, checks),
-	Results:     append(append([]Result{}, coverageResults...), resultPredicted, resultNeeded),
+	Results:     slices.Concat(coverageResults, []Result{resultPredicted, resultNeeded}),
 	Findings:    []FindingKind{fewValuesKind, noSpreadKind, tooManyDrawsKind, fewerResamplesKind, heavyTailKind, coverageShortKind},
 	Assumptions: []string{"the sample shows the shape of its population: rare values that it lacks are not seen"},
 	Citations:   []string{"Hall 1992", "Efron & Tibshirani 1993"},
@@ -214,10 +223,7 @@ var coverageCheck = &Function{
 		if err := c.enough("sample", s, 2); err != nil {
 			return err
 		}
-		n := s.n
-		if given, ok := coverageN.Given(c); ok {
-			n = given
-		}
+		n := c.coverageSize(s.n)
 		m := c.moments(values)
 		centred := lessMean(values, m)
 		sim, err := c.coverage(coverageDraws{n: n, cost: 1, draw: func(stream *num.Stream, x []float64) { stream.Resample(x, centred) }})

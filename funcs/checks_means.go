@@ -55,9 +55,5 @@ func (c *Call) simulated() (n int, draw func(*num.Stream, []float64), sd float64
 	for _, x := range values {
 		squares += float64(x * x)
 	}
-	n = len(values)
-	if given, ok := coverageN.Given(c); ok {
-		n = given
-	}
-	return n, func(s *num.Stream, x []float64) { s.Resample(x, values) }, math.Sqrt(squares / float64(len(values))), nil
+	return c.coverageSize(len(values)), func(s *num.Stream, x []float64) { s.Resample(x, values) }, math.Sqrt(squares / float64(len(values))), nil
 }

@@ -41,9 +41,9 @@ var populationCoverage = &Function{
 	Version: 2,
 	Summary: "how often the t interval holds the true mean for a population of a known shape, and how far the mean is from normal",
 	Inputs:  inputs(shape, shapeParameter, populationN, coverageResamples, seedInput, confidence, direction),
-	Results: append(append([]Result{}, coverageResults...), resultPredicted, resultNeeded,
-		Result{"distance-from-normal", Number, NoUnit, "largest difference of the distribution function of the standardised mean from the normal one; absent without a finite variance"}),
-	Findings:    []FindingKind{tooManyDrawsKind, fewerResamplesKind, noEnoughKind, coverageShortKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
+	Results: slices.Concat(coverageResults, []Result{resultPredicted, resultNeeded,
+		{"distance-from-normal", Number, NoUnit, "largest difference of the distribution function of the standardised mean from the normal one; absent without a finite variance"}}),
+	Findings:    []FindingKind{tooManyDrawsKind, fewerResamplesKind, noVarianceKind, coverageShortKind, {"no-mean", "a pareto index of 1 or less has no mean to hold"}},
 	Assumptions: []string{"independent draws"},
 	Citations:   []string{"central limit theorem", "Berry 1941", "Esseen 1942"},
 	Example: Example{

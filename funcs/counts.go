@@ -35,8 +35,7 @@ func (c *Call) successesOf(successes, trials In[int]) (x, n float64, err error) 
 func shareResults(name, summary string) []Result {
 	return []Result{
 		{name, Number, NoUnit, summary},
-		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
-		{"upper", Number, NoUnit, "upper limit; absent for direction above"},
+		ratioLower, ratioUpper,
 		resultP,
 	}
 }
@@ -65,10 +64,9 @@ var proportionInterval = &Function{
 		if err != nil {
 			return err
 		}
-		size, finite := populationSize.Given(c)
-		if finite && n > float64(size) {
-			return c.wrong("population-size", fmt.Sprint(size), fmt.Sprintf("is smaller than the sample (n = %s)", shortest(n)),
-				"give the number in the whole population")
+		size, finite, err := c.sampledPopulation(int(n), "give the number in the whole population")
+		if err != nil {
+			return err
 		}
 		c.count(int(n))
 		conf, dir := confidence.Of(c), direction.Of(c)
@@ -77,7 +75,7 @@ var proportionInterval = &Function{
 			l = c.wilsonInterval(x, n, float64(size), finite)
 		} else if finite {
 			l = hypergeometricLimits(int(x), int(n), size, conf, dir)
-			c.method = fmt.Sprintf("exact hypergeometric interval, finite population of %d", size)
+			c.method = "exact hypergeometric interval" + ofPopulation(float64(size))
 		} else {
 			l = limitsOf(conf, dir,
 				func(q float64) float64 { lower, _ := clopperPearson(x, n, q); return lower },
@@ -111,7 +109,7 @@ func (c *Call) wilsonInterval(x, n, size float64, finite bool) limits {
 	share := x / n
 	c.method = "score interval (Wilson), without continuity correction"
 	if finite {
-		c.method += fmt.Sprintf(", finite population of %s", shortest(size))
+		c.method += ofPopulation(size)
 		if n == size {
 			return limitsAt(direction.Of(c), share, share)
 		}

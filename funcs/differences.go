@@ -22,7 +22,14 @@ var twoMeansAssumptions = []string{
 	"with variances pooled: the same variance in both",
 }
 
-var twoMeansFindings = slices.Concat(severalChecks, []FindingKind{spreadsKind})
+var twoMeansFindings = slices.Concat(intervalFindings, []FindingKind{spreadsKind})
+
+// assemblyMinutes are the data of NIST/SEMATECH e-Handbook of Statistical Methods,
+// 7.3.1, which several examples use.
+var assemblyMinutes = []Argument{
+	{"sample", []float64{32, 37, 35, 28, 41, 44, 35, 31, 34, 38, 42}},
+	{"second-sample", []float64{36, 31, 30, 31, 34, 36, 29, 32, 31}},
+}
 
 // methodText names the interval, its degrees of freedom and the divisor.
 func (m twoMeans) methodText(interval, variances string) string {
@@ -55,11 +62,8 @@ var differenceInterval = &Function{
 	Assumptions: twoMeansAssumptions,
 	Citations:   []string{"Welch 1947", "Satterthwaite 1946", "ISO 2854 (pooled)", "Hedges 1981"},
 	Example: Example{
-		Label: "minutes of assembly, old process against new",
-		Arguments: []Argument{
-			{"sample", []float64{32, 37, 35, 28, 41, 44, 35, 31, 34, 38, 42}},
-			{"second-sample", []float64{36, 31, 30, 31, 34, 36, 29, 32, 31}},
-		},
+		Label:     "minutes of assembly, old process against new",
+		Arguments: assemblyMinutes,
 		Want:      []Argument{{"t", 2.2694}},
 		Tolerance: 2e-5,
 		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.3.1",

@@ -12,6 +12,8 @@ var (
 	margin      = number("margin", "how far from the reference the difference may lie, to either side, and still count as none", positive, SameUnit)
 	lowerMargin = number("lower-margin", "the lowest difference that still counts as none, counted from the reference", anyNumber, SameUnit)
 	upperMargin = number("upper-margin", "the highest difference that still counts as none, counted from the reference", anyNumber, SameUnit)
+
+	marginWays = OneOf{{Needs: []string{"margin"}}, {Needs: []string{"lower-margin", "upper-margin"}}}
 )
 
 // margins reads the margins about the reference, which stand for differences.
@@ -37,7 +39,7 @@ var equivalenceTest = &Function{
 	Summary: "whether two means differ by less than a margin, by two one-sided tests",
 	Inputs: inputs(sample, secondSample, firstMean, firstSD, firstN, secondMean, secondSD, secondN, variances,
 		margin, lowerMargin, upperMargin, reference.withDefault(0), halfSignificance, checks),
-	OneOf: []OneOf{twoMeansWays, {{Needs: []string{"margin"}}, {Needs: []string{"lower-margin", "upper-margin"}}}},
+	OneOf: []OneOf{twoMeansWays, marginWays},
 	Results: []Result{
 		{"difference", Number, SameUnit, "mean of the first sample less that of the second"},
 		{"lower", Number, SameUnit, "lower limit at the confidence 1 - 2·significance"},
@@ -49,12 +51,8 @@ var equivalenceTest = &Function{
 	Assumptions: slices.Concat(twoMeansAssumptions, []string{"margins chosen before the data were seen"}),
 	Citations:   []string{"Schuirmann 1987"},
 	Example: Example{
-		Label: "minutes of assembly, old process against new, margin 8 minutes",
-		Arguments: []Argument{
-			{"sample", []float64{32, 37, 35, 28, 41, 44, 35, 31, 34, 38, 42}},
-			{"second-sample", []float64{36, 31, 30, 31, 34, 36, 29, 32, 31}},
-			{"margin", 8.0},
-		},
+		Label:     "minutes of assembly, old process against new, margin 8 minutes",
+		Arguments: slices.Concat(assemblyMinutes, []Argument{{"margin", 8.0}}),
 		Want:      []Argument{{"lower", 0.88690870706571862}, {"upper", 6.8504650303080188}, {"p-value", 0.014000054664895413}, {"equivalent", true}},
 		Tolerance: 1e-10,
 		Source:    "data of NIST/SEMATECH e-Handbook of Statistical Methods, 7.3.1; high-precision arithmetic",

@@ -16,8 +16,7 @@ var ratioInterval = &Function{
 	OneOf: []OneOf{twoMeansWays},
 	Results: []Result{
 		{"ratio", Number, NoUnit, "mean of the first sample over that of the second"},
-		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
-		{"upper", Number, NoUnit, "upper limit; absent for direction above"},
+		ratioLower, ratioUpper,
 		resultDF, resultT, resultP,
 	},
 	Findings: slices.Concat(twoMeansFindings, []FindingKind{
@@ -26,11 +25,8 @@ var ratioInterval = &Function{
 	Assumptions: twoMeansAssumptions,
 	Citations:   []string{"Fieller 1954"},
 	Example: Example{
-		Label: "minutes of assembly, old process over new",
-		Arguments: []Argument{
-			{"sample", []float64{32, 37, 35, 28, 41, 44, 35, 31, 34, 38, 42}},
-			{"second-sample", []float64{36, 31, 30, 31, 34, 36, 29, 32, 31}},
-		},
+		Label:     "minutes of assembly, old process over new",
+		Arguments: assemblyMinutes,
 		Want:      []Argument{{"ratio", 1.1200626959247649}, {"lower", 1.0079268161670494}, {"upper", 1.2391333396006875}, {"p-value", 0.037036655989955212}},
 		Tolerance: 1e-11,
 		Source:    "data of NIST/SEMATECH e-Handbook of Statistical Methods, 7.3.1; high-precision arithmetic",

@@ -9,13 +9,24 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
-// meansWays are the ways of giving several groups of which the means are compared.
-var meansWays = OneOf{{Needs: []string{"samples"}}, {Needs: []string{"means", "sds", "ns"}}}
+// The ways of giving several groups, of which the means count or only the sds.
+var (
+	meansWays = OneOf{{Needs: []string{"samples"}}, {Needs: []string{"means", "sds", "ns"}}}
+	sdsWays   = OneOf{{Needs: []string{"samples"}}, {Needs: []string{"sds", "ns"}}}
+)
 
 var severalMeansFindings = slices.Concat(twoMeansFindings, []FindingKind{fewGroupsKind})
 
 // pooledFirst is variances with pooled as the default, as is usual for several means.
 var pooledFirst = variances.withDefault(pooled)
+
+// exampleTreatments are the data of NIST/SEMATECH e-Handbook of Statistical Methods,
+// 7.4.3.3, which two examples use.
+var exampleTreatments = []Argument{{"samples", []Group{
+	{"level 1", []float64{6.9, 5.4, 5.8, 4.6, 4.0}},
+	{"level 2", []float64{8.3, 6.8, 7.8, 9.2, 6.5}},
+	{"level 3", []float64{8.0, 10.5, 8.1, 6.9, 9.3}},
+}}}
 
 // groupSquares are the sums of squares between and within groups.
 type groupSquares struct{ between, within float64 }
@@ -136,12 +147,8 @@ var analysisOfVariance = &Function{
 		"with variances pooled: the same variance in all groups"},
 	Citations: []string{"NIST StRD anova", "Welch 1951"},
 	Example: Example{
-		Label: "three treatments, five values each",
-		Arguments: []Argument{{"samples", []Group{
-			{"level 1", []float64{6.9, 5.4, 5.8, 4.6, 4.0}},
-			{"level 2", []float64{8.3, 6.8, 7.8, 9.2, 6.5}},
-			{"level 3", []float64{8.0, 10.5, 8.1, 6.9, 9.3}},
-		}}},
+		Label:     "three treatments, five values each",
+		Arguments: exampleTreatments,
 		Want:      []Argument{{"sum-squares-between", 27.897}, {"sum-squares-within", 17.452}, {"df-within", 12.0}, {"p-value", 0.00325}},
 		Tolerance: 1e-3,
 		Source:    "NIST/SEMATECH e-Handbook of Statistical Methods, 7.4.3.3",

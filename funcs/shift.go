@@ -15,8 +15,7 @@ var shiftInterval = &Function{
 	Inputs:  inputs(sample, secondSample, reference.withDefault(0), confidence, direction, checks),
 	Results: []Result{
 		{"shift", Number, SameUnit, "median of all differences between a value of the first sample and one of the second"},
-		{"lower", Number, SameUnit, "lower limit; absent for direction below"},
-		{"upper", Number, SameUnit, "upper limit; absent for direction above"},
+		resultLower, resultUpper,
 		{"attained-confidence", Number, NoUnit, "the confidence that the limits have, at least the one asked for"},
 		{"u", Number, NoUnit, "how many pairs have first - reference above second, ties counting one half"},
 		resultP,
@@ -25,11 +24,8 @@ var shiftInterval = &Function{
 	Assumptions: []string{"two independent samples of independent values", "for the limits: two populations of one shape, one shifted against the other"},
 	Citations:   []string{"Hodges & Lehmann 1963", "Lehmann 1963", "Mann & Whitney 1947"},
 	Example: Example{
-		Label: "minutes of assembly, old process against new",
-		Arguments: []Argument{
-			{"sample", []float64{32, 37, 35, 28, 41, 44, 35, 31, 34, 38, 42}},
-			{"second-sample", []float64{36, 31, 30, 31, 34, 36, 29, 32, 31}},
-		},
+		Label:     "minutes of assembly, old process against new",
+		Arguments: assemblyMinutes,
 		Want: []Argument{{"shift", 4.0}, {"lower", 0.0}, {"upper", 8.0}, {"attained-confidence", 80079.0 / 83980}, {"u", 74.5},
 			{"p-value", 2399.0 / 41990}},
 		Tolerance: 1e-12,

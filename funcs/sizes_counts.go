@@ -24,16 +24,13 @@ type sharePrecision struct {
 }
 
 func (c *Call) sharePrecision() (sharePrecision, error) {
-	p := sharePrecision{expectedShare.Of(c), tail(confidence.Of(c), direction.Of(c)), math.Inf(1), shareKind.Of(c), direction.Of(c)}
-	if size, ok := populationSize.Given(c); ok {
-		p.population = float64(size)
+	p := sharePrecision{expectedShare.Of(c), tail(confidence.Of(c), direction.Of(c)), c.plannedPopulation(), shareKind.Of(c), direction.Of(c)}
+	c.method = p.kind + " interval at a share of " + brief(p.share)
+	if !math.IsInf(p.population, 1) {
 		if p.kind == exactShare {
 			return p, refuse("kind-without-population", "kind", "The exact interval of a finite population has no half-width at a fraction of a count; use kind wilson.")
 		}
-	}
-	c.method = p.kind + " interval at a share of " + brief(p.share)
-	if !math.IsInf(p.population, 1) {
-		c.method += fmt.Sprintf(", finite population of %.0f", p.population)
+		c.method += ofPopulation(p.population)
 	}
 	return p, c.oneSidedLevel()
 }
@@ -88,14 +85,12 @@ var proportionPrecisionSize = &Function{
 		}
 		wanted := shareHalfWidth.Of(c)
 		z := dist.Normal{}.UpperQuantile(p.outside) / wanted
-		hi := int(math.Min(largestPlan, p.population))
-		n, err := c.planN("half-width", hi, float64(z*z)*p.share*(1-p.share),
+		n, err := c.planN("half-width", c.largestN(), float64(z*z)*p.share*(1-p.share),
 			func(n int) bool { return staysIn(p.halfWidth(n), wanted) }, func(n int) string { return brief(p.halfWidth(n)) })
 		if err != nil {
 			return err
 		}
-		c.set("attained-half-width", p.halfWidth(n))
-		c.sayPrecision(nText(n), "the proportion", shortest(wanted), c.sized(p.halfWidth(n)))
+		c.setPrecision(nText(n), "the proportion", shortest(wanted), p.halfWidth(n))
 		return nil
 	},
 }
@@ -121,12 +116,11 @@ var proportionPrecisionOf = &Function{
 		if err != nil {
 			return err
 		}
-		n, err := c.countingOf(p.population)
+		n, err := c.countingOfPopulation()
 		if err != nil {
 			return err
 		}
-		c.set("attained-half-width", p.halfWidth(n))
-		c.sayAttained(c.nCounting(n), "the proportion", c.sized(p.halfWidth(n)))
+		c.setPrecisionOf(c.nCounting(n), "the proportion", p.halfWidth(n))
 		return nil
 	},
 }
@@ -203,11 +197,9 @@ var ratePrecisionSize = &Function{
 		count := num.Exp(logCount)
 		exposure := count / rate
 		planned := exposure * designEffect.Of(c) / (1 - nonResponse.Of(c))
-		attained := rate * p.relative(count)
 		c.set("exposure", exposure)
 		c.set("exposure-planned", planned)
-		c.set("attained-half-width", attained)
-		c.sayPrecision("an exposure of "+brief(exposure), "the rate", shortest(wanted), c.sized(attained))
+		c.setPrecision("an exposure of "+brief(exposure), "the rate", shortest(wanted), rate*p.relative(count))
 		if lost := c.losses(); lost != "" {
 			c.sentence += fmt.Sprintf(" Plan %s, for %s.", brief(planned), lost)
 		}
@@ -241,12 +233,11 @@ var ratePrecisionOf = &Function{
 		}
 		exposure := exposureGiven.Of(c) * (1 - nonResponse.Of(c)) / designEffect.Of(c)
 		attained := expectedRate.Of(c) * p.relative(expectedRate.Of(c)*exposure)
-		c.set("attained-half-width", attained)
 		counts := "an exposure of " + brief(exposure)
 		if lost := c.losses(); lost != "" {
 			counts += fmt.Sprintf(" (of %s planned, %s)", brief(exposureGiven.Of(c)), lost)
 		}
-		c.sayAttained(counts, "the rate", c.sized(attained))
+		c.setPrecisionOf(counts, "the rate", attained)
 		return nil
 	},
 }

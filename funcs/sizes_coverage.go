@@ -102,7 +102,7 @@ var enoughNForMean = &Function{
 	Name:    "enough-n-for-mean",
 	Version: 1,
 	Summary: "how many values make the t interval of a mean keep its confidence although they are skewed or heavy-tailed",
-	Inputs: inputs(sample.as("sample", "a pilot sample, in the order measured"), skewnessGiven, kurtosisGiven, confidence, allowedShortfall, direction,
+	Inputs: inputs(pilotSample, skewnessGiven, kurtosisGiven, confidence, allowedShortfall, direction,
 		designEffect, nonResponse, checks),
 	OneOf: []OneOf{{{Needs: []string{"sample"}}, {Needs: []string{"skewness", "excess-kurtosis"}}}},
 	Results: []Result{resultPlanN, resultPlanned,
@@ -120,7 +120,7 @@ var enoughNForMean = &Function{
 		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
 	},
 	compute: func(c *Call) error {
-		g1, g2, err := c.shape()
+		g1, g2, err := c.skewnessAndKurtosis()
 		if err != nil {
 			return err
 		}
@@ -154,11 +154,9 @@ var enoughNForMean = &Function{
 	},
 }
 
-// toDigits keeps 4 significant digits of a share.
-func toDigits(x float64) float64 { return math.Round(x*1e4) / 1e4 }
-
-// shape reads skewness and excess kurtosis, or takes them from a sample.
-func (c *Call) shape() (g1, g2 float64, err error) {
+// skewnessAndKurtosis reads skewness and excess kurtosis, or takes them from a
+// sample.
+func (c *Call) skewnessAndKurtosis() (g1, g2 float64, err error) {
 	values, ok := sample.Given(c)
 	if !ok {
 		g1, g2 = skewnessGiven.Of(c), kurtosisGiven.Of(c)

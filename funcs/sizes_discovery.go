@@ -2,7 +2,6 @@ package funcs
 
 import (
 	"fmt"
-	"math"
 
 	"halfwidth/funcs/internal/dist"
 	"halfwidth/funcs/internal/num"
@@ -70,11 +69,7 @@ var discoverySize = &Function{
 			return err
 		}
 		wanted := confidence.Of(c)
-		hi := largestPlan
-		if d.population > 0 {
-			hi = min(hi, d.population)
-		}
-		n, err := c.planN("tolerable-deviation-rate", hi, (float64(d.allowed)-num.Log(1-wanted))/d.rate,
+		n, err := c.planN("tolerable-deviation-rate", c.largestN(), (float64(d.allowed)-num.Log(1-wanted))/d.rate,
 			func(n int) bool { return reaches(d.confidence(n), wanted) }, func(n int) string { return "confidence " + percent(d.confidence(n)) })
 		if err != nil {
 			return err
@@ -107,11 +102,7 @@ var discoveryConfidence = &Function{
 		if err != nil {
 			return err
 		}
-		population := math.Inf(1)
-		if d.population > 0 {
-			population = float64(d.population)
-		}
-		n, err := c.countingOf(population)
+		n, err := c.countingOfPopulation()
 		if err != nil {
 			return err
 		}

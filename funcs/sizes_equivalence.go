@@ -21,7 +21,6 @@ var (
 	equivalenceGap = trueDifference.as("difference", "the true difference expected: first - second, or from the reference").withDefault(0)
 
 	outsideMarginsKind = FindingKind{"outside-margins", "the difference expected does not lie between the margins"}
-	marginWays         = OneOf{{Needs: []string{"margin"}}, {Needs: []string{"lower-margin", "upper-margin"}}}
 )
 
 // equivalencePlan is a pair of one-sided t tests, each at the significance.
@@ -97,7 +96,7 @@ var equivalenceSize = &Function{
 			beta /= 2
 		}
 		effect := math.Min(p.difference-p.lower, p.upper-p.difference) / p.sd
-		start := normalPower(p.significance, 1-beta, above)/float64(effect*effect) + 1
+		start := normalN(p.significance, 1-beta, above)/float64(effect*effect) + 1
 		if p.design != twoSamples {
 			if ratio != 1 {
 				return c.wrong("allocation-ratio", shortest(ratio), "belongs to design two-samples", "leave it out for design "+p.design)
@@ -106,16 +105,14 @@ var equivalenceSize = &Function{
 			if err != nil {
 				return err
 			}
-			c.set("attained-power", p.power(n, 0))
-			c.sayPower(nText(n), p.says(c), p.power(n, 0))
+			c.setPower(nText(n), p.says(c), p.power(n, 0))
 			return nil
 		}
 		n, m, err := c.planGroups(input, ratio, start*(1+1/ratio), holds, attains)
 		if err != nil {
 			return err
 		}
-		c.set("attained-power", p.power(n, m))
-		c.sayPower(bothN(n, m), p.says(c), p.power(n, m))
+		c.setPower(bothN(n, m), p.says(c), p.power(n, m))
 		return nil
 	},
 }
@@ -150,16 +147,14 @@ var equivalencePowerOf = &Function{
 			if err != nil {
 				return err
 			}
-			c.set("attained-power", p.power(n, 0))
-			c.sayPowerOf(c.nCounting(n), p.says(c), p.power(n, 0))
+			c.setPowerOf(c.nCounting(n), p.says(c), p.power(n, 0))
 			return nil
 		}
 		n, m, err := c.countingGroups()
 		if err != nil {
 			return err
 		}
-		c.set("attained-power", p.power(n, m))
-		c.sayPowerOf(c.bothCounting(n, m), p.says(c), p.power(n, m))
+		c.setPowerOf(c.bothCounting(n, m), p.says(c), p.power(n, m))
 		return nil
 	},
 }

@@ -53,15 +53,13 @@ var differenceTestSize = &Function{
 			return err
 		}
 		a, b := g.first/difference, g.second/difference
-		start := normalPower(g.significance, wanted, g.direction)*(float64(a*a)+float64(b*b)/ratio) + 1
+		start := normalN(g.significance, wanted, g.direction)*(float64(a*a)+float64(b*b)/ratio) + 1
 		n, m, err := c.planGroups("difference", ratio, start, func(n, m int) bool { return reaches(g.power(n, m, difference), wanted) },
 			func(n, m int) string { return "power " + brief(g.power(n, m, difference)) })
 		if err != nil {
 			return err
 		}
-		attained := g.power(n, m, difference)
-		c.set("attained-power", attained)
-		c.sayPower(bothN(n, m), c.away(groupsApart, difference), attained)
+		c.setPower(bothN(n, m), c.away(groupsApart, difference), g.power(n, m, difference))
 		return nil
 	},
 }
@@ -91,9 +89,7 @@ var differenceTestPower = &Function{
 		if err != nil {
 			return err
 		}
-		attained := g.power(n, m, difference)
-		c.set("attained-power", attained)
-		c.sayPowerOf(c.bothCounting(n, m), c.away(groupsApart, difference), attained)
+		c.setPowerOf(c.bothCounting(n, m), c.away(groupsApart, difference), g.power(n, m, difference))
 		return nil
 	},
 }

@@ -17,13 +17,10 @@ func (p oneSampleTest) power(n int, difference float64) float64 {
 	return tPower(float64(n-1), difference/p.sd*math.Sqrt(float64(n)), p.significance, p.direction)
 }
 
-// normalPower is (z of the significance + z of the power)², the n that a normal
-// law with sd and difference 1 would need, where the searches start.
-func normalPower(significance, power float64, dir string) float64 {
-	if dir == either {
-		significance /= 2
-	}
-	z := dist.Normal{}.UpperQuantile(significance) + dist.Normal{}.Quantile(power)
+// normalN is (z of the significance + z of the power)², the n that a normal law
+// with sd and difference 1 would need, where the searches start.
+func normalN(significance, power float64, dir string) float64 {
+	z := dist.Normal{}.UpperQuantile(oneTail(significance, dir)) + dist.Normal{}.Quantile(power)
 	return z * z
 }
 
@@ -37,13 +34,12 @@ func (p oneSampleTest) size(c *Call, phrase string) error {
 		return err
 	}
 	effect := difference / p.sd
-	n, err := c.planN("difference", largestPlan, normalPower(p.significance, wanted, p.direction)/float64(effect*effect)+2,
+	n, err := c.planN("difference", largestPlan, normalN(p.significance, wanted, p.direction)/float64(effect*effect)+2,
 		func(n int) bool { return reaches(p.power(n, difference), wanted) }, func(n int) string { return "power " + brief(p.power(n, difference)) })
 	if err != nil {
 		return err
 	}
-	c.set("attained-power", p.power(n, difference))
-	c.sayPower(nText(n), c.away(phrase, difference), p.power(n, difference))
+	c.setPower(nText(n), c.away(phrase, difference), p.power(n, difference))
 	return nil
 }
 
@@ -52,10 +48,28 @@ func (c *Call) away(phrase string, difference float64) string {
 	return fmt.Sprintf(phrase, c.withUnit(shortest(difference), SameUnit))
 }
 
+// setPower gives the power that a plan attains, and its sentence.
+func (c *Call) setPower(counts, what string, attained float64) {
+	c.set("attained-power", attained)
+	c.sayPower(counts, what, attained)
+}
+
+// setPowerOf is setPower for a given n.
+func (c *Call) setPowerOf(counts, what string, attained float64) {
+	c.set("attained-power", attained)
+	c.sayPowerOf(counts, what, attained)
+}
+
 // sayPower composes the sentence of a plan for power.
 func (c *Call) sayPower(counts, what string, attained float64) {
 	c.sentence = fmt.Sprintf("Measure %s, planned for power %s: %s will be found with probability %s at significance %s (%s).%s",
 		counts, percent(power.Of(c)), what, brief(attained), c.testLevel(), c.method, c.toPlan())
+}
+
+// sayPowerOf composes the sentence of the power of a given n.
+func (c *Call) sayPowerOf(counts, what string, attained float64) {
+	c.sentence = fmt.Sprintf("With %s the power is %s: %s will be found with that probability at significance %s (%s).",
+		counts, brief(attained), what, c.testLevel(), c.method)
 }
 
 // testLevel words the significance, and the direction where there is one.
@@ -77,9 +91,7 @@ func (p oneSampleTest) powerOf(c *Call, phrase string) error {
 	if err != nil {
 		return err
 	}
-	attained := p.power(n, difference)
-	c.set("attained-power", attained)
-	c.sayPowerOf(c.nCounting(n), c.away(phrase, difference), attained)
+	c.setPowerOf(c.nCounting(n), c.away(phrase, difference), p.power(n, difference))
 	return nil
 }
 
@@ -130,12 +142,6 @@ func (c *Call) setDetectable(counts, phrase string, se float64, powerAt func(dif
 	c.sentence = fmt.Sprintf("With %s the smallest difference found with power %s is %s: %s, at significance %s (%s).", counts, percent(wanted),
 		c.withUnit(brief(difference), SameUnit), fmt.Sprintf(phrase, c.withUnit(brief(difference), SameUnit)), c.testLevel(), c.method)
 	return nil
-}
-
-// sayPowerOf composes the sentence of the power of a given n.
-func (c *Call) sayPowerOf(counts, what string, attained float64) {
-	c.sentence = fmt.Sprintf("With %s the power is %s: %s will be found with that probability at significance %s (%s).",
-		counts, brief(attained), what, c.testLevel(), c.method)
 }
 
 var (

@@ -12,26 +12,20 @@ import (
 
 // critical is the critical value of a t test.
 func critical(df, significance float64, dir string) float64 {
-	if dir == either {
-		significance /= 2
-	}
-	return dist.Student{DF: df}.UpperQuantile(significance)
+	return dist.Student{DF: df}.UpperQuantile(oneTail(significance, dir))
 }
 
 // beyond is the chance that a noncentral t lies beyond the critical value.
-func beyond(law dist.NoncentralT, crit float64, dir string) float64 {
-	switch dir {
-	case above:
-		return law.SF(crit)
-	case below:
-		return law.CDF(-crit)
+func beyond(df, noncentrality, crit float64, dir string) float64 {
+	if dir == below {
+		noncentrality = -noncentrality
 	}
-	return math.Min(1, law.SF(crit)+law.CDF(-crit))
+	return dist.TPower(df, noncentrality, crit, dir == either)
 }
 
 // tPower is the power of a t test whose statistic is noncentral t.
 func tPower(df, noncentrality, significance float64, dir string) float64 {
-	return beyond(dist.NoncentralT{DF: df, Noncentrality: noncentrality}, critical(df, significance, dir), dir)
+	return beyond(df, noncentrality, critical(df, significance, dir), dir)
 }
 
 // groupsTest is a t test of the difference of two means.
@@ -69,7 +63,6 @@ func (g groupsTest) pooledUnlike(n, m int, noncentrality float64) float64 {
 	unit := math.Max(g.first, g.second)
 	v1, v2 := float64(g.first/unit*g.first/unit), float64(g.second/unit*g.second/unit)
 	factor := (1/n1 + 1/n2) / (v1/n1 + v2/n2)
-	law := dist.NoncentralT{DF: df1 + df2, Noncentrality: noncentrality}
 	crit := critical(df1+df2, g.significance, g.direction)
 	mean := func(logOdds float64) float64 {
 		u, v := 1/(1+num.Exp(-logOdds)), 1/(1+num.Exp(logOdds))
@@ -77,7 +70,7 @@ func (g groupsTest) pooledUnlike(n, m int, noncentrality float64) float64 {
 		if weight == 0 {
 			return 0
 		}
-		return weight * beyond(law, crit*math.Sqrt(factor*(float64(u*v1)+float64(v*v2))), g.direction)
+		return weight * beyond(df1+df2, noncentrality, crit*math.Sqrt(factor*(float64(u*v1)+float64(v*v2))), g.direction)
 	}
 	step := 1 / math.Sqrt(1+math.Min(df1, df2))
 	return math.Min(1, num.Trapezoid(mean, num.Log(df1/df2), step, 1e-9))

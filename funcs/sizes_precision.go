@@ -28,12 +28,9 @@ type meanPrecision struct {
 }
 
 func (c *Call) meanPrecision() (meanPrecision, error) {
-	p := meanPrecision{pilotDF: math.Inf(1), population: math.Inf(1), outside: tail(confidence.Of(c), direction.Of(c))}
+	p := meanPrecision{pilotDF: math.Inf(1), population: c.plannedPopulation(), outside: tail(confidence.Of(c), direction.Of(c))}
 	if err := c.oneSidedLevel(); err != nil {
 		return p, err
-	}
-	if size, ok := populationSize.Given(c); ok {
-		p.population = float64(size)
 	}
 	if values, ok := sample.Given(c); ok {
 		s := c.summarise(c.gapless(values))
@@ -90,7 +87,7 @@ func (p meanPrecision) method(c *Call) string {
 		text += fmt.Sprintf(" from a pilot of %.0f", p.pilotDF+1)
 	}
 	if !math.IsInf(p.population, 1) {
-		text += fmt.Sprintf(", finite population of %.0f", p.population)
+		text += ofPopulation(p.population)
 	}
 	return text
 }
@@ -128,16 +125,27 @@ var meanPrecisionSize = &Function{
 			holds = func(n int) bool { return reaches(p.chance(n, wanted), chance) }
 			purpose = fmt.Sprintf(" that is met with a chance of %s", percent(chance))
 		}
-		n, err := c.planN("half-width", int(math.Min(largestPlan, p.population)), p.guess(wanted), holds, func(n int) string { return c.sized(p.halfWidth(n)) })
+		n, err := c.planN("half-width", c.largestN(), p.guess(wanted), holds, func(n int) string { return c.sized(p.halfWidth(n)) })
 		if err != nil {
 			return err
 		}
-		c.set("attained-half-width", p.halfWidth(n))
 		c.set("chance-met", p.chance(n, wanted))
 		c.method = p.method(c)
-		c.sayPrecision(nText(n), "the mean", c.withUnit(shortest(wanted), SameUnit)+purpose, c.sized(p.halfWidth(n)))
+		c.setPrecision(nText(n), "the mean", c.withUnit(shortest(wanted), SameUnit)+purpose, p.halfWidth(n))
 		return nil
 	},
+}
+
+// setPrecision gives the half-width that a plan attains, and its sentence.
+func (c *Call) setPrecision(counts, of, wanted string, attained float64) {
+	c.set("attained-half-width", attained)
+	c.sayPrecision(counts, of, wanted, c.sized(attained))
+}
+
+// setPrecisionOf is setPrecision for a given n.
+func (c *Call) setPrecisionOf(counts, of string, attained float64) {
+	c.set("attained-half-width", attained)
+	c.sayPrecisionOf(counts, of, c.sized(attained))
 }
 
 // sayPrecision composes the sentence of a plan for a half-width.
@@ -146,8 +154,8 @@ func (c *Call) sayPrecision(counts, of, wanted, attained string) {
 		counts, wanted, of, attained, percent(confidence.Of(c)), c.inDirection(), c.method, c.toPlan())
 }
 
-// sayAttained composes the sentence of the half-width that a given n attains.
-func (c *Call) sayAttained(counts, of, attained string) {
+// sayPrecisionOf is sayPrecision for a given n.
+func (c *Call) sayPrecisionOf(counts, of, attained string) {
 	c.sentence = fmt.Sprintf("With %s the half-width of %s will be about %s at %s confidence, %s (%s).",
 		counts, of, attained, percent(confidence.Of(c)), c.inDirection(), c.method)
 }
@@ -175,144 +183,15 @@ var meanPrecisionOf = &Function{
 		if err != nil {
 			return err
 		}
-		n, err := c.countingOf(p.population)
+		n, err := c.countingOfPopulation()
 		if err != nil {
 			return err
 		}
-		c.set("attained-half-width", p.halfWidth(n))
 		if wanted, ok := halfWidth.Given(c); ok {
 			c.set("chance-met", p.chance(n, wanted))
 		}
 		c.method = p.method(c)
-		c.sayAttained(c.nCounting(n), "the mean", c.sized(p.halfWidth(n)))
-		return nil
-	},
-}
-
-// differencePrecision is the half-width of an interval of a difference of two
-// means that are still to be measured.
-type differencePrecision struct {
-	first, second float64 // the sds
-	outside       float64
-	pooled        bool
-}
-
-func (c *Call) differencePrecision() (differencePrecision, error) {
-	first, second := c.groupSDs()
-	return differencePrecision{first, second, tail(confidence.Of(c), direction.Of(c)), variances.Of(c) == pooled}, c.oneSidedLevel()
-}
-
-// groupSDs gives the sds of two groups, and a caution where they are too unlike
-// to be pooled.
-func (c *Call) groupSDs() (first, second float64) {
-	first, second = firstPlannedSD.Of(c), firstPlannedSD.Of(c)
-	if sd, ok := secondPlannedSD.Given(c); ok {
-		second = sd
-	}
-	if variances.Of(c) == pooled {
-		c.checkSpreads("second-sd", spreadOf{sd: first}, spreadOf{sd: second})
-	}
-	return first, second
-}
-
-// halfWidth is t times the standard error at the sds expected, with
-// Satterthwaite's degrees of freedom or the pooled variance.
-func (p differencePrecision) halfWidth(n, m int) float64 {
-	se, df := differenceError(p.first, p.second, n, m, p.pooled)
-	return dist.Student{DF: df}.UpperQuantile(p.outside) * se
-}
-
-// differenceError is the standard error of a difference of means and its
-// degrees of freedom (Welch 1947; Satterthwaite 1946; ISO 2854, pooled).
-func differenceError(firstSD, secondSD float64, n, m int, pooled bool) (se, df float64) {
-	// In units of the larger sd, so that no square passes the range of a double.
-	unit := math.Max(firstSD, secondSD)
-	a, b := firstSD/unit, secondSD/unit
-	n1, n2 := float64(n), float64(m)
-	v1, v2 := float64(a*a), float64(b*b)
-	if pooled {
-		df = n1 + n2 - 2
-		v := (float64((n1-1)*v1) + float64((n2-1)*v2)) / df
-		return unit * math.Sqrt(float64(v*(1/n1+1/n2))), df
-	}
-	v1, v2 = v1/n1, v2/n2
-	df = float64((v1+v2)*(v1+v2)) / (float64(v1*v1)/(n1-1) + float64(v2*v2)/(n2-1))
-	return unit * math.Sqrt(v1+v2), df
-}
-
-func (p differencePrecision) method(c *Call) string {
-	kind := "t interval with Satterthwaite's degrees of freedom"
-	if p.pooled {
-		kind = "t interval with the pooled variance"
-	}
-	return fmt.Sprintf("%s, sds %s and %s", kind, c.briefly(p.first), c.briefly(p.second))
-}
-
-var differencePrecisionSize = &Function{
-	Name:    "difference-precision-size",
-	Version: 1,
-	Summary: "how many values in each of two groups give the difference of their means to within a half-width",
-	Inputs: inputs(firstPlannedSD, secondPlannedSD, halfWidth, allocation, variances, confidence, direction,
-		designEffect, nonResponse, checks),
-	Results:     []Result{resultPlanN, resultPlanSecond, resultPlanned, resultPlanned2, resultHalfWidth},
-	Findings:    append(slices.Clip(precisionFindings), spreadsKind),
-	Assumptions: []string{"independent values, and groups independent of one another", "normal values, or n large enough for their skewness"},
-	Citations:   []string{"Welch 1947; Satterthwaite 1946", "ISO 2854 (pooled)"},
-	Example: Example{
-		Label:     "the difference of two depots' handling minutes to within 1.25, sds 3 and 2",
-		Arguments: []Argument{{"first-sd", 3.0}, {"second-sd", 2.0}, {"half-width", 1.25}},
-		Want:      []Argument{{"n", 34}, {"second-n", 34}, {"attained-half-width", 1.237987471286422225335484}},
-		Tolerance: 1e-12,
-		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
-	},
-	compute: func(c *Call) error {
-		p, err := c.differencePrecision()
-		if err != nil {
-			return err
-		}
-		wanted, ratio := halfWidth.Of(c), allocation.Of(c)
-		z := dist.Normal{}.UpperQuantile(p.outside)
-		start := float64(z*z) * (float64(p.first/wanted*p.first/wanted) + float64(p.second/wanted*p.second/wanted)/ratio)
-		n, m, err := c.planGroups("half-width", ratio, start, func(n, m int) bool { return staysIn(p.halfWidth(n, m), wanted) },
-			func(n, m int) string { return c.sized(p.halfWidth(n, m)) })
-		if err != nil {
-			return err
-		}
-		c.set("attained-half-width", p.halfWidth(n, m))
-		c.method = p.method(c)
-		c.sayPrecision(bothN(n, m), "the difference (first - second)", c.withUnit(shortest(wanted), SameUnit), c.sized(p.halfWidth(n, m)))
-		return nil
-	},
-}
-
-var differencePrecisionOf = &Function{
-	Name:        "difference-precision",
-	Version:     1,
-	Summary:     "how precisely n values in each of two groups will give the difference of their means",
-	Inputs:      inputs(firstPlannedSD, secondPlannedSD, plannedN, plannedSecondN, variances, confidence, direction, designEffect, nonResponse, checks),
-	Results:     []Result{resultHalfWidth},
-	Findings:    append(slices.Clip(precisionFindings), fewValuesKind, spreadsKind),
-	Assumptions: differencePrecisionSize.Assumptions,
-	Citations:   differencePrecisionSize.Citations,
-	Example: Example{
-		Label:     "the difference of two depots' handling minutes from 33 trips each, sds 3 and 2",
-		Arguments: []Argument{{"first-sd", 3.0}, {"second-sd", 2.0}, {"n", 33}},
-		Want:      []Argument{{"attained-half-width", 1.257448997429322884938332}},
-		Tolerance: 1e-12,
-		Source:    "arithmetic at 34 digits, testdata/references/plans/plans.csv",
-	},
-	compute: func(c *Call) error {
-		p, err := c.differencePrecision()
-		if err != nil {
-			return err
-		}
-		n, m, err := c.countingGroups()
-		if err != nil {
-			return err
-		}
-		c.set("attained-half-width", p.halfWidth(n, m))
-		c.method = p.method(c)
-		c.sayAttained(c.bothCounting(n, m), "the difference (first - second)", c.sized(p.halfWidth(n, m)))
+		c.setPrecisionOf(c.nCounting(n), "the mean", p.halfWidth(n))
 		return nil
 	},
 }

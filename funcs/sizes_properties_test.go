@@ -78,7 +78,7 @@ func TestUnsteadyPlansAreTheSmallestByTheDefinition(t *testing.T) {
 		holds := func(n int) bool { return float64(n) >= p.population || reaches(p.chance(n, wanted), chance) }
 		want, _ := literally(holds, 400)
 		hi := int(math.Min(largestPlan, p.population))
-		n, found, err := planning().smallestPlan(smallestGroup, hi, 2, func(n int) bool { return reaches(p.chance(n, wanted), chance) })
+		n, found, err := planning().smallestPlan(hi, 2, func(n int) bool { return reaches(p.chance(n, wanted), chance) })
 		if want > 0 && (err != nil || !found || n != want) {
 			t.Errorf("%+v, half-width %v, chance %v: n = %d (%v), want %d", p, wanted, chance, n, err, want)
 		}

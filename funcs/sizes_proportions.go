@@ -28,23 +28,23 @@ func normalShares(difference, null, other, significance, power float64, dir stri
 	return z / difference * z / difference
 }
 
-// sharesSize finds n for a test of proportions and gives its results.
-func (c *Call) sharesSize(t sharesTest, difference, null, other float64) (n int, err error) {
+// sharesSize finds n for a test of proportions and the power that it attains, and
+// gives first-n.
+func (c *Call) sharesSize(t sharesTest, difference, null, other float64) (n int, attained float64, err error) {
 	wanted := power.Of(c)
 	plan, err := c.planShares(t, wanted, normalShares(difference, null, other, significance.Of(c), wanted, direction.Of(c)))
 	switch {
 	case err != nil:
-		return 0, err
+		return 0, 0, err
 	case !plan.found:
-		return 0, tooMany(c.firstGiven("proportion", "first-proportion"), "power "+brief(t.power(t.largest(), 0)))
+		return 0, 0, tooMany(c.firstGiven("proportion", "first-proportion"), "power "+brief(t.power(t.largest(), 0)))
 	}
 	if plan.excess > 0 {
 		c.inform("plan-is-a-bound", "", "So large an n is not looked for one by one: this n holds, and so does every larger one, but the smallest may be up to %d less.", plan.excess)
 	} else {
 		c.set("first-n", plan.first)
 	}
-	c.set("attained-power", t.power(plan.n, 0))
-	return plan.n, nil
+	return plan.n, t.power(plan.n, 0), nil
 }
 
 // shareSD is the standard deviation of one trial.
@@ -99,14 +99,14 @@ var proportionTestSize = &Function{
 		if err := c.powerAbove(); err != nil {
 			return err
 		}
-		n, err := c.sharesSize(t, t.share-t.reference, shareSD(t.reference), shareSD(t.share))
+		n, attained, err := c.sharesSize(t, t.share-t.reference, shareSD(t.reference), shareSD(t.share))
 		if err != nil {
 			return err
 		}
 		if err := c.setPlan(n); err != nil {
 			return err
 		}
-		c.sayPower(nText(n), t.says(), t.power(n, 0))
+		c.setPower(nText(n), t.says(), attained)
 		return nil
 	},
 }
@@ -136,9 +136,7 @@ var proportionTestPower = &Function{
 		if err != nil {
 			return err
 		}
-		attained := t.power(n, 0)
-		c.set("attained-power", attained)
-		c.sayPowerOf(c.nCounting(n), t.says(), attained)
+		c.setPowerOf(c.nCounting(n), t.says(), t.power(n, 0))
 		return nil
 	},
 }
@@ -183,19 +181,19 @@ var proportionDifferenceSize = &Function{
 		if err := c.powerAbove(); err != nil {
 			return err
 		}
-		if t.largest() < smallestGroup || t.size(t.largest()) < smallestGroup {
-			return c.groupsTooMany("first-proportion", t.ratio, nil)
+		if _, _, err := largestGroups(t.ratio); err != nil {
+			return err
 		}
 		pooled := (t.first + float64(t.second*t.ratio)) / (1 + t.ratio)
 		other := math.Sqrt(float64(t.first*(1-t.first)) + float64(t.second*(1-t.second))/t.ratio)
-		n, err := c.sharesSize(t, t.first-t.second, shareSD(pooled)*math.Sqrt(1+1/t.ratio), other)
+		n, attained, err := c.sharesSize(t, t.first-t.second, shareSD(pooled)*math.Sqrt(1+1/t.ratio), other)
 		if err != nil {
 			return err
 		}
 		if err := c.setGroups(n, t.size(n)); err != nil {
 			return err
 		}
-		c.sayPower(bothN(n, t.size(n)), t.says(), t.power(n, 0))
+		c.setPower(bothN(n, t.size(n)), t.says(), attained)
 		return nil
 	},
 }
@@ -226,9 +224,7 @@ var proportionDifferencePower = &Function{
 			return err
 		}
 		t.secondN = m
-		attained := t.power(n, 0)
-		c.set("attained-power", attained)
-		c.sayPowerOf(c.bothCounting(n, m), t.says(), attained)
+		c.setPowerOf(c.bothCounting(n, m), t.says(), t.power(n, 0))
 		return nil
 	},
 }

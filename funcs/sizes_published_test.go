@@ -15,7 +15,7 @@ import (
 func TestSizesInPrintForAKnownSD(t *testing.T) {
 	for _, r := range publishedTable(t, "nist-sample-size-mean") {
 		alpha, effect, wanted := r.number(t, "alpha"), r.number(t, "delta_over_sigma"), 1-r.number(t, "beta")
-		known := normalPower(alpha, wanted, either) / float64(effect*effect)
+		known := normalN(alpha, wanted, either) / float64(effect*effect)
 		r.check(t, ceilWhole(known))
 		n := answered(t, "mean-test-size", map[string]any{"sd": 1.0, "difference": effect, "significance": alpha, "power": wanted}).whole(t, "n")
 		z := dist.Normal{}.UpperQuantile(alpha / 2)
@@ -26,7 +26,7 @@ func TestSizesInPrintForAKnownSD(t *testing.T) {
 	for _, r := range publishedExamples(t, "sample_size_mean") {
 		switch r.quantity {
 		case "n, sd known":
-			r.check(t, ceilWhole(normalPower(r.number(t, "alpha"), 1-r.number(t, "beta"), above)))
+			r.check(t, ceilWhole(normalN(r.number(t, "alpha"), 1-r.number(t, "beta"), above)))
 		case "n, one t iteration": // t in the place of z, once; the exact n is the same here
 			n := answered(t, "mean-test-size", map[string]any{"sd": 1.0, "difference": r.number(t, "delta_over_sigma"),
 				"significance": r.number(t, "alpha"), "power": 1 - r.number(t, "beta"), "direction": above}).whole(t, "n")
@@ -80,7 +80,7 @@ func TestCohensTable(t *testing.T) {
 	for _, r := range publishedExamples(t, "sample_size_two_proportions") {
 		// By the difference h of arcsines, whose variance is 1/n in each group.
 		h := r.number(t, "h")
-		r.check(t, 2*normalPower(r.number(t, "alpha"), r.number(t, "power"), either)/float64(h*h))
+		r.check(t, 2*normalN(r.number(t, "alpha"), r.number(t, "power"), either)/float64(h*h))
 	}
 }
 

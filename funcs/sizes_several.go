@@ -85,14 +85,13 @@ var severalMeansSize = &Function{
 			return err
 		}
 		wanted := power.Of(c)
-		start := (normalPower(p.significance, wanted, above)+math.Sqrt(float64(2*len(p.means))))/p.spread() + 2
+		start := (normalN(p.significance, wanted, above)+math.Sqrt(float64(2*len(p.means))))/p.spread() + 2
 		n, err := c.planN("means", largestPlan, start, func(n int) bool { return reaches(p.power(float64(n)), wanted) },
 			func(n int) string { return "power " + brief(p.power(float64(n))) })
 		if err != nil {
 			return err
 		}
-		c.set("attained-power", p.power(float64(n)))
-		c.sayPower(nText(n)+" in each group", p.says(c), p.power(float64(n)))
+		c.setPower(nText(n)+" in each group", p.says(c), p.power(float64(n)))
 		return nil
 	},
 }
@@ -122,8 +121,7 @@ var severalMeansPower = &Function{
 		if err != nil {
 			return err
 		}
-		c.set("attained-power", p.power(float64(n)))
-		c.sayPowerOf(c.nCounting(n)+" in each group", p.says(c), p.power(float64(n)))
+		c.setPowerOf(c.nCounting(n)+" in each group", p.says(c), p.power(float64(n)))
 		return nil
 	},
 }

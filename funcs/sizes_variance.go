@@ -98,7 +98,7 @@ var varianceSize = &Function{
 			return relativeSpread(n, tail(confidence.Of(c), direction.Of(c)), direction.Of(c))
 		}
 		holds := func(n int) bool { return staysIn(attained(n), wanted) }
-		start := normalPower(tail(confidence.Of(c), direction.Of(c)), 0.5, above) / float64(2*wanted*wanted)
+		start := normalN(tail(confidence.Of(c), direction.Of(c)), 0.5, above) / float64(2*wanted*wanted)
 		input := "relative-half-width"
 		if test {
 			if err := c.powerAbove(); err != nil {
@@ -107,7 +107,7 @@ var varianceSize = &Function{
 			attained = func(n int) float64 { return variancePower(n, ratio, significance.Of(c), direction.Of(c)) }
 			holds = func(n int) bool { return reaches(attained(n), power.Of(c)) }
 			effect := num.Log(ratio)
-			start, input = 2*normalPower(significance.Of(c), power.Of(c), direction.Of(c))/float64(effect*effect), "variance-ratio"
+			start, input = 2*normalN(significance.Of(c), power.Of(c), direction.Of(c))/float64(effect*effect), "variance-ratio"
 		}
 		n, err := c.planN(input, largestPlan, start+2, holds, func(n int) string { return brief(attained(n)) })
 		if err != nil {
@@ -157,7 +157,7 @@ var variancePowerOf = &Function{
 		}
 		attained := relativeSpread(n, tail(confidence.Of(c), direction.Of(c)), direction.Of(c))
 		c.set("attained", attained)
-		c.sayAttained(c.nCounting(n), "the sd", c.sized(attained)+" times the sd")
+		c.sayPrecisionOf(c.nCounting(n), "the sd", c.sized(attained)+" times the sd")
 		return nil
 	},
 }

@@ -11,10 +11,7 @@ import (
 
 var spread = []*Function{pooledVariance, varianceInterval, varianceRatioInterval, equalSpreadTest}
 
-var (
-	fewGroupsKind = FindingKind{"few-groups", "fewer than 2 groups"}
-	severalChecks = slices.Concat(oneSampleFindings, []FindingKind{noSpreadKind})
-)
+var fewGroupsKind = FindingKind{"few-groups", "fewer than 2 groups"}
 
 // varianceResults are the results of an interval for a variance and its root.
 func varianceResults(variance, sd string) []Result {
@@ -121,10 +118,10 @@ var pooledVariance = &Function{
 	Version: 1,
 	Summary: "one variance for several groups, from the spread within each, with its confidence interval",
 	Inputs:  inputs(samples, sds, ns, confidence, checks),
-	OneOf:   []OneOf{{{Needs: []string{"samples"}}, {Needs: []string{"sds", "ns"}}}},
+	OneOf:   []OneOf{sdsWays},
 	Results: append(varianceResults("pooled-variance", "pooled-sd"), resultDF,
 		Result{"groups", Whole, NoUnit, "how many groups"}, resultN),
-	Findings:    slices.Concat(severalChecks, []FindingKind{spreadsKind}),
+	Findings:    slices.Concat(intervalFindings, []FindingKind{spreadsKind}),
 	Assumptions: []string{"independent normal values in each group", "the same variance in all groups"},
 	Citations:   []string{"ISO 3534-1", "ISO 2854"},
 	Example: Example{
@@ -166,7 +163,7 @@ var varianceInterval = &Function{
 	OneOf: []OneOf{{{Needs: []string{"sample"}}, {Needs: []string{"sd", "n"}}}},
 	Results: append(varianceResults("variance", "sd"), resultN, resultDF,
 		Result{"chi-square", Number, NoUnit, "df times the variance over the reference"}, resultP),
-	Findings:    severalChecks,
+	Findings:    intervalFindings,
 	Assumptions: []string{"independent values of one population", "normal values: no n makes up for tails that are heavier"},
 	Citations:   []string{"ISO 2854"},
 	Example: Example{
@@ -215,14 +212,13 @@ var varianceRatioInterval = &Function{
 	OneOf: []OneOf{{{Needs: []string{"sample", "second-sample"}}, {Needs: []string{"first-sd", "first-n", "second-sd", "second-n"}}}},
 	Results: []Result{
 		{"ratio", Number, NoUnit, "variance of the first sample over that of the second"},
-		{"lower", Number, NoUnit, "lower limit; absent for direction below"},
-		{"upper", Number, NoUnit, "upper limit; absent for direction above"},
+		ratioLower, ratioUpper,
 		{"f", Number, NoUnit, "the ratio over the reference"},
 		{"first-df", Number, NoUnit, "degrees of freedom of the first variance"},
 		{"second-df", Number, NoUnit, "degrees of freedom of the second variance"},
 		resultP,
 	},
-	Findings:    severalChecks,
+	Findings:    intervalFindings,
 	Assumptions: []string{"two independent samples of independent values", "normal values: no n makes up for tails that are heavier"},
 	Citations:   []string{"ISO 2854"},
 	Example: Example{
