@@ -118,6 +118,9 @@ func TestEveryFlagNamesItsValue(t *testing.T) {
 		if help, _, code := run(t, "completion", shell, "--help"); code != exitOK || !strings.Contains(help, intoShell[shell][len(intoShell[shell])-20:]) {
 			t.Errorf("code %d, help on %s:\n%s", code, shell, help)
 		}
+		if script, _, code := run(t, "completion", shell); code != exitOK || !strings.Contains(script, cobra.ShellCompRequestCmd) {
+			t.Errorf("code %d, %d bytes of a script for %s", code, len(script), shell)
+		}
 	}
 }
 

@@ -150,6 +150,26 @@ func TestTheCommandsOfTheReadmeRun(t *testing.T) {
 	}
 }
 
+// The README says what the first command fills: some forty questions about 2,000
+// trips, none refused.
+func TestTheDemoIsWhatTheReadmeSays(t *testing.T) {
+	dir := t.TempDir()
+	copyTo(t, demo, dir, "larkmoor.xlsx")
+	t.Chdir(dir)
+	stdout, stderr, code := run(t, "fill", "larkmoor.xlsx")
+	var ok, caution int
+	lines := strings.Split(strings.TrimSpace(stdout), "\n")
+	if _, err := fmt.Sscanf(lines[len(lines)-1], "Wrote larkmoor-filled.xlsx: %d rows ok, %d caution, 0 refused.", &ok, &caution); err != nil || code != exitOK || stderr != "" {
+		t.Fatalf("code %d, %s: %s", code, lines[len(lines)-1], stderr)
+	}
+	if rows := ok + caution; rows < 35 || rows > 45 {
+		t.Errorf("the demo has %d questions; the README says some forty", rows)
+	}
+	if stdout, _, _ = run(t, "answer", "sample-summary", "--book", "larkmoor.xlsx", `sample="delay (minutes)" in Trips`); !strings.Contains(stdout, "(n = 2000;") {
+		t.Errorf("the README says 2,000 trips:\n%s", stdout)
+	}
+}
+
 func verbNames() (names []string) {
 	for _, verb := range verbs {
 		names = append(names, verb().Name())

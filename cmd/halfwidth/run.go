@@ -69,11 +69,11 @@ func Run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		complete(c)
 		root.AddCommand(c)
 	}
-	nameOwnVerbs(root)
-	root.SetArgs(args)
 	printed := &printer{Writer: stdout}
 	root.SetOut(printed)
 	root.SetErr(stderr)
+	nameOwnVerbs(root) // the library's scripts for shells go where the output goes by now
+	root.SetArgs(args)
 	err := root.ExecuteContext(ctx)
 	if printed.err != nil {
 		err = printed.failure(ctx, err)
