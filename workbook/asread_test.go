@@ -132,6 +132,8 @@ func TestLinesOfTextFilesLongerThanTheirHeader(t *testing.T) {
 		{"depot,minutes\nNorth,10\nQuay, new,20\n", "", "data.csv!C3 lies beyond the header, row 1 with 2 cells"},
 		{"depot,minutes\n" + long + "North,1,5\n" + long, "", "data.csv!C152 lies beyond"},
 		{"depot,minutes\n" + long + "North,1,5,7\nNorth,1,5\n", "", "data.csv!C152 lies beyond"},
+		{"depot,minutes\n\"North,10\n", "", "(sample): data.csv is damaged in line 2: a quote is opened and never closed."},
+		{"depot,minutes\n\xc4,10\n", "", "(sample): data.csv is damaged in line 2: the text is not in UTF-8; save the file as CSV UTF-8."},
 		{"depot,minutes\nNorth,10,\nQuay,20,,\n", "", 15.0},
 		{"depot,minutes,\nNorth,10,late\nQuay,20\n", "", 15.0},
 		{"Trips,of,the,week\ndepot,minutes\nNorth,10\nQuay\nMill,20\n", "", 15.0},

@@ -67,7 +67,7 @@ func (t *TextFile) Read(ctx context.Context, sheet string, choose func(head *Fra
 			f.Keep(columns)
 		}
 		if row > MaxRow {
-			return nil, fmt.Errorf("has more than %d rows", MaxRow)
+			return nil, fmt.Errorf("it has more than %d rows", MaxRow)
 		}
 		if row&0x3fff == 0 && ctx.Err() != nil {
 			return nil, ctx.Err()

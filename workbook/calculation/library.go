@@ -2,6 +2,7 @@ package calculation
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"slices"
 	"strings"
@@ -333,6 +334,9 @@ func (sh *sheet) choose(head *Frame) Columns {
 
 // unreadable gives the fault of a sheet that could not be read.
 func (sh *sheet) unreadable(span Span) *fault {
-	return &fault{Finding: funcs.Finding{Code: "unreadable-sheet", Severity: funcs.Refused,
-		Message: ended(sh.label + " cannot be read: " + sh.err.Error())}, span: span}
+	says := " cannot be read: "
+	if bad := (*CSVError)(nil); errors.As(sh.err, &bad) {
+		says = " "
+	}
+	return &fault{Finding: funcs.Finding{Code: "unreadable-sheet", Severity: funcs.Refused, Message: ended(sh.label + says + sh.err.Error())}, span: span}
 }
