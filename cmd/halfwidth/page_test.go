@@ -20,7 +20,7 @@ func TestPageWritesOnePageABook(t *testing.T) {
 	}
 	for _, name := range []string{"first", "second"} {
 		target := filepath.Join(pages, name+".html")
-		if !strings.Contains(stdout, "Wrote "+target+": 26 rows ok, 10 caution, 0 refused.\n") {
+		if !strings.Contains(stdout, "Wrote "+target+": 31 rows ok, 12 caution, 0 refused.\n") {
 			t.Errorf("it printed %q", stdout)
 		}
 		page, err := os.ReadFile(target)

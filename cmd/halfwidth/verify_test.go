@@ -135,7 +135,7 @@ func TestVerifyOfAnUnfilledBookPointsToItsOutput(t *testing.T) {
 		t.Errorf("code %d\n%s", code, lastLine(stdout))
 	}
 	stdout, _, code = run(t, "verify", filepath.Dir(filled))
-	if code != exitOK || !strings.Contains(stdout, "36 rows in date, 0 out of date, 0 refused") {
+	if code != exitOK || !strings.Contains(stdout, "43 rows in date, 0 out of date, 0 refused") {
 		t.Errorf("of the folder: code %d\n%s", code, stdout)
 	}
 }

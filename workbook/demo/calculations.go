@@ -85,6 +85,21 @@ var blocks = []block{
 			"f-probability | above 3 | | | | | | 3 | | | | | 3 | 40",
 			"f-quantile | upper 1% | | | | | | | | 0.01 | above | | 3 | 40",
 		}},
+	{"What share is damaged?",
+		"work out | label | successes | n | first-successes | first-n | second-successes | second-n | reference | > proportion | > difference | > lower | > upper | > p-value | > status | > sentence",
+		[]string{
+			"proportion-interval | damaged trips, against 3% | count in Trips where damaged = yes | count in Trips | | | | | 0.03",
+			"proportion-difference-interval | damage, day less night | | | count in Trips where damaged = yes and shift = day | count in Trips where shift = day | count in Trips where damaged = yes and shift = night | count in Trips where shift = night",
+		}},
+	{"May the answers be trusted?",
+		"work out | label | sample | n | > n | > predicted-coverage | > coverage | > n-needed | > coverage-at-30 | > shapiro-wilk-p-value | > lag-1-autocorrelation | > p-value | > tail-index | > status | > note | > sentence",
+		[]string{
+			"normality-check | are trips from Fell normal | minutes in Trips where depot = Fell",
+			"independence-check | trips from Fell, in their order | minutes in Trips where depot = Fell",
+			"tail-check | tails of the delays | \"delay (minutes)\" in Trips",
+			"coverage-check | does the interval of 25 delays hold | \"delay (minutes)\" in Trips where depot = Fell and shift = night | 25",
+			"enough-n-for-mean | how many delays would be enough | \"delay (minutes)\" in Trips where depot = Fell and shift = night",
+		}},
 }
 
 func (b *book) calculations() {
