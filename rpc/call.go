@@ -104,15 +104,15 @@ func (s *Session) reply(c *Call, result any, err error, inTurn bool) {
 		encodeFailure(buf, c.id, wireError(err))
 	}
 	s.forget(c)
-	if s.traced() {
-		s.logTrace(fmt.Sprintf("%s (id %s) answered after %v", c.Method, c.id, time.Since(c.came).Round(time.Microsecond)), func() string {
-			return fmt.Sprintf("%d bytes of params, %d bytes of reply", len(c.Params), buf.Len())
-		})
-	}
 	if inTurn {
 		_ = s.writer.gather(buf.Bytes()) // the writer itself tells of its errors
 	} else {
 		_ = s.writer.send(buf.Bytes())
+	}
+	if s.traced() { // behind the reply: before that to initialize no such notification may be sent
+		s.logTrace(fmt.Sprintf("%s (id %s) answered after %v", c.Method, c.id, time.Since(c.came).Round(time.Microsecond)), func() string {
+			return fmt.Sprintf("%d bytes of params, %d bytes of reply", len(c.Params), buf.Len())
+		})
 	}
 	s.sent(c)
 }

@@ -397,12 +397,12 @@ func TestTraceTellsOfEachReply(t *testing.T) {
 	c.want(`{"jsonrpc":"2.0","id":1,"result":null}`)
 	c.send(`{"jsonrpc":"2.0","method":"$/setTrace","params":{"value":"messages"}}`)
 	c.send(`{"jsonrpc":"2.0","id":2,"method":"test/echo"}`)
-	c.wantPart(`"method":"$/logTrace"`, `test/echo (id 2) answered after`)
 	c.want(`{"jsonrpc":"2.0","id":2,"result":null}`)
+	c.wantPart(`"method":"$/logTrace"`, `test/echo (id 2) answered after`)
 	c.send(`{"jsonrpc":"2.0","method":"$/setTrace","params":{"value":"verbose"}}`)
 	c.send(`{"jsonrpc":"2.0","id":2,"method":"test/echo"}`)
-	c.wantPart(`"method":"$/logTrace"`, `"verbose":"0 bytes of params, 38 bytes of reply"`)
 	c.want(`{"jsonrpc":"2.0","id":2,"result":null}`)
+	c.wantPart(`"method":"$/logTrace"`, `"verbose":"0 bytes of params, 38 bytes of reply"`)
 	c.openSheet("b", "Calculations", 0, `[{"at":"A1","rows":[["work out","sample","> mean"],["mean-interval","3; 5"],["mean-interval","5; 7"]]}]`)
 	c.publication()
 	c.wantPart(`"method":"$/logTrace"`, `sheets/publishResults of \"b\" published after`, `"verbose":"2 of 2 rows worked out anew"`)
@@ -410,6 +410,16 @@ func TestTraceTellsOfEachReply(t *testing.T) {
 	c.publication()
 	c.wantPart(`"verbose":"1 of 2 rows worked out anew"`)
 	c.send(`{"jsonrpc":"2.0","method":"$/setTrace","params":{"value":"off"}}`)
+	c.leave()
+}
+
+// LSP 3.17, initialize: until the reply to it has gone, no notification but a few
+// named there may be sent, and $/logTrace is none of them.
+func TestNothingIsTracedBeforeTheReplyToInitialize(t *testing.T) {
+	c := begin(t, Options{})
+	c.send(`{"jsonrpc":"2.0","id":1,"method":"initialize","params":{"capabilities":{},"trace":"verbose"}}`)
+	c.wantPart(`"id":1,"result"`)
+	c.wantPart(`"method":"$/logTrace"`, `initialize (id 1) answered after`)
 	c.leave()
 }
 
