@@ -1,7 +1,9 @@
 package workbook
 
 import (
+	"math"
 	"slices"
+	"strconv"
 	"strings"
 
 	"halfwidth/funcs"
@@ -31,6 +33,7 @@ const (
 	InputsChanged  Reason = "inputs changed since"     // another fingerprint
 	OtherVersion   Reason = "another version since"    // of the function
 	TypedOver      Reason = "result typed over"        // the same fingerprint, but not its result
+	FewerDigits    Reason = "saved with fewer digits"  // the same number, as a program keeps it that saves 15 or 16 digits
 	SameInputs     Reason = "inputs are the same"      // the same fingerprint; a note or a range may differ all the same
 	RefusedNow     Reason = "refused now"              // the row is
 	NotWanted      Reason = "nothing belongs here"     // right of or below a table
@@ -158,14 +161,30 @@ func (e evidence) reason(w wanted, stored any) Reason {
 		return InputsChanged
 	case w.name == "fingerprint" && !isFingerprint(stored):
 		return TypedOver
+	case isFingerprint(e.then) && e.now != nil && e.then != e.now:
+		return InputsChanged
+	case fewerDigits(stored, w.value):
+		return FewerDigits
 	case !e.marked || !isFingerprint(e.then) || e.now == nil:
 		return Unknown
-	case e.then != e.now:
-		return InputsChanged
 	case pinned(w.row.Row.Function, w.name):
 		return TypedOver
 	}
 	return SameInputs
+}
+
+// fewerDigits reports whether a stored number is that worked out, rounded or cut
+// to 15 digits or more: one unit of the fifteenth is at most 1e-14 of the number.
+func fewerDigits(stored, now any) bool {
+	x, ok := stored.(float64)
+	y, is := now.(float64)
+	return ok && is && math.Abs(x-y) <= 1e-14*math.Abs(y) && len(strings.TrimLeft(digits(x), "0")) <= 16
+}
+
+// digits gives the digits of the shortest decimal that reads back as the number.
+func digits(x float64) string {
+	mantissa, _, _ := strings.Cut(strconv.FormatFloat(math.Abs(x), 'e', -1, 64), "e")
+	return strings.Replace(mantissa, ".", "", 1)
 }
 
 // pinned reports whether the fingerprint settles a result to the last digit.

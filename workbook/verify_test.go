@@ -6,6 +6,7 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
+	"strconv"
 	"strings"
 	"testing"
 
@@ -112,6 +113,35 @@ func TestVerifyTellsWhatChanged(t *testing.T) {
 				t.Errorf("it lists %q", list)
 			}
 		})
+	}
+}
+
+// Some programs save 15 or 16 digits of a number, rounded or cut.
+func TestVerifyTellsNumbersThatWereSavedWithFewerDigits(t *testing.T) {
+	for _, test := range []struct {
+		stored float64
+		want   string
+	}{
+		{32.333333333333336, ""},
+		{32.3333333333333, "saved with fewer digits"}, {32.33333333333333, "saved with fewer digits"}, {32.3333333333334, "saved with fewer digits"},
+		{32.333333333333, "differs (no fingerprint)"}, {32.33333333333334, "saved with fewer digits"}, {32.333333333333364, "differs (no fingerprint)"},
+	} {
+		book := filepath.Join(t.TempDir(), "book.calculations.csv")
+		write(t, book, "work out,sample,> mean\nsample-summary,31; 32; 34,"+strconv.FormatFloat(test.stored, 'g', -1, 64)+"\n")
+		list, _ := verify(t, book)
+		if got := strings.Join(list, "; "); got != strings.TrimSuffix("Calculations!C2 mean: "+test.want, "Calculations!C2 mean: ") {
+			t.Errorf("%v: %q, want %q", test.stored, got, test.want)
+		}
+	}
+	header := "work out,sample,> mean,> fingerprint\nsample-summary,31; 32; 34,"
+	book := filepath.Join(t.TempDir(), "book.calculations.csv")
+	write(t, book, header+",\n")
+	if _, err := Fill(t.Context(), book, Options{InPlace: true}); err != nil {
+		t.Fatal(err)
+	}
+	write(t, book, strings.Replace(read(t, book), "32.333333333333336", "32.3333333333333", 1))
+	if list, _ := verify(t, book); !slices.Equal(list, []string{"Calculations!C2 mean: saved with fewer digits"}) {
+		t.Errorf("beside a fingerprint: %q", list)
 	}
 }
 
