@@ -95,8 +95,7 @@ func (t *batchTable) close(done string) error {
 }
 
 func (t *batchTable) lastLine(done string) string {
-	line := fmt.Sprintf("%s %d of %s: %d rows ok, %d caution, %d refused", done, t.fates[worked], workbooks(t.books),
-		t.counts[funcs.StatusOK], t.counts[funcs.StatusCaution], t.counts[funcs.StatusRefused])
+	line := fmt.Sprintf("%s %d of %s: %s", done, t.fates[worked], workbooks(t.books), rowCounts(t.counts))
 	var rest []string
 	for _, n := range []struct {
 		count int

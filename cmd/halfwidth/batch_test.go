@@ -171,7 +171,7 @@ func TestABatchEndsByWhatBecameOfItsBooks(t *testing.T) {
 		stdout []string
 		stderr string
 	}{
-		{"all rows ok", []string{in("good")}, exitOK, []string{"wrote ", "Filled 1 of 1 workbook: 1 rows ok"}, ""},
+		{"all rows ok", []string{in("good")}, exitOK, []string{"wrote ", "Filled 1 of 1 workbook: 1 row ok"}, ""},
 		{"a refused row", []string{in("refused")}, exitRefused, []string{"Calculations, row 2: B2 (sample): No row from 1 to 6 of Trips holds a column", "1 refused"}, ""},
 		{"no calculation sheet in a folder", []string{in("mixed")}, exitOK, []string{"no calculation sheet", "Filled 1 of 2 workbooks", "1 without a calculation sheet"}, ""},
 		{"no calculation sheet in a book named itself", []string{good, plain}, exitRefused, []string{"failed", "plain.xlsx: no calculation sheet"}, "1 of 2 workbooks failed"},

@@ -278,10 +278,18 @@ func printDiagnostics(w io.Writer, list []calculation.Diagnostic, ofRows ...[]ca
 	}
 }
 
+// rowCounts words how many rows have each status.
+func rowCounts(rows statusCounts) string {
+	ok := "rows ok"
+	if rows[funcs.StatusOK] == 1 {
+		ok = "row ok"
+	}
+	return fmt.Sprintf("%d %s, %d caution, %d refused", rows[funcs.StatusOK], ok, rows[funcs.StatusCaution], rows[funcs.StatusRefused])
+}
+
 // writtenLine says what was written and how the rows stand.
 func writtenLine(r *workbook.Report) string {
-	counts := r.Counts()
-	rows := fmt.Sprintf("%d rows ok, %d caution, %d refused", counts[funcs.StatusOK], counts[funcs.StatusCaution], counts[funcs.StatusRefused])
+	rows := rowCounts(r.Counts())
 	if r.Saved.Path == "" {
 		return "Nothing to write: the results stand there already: " + rows + "."
 	}

@@ -73,8 +73,7 @@ func (p *pages) run(c *cobra.Command, words []string) error {
 		written++
 		counts := report.Counts()
 		refused = refused || counts[funcs.StatusRefused] > 0
-		if _, err := fmt.Fprintf(c.OutOrStdout(), "Wrote %s: %d rows ok, %d caution, %d refused.\n", texttab.Clean(targets[i]),
-			counts[funcs.StatusOK], counts[funcs.StatusCaution], counts[funcs.StatusRefused]); err != nil {
+		if _, err := fmt.Fprintf(c.OutOrStdout(), "Wrote %s: %s.\n", texttab.Clean(targets[i]), rowCounts(counts)); err != nil {
 			return err
 		}
 	}
