@@ -19,7 +19,7 @@ func (c *Call) logarithms() ([]float64, summary, error) {
 		if x <= 0 {
 			return nil, summary{}, &refusal{Finding{Code: "not-positive", Severity: Refused, Input: "sample", Cells: c.address("sample", 0, i),
 				Message: fmt.Sprintf("Value %d of sample is %s, and only positive values have a logarithm; use mean-interval or median-interval, "+
-					"or leave such rows out by a condition.", i+1, shortest(x))}}
+					"or leave such rows out by a condition.", i+1, FormatNumber(x))}}
 		}
 		logs[i] = num.Log(x)
 	}

@@ -63,7 +63,7 @@ func TestLogarithmsNeedPositiveValues(t *testing.T) {
 			out := answer(t, name, map[string]any{"sample": From{Value: []float64{3, bad, 4}, Origin: &Origin{Address: cell}}})
 			refusedFor(t, out, "not-positive")
 			checkDeclared(t, out.Function, out)
-			if f := out.Findings[0]; f.Cells[0] != "C3" || !strings.HasPrefix(f.Message, "Value 2 of sample is "+shortest(bad)+", and only positive values have a logarithm") {
+			if f := out.Findings[0]; f.Cells[0] != "C3" || !strings.HasPrefix(f.Message, "Value 2 of sample is "+FormatNumber(bad)+", and only positive values have a logarithm") {
 				t.Errorf("%v %s", f.Cells, f.Message)
 			}
 		}

@@ -45,11 +45,11 @@ var stratifiedInterval = &Function{
 			size, n := columns[0][i], float64(g.n)
 			switch {
 			case n > size:
-				return c.wrong("sizes", shortest(size), fmt.Sprintf("is smaller than the sample of the stratum %q (%s)", g.name, nText(g.n)),
+				return c.wrong("sizes", FormatNumber(size), fmt.Sprintf("is smaller than the sample of the stratum %q (%s)", g.name, nText(g.n)),
 					"give the number in the whole stratum")
 			case g.n < 2 && n < size:
 				return refuse("few-values", c.groupsInput(), "The stratum %s has only one value of %s, so its spread is unknown; measure at least 2, "+
-					"or join it with a stratum like it.", g.name, shortest(size))
+					"or join it with a stratum like it.", g.name, FormatNumber(size))
 			}
 			population += size
 			total += float64(size * g.mean)
@@ -78,7 +78,7 @@ var stratifiedInterval = &Function{
 		c.setLimits(l)
 		c.setTotals(population, mean, l)
 		c.set("standard-error", se)
-		c.say(statement{"mean of the population", mean, l, SameUnit, fmt.Sprintf("%s of %s in %d strata", nText(c.used), shortest(population), len(groups))})
+		c.say(statement{"mean of the population", mean, l, SameUnit, fmt.Sprintf("%s of %s in %d strata", nText(c.used), FormatNumber(population), len(groups))})
 		return c.checkGroups(sampledStrata(groups, columns[0]))
 	},
 }

@@ -164,11 +164,11 @@ func (one OneOf) String() string {
 func (c *Call) unusualLevels() {
 	if conf, ok := confidence.Given(c); ok && conf < 0.5 {
 		c.caution("unusual-level", "confidence", "A confidence of %s is a %s interval; did you mean %s?",
-			shortest(conf), percent(conf), percent(1-conf))
+			FormatNumber(conf), percent(conf), percent(1-conf))
 	}
 	if alpha, ok := significance.Given(c); ok && alpha > 0.5 {
 		c.caution("unusual-level", "significance", "A significance of %s allows an error in %s of cases; did you mean %s?",
-			shortest(alpha), percent(alpha), percent(1-alpha))
+			FormatNumber(alpha), percent(alpha), percent(1-alpha))
 	}
 }
 

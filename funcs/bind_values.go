@@ -75,13 +75,13 @@ func (b *binder) number(in Input, group string, index int, raw any) (float64, bo
 	advice := ""
 	switch {
 	case in.Kind == Level && x > 1 && x <= 100:
-		advice = fmt.Sprintf("write %s%% or %s", shortest(x), strconv.FormatFloat(x/100, 'g', 15, 64))
+		advice = fmt.Sprintf("write %s%% or %s", FormatNumber(x), strconv.FormatFloat(x/100, 'g', 15, 64))
 	case in.Kind == Level && !(x > 0 && x < 1):
 		advice = "write a share such as 95% or 0.95"
 	case in.Infinite && math.IsInf(x, 1):
 		return x, true
 	}
-	b.failAt(in.Name, group, index, shortest(x), "must be "+in.Expects(), advice)
+	b.failAt(in.Name, group, index, FormatNumber(x), "must be "+in.Expects(), advice)
 	return 0, false
 }
 
@@ -143,7 +143,7 @@ func (b *binder) sample(in Input, group string, v []float64) bool {
 			continue
 		}
 		if !math.IsNaN(x) {
-			b.failAt(in.Name, group, i, shortest(x), "must be a finite number", "leave the cell blank where there is no value")
+			b.failAt(in.Name, group, i, FormatNumber(x), "must be a finite number", "leave the cell blank where there is no value")
 			return false
 		}
 		gaps++
@@ -194,7 +194,7 @@ func show(v any) string {
 	case string:
 		return `"` + v + `"`
 	case float64:
-		return shortest(v)
+		return FormatNumber(v)
 	case bool:
 		if v {
 			return "yes"

@@ -129,7 +129,7 @@ func (c *Call) checkFar(input, what string, group int, ordered []float64, s summ
 	}
 	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.address(input, group, at), Message: fmt.Sprintf(
 		"Value %d of %s, %s, lies %s standard deviations from the mean. Check that it is right; keep it if it is, and see outlier-check.",
-		at+1, lowerFirst(what), shortest(ordered[at]), brief(far/s.sd))})
+		at+1, lowerFirst(what), FormatNumber(ordered[at]), brief(far/s.sd))})
 }
 
 // esdCritical is the critical value of max|x - mean|/sd among n normal values

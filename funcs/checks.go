@@ -80,7 +80,7 @@ func (c *Call) sayOutliers(outliers, n int) {
 	alpha := percent(significance.Of(c))
 	list := make([]string, len(c.rows))
 	for i, row := range c.rows {
-		list[i] = shortest(row.Values["value"].(float64))
+		list[i] = FormatNumber(row.Values["value"].(float64))
 	}
 	switch outliers {
 	case 0:

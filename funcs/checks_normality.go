@@ -74,7 +74,7 @@ func polynomial(x float64, c ...float64) float64 {
 
 // shapiroWilk gives W and its p-value for sorted values with some spread, n from
 // 3 to 5000 (Royston 1995, Remark AS R94, Applied Statistics 44, 547-551; the
-// constants are from memory). The approximation of the p-value is good to two or
+// constants were not compared with the printed listing). The approximation of the p-value is good to two or
 // three digits.
 func shapiroWilk(sorted []float64) (w, p float64) {
 	n := len(sorted)
@@ -141,7 +141,7 @@ func shapiroWilkP(w float64, n int) float64 {
 
 // andersonDarling gives A² for sorted values with estimated mean and sd, and
 // the p-value of A²(1 + 0.75/n + 2.25/n²) (D'Agostino & Stephens 1986, Table 4.9;
-// the constants are from memory).
+// the constants were not compared with the print).
 func andersonDarling(sorted []float64, s summary) (a2, p float64) {
 	n := float64(s.n)
 	terms := make([]float64, s.n)

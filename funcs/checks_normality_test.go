@@ -8,7 +8,7 @@ import (
 )
 
 // D'Agostino & Stephens 1986, table 4.7, case 3: A*² at 10%, 5%, 2.5% and 1%
-// (values from memory).
+// (values not compared with the print).
 func TestAndersonDarlingAtPublishedPercentagePoints(t *testing.T) {
 	for level, a := range map[float64]float64{0.10: 0.631, 0.05: 0.752, 0.025: 0.873, 0.01: 1.035} {
 		if p := andersonDarlingP(a); math.Abs(p/level-1) > 0.03 {

@@ -124,7 +124,7 @@ func (c *Call) population() (population, error) {
 	if what, ok := shapeNeeds[name]; ok && !given {
 		return population{}, c.wrong("parameter", "", "is missing", fmt.Sprintf("the shape %s needs the %s", name, what))
 	} else if !ok && given {
-		return population{}, c.wrong("parameter", shortest(a), "is not taken by the shape "+name, "leave it out")
+		return population{}, c.wrong("parameter", FormatNumber(a), "is not taken by the shape "+name, "leave it out")
 	}
 	inf := math.Inf(1)
 	switch name {
@@ -134,14 +134,14 @@ func (c *Call) population() (population, error) {
 		return population{cost: 1, draw: each(func(s *num.Stream) float64 { return s.Exponential() - 1 }), sd: 1, distance: gammaDistance}.withMoments(2, 6), nil
 	case "lognormal":
 		if a > 20 { // so that neither mean nor variance passes what a double holds
-			return population{}, c.wrong("parameter", shortest(a), "must be at most 20 as the sd of a logarithm", "give a smaller one")
+			return population{}, c.wrong("parameter", FormatNumber(a), "must be at most 20 as the sd of a logarithm", "give a smaller one")
 		}
 		centre := num.Exp(float64(a*a) / 2)
 		return population{cost: 2, draw: each(func(s *num.Stream) float64 { return num.Exp(float64(a*s.Normal())) - centre }),
 			sd: centre * math.Sqrt(num.Expm1(float64(a*a)))}.withMoments(lognormalMoments(a)), nil
 	case "bernoulli":
 		if a >= 1 {
-			return population{}, c.wrong("parameter", shortest(a), "must be a probability, strictly between 0 and 1", "give a smaller one")
+			return population{}, c.wrong("parameter", FormatNumber(a), "must be a probability, strictly between 0 and 1", "give a smaller one")
 		}
 		return population{cost: 1, draw: each(func(s *num.Stream) float64 {
 			if s.Uniform() < a {
@@ -153,7 +153,7 @@ func (c *Call) population() (population, error) {
 		}}.withMoments((1-2*a)/math.Sqrt(a*(1-a)), 1/(a*(1-a))-6), nil
 	case "poisson":
 		if a > 1e6 {
-			return population{}, c.wrong("parameter", shortest(a), "must be at most 1000000", "give a smaller mean")
+			return population{}, c.wrong("parameter", FormatNumber(a), "must be at most 1000000", "give a smaller mean")
 		}
 		return population{cost: 4, draw: poissonDraws(a), sd: math.Sqrt(a), distance: func(n int) float64 {
 			mean := float64(n) * a
@@ -161,7 +161,7 @@ func (c *Call) population() (population, error) {
 		}}.withMoments(1/math.Sqrt(a), 1/a), nil
 	case "pareto":
 		if a <= 1 {
-			return population{}, refuse("no-mean", "parameter", "A pareto population of index %s has no mean, so no interval can hold it; use an index above 1.", shortest(a))
+			return population{}, refuse("no-mean", "parameter", "A pareto population of index %s has no mean, so no interval can hold it; use an index above 1.", FormatNumber(a))
 		}
 		p := population{cost: 2, draw: each(func(s *num.Stream) float64 { return num.Exp(s.Exponential()/a) - a/(a-1) }), sd: inf}
 		if a > 2 {
@@ -175,7 +175,7 @@ func (c *Call) population() (population, error) {
 		return population{cost: 2, draw: each(func(s *num.Stream) float64 { return s.Normal() / s.Normal() }), sd: inf, noMean: true}, nil
 	case "t":
 		if a < 0.25 { // its values would pass what a double holds
-			return population{}, c.wrong("parameter", shortest(a), "must be at least 0.25 degrees of freedom", "give more")
+			return population{}, c.wrong("parameter", FormatNumber(a), "must be at least 0.25 degrees of freedom", "give more")
 		}
 		p := population{cost: 4, draw: studentDraws(a), sd: inf, noMean: a <= 1}
 		if a > 2 {

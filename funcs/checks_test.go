@@ -10,7 +10,7 @@ import (
 )
 
 // Rosner 1983 by way of the e-Handbook, 1.3.5.17.3: R and λ of the first three,
-// which it cuts after three decimals (values from memory).
+// which it cuts after three decimals (values not compared with the print).
 func TestGeneralisedESDOfRosnersData(t *testing.T) {
 	out := answer(t, "outlier-check", outlierCheck.Example.arguments())
 	if len(out.Rows) != 3 {

@@ -25,8 +25,8 @@ var (
 func (c *Call) successesOf(successes, trials In[int]) (x, n float64, err error) {
 	x, n = float64(successes.Of(c)), float64(trials.Of(c))
 	if x > n {
-		return x, n, c.wrong(successes.Name, shortest(x), fmt.Sprintf("must be at most %s (%s)", trials.Name, shortest(n)),
-			"give how many of the "+shortest(n)+" have the property")
+		return x, n, c.wrong(successes.Name, FormatNumber(x), fmt.Sprintf("must be at most %s (%s)", trials.Name, FormatNumber(n)),
+			"give how many of the "+FormatNumber(n)+" have the property")
 	}
 	return x, n, nil
 }
@@ -94,7 +94,7 @@ var proportionInterval = &Function{
 				}
 			}
 		}
-		c.say(statement{"share", x / n, l, NoUnit, fmt.Sprintf("%s of n = %s", shortest(x), shortest(n))})
+		c.say(statement{"share", x / n, l, NoUnit, fmt.Sprintf("%s of n = %s", FormatNumber(x), FormatNumber(n))})
 		if ref, ok := shareReference.Given(c); ok && !(finite && n == float64(size)) {
 			c.testShare(x, n, ref, size, finite)
 		}
@@ -166,7 +166,7 @@ func (c *Call) testShare(x, n, ref float64, size int, finite bool) {
 		marked := math.Round(ref * float64(size))
 		if !withinWhole(float64(ref*float64(size)), marked) {
 			c.inform("reference-between-counts", "reference", "A share of %s is no whole number of %d, so there is no exact p-value; give a share that is, or leave population-size out.",
-				shortest(ref), size)
+				FormatNumber(ref), size)
 			return
 		}
 		law := dist.Hypergeometric{Population: size, Marked: int(marked), Draws: int(n)}
@@ -228,7 +228,7 @@ var proportionDifferenceInterval = &Function{
 		c.setLimits(l)
 		c.set("p-value", p)
 		c.method = "score limits of each share joined (Newcombe, method 10); p from the pooled score z, both without continuity correction"
-		c.say(statement{"difference of shares (first - second)", d, l, NoUnit, fmt.Sprintf("n = %s and %s", shortest(n1), shortest(n2))})
+		c.say(statement{"difference of shares (first - second)", d, l, NoUnit, fmt.Sprintf("n = %s and %s", FormatNumber(n1), FormatNumber(n2))})
 		c.sayTest(0, NoUnit, "score z", z, p)
 		holdsZero := !(l.hasLower && l.lower > 0) && !(l.hasUpper && l.upper < 0)
 		if rejects := p < 1-conf; rejects == holdsZero && p != 1-conf {

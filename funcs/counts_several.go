@@ -53,7 +53,7 @@ var proportionsComparison = &Function{
 		var allX, allN float64
 		for i := range x {
 			if x[i] > n[i] {
-				return c.wrong("successes", shortest(x[i]), fmt.Sprintf("must be at most the number of %s (%s)", names[i], shortest(n[i])),
+				return c.wrong("successes", FormatNumber(x[i]), fmt.Sprintf("must be at most the number of %s (%s)", names[i], FormatNumber(n[i])),
 					"give how many of the group have the property")
 			}
 			allX, allN = allX+x[i], allN+n[i]
@@ -78,7 +78,7 @@ var proportionsComparison = &Function{
 		}
 		c.method = fmt.Sprintf("chi-square test with %s; pairwise score limits (Newcombe, method 10), p-values adjusted by Holm's method", degrees(df))
 		c.sentence = fmt.Sprintf("Over %d groups (n = %s in all) the shares give chi-square = %s with %s, %s; the %s have %s intervals (method 10 of Newcombe), each alone, and p-values adjusted by Holm's method.",
-			len(names), shortest(allN), brief(chi), degrees(df), pText(p), plural(len(names)*(len(names)-1)/2, "pair"), percent(confidence.Of(c)))
+			len(names), FormatNumber(allN), brief(chi), degrees(df), pText(p), plural(len(names)*(len(names)-1)/2, "pair"), percent(confidence.Of(c)))
 		c.pairsOfShares(names, x, n)
 		return nil
 	},

@@ -42,7 +42,7 @@ func (d Domain) String() string {
 		return "a whole number, " + d.String()
 	}
 	low, high := !math.IsInf(d.Low, -1), !math.IsInf(d.High, 1)
-	lo, hi := shortest(d.Low), shortest(d.High)
+	lo, hi := FormatNumber(d.Low), FormatNumber(d.High)
 	switch {
 	case !low && !high:
 		return "any number"
@@ -65,8 +65,8 @@ func (d Domain) String() string {
 	}
 }
 
-// shortest writes x in the shortest form that parses back to the same double.
-func shortest(x float64) string {
+// FormatNumber writes x in the shortest form that parses back to the same double.
+func FormatNumber(x float64) string {
 	if a := math.Abs(x); a != 0 && (a < 1e-5 || a >= 1e21) {
 		return strconv.FormatFloat(x, 'e', -1, 64)
 	}

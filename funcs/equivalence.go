@@ -23,7 +23,7 @@ func (c *Call) margins(reference float64) (lower, upper float64, err error) {
 	}
 	lower, upper = lowerMargin.Of(c), upperMargin.Of(c)
 	if !(lower < upper) {
-		return 0, 0, c.wrong("upper-margin", shortest(upper), "must be more than lower-margin ("+shortest(lower)+")",
+		return 0, 0, c.wrong("upper-margin", FormatNumber(upper), "must be more than lower-margin ("+FormatNumber(lower)+")",
 			"give the lower one first, such as -2 and 2")
 	}
 	return reference + lower, reference + upper, nil
@@ -87,7 +87,7 @@ var equivalenceTest = &Function{
 			verdict = "shown to lie within"
 		}
 		c.sentence += fmt.Sprintf(" By two one-sided tests at significance %s the difference is %s the margins %s and %s (%s).", percent(alpha), verdict,
-			shortest(lower), c.withUnit(shortest(upper), SameUnit), pText(p))
+			FormatNumber(lower), c.withUnit(FormatNumber(upper), SameUnit), pText(p))
 		return c.checkMeans(first, second)
 	},
 }

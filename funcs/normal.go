@@ -100,7 +100,7 @@ func (c *Call) normalLaw() (dist.Distribution, string) {
 		return law, "the standard normal distribution"
 	}
 	return law, fmt.Sprintf("the normal distribution with mean %s and standard deviation %s",
-		c.withUnit(shortest(law.mean), SameUnit), c.withUnit(shortest(law.sd), SameUnit))
+		c.withUnit(FormatNumber(law.mean), SameUnit), c.withUnit(FormatNumber(law.sd), SameUnit))
 }
 
 var normalProbability = &Function{
@@ -171,8 +171,8 @@ var standardScore = &Function{
 		c.set("probability-above", upper)
 		c.method = "(value - mean)/sd; tails of the normal distribution"
 		c.sentence = fmt.Sprintf("%s lies %s the mean of %s (standard deviation %s); a smaller value has probability %s, a larger one %s (%s).",
-			c.withUnit(shortest(value), SameUnit), scoreText(z.Float()), c.withUnit(shortest(law.mean), SameUnit),
-			c.withUnit(shortest(law.sd), SameUnit), chanceText(lower, upper), chanceText(upper, lower), c.method)
+			c.withUnit(FormatNumber(value), SameUnit), scoreText(z.Float()), c.withUnit(FormatNumber(law.mean), SameUnit),
+			c.withUnit(FormatNumber(law.sd), SameUnit), chanceText(lower, upper), chanceText(upper, lower), c.method)
 		return nil
 	},
 }
@@ -233,7 +233,7 @@ var normalTransform = &Function{
 		}
 		place := lastPlace(newSD, mean)
 		c.sentence = fmt.Sprintf("%s times a quantity with mean %s and standard deviation %s, plus %s, has mean %s and standard deviation %s (%s); "+
-			"it is normal if the quantity is.", shortest(factor), c.withUnit(shortest(m), SameUnit), shortest(sd), shortest(add),
+			"it is normal if the quantity is.", FormatNumber(factor), c.withUnit(FormatNumber(m), SameUnit), FormatNumber(sd), FormatNumber(add),
 			c.withUnit(toPlace(mean, place), SameUnit), toPlace(newSD, place), c.method)
 		return nil
 	},

@@ -56,7 +56,7 @@ func noSumSpread(items *sumItems) error {
 		input = "highs"
 	}
 	return refuse("no-spread", input, "The sum has no spread: every item's weight times its standard deviation is 0, or the correlations cancel them; "+
-		"the sum is %s, and nothing more can be said of it.", shortest(items.mean))
+		"the sum is %s, and nothing more can be said of it.", FormatNumber(items.mean))
 }
 
 // responses gives rᵢ = Σρᵢⱼaⱼ; total is Σaⱼ.
@@ -77,7 +77,7 @@ func (c *Call) responses(a []float64, total num.Wide) ([]num.Wide, error) {
 	rho := commonCorrelation.Of(c)
 	if lowest := -1 / float64(len(a)-1); len(a) > 1 && rho < lowest-matrixTolerance {
 		return nil, refuse(matrixKind.Code, "correlation", "No %s can all have correlation %s with one another; for so many the lowest is %s. "+
-			"Give a higher correlation, or a matrix of correlations.", plural(len(a), "item"), shortest(rho), brief(lowest))
+			"Give a higher correlation, or a matrix of correlations.", plural(len(a), "item"), FormatNumber(rho), brief(lowest))
 	}
 	shared := total.Times(rho)
 	for i := range a {
@@ -95,7 +95,7 @@ const matrixTolerance = 1e-12
 // symmetric, diagonal 1, no negative eigenvalue.
 func (c *Call) correlationMatrix(rho []float64, m int) ([]float64, error) {
 	if commonCorrelation.Of(c) != 0 {
-		return nil, c.wrong("correlation", shortest(commonCorrelation.Of(c)), "cannot be given together with correlations", "give one of the two")
+		return nil, c.wrong("correlation", FormatNumber(commonCorrelation.Of(c)), "cannot be given together with correlations", "give one of the two")
 	}
 	if len(rho) != m*m {
 		return nil, c.wrong("correlations", plural(len(rho), "number"), fmt.Sprintf("must be %d for %s: the whole square matrix, row by row", m*m, plural(m, "item")),
@@ -104,12 +104,12 @@ func (c *Call) correlationMatrix(rho []float64, m int) ([]float64, error) {
 	for i := range m {
 		if d := rho[i*m+i]; math.Abs(d-1) > matrixTolerance {
 			return nil, refuse(matrixKind.Code, "correlations", "Row %d, column %d of the correlations is %s, but an item's correlation with itself is 1; "+
-				"check the order of the numbers.", i+1, i+1, shortest(d))
+				"check the order of the numbers.", i+1, i+1, FormatNumber(d))
 		}
 		for j := range i {
 			if x, y := rho[i*m+j], rho[j*m+i]; math.Abs(x-y) > matrixTolerance {
 				return nil, refuse(matrixKind.Code, "correlations", "The correlations are not symmetric: row %d, column %d is %s, but row %d, column %d is %s; "+
-					"give each pair the same number in both places.", j+1, i+1, shortest(y), i+1, j+1, shortest(x))
+					"give each pair the same number in both places.", j+1, i+1, FormatNumber(y), i+1, j+1, FormatNumber(x))
 			}
 		}
 	}

@@ -53,16 +53,16 @@ func probabilityOf(law lawOf) func(*Call) error {
 		var where string
 		switch {
 		case hasLow && hasHigh && a > b:
-			return c.wrong("from", shortest(a), "must not be greater than to ("+shortest(b)+")", "exchange the two")
+			return c.wrong("from", FormatNumber(a), "must not be greater than to ("+FormatNumber(b)+")", "exchange the two")
 		case hasLow && hasHigh:
 			inside, outside = x.Between(a, b), x.CDF(a)+x.SF(b)
-			where = "from " + shortest(a) + " to " + c.withUnit(shortest(b), u)
+			where = "from " + FormatNumber(a) + " to " + c.withUnit(FormatNumber(b), u)
 		case hasLow:
 			inside, outside = x.SF(a), x.CDF(a)
-			where = "from " + c.withUnit(shortest(a), u) + " upward"
+			where = "from " + c.withUnit(FormatNumber(a), u) + " upward"
 		default:
 			inside, outside = x.CDF(b), x.SF(b)
-			where = "of at most " + c.withUnit(shortest(b), u)
+			where = "of at most " + c.withUnit(FormatNumber(b), u)
 		}
 		inside, outside = math.Min(inside, 1), math.Min(outside, 1)
 		c.set("probability", inside)

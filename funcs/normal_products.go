@@ -47,7 +47,7 @@ var lognormalProduct = &Function{
 		law := lognormalOf(columns[0], columns[1], columns[2])
 		if law.sd == 0 {
 			return refuse("no-spread", "geometric-sds", "The product has no spread: every factor has geometric standard deviation 1 or power 0; "+
-				"it is %s, and nothing more can be said of it.", shortest(num.ExpWide(law.mean)))
+				"it is %s, and nothing more can be said of it.", FormatNumber(num.ExpWide(law.mean)))
 		}
 		outside := (1 - coverage.Of(c)) / 2
 		lower, upper := law.Quantile(outside), law.UpperQuantile(outside)

@@ -109,7 +109,7 @@ func (c *Call) sayThreshold(law twoTails) {
 	if x, ok := threshold.Given(c); ok {
 		p := law.SF(x)
 		c.set("probability-above", p)
-		c.sentence += fmt.Sprintf(" It passes %s with probability %s.", c.withUnit(shortest(x), SameUnit), chanceText(p, law.CDF(x)))
+		c.sentence += fmt.Sprintf(" It passes %s with probability %s.", c.withUnit(FormatNumber(x), SameUnit), chanceText(p, law.CDF(x)))
 	}
 }
 
@@ -159,7 +159,7 @@ func (c *Call) readItems() (*sumItems, error) {
 // (u²+v²-uv)/18 with u = b-a and v = m-a, which a large offset does not harm.
 func (c *Call) triangle(name string, a, m, b float64) (mean, sd float64, err error) {
 	if !(a <= m && m <= b) {
-		return 0, 0, c.wrong("likelies", shortest(m), fmt.Sprintf("of item %s must lie from its low (%s) to its high (%s)", name, shortest(a), shortest(b)),
+		return 0, 0, c.wrong("likelies", FormatNumber(m), fmt.Sprintf("of item %s must lie from its low (%s) to its high (%s)", name, FormatNumber(a), FormatNumber(b)),
 			"check the order of the three lists")
 	}
 	u, v := b-a, m-a

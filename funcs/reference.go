@@ -91,7 +91,7 @@ func FormatArgument(value any) string {
 		if math.IsInf(v, 1) {
 			return Infinite
 		}
-		return shortest(v)
+		return FormatNumber(v)
 	case bool:
 		return show(v)
 	case []float64:
@@ -114,7 +114,7 @@ func formatNumbers(names []string, values []float64) string {
 	parts := make([]string, len(values))
 	for i, x := range values {
 		if !math.IsNaN(x) {
-			parts[i] = shortest(x)
+			parts[i] = FormatNumber(x)
 		}
 		if names != nil {
 			parts[i] = names[i] + " = " + parts[i]

@@ -148,14 +148,14 @@ func (c *Call) setSummary(d description) {
 // error's second digit, the extremes as they were measured.
 func (c *Call) saySummary(d description) {
 	if d.n < 2 {
-		c.sentence = fmt.Sprintf("The one value is %s (%s).", c.withUnit(shortest(d.mean), SameUnit), nText(d.n))
+		c.sentence = fmt.Sprintf("The one value is %s (%s).", c.withUnit(FormatNumber(d.mean), SameUnit), nText(d.n))
 		return
 	}
 	place := lastPlace(d.standardError, d.mean)
 	to := func(x float64) string { return toPlace(x, place) }
 	c.sentence = fmt.Sprintf("The mean is %s, standard deviation %s, standard error %s; median %s, quartiles %s and %s, values from %s to %s (%s; %s).",
 		c.withUnit(to(d.mean), SameUnit), to(d.sd), to(d.standardError), to(d.median), to(d.q1), to(d.q3),
-		shortest(d.minimum), shortest(d.maximum), nText(d.n), c.method)
+		FormatNumber(d.minimum), FormatNumber(d.maximum), nText(d.n), c.method)
 }
 
 // checkSummary raises the cautions that concern a description; it forms no

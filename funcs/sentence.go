@@ -147,14 +147,14 @@ func (c *Call) setTest(reference float64, u Unit, statistic string, value, p flo
 
 // sayTest adds the comparison with the reference to the sentence.
 func (c *Call) sayTest(reference float64, u Unit, statistic string, value, p float64) {
-	c.sentence += fmt.Sprintf(" Against the reference %s: %s = %s, %s%s.", c.withUnit(shortest(reference), u), statistic, brief(value),
+	c.sentence += fmt.Sprintf(" Against the reference %s: %s = %s, %s%s.", c.withUnit(FormatNumber(reference), u), statistic, brief(value),
 		sided(direction.Of(c)), pText(p))
 }
 
 // setExactTest is setTest for a p-value that comes from no statistic.
 func (c *Call) setExactTest(reference, p float64) {
 	c.set("p-value", p)
-	c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", shortest(reference), sided(direction.Of(c)), pText(p))
+	c.sentence += fmt.Sprintf(" Against the reference %s: exact %s%s.", FormatNumber(reference), sided(direction.Of(c)), pText(p))
 }
 
 // sided words which tails a p-value counts.

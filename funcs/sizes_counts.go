@@ -90,7 +90,7 @@ var proportionPrecisionSize = &Function{
 		if err != nil {
 			return err
 		}
-		c.setPrecision(nText(n), "the proportion", shortest(wanted), p.halfWidth(n))
+		c.setPrecision(nText(n), "the proportion", FormatNumber(wanted), p.halfWidth(n))
 		return nil
 	},
 }
@@ -199,7 +199,7 @@ var ratePrecisionSize = &Function{
 		planned := exposure * designEffect.Of(c) / (1 - nonResponse.Of(c))
 		c.set("exposure", exposure)
 		c.set("exposure-planned", planned)
-		c.setPrecision("an exposure of "+brief(exposure), "the rate", shortest(wanted), rate*p.relative(count))
+		c.setPrecision("an exposure of "+brief(exposure), "the rate", FormatNumber(wanted), rate*p.relative(count))
 		if lost := c.losses(); lost != "" {
 			c.sentence += fmt.Sprintf(" Plan %s, for %s.", brief(planned), lost)
 		}

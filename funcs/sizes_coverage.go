@@ -161,7 +161,7 @@ func (c *Call) skewnessAndKurtosis() (g1, g2 float64, err error) {
 	if !ok {
 		g1, g2 = skewnessGiven.Of(c), kurtosisGiven.Of(c)
 		if least := float64(g1*g1) - 2; g2 < least-1e-9 {
-			return 0, 0, c.wrong("excess-kurtosis", shortest(g2), "is less than any distribution of this skewness has", fmt.Sprintf("give at least %s", brief(least)))
+			return 0, 0, c.wrong("excess-kurtosis", FormatNumber(g2), "is less than any distribution of this skewness has", fmt.Sprintf("give at least %s", brief(least)))
 		}
 		return g1, g2, nil
 	}

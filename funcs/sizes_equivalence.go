@@ -38,7 +38,7 @@ func (c *Call) equivalencePlan() (equivalencePlan, error) {
 	c.method = fmt.Sprintf("two one-sided t tests (%s), exact power, sd %s", p.design, c.briefly(p.sd))
 	if !(lower < p.difference && p.difference < upper) {
 		return p, refuse("outside-margins", "difference", "A true difference of %s does not lie between the margins %s and %s, so it must not be found equivalent; give one between them.",
-			shortest(p.difference), shortest(lower), shortest(upper))
+			FormatNumber(p.difference), FormatNumber(lower), FormatNumber(upper))
 	}
 	return p, nil
 }
@@ -54,7 +54,7 @@ func (p equivalencePlan) power(n, m int) float64 {
 }
 
 func (p equivalencePlan) says(c *Call) string {
-	return fmt.Sprintf("equivalence within %s and %s at a true difference of %s", shortest(p.lower), c.withUnit(shortest(p.upper), SameUnit), shortest(p.difference))
+	return fmt.Sprintf("equivalence within %s and %s at a true difference of %s", FormatNumber(p.lower), c.withUnit(FormatNumber(p.upper), SameUnit), FormatNumber(p.difference))
 }
 
 var equivalenceInputs = inputs(expectedSD.as("sd", "the standard deviation expected within each group; of the differences for design paired"),
@@ -99,7 +99,7 @@ var equivalenceSize = &Function{
 		start := normalN(p.significance, 1-beta, above)/float64(effect*effect) + 1
 		if p.design != twoSamples {
 			if ratio != 1 {
-				return c.wrong("allocation-ratio", shortest(ratio), "belongs to design two-samples", "leave it out for design "+p.design)
+				return c.wrong("allocation-ratio", FormatNumber(ratio), "belongs to design two-samples", "leave it out for design "+p.design)
 			}
 			n, err := c.planN(input, largestPlan, start, func(n int) bool { return holds(n, 0) }, func(n int) string { return attains(n, 0) })
 			if err != nil {

@@ -45,7 +45,7 @@ func (p oneSampleTest) size(c *Call, phrase string) error {
 
 // away words a difference to be found, where the phrase leaves its place.
 func (c *Call) away(phrase string, difference float64) string {
-	return fmt.Sprintf(phrase, c.withUnit(shortest(difference), SameUnit))
+	return fmt.Sprintf(phrase, c.withUnit(FormatNumber(difference), SameUnit))
 }
 
 // setPower gives the power that a plan attains, and its sentence.

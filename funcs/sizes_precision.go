@@ -131,7 +131,7 @@ var meanPrecisionSize = &Function{
 		}
 		c.set("chance-met", p.chance(n, wanted))
 		c.method = p.method(c)
-		c.setPrecision(nText(n), "the mean", c.withUnit(shortest(wanted), SameUnit)+purpose, p.halfWidth(n))
+		c.setPrecision(nText(n), "the mean", c.withUnit(FormatNumber(wanted), SameUnit)+purpose, p.halfWidth(n))
 		return nil
 	},
 }

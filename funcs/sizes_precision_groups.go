@@ -98,7 +98,7 @@ var differencePrecisionSize = &Function{
 			return err
 		}
 		c.method = p.method(c)
-		c.setPrecision(bothN(n, m), "the difference (first - second)", c.withUnit(shortest(wanted), SameUnit), p.halfWidth(n, m))
+		c.setPrecision(bothN(n, m), "the difference (first - second)", c.withUnit(FormatNumber(wanted), SameUnit), p.halfWidth(n, m))
 		return nil
 	},
 }

@@ -70,7 +70,7 @@ func (c *Call) shareTest() (shareTest, error) {
 }
 
 func (t shareTest) says() string {
-	return fmt.Sprintf("a true proportion of %s against %s", shortest(t.share), shortest(t.reference))
+	return fmt.Sprintf("a true proportion of %s against %s", FormatNumber(t.share), FormatNumber(t.reference))
 }
 
 var shareTestFindings = []FindingKind{noDifferenceKind, wrongSideKind, bigAlphaKind}
@@ -152,7 +152,7 @@ func (c *Call) sharesPairTest() (sharesPairTest, error) {
 }
 
 func (t sharesPairTest) says() string {
-	return fmt.Sprintf("a difference between true proportions of %s and %s", shortest(t.first), shortest(t.second))
+	return fmt.Sprintf("a difference between true proportions of %s and %s", FormatNumber(t.first), FormatNumber(t.second))
 }
 
 var pairAssumptions = []string{"independent trials with one chance of success in each group", "groups independent of one another"}

@@ -52,7 +52,7 @@ func (p severalMeans) says(c *Call) string {
 	for _, m := range p.means {
 		lowest, highest = math.Min(lowest, m), math.Max(highest, m)
 	}
-	return fmt.Sprintf("a difference among %d true means from %s to %s", len(p.means), shortest(lowest), c.withUnit(shortest(highest), SameUnit))
+	return fmt.Sprintf("a difference among %d true means from %s to %s", len(p.means), FormatNumber(lowest), c.withUnit(FormatNumber(highest), SameUnit))
 }
 
 var (

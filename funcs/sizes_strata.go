@@ -262,7 +262,7 @@ func (c *Call) setStrata(s strata, n []float64) error {
 	}
 	purpose := "a budget of " + brief(budget.Of(c))
 	if wanted, ok := halfWidth.Given(c); ok {
-		purpose = "a half-width of " + shortest(wanted)
+		purpose = "a half-width of " + FormatNumber(wanted)
 	}
 	c.sentence = fmt.Sprintf("Measure %s (%s in all), planned for %s: the half-width of the mean will be about %s at %s confidence, %s, at a cost of %s (%s).%s",
 		someNames(parts), nText(int(total)), purpose, c.sized(attained), percent(confidence.Of(c)), c.inDirection(), brief(s.cost(n)), c.method, c.toPlan())

@@ -66,7 +66,7 @@ func (c *Call) variancePlan() (ratio float64, test bool, err error) {
 }
 
 func ratioAway(ratio float64) string {
-	return fmt.Sprintf("a true variance of %s times the reference", shortest(ratio))
+	return fmt.Sprintf("a true variance of %s times the reference", FormatNumber(ratio))
 }
 
 var varianceSize = &Function{
@@ -117,7 +117,7 @@ var varianceSize = &Function{
 		if test {
 			c.sayPower(nText(n), ratioAway(ratio), attained(n))
 		} else {
-			c.sayPrecision(nText(n), "the sd", shortest(wanted)+" times the sd", c.sized(attained(n))+" times the sd")
+			c.sayPrecision(nText(n), "the sd", FormatNumber(wanted)+" times the sd", c.sized(attained(n))+" times the sd")
 		}
 		return nil
 	},

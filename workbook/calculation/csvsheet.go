@@ -7,6 +7,8 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+
+	"halfwidth/funcs"
 )
 
 // TextSheet is a calculation sheet that is a CSV or TSV file. It keeps the
@@ -296,7 +298,7 @@ func (t *TextSheet) rowChanges(r *textRow, edits []Edit) []TextEdit {
 func (t *TextSheet) valueText(v any) string {
 	switch v := v.(type) {
 	case float64:
-		text := shortest(v)
+		text := funcs.FormatNumber(v)
 		if t.dialect.decimalComma {
 			text = strings.Replace(text, ".", ",", 1)
 		}

@@ -3,6 +3,8 @@ package calculation
 import (
 	"strconv"
 	"strings"
+
+	"halfwidth/funcs"
 )
 
 // Expr is a sample expression: a *List, a *Range or a *Query. String writes it
@@ -125,7 +127,7 @@ func (*Query) expr() {}
 func (l *List) String() string {
 	parts := make([]string, len(l.Items))
 	for i, item := range l.Items {
-		parts[i] = shortest(item.Number)
+		parts[i] = funcs.FormatNumber(item.Number)
 		if item.Cell != nil {
 			parts[i] = item.Cell.String()
 		}
@@ -230,7 +232,7 @@ func (c Condition) String() string {
 func (l Literal) String() string {
 	switch l.Kind {
 	case NumberLiteral:
-		return shortest(l.Number)
+		return funcs.FormatNumber(l.Number)
 	case DateLiteral:
 		return dateText(l.Number, l.Day)
 	case WordLiteral:

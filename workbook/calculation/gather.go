@@ -381,7 +381,7 @@ func (g *gathering) named(name string, c *valueColumn) *series {
 func groupName(c Cell) string {
 	switch c.Kind {
 	case Number, Duration:
-		return shortest(c.Number)
+		return funcs.FormatNumber(c.Number)
 	case Date:
 		return dateText(c.Number, c.Number == math.Trunc(c.Number))
 	case Bool:

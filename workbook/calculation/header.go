@@ -229,7 +229,7 @@ func headerText(c Cell) string {
 	case Text:
 		return c.Text
 	case Number:
-		return shortest(c.Number)
+		return funcs.FormatNumber(c.Number)
 	case Date:
 		return dateText(c.Number, c.Number == float64(int(c.Number)))
 	}

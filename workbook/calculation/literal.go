@@ -5,6 +5,8 @@ import (
 	"strconv"
 	"strings"
 	"time"
+
+	"halfwidth/funcs"
 )
 
 // parseNumber reads a number with `.` as decimal mark, perhaps with a percent
@@ -79,7 +81,7 @@ const secondsPerDay = 86400
 // dateText writes a date, with its time to the second where it has one.
 func dateText(days float64, day bool) string {
 	if math.IsNaN(days) || math.Abs(days) > 4e6 {
-		return shortest(days)
+		return funcs.FormatNumber(days)
 	}
 	seconds := int64(math.Round(days * secondsPerDay))
 	t := time.Unix(dayZero.Unix()+seconds, 0).UTC()
@@ -87,14 +89,6 @@ func dateText(days float64, day bool) string {
 		return t.Format("2006-01-02")
 	}
 	return t.Format("2006-01-02T15:04:05")
-}
-
-// shortest writes x in the shortest form that parses back to the same double.
-func shortest(x float64) string {
-	if a := math.Abs(x); a != 0 && (a < 1e-5 || a >= 1e21) {
-		return strconv.FormatFloat(x, 'e', -1, 64)
-	}
-	return strconv.FormatFloat(x, 'f', -1, 64)
 }
 
 func decimal(n int) string { return strconv.Itoa(n) }

@@ -175,7 +175,7 @@ func (r *RowResult) tabulateGroups(t *TableSheet) {
 
 // groupCell gives a group's name as the number that it is, if it is one.
 func groupCell(name string) any {
-	if x, ok := parseNumber(name); ok && shortest(x) == name {
+	if x, ok := parseNumber(name); ok && funcs.FormatNumber(x) == name {
 		return x
 	}
 	return name

@@ -135,7 +135,7 @@ func cellText(c Cell) string {
 	case Date:
 		return dateText(c.Number, c.Number == math.Trunc(c.Number))
 	case Number:
-		return shortest(c.Number)
+		return funcs.FormatNumber(c.Number)
 	case Duration:
 		return "a duration"
 	}

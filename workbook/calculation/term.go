@@ -115,7 +115,7 @@ func valueOf(in funcs.Input, cell Cell) (any, *fault) {
 		case funcs.Number, funcs.Count, funcs.Level:
 			return cell.Number, nil
 		case funcs.Choice, funcs.Text:
-			return shortest(cell.Number), nil
+			return funcs.FormatNumber(cell.Number), nil
 		case funcs.Numbers:
 			return funcs.List{Values: []float64{cell.Number}}, nil
 		case funcs.Sample:
