@@ -161,6 +161,7 @@ type publishedCell struct {
 type publishedRow struct {
 	Sheet    string       `json:"sheet"`
 	Row      int          `json:"row"`
+	Column   string       `json:"column"` // the first of its block, as blocks may stand side by side
 	Function string       `json:"function,omitempty"`
 	Label    string       `json:"label,omitempty"`
 	Status   string       `json:"status,omitempty"` // absent: there is no calculation in that row any more

@@ -24,6 +24,7 @@ type published struct {
 		}
 		Rows []struct {
 			Row      int
+			Column   string
 			Status   string
 			Findings []struct{ Code, Cell, Message string }
 		}
@@ -194,6 +195,23 @@ func TestTableSheetsArePublishedWhole(t *testing.T) {
 	c.changeSheet("b", "Trips", 0, `[{"at":"B2","rows":[[2]]}]`)
 	if p := c.publication(); len(p.Params.Tables) != 1 || p.Params.Tables[0].Rows[0][1] != 2.5 {
 		t.Errorf("%+v", p.Params)
+	}
+	c.leave()
+}
+
+func TestRowsOfBlocksSideBySideAreToldApart(t *testing.T) {
+	c := begin(t, Options{settle: time.Millisecond})
+	c.initialize()
+	c.openSheet("b", "Calculations", 0, `[{"at":"A1","rows":[["work out","sample","> mean",null,"work out","sample","> mean"],
+		["mean-interval","3; 5; 7; 9; 11",null,null,"mean-interval","3; x"]]}]`)
+	p := c.publication()
+	if rows := p.Params.Rows; len(rows) != 2 || rows[0].Column != "A" || rows[0].Status != "ok" || rows[1].Column != "E" || rows[1].Status != "refused" {
+		t.Errorf("told %+v", rows)
+	}
+	c.changeSheet("b", "Calculations", 0, `[{"at":"E2","rows":[[null,null]]}]`)
+	p = c.publication()
+	if rows := p.Params.Rows; len(rows) != 1 || rows[0].Column != "E" || rows[0].Row != 2 || rows[0].Status != "" {
+		t.Errorf("told %+v", rows)
 	}
 	c.leave()
 }

@@ -63,7 +63,7 @@ func (t *told) fill(p *publication, results *calculation.Results, plan *calculat
 	}
 	for _, at := range slices.SortedFunc(maps.Keys(t.rows), byPlace) {
 		if _, still := now.rows[at]; !still {
-			p.Rows = append(p.Rows, publishedRow{Sheet: at.sheet, Row: at.row, Findings: []rowFinding{}})
+			p.Rows = append(p.Rows, publishedRow{Sheet: at.sheet, Row: at.row, Column: calculation.ColumnLetters(at.block), Findings: []rowFinding{}})
 		}
 	}
 	for _, table := range results.Tables {
@@ -103,7 +103,7 @@ func byPlace(a, b sheetRow) int {
 }
 
 func rowOf(r *calculation.RowResult) publishedRow {
-	row := publishedRow{Sheet: r.Row.Sheet(), Row: r.Row.Number, Label: r.Row.Label, Status: string(r.Status), Findings: []rowFinding{}}
+	row := publishedRow{Sheet: r.Row.Sheet(), Row: r.Row.Number, Column: calculation.ColumnLetters(r.Row.Block.FirstCol), Label: r.Row.Label, Status: string(r.Status), Findings: []rowFinding{}}
 	if r.Row.Function != nil {
 		row.Function = r.Row.Function.Name
 	}
