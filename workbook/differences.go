@@ -1,7 +1,6 @@
 package workbook
 
 import (
-	"math"
 	"slices"
 	"strconv"
 	"strings"
@@ -174,17 +173,23 @@ func (e evidence) reason(w wanted, stored any) Reason {
 }
 
 // fewerDigits reports whether a stored number is that worked out, rounded or cut
-// to 15 digits or more: one unit of the fifteenth is at most 1e-14 of the number.
+// to 15 or 16 digits.
 func fewerDigits(stored, now any) bool {
 	x, ok := stored.(float64)
 	y, is := now.(float64)
-	return ok && is && math.Abs(x-y) <= 1e-14*math.Abs(y) && len(strings.TrimLeft(digits(x), "0")) <= 16
-}
-
-// digits gives the digits of the shortest decimal that reads back as the number.
-func digits(x float64) string {
-	mantissa, _, _ := strings.Cut(strconv.FormatFloat(math.Abs(x), 'e', -1, 64), "e")
-	return strings.Replace(mantissa, ".", "", 1)
+	if !ok || !is {
+		return false
+	}
+	mantissa, exponent, _ := strings.Cut(strconv.FormatFloat(y, 'e', 16, 64), "e") // 17 digits
+	for _, digits := range []int{15, 16} {
+		cut := mantissa[:len(mantissa)-(17-digits)] + "e" + exponent
+		for _, text := range []string{strconv.FormatFloat(y, 'e', digits-1, 64), cut} {
+			if near, err := strconv.ParseFloat(text, 64); err == nil && near == x {
+				return true
+			}
+		}
+	}
+	return false
 }
 
 // pinned reports whether the fingerprint settles a result to the last digit.
