@@ -119,8 +119,10 @@ func FuzzChanges(f *testing.F) {
 	f.Add("work out,> mean\r\nmean-interval,\r\n", false, 1, 3, 1, 5, "😀\r", 0, 0, 2, 0, "\n")
 	f.Add("a\rb\nc", true, 0, 1, 1, 0, "\n", 0, 0, 9, 9, "")
 	f.Fuzz(func(t *testing.T, text string, utf8 bool, l1, c1, l2, c2 int, new1 string, l3, c3, l4, c4 int, new2 string) {
-		if strings.ToValidUTF8(text+new1+new2, "") != text+new1+new2 {
-			return // messages are valid UTF-8
+		for _, s := range []string{text, new1, new2} {
+			if strings.ToValidUTF8(s, "") != s {
+				return // messages are valid UTF-8
+			}
 		}
 		for _, n := range []int{l1, l2, l3, l4, c1, c2, c3, c4} {
 			if n < 0 || n > 1<<31-1 {
