@@ -10,88 +10,6 @@ import (
 	"unicode/utf8"
 )
 
-// dialect is how a text file separates its cells.
-type dialect struct {
-	separator    byte
-	decimalComma bool
-}
-
-var byteOrderMark = []byte("\xef\xbb\xbf")
-
-// findDialect finds the separator from the header line: the first line that has
-// one of comma, semicolon and tab outside quotes; a line with `work out` in a
-// calculation sheet goes before others. Of several, the most frequent is it.
-// A .tsv file has tabs. Where numbers have a decimal comma, a comma between digits
-// separates nothing.
-func findDialect(name string, head []byte, decimalComma bool) dialect {
-	if strings.HasSuffix(strings.ToLower(name), ".tsv") {
-		return dialect{'\t', decimalComma}
-	}
-	head = bytes.TrimPrefix(head, byteOrderMark)
-	best := byte(0)
-	for _, line := range splitLines(head) {
-		sep := commonest(line, decimalComma)
-		if sep == 0 {
-			continue
-		}
-		if best == 0 {
-			best = sep
-		}
-		if bytes.Contains(bytes.ToLower(line), []byte("work out")) {
-			return dialect{sep, decimalComma}
-		}
-	}
-	switch {
-	case best != 0:
-	case decimalComma:
-		best = ';'
-	default:
-		best = ','
-	}
-	return dialect{best, decimalComma}
-}
-
-// splitLines splits into lines, a break inside quotes not counting.
-func splitLines(data []byte) [][]byte {
-	var lines [][]byte
-	start, quoted := 0, false
-	for i, c := range data {
-		switch {
-		case c == '"':
-			quoted = !quoted
-		case (c == '\n' || c == '\r') && !quoted:
-			lines = append(lines, data[start:i])
-			start = i + 1
-		}
-	}
-	return append(lines, data[start:])
-}
-
-// commonest gives the separator that stands most often outside quotes, 0 where
-// none does.
-func commonest(line []byte, decimalComma bool) byte {
-	isDigit := func(i int) bool { return i >= 0 && i < len(line) && '0' <= line[i] && line[i] <= '9' }
-
-	var count [256]int
-	quoted := false
-	for i, c := range line {
-		switch {
-		case c == '"':
-			quoted = !quoted
-		case quoted, decimalComma && c == ',' && isDigit(i-1) && isDigit(i+1):
-		default:
-			count[c]++
-		}
-	}
-	best := byte(0)
-	for _, sep := range []byte{'\t', ';', ','} {
-		if count[sep] > 0 && (best == 0 || count[sep] > count[best]) {
-			best = sep
-		}
-	}
-	return best
-}
-
 // CSVError says what is wrong with a text file, and where.
 type CSVError struct {
 	Line   int // from 1
@@ -108,6 +26,8 @@ type csvField struct {
 	text   []byte
 	quoted bool
 }
+
+var byteOrderMark = []byte("\xef\xbb\xbf")
 
 // csvScanner reads a text file record by record, in one pass.
 type csvScanner struct {
