@@ -327,7 +327,7 @@ const longestSaid = 60
 func quoted(text string) string {
 	if len(text) > longestSaid {
 		cut := longestSaid
-		for !utf8.RuneStart(text[cut]) {
+		for cut > longestSaid-utf8.UTFMax && !utf8.RuneStart(text[cut]) {
 			cut--
 		}
 		text = text[:cut] + "…"

@@ -114,7 +114,8 @@ func TestClearingEmptiesWhatStandsAndWhatCameBefore(t *testing.T) {
 // the greatest sheet.
 func FuzzCells(f *testing.F) {
 	for _, seed := range []string{`[{"at":"A1","rows":[[1,"a",null,true,{"date":"2026-03-02"}]]}]`, `[{"at":"B2","column":{"float64le":"AAAAAAAA8D8="}}]`,
-		`[{"clear":"A1:B2"}]`, `[{"at":"A1","rows":[[1],{}]}]`, `[{}]`, `[{"at":"A1048576","column":[1,2]}]`, `{"at":1}`} {
+		`[{"clear":"A1:B2"}]`, `[{"at":"A1","rows":[[1],{}]}]`, `[{}]`, `[{"at":"A1048576","column":[1,2]}]`, `{"at":1}`,
+		`[{"` + strings.Repeat("\x88", 100) + `":1}]`} {
 		f.Add(seed)
 	}
 	f.Fuzz(func(t *testing.T, text string) {
