@@ -59,6 +59,10 @@ func hostileParts() []hostile {
 		{name: "a million defined names", parts: workbook(`<definedNames>` + many(million, `<definedName name="n%d">Trips!$B$2:$B$7</definedName>`) + `</definedNames>`), refused: "defined names"},
 		{name: "as many defined names as may be, and formulas", parts: workbook(`<definedNames>`+many(100_000, `<definedName name="n%d">Trips!$B$2:$B$7</definedName>`)+`</definedNames>`).
 			with(tripsPart, worksheetA+`<sheetData>`+tripRows+many(50_000, `<row><c><f>n%d+n1</f><v>1</v></c></row>`)+`</sheetData></worksheet>`)},
+		{name: "a question to each of many defined names", parts: workbook(`<definedNames>`+many(150_000, `<definedName name="n%d">Trips!$A$1:$B$7</definedName>`)+`</definedNames>`).
+			with(questionPart, strings.Replace(question("minutes in n0"), "</sheetData>", many(3000, `<row><c t="inlineStr"><is><t>mean-interval</t></is></c><c t="inlineStr"><is><t>minutes in n%d</t></is></c></row>`)+"</sheetData>", 1))},
+		{name: "questions to none of many defined names", parts: workbook(`<definedNames>`+many(150_000, `<definedName name="n%d">Trips!$A$1:$B$7</definedName>`)+`</definedNames>`).
+			with(questionPart, strings.Replace(question("minutes in n0"), "</sheetData>", many(3000, `<row><c t="inlineStr"><is><t>mean-interval</t></is></c><c t="inlineStr"><is><t>minutes in m%d</t></is></c></row>`)+"</sheetData>", 1))},
 		{name: "a defined name of a megabyte", parts: workbook(`<definedNames><definedName name="` + strings.Repeat("n", 1<<20) + `">Trips!` + strings.Repeat("$B$2,", 1<<20) + `</definedName></definedNames>`)},
 		{name: "thousands of sheets", parts: sheets(9000)},
 		{name: "workbook part nested deep", parts: workbook(nested(100_000)), refused: "nested deeper than 256"},

@@ -40,7 +40,11 @@ type shelf struct {
 	source Source
 	places []Place
 	sheets map[string]*sheet
-	err    error // why the file cannot be read
+
+	folded  map[string][]Place // by folded name, made when the first is looked up
+	offered []string           // names to offer for unknown ones, made when one is met
+	unknown int                // how many of them there were
+	err     error              // why the file cannot be read
 }
 
 // sheet is one sheet of a shelf. Expressions say by want what they need of it;
@@ -164,8 +168,15 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 	case ref.File == "" && fileEnd(name) == len(name):
 		return lib.locate(&PlaceRef{File: name, HeaderRow: ref.HeaderRow, Span: ref.Span})
 	}
-	f = unknownPlace(ref.Span, fmt.Sprintf("There is no sheet, table or defined name %s%s", quote(name), inFile(ref.File)), suggest(name, sh.names()))
-	for _, near := range funcs.Closest(name, sh.names()) {
+	if sh.offered == nil {
+		sh.offered = sh.names()
+		sh.offered = sh.offered[:min(len(sh.offered), mostOffered)]
+	}
+	if sh.unknown++; sh.unknown > mostUnknown {
+		sh.offered = sh.offered[:min(len(sh.offered), mostNamed)]
+	}
+	f = unknownPlace(ref.Span, fmt.Sprintf("There is no sheet, table or defined name %s%s", quote(name), inFile(ref.File)), suggest(name, sh.offered))
+	for _, near := range funcs.Closest(name, sh.offered) {
 		f.instead = append(f.instead, (&PlaceRef{File: ref.File, Name: near}).String())
 	}
 	return located{}, f
@@ -176,7 +187,12 @@ func (lib *library) locate(ref *PlaceRef) (located, *fault) {
 // other sheets, as spreadsheet programs have it. One that stands for no range is
 // found where nothing else is.
 func (s *shelf) called(name, from string) []Place {
-	var found []Place
+	if s.folded == nil {
+		s.folded = make(map[string][]Place, len(s.places))
+		for _, p := range s.places {
+			s.folded[fold(p.Name)] = append(s.folded[fold(p.Name)], p)
+		}
+	}
 	rank := func(p Place) int {
 		switch p.Only {
 		case from:
@@ -187,12 +203,10 @@ func (s *shelf) called(name, from string) []Place {
 		return 0
 	}
 	best := 0
-	for _, p := range s.places {
-		if fold(p.Name) == fold(name) {
-			found = append(found, p)
-			if p.Kind == DefinedName {
-				best = max(best, rank(p))
-			}
+	found := slices.Clone(s.folded[fold(name)])
+	for _, p := range found {
+		if p.Kind == DefinedName {
+			best = max(best, rank(p))
 		}
 	}
 	found = slices.DeleteFunc(found, func(p Place) bool { return p.Kind == DefinedName && rank(p) < best })
@@ -204,6 +218,15 @@ func (s *shelf) called(name, from string) []Place {
 
 // empty tells whether nothing can be found in a place.
 func (p Place) empty() bool { return p.NoRange != "" || p.Kind == OtherSheet }
+
+// An unknown name is compared with mostOffered others, from the second hundred of
+// unknown ones on with a few: whatever takes so many is no slip of the pen, and
+// the comparison of thousands with thousands takes long.
+const (
+	mostOffered = 500
+	mostUnknown = 100
+	mostNamed   = 8
+)
 
 func firstOr(list []string, otherwise string) string {
 	if len(list) > 0 {
