@@ -51,7 +51,7 @@ func TestTheFunctionOfTheGuideWorks(t *testing.T) {
 	if shown, here := literal("../DEVELOPERS.md"), literal("guide_test.go"); shown != here {
 		t.Errorf("DEVELOPERS.md shows\n%s\nand here stands\n%s", shown, here)
 	}
-	if err := sampleRange.Validate(); err != nil {
+	if err := sampleRange.validate(); err != nil {
 		t.Fatal(err)
 	}
 	out, err := sampleRange.Answer(t.Context(), sampleRange.Example.arguments())

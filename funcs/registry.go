@@ -1,11 +1,6 @@
 package funcs
 
-import (
-	"fmt"
-	"regexp"
-	"slices"
-	"strings"
-)
+import "slices"
 
 // Family is a named part of the catalogue.
 type Family struct {
@@ -65,58 +60,4 @@ func Lookup(name string) (*Function, error) {
 		return f, nil
 	}
 	return nil, &UnknownError{What: "function", Name: name, Closest: Closest(name, Names())}
-}
-
-var hyphenated = regexp.MustCompile(`^[a-z][a-z0-9]*(-[a-z0-9]+)*$`)
-
-// Validate reports what is wrong with a descriptor: names, alternatives,
-// defaults and citations that do not hold together. Tests call it for all.
-func (f *Function) Validate() error {
-	var faults []string
-	fault := func(format string, a ...any) { faults = append(faults, fmt.Sprintf(format, a...)) }
-	seen := map[string]bool{}
-	for _, in := range f.Inputs {
-		if !hyphenated.MatchString(in.Name) || seen[in.Name] {
-			fault("input name %q is not a hyphenated name of its own", in.Name)
-		}
-		seen[in.Name] = true
-		if in.Summary == "" {
-			fault("input %s has no summary", in.Name)
-		}
-		if in.Kind == Choice && !slices.Contains(in.Choices, fmt.Sprint(in.Default)) {
-			fault("input %s: its default is none of its choices", in.Name)
-		}
-	}
-	for _, one := range f.OneOf {
-		for _, way := range one {
-			for _, n := range slices.Concat(way.Needs, way.May) {
-				if _, ok := f.Input(n); !ok {
-					fault("alternative names %q, which is no input", n)
-				}
-			}
-		}
-	}
-	given := map[string]bool{}
-	for _, r := range slices.Concat(f.Results, CommonResults) {
-		if !hyphenated.MatchString(r.Name) || given[r.Name] {
-			fault("result name %q is not a hyphenated name of its own", r.Name)
-		}
-		given[r.Name] = true
-		if r.Summary == "" {
-			fault("result %s has no summary", r.Name)
-		}
-	}
-	for name, missing := range map[string]bool{
-		"name": !hyphenated.MatchString(f.Name), "summary": f.Summary == "", "citation": len(f.Citations) == 0, "version": f.Version < 1,
-		"results": len(f.Results)+len(f.Table) == 0, "example": len(f.Example.Arguments) == 0, "computation": f.compute == nil,
-	} {
-		if missing {
-			fault("no %s", name)
-		}
-	}
-	if faults != nil {
-		slices.Sort(faults)
-		return fmt.Errorf("%s: %s", f.Name, strings.Join(faults, "; "))
-	}
-	return nil
 }
