@@ -118,7 +118,7 @@ func (b *bench) growth(page *strings.Builder) error {
 	}{
 		{"rows of a data sheet", 10, []int{1_000, 10_000, 100_000, 1_000_000}, func(n int) ([]string, error) {
 			path := b.file(".xlsx")
-			return []string{path}, book(path, layout{rows: n, columns: 5, questions: 10})
+			return []string{path}, b.book(path, layout{rows: n, columns: 5, questions: 10})
 		}},
 		{"rows of a data file (csv)", 10, []int{1_000, 10_000, 100_000, 1_000_000}, func(n int) ([]string, error) {
 			path := b.file(".calculations.csv")
@@ -126,7 +126,7 @@ func (b *bench) growth(page *strings.Builder) error {
 		}},
 		{"questions", 1, []int{10, 100, 1_000, 10_000}, func(n int) ([]string, error) {
 			path := b.file(".xlsx")
-			return []string{path}, book(path, layout{rows: 1_000, columns: 5, questions: n})
+			return []string{path}, b.book(path, layout{rows: 1_000, columns: 5, questions: n})
 		}},
 		{"files", 1, []int{10, 30, 100, 300}, func(n int) ([]string, error) {
 			dir := b.file("")
@@ -134,7 +134,7 @@ func (b *bench) growth(page *strings.Builder) error {
 				return nil, err
 			}
 			for i := range n {
-				if err := book(filepath.Join(dir, fmt.Sprintf("book-%03d.xlsx", i)), layout{rows: 200, columns: 5, questions: 10}); err != nil {
+				if err := b.book(filepath.Join(dir, fmt.Sprintf("book-%03d.xlsx", i)), layout{rows: 200, columns: 5, questions: 10}); err != nil {
 					return nil, err
 				}
 			}

@@ -24,6 +24,8 @@ const roleVariable = "HALFWIDTH_BENCH_ROLE"
 
 func play(role string, args []string) error {
 	switch role {
+	case "book":
+		return makeBook(args)
 	case "inflate", "inflate quickly":
 		return inflateSheet(args[0], role == "inflate quickly")
 	case "excelize":
