@@ -160,7 +160,11 @@ func (c *Call) skewnessAndKurtosis() (g1, g2 float64, err error) {
 	values, ok := sample.Given(c)
 	if !ok {
 		g1, g2 = skewnessGiven.Of(c), kurtosisGiven.Of(c)
-		if least := float64(g1*g1) - 2; g2 < least-1e-9 {
+		least := float64(g1*g1) - 2
+		switch {
+		case math.IsInf(least, 1):
+			return 0, 0, c.wrong("skewness", FormatNumber(g1), "is beyond any n that could be measured", "give one whose square a double holds")
+		case g2 < least-1e-9:
 			return 0, 0, c.wrong("excess-kurtosis", FormatNumber(g2), "is less than any distribution of this skewness has", fmt.Sprintf("give at least %s", brief(least)))
 		}
 		return g1, g2, nil

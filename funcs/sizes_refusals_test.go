@@ -227,6 +227,7 @@ func TestWrongArgumentsOfPlansAreNamed(t *testing.T) {
 		{"equivalence-size", map[string]any{"sd": 1.0, "lower-margin": 1.0, "upper-margin": -1.0}, "upper-margin"},
 		{"equivalence-size", map[string]any{"sd": 1.0, "margin": 1.0, "design": "paired", "allocation-ratio": 2.0}, "allocation-ratio"},
 		{"enough-n-for-mean", map[string]any{"skewness": 2.0, "excess-kurtosis": 1.0}, "excess-kurtosis"},
+		{"enough-n-for-mean", map[string]any{"skewness": 1e200, "excess-kurtosis": 3.0}, "skewness"},
 		{"enough-n-for-mean", map[string]any{"skewness": 2.0}, "excess-kurtosis"},
 	} {
 		_, err := Answer(context.Background(), c.function, c.arguments)
