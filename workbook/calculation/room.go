@@ -42,7 +42,7 @@ func fromSpare[T any](r *rooms, spare *[][]T, n int) []T {
 }
 
 // Shorter spare lists, and more of them, are not worth keeping.
-const leastSpare, mostSpare = 4096, 32
+const leastSpare, mostSpare = 512, 32
 
 // takeBack takes the memory of a reading that nobody reads any more.
 func (r *rooms) takeBack(read *reading) {

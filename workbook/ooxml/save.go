@@ -12,7 +12,6 @@ import (
 	"strings"
 	"time"
 
-	"github.com/klauspost/compress/flate"
 )
 
 // Changes is what a save is to change.
@@ -95,16 +94,10 @@ func (b *Book) prepare(changes Changes) (*job, error) {
 	return j, nil
 }
 
-// compression is the deflate level of changed parts: five times as fast as the
-// standard library's level 6, for a twelfth more bytes.
-const compression = 6
-
-// largeCompression is that of parts from largePart bytes on: twice as fast again,
-// for an eighth more bytes.
-const (
-	largeCompression = 2
-	largePart        = 64 << 20
-)
+// compression is the deflate level of changed parts: ten times as fast as the
+// standard library's level 6, for an eighth more bytes, and with tables so small
+// that a short part does not pay for them.
+const compression = 1
 
 // firstDay is the first day that a zip file can name. New parts bear it, so that
 // the same save gives the same bytes.
@@ -118,13 +111,7 @@ func (b *Book) write(w io.Writer, j *job) error {
 		return err
 	}
 	out := zip.NewWriter(w)
-	large := false
-	out.RegisterCompressor(zip.Deflate, func(w io.Writer) (io.WriteCloser, error) {
-		if large {
-			return flate.NewWriter(w, largeCompression)
-		}
-		return newDeflater(w)
-	})
+	out.RegisterCompressor(zip.Deflate, newDeflater)
 	if err := out.SetComment(b.zip.Comment); err != nil {
 		return err
 	}
@@ -143,7 +130,6 @@ func (b *Book) write(w io.Writer, j *job) error {
 		// A zero Modified keeps the entry's time as its other fields have it,
 		// where a time set anew would add one more extra field.
 		header.Modified = time.Time{}
-		large = f.UncompressedSize64 >= largePart
 		part, err := out.CreateHeader(&header)
 		if err != nil {
 			return err
@@ -155,7 +141,6 @@ func (b *Book) write(w io.Writer, j *job) error {
 		seal.add(f.Name, sum.crc, sum.length)
 		seal.headers = append(seal.headers, &header)
 	}
-	large = false
 	for _, p := range j.add {
 		header := zip.FileHeader{Name: p.name, Method: zip.Deflate, Modified: firstDay}
 		part, err := out.CreateHeader(&header)

@@ -7,7 +7,7 @@ import (
 
 // fewFrom is the length from which a list is looked through instead of copied
 // and rearranged.
-const fewFrom = 4096
+const fewFrom = 1024
 
 // sampleOf takes every so many-th value, some n^(2/3) of them, sorted.
 func sampleOf(v []float64, of func(float64) float64) []float64 {
