@@ -11,7 +11,6 @@ import (
 	"slices"
 	"strings"
 	"time"
-
 )
 
 // Changes is what a save is to change.
