@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"runtime"
 	"sync"
+	"sync/atomic"
 
 	"halfwidth/funcs/internal/num"
 )
@@ -77,10 +78,13 @@ func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *
 	})
 }
 
+// sharing is how many goroutines are at work for share, of all calls together.
+var sharing atomic.Int32
+
 // share calls work for each item from 0 to n-1; a goroutine, which newWorker gives
-// its work, takes a chunk of them at a time. No more goroutines run than there are cores: a
-// program that allows more threads, to stay quick at other things meanwhile, keeps
-// the others free.
+// its work, takes a chunk of them at a time. A call has one goroutine, and more while
+// all calls together have no more than there are cores: threads beyond that
+// would only keep each other, and what should be answered at once, waiting.
 func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) error {
 	var next struct {
 		sync.Mutex
@@ -94,9 +98,16 @@ func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) erro
 		next.at = min(n, from+chunk)
 		return from, next.at
 	}
+	cores := int32(min(runtime.GOMAXPROCS(0), runtime.NumCPU()))
 	var all sync.WaitGroup
-	for range min(runtime.GOMAXPROCS(0), runtime.NumCPU(), (n+chunk-1)/chunk) {
+	for i := range (n + chunk - 1) / chunk {
+		first := i == 0
+		if now := sharing.Add(1); now > cores && !first {
+			sharing.Add(-1)
+			break
+		}
 		all.Go(func() {
+			defer sharing.Add(-1)
 			defer func() {
 				if p := recover(); p != nil {
 					next.Lock()
@@ -108,6 +119,9 @@ func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) erro
 			for from, to := take(); from < to && ctx.Err() == nil; from, to = take() {
 				for i := from; i < to && ctx.Err() == nil; i++ {
 					work(i)
+				}
+				if !first && sharing.Load() > cores {
+					return
 				}
 			}
 		})
