@@ -19,16 +19,17 @@
 // the same descriptors.
 //
 // The documents of an editor (textdoc.go) are kept as immutable states, one for
-// each version (textdoc_state.go); textdoc_live.go has the newest worked out and
-// publishes what textdoc_findings.go makes of it. completion.go, hover.go,
-// signature.go, actions.go, hints.go and symbols.go answer from the state that
-// was the newest when the question came.
+// each version (textdoc_state.go); textdoc_live.go has the newest worked out
+// (newest.go) and publishes what textdoc_findings.go makes of it. completion.go,
+// hover.go, signature.go, actions.go, hints.go and symbols.go answer from the
+// state that was the newest when the question came.
 //
 // Open sheets (sheets.go, cells.go) are frames that never change; a change makes
-// new ones, which share what stayed. A liveBook (publish.go) works out the newest
-// state of a book, keeping the outcomes of rows that read nothing changed, and
-// told.go finds what is new to the client. Files are filled by workbooks_fill.go.
-// PROTOCOL.md describes all of it from outside, openrpc.json for programs.
+// new ones, which share what stayed. A liveBook (publish.go) has the newest state
+// of a book worked out, keeping the outcomes of rows that read nothing changed,
+// and told.go finds what is new to the client. Files are filled by
+// workbooks_fill.go. PROTOCOL.md describes all of it from outside, openrpc.json
+// for programs.
 //
 // A message passes, in this order: frames.go (bytes to bodies), envelope.go (a
 // body to its members), transport.go (a reply of the client's to the library, or an

@@ -5,87 +5,56 @@ import (
 	"fmt"
 	"runtime/debug"
 	"slices"
-	"sync"
 	"time"
 
 	"halfwidth/workbook/calculation"
 )
 
-// settle is how long a book must stay as it is before it is worked out, so that
-// a burst of changes is worked out once.
-const settle = 15 * time.Millisecond
-
 // liveBook works out a book whose sheets are open, and tells the client what a
-// change altered. It works on the newest state alone: a change stops what is
-// under way for an older one.
+// change altered.
 type liveBook struct {
 	session *Session
 	name    string
 	held    *bookState // the newest; of the goroutine that reads messages
+	newest  newest[*bookState]
 
-	mu      sync.Mutex
-	state   *bookState // the newest to be worked out; nil: none
-	running bool
-	stop    context.CancelFunc // of what is under way
-
-	// Of the run that goes on, one at a time:
+	// Of the work that goes on:
 	results *calculation.Results // of what was published last
 	told    told
 }
 
 func newLiveBook(s *Session, name string) *liveBook {
-	return &liveBook{session: s, name: name, told: newTold()}
+	b := &liveBook{session: s, name: name, told: newTold()}
+	b.newest.settle, b.newest.work = s.options.settle, b.work
+	b.newest.begin = func(run func(context.Context)) { s.Go(publishMethod, run) }
+	return b
 }
 
 // changed makes a state the newest. One of which a sheet is lost, or without
 // sheets, is not worked out.
 func (b *liveBook) changed(state *bookState) {
-	b.mu.Lock()
-	defer b.mu.Unlock()
+	b.held = state
 	if len(state.sheets) == 0 || slices.ContainsFunc(state.sheets, func(s *heldSheet) bool { return s.lost != nil }) {
-		state = nil
+		b.newest.drop()
+		return
 	}
-	b.state = state
-	if b.stop != nil {
-		b.stop()
-	}
-	if state != nil && !b.running {
-		b.running = true
-		b.session.Go("sheets/publishResults", b.run)
-	}
+	b.newest.changed(state)
 }
 
-// run works out states until the newest has been published.
-func (b *liveBook) run(ctx context.Context) {
-	for {
-		b.mu.Lock()
-		state := b.state
-		if state == nil || ctx.Err() != nil {
-			b.running, b.stop = false, nil
-			b.mu.Unlock()
-			return
+// work works a state out and gives what publishes it.
+func (b *liveBook) work(ctx context.Context, state *bookState) (send func()) {
+	start := time.Now()
+	results, plan, err := b.workOut(ctx, state)
+	return func() {
+		switch {
+		case err != nil:
+			b.session.remarks.say("the book %s cannot be worked out: %v", quoted(b.name), err)
+			b.session.LogMessage(LogError, fmt.Sprintf("The book %s cannot be worked out: %v", quoted(b.name), err))
+		case results != nil:
+			b.publish(state, results, plan)
+			b.session.logTrace(fmt.Sprintf("%s of %s published after %v", publishMethod, quoted(b.name), time.Since(start).Round(time.Microsecond)),
+				func() string { return workedAnew(results) })
 		}
-		newest, stop := context.WithCancel(ctx)
-		b.stop = stop
-		b.mu.Unlock()
-
-		start := time.Now()
-		results, plan, err := b.workOut(newest, state)
-		b.mu.Lock()
-		if b.state == state { // else a newer one has come
-			b.state = nil
-			switch {
-			case err == nil && results != nil:
-				b.publish(state, results, plan)
-				b.session.logTrace(fmt.Sprintf("%s of %s published after %v", publishMethod, quoted(b.name), time.Since(start).Round(time.Microsecond)),
-					func() string { return workedAnew(results) })
-			case err != nil && ctx.Err() == nil:
-				b.session.remarks.say("the book %s cannot be worked out: %v", quoted(b.name), err)
-				b.session.LogMessage(LogError, fmt.Sprintf("The book %s cannot be worked out: %v", quoted(b.name), err))
-			}
-		}
-		b.mu.Unlock()
-		stop()
 	}
 }
 
@@ -100,8 +69,8 @@ func workedAnew(r *calculation.Results) string {
 	return fmt.Sprintf("%d of %d rows worked out anew", anew, len(r.Rows))
 }
 
-// workOut works a state out once it has settled. The results are nil where
-// there is nothing to tell.
+// workOut works a state out. The results are nil where there is nothing to
+// tell.
 func (b *liveBook) workOut(ctx context.Context, state *bookState) (results *calculation.Results, plan *calculation.Plan, err error) {
 	defer func() {
 		if fault := recover(); fault != nil {
@@ -109,13 +78,6 @@ func (b *liveBook) workOut(ctx context.Context, state *bookState) (results *calc
 			err = fmt.Errorf("%s", internalFault)
 		}
 	}()
-	timer := time.NewTimer(b.session.options.settle)
-	defer timer.Stop()
-	select {
-	case <-ctx.Done():
-		return nil, nil, ctx.Err()
-	case <-timer.C:
-	}
 	source, fault := state.source()
 	if fault != nil {
 		return nil, nil, fault
@@ -128,8 +90,7 @@ func (b *liveBook) workOut(ctx context.Context, state *bookState) (results *calc
 	return results, plan, err
 }
 
-// publish tells the client what the results of a state altered. It is called
-// with the lock held, so that no later state has come.
+// publish tells the client what the results of a state altered.
 func (b *liveBook) publish(state *bookState, results *calculation.Results, plan *calculation.Plan) {
 	p := publication{Book: b.name, Versions: map[string]int{}}
 	for _, s := range state.sheets {

@@ -109,6 +109,26 @@ func TestABurstOfChangesIsWorkedOutOnceForTheNewest(t *testing.T) {
 	c.leave()
 }
 
+// With an hour for a pause, no change ever comes after one.
+func TestABookThatNeverPausesIsPublished(t *testing.T) {
+	c := begin(t, Options{settle: time.Hour})
+	c.initialize()
+	c.openSheet("b", "Trips", 0, `[{"at":"A1","column":["minutes",0,10]}]`)
+	c.openSheet("b", "Calculations", 0, oneCalculation)
+	for version := range 3 {
+		p := c.publication()
+		for p.Params.Versions["Trips"] < version || len(p.Params.Versions) < 2 { // on a slow machine both sheets may not be open at first
+			p = c.publication()
+		}
+		if want := fmt.Sprintf("Calculations!C2=%v", (float64(version)+10)/2); p.cells() != want {
+			t.Errorf("version %d: %s, want %s", version, p.cells(), want)
+		}
+		c.changeSheet("b", "Trips", version, fmt.Sprintf(`[{"at":"A2","rows":[[%d]]}]`, version+1))
+	}
+	c.publication()
+	c.leave()
+}
+
 func TestANewerChangeStopsTheWorkOnAnOlder(t *testing.T) {
 	c := begin(t, Options{})
 	c.initialize()

@@ -201,7 +201,6 @@ func (s *Session) hold(state *bookState) {
 		live = newLiveBook(s, state.name)
 		s.live[state.name] = live
 	}
-	live.held = state
 	if len(state.sheets) == 0 {
 		delete(open, state.name)
 		delete(s.live, state.name)

@@ -4,29 +4,24 @@ import (
 	"context"
 	"fmt"
 	"runtime/debug"
-	"sync"
 	"sync/atomic"
-	"time"
 )
 
-// liveText works out an open document and publishes its diagnostics. It works
-// on the newest version alone: a change stops what is under way for an older
-// one, and nothing of an older one is sent any more.
+// liveText works out an open document and publishes its diagnostics.
 type liveText struct {
 	session *Session
 	desk    *textDesk
 	held    *textState // the newest; of the goroutine that reads messages
+	newest  newest[*textState]
 	last    atomic.Pointer[workedText]
-
-	mu      sync.Mutex
-	uri     string
-	state   *textState // the newest to be worked out; nil: none
-	running bool
-	closed  bool
-	stop    context.CancelFunc // of what is under way
 }
 
-func newLiveText(s *Session, d *textDesk) *liveText { return &liveText{session: s, desk: d} }
+func newLiveText(s *Session, d *textDesk) *liveText {
+	l := &liveText{session: s, desk: d}
+	l.newest.settle, l.newest.work = s.options.settle, l.work
+	l.newest.begin = func(run func(context.Context)) { s.Go(diagnosticsMethod, run) }
+	return l
+}
 
 // changed makes a state the newest, and has it worked out.
 func (l *liveText) changed(state *textState) {
@@ -34,63 +29,31 @@ func (l *liveText) changed(state *textState) {
 		state.busy, state.last = make(chan struct{}, 1), &l.last
 	}
 	l.held = state
-	l.mu.Lock()
-	defer l.mu.Unlock()
-	l.state, l.uri = state, state.uri
-	if l.stop != nil {
-		l.stop()
-	}
-	if !l.running {
-		l.running = true
-		l.session.Go("textDocument/publishDiagnostics", l.run)
-	}
+	l.newest.changed(state)
 }
 
 // close ends the work, and clears what was published.
 func (l *liveText) close(clear bool) {
-	l.mu.Lock()
-	defer l.mu.Unlock()
-	l.state, l.closed = nil, true
-	if l.stop != nil {
-		l.stop()
-	}
+	l.newest.drop()
 	if clear {
-		l.session.notifyOpen(diagnosticsMethod, publishedDiagnostics{URI: l.uri, Diagnostics: []diagnostic{}})
+		l.session.notifyOpen(diagnosticsMethod, publishedDiagnostics{URI: l.held.uri, Diagnostics: []diagnostic{}})
 	}
 }
 
 const diagnosticsMethod = "textDocument/publishDiagnostics"
 
-// run works out states until the newest has been published.
-func (l *liveText) run(ctx context.Context) {
-	for {
-		l.mu.Lock()
-		state := l.state
-		if state == nil || ctx.Err() != nil {
-			l.running, l.stop = false, nil
-			l.mu.Unlock()
-			return
+// work works a state out and gives what publishes its diagnostics.
+func (l *liveText) work(ctx context.Context, state *textState) (send func()) {
+	list, err := l.diagnose(ctx, state)
+	return func() {
+		if err == nil {
+			l.session.notifyOpen(diagnosticsMethod, publishedDiagnostics{URI: state.uri, Version: &state.version, Diagnostics: list})
+			l.refresh()
 		}
-		newest, stop := context.WithCancel(ctx)
-		l.stop = stop
-		l.mu.Unlock()
-
-		list, err := l.diagnose(newest, state)
-		l.mu.Lock()
-		if l.state == state && newest.Err() == nil { // else a newer one has come
-			l.state = nil
-			if err == nil {
-				version := state.version
-				l.session.notifyOpen(diagnosticsMethod, publishedDiagnostics{URI: state.uri, Version: &version, Diagnostics: list})
-				l.refresh()
-			}
-		}
-		l.mu.Unlock()
-		stop()
 	}
 }
 
-// diagnose works a state out once it has settled.
+// diagnose works a state out.
 func (l *liveText) diagnose(ctx context.Context, state *textState) (list []diagnostic, err error) {
 	defer func() {
 		if fault := recover(); fault != nil {
@@ -98,13 +61,6 @@ func (l *liveText) diagnose(ctx context.Context, state *textState) (list []diagn
 			err = fmt.Errorf("%s", internalFault)
 		}
 	}()
-	timer := time.NewTimer(l.session.options.settle)
-	defer timer.Stop()
-	select {
-	case <-ctx.Done():
-		return nil, ctx.Err()
-	case <-timer.C:
-	}
 	worked, err := state.workOut(ctx, l.session.sheetWorkers())
 	if err != nil {
 		return nil, err

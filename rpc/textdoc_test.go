@@ -260,6 +260,19 @@ func TestAsManySheetsAsTheLimitAreOpen(t *testing.T) {
 	}
 }
 
+// With an hour for a pause, no keystroke ever comes after one.
+func TestADocumentThatNeverPausesIsPublished(t *testing.T) {
+	c := begin(t, Options{settle: time.Hour})
+	c.initialize()
+	c.send(`{"jsonrpc":"2.0","method":"textDocument/didOpen","params":{"textDocument":{"uri":"file:///a.calculations.csv","languageId":"csv","version":1,"text":""}}}`)
+	for version := 1; version <= 3; version++ {
+		c.wantPart(`"method":"textDocument/publishDiagnostics"`, fmt.Sprintf(`"version":%d`, version))
+		c.send(`{"jsonrpc":"2.0","method":"textDocument/didChange","params":{"textDocument":{"uri":"file:///a.calculations.csv","version":%d},"contentChanges":[{"text":"%s"}]}}`, version+1, strings.Repeat("x", version))
+	}
+	c.wantPart(`"version":4`)
+	c.leave()
+}
+
 // Keystrokes in a sheet of 5,000 rows are taken at once, however long the sheet
 // takes to be worked out.
 func TestKeystrokesInALongSheetAreTakenAtOnce(t *testing.T) {
