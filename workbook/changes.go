@@ -248,7 +248,7 @@ func (c *bookChanges) mayReplace(target string) error {
 // openOutput opens an output to see whether it was changed. It gives nil where
 // there is none yet.
 func openOutput(target string) (*os.File, error) {
-	file, err := os.Open(target)
+	file, err := ooxml.OpenToRead(target)
 	var cause *fs.PathError
 	switch {
 	case err == nil:

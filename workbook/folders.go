@@ -72,7 +72,7 @@ func (f folders) open(file string, options calculation.FileOptions) (calculation
 	var s calculation.Source
 	switch ext := strings.ToLower(filepath.Ext(path)); ext {
 	case ".csv", ".tsv":
-		s = calculation.NewTextFile(filepath.Base(path), func() (io.ReadCloser, error) { return os.Open(path) }, options)
+		s = calculation.NewTextFile(filepath.Base(path), func() (io.ReadCloser, error) { return ooxml.OpenToRead(path) }, options)
 	case ".xlsx", ".xlsm":
 		s, err = openBook(path, f.limits, newFolders(path, f.dirs[1:], f.limits))
 	default:

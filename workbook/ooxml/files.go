@@ -18,7 +18,7 @@ type File struct {
 
 // OpenFile opens a file. The caller closes it.
 func OpenFile(path string) (*File, error) {
-	f, err := os.Open(path)
+	f, err := OpenToRead(path)
 	if err != nil {
 		return nil, &Error{File: path, Kind: ErrUnreadable, Reason: "the file cannot be opened: " + plainCause(err), Advice: "check its name and that you may read it", Err: err}
 	}

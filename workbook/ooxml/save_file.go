@@ -38,12 +38,7 @@ func replace(path string, mode fs.FileMode, write func(io.Writer) error, last fu
 	if err = last(); err != nil {
 		return err
 	}
-	if !renamesOpenFiles {
-		if err = temp.Close(); err != nil {
-			return writeError(path, err)
-		}
-	}
-	if err = os.Rename(name, path); err != nil {
+	if err = rename(name, path); err != nil {
 		return target(path, "the finished file cannot be put in its place: "+plainCause(err), "close programs that have it open, then try again", err)
 	}
 	done = true
@@ -134,7 +129,7 @@ func createTemp(path string) (temp *os.File, err error) {
 // makeHeld makes a new file and locks it. Where another process took it for left
 // over before it was locked, the name is not to be had.
 func makeHeld(name string) (*os.File, error) {
-	f, err := os.OpenFile(name, os.O_RDWR|os.O_CREATE|os.O_EXCL, 0o600)
+	f, err := openTemp(name, os.O_RDWR|os.O_CREATE|os.O_EXCL)
 	if err != nil {
 		return nil, err
 	}
@@ -151,7 +146,7 @@ func removeStale(name string) bool {
 	if _, err := os.Lstat(name); err != nil {
 		return errors.Is(err, fs.ErrNotExist)
 	}
-	f, err := os.OpenFile(name, os.O_RDWR, 0)
+	f, err := openTemp(name, os.O_RDWR)
 	if err != nil {
 		return errors.Is(err, fs.ErrNotExist)
 	}
@@ -165,7 +160,6 @@ func removeStale(name string) bool {
 		if info, err := f.Stat(); err != nil || time.Since(info.ModTime()) < staleAfter {
 			return false
 		}
-		f.Close() // some systems remove no open file
 	}
 	err = os.Remove(name)
 	return err == nil || errors.Is(err, fs.ErrNotExist)

@@ -8,8 +8,13 @@ import (
 	"syscall"
 )
 
-// renamesOpenFiles: a file keeps its lock until it has its final name.
-const renamesOpenFiles = true
+// openTemp opens or makes a temporary file, which can be renamed while it is open.
+func openTemp(name string, flag int) (*os.File, error) { return os.OpenFile(name, flag, 0o600) }
+
+func rename(from, to string) error { return os.Rename(from, to) }
+
+// OpenToRead opens a file to read.
+func OpenToRead(path string) (*os.File, error) { return os.Open(path) }
 
 // tryLock takes the lock of a file. The system lets go of it when the file is
 // closed or the process ends, however it ends. known is false where the file
