@@ -1,10 +1,8 @@
 package funcs
 
 import (
-	"cmp"
 	"errors"
 	"fmt"
-	"slices"
 	"strings"
 )
 
@@ -88,69 +86,6 @@ func (e *UnknownError) Error() string {
 
 // Unwrap makes every UnknownError match ErrUnknown.
 func (e *UnknownError) Unwrap() error { return ErrUnknown }
-
-// Closest gives the names nearest to what was written, the likeliest first and
-// three at most; none where nothing is near. Case, spaces, hyphens and
-// underscores do not count as differences.
-func Closest(written string, names []string) []string {
-	type candidate struct {
-		name     string
-		distance int
-	}
-	plain := func(s string) []rune {
-		return []rune(strings.NewReplacer(" ", "", "-", "", "_", "", "\u00a0", "").Replace(strings.ToLower(s)))
-	}
-	w := plain(written)
-	var near []candidate
-	for _, name := range names {
-		n := plain(name)
-		short, long := min(len(w), len(n)), max(len(w), len(n))
-		d := long - short // at least; a very long text is compared with no name
-		if d <= max(1, long/3) {
-			d = editDistance(w, n)
-		}
-		switch {
-		case d <= max(1, long/3):
-		case short >= 3 && strings.Contains(string(n), string(w)):
-			d = long/3 + 1
-		default:
-			continue
-		}
-		near = append(near, candidate{name, d})
-	}
-	slices.SortStableFunc(near, func(a, b candidate) int {
-		return cmp.Or(cmp.Compare(a.distance, b.distance), cmp.Compare(a.name, b.name))
-	})
-	out := make([]string, 0, 3)
-	for _, c := range near[:min(3, len(near))] {
-		out = append(out, c.name)
-	}
-	return out
-}
-
-// editDistance counts the insertions, deletions, replacements and exchanges of
-// neighbours that turn a into b (optimal string alignment).
-func editDistance(a, b []rune) int {
-	before, last, row := make([]int, len(b)+1), make([]int, len(b)+1), make([]int, len(b)+1)
-	for j := range last {
-		last[j] = j
-	}
-	for i := 1; i <= len(a); i++ {
-		row[0] = i
-		for j := 1; j <= len(b); j++ {
-			change := 1
-			if a[i-1] == b[j-1] {
-				change = 0
-			}
-			row[j] = min(last[j]+1, row[j-1]+1, last[j-1]+change)
-			if i > 1 && j > 1 && a[i-1] == b[j-2] && a[i-2] == b[j-1] {
-				row[j] = min(row[j], before[j-2]+1)
-			}
-		}
-		before, last, row = last, row, before
-	}
-	return last[len(b)]
-}
 
 // didYouMean words the names near to what was written.
 func didYouMean(near []string) string { return "did you mean " + OrList(quoted(near)) + "?" }
