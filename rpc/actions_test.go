@@ -37,6 +37,11 @@ func TestQuickFixes(t *testing.T) {
 		{"work out,sample,|lower,> mean\nmean-interval,12; 13,,\n", `Use "> lower"`, "work out,sample,> lower,> mean\nmean-interval,12; 13,,\n"},
 		{"work out,sample,> mean\nmean-interval,minuets| in trips.csv,\n", `Use "minutes"`, "work out,sample,> mean\nmean-interval,minutes in trips.csv,\n"},
 		{"work out,sample,> mean\nmean-interval,\"minutes in trips.csv where \"\"depott\"\"| = North\",\n", `Use "depot"`, "work out,sample,> mean\nmean-interval,\"minutes in trips.csv where depot = North\",\n"},
+		{"work out,sample,> mean\nmean-interval,minutes in trips.csv where depot = Nrth|,\n", `Use "North"`, "work out,sample,> mean\nmean-interval,minutes in trips.csv where depot = North,\n"},
+		{"work out,sample,> mean\nmean-interval,minutes in trips.csv where depot is one of Quay; 'Nrth'|,\n", `Use "North"`, "work out,sample,> mean\nmean-interval,\"minutes in trips.csv where depot is one of Quay; \"\"North\"\"\",\n"},
+		{"work out,sample,> mean\nmean-interval,\"minutes in trips.csv where \"\"depot\"\" = \"\"Nrth|\"\"\",\n", `Use "North"`, "work out,sample,> mean\nmean-interval,\"minutes in trips.csv where \"\"depot\"\" = \"\"North\"\"\",\n"},
+		{"work out,sample,> mean\nmean-interval,minutes in runs.csv where run = late-rn|,\n", `Use "late run"`, "work out,sample,> mean\nmean-interval,\"minutes in runs.csv where run = \"\"late run\"\"\",\n"},
+		{"work out,label,sample,> mean\nmean-interval,Nrth|,minutes in trips.csv where depot <> Nrth,\n", `Use "North"`, "work out,label,sample,> mean\nmean-interval,Nrth,minutes in trips.csv where depot <> North,\n"},
 		{"work out,sample,> mean\nmean-interval,minutes in trps.csv|,\n", `Use "trips.csv"`, "work out,sample,> mean\nmean-interval,minutes in trips.csv,\n"},
 		{"work out,sample,> mean\nmean-interval,minutes in loads.xlsx/Lods|,\n", `Use "loads.xlsx/Loads"`, "work out,sample,> mean\nmean-interval,minutes in loads.xlsx/Loads,\n"},
 		{"work out,sample,> mean\nmean-interval,minutes in loads.xlsx/\"Night shft\"|,\n", `Use "loads.xlsx/"Night shift""`, "work out,sample,> mean\nmean-interval,\"minutes in loads.xlsx/\"\"Night shift\"\"\",\n"},
@@ -46,7 +51,7 @@ func TestQuickFixes(t *testing.T) {
 		{"work out|,sample,> mean\nmean-interval,1; 2; 3; 4; 5\nmean-interval,1; 2; 3; 4; 6,\n", "Fill the results of this block", "work out,sample,> mean\nmean-interval,1; 2; 3; 4; 5,3\nmean-interval,1; 2; 3; 4; 6,3.2\n"},
 		{"work out,sample,> mean,> note\r\nmean-interval|,1; 2,,old\r\n", "Fill all results", "work out,sample,> mean,> note\r\nmean-interval,1; 2,1.5,The sample has only 2 values: the interval rests wholly on the values being normal. Measure at least 5.\r\n"},
 	} {
-		e := newTextEditor(t, everything, "", map[string]string{"trips.csv": tripsFile})
+		e := newTextEditor(t, everything, "", map[string]string{"trips.csv": tripsFile, "runs.csv": "run,minutes\nlate run,12\nearly run,13\nlate run,14\n"})
 		e.book("loads.xlsx")
 		const name = "a.calculations.csv"
 		e.open(name, strings.Replace(c.text, "|", "", 1))

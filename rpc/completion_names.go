@@ -41,7 +41,7 @@ func (c *completer) expression(ctx context.Context, in funcs.Input) error {
 		c.places(names, hole.Begun)
 	case calculation.ValueHole:
 		for _, text := range names.values(ctx, hole.Place, hole.Column) {
-			c.add(nameInText(text), itemValue, "a value of "+hole.Column)
+			c.add(calculation.ValueText(text), itemValue, "a value of "+hole.Column)
 		}
 	}
 	for _, word := range hole.Words {

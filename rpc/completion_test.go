@@ -41,7 +41,8 @@ func (e *textEditor) book(name string) {
 	e.t.Helper()
 	f := excelize.NewFile()
 	defer f.Close()
-	for cell, value := range map[string]any{"A1": "parcels", "B1": "handling time", "A2": 3, "B2": 4, "A3": 5, "B3": 6} {
+	for cell, value := range map[string]any{"A1": "parcels", "B1": "handling time", "A2": 3, "B2": 4, "A3": 5, "B3": 6,
+		"C1": "ramp", "C2": "12", "C3": "late"} {
 		if err := f.SetCellValue("Sheet1", cell, value); err != nil {
 			e.t.Fatal(err)
 		}
@@ -98,6 +99,7 @@ func TestCompletion(t *testing.T) {
 		{row + "mean-interval,minutes in trips.csv where |,,,\n", "depot", row + "mean-interval,minutes in trips.csv where depot,,,\n"},
 		{row + "mean-interval,minutes in trips.csv where depot = |,,,\n", "North", row + "mean-interval,minutes in trips.csv where depot = North,,,\n"},
 		{row + "mean-interval,minutes in trips.csv where depot =N|,,,\n", "North", row + "mean-interval,minutes in trips.csv where depot =North,,,\n"},
+		{row + "mean-interval,\"parcels in loads.xlsx/\"\"Night shift\"\" where ramp = |\",,,\n", `"12"`, row + "mean-interval,\"parcels in loads.xlsx/\"\"Night shift\"\" where ramp = \"\"12\"\"\",,,\n"}, // a text there
 		{row + "mean-interval,minutes in trips.csv for each |,,,\n", "shift", row + "mean-interval,minutes in trips.csv for each shift,,,\n"},
 		{row + "mean-interval,minutes in sub/tr|,,,\n", "sub/trips.csv", row + "mean-interval,minutes in sub/trips.csv,,,\n"},
 	} {

@@ -29,13 +29,15 @@ func (p *Plan) countRow(ctx context.Context, r *Row) error {
 		}
 		for _, f := range a.faults {
 			finding := placed(in.Name, in.Cell.String(), &f)
-			r.faults = append(r.faults, Diagnostic{Finding: finding, Sheet: r.Block.Sheet, Cell: in.Cell, Span: in.term.span(f.span)})
+			d := Diagnostic{Finding: finding, Sheet: r.Block.Sheet, Cell: in.Cell}
+			in.term.point(&d, &f)
+			r.faults = append(r.faults, d)
 		}
 		if o := a.from.Origin; o != nil {
 			in.Range, in.Skipped = o.Range, o.Skipped
 			for _, f := range o.Findings {
 				f.Input = in.Name
-				r.cautions = append(r.cautions, Diagnostic{Finding: f, Sheet: r.Block.Sheet, Cell: in.Cell})
+				r.cautions = append(r.cautions, in.found(f, r.Block.Sheet, a))
 			}
 		}
 		in.Used, in.Groups = sizes(a)

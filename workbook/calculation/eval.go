@@ -294,7 +294,9 @@ func (r *RowResult) addFault(in *Input, f *fault) {
 	if finding.Cells == nil {
 		finding.Cells = []string{r.Row.Block.calc.sheet.address(in.Cell.Row, in.Cell.Col)}
 	}
-	r.Findings = append(r.Findings, Diagnostic{Finding: finding, Sheet: r.Row.Block.Sheet, Cell: in.Cell, Span: in.term.span(f.span)})
+	d := Diagnostic{Finding: finding, Sheet: r.Row.Block.Sheet, Cell: in.Cell}
+	in.term.point(&d, f)
+	r.Findings = append(r.Findings, d)
 }
 
 // addOrigins adds what the reading of the inputs found, where the call that
@@ -304,21 +306,35 @@ func (r *RowResult) addOrigins(args map[string]*argument) {
 		if a := args[in.Name]; a != nil && a.from.Origin != nil {
 			for _, f := range a.from.Origin.Findings {
 				f.Input = in.Name
-				r.add(f)
+				r.add(f, args)
 			}
 		}
 	}
 }
 
 // add adds a finding, at the cell of its input.
-func (r *RowResult) add(f funcs.Finding) {
+func (r *RowResult) add(f funcs.Finding, args map[string]*argument) {
 	d := Diagnostic{Finding: f, Sheet: r.Row.Block.Sheet, Cell: CellRef{r.Row.Number, r.Row.Block.work}}
 	for _, in := range r.Row.Inputs {
 		if in.Name == f.Input {
-			d.Cell = in.Cell
+			d = in.found(f, r.Row.Block.Sheet, args[in.Name])
 		}
 	}
 	r.Findings = append(r.Findings, d)
+}
+
+// found places a finding at an input's cell. One that came from reading an
+// expression, which package funcs hands back without its place there, gets that
+// again.
+func (in *Input) found(f funcs.Finding, sheet string, a *argument) Diagnostic {
+	d := Diagnostic{Finding: f, Sheet: sheet, Cell: in.Cell}
+	if a != nil && a.reading != nil {
+		same := func(read fault) bool { return read.Code == f.Code && read.Message == f.Message }
+		if i := slices.IndexFunc(a.reading.faults, same); i >= 0 {
+			in.term.point(&d, &a.reading.faults[i])
+		}
+	}
+	return d
 }
 
 // answer makes the call, once or for each group.
@@ -337,7 +353,7 @@ func (p *Plan) answer(ctx context.Context, result *RowResult, args map[string]*a
 		result.Outcome = out
 		p.letGo(r, out)
 		for _, f := range out.Findings {
-			result.add(f)
+			result.add(f, args)
 		}
 		return nil
 	}
@@ -397,7 +413,7 @@ func (r *RowResult) addError(ctx context.Context, err error, args map[string]*ar
 	}
 	var wrong funcs.ArgumentErrors
 	if !errors.As(err, &wrong) {
-		r.add(funcs.Finding{Code: "internal-error", Severity: funcs.Refused, Message: sentence(err.Error())})
+		r.add(funcs.Finding{Code: "internal-error", Severity: funcs.Refused, Message: sentence(err.Error())}, args)
 		return nil
 	}
 	for _, e := range wrong {
@@ -415,7 +431,7 @@ func (r *RowResult) addError(ctx context.Context, err error, args map[string]*ar
 			}
 		}
 		f.Message = ended(f.Message)
-		r.add(f)
+		r.add(f, args)
 	}
 	return nil
 }

@@ -241,6 +241,17 @@ func (l Literal) String() string {
 	return quote(l.Text)
 }
 
+// ValueText writes a text as it stands in a condition: in quotes where without
+// them it would not be read as that text.
+func ValueText(text string) string {
+	_, number := parseNumber(text)
+	_, _, date := parseDate(text)
+	if number || date {
+		return quote(text)
+	}
+	return nameText(text)
+}
+
 // nameText writes a name, in quotes where it needs them.
 func nameText(name string) string {
 	if isPlainWord(name) {

@@ -3,6 +3,8 @@ package calculation
 import (
 	"slices"
 	"sync"
+
+	"halfwidth/funcs"
 )
 
 // facts are what several expressions over one sheet need to know of its rows;
@@ -28,6 +30,28 @@ type columnFacts struct {
 	covered   int // inside a merged range
 	unsaved   int // a formula without a saved value
 	durations int
+
+	valuesOnce sync.Once
+	values     []string        // the texts, without outer space, as far as they are looked through
+	near       *funcs.NameList // of the values
+}
+
+// mostValues is how many values of a column are looked through for near ones.
+const mostValues = 100000
+
+// prepareValues lists the values, unless that was done before.
+func (f *columnFacts) prepareValues(texts []string) {
+	f.valuesOnce.Do(func() {
+		seen := map[string]bool{}
+		for _, id := range f.texts {
+			if text := trim(texts[id]); text != "" && !seen[text] && len(f.values) < mostValues {
+				seen[text] = true
+				f.values = append(f.values, text)
+			}
+		}
+		slices.Sort(f.values)
+		f.near = funcs.NewNameList(f.values)
+	})
 }
 
 // gap is a stretch of rows that are blank across the sheet.

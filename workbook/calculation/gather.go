@@ -419,7 +419,7 @@ func (g *gathering) finish() {
 	if r.tally.stray.Code != "" {
 		r.faults = append(r.faults, r.tally.stray)
 	}
-	r.faults = append(r.faults, r.tally.findings(q.Span)...)
+	r.faults = append(r.faults, r.tally.findings()...)
 	for _, s := range r.series {
 		col := s.col
 		if col == 0 {

@@ -3,7 +3,6 @@ package calculation
 import (
 	"fmt"
 	"math"
-	"slices"
 	"strings"
 
 	"halfwidth/funcs"
@@ -273,48 +272,59 @@ func (b *bound) matchesNothing(c Condition) []fault {
 	if c.Op != Equal && c.Op != NotEqual && c.Op != IsOneOf {
 		return nil
 	}
+	missing := map[string]bool{}
+	for _, l := range c.Literals {
+		if l.Kind == WordLiteral || l.Kind == QuotedLiteral {
+			missing[fold(l.Text)] = true
+		}
+	}
+	if len(missing) == 0 {
+		return nil
+	}
 	sh := b.at.sheet
 	col := b.col(c.Column)
 	f := sh.columnFacts(col, b.first, b.last)
-	var values []string
-	seen := map[string]bool{}
 	for _, id := range f.texts {
-		if text := trim(sh.frame.texts[id]); text != "" && !seen[text] && len(values) < mostValues {
-			seen[text] = true
-			values = append(values, text)
-		}
+		delete(missing, fold(sh.frame.texts[id]))
 	}
 	var out []fault
 	for _, l := range c.Literals {
-		if l.Kind != WordLiteral && l.Kind != QuotedLiteral {
+		truth := unknown
+		if l.Kind == WordLiteral {
+			truth = truthOf(l.Text)
+		}
+		if !missing[fold(l.Text)] || truth == meets && f.isTrue || truth == fails && f.isFalse {
 			continue
 		}
-		word := fold(l.Text)
-		stands := slices.ContainsFunc(f.texts, func(id uint32) bool { return fold(sh.frame.texts[id]) == word })
-		if truth := truthOf(l.Text); l.Kind == WordLiteral && (truth == meets && f.isTrue || truth == fails && f.isFalse) {
-			stands = true
+		f.prepareValues(sh.frame.texts)
+		near := f.near.Closest(l.Text)
+		fl := fault{Finding: funcs.Finding{Code: "condition-matches-nothing", Severity: funcs.Caution, Message: fmt.Sprintf(
+			"%s stands nowhere in the column %s (%s). %s", quote(l.Text), quote(c.Column.Name), b.columnText(col), nearestValues(near, f.values))}, span: l.Span}
+		for _, text := range near {
+			fl.instead = append(fl.instead, l.inPlace(text))
 		}
-		if stands {
-			continue
-		}
-		out = append(out, fault{Finding: funcs.Finding{Code: "condition-matches-nothing", Severity: funcs.Caution, Message: fmt.Sprintf(
-			"%s stands nowhere in the column %s (%s). %s", quote(l.Text), quote(c.Column.Name), b.columnText(col), nearestValues(l.Text, values))}, span: l.Span})
+		out = append(out, fl)
 	}
 	return out
 }
 
-// mostValues is how many values of a column are looked through for near ones.
-const mostValues = 100000
+// inPlace writes a text to stand in the literal's place, in quotes where the
+// literal stood in some.
+func (l Literal) inPlace(text string) string {
+	if l.Kind == QuotedLiteral {
+		return quote(text)
+	}
+	return ValueText(text)
+}
 
 // nearestValues words which values a column has.
-func nearestValues(word string, values []string) string {
-	if near := funcs.Closest(word, values); len(near) > 0 {
+func nearestValues(near, values []string) string {
+	if len(near) > 0 {
 		return "Did you mean " + funcs.OrList(quoteAll(near)) + "?"
 	}
 	if len(values) == 0 {
 		return "It holds no text at all."
 	}
-	slices.Sort(values)
 	const most = 5
 	if len(values) > most {
 		return "It holds " + strings.Join(quoteAll(values[:most]), ", ") + " and others."

@@ -96,7 +96,7 @@ func (r *RowResult) sumUpGroups() {
 		f.Severity = funcs.Caution
 		f.Message += fmt.Sprintf(" With a caution: %s; see the notes there.", few(cautions))
 	}
-	r.add(f)
+	r.add(f, nil)
 }
 
 func standGroups(n int) string {

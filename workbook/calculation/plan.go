@@ -198,10 +198,8 @@ func (p *Plan) checkRead(r *Row) {
 		}
 		finding := placed(in.Name, in.Cell.String(), f)
 		address := r.Block.calc.sheet.address(in.Cell.Row, in.Cell.Col)
-		r.refuse(in.Cell, in.term.span(f.span), f.Code, finding.Message, append([]string{address}, f.Cells...)...)
-		if !in.term.far {
-			r.lastFault().Instead = f.instead
-		}
+		r.refuse(in.Cell, Span{}, f.Code, finding.Message, append([]string{address}, f.Cells...)...)
+		in.term.point(r.lastFault(), f)
 	}
 	p.checkTableUse(r)
 }

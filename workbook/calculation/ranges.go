@@ -15,7 +15,7 @@ func (g *gathering) gapFindings() []fault {
 	var out []fault
 	sh := g.at.sheet
 	say := func(code string, severity funcs.Severity, cells []string, format string, a ...any) {
-		out = append(out, fault{Finding: funcs.Finding{Code: code, Severity: severity, Cells: cells, Message: fmt.Sprintf(format, a...)}, span: g.query.Span})
+		out = append(out, fault{Finding: funcs.Finding{Code: code, Severity: severity, Cells: cells, Message: fmt.Sprintf(format, a...)}})
 	}
 	var inside []gap
 	for _, gp := range sh.gaps(g.first, g.last) {
@@ -150,7 +150,7 @@ func (b *boundRange) gather(ctx context.Context) (*reading, error) {
 	if r.tally.stray.Code != "" {
 		r.faults = append(r.faults, r.tally.stray)
 	}
-	r.faults = append(r.faults, r.tally.findings(b.rng.Span)...)
+	r.faults = append(r.faults, r.tally.findings()...)
 	r.faults = append(r.faults, s.totals.findings(b.sheet, area.FirstCol, b.rng.Span)...)
 	return r, nil
 }

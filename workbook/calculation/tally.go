@@ -157,11 +157,11 @@ func (t *tally) left() int {
 	return t.skippedCells() - t.paired + t.undecided.n + t.noGroup.n + t.noKey.n
 }
 
-// findings words the counts. span is the expression's part they belong to.
-func (t *tally) findings(span Span) []fault {
+// findings words the counts. They are about the whole expression.
+func (t *tally) findings() []fault {
 	var out []fault
 	say := func(code string, severity funcs.Severity, cells []string, format string, a ...any) {
-		out = append(out, fault{Finding: funcs.Finding{Code: code, Severity: severity, Cells: cells, Message: fmt.Sprintf(format, a...)}, span: span})
+		out = append(out, fault{Finding: funcs.Finding{Code: code, Severity: severity, Cells: cells, Message: fmt.Sprintf(format, a...)}})
 	}
 	at := func(s skip) string { return t.sheet.address(s.row, s.col) }
 	if n := t.skippedCells(); n > 0 {

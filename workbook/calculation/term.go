@@ -32,6 +32,14 @@ func (t *term) span(s Span) Span {
 	return s
 }
 
+// point gives a diagnostic the stretch of the input's own cell that a fault is
+// about, and what may have been meant by it.
+func (t *term) point(d *Diagnostic, f *fault) {
+	if !t.far {
+		d.Span, d.Instead = f.span, f.instead
+	}
+}
+
 // listTerm is one number of a list.
 type listTerm struct {
 	name   string
