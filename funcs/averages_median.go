@@ -37,7 +37,7 @@ var medianInterval = &Function{
 		outside := tail(conf, dir)
 		law := dist.Binomial{N: n, P: 0.5}
 		k := law.Quantile(outside) // the largest with P(X <= k-1) <= outside
-		for staysIn(law.CDF(k), outside) {
+		for k < n && staysIn(law.CDF(k), outside) {
 			k++
 		}
 		sides := 2.0

@@ -15,6 +15,14 @@ func binomialHalf(n, k int64) *big.Rat {
 	return new(big.Rat).SetFrac(sum, new(big.Int).Lsh(big.NewInt(1), uint(n)))
 }
 
+// A limit of all but no confidence may be any of the values, and is one of them.
+func TestMedianLimitOfNoConfidenceIsAValue(t *testing.T) {
+	for _, n := range []int{5, 1000} {
+		out := answer(t, "median-interval", map[string]any{"sample": counting(n), "confidence": 1e-12, "direction": below})
+		within(t, "upper", resultOf(t, out, "upper"), 1, 0)
+	}
+}
+
 // Of the values 1 to n the limits are the ranks themselves.
 func TestMedianLimitsAreTheFarthestInThatHold(t *testing.T) {
 	for _, confidence := range []float64{0.4, 0.5, 0.75, 0.95, 0.99} {
