@@ -37,7 +37,7 @@ func (d MaxT) Shared() MaxT {
 
 // loading stands for count variables of the same l: P(X <= w | Y = y) is
 // Phi(stretch*w + shift*y), stretch = 1/sqrt(1-l^2), shift = l*stretch.
-type loading struct{ shift, stretch, count float64 }
+type loading struct{ shift, stretch, count, logCount float64 }
 
 // JointPrediction is the law that bounds future further values by the mean and sd
 // of past values of one normal law: t_i = (value - mean)/(sd sqrt(1 + 1/past)),
@@ -47,7 +47,7 @@ func JointPrediction(past, future int, df float64, twoSided bool) MaxT {
 	if past < 1 || future < 1 {
 		return MaxT{DF: math.NaN()}
 	}
-	return MaxT{DF: df, TwoSided: twoSided, parts: []loading{{1 / math.Sqrt(n), math.Sqrt((n + 1) / n), float64(future)}}}
+	return MaxT{DF: df, TwoSided: twoSided, parts: []loading{{1 / math.Sqrt(n), math.Sqrt((n + 1) / n), float64(future), num.Log(float64(future))}}}
 }
 
 // ComparisonsWithControl is the law of Dunnett's comparisons of group means with
@@ -65,7 +65,10 @@ func ComparisonsWithControl(control int, groups []int, df float64, twoSided bool
 			continue
 		}
 		ratio := float64(n) / float64(control)
-		d.parts = append(d.parts, loading{math.Sqrt(ratio), math.Sqrt(1 + ratio), 1})
+		d.parts = append(d.parts, loading{math.Sqrt(ratio), math.Sqrt(1 + ratio), 1, 0})
+	}
+	for i := range d.parts {
+		d.parts[i].logCount = num.Log(d.parts[i].count)
 	}
 	return d
 }
@@ -165,7 +168,7 @@ func (d MaxT) numerator(w float64, upper bool) float64 {
 	// Bounds that settle the far ends: count P(X > w) above, P(X <= w) below.
 	bound := d.count() * Normal{}.SF(w)
 	switch {
-	case w > 0 && (bound < 1e-18 && !upper || bound < 1e-305):
+	case w > 0 && (bound < 1e-18 && !upper || bound == 0):
 		return certain
 	case !d.TwoSided && w < 0 && Normal{}.CDF(w) < 1e-305:
 		return 1 - certain
@@ -177,7 +180,7 @@ func (d MaxT) numerator(w float64, upper bool) float64 {
 	}
 	step := 1 / math.Sqrt(1+max(band, float64(most*most*(1+2*num.Log(d.count())))))
 	f := func(y float64) float64 {
-		logAll := d.logAllBelow(w, y)
+		logAll := d.logAllBelow(w, y, upper)
 		if upper {
 			return num.Exp(-float64(y*y)/2) * -num.Expm1(logAll)
 		}
@@ -228,15 +231,38 @@ func (d MaxT) graded(f func(float64) float64, w, steepest, most float64) float64
 	return side(-1, max(centre, 0)+10) + side(1, max(-centre, 0)+10)
 }
 
-// logAllBelow is log of P(all X <= w | Y = y), or of all sizes.
-func (d MaxT) logAllBelow(w, y float64) float64 {
+// logAllBelow is log of P(all X <= w | Y = y), or of all sizes. Where only its
+// complement counts it is as good as -Inf below -40, else below -750: the numerator
+// that follows Y most closely may settle that alone. Numerators whose terms are too
+// small to change the sum are passed over.
+func (d MaxT) logAllBelow(w, y float64, complement bool) float64 {
+	hopeless, least := -40.0, -750.0
+	if complement {
+		hopeless, least = -9.5, -40
+	}
+	below := func(p loading) float64 { // how far w lies above the centre of X
+		if d.TwoSided {
+			return float64(p.stretch*w) - math.Abs(float64(p.shift*y))
+		}
+		return float64(p.stretch*w) + float64(p.shift*y)
+	}
+	if below(d.parts[len(d.parts)-1]) < hopeless {
+		return math.Inf(-1)
+	}
 	sum := 0.0
 	for _, p := range d.parts {
+		// The term is below 1.2 count exp(-a^2/2).
+		if a := below(p); a > 0 && sum < 0 && float64(a*a)/2 > 38.5+p.logCount-float64(math.Ln2*float64(math.Ilogb(sum))) {
+			continue
+		}
 		at, middle := float64(p.stretch*w), float64(p.shift*y)
 		if d.TwoSided {
 			sum += float64(p.count * logInterval(math.Abs(middle), at))
 		} else {
 			sum += float64(p.count * NormalLogCDF(at+middle))
+		}
+		if sum < least {
+			return math.Inf(-1)
 		}
 	}
 	return sum

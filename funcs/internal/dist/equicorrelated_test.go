@@ -118,7 +118,7 @@ func TestMaxTOfGroupsFarLargerThanTheControl(t *testing.T) {
 			steepest, most = max(steepest, p.shift/p.stretch), max(most, p.shift)
 		}
 		f := func(y float64) float64 {
-			all := d.logAllBelow(w, y)
+			all := d.logAllBelow(w, y, upper)
 			if upper {
 				return math.Exp(-y*y/2) * -math.Expm1(all)
 			}

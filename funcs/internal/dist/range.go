@@ -108,7 +108,7 @@ func (k normalRange) tail(w float64, upper bool) float64 {
 		return 0
 	}
 	switch bound := k.bound(w); {
-	case upper && bound < 1e-305:
+	case upper && bound == 0:
 		return 0
 	case !upper && bound < 1e-18:
 		return 1

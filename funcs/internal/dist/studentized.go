@@ -35,6 +35,10 @@ type scaleNodes struct {
 
 const finestSpacing = 1 << 10
 
+// leastNormal is the least float64 of full length: a tail below it, as the tails of M
+// that it is the average of, has no digits left that closer nodes could settle.
+const leastNormal = 0x1p-1022
+
 func (n *scaleNodes) node(i int) (x, slope float64) {
 	v := float64(float64(i) * (n.step / finestSpacing))
 	if n.law.df >= 30 {
@@ -90,19 +94,18 @@ func (n *scaleNodes) average(y float64) float64 {
 		}
 	}
 	middle, stride := n.middle(y), finestSpacing
-	total := side(middle, stride) + side(middle-stride, -stride)
+	total, density := side(middle, stride)+side(middle-stride, -stride), scaleDensity1(n.law.df)
 	for {
 		half := stride / 2
 		peak = 0
 		finer := total + side(middle+half, stride) + side(middle-half, -stride)
 		steady := math.Abs(finer-2*total) <= 1e-8*finer
 		total, stride = finer, half
-		if steady || stride == 1 {
-			break
+		average := density * (total * (n.step * (float64(stride) / finestSpacing)))
+		if steady || stride == 1 || average < leastNormal {
+			return average
 		}
 	}
-	h := n.step * (float64(stride) / finestSpacing)
-	return scaleDensity1(n.law.df) * (total * h)
 }
 
 // nodes prepares the nodes for arguments near q, which is not 0; none where the

@@ -58,20 +58,24 @@ func (t *tailTable) at(w float64, upper bool) float64 {
 	index := int(number) - firstPanel
 	lo, hi := number*panelWidth, (number+1)*panelWidth
 	x := (u-lo)*(2/panelWidth) - 1
-	lower := &t.lower[index]
-	lower.fill.Do(func() {
-		lower.fit(lo, hi, false, func(u float64) float64 { return num.Log(t.tail(t.width(u), false)) })
-	})
-	switch {
-	case lower.end < -45 && upper:
-		return 1
-	case lower.good && !upper:
-		return num.Exp(lower.value(x))
-	case !upper:
-		return t.tail(w, false)
-	case lower.good:
-		if l := lower.value(x); l < -0.7 {
-			return -num.Expm1(l)
+	// Where the bound leaves more than half to the lower tail on the whole panel, the
+	// upper tail is a quotient in any case.
+	if !(upper && t.bound(t.width(lo)) < 0.5) {
+		lower := &t.lower[index]
+		lower.fill.Do(func() {
+			lower.fit(lo, hi, false, func(u float64) float64 { return num.Log(t.tail(t.width(u), false)) })
+		})
+		switch {
+		case lower.end < -45 && upper:
+			return 1
+		case lower.good && !upper:
+			return num.Exp(lower.value(x))
+		case !upper:
+			return t.tail(w, false)
+		case lower.good:
+			if l := lower.value(x); l < -0.7 {
+				return -num.Expm1(l)
+			}
 		}
 	}
 	quotient := &t.upper[index]
