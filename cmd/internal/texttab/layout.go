@@ -1,6 +1,7 @@
 package texttab
 
 import (
+	"bytes"
 	"fmt"
 	"slices"
 	"strconv"
@@ -59,7 +60,10 @@ func (t *Table) grid() (*grid, []string) {
 	for _, row := range t.Rows {
 		line := make([]string, len(t.Columns))
 		for i, cell := range row.Cells {
-			line[i] = strings.Join(strings.Fields(Clean(show(cell, false))), " ")
+			line[i] = show(cell, false)
+			if _, text := cell.(string); text {
+				line[i] = oneLine(line[i])
+			}
 		}
 		marks := ""
 		for _, note := range row.Notes {
@@ -69,8 +73,9 @@ func (t *Table) grid() (*grid, []string) {
 			}
 			marks += "[" + strconv.Itoa(numbers[note]) + "]"
 		}
-		g.words = append(g.words, slices.Clone(line))
+		g.words = append(g.words, line)
 		if noted >= 0 && marks != "" {
+			line = slices.Clone(line)
 			line[noted], marks = strings.TrimSpace(line[noted]+" "+marks), ""
 		}
 		g.lines, g.marks = append(g.lines, line), append(g.marks, marks)
@@ -84,6 +89,19 @@ func (t *Table) grid() (*grid, []string) {
 		}
 	}
 	return g, footnotes
+}
+
+// oneLine is a text with single spaces, and nothing that steers a terminal.
+func oneLine(text string) string {
+	plain, before := true, byte(' ')
+	for i := 0; i < len(text) && plain; i++ {
+		plain = ' ' <= text[i] && text[i] <= '~' && (text[i] != ' ' || before != ' ')
+		before = text[i]
+	}
+	if plain && before != ' ' {
+		return text
+	}
+	return strings.Join(strings.Fields(Clean(text)), " ")
 }
 
 // alignDecimals pads the numbers of a column, so that their decimal marks stand
@@ -114,8 +132,9 @@ func (g *grid) alignDecimals(col int, rows []Row) {
 	}
 	for i, row := range rows {
 		if isNumber(row) {
-			text := g.lines[i+1][col]
-			g.lines[i+1][col] = text + strings.Repeat(" ", most-behind(text))
+			if text := g.lines[i+1][col]; behind(text) < most {
+				g.lines[i+1][col] = text + strings.Repeat(" ", most-behind(text))
+			}
 		}
 	}
 }
@@ -214,43 +233,52 @@ func (g *grid) shrink(columns []int, width int) bool {
 // column.
 func (g *grid) write(b *strings.Builder, columns []int, styled bool) {
 	withMarks := columns[len(columns)-1] == len(g.columns)-1
+	texts := make([][]string, len(columns))
+	var out []byte
 	for k, line := range g.lines {
-		texts := make([][]string, len(columns))
 		height := 1
 		for j, i := range columns {
-			texts[j] = []string{line[i]}
+			texts[j] = append(texts[j][:0], line[i])
 			if cells(line[i]) > g.widths[i] {
 				texts[j] = strings.Split(Wrap(line[i], g.widths[i], ""), "\n")
 			}
 			height = max(height, len(texts[j]))
 		}
 		for h := range height {
-			var out strings.Builder
+			out = out[:0]
 			for j, i := range columns {
 				cell := ""
 				if h < len(texts[j]) {
 					cell = texts[j][h]
 				}
 				if j > 0 {
-					out.WriteString(strings.Repeat(" ", gap))
+					out = spaces(out, gap)
 				}
-				pad := strings.Repeat(" ", max(0, g.widths[i]-cells(cell)))
+				pad := g.widths[i] - cells(cell)
 				if styled && cell != "" && (k == 0 || slices.Contains(g.columns[i].Strong, g.words[k][i])) {
 					cell = bold(cell)
 				}
 				if g.columns[i].Right {
-					cell = pad + cell
+					out = append(spaces(out, pad), cell...)
 				} else {
-					cell += pad
+					out = spaces(append(out, cell...), pad)
 				}
-				out.WriteString(cell)
 			}
 			if withMarks && h == 0 {
-				out.WriteString(strings.Repeat(" ", gap) + g.marks[k])
+				out = append(spaces(out, gap), g.marks[k]...)
 			}
-			b.WriteString(strings.TrimRight(out.String(), " ") + "\n")
+			b.Write(bytes.TrimRight(out, " "))
+			b.WriteByte('\n')
 		}
 	}
+}
+
+// spaces adds so many spaces to a line.
+func spaces(line []byte, n int) []byte {
+	for range n {
+		line = append(line, ' ')
+	}
+	return line
 }
 
 // bold puts a text into bold type on a terminal (ECMA-48, select graphic

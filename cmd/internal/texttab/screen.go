@@ -101,6 +101,8 @@ func cells(text string) int {
 	n := 0
 	for _, r := range text {
 		switch {
+		case r < unicode.MaxASCII:
+			n++ // most of them, and quick
 		case unicode.In(r, unicode.Mn, unicode.Me, unicode.Cf):
 		case unicode.Is(wide, r):
 			n += 2
