@@ -16,7 +16,8 @@ const (
 
 var (
 	pValues = In[List]{Input{Name: "p-values", Kind: Numbers, Domain: fromZeroToOne, MayBeGaps: true,
-		Summary: "the p-values of the tests made together; blanks are not counted"}}
+		Summary: "the p-values of the tests made together; blanks are not counted"}}.
+		atMost(mostItems, "adjust tests that belong together, one family at a time")
 	adjustment = choice("kind", "holm and bonferroni hold the chance of any false finding; benjamini-hochberg the share of false ones among the findings",
 		bonferroni, holm, benjaminiHochberg).withDefault(holm)
 )

@@ -9,7 +9,7 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
-var sizes = In[List]{Input{Name: "sizes", Kind: Numbers, Domain: wholeFrom(1), Summary: "how many there are in all in each stratum"}}
+var sizes = In[List]{Input{Name: "sizes", Kind: Numbers, Domain: wholeFrom(1), Summary: "how many there are in all in each stratum"}}.atMost(mostGroups, fewerGroups)
 
 var stratifiedInterval = &Function{
 	Name:    "stratified-interval",

@@ -120,6 +120,9 @@ func (b *binder) list(in Input, raw any) (any, bool) {
 		b.fail(in.Name, "", "holds no number", "give at least one")
 		return nil, false
 	}
+	if b.tooMany(in, len(list.Values)) {
+		return nil, false
+	}
 	for i, x := range list.Values {
 		if math.IsNaN(x) && in.MayBeGaps {
 			continue
@@ -165,6 +168,9 @@ func (b *binder) groups(in Input, raw any) (any, bool) {
 		b.fail(in.Name, "", "holds no group", "give at least two groups")
 		return nil, false
 	}
+	if b.tooMany(in, len(groups)) {
+		return nil, false
+	}
 	names := make([]string, len(groups))
 	for i, g := range groups {
 		names[i] = g.Name
@@ -173,6 +179,15 @@ func (b *binder) groups(in Input, raw any) (any, bool) {
 		}
 	}
 	return groups, b.distinct(in, names)
+}
+
+// tooMany reports a list that is longer than the function works out.
+func (b *binder) tooMany(in Input, n int) bool {
+	if in.Most == 0 || n <= in.Most {
+		return false
+	}
+	b.fail(in.Name, in.howMany(n), "may be at most "+strconv.Itoa(in.Most)+" here", in.Instead)
+	return true
 }
 
 // distinct reports names that are empty or stand twice.

@@ -23,6 +23,7 @@ type Call struct {
 	method   string
 	sentence string
 	known    map[listKey]*listFacts
+	critical map[farRule]float64
 	among    int // the samples that the automatic cautions look at; 0 stands for one
 }
 

@@ -124,12 +124,33 @@ func (c *Call) checkFar(input, what string, group int, ordered []float64, s summ
 	}
 	at := c.facts(ordered).far()
 	far := math.Abs(ordered[at] - s.mean)
-	if far/s.sd <= esdCritical(s.n, c.rare()) {
+	if far/s.sd <= c.farCritical(s.n) {
 		return
 	}
 	c.add(Finding{Code: "far-value", Severity: Caution, Input: input, Cells: c.address(input, group, at), Message: fmt.Sprintf(
 		"Value %d of %s, %s, lies %s standard deviations from the mean. Check that it is right; keep it if it is, and see outlier-check.",
 		at+1, lowerFirst(what), FormatNumber(ordered[at]), brief(far/s.sd))})
+}
+
+// farRule is what the critical value of checkFar rests on.
+type farRule struct {
+	n            int
+	significance float64
+}
+
+// farCritical is the critical value of checkFar among n values; groups often are of
+// one size, and it is worked out once for them.
+func (c *Call) farCritical(n int) float64 {
+	rule := farRule{n, c.rare()}
+	critical, ok := c.critical[rule]
+	if !ok {
+		if c.critical == nil {
+			c.critical = map[farRule]float64{}
+		}
+		critical = esdCritical(rule.n, rule.significance)
+		c.critical[rule] = critical
+	}
+	return critical
 }
 
 // esdCritical is the critical value of max|x - mean|/sd among n normal values

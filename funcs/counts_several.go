@@ -7,13 +7,19 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-var groupSuccesses = numbers("successes", "how many of each group have the property", wholeFrom(0), NoUnit)
+// Pairs grow with the square of the groups: 400 groups have 79,800.
+const (
+	mostPairedShares = 400
+	insteadOfShares  = "compare some of them two by two by proportion-difference-interval and give their p-values to adjusted-p-values, or compare fewer groups"
+)
+
+var groupSuccesses = numbers("successes", "how many of each group have the property", wholeFrom(0), NoUnit).atMost(mostPairedShares, insteadOfShares)
 
 var proportionsComparison = &Function{
 	Name:    "proportions-comparison",
 	Version: 1,
 	Summary: "test that several shares are equal, and every pairwise difference with its interval",
-	Inputs:  inputs(groupSuccesses, ns, confidence),
+	Inputs:  inputs(groupSuccesses, ns.atMost(mostPairedShares, insteadOfShares), confidence),
 	Results: []Result{
 		{"chi-square", Number, NoUnit, "Pearson's chi-square statistic of the groups by property table"},
 		resultDF,

@@ -48,6 +48,8 @@ type Input struct {
 	Optional  bool     // may be absent though it has no default
 	Infinite  bool     // the text "infinite" is a value too (degrees of freedom)
 	MayBeGaps bool     // gaps are allowed in the list (they keep their place)
+	Most      int      // how many numbers of a list, or groups, there may be; 0 for no bound
+	Instead   string   // what to do where there are more
 	Summary   string   // one phrase, for help and hover
 }
 

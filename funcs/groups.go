@@ -99,17 +99,33 @@ func (c *Call) matched(names []string, lists ...In[List]) ([]string, [][]float64
 			columns[i] = list.Values
 			continue
 		}
+		at := make(map[string]int, len(list.Names))
+		for j, name := range list.Names {
+			at[name] = j
+		}
+		column := make([]float64, 0, len(names))
+		for _, name := range names {
+			if j, ok := at[name]; ok {
+				column = append(column, list.Values[j])
+			}
+		}
+		columns[i] = column
+		if len(column) == len(names) && len(column) == len(list.Names) {
+			continue
+		}
+		groups := make(map[string]bool, len(names))
+		for _, name := range names {
+			groups[name] = true
+		}
 		for _, name := range list.Names {
-			if !slices.Contains(names, name) {
+			if !groups[name] {
 				return nil, nil, c.wrong(in.Name, "", fmt.Sprintf("has a value for %q, which is no group of %s", name, leader), nearestOf(name, names))
 			}
 		}
 		for _, name := range names {
-			at := slices.Index(list.Names, name)
-			if at < 0 {
+			if _, ok := at[name]; !ok {
 				return nil, nil, c.wrong(in.Name, "", fmt.Sprintf("has no value for %q, a group of %s", name, leader), "give one for each group")
 			}
-			columns[i] = append(columns[i], list.Values[at])
 		}
 	}
 	return names, columns, nil

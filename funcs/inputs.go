@@ -45,6 +45,13 @@ func (in In[T]) within(d Domain) In[T] {
 	return in
 }
 
+// atMost is the same input with no more than so many numbers, or groups, and what
+// to do where there are more.
+func (in In[T]) atMost(most int, instead string) In[T] {
+	in.Most, in.Instead = most, instead
+	return in
+}
+
 // described is a typed input of whatever type.
 type described interface{ describe() Input }
 
@@ -90,12 +97,21 @@ func wholeFrom(lowest int) Domain {
 // or all that an int holds.
 const largestCount = min(1<<53, math.MaxInt)
 
+// So many groups, items and tests are worked out within a second.
+const (
+	mostGroups = 10_000
+	mostItems  = 100_000
+
+	fewerGroups = "join groups that belong together, or ask about some of them"
+	fewerItems  = "join small items into larger ones"
+)
+
 // Inputs that several functions share: one name, default and wording for each.
 var (
 	sample       = values("sample", "the measured values, in the order measured")
 	secondSample = values("second-sample", "the second group of measured values")
 	samples      = In[[]Group]{Input{Name: "samples", Kind: Samples, Domain: anyNumber, Unit: SameUnit, MayBeGaps: true,
-		Summary: "the measured values of each group, by name"}}
+		Summary: "the measured values of each group, by name"}}.atMost(mostGroups, fewerGroups)
 
 	meanGiven = number("mean", "the mean, where it stands for the sample", anyNumber, SameUnit)
 	sdGiven   = number("sd", "the standard deviation (divisor n - 1), where it stands for the sample", nonNegative, SameUnit)
@@ -108,9 +124,9 @@ var (
 	secondSD   = number("second-sd", "standard deviation (divisor n - 1) of the second group", nonNegative, SameUnit)
 	secondN    = count("second-n", "how many values in the second group", 2)
 
-	means = numbers("means", "the mean of each group", anyNumber, SameUnit)
-	sds   = numbers("sds", "the standard deviation (divisor n - 1) of each group", nonNegative, SameUnit)
-	ns    = In[List]{Input{Name: "ns", Kind: Numbers, Domain: wholeFrom(1), Summary: "how many values in each group"}}
+	means = numbers("means", "the mean of each group", anyNumber, SameUnit).atMost(mostGroups, fewerGroups)
+	sds   = numbers("sds", "the standard deviation (divisor n - 1) of each group", nonNegative, SameUnit).atMost(mostGroups, fewerGroups)
+	ns    = In[List]{Input{Name: "ns", Kind: Numbers, Domain: wholeFrom(1), Summary: "how many values in each group"}}.atMost(mostGroups, fewerGroups)
 
 	confidence   = level("confidence", "the confidence of the interval").withDefault(0.95)
 	significance = level("significance", "the significance of the test").withDefault(0.05)

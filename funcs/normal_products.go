@@ -9,10 +9,10 @@ import (
 )
 
 var (
-	medians      = numbers("medians", "the median of each factor", positive, SameUnit)
-	geometricSDs = numbers("geometric-sds", "the geometric standard deviation of each factor: exp of the standard deviation of its logarithm", atLeast(1), NoUnit)
+	medians      = numbers("medians", "the median of each factor", positive, SameUnit).atMost(mostItems, fewerItems)
+	geometricSDs = numbers("geometric-sds", "the geometric standard deviation of each factor: exp of the standard deviation of its logarithm", atLeast(1), NoUnit).atMost(mostItems, fewerItems)
 	powers       = numbers("powers", "the power to which each factor is raised, -1 to divide by it; one number stands for all",
-		anyNumber, NoUnit).withDefault(List{Values: []float64{1}})
+		anyNumber, NoUnit).atMost(mostItems, fewerItems).withDefault(List{Values: []float64{1}})
 )
 
 var lognormalProduct = &Function{

@@ -8,19 +8,23 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
-var (
-	itemMeans = means.as("means", "the mean of each item")
-	itemSDs   = sds.as("sds", "the standard deviation of each item")
-	lows      = numbers("lows", "the lowest value of each item, with a triangular distribution", anyNumber, SameUnit)
-	likelies  = numbers("likelies", "the likeliest value of each item", anyNumber, SameUnit)
-	highs     = numbers("highs", "the highest value of each item", anyNumber, SameUnit)
+// mostCorrelated is for how many items a matrix of correlations is looked through,
+// which takes time with the cube of their number.
+const mostCorrelated = 400
 
-	weights  = numbers("weights", "what each item is multiplied by; one number stands for all", anyNumber, NoUnit).withDefault(List{Values: []float64{1}})
+var (
+	itemMeans = means.as("means", "the mean of each item").atMost(mostItems, fewerItems)
+	itemSDs   = sds.as("sds", "the standard deviation of each item").atMost(mostItems, fewerItems)
+	lows      = numbers("lows", "the lowest value of each item, with a triangular distribution", anyNumber, SameUnit).atMost(mostItems, fewerItems)
+	likelies  = numbers("likelies", "the likeliest value of each item", anyNumber, SameUnit).atMost(mostItems, fewerItems)
+	highs     = numbers("highs", "the highest value of each item", anyNumber, SameUnit).atMost(mostItems, fewerItems)
+
+	weights  = numbers("weights", "what each item is multiplied by; one number stands for all", anyNumber, NoUnit).atMost(mostItems, fewerItems).withDefault(List{Values: []float64{1}})
 	constant = number("constant", "a fixed number added to the sum", anyNumber, SameUnit).withDefault(0)
 
 	commonCorrelation = number("correlation", "the correlation of every two items", Domain{Low: -1, High: 1}, NoUnit).withDefault(0)
 	correlations      = numbers("correlations", "the correlations of the items as a square matrix, row by row, in place of correlation",
-		Domain{Low: -1, High: 1}, NoUnit).optional()
+		Domain{Low: -1, High: 1}, NoUnit).atMost(mostCorrelated*mostCorrelated, "give one correlation for all, or join small items into larger ones").optional()
 
 	coverage  = level("probability", "the probability that lower and upper hold between them").withDefault(0.95)
 	threshold = number("threshold", "a value; the probability of passing it is given", anyNumber, SameUnit).optional()

@@ -14,12 +14,19 @@ var differenceColumns = []Result{
 	{"p-value", Number, NoUnit, "p-value against no difference, adjusted for the number of rows"},
 }
 
+// Pairs grow with the square of the groups: 250 groups have 31,125.
+const (
+	mostPaired     = 250
+	insteadOfPairs = "compare with one of them by differences-from-control, ask whether any differ by analysis-of-variance, or compare fewer groups"
+)
+
 var pairwiseDifferences = &Function{
 	Name:    "pairwise-differences",
-	Version: 2,
+	Version: 3,
 	Summary: "differences of the means of several groups, two by two, with intervals that hold together",
-	Inputs:  inputs(samples, means, sds, ns, pooledFirst, confidence, checks),
-	OneOf:   []OneOf{meansWays},
+	Inputs: inputs(samples.atMost(mostPaired, insteadOfPairs), means.atMost(mostPaired, insteadOfPairs), sds.atMost(mostPaired, insteadOfPairs),
+		ns.atMost(mostPaired, insteadOfPairs), pooledFirst, confidence, checks),
+	OneOf: []OneOf{meansWays},
 	Table: append([]Result{
 		{"first", Text, NoUnit, "the group whose mean comes first"},
 		{"second", Text, NoUnit, "the group whose mean is taken off"},
@@ -143,7 +150,7 @@ func (c *Call) separatePairs(groups []groupSummary) error {
 // pair is two groups whose means are compared: the standard error of their
 // difference, how many of them reach to a limit, and the p-value.
 type pair struct {
-	a, b                groupSummary
+	a, b                *groupSummary
 	se, critical, value float64
 }
 
@@ -155,10 +162,10 @@ func (p *pair) valueBy(law dist.StudentizedRange) float64 {
 // workOutPairs lists the pairs of groups in order, each as work leaves it; the
 // cores share them.
 func (c *Call) workOutPairs(groups []groupSummary, work func(*pair)) ([]pair, error) {
-	var pairs []pair
-	for i, a := range groups {
-		for _, b := range groups[i+1:] {
-			pairs = append(pairs, pair{a: a, b: b})
+	pairs := make([]pair, 0, len(groups)*(len(groups)-1)/2)
+	for i := range groups {
+		for j := i + 1; j < len(groups); j++ {
+			pairs = append(pairs, pair{a: &groups[i], b: &groups[j]})
 		}
 	}
 	err := share(c.ctx, len(pairs), 16, func() func(int) { return func(i int) { work(&pairs[i]) } })
@@ -175,7 +182,7 @@ func (c *Call) addPair(p pair) {
 	}})
 }
 
-func (c *Call) refusePair(a, b groupSummary, code, why string) {
+func (c *Call) refusePair(a, b *groupSummary, code, why string) {
 	c.rows = append(c.rows, Row{Values: map[string]any{"first": a.name, "second": b.name},
 		Findings: []Finding{{Code: code, Severity: Refused, Input: c.groupsInput(),
 			Message: a.name + " and " + b.name + ": " + why}}})

@@ -57,6 +57,11 @@ func takes(in Input) string {
 	if expects := in.Expects(); in.Kind != YesNo && in.Kind != Text && expects != anyNumber.String() {
 		text = "; " + expects
 	}
+	if in.Most > 0 && in.Kind == Samples {
+		text += "; at most " + in.howMany(in.Most)
+	} else if in.Most > 0 {
+		text += fmt.Sprintf("; at most %d of them", in.Most)
+	}
 	text += unitText(in.Unit)
 	switch {
 	case in.Default != nil:
@@ -65,6 +70,14 @@ func takes(in Input) string {
 		text += "; may be left out"
 	}
 	return text
+}
+
+// howMany words a number of what the list holds.
+func (in Input) howMany(n int) string {
+	if in.Kind == Samples {
+		return plural(n, "group")
+	}
+	return plural(n, "number")
 }
 
 func unitText(u Unit) string {

@@ -175,7 +175,7 @@ func (s strata) forBudget(budget float64) (n []float64, least float64, ok bool) 
 }
 
 var (
-	unitCosts = numbers("costs", "what one measurement costs in each stratum; 1 where left out", positive, NoUnit).optional()
+	unitCosts = numbers("costs", "what one measurement costs in each stratum; 1 where left out", positive, NoUnit).atMost(mostGroups, fewerGroups).optional()
 	budget    = number("budget", "what may be spent in all", positive, NoUnit)
 
 	smallBudgetKind = FindingKind{"budget-too-small", "the budget does not pay 2 measurements in each stratum"}

@@ -103,11 +103,17 @@ func inputSchema(in funcs.Input) object {
 	switch in.Kind {
 	case funcs.Numbers:
 		byName := object{{"type", "object"}, {"additionalProperties", element}, {"minProperties", 1}}
+		if in.Most > 0 {
+			list, byName = append(list, entry{"maxItems", in.Most}), append(byName, entry{"maxProperties", in.Most})
+		}
 		return append(s, entry{"anyOf", []object{list, packedSchema(), byName, expressionSchema()}})
 	case funcs.Sample:
 		return append(s, entry{"anyOf", []object{list, packedSchema(), expressionSchema()}})
 	case funcs.Samples:
 		byName := object{{"type", "object"}, {"additionalProperties", object{{"anyOf", []object{list, packedSchema()}}}}, {"minProperties", 1}}
+		if in.Most > 0 {
+			byName = append(byName, entry{"maxProperties", in.Most})
+		}
 		return append(s, entry{"anyOf", []object{byName, expressionSchema()}})
 	}
 	forms := []object{number}
