@@ -45,6 +45,9 @@ var outlierCheck = &Function{
 		if err := c.enough("sample", s, 3); err != nil {
 			return err
 		}
+		if math.IsInf(s.sd, 1) || math.IsNaN(s.sd) {
+			return &refusal{beyondDouble("sd")}
+		}
 		alpha := significance.Of(c)
 		most := 1
 		if s.n >= 15 {

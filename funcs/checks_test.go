@@ -189,3 +189,13 @@ func TestChecksRejectAsOftenAsTheySay(t *testing.T) {
 		}
 	}
 }
+
+// A spread that no double holds tells nothing of outliers, and is not looked at again
+// for each of them.
+func TestOutliersOfUnholdableSpreadAreRefused(t *testing.T) {
+	values := counting(1000)
+	for i := range values {
+		values[i] *= 1e300
+	}
+	refusedFor(t, answer(t, "outlier-check", map[string]any{"sample": values, "most-outliers": 200}), "too-large-to-hold")
+}

@@ -9,7 +9,7 @@ import (
 )
 
 const (
-	mostControlled = 1000
+	mostControlled = 500
 	// Each number of values that occurs is an integrand of its own.
 	mostSizes = 40
 )

@@ -9,7 +9,7 @@ import (
 
 const (
 	panelNodes   = 16
-	panelSettled = 4e-13 // the largest last coefficients of a polynomial in use
+	panelSettled = 2e-11 // the largest last coefficients of a polynomial in use; those left out are below 1e-12
 )
 
 // panel is a polynomial in place of a function on an interval. It is filled when
