@@ -16,7 +16,7 @@ var mostOutliers = count("most-outliers", "the most outliers looked for; at most
 
 var outlierCheck = &Function{
 	Name:    "outlier-check",
-	Version: 1,
+	Version: 2,
 	Summary: "which values lie too far out to belong to one normal population (generalised ESD)",
 	Inputs:  inputs(sample, mostOutliers, significance),
 	Results: []Result{{"outliers", Whole, NoUnit, "how many values are outliers"}},

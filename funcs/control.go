@@ -9,9 +9,9 @@ import (
 )
 
 const (
-	mostControlled = 500
+	mostControlled = 250
 	// Each number of values that occurs is an integrand of its own.
-	mostSizes = 40
+	mostSizes = 30
 )
 
 var controlGroup = In[string]{Input{Name: "control", Kind: Text, Summary: "the name of the group that the others are compared with"}}
@@ -26,7 +26,7 @@ var differencesFromControl = &Function{
 	Table: append([]Result{
 		{"group", Text, NoUnit, "the group whose mean is compared with that of the control"},
 	}, differenceColumns...),
-	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 40 different numbers of values"}),
+	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 30 different numbers of values"}),
 	Assumptions: []string{"independent groups of independent values", "normal values, or n large enough for their skewness",
 		"the same variance in all groups"},
 	Citations: []string{"Dunnett 1955, 1964"},
@@ -84,39 +84,27 @@ func (c *Call) controlRows(groups []groupSummary, at int, sd, df float64) error 
 	}
 	dir := direction.Of(c)
 	law := dist.ComparisonsWithControl(control.n, sizes, df, dir == either).Shared()
-	// The critical value and the p-values, which the cores share.
-	var critical float64
-	ps := make([]float64, len(others))
-	statistic := func(g groupSummary) (d, se float64) {
-		return g.mean - control.mean + 0, sd * math.Sqrt(1/float64(g.n)+1/float64(control.n)) // never -0
-	}
-	err := share(c.ctx, len(others)+1, 1, func() func(int) {
-		return func(i int) {
-			if i == 0 {
-				critical = law.UpperQuantile(1 - confidence.Of(c))
-				return
-			}
-			switch d, se := statistic(others[i-1]); dir {
-			case above:
-				ps[i-1] = law.SF(d / se)
-			case below:
-				ps[i-1] = law.SF(-d / se)
-			default:
-				ps[i-1] = law.SF(math.Abs(d / se))
-			}
+	critical := law.UpperQuantile(1 - confidence.Of(c))
+	for _, g := range others {
+		if err := c.cancelled(); err != nil {
+			return err
 		}
-	})
-	if err != nil {
-		return err
-	}
-	for i, g := range others {
-		d, se := statistic(g)
-		values := map[string]any{"group": g.name, "difference": d, "p-value": ps[i]}
+		se := sd * math.Sqrt(1/float64(g.n)+1/float64(control.n))
+		d := g.mean - control.mean + 0 // never -0
+		values := map[string]any{"group": g.name, "difference": d}
 		if dir != below {
 			values["lower"] = d - float64(critical*se)
 		}
 		if dir != above {
 			values["upper"] = d + float64(critical*se)
+		}
+		switch t := d / se; dir {
+		case above:
+			values["p-value"] = law.SF(t)
+		case below:
+			values["p-value"] = law.SF(-t)
+		default:
+			values["p-value"] = law.SF(math.Abs(t))
 		}
 		c.rows = append(c.rows, Row{Values: values})
 	}

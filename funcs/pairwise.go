@@ -14,9 +14,9 @@ var differenceColumns = []Result{
 	{"p-value", Number, NoUnit, "p-value against no difference, adjusted for the number of rows"},
 }
 
-// Pairs grow with the square of the groups: 250 groups have 31,125.
+// Pairs grow with the square of the groups: 200 groups have 19,900.
 const (
-	mostPaired     = 250
+	mostPaired     = 200
 	insteadOfPairs = "compare with one of them by differences-from-control, ask whether any differ by analysis-of-variance, or compare fewer groups"
 )
 
