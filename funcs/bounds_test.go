@@ -71,8 +71,8 @@ func TestTheMostIsWorkedOut(t *testing.T) {
 		arguments map[string]any
 		rows      int
 	}{
-		{"pairwise-differences", map[string]any{"samples": samplesOf(200)}, 19900},
-		{"pairwise-differences", map[string]any{"samples": samplesOf(200), "variances": separate}, 19900},
+		{"pairwise-differences", map[string]any{"samples": samplesOf(150)}, 11175},
+		{"pairwise-differences", map[string]any{"samples": samplesOf(150), "variances": separate}, 11175},
 		{"differences-from-control", map[string]any{"samples": samplesOf(250), "control": "group 1"}, 249},
 		{"proportions-comparison", map[string]any{"successes": many(groupSuccesses.Input, 400), "ns": List{Values: slices.Repeat([]float64{3}, 400)}}, 79800},
 		{"adjusted-p-values", map[string]any{"p-values": many(pValues.Input, 100_000)}, 100_000},
@@ -89,7 +89,7 @@ func TestTheMostIsWorkedOut(t *testing.T) {
 	}
 }
 
-// Thirty numbers of values and no more are worked out together.
+// Twenty numbers of values and no more are worked out together.
 func TestTooManyDifferentSizesAreRefused(t *testing.T) {
 	answer := func(n int) *Outcome {
 		sizes := List{Values: make([]float64, n+1)} // the control first
@@ -108,12 +108,12 @@ func TestTooManyDifferentSizesAreRefused(t *testing.T) {
 		}
 		return out
 	}
-	if out := answer(30); out.Status == StatusRefused || len(out.Rows) != 30 {
-		t.Errorf("30 sizes: %v", out.Findings)
+	if out := answer(20); out.Status == StatusRefused || len(out.Rows) != 20 {
+		t.Errorf("20 sizes: %v", out.Findings)
 	}
-	out := answer(31)
+	out := answer(21)
 	if out.Status != StatusRefused || out.Findings[0].Code != "too-many-sizes" || out.Findings[0].Input != "ns" {
-		t.Errorf("31 sizes: %v", out.Findings)
+		t.Errorf("21 sizes: %v", out.Findings)
 	}
 }
 

@@ -11,7 +11,7 @@ import (
 const (
 	mostControlled = 250
 	// Each number of values that occurs is an integrand of its own.
-	mostSizes = 30
+	mostSizes = 20
 )
 
 var controlGroup = In[string]{Input{Name: "control", Kind: Text, Summary: "the name of the group that the others are compared with"}}
@@ -26,7 +26,7 @@ var differencesFromControl = &Function{
 	Table: append([]Result{
 		{"group", Text, NoUnit, "the group whose mean is compared with that of the control"},
 	}, differenceColumns...),
-	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 30 different numbers of values"}),
+	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 20 different numbers of values"}),
 	Assumptions: []string{"independent groups of independent values", "normal values, or n large enough for their skewness",
 		"the same variance in all groups"},
 	Citations: []string{"Dunnett 1955, 1964"},

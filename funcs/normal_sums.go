@@ -10,7 +10,7 @@ import (
 
 // mostCorrelated is for how many items a matrix of correlations is looked through,
 // which takes time with the cube of their number.
-const mostCorrelated = 400
+const mostCorrelated = 700
 
 var (
 	itemMeans = means.as("means", "the mean of each item").atMost(mostItems, fewerItems)

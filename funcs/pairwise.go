@@ -14,9 +14,9 @@ var differenceColumns = []Result{
 	{"p-value", Number, NoUnit, "p-value against no difference, adjusted for the number of rows"},
 }
 
-// Pairs grow with the square of the groups: 200 groups have 19,900.
+// Pairs grow with the square of the groups: 150 groups have 11,175.
 const (
-	mostPaired     = 200
+	mostPaired     = 150
 	insteadOfPairs = "compare with one of them by differences-from-control, ask whether any differ by analysis-of-variance, or compare fewer groups"
 )
 

@@ -21,12 +21,25 @@ type tailTable struct {
 }
 
 // Panels are even in w, but where M is positive in log w up to w = 1: in u, which
-// is then log w below 0 and w - 1 above.
-const (
-	tablePanels = 140 // from u = -16 to 54, past which no upper tail is a float64
-	firstPanel  = -32
-	panelWidth  = 0.5
-)
+// is then log w below 0 and w - 1 above. They are wide far out, where only the
+// quotient is in use and changes slowly, and narrow again where doubles end.
+const tablePanels = 48 + 11 + 4 // from u = -16, 8 and 52, to 54, past which no upper tail is a float64
+
+// panelAt is the number and the ends of the panel that holds u.
+func panelAt(u float64) (index int, lo, hi float64, ok bool) {
+	from, width, before := -16.0, 0.5, 0
+	switch {
+	case !(u >= -16 && u < 54):
+		return 0, 0, 0, false
+	case u >= 52:
+		from, before = 52, 48+11
+	case u >= 8:
+		from, width, before = 8, 4, 48
+	}
+	number := math.Floor((u - from) / width)
+	lo = from + float64(number*width)
+	return before + int(number), lo, lo + width, true
+}
 
 func (t *tailTable) place(w float64) (u float64) {
 	switch {
@@ -51,13 +64,11 @@ func (t *tailTable) width(u float64) (w float64) {
 // at is P(M <= w) or P(M > w).
 func (t *tailTable) at(w float64, upper bool) float64 {
 	u := t.place(w)
-	number := math.Floor(u / panelWidth)
-	if !(number >= firstPanel && number < firstPanel+tablePanels) {
+	index, lo, hi, ok := panelAt(u)
+	if !ok {
 		return t.tail(w, upper)
 	}
-	index := int(number) - firstPanel
-	lo, hi := number*panelWidth, (number+1)*panelWidth
-	x := (u-lo)*(2/panelWidth) - 1
+	x := 2*(u-lo)/(hi-lo) - 1
 	// Where the bound leaves more than half to the lower tail on the whole panel, the
 	// upper tail is a quotient in any case.
 	if !(upper && t.bound(t.width(lo)) < 0.5) {
