@@ -7,9 +7,9 @@ import (
 	"halfwidth/funcs/internal/dist"
 )
 
-// Pairs grow with the square of the groups: 400 groups have 79,800.
+// Pairs grow with the square of the groups: 300 groups have 44,850.
 const (
-	mostPairedShares = 400
+	mostPairedShares = 300
 	insteadOfShares  = "compare some of them two by two by proportion-difference-interval and give their p-values to adjusted-p-values, or compare fewer groups"
 )
 
