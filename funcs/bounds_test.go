@@ -89,13 +89,15 @@ func TestTheMostIsWorkedOut(t *testing.T) {
 	}
 }
 
-// Twenty numbers of values and no more are worked out together.
+// Forty numbers of values and no more are worked out together, and twenty where
+// the control is much smaller than a group.
 func TestTooManyDifferentSizesAreRefused(t *testing.T) {
-	answer := func(n int) *Outcome {
+	answer := func(n, control int) *Outcome {
 		sizes := List{Values: make([]float64, n+1)} // the control first
 		for i := range sizes.Values {
 			sizes.Values[i] = float64(40 + i)
 		}
+		sizes.Values[0] = float64(control)
 		names := make([]string, n+1)
 		for i := range names {
 			names[i] = fmt.Sprintf("depot %d", i)
@@ -108,12 +110,14 @@ func TestTooManyDifferentSizesAreRefused(t *testing.T) {
 		}
 		return out
 	}
-	if out := answer(20); out.Status == StatusRefused || len(out.Rows) != 20 {
-		t.Errorf("20 sizes: %v", out.Findings)
-	}
-	out := answer(21)
-	if out.Status != StatusRefused || out.Findings[0].Code != "too-many-sizes" || out.Findings[0].Input != "ns" {
-		t.Errorf("21 sizes: %v", out.Findings)
+	for _, c := range []struct{ control, most int }{{40, 40}, {3, 20}} {
+		if out := answer(c.most, c.control); out.Status == StatusRefused || len(out.Rows) != c.most {
+			t.Errorf("%d sizes: %v", c.most, out.Findings)
+		}
+		out := answer(c.most+1, c.control)
+		if out.Status != StatusRefused || out.Findings[0].Code != "too-many-sizes" || out.Findings[0].Input != "ns" {
+			t.Errorf("%d sizes: %v", c.most+1, out.Findings)
+		}
 	}
 }
 

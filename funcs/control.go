@@ -10,8 +10,9 @@ import (
 
 const (
 	mostControlled = 250
-	// Each number of values that occurs is an integrand of its own.
-	mostSizes = 20
+	// Each number of values that occurs is an integrand of its own, and a sharp one
+	// in a group of many more values than the control has.
+	mostSizes, mostSizesFar = 40, 20
 )
 
 var controlGroup = In[string]{Input{Name: "control", Kind: Text, Summary: "the name of the group that the others are compared with"}}
@@ -26,7 +27,7 @@ var differencesFromControl = &Function{
 	Table: append([]Result{
 		{"group", Text, NoUnit, "the group whose mean is compared with that of the control"},
 	}, differenceColumns...),
-	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 20 different numbers of values"}),
+	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 40 different numbers of values; more than 20, where one has over ten times as many as the control"}),
 	Assumptions: []string{"independent groups of independent values", "normal values, or n large enough for their skewness",
 		"the same variance in all groups"},
 	Citations: []string{"Dunnett 1955, 1964"},
@@ -78,9 +79,14 @@ func (c *Call) controlRows(groups []groupSummary, at int, sd, df float64) error 
 	for i, g := range others {
 		sizes[i] = g.n
 	}
-	if distinct := slices.Compact(slices.Sorted(slices.Values(sizes))); len(distinct) > mostSizes {
-		return refuse("too-many-sizes", c.groupsInput(), "The groups have %d different numbers of values, but at most %d are worked out together here; "+
-			"compare fewer groups at a time, or leave out some values so that groups are of one size.", len(distinct), mostSizes)
+	distinct := slices.Compact(slices.Sorted(slices.Values(sizes)))
+	most, where := mostSizes, ""
+	if distinct[len(distinct)-1]/10 > control.n {
+		most, where = mostSizesFar, " where one has over ten times as many as the control"
+	}
+	if len(distinct) > most {
+		return refuse("too-many-sizes", c.groupsInput(), "The groups have %d different numbers of values, but at most %d are worked out together%s; compare fewer groups at a time.",
+			len(distinct), most, where)
 	}
 	dir := direction.Of(c)
 	law := dist.ComparisonsWithControl(control.n, sizes, df, dir == either).Shared()
