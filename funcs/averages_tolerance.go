@@ -17,7 +17,7 @@ var toleranceKind = choice("kind", "normal: mean ± factor·sd, exact for normal
 
 var toleranceInterval = &Function{
 	Name:    "tolerance-interval",
-	Version: 1,
+	Version: 2,
 	Summary: "limits that hold a given share of the population, with a given confidence",
 	Inputs: inputs(sample, meanGiven, sdGiven, nGiven, content, toleranceKind,
 		confidence.as("confidence", "the confidence that the limits hold the content"), direction, checks),

@@ -204,7 +204,7 @@ var chiSquareQuantile = &Function{
 
 var fProbability = &Function{
 	Name:      "f-probability",
-	Version:   1,
+	Version:   2,
 	Summary:   "probability that a value of the F distribution lies between two values, or beyond one",
 	Inputs:    withEnds(NoUnit, firstDF, secondDF),
 	OneOf:     ends,
@@ -222,7 +222,7 @@ var fProbability = &Function{
 
 var fQuantile = &Function{
 	Name:      "f-quantile",
-	Version:   1,
+	Version:   2,
 	Summary:   "value of the F distribution with a given probability below or above it",
 	Inputs:    inputs(firstDF, secondDF, probability, countedFrom),
 	Results:   quantileResults(NoUnit),

@@ -31,7 +31,7 @@ func noncentralFLaw(c *Call) (dist.Distribution, string) {
 
 var noncentralTProbability = &Function{
 	Name:      "noncentral-t-probability",
-	Version:   1,
+	Version:   2,
 	Summary:   "probability that a value of the noncentral t distribution lies between two values, or beyond one",
 	Inputs:    withEnds(NoUnit, tDF.within(atLeast(0.01)), shiftOfMean),
 	OneOf:     ends,
@@ -49,7 +49,7 @@ var noncentralTProbability = &Function{
 
 var noncentralChiSquareProbability = &Function{
 	Name:      "noncentral-chi-square-probability",
-	Version:   1,
+	Version:   2,
 	Summary:   "probability that a value of the noncentral chi-square distribution lies between two values, or beyond one",
 	Inputs:    withEnds(NoUnit, lawDF, squaredMean),
 	OneOf:     ends,
@@ -67,7 +67,7 @@ var noncentralChiSquareProbability = &Function{
 
 var noncentralFProbability = &Function{
 	Name:      "noncentral-f-probability",
-	Version:   1,
+	Version:   2,
 	Summary:   "probability that a value of the noncentral F distribution lies between two values, or beyond one",
 	Inputs:    withEnds(NoUnit, firstDF, secondDF, squaredMean),
 	OneOf:     ends,

@@ -62,7 +62,7 @@ var (
 
 var severalMeansSize = &Function{
 	Name:        "several-means-size",
-	Version:     1,
+	Version:     2,
 	Summary:     "how many values in each group an analysis of variance needs",
 	Inputs:      inputs(trueMeans, expectedSD.as("sd", "the standard deviation expected within each group"), power, significance, designEffect, nonResponse),
 	Results:     []Result{{"n", Whole, NoUnit, "how many values are needed in each group"}, resultPlanned, resultPower},
@@ -98,7 +98,7 @@ var severalMeansSize = &Function{
 
 var severalMeansPower = &Function{
 	Name:        "several-means-power",
-	Version:     1,
+	Version:     2,
 	Summary:     "the power that n values in each group give an analysis of variance",
 	Inputs:      inputs(trueMeans, expectedSD.as("sd", "the standard deviation expected within each group"), plannedN.as("n", "how many are to be measured in each group"), significance, designEffect, nonResponse),
 	Results:     []Result{resultPower},

@@ -40,7 +40,8 @@ func EquivalencePower(df, toLower, toUpper, significance float64) float64 {
 	if t > 0 {
 		top = min(top, (toLower+toUpper)/2/t)
 	}
-	if !(top > 0) {
+	// Below 1 the density of s rises: what underflows at top does so everywhere.
+	if !(top > 0) || top < 1 && df*scaleExponent(num.Log(top)) < -750 {
 		return 0
 	}
 	peak := scaleDensity1(df)

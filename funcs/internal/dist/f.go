@@ -19,14 +19,14 @@ func (f F) shapes() (a, b float64) { return inRange(f.DF1 / 2), inRange(f.DF2 / 
 func (f F) infinite() (first, second bool) { return f.DF1 > 1e100, f.DF2 > 1e100 }
 
 // beta gives X = a x/(a x + b), which follows Beta(a, b), and 1 - X.
-func (f F) beta(x float64) (num.Wide, num.Wide) {
+func (f F) beta(x num.Wide) (num.Wide, num.Wide) {
 	// Scaled so that neither product overflows.
 	s := 1.0
-	if x > 1e150 {
-		s = 1e-200
+	if x.Hi > 1e150 {
+		s = 0x1p-660
 	}
 	a, b := f.shapes()
-	u := num.TwoProduct(a*s, x)
+	u := x.Times(a * s)
 	v := num.Widen(b * s)
 	sum := u.Add(v)
 	return u.Div(sum), v.Div(sum)
@@ -56,7 +56,7 @@ func (f F) tails(x float64) (lower, upper float64) {
 		t := gammaTailsAt(b, num.Widen(b).Over(x))
 		return t.upper, t.lower
 	}
-	X, Y := f.beta(x)
+	X, Y := f.beta(num.Widen(x))
 	if X.Hi <= 0 {
 		return 0, 1
 	}
@@ -84,8 +84,14 @@ func (f F) Between(a, b float64) float64 {
 		case inf1:
 			return Gamma{s2}.Between(s2/b, s2/a)
 		}
-		xa, ya := f.beta(a)
-		xb, yb := f.beta(b)
+		xa, ya := f.beta(num.Widen(a))
+		xb, yb := f.beta(num.Widen(b))
+		if ya.Hi < edge {
+			return f.SF(a) * lostBetween(s2, a, b)
+		}
+		if xb.Hi < edge {
+			return f.CDF(b) * lostBetween(s1, a, b)
+		}
 		width := xb.Hi * ya.Hi * ((b - a) / b)
 		return betaNarrow(xa, ya, xb, yb, width, s1, s2)
 	})
@@ -116,5 +122,17 @@ func (f F) inverse(lower, upper float64) float64 {
 	case inf1:
 		return b / gammaInverse(b, upper, lower)
 	}
-	return betaInverse(a, b, lower, upper).odds * (b / a)
+	odds := betaInverse(a, b, lower, upper).odds
+	// Where the odds leave the doubles the ratio itself may not: so far out the
+	// tail is a power of it, so that a nearer root can be moved outwards.
+	const far = 0x1p200
+	switch {
+	case odds < edge && lower < 1e-20:
+		near := float64(lower * num.Exp(float64(200*math.Ln2)*a))
+		return betaInverse(a, b, near, 1-near).odds * (b / a) / far
+	case odds > 1/edge && upper < 1e-20:
+		near := float64(upper * num.Exp(float64(200*math.Ln2)*b))
+		return betaInverse(a, b, 1-near, near).odds * (b / a) * far
+	}
+	return odds * (b / a)
 }

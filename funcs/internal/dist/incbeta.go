@@ -140,6 +140,32 @@ func betaIntegral(r, a, b, below, y, width float64) float64 {
 	}, 0, width) / y
 }
 
+// betaTailsBeyond is betaTailsAt for the parameters a + j and b, without rounding
+// their sum; as gammaTailsBeyond.
+func betaTailsBeyond(x, y num.Wide, a, j, b float64) tails {
+	s := num.TwoSum(a, j)
+	t := betaTailsAt(x, y, s.Hi, b)
+	if r := x.Hi * ((s.Hi + b) / s.Hi); s.Lo != 0 && r > 0.01 && r < 100 {
+		t.moveShape(betaGrowth(s, x.Hi, b), s.Lo/(math.Sqrt(s.Hi)*math.Sqrt(s.Hi+b)*math.Sqrt(x.Hi)))
+	}
+	return t
+}
+
+// betaFactorBeyond is x^s y^b / B(s, b) for s = a + j.
+func betaFactorBeyond(x, y num.Wide, a, j, b float64) float64 {
+	s := num.TwoSum(a, j)
+	f := betaPointAt(x, y, inRange(s.Hi), inRange(b)).factor
+	return f + float64(f*betaGrowth(s, x.Hi, b))
+}
+
+// betaGrowth is what the rest of s adds to log(x^s y^b / B(s, b)).
+func betaGrowth(s num.Wide, x, b float64) float64 {
+	if s.Lo == 0 {
+		return 0
+	}
+	return s.Lo * (num.Log(x*((s.Hi+b)/s.Hi)) + 1/(2*s.Hi) - 1/(2*(s.Hi+b)))
+}
+
 // BetaTails gives I_x(a, b) and 1 - I_x(a, b), each with full relative accuracy
 // (1e-14 to a, b = 1e10 and down to 1e-300). y is 1 - x, carried apart: the
 // smaller of the two is taken as exact.

@@ -47,6 +47,33 @@ func (t *tails) logUpper() float64 {
 	return t.log + num.Log(t.upperRatio)
 }
 
+// of is one of the tails, logOf its logarithm.
+func (t *tails) of(upper bool) float64 {
+	if upper {
+		return t.upper
+	}
+	return t.lower
+}
+
+func (t *tails) logOf(upper bool) float64 {
+	if upper {
+		return t.logUpper()
+	}
+	return t.logLower()
+}
+
+// moveShape corrects the tails for a shape that was rounded: grow is what the
+// logarithm of the prefactor gains by the rest, and lost what the lower tail
+// loses by it, in prefactors.
+func (t *tails) moveShape(grow, lost float64) {
+	t.lowerRatio = (t.lowerRatio - lost) * (1 - grow)
+	t.upperRatio = (t.upperRatio + lost) * (1 - grow)
+	t.lower -= float64(lost * t.factor)
+	t.upper += float64(lost * t.factor)
+	t.log += grow
+	t.factor += float64(t.factor * grow)
+}
+
 // quadratureFrom is the shape past which a slow series or fraction gives way to
 // quadrature of the density.
 const quadratureFrom = 100
@@ -213,6 +240,36 @@ func reach(a, slope, b, r float64) float64 {
 		t = min(t, 1)
 	}
 	return t
+}
+
+// gammaTailsBeyond is gammaTailsAt for the shape a + j, without rounding it: at
+// 5e9 its last place moves a tail of 1e-300 by 1e-10. The derivative of the lower
+// tail by a is nearly what it loses from a - 1/2 to a + 1/2.
+func gammaTailsBeyond(a, j float64, x num.Wide) tails {
+	s := num.TwoSum(a, j)
+	t := gammaTailsAt(s.Hi, x)
+	if r := x.Hi / s.Hi; s.Lo != 0 && r > 0.01 && r < 100 {
+		t.moveShape(gammaGrowth(s, x.Hi), s.Lo/(math.Sqrt(s.Hi)*math.Sqrt(x.Hi)))
+	}
+	return t
+}
+
+// gammaFactorBeyond is x^s e^-x / Gamma(s) for s = a + j.
+func gammaFactorBeyond(a, j float64, x num.Wide) float64 {
+	s := num.TwoSum(a, j)
+	if s.Hi < 1e-100 || x.Hi > 1e160 {
+		return GammaPrefactor(s.Hi, x.Hi)
+	}
+	f := gammaPointAt(inRange(s.Hi), x).factor
+	return f + float64(f*gammaGrowth(s, x.Hi))
+}
+
+// gammaGrowth is what the rest of a shape adds to log(x^s e^-x / Gamma(s)).
+func gammaGrowth(s num.Wide, x float64) float64 {
+	if s.Lo == 0 {
+		return 0
+	}
+	return s.Lo * (num.Log(x/s.Hi) + 1/(2*s.Hi))
 }
 
 // GammaTails gives the incomplete gamma ratios P(a, x) and Q(a, x), each with

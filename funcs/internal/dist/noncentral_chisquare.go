@@ -15,6 +15,9 @@ type NoncentralChiSquare struct{ DF, Noncentrality float64 }
 // 1e-12 of its mean.
 const hugeNoncentrality = 1e24
 
+// noNoncentrality is what changes no tail that a float64 holds.
+const noNoncentrality = 1e-250
+
 func (d NoncentralChiSquare) valid() bool {
 	return d.DF > 0 && !math.IsInf(d.DF, 1) && d.Noncentrality >= 0
 }
@@ -40,14 +43,14 @@ func (d NoncentralChiSquare) tail(x float64, upper bool) float64 {
 		}
 		return Normal{}.CDF(d.score(x))
 	}
-	if d.Noncentrality/2 == 0 {
+	if d.Noncentrality < noNoncentrality {
 		low, high := GammaTails(max(d.DF/2, 1e-100), x/2)
 		if upper {
 			return high
 		}
 		return low
 	}
-	return d.mixture(x).tail(upper)
+	return d.mixture(num.Widen(x)).tail(upper)
 }
 
 // score is x less the mean in sds.
@@ -56,16 +59,22 @@ func (d NoncentralChiSquare) score(x float64) float64 {
 }
 
 // mixture is the mixture for arguments about x.
-func (d NoncentralChiSquare) mixture(x float64) poissonMixture {
-	a, y, mean := max(d.DF/2, 1e-100), x/2, d.Noncentrality/2
+func (d NoncentralChiSquare) mixture(x num.Wide) poissonMixture {
+	a, mean := max(d.DF/2, 1e-100), d.Noncentrality/2
+	x = num.Wide{Hi: x.Hi / 2, Lo: x.Lo / 2}
+	y := x.Hi
 	g := math.Sqrt(mean) * math.Sqrt(y)
 	half := a / 2 / g
 	return poissonMixture{
 		mean:   mean,
+		shape:  a,
 		saddle: g / (half + num.Hypot(half, 1)), // j (j + a) = mean y
-		tails:  func(j float64) (float64, float64) { return GammaTails(a+j, y) },
-		drop:   func(j float64) float64 { return GammaPrefactor(a+j, y) / (a + j) },
-		ratio:  func(j float64) float64 { return y / (a + j + 1) },
+		tails:  func(j float64) tails { return gammaTailsBeyond(a, j, x) },
+		factor: func(j float64) float64 { return gammaFactorBeyond(a, j, x) },
+		ratio: func(j float64) (ratio, rest float64) {
+			s := num.TwoSum(a, j)
+			return y / s.Hi, x.Lo/y - s.Lo/s.Hi
+		},
 	}
 }
 
@@ -81,11 +90,10 @@ func (d NoncentralChiSquare) Between(a, b float64) float64 {
 		switch {
 		case d.Noncentrality > hugeNoncentrality:
 			return Normal{}.Between(d.score(a), d.score(b))
-		case d.Noncentrality/2 == 0:
+		case d.Noncentrality < noNoncentrality:
 			return ChiSquare{d.DF}.Between(a, b)
 		}
-		m := d.mixture(a/2 + b/2)
-		return m.between(m.saddle, func(j float64) float64 { return ChiSquare{d.DF + 2*j}.Between(a, b) })
+		return narrowly(a, b, func(x num.Wide) float64 { return d.mixture(x).density() })
 	})
 }
 

@@ -27,7 +27,7 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 		return atInfinity
 	case math.IsInf(d.Noncentrality, 1):
 		return atZero
-	case d.Noncentrality/2 == 0 || math.IsInf(d.DF1, 1):
+	case d.Noncentrality < noNoncentrality || math.IsInf(d.DF1, 1):
 		if upper {
 			return F{d.DF1, d.DF2}.SF(x)
 		}
@@ -43,23 +43,36 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 		}
 		return above
 	}
-	r := d.DF1 / d.DF2 * x
-	if math.IsInf(r, 1) {
-		return atInfinity
+	X, Y := F{d.DF1, d.DF2}.beta(num.Widen(x))
+	// So far out the tail is a power of x.
+	switch {
+	case Y.Hi < edge:
+		t := d.tail(x*0x1p-200, true) * num.Exp(-float64(100*math.Ln2)*d.DF2)
+		if upper {
+			return t
+		}
+		return 1 - t
+	case X.Hi < edge:
+		t := d.tail(x*0x1p200, false) * num.Exp(-float64(100*math.Ln2)*d.DF1)
+		if upper {
+			return 1 - t
+		}
+		return t
 	}
-	if r == 0 {
-		return atZero
-	}
-	return d.mixture(r).tail(upper)
+	return d.mixture(X, Y).tail(upper)
 }
 
-// mixture is the mixture for arguments about x, given as r = DF1 x/DF2.
-func (d NoncentralF) mixture(r float64) poissonMixture {
-	a, b := max(d.DF1/2, 1e-100), max(d.DF2/2, 1e-100)
-	y, z := r/(1+r), 1/(1+r)
-	mean := d.Noncentrality / 2
-	// j (a + j) = mean y (a + b + j)
-	c := float64(mean * y)
+// edge is where x or 1-x of a beta law is so small that a tail of a few degrees
+// of freedom is its leading power, and x itself may soon leave the doubles.
+const edge = 1e-270
+
+// mixture is the mixture for arguments about x, given as DF1 x/(DF1 x + DF2) and
+// its complement.
+func (d NoncentralF) mixture(x, y num.Wide) poissonMixture {
+	a, b := F{d.DF1, d.DF2}.shapes()
+	ab, mean := num.TwoSum(a, b), d.Noncentrality/2
+	// j (a + j) = mean x (a + b + j)
+	c := float64(mean * x.Hi)
 	root := num.Hypot(a-c, 2*math.Sqrt(c)*math.Sqrt(a+b))
 	saddle := (c - a + root) / 2
 	if a > c {
@@ -67,10 +80,14 @@ func (d NoncentralF) mixture(r float64) poissonMixture {
 	}
 	return poissonMixture{
 		mean:   mean,
+		shape:  a,
 		saddle: saddle,
-		tails:  func(j float64) (float64, float64) { return BetaTails(y, z, a+j, b) },
-		drop:   func(j float64) float64 { return BetaPrefactor(y, z, a+j, b) / (a + j) },
-		ratio:  func(j float64) float64 { return y * ((a + b + j) / (a + j + 1)) },
+		tails:  func(j float64) tails { return betaTailsBeyond(x, y, a, j, b) },
+		factor: func(j float64) float64 { return betaFactorBeyond(x, y, a, j, b) },
+		ratio: func(j float64) (ratio, rest float64) {
+			s, t := num.TwoSum(a, j), ab.Plus(j)
+			return x.Hi * (t.Hi / s.Hi), x.Lo/x.Hi + t.Lo/t.Hi - s.Lo/s.Hi
+		},
 	}
 }
 
@@ -83,24 +100,23 @@ func (d NoncentralF) SF(x float64) float64 { return d.tail(x, true) }
 // Between is P(a <= X <= b).
 func (d NoncentralF) Between(a, b float64) float64 {
 	return between(d, a, b, func() float64 {
-		switch r := d.DF1 / d.DF2 * (a/2 + b/2); {
-		case d.Noncentrality/2 == 0 || math.IsInf(d.DF1, 1):
+		switch {
+		case d.Noncentrality < noNoncentrality || math.IsInf(d.DF1, 1):
 			return F{d.DF1, d.DF2}.Between(a, b)
 		case d.Noncentrality > hugeNoncentrality:
 			c := 1 + d.Noncentrality/d.DF1
 			return Gamma{d.DF2 / 2}.Between(d.DF2/2*(c/b), d.DF2/2*(c/a))
 		case d.DF2 > manyDF:
 			return NoncentralChiSquare{d.DF1, d.Noncentrality}.Between(d.DF1*a, d.DF1*b)
-		case !(r > 0) || math.IsInf(r, 1):
-			return difference(d, a, b)
-		default:
-			m := d.mixture(r)
-			return m.between(m.saddle, func(j float64) float64 {
-				// The central ratio j has DF1+2j degrees of freedom above.
-				scale := d.DF1 / (d.DF1 + 2*j)
-				return F{d.DF1 + 2*j, d.DF2}.Between(scale*a, scale*b)
-			})
 		}
+		law := F{d.DF1, d.DF2}
+		if _, y := law.beta(num.Widen(a)); y.Hi < edge {
+			return d.SF(a) * lostBetween(d.DF2/2, a, b)
+		}
+		if x, _ := law.beta(num.Widen(b)); x.Hi < edge {
+			return d.CDF(b) * lostBetween(d.DF1/2, a, b)
+		}
+		return narrowly(a, b, func(x num.Wide) float64 { return d.mixture(law.beta(x)).density() })
 	})
 }
 

@@ -31,27 +31,17 @@ func (d NoncentralT) mirror() NoncentralT { return NoncentralT{d.DF, -d.Noncentr
 // or over Z, of the probability that the other lies between its limits.
 func (d NoncentralT) Between(a, b float64) float64 {
 	return between(d, a, b, func() float64 {
-		nu, delta := d.DF, d.Noncentrality
 		switch {
-		case nu > manyDF:
-			return Normal{}.Between(a-delta, b-delta)
-		case d.far() && a < 0:
-			return d.mirror().betweenOverZ(-b, -a)
-		case d.far():
-			return d.betweenOverZ(a, b)
+		case d.DF > manyDF:
+			return Normal{}.Between(a-d.Noncentrality, b-d.Noncentrality)
+		case b < 0 && (d.far() || -b > d.power()):
+			return d.mirror().Between(-b, -a)
+		case a > d.power():
+			return d.SF(a) * lostBetween(d.DF, a, b)
+		case d.far() && a > 0:
+			return narrowly(a, b, d.densityOverZ)
 		}
-		// The density of T at t is largest in s at the positive root of
-		// (nu + t^2) s^2 - t delta s - (nu + 1) = 0.
-		t := a/2 + b/2
-		p, q := nu/(nu+float64(t*t)), t/(nu+float64(t*t))*delta
-		s := q/2 + math.Sqrt(float64(q*q)/4+float64(p*(1+1/nu)))
-		f := func(w float64) float64 {
-			x := s * num.Exp(w)
-			inside := logInterval(math.Abs(float64(t*x)-delta), (b-a)/2*x)
-			return num.Exp(float64(nu*scaleExponent(num.Log(s)+w)) + inside)
-		}
-		step := min(0.18, 1/num.Hypot(math.Sqrt(2*nu)*max(1, s), float64(math.Abs(t)*s)+8))
-		return scaleDensity1(nu) * num.Trapezoid(f, 0, step, 1e-8)
+		return d.betweenOverScale(a, b)
 	})
 }
 
@@ -77,9 +67,7 @@ func (d NoncentralT) logSF(t float64) float64 {
 	case d.DF > manyDF:
 		return NormalLogCDF(delta - t)
 	}
-	// Beyond far the tail is a power of t: s has to be so small that its density
-	// is one, to a relative 1e-20.
-	if far := 1e10 * (math.Abs(delta) + 40) * max(1, math.Sqrt(d.DF)); t > far {
+	if far := d.power(); t > far {
 		return d.logSF(far) - float64(d.DF*num.Log(t/far))
 	}
 	// Where this is not the smaller tail, take the complement.
@@ -89,6 +77,12 @@ func (d NoncentralT) logSF(t float64) float64 {
 		}
 	}
 	return d.integral(t)
+}
+
+// power is where the tail becomes a power of t: s has to be so small that its
+// density is one, to a relative 1e-20.
+func (d NoncentralT) power() float64 {
+	return 1e10 * (math.Abs(d.Noncentrality) + 40) * max(1, math.Sqrt(d.DF))
 }
 
 // integral is log P(T > t), by whichever order of integration is smoother.
@@ -115,7 +109,19 @@ func (d NoncentralT) UpperQuantile(q float64) float64 {
 		return math.Inf(1)
 	case q == 1:
 		return math.Inf(-1)
-	case q > 0.5:
+	}
+	if math.Abs(d.Noncentrality) < 1 && d.DF <= manyDF {
+		// Near 0, t is known by what lies between 0 and it.
+		central := Normal{}.Between(0, math.Abs(d.Noncentrality))
+		if h := math.Copysign(central, d.Noncentrality) - (q - 0.5); h == 0 {
+			return 0
+		} else if h < 0 && h > -0.1 {
+			return -d.mirror().fromZero(-h)
+		} else if h > 0 && h < 0.1 {
+			return d.fromZero(h)
+		}
+	}
+	if q > 0.5 {
 		return -d.mirror().solveUpper(1 - q)
 	}
 	return d.solveUpper(q)
@@ -133,6 +139,17 @@ func TPower(df, noncentrality, tCritical float64, twoSided bool) float64 {
 		power += d.CDF(-tCritical)
 	}
 	return min(power, 1)
+}
+
+// fromZero is t with P(0 < T < t) = p for small p.
+func (d NoncentralT) fromZero(p float64) float64 {
+	logP := num.Log(p)
+	f := func(u float64) float64 { return num.Log(d.Between(0, num.Exp(u))) - logP }
+	t := num.Exp(crossing(f, logP+1, 0.5, -745, 709, math.Abs(logP)))
+	if p < 1e-6 {
+		t *= p / d.Between(0, t) // proportional, near 0
+	}
+	return t
 }
 
 // solveUpper finds t from its upper tail q <= 1/2, in asinh t, which is t near 0

@@ -141,18 +141,44 @@ func (d NoncentralT) logSFOverZ(t float64) float64 {
 	return num.Log(num.Trapezoid(f, z, step, 1e-8) / math.Sqrt(2*math.Pi))
 }
 
-// betweenOverZ is P(a <= T <= b) for a > 0 and a large noncentrality.
-func (d NoncentralT) betweenOverZ(a, b float64) float64 {
-	nu, delta := d.DF, d.Noncentrality
-	root := math.Sqrt(nu) / b
+// densityOverZ is t times the density of T at t > 0, for a large noncentrality:
+// an average over z of the density of log s at (z + delta)/t.
+func (d NoncentralT) densityOverZ(t num.Wide) float64 {
+	half, delta := d.DF/2, d.Noncentrality
+	root := math.Sqrt(d.DF) / t.Hi
 	f := func(z float64) float64 {
-		low, high := (z+delta)/b, (z+delta)/a
-		if low <= 0 {
+		r := num.TwoSum(z, delta)
+		if r.Hi <= 0 {
 			return 0
 		}
-		return num.Exp(-float64(z*z)/2) * Gamma{nu / 2}.Between(nu/2*low*low, nu/2*high*high)
+		r = r.Div(t)
+		return num.Exp(-float64(z*z)/2) * gammaPointAt(half, r.Mul(r).Times(half)).factor
 	}
-	y := (delta + num.Hypot(delta, 2*math.Sqrt(nu)*num.Hypot(1, root))) / 2 / (1 + float64(root*root))
-	step := min(0.5, 0.8/num.Hypot(1, num.Hypot(root, math.Sqrt(nu)/y)))
-	return num.Trapezoid(f, y-delta, step, 1e-8) / math.Sqrt(2*math.Pi)
+	y := (delta + num.Hypot(delta, 2*math.Sqrt(d.DF)*num.Hypot(1, root))) / 2 / (1 + float64(root*root))
+	step := min(0.5, 0.8/num.Hypot(1, num.Hypot(root, math.Sqrt(d.DF)/y)))
+	return 2 * num.Trapezoid(f, y-delta, step, 1e-8) / math.Sqrt(2*math.Pi)
+}
+
+// betweenOverScale is P(a <= T <= b) as an average over s.
+func (d NoncentralT) betweenOverScale(a, b float64) float64 {
+	nu, delta := d.DF, d.Noncentrality
+	// The density of T at t is largest in s at the positive root of
+	// (nu + t^2) s^2 - t delta s - (nu + 1) = 0.
+	middle := num.TwoSum(a/2, b/2)
+	t := middle.Hi
+	p, q := nu/(nu+float64(t*t)), t/(nu+float64(t*t))*delta
+	s := q/2 + math.Sqrt(float64(q*q)/4+float64(p*(1+1/nu)))
+	logS, apart := num.Log(s), middle.Plus(-delta).Float()
+	f := func(w float64) float64 {
+		u := logS + w
+		x := s * num.Exp(w)
+		away := float64(t*x) - delta
+		if math.Abs(u) < 0.5 {
+			away = apart + float64(t*num.Expm1(u))
+		}
+		inside := logInterval(math.Abs(away), (b-a)/2*x)
+		return num.Exp(float64(nu*scaleExponent(u)) + inside)
+	}
+	step := min(0.18, 1/num.Hypot(math.Sqrt(2*nu)*max(1, s), float64(math.Abs(t)*s)+8))
+	return scaleDensity1(nu) * num.Trapezoid(f, 0, step, 1e-8)
 }

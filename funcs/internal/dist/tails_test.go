@@ -6,6 +6,8 @@ import (
 	"math/big"
 	"math/rand/v2"
 	"testing"
+
+	"halfwidth/funcs/internal/num"
 )
 
 // A lawGrid draws laws of one family, with parameters over many orders of
@@ -71,7 +73,7 @@ func grids(high float64) []lawGrid {
 				sum := o.add(u, o.num(l.DF2))
 				return o.betaTails(o.div(u, sum), o.div(o.num(l.DF2), sum), o.num(l.DF1/2), o.num(l.DF2/2))
 			}, func(law Distribution, x float64) float64 {
-				X, Y := law.(F).beta(x)
+				X, Y := law.(F).beta(num.Widen(x))
 				return betaPointAt(X, Y, law.(F).DF1/2, law.(F).DF2/2).factor
 			}},
 	}
