@@ -21,7 +21,7 @@ func main() {
 		fmt.Fprintln(os.Stderr, "usage: accuracy FILE.md")
 		os.Exit(2)
 	}
-	page, err := measure(filepath.Join("testdata", "references", "numerics"))
+	page, err := measure(filepath.Join("testdata", "references"))
 	if err == nil {
 		err = os.WriteFile(os.Args[1], []byte(page), 0o644)
 	}
@@ -43,30 +43,44 @@ type measured struct {
 // passed over: a finite factor that the catalogue does not use.
 func passedOver(row map[string]string) bool { return row["fpc"] == "(N-n)/(N-1)" }
 
-func measure(folder string) (string, error) {
-	files, err := filepath.Glob(filepath.Join(folder, "*.csv"))
-	if err != nil || len(files) == 0 {
-		return "", fmt.Errorf("no reference files in %s (%v)", folder, err)
+// folders of the reference files.
+var folders = []string{"numerics", "further"}
+
+// measureAll gives every quantity of every file, in the order in which they come.
+func measureAll(references string) ([]*measured, error) {
+	var list []*measured
+	for _, folder := range folders {
+		files, err := filepath.Glob(filepath.Join(references, folder, "*.csv"))
+		if err != nil || len(files) == 0 {
+			return nil, fmt.Errorf("no reference files in %s of %s (%v)", folder, references, err)
+		}
+		for _, file := range files {
+			if list, err = measureFile(list, file); err != nil {
+				return nil, fmt.Errorf("%s: %w", file, err)
+			}
+		}
+	}
+	return list, nil
+}
+
+func measure(references string) (string, error) {
+	list, err := measureAll(references)
+	if err != nil {
+		return "", err
 	}
 	var b strings.Builder
 	b.WriteString(`# Accuracy
 
-Made by ` + "`go run ./funcs/internal/accuracy funcs/ACCURACY.md`" + `: every point of testdata/references/numerics, computed at 60 digits for
-exactly the doubles given, against what this program computes. Relative errors; 0 means that every double is the nearest or
+Made by ` + "`go run ./funcs/internal/accuracy funcs/ACCURACY.md`" + `: every point of testdata/references/numerics and further, computed at 50 to
+60 digits for exactly the doubles given, against what this program computes. Relative errors; 0 means that every double is the nearest or
 the sample size is equal. Left out: half-widths with the finite factor √((N-n)/(N-1)), which no function uses.
 
 | quantity | points | largest error | median error | domain tried |
 | --- | --- | --- | --- | --- |
 `)
-	for _, file := range files {
-		list, err := measureFile(file)
-		if err != nil {
-			return "", fmt.Errorf("%s: %w", file, err)
-		}
-		for _, m := range list {
-			slices.Sort(m.errors)
-			fmt.Fprintf(&b, "| %s | %d | %s | %s | %s |\n", m.name, len(m.errors), short(m.errors[len(m.errors)-1]), short(m.errors[len(m.errors)/2]), m.domain())
-		}
+	for _, m := range list {
+		slices.Sort(m.errors)
+		fmt.Fprintf(&b, "| %s | %d | %s | %s | %s |\n", m.name, len(m.errors), short(m.errors[len(m.errors)-1]), short(m.errors[len(m.errors)/2]), m.domain())
 	}
 	return b.String(), nil
 }
@@ -94,7 +108,8 @@ func (m *measured) domain() string {
 	return strings.Join(append(parts, "values from "+strconv.FormatFloat(m.least, 'g', 2, 64)), "; ")
 }
 
-func measureFile(path string) ([]*measured, error) {
+// measureFile adds the quantities of a file to the list.
+func measureFile(list []*measured, path string) ([]*measured, error) {
 	file, err := os.Open(path)
 	if err != nil {
 		return nil, err
@@ -104,7 +119,6 @@ func measureFile(path string) ([]*measured, error) {
 	if err != nil {
 		return nil, err
 	}
-	var list []*measured
 	for _, record := range records[1:] {
 		row := map[string]string{}
 		for i, name := range records[0] {

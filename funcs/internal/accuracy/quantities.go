@@ -114,6 +114,40 @@ func severalMeans(v args, text func(string) string) map[string]any {
 	return map[string]any{"means": means, "sd": v("sd"), "n": int(v("n_per_group")), "significance": v("alpha")}
 }
 
+// distribution makes a law of a row's arguments.
+type distribution func(v args) dist.Distribution
+
+var (
+	normal      distribution = func(v args) dist.Distribution { return dist.Normal{} }
+	student     distribution = func(v args) dist.Distribution { return dist.Student{DF: v("df")} }
+	chiSquare   distribution = func(v args) dist.Distribution { return dist.ChiSquare{DF: v("df")} }
+	fisher      distribution = func(v args) dist.Distribution { return dist.F{DF1: v("df1"), DF2: v("df2")} }
+	beta        distribution = func(v args) dist.Distribution { return dist.Beta{A: v("a"), B: v("b")} }
+	gamma       distribution = func(v args) dist.Distribution { return dist.Gamma{Shape: v("a")} }
+	noncentralT distribution = func(v args) dist.Distribution {
+		return dist.NoncentralT{DF: v("df"), Noncentrality: v("delta")}
+	}
+	noncentralChiSquare distribution = func(v args) dist.Distribution {
+		return dist.NoncentralChiSquare{DF: v("df"), Noncentrality: v("lambda")}
+	}
+	noncentralF distribution = func(v args) dist.Distribution {
+		return dist.NoncentralF{DF1: v("df1"), DF2: v("df2"), Noncentrality: v("lambda")}
+	}
+)
+
+// interval is P(lo <= X <= hi).
+func (d distribution) interval() quantity {
+	return law(func(v args) float64 { return d(v).Between(v("lo"), v("hi")) })
+}
+
+func (d distribution) quantile() quantity {
+	return law(func(v args) float64 { return d(v).Quantile(v("p")) })
+}
+
+func (d distribution) upperQuantile() quantity {
+	return law(func(v args) float64 { return d(v).UpperQuantile(v("q")) })
+}
+
 // quantities says how each function of the reference files is computed here.
 var quantities = map[string]quantity{
 	"normal_cdf":                law(func(v args) float64 { return dist.Normal{}.CDF(v("z")) }),
@@ -178,4 +212,22 @@ var quantities = map[string]quantity{
 	"poisson_garwood_lower":             answer("rate-interval", "lower", events),
 	"poisson_garwood_upper":             answer("rate-interval", "upper", events),
 	"equivalence_sample_size_per_group": answer("equivalence-size", "n", equivalence("two-samples")),
+
+	"normal_upper_quantile":                normal.upperQuantile(),
+	"student_t_upper_quantile":             student.upperQuantile(),
+	"student_t_interval":                   student.interval(),
+	"chi_square_interval":                  chiSquare.interval(),
+	"f_interval":                           fisher.interval(),
+	"reg_inc_beta_interval":                beta.interval(),
+	"reg_inc_beta_upper_inverse":           beta.upperQuantile(),
+	"reg_gamma_interval":                   gamma.interval(),
+	"noncentral_t_interval":                noncentralT.interval(),
+	"noncentral_t_quantile":                noncentralT.quantile(),
+	"noncentral_t_upper_quantile":          noncentralT.upperQuantile(),
+	"noncentral_chi_square_interval":       noncentralChiSquare.interval(),
+	"noncentral_chi_square_quantile":       noncentralChiSquare.quantile(),
+	"noncentral_chi_square_upper_quantile": noncentralChiSquare.upperQuantile(),
+	"noncentral_f_interval":                noncentralF.interval(),
+	"noncentral_f_quantile":                noncentralF.quantile(),
+	"noncentral_f_upper_quantile":          noncentralF.upperQuantile(),
 }

@@ -18,6 +18,10 @@ func (f F) shapes() (a, b float64) { return inRange(f.DF1 / 2), inRange(f.DF2 / 
 // infinite says which of the two is as good as infinite.
 func (f F) infinite() (first, second bool) { return f.DF1 > 1e100, f.DF2 > 1e100 }
 
+// edge is where x or 1-x of a beta law is so small that a tail of a few degrees
+// of freedom is its leading power, and x itself may soon leave the doubles.
+const edge = 1e-270
+
 // beta gives X = a x/(a x + b), which follows Beta(a, b), and 1 - X.
 func (f F) beta(x num.Wide) (num.Wide, num.Wide) {
 	// Scaled so that neither product overflows.
@@ -80,9 +84,9 @@ func (f F) Between(a, b float64) float64 {
 		s1, s2 := f.shapes()
 		switch {
 		case inf2:
-			return Gamma{s1}.Between(s1*a, s1*b)
+			return narrowly(a, b, func(x num.Wide) float64 { return gammaPointAt(s1, x.Times(s1)).factor })
 		case inf1:
-			return Gamma{s2}.Between(s2/b, s2/a)
+			return narrowly(a, b, func(x num.Wide) float64 { return gammaPointAt(s2, num.Widen(s2).Div(x)).factor })
 		}
 		xa, ya := f.beta(num.Widen(a))
 		xb, yb := f.beta(num.Widen(b))

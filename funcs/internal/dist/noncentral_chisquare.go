@@ -22,7 +22,8 @@ func (d NoncentralChiSquare) valid() bool {
 	return d.DF > 0 && !math.IsInf(d.DF, 1) && d.Noncentrality >= 0
 }
 
-func (d NoncentralChiSquare) tail(x float64, upper bool) float64 {
+func (d NoncentralChiSquare) tail(at num.Wide, upper bool) float64 {
+	x := at.Hi
 	atZero, atInfinity := 0.0, 1.0
 	if upper {
 		atZero, atInfinity = 1, 0
@@ -50,7 +51,7 @@ func (d NoncentralChiSquare) tail(x float64, upper bool) float64 {
 		}
 		return low
 	}
-	return d.mixture(num.Widen(x)).tail(upper)
+	return d.mixture(at).tail(upper)
 }
 
 // score is x less the mean in sds.
@@ -79,10 +80,10 @@ func (d NoncentralChiSquare) mixture(x num.Wide) poissonMixture {
 }
 
 // CDF is P(X <= x).
-func (d NoncentralChiSquare) CDF(x float64) float64 { return d.tail(x, false) }
+func (d NoncentralChiSquare) CDF(x float64) float64 { return d.tail(num.Widen(x), false) }
 
 // SF is P(X > x).
-func (d NoncentralChiSquare) SF(x float64) float64 { return d.tail(x, true) }
+func (d NoncentralChiSquare) SF(x float64) float64 { return d.tail(num.Widen(x), true) }
 
 // Between is P(a <= X <= b).
 func (d NoncentralChiSquare) Between(a, b float64) float64 {

@@ -33,7 +33,7 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 		}
 		return F{d.DF1, d.DF2}.CDF(x)
 	case d.DF2 > manyDF:
-		return NoncentralChiSquare{d.DF1, d.Noncentrality}.tail(d.DF1*x, upper)
+		return NoncentralChiSquare{d.DF1, d.Noncentrality}.tail(num.TwoProduct(d.DF1, x), upper)
 	}
 	if d.Noncentrality > hugeNoncentrality {
 		// The numerator is as good as its mean; large x is a small denominator.
@@ -61,10 +61,6 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 	}
 	return d.mixture(X, Y).tail(upper)
 }
-
-// edge is where x or 1-x of a beta law is so small that a tail of a few degrees
-// of freedom is its leading power, and x itself may soon leave the doubles.
-const edge = 1e-270
 
 // mixture is the mixture for arguments about x, given as DF1 x/(DF1 x + DF2) and
 // its complement.
@@ -107,7 +103,8 @@ func (d NoncentralF) Between(a, b float64) float64 {
 			c := 1 + d.Noncentrality/d.DF1
 			return Gamma{d.DF2 / 2}.Between(d.DF2/2*(c/b), d.DF2/2*(c/a))
 		case d.DF2 > manyDF:
-			return NoncentralChiSquare{d.DF1, d.Noncentrality}.Between(d.DF1*a, d.DF1*b)
+			c := NoncentralChiSquare{d.DF1, d.Noncentrality}
+			return narrowly(a, b, func(x num.Wide) float64 { return c.mixture(x.Times(d.DF1)).density() })
 		}
 		law := F{d.DF1, d.DF2}
 		if _, y := law.beta(num.Widen(a)); y.Hi < edge {
