@@ -66,6 +66,9 @@ func (t *tails) logOf(upper bool) float64 {
 // logarithm of the prefactor gains by the rest, and lost what the lower tail
 // loses by it, in prefactors.
 func (t *tails) moveShape(grow, lost float64) {
+	if t.factor == 0 {
+		return // what is lost may be more than a tail that is 0
+	}
 	t.lowerRatio = (t.lowerRatio - lost) * (1 - grow)
 	t.upperRatio = (t.upperRatio + lost) * (1 - grow)
 	t.lower -= float64(lost * t.factor)

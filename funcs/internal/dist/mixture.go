@@ -33,10 +33,20 @@ type poissonMixture struct {
 // tails go on as analytic functions of j.
 const manyTerms = 1e5
 
+// manySteps is the step for that rule about centre, a multiple of many units in
+// its last place: j must not be rounded when the step is halved, either.
+func manySteps(centre float64) float64 {
+	_, exponent := math.Frexp(centre)
+	unit := math.Ldexp(1, max(6, exponent-46))
+	return unit * math.Ceil(1.2*math.Sqrt(centre)/unit)
+}
+
 // weight is the Poisson probability of j, and its logarithm.
 func (m poissonMixture) weight(j float64) (w, log float64) {
-	p := gammaPointAt(j+1, num.Widen(m.mean))
-	return p.factor / m.mean, p.log - num.Log(m.mean)
+	s := num.TwoSum(j, 1) // past 2^53, j+1 is rounded
+	p := gammaPointAt(s.Hi, num.Widen(m.mean))
+	grow := gammaGrowth(s, m.mean)
+	return (p.factor + float64(p.factor*num.Expm1(grow))) / m.mean, p.log + grow - num.Log(m.mean)
 }
 
 // logTerm is the logarithm of weight(j) times one central tail.
@@ -76,7 +86,7 @@ func (m poissonMixture) tail(upper bool) float64 {
 		if m.logTerm(centre, upper) < -800 {
 			return 0
 		}
-		step := 64 * math.Ceil(1.2*math.Sqrt(centre)/64)
+		step := manySteps(centre)
 		f := func(j float64) float64 {
 			if j < 0 {
 				return 0
@@ -99,7 +109,10 @@ func (m poissonMixture) tail(upper bool) float64 {
 }
 
 // raised keeps terms in range whose sum is above 1e-300.
-const raised = 0x1p900
+const (
+	raised    = 0x1p900
+	logRaised = 900 * math.Ln2
+)
 
 // term is weight(j) times one central tail, raised.
 func (m poissonMixture) term(j float64, upper bool) float64 {
@@ -108,7 +121,7 @@ func (m poissonMixture) term(j float64, upper bool) float64 {
 	if size := t.of(upper); w > 1e-290 && size > 1e-290 {
 		return float64(w*raised) * size
 	}
-	return num.Exp(logW+t.logOf(upper)) * raised
+	return num.Exp(logW + t.logOf(upper) + logRaised)
 }
 
 // first is start, or where the terms there are too small to count the nearest
@@ -181,7 +194,7 @@ func (m poissonMixture) density() float64 {
 		return float64(w * m.factor(j))
 	}
 	if centre > manyTerms {
-		step := 64 * math.Ceil(1.2*math.Sqrt(centre)/64)
+		step := manySteps(centre)
 		return num.Trapezoid(f, centre, step, 1e-8)
 	}
 	peak := f(centre)
@@ -227,7 +240,10 @@ func lostBetween(power, a, b float64) float64 {
 func solvePositive(tail func(float64) float64, p, centre, spread float64) float64 {
 	target := num.Log(p)
 	f := func(u float64) float64 { return num.Log(tail(num.Exp(u))) - target }
-	u := crossing(f, num.Log(centre), min(max(spread, 1e-12), 1), -745, 709.7, math.Abs(target))
+	u := crossing(f, num.Log(centre), min(max(spread, 1e-12), 1), -745, largestLog, math.Abs(target))
+	if u >= largestLog {
+		return math.Inf(1)
+	}
 	// The last place of u is much of x where u is large: one step of a secant more.
 	x := num.Exp(u)
 	h := 1e-3 * min(max(spread, 1e-12), 1)

@@ -7,6 +7,7 @@ import (
 	"strconv"
 	"strings"
 	"testing"
+	"time"
 )
 
 // testdata/references/numerics: Poisson mixtures and quadratures at 60 digits.
@@ -186,5 +187,33 @@ func BenchmarkNoncentralF(b *testing.B) {
 func BenchmarkNoncentralChiSquareLarge(b *testing.B) {
 	for b.Loop() {
 		NoncentralChiSquare{3, 1e5}.SF(1e5)
+	}
+}
+
+// A quantile past the largest float64 is infinite, as for the central laws:
+// these are 5e312, and -7e372 by the power of its tail.
+func TestNoncentralQuantilesPastTheDoublesAreInfinite(t *testing.T) {
+	if x := (NoncentralF{39678368.41742455, 0.5, 1221124.5981556482}).UpperQuantile(1.4428045022166922e-81); !math.IsInf(x, 1) {
+		t.Error(x)
+	}
+	if x := (NoncentralT{0.6648325058958764, -14.429224767070023}).Quantile(6.2186276702489685e-248); !math.IsInf(x, -1) {
+		t.Error(x)
+	}
+}
+
+// Past 2^53 units of the Poisson mean, and where a step of the search for a
+// quantile ends far below the doubles, no tail takes long: the bound is a
+// hundred times what they take.
+func TestHugeNoncentralitiesTakeNoLonger(t *testing.T) {
+	start := time.Now()
+	for _, lambda := range []float64{2.9e7, 1e16, 1e20, 4e23} {
+		d := NoncentralChiSquare{7, lambda}
+		x := lambda - 3*math.Sqrt(lambda)
+		wantDigits(t, lambda, d.CDF(x)+d.SF(x), 1, 1e-12)
+		d.Between(x, x*(1+1e-14))
+		d.Quantile(2.4e-250)
+	}
+	if took := time.Since(start); took > time.Second {
+		t.Errorf("took %v", took)
 	}
 }

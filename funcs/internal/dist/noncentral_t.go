@@ -169,6 +169,9 @@ func (d NoncentralT) solveUpper(q float64) float64 {
 		step = min(spread/num.Hypot(1, start), 0.5)
 	}
 	first := math.Copysign(num.Log(math.Abs(start)+num.Hypot(start, 1)), start)
-	y := crossing(f, first, step, -710, 710, math.Abs(target))
+	y := crossing(f, first, step, -largestLog, largestLog, math.Abs(target))
+	if math.Abs(y) >= largestLog {
+		return math.Copysign(math.Inf(1), y)
+	}
 	return num.Sinh(y)
 }

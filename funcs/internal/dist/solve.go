@@ -6,6 +6,9 @@ import (
 	"halfwidth/funcs/internal/num"
 )
 
+// largestLog is the logarithm of nearly the largest float64.
+const largestLog = 709.78
+
 // crossing finds where the monotone function f passes 0. It walks from x in
 // steps that double until f changes sign, within lo and hi, then narrows the
 // bracket by inverse quadratic interpolation guarded by bisection (Chandrupatla
