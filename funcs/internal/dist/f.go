@@ -91,10 +91,10 @@ func (f F) Between(a, b float64) float64 {
 		xa, ya := f.beta(num.Widen(a))
 		xb, yb := f.beta(num.Widen(b))
 		if ya.Hi < edge {
-			return f.SF(a) * lostBetween(s2, a, b)
+			return float64(f.SF(a) * lostBetween(s2, a, b))
 		}
 		if xb.Hi < edge {
-			return f.CDF(b) * lostBetween(s1, a, b)
+			return float64(f.CDF(b) * lostBetween(s1, a, b))
 		}
 		width := xb.Hi * ya.Hi * ((b - a) / b)
 		return betaNarrow(xa, ya, xb, yb, width, s1, s2)

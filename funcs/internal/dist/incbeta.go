@@ -163,7 +163,7 @@ func betaGrowth(s num.Wide, x, b float64) float64 {
 	if s.Lo == 0 {
 		return 0
 	}
-	return s.Lo * (num.Log(x*((s.Hi+b)/s.Hi)) + 1/(2*s.Hi) - 1/(2*(s.Hi+b)))
+	return float64(s.Lo * (num.Log(x*((s.Hi+b)/s.Hi)) + 1/(2*s.Hi) - 1/(2*(s.Hi+b))))
 }
 
 // BetaTails gives I_x(a, b) and 1 - I_x(a, b), each with full relative accuracy

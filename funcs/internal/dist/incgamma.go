@@ -69,8 +69,8 @@ func (t *tails) moveShape(grow, lost float64) {
 	if t.factor == 0 {
 		return // what is lost may be more than a tail that is 0
 	}
-	t.lowerRatio = (t.lowerRatio - lost) * (1 - grow)
-	t.upperRatio = (t.upperRatio + lost) * (1 - grow)
+	t.lowerRatio = float64((t.lowerRatio - lost) * (1 - grow))
+	t.upperRatio = float64((t.upperRatio + lost) * (1 - grow))
 	t.lower -= float64(lost * t.factor)
 	t.upper += float64(lost * t.factor)
 	t.log += grow
@@ -272,7 +272,7 @@ func gammaGrowth(s num.Wide, x float64) float64 {
 	if s.Lo == 0 {
 		return 0
 	}
-	return s.Lo * (num.Log(x/s.Hi) + 1/(2*s.Hi))
+	return float64(s.Lo * (num.Log(x/s.Hi) + 1/(2*s.Hi)))
 }
 
 // GammaTails gives the incomplete gamma ratios P(a, x) and Q(a, x), each with

@@ -119,7 +119,7 @@ func (m poissonMixture) term(j float64, upper bool) float64 {
 	w, logW := m.weight(j)
 	t := m.tails(j)
 	if size := t.of(upper); w > 1e-290 && size > 1e-290 {
-		return float64(w*raised) * size
+		return float64(float64(w*raised) * size)
 	}
 	return num.Exp(logW + t.logOf(upper) + logRaised)
 }
@@ -225,7 +225,7 @@ func narrowly(a, b float64, perLog func(x num.Wide) float64) float64 {
 	width := b - a
 	return num.Legendre(func(t float64) float64 {
 		x := num.TwoSum(a, float64(t*width))
-		return perLog(x) * (width / x.Hi)
+		return float64(perLog(x) * (width / x.Hi))
 	}, 0, 1)
 }
 

@@ -47,13 +47,13 @@ func (d NoncentralF) tail(x float64, upper bool) float64 {
 	// So far out the tail is a power of x.
 	switch {
 	case Y.Hi < edge:
-		t := d.tail(x*0x1p-200, true) * num.Exp(-float64(100*math.Ln2)*d.DF2)
+		t := float64(d.tail(x*0x1p-200, true) * num.Exp(-float64(100*math.Ln2)*d.DF2))
 		if upper {
 			return t
 		}
 		return 1 - t
 	case X.Hi < edge:
-		t := d.tail(x*0x1p200, false) * num.Exp(-float64(100*math.Ln2)*d.DF1)
+		t := float64(d.tail(x*0x1p200, false) * num.Exp(-float64(100*math.Ln2)*d.DF1))
 		if upper {
 			return 1 - t
 		}
@@ -108,10 +108,10 @@ func (d NoncentralF) Between(a, b float64) float64 {
 		}
 		law := F{d.DF1, d.DF2}
 		if _, y := law.beta(num.Widen(a)); y.Hi < edge {
-			return d.SF(a) * lostBetween(d.DF2/2, a, b)
+			return float64(d.SF(a) * lostBetween(d.DF2/2, a, b))
 		}
 		if x, _ := law.beta(num.Widen(b)); x.Hi < edge {
-			return d.CDF(b) * lostBetween(d.DF1/2, a, b)
+			return float64(d.CDF(b) * lostBetween(d.DF1/2, a, b))
 		}
 		return narrowly(a, b, func(x num.Wide) float64 { return d.mixture(law.beta(x)).density() })
 	})

@@ -37,7 +37,7 @@ func (d NoncentralT) Between(a, b float64) float64 {
 		case b < 0 && (d.far() || -b > d.power()):
 			return d.mirror().Between(-b, -a)
 		case a > d.power():
-			return d.SF(a) * lostBetween(d.DF, a, b)
+			return float64(d.SF(a) * lostBetween(d.DF, a, b))
 		case d.far() && a > 0:
 			return narrowly(a, b, d.densityOverZ)
 		}
