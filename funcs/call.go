@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"sync/atomic"
 )
 
 // Call is one evaluation of a function: its bound arguments, what it found so
@@ -41,8 +42,14 @@ func Answer(ctx context.Context, name string, arguments map[string]any) (*Outcom
 	return f.Answer(ctx, arguments)
 }
 
+// busy is how many goroutines are at work on answers: one for each call, and those
+// that help with it.
+var busy atomic.Int32
+
 // Answer evaluates the function; see the package's Answer.
 func (f *Function) Answer(ctx context.Context, arguments map[string]any) (out *Outcome, err error) {
+	busy.Add(1)
+	defer busy.Add(-1)
 	defer func() {
 		if p := recover(); p != nil {
 			out, err = nil, fmt.Errorf("%w: %s: %v", ErrInternal, f.Name, p)

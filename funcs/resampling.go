@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"runtime"
 	"sync"
-	"sync/atomic"
 
 	"halfwidth/funcs/internal/num"
 )
@@ -78,13 +77,10 @@ func resample(ctx context.Context, seed, n int, newWorker func() func(i int, s *
 	})
 }
 
-// sharing is how many goroutines are at work for share, of all calls together.
-var sharing atomic.Int32
-
 // share calls work for each item from 0 to n-1; a goroutine, which newWorker gives
-// its work, takes a chunk of them at a time. A call has one goroutine, and more while
-// all calls together have no more than there are cores: threads beyond that
-// would only keep each other, and what should be answered at once, waiting.
+// its work, takes a chunk of them at a time. Others help the call's own while all
+// calls together keep no more of them busy than there are cores: threads beyond
+// that would only keep each other, and what should be answered at once, waiting.
 func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) error {
 	var next struct {
 		sync.Mutex
@@ -99,15 +95,25 @@ func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) erro
 		return from, next.at
 	}
 	cores := int32(min(runtime.GOMAXPROCS(0), runtime.NumCPU()))
-	var all sync.WaitGroup
-	for i := range (n + chunk - 1) / chunk {
-		first := i == 0
-		if now := sharing.Add(1); now > cores && !first {
-			sharing.Add(-1)
+	run := func(helps bool) {
+		work := newWorker()
+		for from, to := take(); from < to && ctx.Err() == nil; from, to = take() {
+			for i := from; i < to && ctx.Err() == nil; i++ {
+				work(i)
+			}
+			if helps && busy.Load() > cores {
+				return
+			}
+		}
+	}
+	var helpers sync.WaitGroup
+	for range (n+chunk-1)/chunk - 1 {
+		if busy.Add(1) > cores {
+			busy.Add(-1)
 			break
 		}
-		all.Go(func() {
-			defer sharing.Add(-1)
+		helpers.Go(func() {
+			defer busy.Add(-1)
 			defer func() {
 				if p := recover(); p != nil {
 					next.Lock()
@@ -115,18 +121,13 @@ func share(ctx context.Context, n, chunk int, newWorker func() func(i int)) erro
 					next.fault = p
 				}
 			}()
-			work := newWorker()
-			for from, to := take(); from < to && ctx.Err() == nil; from, to = take() {
-				for i := from; i < to && ctx.Err() == nil; i++ {
-					work(i)
-				}
-				if !first && sharing.Load() > cores {
-					return
-				}
-			}
+			run(true)
 		})
 	}
-	all.Wait()
+	func() {
+		defer helpers.Wait()
+		run(false)
+	}()
 	if next.fault != nil {
 		panic(next.fault) // for the call's own guard, which does not see other goroutines
 	}

@@ -43,31 +43,32 @@ func TestSharedWorkEndsWhenCancelled(t *testing.T) {
 	}
 }
 
-// A call that comes while another uses every core has one goroutine.
+// A call that comes while another uses every core works alone.
 func TestSharedWorkOfAllCallsKeepsToTheCores(t *testing.T) {
 	onCores(8, func() {
 		cores := int32(min(8, runtime.NumCPU()))
 		var first, second, at atomic.Int32
 		full, release, done := make(chan bool), make(chan bool), make(chan error)
+		call := func(begun *atomic.Int32, work func(int)) error {
+			busy.Add(1)
+			defer busy.Add(-1)
+			return share(t.Context(), 1000, 1, func() func(int) { begun.Add(1); return work })
+		}
 		go func() {
-			done <- share(t.Context(), 1000, 1, func() func(int) {
-				first.Add(1)
-				return func(int) {
-					if at.Add(1) == cores {
-						close(full)
-					}
-					<-release
+			done <- call(&first, func(int) {
+				if at.Add(1) == cores {
+					close(full)
 				}
+				<-release
 			})
 		}()
 		<-full
-		err := share(t.Context(), 1000, 1, func() func(int) { second.Add(1); return func(int) {} })
-		if err != nil || first.Load() != cores || second.Load() != 1 {
+		if err := call(&second, func(int) {}); err != nil || first.Load() != cores || second.Load() != 1 {
 			t.Errorf("%v, %d goroutines of %d cores, then %d", err, first.Load(), cores, second.Load())
 		}
 		close(release)
-		if err := <-done; err != nil || sharing.Load() != 0 {
-			t.Errorf("%v, and %d are still counted", err, sharing.Load())
+		if err := <-done; err != nil || busy.Load() != 0 {
+			t.Errorf("%v, and %d are still counted", err, busy.Load())
 		}
 	})
 }
