@@ -161,7 +161,7 @@ func (c *Call) testShare(x, n, ref float64, size int, finite bool) {
 		c.sayTest(ref, NoUnit, "score z", z, p)
 		return
 	}
-	p := binomialPValue(x, n, ref, dir)
+	p := binomialPValue(x, n, ref, 1-ref, dir)
 	if finite {
 		marked := math.Round(ref * float64(size))
 		if !withinWhole(float64(ref*float64(size)), marked) {

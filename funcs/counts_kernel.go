@@ -43,9 +43,17 @@ func binomialAtMost(x, n, p float64) float64 {
 	return upper
 }
 
-// binomialPValue is the exact p-value of x successes in n against the reference.
-func binomialPValue(x, n, reference float64, direction string) float64 {
-	return tailP(direction, binomialAtMost(x, n, reference), binomialAtLeast(x, n, reference))
+// binomialPValue is the exact p-value of x successes in n against the reference;
+// rest is 1 - reference, carried apart so that neither loses digits beside 1.
+func binomialPValue(x, n, reference, rest float64, direction string) float64 {
+	atMost, atLeast := 1.0, 1.0
+	if x < n {
+		_, atMost = dist.BetaTails(reference, rest, x+1, n-x)
+	}
+	if x > 0 {
+		atLeast, _ = dist.BetaTails(reference, rest, x, n-x+1)
+	}
+	return tailP(direction, atMost, atLeast)
 }
 
 // pooledScoreZ is the score statistic of the difference of two proportions,

@@ -66,7 +66,7 @@ func poissonTails(x, mean float64) (atMost, atLeast float64) {
 
 var rateRatioInterval = &Function{
 	Name:    "rate-ratio-interval",
-	Version: 1,
+	Version: 2,
 	Summary: "ratio of two rates (first / second) with its exact conditional interval, and a test",
 	Inputs:  inputs(firstCount, firstExposure, secondCount, secondExposure, ratioReference, confidence, direction),
 	Results: []Result{
@@ -113,7 +113,8 @@ var rateRatioInterval = &Function{
 				return odds(1-q, q, x1+1, x2)
 			})
 		ref := ratioReference.Of(c)
-		chance := float64(ref*t1) / (float64(ref*t1) + t2)
+		first := float64(ref * t1)
+		chance, rest := 1/(1+t2/first), 1/(1+first/t2)
 		c.method = "exact conditional interval of a ratio of Poisson rates"
 		counts := fmt.Sprintf("%s and %s", plural(int(x1), "event"), plural(int(x2), "event"))
 		if x2 > 0 {
@@ -130,7 +131,7 @@ var rateRatioInterval = &Function{
 				c.sentence = fmt.Sprintf("The ratio of rates (first / second) has no upper limit (%s direction, %s; %s).", dir, counts, c.method)
 			}
 		}
-		c.setExactTest(ref, binomialPValue(x1, x1+x2, chance, dir))
+		c.setExactTest(ref, binomialPValue(x1, x1+x2, chance, rest, dir))
 		return nil
 	},
 }

@@ -7,16 +7,16 @@ import (
 	"testing"
 )
 
-// planRow is one row of testdata/references/plans/plans.csv.
+// planRow is one row of plans/plans.csv or further/calls.csv in testdata/references.
 type planRow struct {
 	function, result, text string
 	arguments              map[string]any
 }
 
-func planRows(t *testing.T) []planRow {
+func planRows(t *testing.T, file string) []planRow {
 	t.Helper()
 	var rows []planRow
-	for _, r := range csvRows(t, "../testdata/references/plans/plans.csv") {
+	for _, r := range csvRows(t, "../testdata/references/"+file) {
 		row := planRow{function: r["function"], result: r["result"], text: r["value"]}
 		if err := json.Unmarshal([]byte(r["arguments"]), &row.arguments); err != nil {
 			t.Fatal(err)
@@ -35,9 +35,10 @@ func planRows(t *testing.T) []planRow {
 	return rows
 }
 
-// Source: plans.csv, arithmetic at 24 to 34 digits by formulas of its own.
+// Source: plans.csv, arithmetic at 24 to 34 digits by formulas of its own; calls.csv,
+// sums over every count at 33 digits.
 func TestPlansAgreeWithHighPrecisionArithmetic(t *testing.T) {
-	for _, r := range planRows(t) {
+	for _, r := range append(planRows(t, "plans/plans.csv"), planRows(t, "further/calls.csv")...) {
 		out := answered(t, r.function, r.arguments)
 		got, ok := out.Get(r.result)
 		if !ok {

@@ -152,7 +152,7 @@ func TestPowersOfProportionsGoByThePValues(t *testing.T) {
 		var one, two float64
 		for x := 0; x <= n; x++ {
 			mass := dist.Binomial{N: n, P: first}.PMF(x)
-			if rejects(binomialPValue(float64(x), float64(n), second, dir)) {
+			if rejects(binomialPValue(float64(x), float64(n), second, 1-second, dir)) {
 				one += mass
 			}
 			for y := 0; y <= m; y++ {
