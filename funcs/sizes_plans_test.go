@@ -7,7 +7,7 @@ import (
 	"testing"
 )
 
-// planRow is one row of plans/plans.csv or further/calls.csv in testdata/references.
+// planRow is one row of plans/plans.csv or plans/calls.csv in testdata/references.
 type planRow struct {
 	function, result, text string
 	arguments              map[string]any
@@ -38,7 +38,7 @@ func planRows(t *testing.T, file string) []planRow {
 // Source: plans.csv, arithmetic at 24 to 34 digits by formulas of its own; calls.csv,
 // sums over every count at 33 digits.
 func TestPlansAgreeWithHighPrecisionArithmetic(t *testing.T) {
-	for _, r := range append(planRows(t, "plans/plans.csv"), planRows(t, "further/calls.csv")...) {
+	for _, r := range append(planRows(t, "plans/plans.csv"), planRows(t, "plans/calls.csv")...) {
 		out := answered(t, r.function, r.arguments)
 		got, ok := out.Get(r.result)
 		if !ok {
