@@ -21,7 +21,7 @@ func studentizedRangeLaw(c *Call) (dist.Distribution, string) {
 
 var studentizedRangeProbability = &Function{
 	Name:      "studentized-range-probability",
-	Version:   2,
+	Version:   3,
 	Summary:   "probability that the range of several normal means over their estimated sd lies between two values, or beyond one",
 	Inputs:    withEnds(NoUnit, rangeGroups, rangeDF),
 	OneOf:     ends,
@@ -39,7 +39,7 @@ var studentizedRangeProbability = &Function{
 
 var studentizedRangeQuantile = &Function{
 	Name:      "studentized-range-quantile",
-	Version:   2,
+	Version:   3,
 	Summary:   "value of the studentized range with a given probability below or above it",
 	Inputs:    inputs(rangeGroups, rangeDF, probability, countedFrom),
 	Results:   quantileResults(NoUnit),

@@ -186,9 +186,12 @@ var quantities = map[string]quantity{
 	"noncentral_f_sf": law(func(v args) float64 {
 		return dist.NoncentralF{DF1: v("df1"), DF2: v("df2"), Noncentrality: v("lambda")}.SF(v("x"))
 	}),
-	"studentized_range_cdf":             law(func(v args) float64 { return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.CDF(v("q")) }),
-	"studentized_range_sf":              law(func(v args) float64 { return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.SF(v("q")) }),
-	"studentized_range_quantile":        law(func(v args) float64 { return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.Quantile(v("p")) }),
+	"studentized_range_cdf":      law(func(v args) float64 { return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.CDF(v("q")) }),
+	"studentized_range_sf":       law(func(v args) float64 { return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.SF(v("q")) }),
+	"studentized_range_quantile": law(func(v args) float64 { return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.Quantile(v("p")) }),
+	"studentized_range_upper_quantile": law(func(v args) float64 {
+		return dist.StudentizedRange{Groups: int(v("k")), DF: v("df")}.UpperQuantile(v("q"))
+	}),
 	"owens_t":                           law(func(v args) float64 { return dist.OwensT(v("h"), v("a")) }),
 	"tolerance_k_two_sided":             law(func(v args) float64 { return dist.ToleranceFactor(int(v("n")), v("coverage"), v("confidence")) }),
 	"tolerance_k_one_sided":             law(func(v args) float64 { return dist.OneSidedToleranceFactor(int(v("n")), v("coverage"), v("confidence")) }),

@@ -47,6 +47,38 @@ func TestMaxTMatchesHighPrecision(t *testing.T) {
 	}
 }
 
+// The double integral over the common variable and over s in 33 digits, each tail
+// with its own integrand: unequal sizes, far tails, few and many degrees of freedom.
+func TestComparisonsWithControlMatchHighPrecisionInOneTail(t *testing.T) {
+	for _, c := range []struct {
+		law   MaxT
+		t     float64
+		upper bool
+		tail  float64
+	}{
+		{ComparisonsWithControl(5, []int{100, 100, 100}, 1e+10, true), 28.759818212296135, true, 2.0482313250874326003554729e-181},
+		{ComparisonsWithControl(6, []int{4, 5, 10}, 30, false), 10.024468459886444, true, 6.4361564715394167877004945e-11},
+		{ComparisonsWithControl(1000, []int{2, 2, 2}, 1e+06, false), 0.8430915363990165, true, 0.48683510656077790560798433},
+		{ComparisonsWithControl(100, []int{5, 7, 9, 11, 13}, 8, true), 2.8003306135849693, true, 0.096552788267326630914567941},
+		{ComparisonsWithControl(4, []int{8, 30, 900, 900}, math.Inf(1), true), 0.41948115655048, false, 0.10671981781775705661178655},
+		{ComparisonsWithControl(10, []int{10, 10, 10, 10, 10}, 8, true), 8.410516335010946, true, 0.00012239897470191996496325289},
+		{ComparisonsWithControl(100, []int{5, 7, 9, 11, 13}, 8, true), 5.172823974020566, true, 0.0038715615562087168976777719},
+		{ComparisonsWithControl(5, []int{100, 100, 100}, 1, true), 3.3265350678112524, true, 0.22530938018235898097591839},
+		{ComparisonsWithControl(1, []int{1, 1}, 1e+10, false), -5.53939353564668, false, 1.5546797273265053189820097e-11},
+		{ComparisonsWithControl(1, []int{1, 1}, 1, false), 8037.356774373059, true, 0.000059405702634275593711335314},
+	} {
+		for _, law := range []MaxT{c.law, c.law.Shared()} {
+			got, back := law.CDF(c.t), law.Quantile
+			if c.upper {
+				got, back = law.SF(c.t), law.UpperQuantile
+			}
+			what := fmt.Sprint(c.law, c.t)
+			wantDigits(t, what, got, c.tail, 5e-13)
+			wantDigits(t, what+", quantile", back(c.tail), c.t, 5e-13)
+		}
+	}
+}
+
 // Identity: one comparison, or one further value, is Student's t.
 func TestMaxTOfOneIsStudent(t *testing.T) {
 	rng := rand.New(rand.NewPCG(10, 1))

@@ -101,7 +101,8 @@ type normalRange int
 
 func (k normalRange) tail(w float64, upper bool) float64 {
 	n := float64(k)
-	if w <= 0 || n*num.Log(w) < -800 {
+	// The lower tail is at most sqrt(k) (w/sqrt(2 pi))^(k-1), which it approaches.
+	if w <= 0 || num.Log(n)/2+float64((n-1)*num.Log(w/math.Sqrt(2*math.Pi))) < -750 {
 		if upper {
 			return 1
 		}

@@ -8,10 +8,10 @@ import (
 	"testing"
 )
 
-// testdata/references/numerics/studentized_range.csv: two integrals with little
-// in common, at high precision.
+// studentized_range.csv of testdata/references/numerics, two integrals with little in
+// common, and of further, the second of them over the whole domain.
 func TestStudentizedRangeMatchesHighPrecision(t *testing.T) {
-	for _, r := range highPrecisionRows(t, "studentized_range.csv") {
+	for _, r := range append(highPrecisionRows(t, "studentized_range.csv"), readRows(t, "further", "studentized_range.csv")...) {
 		df := math.Inf(1)
 		if r["df"] != "inf" {
 			df = r.number(t, "df")
@@ -26,6 +26,8 @@ func TestStudentizedRangeMatchesHighPrecision(t *testing.T) {
 			got = d.SF(r.number(t, "q"))
 		case "quantile":
 			got, tolerance = d.Quantile(r.number(t, "p")), 1e-11
+		case "upper_quantile":
+			got, tolerance = d.UpperQuantile(r.number(t, "q")), 1e-11
 		default:
 			t.Fatalf("unknown function %q", r.function())
 		}

@@ -81,7 +81,11 @@ func (n *scaleNodes) average(y float64) float64 {
 			term := num.Exp(n.law.df*scaleExponent(x-y)) * slope
 			faded := term == 0 && (x > y) == (stride > 0)
 			if term > 0 {
-				term *= n.tail(i, x)
+				tail := n.tail(i, x)
+				if tail == 0 && n.upper == ((stride > 0) == (n.base > 0)) {
+					return sum // the tail is 0 from here on
+				}
+				term *= tail
 			}
 			sum += term
 			peak = max(peak, term)
