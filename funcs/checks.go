@@ -54,7 +54,7 @@ var outlierCheck = &Function{
 			most = max(1, min(mostOutliers.Of(c), s.n/5))
 		}
 		outliers := 0
-		rest := newPeeling(given)
+		rest := newPeeling(given, most)
 		for j := 1; j <= most && c.cancelled() == nil; j++ {
 			m := rest.summary()
 			if m.sd == 0 {
@@ -98,24 +98,45 @@ func (c *Call) sayOutliers(outliers, n int) {
 }
 
 // peeling takes the values farthest from the mean out of a sample, one by one. In
-// sorted order they lie at one end or the other, and mean and sum of squares
-// follow; they are worked out anew before the changes cost digits.
+// sorted order they lie at one end or the other, so those left are the middle, which
+// always stays, and what is left of both ends. Mean and sum of squares of these
+// are put together by sums of positive terms alone: however far the values taken
+// out lay, no digits are lost.
 type peeling struct {
-	values    []float64 // sorted
-	positions []int
-	mean      num.Wide
-	squares   num.Wide
-	whole     float64 // the sum of squares when it was last worked out
+	values       []float64 // sorted
+	positions    []int
+	lower, upper []part // what is left of an end when so many are taken from it
+	middle       part
+	low, high    int // how many are taken from each end
 }
 
-func newPeeling(given []float64) *peeling {
+// part is the mean and the sum of squares about it of n values.
+type part struct {
+	n             float64
+	mean, squares num.Wide
+}
+
+// and is both parts together (Chan, Golub & LeVeque 1983).
+func (p part) and(q part) part {
+	if p.n == 0 || q.n == 0 {
+		if p.n == 0 {
+			return q
+		}
+		return p
+	}
+	n, d := p.n+q.n, q.mean.Sub(p.mean)
+	return part{n, p.mean.Add(d.Times(q.n).Over(n)), p.squares.Add(q.squares).Add(d.Mul(d).Times(p.n).Over(n).Times(q.n))}
+}
+
+// newPeeling makes ready to take out at most so many values, not half of them.
+func newPeeling(given []float64, most int) *peeling {
 	p := &peeling{}
 	for i, x := range given {
 		if !math.IsNaN(x) {
 			p.positions = append(p.positions, i)
 		}
 	}
-	middle := num.Median(num.Sorted(withoutGaps(given)))
+	middle := num.MedianIn(withoutGaps(given))
 	// Of equal values the first in the sample is to be the outermost.
 	slices.SortFunc(p.positions, func(i, j int) int {
 		order := cmp.Compare(given[i], given[j])
@@ -127,44 +148,34 @@ func newPeeling(given []float64) *peeling {
 	for _, i := range p.positions {
 		p.values = append(p.values, given[i])
 	}
-	p.measure()
+	n := len(p.values)
+	m := num.Moments(p.values[most : n-most])
+	p.middle = part{float64(m.N), num.Wide{Hi: m.Mean, Lo: m.MeanLow}, num.Widen(m.SumSquares)}
+	p.lower, p.upper = make([]part, most+1), make([]part, most+1)
+	for i := most - 1; i >= 0; i-- {
+		p.lower[i] = p.lower[i+1].and(part{n: 1, mean: num.Widen(p.values[i])})
+		p.upper[i] = p.upper[i+1].and(part{n: 1, mean: num.Widen(p.values[n-1-i])})
+	}
 	return p
-}
-
-func (p *peeling) measure() {
-	m := num.Moments(p.values)
-	p.mean, p.squares, p.whole = num.Wide{Hi: m.Mean, Lo: m.MeanLow}, num.Widen(m.SumSquares), m.SumSquares
 }
 
 // summary is that of the values left.
 func (p *peeling) summary() summary {
-	n := len(p.values)
-	return summary{n, p.mean.Float(), math.Sqrt(p.squares.Float() / float64(n-1))}
+	all := p.middle.and(p.lower[p.low]).and(p.upper[p.high])
+	return summary{int(all.n), all.mean.Float(), math.Sqrt(all.squares.Float() / (all.n - 1))}
 }
 
 // takeFarthest takes out the value farthest from the centre, the first of equals,
 // and gives its position in the sample and its distance.
 func (p *peeling) takeFarthest(centre float64) (position int, distance float64) {
-	n := len(p.values)
-	low, high := centre-p.values[0], p.values[n-1]-centre
-	at, x := 0, p.values[0]
-	if high > low || high == low && p.positions[n-1] < p.positions[0] {
-		at, x = n-1, p.values[n-1]
+	first, last := p.low, len(p.values)-1-p.high
+	below, above := centre-p.values[first], p.values[last]-centre
+	if above > below || above == below && p.positions[last] < p.positions[first] {
+		p.high++
+		return p.positions[last], above
 	}
-	position, distance = p.positions[at], math.Max(low, high)
-	if at == 0 {
-		p.values, p.positions = p.values[1:], p.positions[1:]
-	} else {
-		p.values, p.positions = p.values[:n-1], p.positions[:n-1]
-	}
-	d := num.Widen(x).Sub(p.mean)
-	p.mean = p.mean.Sub(d.Over(float64(n - 1)))
-	p.squares = p.squares.Sub(d.Mul(d).Times(float64(n)).Over(float64(n - 1)))
-	const kept = 1.0 / 64 // of the sum of squares: some 6 of 53 bits
-	if !(p.squares.Hi > kept*p.whole) {
-		p.measure()
-	}
-	return position, distance
+	p.low++
+	return p.positions[first], below
 }
 
 // tailValues is how many values tail-check asks for.
