@@ -89,7 +89,7 @@ func TestTheMostIsWorkedOut(t *testing.T) {
 	}
 }
 
-// Forty numbers of values and no more are worked out together, and twenty where
+// Thirty numbers of values and no more are worked out together, and fifteen where
 // the control is much smaller than a group.
 func TestTooManyDifferentSizesAreRefused(t *testing.T) {
 	answer := func(n, control int) *Outcome {
@@ -110,7 +110,7 @@ func TestTooManyDifferentSizesAreRefused(t *testing.T) {
 		}
 		return out
 	}
-	for _, c := range []struct{ control, most int }{{40, 40}, {3, 20}} {
+	for _, c := range []struct{ control, most int }{{40, 30}, {3, 15}} {
 		if out := answer(c.most, c.control); out.Status == StatusRefused || len(out.Rows) != c.most {
 			t.Errorf("%d sizes: %v", c.most, out.Findings)
 		}

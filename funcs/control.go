@@ -12,7 +12,7 @@ const (
 	mostControlled = 250
 	// Each number of values that occurs is an integrand of its own, and a sharp one
 	// in a group of many more values than the control has.
-	mostSizes, mostSizesFar = 40, 20
+	mostSizes, mostSizesFar = 30, 15
 )
 
 var controlGroup = In[string]{Input{Name: "control", Kind: Text, Summary: "the name of the group that the others are compared with"}}
@@ -27,7 +27,7 @@ var differencesFromControl = &Function{
 	Table: append([]Result{
 		{"group", Text, NoUnit, "the group whose mean is compared with that of the control"},
 	}, differenceColumns...),
-	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 40 different numbers of values; more than 20, where one has over ten times as many as the control"}),
+	Findings: append(slices.Clone(severalMeansFindings), FindingKind{"too-many-sizes", "the groups but the control have more than 30 different numbers of values; more than 15, where one has over ten times as many as the control"}),
 	Assumptions: []string{"independent groups of independent values", "normal values, or n large enough for their skewness",
 		"the same variance in all groups"},
 	Citations: []string{"Dunnett 1955, 1964"},

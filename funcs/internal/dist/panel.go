@@ -2,9 +2,7 @@ package dist
 
 import (
 	"math"
-	"runtime"
 	"sync"
-	"sync/atomic"
 )
 
 const (
@@ -25,48 +23,24 @@ type panel struct {
 // fit finds the coefficients from the values of f at the zeros of the Chebyshev
 // polynomial of degree panelNodes on lo to hi. The last of them tell how far f is
 // from the polynomial, and must be small beside 1, or beside f itself where
-// relative. The cores share the work of f.
+// relative.
 func (p *panel) fit(lo, hi float64, relative bool, f func(float64) float64) {
 	middle, half := lo/2+hi/2, hi/2-lo/2
 	least := math.Inf(1)
-	values := onCores(panelNodes+1, func(i int) float64 {
-		if i == panelNodes {
-			return f(hi)
-		}
-		return f(middle + float64(half*panelCosine(2*i+1)))
-	})
-	for i, y := range values[:panelNodes] {
+	for i := range panelNodes {
+		y := f(middle + float64(half*panelCosine(2*i+1)))
 		least = min(least, math.Abs(y))
 		for j := range panelNodes {
 			p.coefficients[j] += float64(y * panelCosine(j*(2*i+1)) * (2.0 / panelNodes))
 		}
 	}
 	p.coefficients[0] /= 2
-	p.end = values[panelNodes]
+	p.end = f(hi)
 	if !relative {
 		least = 1
 	}
 	last := math.Abs(p.coefficients[panelNodes-1]) + math.Abs(p.coefficients[panelNodes-2])
 	p.good = last <= panelSettled*least // false for NaN
-}
-
-// onCores gives f of 0 to n-1, worked out on as many goroutines as there are cores
-// that the program may use.
-func onCores(n int, f func(i int) float64) []float64 {
-	out := make([]float64, n)
-	var next atomic.Int64
-	work := func() {
-		for i := int(next.Add(1)) - 1; i < n; i = int(next.Add(1)) - 1 {
-			out[i] = f(i)
-		}
-	}
-	var others sync.WaitGroup
-	for range min(runtime.GOMAXPROCS(0), runtime.NumCPU(), n) - 1 {
-		others.Go(work)
-	}
-	work()
-	others.Wait()
-	return out
 }
 
 // value is the polynomial at x, where the interval goes from -1 to 1, by
